@@ -31,32 +31,24 @@ func (e *InvalidError) Error() string {
 // Check reports what is missing from the stage or outside its physical bounds.
 // Call it after ApplyDefaults. The error is an *InvalidError.
 func (s *Stage) Check() error {
-	var faults []Fault
-	for _, f := range s.Fields() {
-		v := *f.Value
+	var f faults
+	for _, x := range s.Fields() {
+		v := *x.Value
 		switch {
 		case !parts.Known(v):
-			if f.Required {
-				faults = append(faults, Fault{Field: f.ID, Given: v, Limit: parts.Unknown, Accepted: "a number", Detail: "required for this stage"})
+			if x.Required {
+				f = append(f, Fault{Field: x.ID, Given: v, Limit: parts.Unknown, Accepted: "a number", Detail: "required for this stage"})
 			}
-		case f.Default != nil && v == f.Default.Value:
-		case !(v >= f.Least):
-			faults = append(faults, Fault{Field: f.ID, Given: v, Limit: f.Least, Accepted: fmt.Sprintf("at least %g", f.Least), Detail: "below the physical range"})
-		case !(v <= f.Greatest):
-			faults = append(faults, Fault{Field: f.ID, Given: v, Limit: f.Greatest, Accepted: fmt.Sprintf("at most %g", f.Greatest), Detail: "above the physical range"})
+		case x.Default != nil && v == x.Default.Value:
+		default:
+			f.within(x.ID, v, x.Least, x.Greatest, "")
 		}
 	}
-	if s.PhaseCount < 1 || s.PhaseCount > MaxPhases {
-		faults = append(faults, Fault{Field: "phase_count", Given: float64(s.PhaseCount), Limit: MaxPhases, Accepted: fmt.Sprintf("1 to %d", MaxPhases), Detail: "phases"})
+	f.within("phase_count", float64(s.PhaseCount), 1, MaxPhases, "phases")
+	f.within("output_capacitors", float64(len(s.OutputCapacitors)), 1, MaxBanks, "banks")
+	f.within("input_capacitors", float64(len(s.InputCapacitors)), 0, MaxBanks, "banks")
+	if n := len(s.Phases); n > 0 && n != s.PhaseCount {
+		f = append(f, Fault{Field: "phases", Given: float64(n), Limit: float64(s.PhaseCount), Accepted: fmt.Sprintf("%d entries, one for each phase", s.PhaseCount), Detail: "phase overrides"})
 	}
-	if n := len(s.OutputCapacitors); n < 1 || n > MaxBanks {
-		faults = append(faults, Fault{Field: "output_capacitors", Given: float64(n), Limit: MaxBanks, Accepted: fmt.Sprintf("1 to %d banks", MaxBanks), Detail: "output capacitor banks"})
-	}
-	if n := len(s.InputCapacitors); n > MaxBanks {
-		faults = append(faults, Fault{Field: "input_capacitors", Given: float64(n), Limit: MaxBanks, Accepted: fmt.Sprintf("at most %d banks", MaxBanks), Detail: "input capacitor banks"})
-	}
-	if len(faults) > 0 {
-		return &InvalidError{faults}
-	}
-	return nil
+	return f.err()
 }
