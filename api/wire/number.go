@@ -1,0 +1,76 @@
+package wire
+
+import (
+	"encoding/json"
+	"fmt"
+	"strconv"
+
+	v2 "github.com/go-json-experiment/json"
+	"github.com/go-json-experiment/json/jsontext"
+)
+
+// Number is a JSON number or, for a value with a tolerance, a spread object.
+// It keeps what was written, so that it is written again unchanged.
+type Number struct {
+	Value  float64 // [any] the bare number, if Spread is nil
+	Spread *Spread
+}
+
+// Spread is a value with its tolerance: {typ, tol}, {min, typ, max} or {min, max}.
+type Spread struct {
+	Min          *float64 `json:"min,omitzero"`
+	Typ          *float64 `json:"typ,omitzero"`
+	Max          *float64 `json:"max,omitzero"`
+	Tol          *float64 `json:"tol,omitzero"`
+	Distribution string   `json:"distribution,omitzero"`
+	Group        string   `json:"group,omitzero"`
+	MatchTol     *float64 `json:"match_tol,omitzero"`
+}
+
+// UnmarshalJSONFrom reads a number or a spread object.
+func (n *Number) UnmarshalJSONFrom(d *jsontext.Decoder) error {
+	switch kind := d.PeekKind(); kind {
+	case '0':
+		t, err := d.ReadToken()
+		if err != nil {
+			return err
+		}
+		n.Spread = nil
+		n.Value, err = t.Float()
+		return err
+	case '{':
+		n.Spread = new(Spread)
+		return v2.UnmarshalDecode(d, n.Spread)
+	default:
+		return fmt.Errorf("a number or a spread object, not %v", kind)
+	}
+}
+
+// MarshalJSON writes what was read.
+func (n Number) MarshalJSON() ([]byte, error) {
+	if n.Spread != nil {
+		return json.Marshal(n.Spread)
+	}
+	return appendFloat(nil, n.Value), nil
+}
+
+// Of returns a bare number.
+func Of(v float64) *Number { return &Number{Value: v} }
+
+// appendFloat appends the shortest decimal that reads back as v, in the form that
+// encoding/json writes.
+func appendFloat(b []byte, v float64) []byte {
+	abs := v
+	if abs < 0 {
+		abs = -abs
+	}
+	if abs != 0 && (abs < 1e-6 || abs >= 1e21) {
+		b = strconv.AppendFloat(b, v, 'e', -1, 64)
+		if n := len(b); n >= 4 && b[n-4] == 'e' && b[n-3] == '-' && b[n-2] == '0' {
+			b[n-2] = b[n-1]
+			b = b[:n-1]
+		}
+		return b
+	}
+	return strconv.AppendFloat(b, v, 'f', -1, 64)
+}

@@ -1,0 +1,6 @@
+package wire
+
+import "embed"
+
+//go:embed testdata
+var testdata embed.FS
