@@ -1,0 +1,153 @@
+package losses
+
+import (
+	"railproof/calc/magnetics"
+	"railproof/calc/parts"
+	"railproof/calc/stage"
+	"railproof/calc/switched"
+	"railproof/calc/thermal"
+)
+
+// Model computes every loss of one stage. It is used in four steps, each as
+// seldom as it may be:
+//
+//	Prepare  once per stage   what only exponents and topology decide
+//	Begin    once per point   charges and rates at frequency and bridge voltage
+//	Freeze   once per circuit solution   currents; after it temperature is the only variable
+//	Powers   once per thermal step   power and slope of every part
+//	Fill     once at the end   the table of items
+//
+// The stage is read at every step, so a caller may change its numbers between
+// points. Nothing allocates.
+type Model struct {
+	st       *stage.Stage
+	triangle magnetics.Triangle
+	phases   float64
+	point    pointRates
+	currents currents
+}
+
+// Operation is what losses depend on besides the parts' temperatures.
+type Operation struct {
+	Bridge      float64                      // [V] at the input capacitors, which the switches block
+	Output      float64                      // [V] mean, at the output capacitors
+	AgeRatio    float64                      // [1]
+	BoardDegC   float64                      // [degC] of the copper paths
+	Inductance  float64                      // [H] of one phase over its current swing
+	Inductances *[switched.MaxPhases]float64 // [H] of each phase of an unequal circuit; else nil
+	PathMean    float64                      // [A] mean current through the input path
+	LoadRMS     float64                      // [A] through the output path
+	InputBank   [switched.MaxBanks]float64   // [A] RMS of each input bank
+	Solution    *switched.Solution
+}
+
+// Prepare binds the model to a stage.
+func (m *Model) Prepare(s *stage.Stage) {
+	m.st = s
+	m.phases = float64(max(s.PhaseCount, 1))
+	if c := &s.Inductor.Core; c.Present {
+		m.triangle = magnetics.PrepareTriangle(c.Alpha, c.Beta)
+	}
+}
+
+// pointRates holds what depends on the stage's numbers, frequency and voltages
+// only.
+type pointRates struct {
+	f, vin, td   float64 // [Hz], [V], [s]
+	ton, toff    float64 // [s]
+	outputCharge float64 // [W]
+	junction     float64 // [W]
+	recovery     float64 // [W]
+	gateDrive    float64 // [W] of all phases
+	quiescent    float64 // [W]
+}
+
+// Begin computes charges and rates at the bridge voltage and output voltage [V].
+// It must be called again when a number of the stage or a voltage has changed.
+func (m *Model) Begin(bridge, output float64) {
+	s, p := m.st, &m.point
+	hs, c := &s.HighSide, &s.Controller
+	p.f, p.vin, p.td = s.SwitchingFrequency, bridge, c.DeadTime
+	charge := hs.SwitchChargeAt(bridge)
+	p.ton = Transition(charge, c.GateOn+hs.InternalGate, c.Drive-hs.Plateau)
+	p.toff = Transition(charge, c.GateOff+hs.InternalGate, hs.Plateau)
+
+	_, own := hs.OutputAt(bridge)
+	gates := hs.GateCharge
+	if s.Rectifier == stage.DiodeRectified {
+		q, e := s.Diode.JunctionChargeAt(bridge)
+		p.outputCharge = OutputChargeLoss(bridge, p.f, own, 0, 0)
+		p.junction = OutputChargeLoss(bridge, p.f, 0, q, e)
+		p.recovery = RecoveryLoss(bridge, s.Diode.RecoveryCharge, p.f)
+	} else {
+		q, e := s.LowSide.OutputAt(bridge)
+		p.outputCharge = OutputChargeLoss(bridge, p.f, own, q, e)
+		p.junction = 0
+		p.recovery = RecoveryLoss(bridge, s.LowSide.RecoveryCharge, p.f)
+		gates += s.LowSide.GateCharge
+	}
+	p.gateDrive = m.phases * GateDriveLoss(gates, driveSource(c, bridge, output), p.f)
+	p.quiescent = QuiescentLoss(bridge, c.QuiescentCurrent)
+	if core := &s.Inductor.Core; core.Present {
+		m.triangle.At(core.K, p.f)
+	}
+}
+
+// driveSource is the voltage [V] that the gate charge is drawn from.
+func driveSource(c *parts.Controller, bridge, output float64) float64 {
+	switch c.DriveSupply {
+	case parts.DriveFromInput:
+		return bridge
+	case parts.DriveFromOutput:
+		return output
+	}
+	return c.Drive
+}
+
+// Powers computes the power [W] lost in every part and its slope [W/K] over the
+// part's own temperature, at the frozen currents. Entries of absent parts are
+// left alone; Part is the index. A capacitor's entry is that of its whole bank.
+func (m *Model) Powers(degC, power, slope *thermal.Vector) {
+	s, c := m.st, &m.currents
+	r, dr := s.HighSide.OnResistanceAt(degC[HighSide], s.Controller.Drive)
+	power[HighSide] = Resistive(r, c.highSide) + c.highSideFixed
+	slope[HighSide] = dr * c.highSide
+
+	if s.Rectifier == stage.DiodeRectified {
+		m.diodePower(degC[Diode], power, slope)
+	} else {
+		r, dr = s.LowSide.OnResistanceAt(degC[LowSide], s.Controller.Drive)
+		power[LowSide] = Resistive(r, c.channel) + c.deadLow
+		slope[LowSide] = dr * c.channel
+	}
+
+	r, dr = s.Inductor.DCResistanceAt(degC[Inductor])
+	power[Inductor] = Resistive(r, c.winding)
+	slope[Inductor] = dr * c.winding
+	if c.core > 0 {
+		k, dk := s.Inductor.Core.CoreMultiplierAt(degC[Inductor])
+		power[Inductor] += k * c.core
+		slope[Inductor] += dk * c.core
+	}
+
+	power[Controller], slope[Controller] = c.controller, 0
+	for k := range s.OutputCapacitors {
+		i := OutputCapacitor + Part(k)
+		r, dr = s.OutputCapacitors[k].ESRAt(degC[i], c.age)
+		power[i], slope[i] = Resistive(r, c.output[k]), dr*c.output[k]
+	}
+	for k := range s.InputCapacitors {
+		i := InputCapacitor + Part(k)
+		r, dr = s.InputCapacitors[k].ESRAt(degC[i], c.age)
+		power[i], slope[i] = Resistive(r, c.input[k]), dr*c.input[k]
+	}
+}
+
+func (m *Model) diodePower(degC float64, power, slope *thermal.Vector) {
+	d, c := &m.st.Diode, &m.currents
+	vt, dvt := d.ThresholdAt(degC)
+	ir, dir := d.LeakageAt(degC)
+	blocked := c.duty * m.point.vin
+	power[Diode] = DiodeConduction(vt, d.Slope, c.rectifierMean, c.rectifier) + ir*blocked
+	slope[Diode] = dvt*c.rectifierMean + dir*blocked
+}

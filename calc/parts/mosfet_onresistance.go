@@ -1,0 +1,32 @@
+package parts
+
+// OnResistanceAt returns the on-resistance [ohm] at a junction temperature and a
+// gate drive voltage, and its slope over temperature [ohm/K].
+//
+//	Rdson(Tj, Vdr) = R25 · m(Tj) · g(Vdr)
+//
+//	R25  [ohm] OnResistance, at 25 °C and the drive voltage of the data sheet
+//	m(T) [1]   OnResistanceTemp, literal; 1 if absent
+//	g(V) [1]   OnResistanceDrive, literal; 1 if absent
+//
+// Beyond its ends m goes on with the last slope (so that a runaway is found and
+// not hidden), towards the cold not below MultiplierFloor. Beyond tells when.
+//
+// Low-voltage parts follow m = 1 + 0.005/K (Tj − 25 °C): Linear Technology,
+// LTC3855 data sheet 3855f, p. 22; LTC3728 data sheet 3728fg, p. 28.
+// High-voltage parts reach 2 to 2.6 at their limit.
+func (m *MOSFET) OnResistanceAt(junctionDegC, drive float64) (r, slope float64) {
+	y, dy := overTemperature(&m.OnResistanceTemp, junctionDegC)
+	r = m.OnResistance
+	if !m.OnResistanceDrive.Empty() {
+		r *= m.driveMultiplier(drive)
+	}
+	return r * y, r * dy
+}
+
+// driveMultiplier reads OnResistanceDrive with the same continuation as over
+// temperature: a weaker drive goes on raising the resistance.
+func (m *MOSFET) driveMultiplier(drive float64) float64 {
+	y, _ := overTemperature(&m.OnResistanceDrive, drive)
+	return y
+}
