@@ -21,9 +21,15 @@ type Variable struct {
 	MatchTol      float64 // [1] independent relative residual of a group's member
 }
 
-// At returns the value at coordinate z in [-1, 1]: Typ at 0, Min at -1, Max at 1.
+// At returns the value at coordinate z in [-1, 1], linear on each side: exactly
+// Typ at 0, Min at -1 and Max at 1.
 func (v *Variable) At(z float64) float64 {
-	if z >= 0 {
+	switch {
+	case z == 1:
+		return v.Max
+	case z == -1:
+		return v.Min
+	case z >= 0:
 		return v.Typ + float64(z*(v.Max-v.Typ))
 	}
 	return v.Typ + float64(z*(v.Typ-v.Min))

@@ -1,0 +1,59 @@
+package spread
+
+import (
+	"math"
+	"testing"
+
+	"github.com/stretchr/testify/assert"
+	"gonum.org/v1/gonum/stat/distuv"
+)
+
+func TestNormalQuantileAgainstExact(t *testing.T) {
+	worst := 0.0
+	for i := range 50000 {
+		p := math.Exp2(-1 - 38.9*float64(i)/50000)
+		got := normalQuantile(p)
+		want := tailQuantile(p)
+		if p > 1e-3 {
+			want = distuv.UnitNormal.Quantile(p)
+		}
+		worst = math.Max(worst, math.Abs(got-want))
+	}
+	for i := 1; i < 1<<10; i++ {
+		p := math.Ldexp(float64(i), -30) // 1 - p is exact
+		assert.Equal(t, -normalQuantile(p), normalQuantile(1-p), "symmetry at %g", p)
+	}
+	assert.Less(t, worst, 6e-9, "greatest error in standard deviations")
+	t.Logf("greatest error %.2g standard deviations", worst)
+	assert.Zero(t, normalQuantile(0.5))
+	assert.InDelta(t, -1.959963984540054, normalQuantile(0.025), 6e-9)
+	assert.InDelta(t, tailQuantile(0x1p-41), normalQuantile(1e-300), 1e-6, "stays at the end")
+}
+
+func TestTailQuantileInvertsTheTail(t *testing.T) {
+	for _, q := range []float64{-3.1, -4, -5, -6, -7} {
+		assert.InEpsilon(t, q, tailQuantile(normalBelow(q)), 1e-13)
+	}
+}
+
+func TestNormalQuantileIsMonotonic(t *testing.T) {
+	before := math.Inf(-1)
+	for i := 1; i < 1_000_000; i++ {
+		q := normalQuantile(float64(i) / 1_000_000)
+		if q < before {
+			t.Fatalf("falls at %d/1000000: %.17g after %.17g", i, q, before)
+		}
+		before = q
+	}
+}
+
+func BenchmarkNormalQuantile(b *testing.B) {
+	p, sum := 0.3, 0.0
+	for b.Loop() {
+		if p += 0.6180339887; p >= 1 {
+			p--
+		}
+		sum += normalQuantile(p)
+	}
+	_ = sum
+}
