@@ -1,0 +1,93 @@
+package statespace
+
+import "math"
+
+// Ladder advances one system by any time up to its Step, exactly: maps over
+// Step, Step/2, Step/4 and so on are kept, and the rest below the last of them
+// is a short Taylor series. It also finds the time at which an output crosses
+// zero, by descending the same maps.
+type Ladder struct {
+	System System
+	Step   float64 // [s]
+	rungs  []Map   // over Step / 2^i
+}
+
+const (
+	// rungNorm bounds the norm of A t below the last rung, where restTerms terms
+	// of the series leave less than (1/64)^9/9! = 2e-22.
+	rungNorm  = 1.0 / 64
+	restTerms = 8
+)
+
+// NewLadder returns the ladder of s for steps of the given length.
+func NewLadder(s *System, step float64) *Ladder {
+	l := &Ladder{System: *s, Step: step}
+	n := halvingsFor(s, step, rungNorm)
+	l.rungs = make([]Map, n+1)
+	var work Map
+	l.rungs[n].series(s, math.Ldexp(step, -n), taylorTerms, &work)
+	for i := n - 1; i >= 0; i-- {
+		l.rungs[i].Compose(&l.rungs[i+1], &l.rungs[i+1])
+		l.rungs[i].Time = math.Ldexp(step, -i)
+	}
+	return l
+}
+
+// Whole sets dst to the point one full Step after z.
+func (l *Ladder) Whole(dst, z *Point) { l.rungs[0].Apply(dst, z) }
+
+// Advance moves z by the time t, 0 <= t <= Step.
+func (l *Ladder) Advance(z *Point, t float64) {
+	var next Point
+	for i := range l.rungs {
+		m := &l.rungs[i]
+		if t >= m.Time {
+			m.Apply(&next, z)
+			*z = next
+			t -= m.Time
+		}
+	}
+	if t > 0 {
+		var terms series
+		l.expand(&terms, z, t)
+		terms.sum(z, 1, l.System.N, l.System.M, t, &l.System.Rate)
+	}
+}
+
+// series holds the Taylor terms of a point over the time t: z, A z t, ...
+type series [restTerms + 1]Point
+
+func (l *Ladder) expand(terms *series, z *Point, t float64) {
+	s := &l.System
+	n, w := s.N, s.N+s.M
+	terms[0] = *z
+	for i := 0; i < n; i++ {
+		terms[1][i] = t * dot(s.A[i*w:i*w+w], z[:w])
+	}
+	for p := 2; p <= restTerms; p++ {
+		f := t / float64(p)
+		for i := 0; i < n; i++ {
+			x := dot(s.A[i*w:i*w+n], terms[p-1][:n])
+			if p == 2 {
+				for k := 0; k < s.M-1; k++ {
+					x += s.A[i*w+n+k] * s.Rate[k] * t
+				}
+			}
+			terms[p][i] = f * x
+		}
+	}
+}
+
+// sum sets z to the point at the fraction r of the time t of the expansion.
+func (terms *series) sum(z *Point, r float64, n, m int, t float64, rate *[MaxInputs]float64) {
+	for i := 0; i < n; i++ {
+		x := terms[restTerms][i]
+		for p := restTerms - 1; p >= 0; p-- {
+			x = terms[p][i] + float64(r*x)
+		}
+		z[i] = x
+	}
+	for k := 0; k < m; k++ {
+		z[n+k] = terms[0][n+k] + float64(rate[k]*t*r)
+	}
+}

@@ -1,0 +1,89 @@
+// Package statespace advances linear systems with constant or steadily ramping
+// inputs exactly, and finds where a linear output of such a system crosses zero.
+// It knows matrices only; what a state means is decided by its callers.
+//
+// A point z holds N states followed by M inputs, of which the last is the
+// constant 1. The states obey x' = A x + B u, the inputs u' = Rate, so the state
+// after a time t is an affine function of the point: a Map.
+package statespace
+
+const (
+	MaxStates = 24                    // [1]
+	MaxInputs = 4                     // [1]
+	Width     = MaxStates + MaxInputs // [1] length of the longest point
+)
+
+// Point is a state followed by the inputs.
+type Point [Width]float64
+
+// System is x' = A x + B u with ramping inputs.
+type System struct {
+	N, M int
+	A    [MaxStates * Width]float64 // [any] row by row, N rows of N+M: [A B]
+	Rate [MaxInputs]float64         // [any/s] of each input; that of the constant is 0
+}
+
+// Reset makes s the zero system of n states and m inputs.
+func (s *System) Reset(n, m int) {
+	s.N, s.M = n, m
+	clear(s.A[:n*(n+m)])
+	s.Rate = [MaxInputs]float64{}
+}
+
+// Row returns row i of [A B].
+func (s *System) Row(i int) []float64 {
+	w := s.N + s.M
+	return s.A[i*w : i*w+w]
+}
+
+// Derivative sets dx[:N] to the derivative of the states at z.
+func (s *System) Derivative(dx, z *Point) {
+	w := s.N + s.M
+	for i := 0; i < s.N; i++ {
+		dx[i] = dot(s.A[i*w:i*w+w], z[:w])
+	}
+}
+
+// Second sets dx[:N] to the second derivative of the states, given the first in d.
+func (s *System) Second(dx, d *Point) {
+	w := s.N + s.M
+	for i := 0; i < s.N; i++ {
+		row := s.A[i*w : i*w+w]
+		sum := dot(row[:s.N], d[:s.N])
+		for k := 0; k < s.M; k++ {
+			sum += row[s.N+k] * s.Rate[k]
+		}
+		dx[i] = sum
+	}
+}
+
+// dot is the scalar product, in two interleaved sums so that additions overlap.
+func dot(a, b []float64) float64 {
+	b = b[:len(a)]
+	var even, odd float64
+	i := 0
+	for ; i+1 < len(a); i += 2 {
+		even += float64(a[i] * b[i])
+		odd += float64(a[i+1] * b[i+1])
+	}
+	if i < len(a) {
+		even += float64(a[i] * b[i])
+	}
+	return even + odd
+}
+
+// Functional is a linear function of a point: the sum of Row[i] z[i].
+type Functional [Width]float64
+
+// At returns the functional's value at z, of which n entries are used.
+func (f *Functional) At(z *Point, n int) float64 { return dot(f[:n], z[:n]) }
+
+// Slope returns the rate of change of the functional, given the derivative of
+// the states and the rates of the inputs.
+func (f *Functional) Slope(s *System, dx *Point) float64 {
+	sum := dot(f[:s.N], dx[:s.N])
+	for k := 0; k < s.M; k++ {
+		sum += f[s.N+k] * s.Rate[k]
+	}
+	return sum
+}
