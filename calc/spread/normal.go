@@ -6,11 +6,11 @@ import "math"
 // segment per 1/32 of an octave of p, so that the step shrinks with the tail. A
 // segment is the cubic through the ends' exact values and slopes.
 //
-// Error: below 6e-9 standard deviations for p from 2^-40 to 1/2, measured against
-// math.Erfinv. It takes 3 ns; rational approximations with a logarithm in the
-// tails take ten times that.
+// Error: below 6e-9 standard deviations for p from 1e-7 to 1/2, measured against
+// an exact inversion, and below 1e-7 out to six. It needs neither logarithm nor
+// root, which rational approximations take in the tails.
 const (
-	normalOctaves  = 40
+	normalOctaves  = 32
 	normalSegments = 32
 	normalBits     = 5 // log2 of normalSegments
 )
@@ -55,26 +55,24 @@ func tailQuantile(p float64) float64 {
 	return q
 }
 
-// normalQuantile returns q with Phi(q) = p, for 2^-40 < p < 1 - 2^-40; beyond, it
+// normalQuantile returns q with Phi(q) = p, for 2^-33 < p < 1 - 2^-33; beyond, it
 // stays at the last segment's end.
 func normalQuantile(p float64) float64 {
-	tail := math.Min(p, 1-p)
-	b := math.Float64bits(tail)
+	// Without a branch on the half, which no processor predicts. The difference
+	// costs the far tail digits: 5e-17 of p, 1e-8 of q at six standard deviations.
+	d := p - 0.5
+	b := math.Float64bits(0.5 - math.Abs(d))
 	at := int(b>>(52-normalBits)) - (1023-normalOctaves-1)<<normalBits
 	if at < 0 {
 		at, b = 0, 0
 	}
-	if at >= len(normalTable) { // tail is exactly 1/2
+	if at >= len(normalTable) { // p is exactly 1/2
 		return 0
 	}
 	// the mantissa below the segment's bits is the place within the segment
-	s := float64(b<<(12+normalBits)>>(12+normalBits)) * (1.0 / (1 << (52 - normalBits)))
+	s := float64(int64(b<<(12+normalBits)>>(12+normalBits))) * (1.0 / (1 << (52 - normalBits)))
 	c := &normalTable[at]
-	q := c.a + s*(c.b+s*(c.c+s*c.d))
-	if p > 0.5 {
-		return -q
-	}
-	return q
+	return math.Copysign(c.a+s*(c.b+s*(c.c+s*c.d)), d)
 }
 
 func normalDensity(x float64) float64 { return math.Exp(-x*x/2) / math.Sqrt(2*math.Pi) }

@@ -16,9 +16,11 @@ type Coordinate struct {
 type Set struct {
 	variables   []Variable
 	coordinates []Coordinate
-	laws        []law
+	laws        []law     // one per coordinate
 	bindings    []binding // one per variable
 	residuals   []residual
+
+	uniform, triangular, normal []law // the same laws, by distribution
 }
 
 // binding computes one variable from its coordinate.
@@ -56,7 +58,7 @@ func New(variables []Variable) (*Set, error) {
 				groups[v.Group] = at
 			}
 			s.coordinates = append(s.coordinates, Coordinate{Group: v.Group, Distribution: v.Distribution})
-			s.laws = append(s.laws, newLaw(v.Distribution, below))
+			s.laws = append(s.laws, newLaw(at, v.Distribution, below))
 		}
 		s.coordinates[at].Pointers = append(s.coordinates[at].Pointers, v.Pointer)
 		s.bindings[i] = binding{at, v.Typ, [2]float64{v.Max - v.Typ, v.Typ - v.Min}, v.Max, v.Min}
@@ -68,7 +70,17 @@ func New(variables []Variable) (*Set, error) {
 		}
 		s.residuals = append(s.residuals, residual{i, len(s.coordinates), v.MatchTol})
 		s.coordinates = append(s.coordinates, Coordinate{[]string{v.Pointer}, v.Group, true, v.Distribution})
-		s.laws = append(s.laws, newLaw(v.Distribution, 0.5))
+		s.laws = append(s.laws, newLaw(len(s.laws), v.Distribution, 0.5))
+	}
+	for _, l := range s.laws {
+		switch l.kind {
+		case Uniform:
+			s.uniform = append(s.uniform, l)
+		case Triangular:
+			s.triangular = append(s.triangular, l)
+		case Normal:
+			s.normal = append(s.normal, l)
+		}
 	}
 	return s, nil
 }
@@ -88,10 +100,7 @@ func (s *Set) Moments(i int) Moments { return s.laws[i].moments() }
 // Place turns a point u of the open unit cube into coordinates z that follow the
 // distributions; both have length Len.
 func (s *Set) Place(u, z []float64) {
-	z = z[:len(s.laws)]
-	for i := range s.laws {
-		z[i] = s.laws[i].at(u[i])
-	}
+	s.place(u, z)
 }
 
 // Apply sets values, one per variable, to those at coordinates z in [-1, 1]; at

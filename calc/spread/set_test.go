@@ -163,8 +163,10 @@ func BenchmarkPlaceApply(b *testing.B) {
 			s, u, z, values := bench(b, 25, d)
 			i := 0
 			for b.Loop() {
-				i++
-				u[i%25] = math.Mod(u[i%25]+0.6180339887, 1)
+				if i++; i == 25 {
+					i = 0
+				}
+				u[i] = 1 - u[i]
 				s.Place(u, z)
 				s.Apply(z, values)
 			}
