@@ -40,4 +40,5 @@ var modelBands = [MechanismCount]Band{
 	InputPath:        {1, 1},
 	OutputPath:       {1, 1},
 	SwitchNodePath:   {1, 1},
+	SourcePath:       {1, 1},
 }

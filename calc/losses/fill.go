@@ -46,7 +46,8 @@ func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
 	perPhase += Resistive(dcr, c.inductorDC+c.inductorAC)
 	if core := &s.Inductor.Core; core.Present {
 		k, _ := core.CoreMultiplierAt(degC[Inductor])
-		sheet.Add(Item{Inductor, CoreHysteresis, k * c.core, n, core.BandLow, core.BandHigh})
+		item := sheet.add(Inductor, CoreHysteresis, k*c.core, n)
+		item.BandLow, item.BandHigh = core.BandLow, core.BandHigh
 	}
 
 	sheet.add(Controller, GateDrive, c.gateDrive, 1)
@@ -85,11 +86,14 @@ func (m *Model) fillDiode(degC float64, sheet *Sheet, n int) (inside float64) {
 	return inside
 }
 
-// add appends an item with its mechanism's band.
-func (s *Sheet) add(p Part, m Mechanism, power float64, count int) {
-	b := &modelBands[m]
-	s.Items[s.N] = Item{p, m, power, count, b.Low, b.High}
+// add appends an item with its mechanism's band. Field by field: a literal is
+// built beside the array and copied, which takes three times as long.
+func (s *Sheet) add(p Part, m Mechanism, power float64, count int) *Item {
+	i := &s.Items[s.N]
 	s.N++
+	i.Part, i.Mechanism, i.Power, i.Count = p, m, power, count
+	i.BandLow, i.BandHigh = modelBands[m].Low, modelBands[m].High
+	return i
 }
 
 // Core returns the loss density [W/m3] at a core temperature and the peak-to-peak

@@ -38,12 +38,22 @@ type currents struct {
 	output, input [switched.MaxBanks]float64 // [A2]
 }
 
+// reset clears what the phases add to.
+func (c *currents) reset() {
+	c.highSide, c.rectifier, c.channel, c.rectifierMean = 0, 0, 0, 0
+	c.inductorDC, c.inductorAC, c.inductor = 0, 0, 0
+	c.overlap, c.recovery, c.deadLow, c.deadHigh = 0, 0, 0, 0
+	c.core, c.density, c.swing = 0, 0, 0
+}
+
 // Freeze takes a circuit solution; call Begin before. Afterwards the losses
 // depend on the parts' temperatures only.
 func (m *Model) Freeze(op *Operation) {
 	s, sol, p := m.st, op.Solution, &m.point
-	m.currents = currents{duty: sol.Duty, age: op.AgeRatio, path: op.PathMean * op.PathMean, load: op.LoadRMS * op.LoadRMS}
 	c := &m.currents
+	c.reset()
+	c.duty, c.age = sol.Duty, op.AgeRatio
+	c.path, c.load = op.PathMean*op.PathMean, op.LoadRMS*op.LoadRMS
 	if op.Inductances == nil {
 		m.addLeg(&sol.Leg, op.Inductance, nil, 1)
 	} else {
@@ -58,6 +68,7 @@ func (m *Model) Freeze(op *Operation) {
 	if sol.Duty > 0 && sol.Duty < 1 {
 		c.charge, c.junction, c.gateDrive = p.outputCharge, p.junction, p.gateDrive
 	} else { // the switches rest
+		c.charge, c.junction, c.gateDrive = 0, 0, 0
 		c.overlap, c.recovery, c.deadLow, c.deadHigh = 0, 0, 0, 0
 	}
 	c.highSideFixed = c.overlap + c.charge + c.junction + c.recovery + c.deadHigh

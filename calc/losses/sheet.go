@@ -51,13 +51,14 @@ const (
 	InputPath
 	OutputPath
 	SwitchNodePath
+	SourcePath
 	MechanismCount
 )
 
 // String returns the mechanism's name on the wire.
 func (m Mechanism) String() string {
 	return [...]string{"conduction", "overlap", "output_charge", "recovery", "dead_time", "gate_drive", "leakage", "junction_charge",
-		"winding_dc", "winding_ac", "core", "series_resistance", "quiescent", "auxiliary", "input_path", "output_path", "switch_node_path"}[m]
+		"winding_dc", "winding_ac", "core", "series_resistance", "quiescent", "auxiliary", "input_path", "output_path", "switch_node_path", "source"}[m]
 }
 
 // Item is one mechanism's loss in one part of one phase.
@@ -103,4 +104,14 @@ func (s *Sheet) Of(p Part) float64 {
 		}
 	}
 	return sum
+}
+
+// PartByName returns the part with a role's name, as String writes it.
+func PartByName(name string) (Part, bool) {
+	for p := range PartCount {
+		if p.String() == name {
+			return p, true
+		}
+	}
+	return 0, false
 }

@@ -17,7 +17,7 @@ func PrepareTriangle(alpha, beta float64) Triangle {
 
 // At sets the sine coefficient k [W/m3 at 1 Hz, 1 T] and the frequency [Hz].
 func (t *Triangle) At(k, f float64) {
-	t.scale = k * t.kiOverK * math.Exp(t.alpha*math.Log(f))
+	t.scale = k * t.kiOverK * binaryPower(t.alpha*binaryLog(f))
 }
 
 // Density returns the loss density [W/m3] of a flux that rises for the fraction
@@ -40,7 +40,8 @@ func (t *Triangle) Density(swing, rise, fall float64) float64 {
 		return 0
 	}
 	a := 1 - t.alpha
-	return t.scale * math.Exp(t.beta*math.Log(swing)) * (math.Exp(a*math.Log(rise)) + math.Exp(a*math.Log(fall)))
+	swung := t.beta * binaryLog(swing)
+	return t.scale * (binaryPower(swung+a*binaryLog(rise)) + binaryPower(swung+a*binaryLog(fall)))
 }
 
 // PiecewiseDensity returns the loss density [W/m3] of any flux made of straight
