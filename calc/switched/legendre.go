@@ -1,0 +1,142 @@
+package switched
+
+// legendre[k][j] is the weight of the Legendre polynomial P_j in x^k,
+//
+//	x^k = Σ_j (2j+1) k! / (2^((k−j)/2) ((k−j)/2)! (k+j+1)!!) P_j(x),  k − j even
+//
+// (Abramowitz & Stegun, Handbook of Mathematical Functions, 1964, table 22.9 for
+// k ≤ 12; remembered form, checked by the test that resums the series.)
+//
+// Legendre polynomials are orthogonal, so the mean over an interval of the
+// product of two functions is Σ_j a_j b_j/(2j+1) without any cross terms.
+var legendre = func() (w [maxTerms + 1][maxTerms + 1]float64) {
+	// x P_j = ((j+1) P_{j+1} + j P_{j−1})/(2j+1)
+	w[0][0] = 1
+	for k := range maxTerms {
+		for j := 0; j <= k; j++ {
+			q := w[k][j] / float64(2*j+1)
+			w[k+1][j+1] += q * float64(j+1)
+			if j > 0 {
+				w[k+1][j-1] += q * float64(j)
+			}
+		}
+	}
+	return w
+}()
+
+// cell is a stretch of time short enough for a Taylor series about its middle:
+// the deviation there is Σ_k c_k x^k for x from −1 to 1.
+type cell struct {
+	h      float64 // length
+	order  int     // greatest k
+	c      [maxTerms + 1]vec
+	series [maxTerms + 1]float64 // of the quantity in question
+}
+
+// set expands the state that starts at x with slope y.
+func (ce *cell) set(nw *network, tp *topology, x, y *vec, h float64) {
+	half := 0.5 * h
+	ce.h = h
+	ce.order = terms(tp.norm*half) + 2
+	if ce.order > maxTerms {
+		ce.order = maxTerms
+	}
+	var moved, rate vec
+	tp.displace(nw, y, half, ce.order, &moved)
+	tp.rate(nw, &moved, &rate)
+	for i := range nw.n {
+		ce.c[0][i] = x[i] + moved[i]
+		ce.c[1][i] = (y[i] + rate[i]) * half
+	}
+	for k := 2; k <= ce.order; k++ {
+		tp.rate(nw, &ce.c[k-1], &ce.c[k])
+		q := half * inverse[k]
+		for i := range nw.n {
+			ce.c[k][i] *= q
+		}
+	}
+}
+
+// pick forms the series of the functional Σ w_i ξ_i.
+func (ce *cell) pick(w *vec, n int) {
+	for k := 0; k <= ce.order; k++ {
+		acc := 0.0
+		for i := range n {
+			acc += w[i] * ce.c[k][i]
+		}
+		ce.series[k] = acc
+	}
+}
+
+// value and rate evaluate the series and its derivative at x.
+func (ce *cell) value(x float64) float64 {
+	acc := 0.0
+	for k := ce.order; k >= 0; k-- {
+		acc = acc*x + ce.series[k]
+	}
+	return acc
+}
+
+func (ce *cell) rate(x float64) float64 {
+	acc := 0.0
+	for k := ce.order; k >= 1; k-- {
+		acc = acc*x + float64(k)*ce.series[k]
+	}
+	return acc
+}
+
+const cellParts = 8
+
+// extremes widens e by the extremes of the series inside the cell.
+func (ce *cell) extremes(e *extent) {
+	x0 := -1.0
+	r0 := ce.rate(x0)
+	for i := 1; i <= cellParts; i++ {
+		x1 := -1 + 2.0/cellParts*float64(i)
+		r1 := ce.rate(x1)
+		if (r0 < 0) != (r1 < 0) {
+			e.add(ce.value(ce.stationary(x0, x1, r0)))
+		}
+		x0, r0 = x1, r1
+	}
+}
+
+// stationary finds the zero of the derivative between a and b, where it has
+// opposite signs; ra is its value at a. Regula falsi with halved weights: the
+// extreme itself feels the error of its place only in second order.
+func (ce *cell) stationary(a, b, ra float64) float64 {
+	rb := ce.rate(b)
+	x := a
+	for range 40 {
+		x = b - rb*(b-a)/(rb-ra)
+		if !(x >= -1 && x <= 1) {
+			x = 0.5 * (a + b)
+		}
+		r := ce.rate(x)
+		if r == 0 {
+			break
+		}
+		if (r < 0) != (rb < 0) {
+			a, ra = b, rb
+		} else {
+			ra *= 0.5
+		}
+		if b-x < 1e-12 && x-b < 1e-12 {
+			break
+		}
+		b, rb = x, r
+	}
+	return x
+}
+
+// extent is a greatest and a least value.
+type extent struct{ least, most float64 }
+
+func (e *extent) add(v float64) {
+	if v < e.least {
+		e.least = v
+	}
+	if v > e.most {
+		e.most = v
+	}
+}

@@ -1,0 +1,167 @@
+package switched
+
+import "math"
+
+const (
+	maxRounds   = 60
+	zeroCurrent = 1e-12 // [1] of a period; the end of conduction is found to this, its effect is of second order
+)
+
+// load returns the current that the load takes at the output voltage v.
+func (c *Circuit) load(v float64) float64 { return c.Current + c.Conductance*v }
+
+// averagedOutput returns the mean output voltage of the averaged circuit in
+// continuous conduction, in which every current is its mean:
+//
+//	V + V_F + I (R_w + R_r) + (R_hs − R_r) D I = D (Vin + V_F),  I = (I_0 + G V)/N
+//
+// It is where deviations are counted from, not a result.
+func (c *Circuit) averagedOutput(duty float64) float64 {
+	leg := &c.Leg
+	if c.Legs != nil {
+		leg = &c.Legs[0]
+	}
+	r := (leg.Winding + leg.Rectifier.Slope + duty*(leg.HighSide-leg.Rectifier.Slope)) / float64(c.Phases)
+	vf := leg.Rectifier.Threshold
+	return (duty*(c.Vin+vf) - vf - r*c.Current) / (1 + r*c.Conductance)
+}
+
+// restingOutput returns the output voltage of the lossless circuit with constant
+// output voltage in discontinuous conduction, where the charge per period is
+//
+//	(I_0 + G V)/N = D² T (Vin − V)(Vin + V_F) / (2 L (V + V_F))
+//
+// a quadratic in V (derived). It only starts the search.
+func (c *Circuit) restingOutput(p int, duty float64) float64 {
+	leg := c.leg(p)
+	vf := leg.Rectifier.Threshold
+	k := 2 * leg.L / (duty * duty * c.Period * (c.Vin + vf) * float64(c.Phases))
+	a := c.Conductance * k
+	b := 1 + k*(c.Current+c.Conductance*vf)
+	q := c.Vin - k*c.Current*vf
+	return 2 * q / (b + math.Sqrt(math.Max(0, b*b+4*a*q)))
+}
+
+// restingDuty inverts restingOutput.
+func (c *Circuit) restingDuty(p int, v float64) float64 {
+	leg := c.leg(p)
+	vf := leg.Rectifier.Threshold
+	return math.Sqrt(2 * leg.L * c.load(v) * (v + vf) / (float64(c.Phases) * c.Period * (c.Vin - v) * (c.Vin + vf)))
+}
+
+// settle finds the periodic state at a duty ratio, in whatever conduction mode
+// it has. warm tells that conduct holds the ends of conduction at a duty ratio
+// nearby.
+func (s *Solver) settle(c *Circuit, duty float64, warm bool) Status {
+	blocks := false
+	resting := false
+	for p := range c.Phases {
+		if c.leg(p).Rectifier.Blocks {
+			blocks = true
+			resting = resting || warm && s.conduct[p] < 1
+		}
+	}
+	if !resting {
+		for p := range c.Phases {
+			s.conduct[p] = 1
+		}
+		v := c.averagedOutput(duty)
+		s.ref.set(&s.nw, v, c.load(v)/float64(c.Phases))
+		s.schedule(c, duty)
+		s.rounds++
+		if !s.periodic(c) {
+			return NotConverged
+		}
+		if !blocks || !s.reverses(c) {
+			return Solved
+		}
+	}
+	return s.settleResting(c, duty, resting)
+}
+
+// reverses tells whether a blocking rectifier is asked for reverse current.
+func (s *Solver) reverses(c *Circuit) bool {
+	for k := range s.count {
+		for j := range c.Phases {
+			if s.iv[k].top.pos[j] == rectifying && c.leg(j).Rectifier.Blocks && s.ref.i[j]+s.iv[k].stop[j] < 0 {
+				return true
+			}
+		}
+	}
+	return false
+}
+
+// settleResting finds the state in discontinuous conduction.
+//
+// For given ends of conduction the circuit is a fixed sequence of linear
+// intervals; the current left at such an end is dropped. The end is then moved
+// to where the current is zero by Newton's step on the exact solution, kept
+// inside a bracket. A wrong end drops or holds back a charge of second order
+// only, so the steps of several phases need no coupling and converge
+// quadratically.
+func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
+	legs := c.Phases
+	if s.cyclic {
+		legs = 1
+	}
+	var least, most [MaxPhases]float64
+	v := s.ref.v
+	for p := range legs {
+		least[p], most[p] = duty, 1
+		if !c.leg(p).Rectifier.Blocks || warm {
+			continue
+		}
+		v = c.restingOutput(p, duty)
+		vf := c.leg(p).Rectifier.Threshold
+		s.conduct[p] = math.Min(1, duty*(1+math.Max(0, c.Vin-v)/(v+vf)))
+		if !(s.conduct[p] > duty && v > 0) {
+			s.conduct[p] = 0.5 * (1 + duty)
+		}
+	}
+	for range maxRounds {
+		s.rounds++
+		s.ref.set(&s.nw, v, 0)
+		s.schedule(c, duty)
+		if !s.periodic(c) {
+			return NotConverged
+		}
+		v += s.iv[0].start[s.nw.phases]
+		moved := 0.0
+		for k := range s.count {
+			var slope vec
+			for j := range c.Phases {
+				if s.iv[k].top.pos[j] != rectifying || s.next(k, j) == rectifying || !c.leg(j).Rectifier.Blocks {
+					continue
+				}
+				p := j
+				if s.cyclic {
+					p = 0
+				}
+				left := s.iv[k].stop[j]
+				at := s.conduct[p]
+				if left >= 0 && at == 1 {
+					continue // conducts all the time
+				}
+				s.iv[k].top.slope(&s.nw, &s.iv[k].stop, &slope)
+				if left > 0 {
+					least[p] = math.Max(least[p], at)
+				} else {
+					most[p] = math.Min(most[p], at)
+				}
+				to := at - left/(slope[j]*c.Period)
+				if !(to > least[p] && to < most[p]) && left != 0 {
+					to = 0.5 * (least[p] + most[p])
+					if left > 0 && most[p] == 1 {
+						to = 1
+					}
+				}
+				s.conduct[p] = to
+				moved = math.Max(moved, math.Abs(to-at)/to)
+			}
+		}
+		if moved <= zeroCurrent {
+			return Solved
+		}
+	}
+	return NotConverged
+}

@@ -1,0 +1,160 @@
+package switched
+
+import "math"
+
+const (
+	maxSearch    = 60
+	outputReach  = 1e-13 // [1] regulated mean output: sought deviation from its target
+	outputAccept = 1e-11 // [1] accepted one, when rounding stops the search
+)
+
+// FixedDuty solves the circuit with the high side on for the fraction duty of
+// every period.
+func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
+	s.rounds = 0
+	s.prepare(c)
+	s.finish(c, s.settle(c, duty, false), sol)
+}
+
+// Regulated solves the circuit at the duty ratio, between dutyLeast and
+// dutyGreatest, that makes the mean output voltage vout.
+func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) {
+	s.rounds = 0
+	s.prepare(c)
+	s.finish(c, s.regulate(c, vout, dutyLeast, dutyGreatest), sol)
+}
+
+// finish measures the state and checks the answer itself.
+func (s *Solver) finish(c *Circuit, status Status, sol *Solution) {
+	*sol = Solution{Status: status, Iterations: s.rounds, Duty: s.duty}
+	if status == NotConverged {
+		return
+	}
+	s.measure(c, sol)
+	switch {
+	case !(sol.EnergyBalance <= 1e-6 && sol.OutputMax < math.MaxFloat64 && sol.Leg.Peak < math.MaxFloat64):
+		sol.Status = NotConverged
+	case sol.OutputMean <= 0:
+		sol.Status = NoOperatingPoint
+	}
+}
+
+// regulate searches the duty ratio. The mean output rises with it. The first
+// guess is the averaged circuit's, the next follows the averaged slope, the rest
+// the secant, all inside a bracket.
+func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
+	lo, hi := least, greatest
+	var atLeast, atGreatest bool
+	d, slope := s.firstDuty(c, vout)
+	d = math.Min(math.Max(d, lo), hi)
+	var before, wasD float64
+	warm := false
+	for i := range maxSearch {
+		status := s.settle(c, d, warm)
+		if status != Solved {
+			return status
+		}
+		warm = true
+		e := s.meanOutput(c) - vout
+		if math.Abs(e) <= outputReach*vout {
+			return Solved
+		}
+		if i > 0 && d != wasD {
+			if q := (e - before) / (d - wasD); q > 0 {
+				slope = q
+			}
+		}
+		if e < 0 {
+			if d >= greatest {
+				return DropOut
+			}
+			lo = d
+			atLeast = true
+		} else {
+			if d <= least {
+				return TooShortOnTime
+			}
+			hi = d
+			atGreatest = true
+		}
+		next := d - e/slope
+		switch {
+		case next == d:
+			return s.near(e, vout)
+		case next <= lo && e > 0, next >= hi && e < 0:
+			// the step leaves the bracket: try the end of the range, or halve
+			switch {
+			case e > 0 && !atLeast:
+				next = lo
+			case e < 0 && !atGreatest:
+				next = hi
+			default:
+				next = 0.5 * (lo + hi)
+			}
+		}
+		if hi-lo <= 4e-16*hi {
+			return s.near(e, vout)
+		}
+		before, wasD = e, d
+		d = next
+	}
+	return NotConverged
+}
+
+func (s *Solver) near(e, vout float64) Status {
+	if math.Abs(e) <= outputAccept*vout {
+		return Solved
+	}
+	return NotConverged
+}
+
+// firstDuty returns a duty ratio to start with and the slope dV/dD there.
+func (s *Solver) firstDuty(c *Circuit, vout float64) (d, slope float64) {
+	leg := c.leg(0)
+	vf := leg.Rectifier.Threshold
+	i := c.load(vout) / float64(c.Phases)
+	d = (vout + vf + i*(leg.Winding+leg.Rectifier.Slope)) / (c.Vin + vf - (leg.HighSide-leg.Rectifier.Slope)*i)
+	slope = (c.Vin + vf) / (1 + c.Conductance*(leg.Winding+leg.Rectifier.Slope)/float64(c.Phases))
+	if leg.Rectifier.Blocks && vout < c.Vin {
+		swing := (c.Vin - vout) * d * c.Period / leg.L
+		if i < 0.5*swing {
+			d = s.minDuty(c, vout, d)
+			// from I = D² T (Vin−V)(Vin+V_F)/(2L(V+V_F)): 2 dD/D = dV [1/(Vin−V) + 1/(V+V_F) + G/I]
+			slope = 2 / (d * (1/(c.Vin-vout) + 1/(vout+vf) + c.Conductance/math.Max(c.load(vout), 1e-300)))
+		}
+	}
+	return d, slope
+}
+
+func (s *Solver) minDuty(c *Circuit, vout, d float64) float64 {
+	return math.Min(d, c.restingDuty(0, vout))
+}
+
+// meanOutput returns the mean node voltage of the periodic state at hand.
+func (s *Solver) meanOutput(c *Circuit) float64 {
+	nw, n := &s.nw, s.nw.n
+	sum := 0.0
+	for k := range s.count {
+		v := &s.iv[k]
+		ld := s.rungs(k)
+		var y, eq vec
+		v.top.slope(nw, &v.start, &y)
+		ce := &s.work
+		ce.set(nw, &v.top, &v.start, &y, ld.h[0])
+		var q vec
+		for i := range n {
+			for j := 0; j <= ce.order; j += 2 {
+				q[i] += ce.c[j][i] * inverse[j+1]
+			}
+			q[i] *= ce.h
+		}
+		for l := range ld.levels {
+			apply(&ld.f[l], &q, &eq, n)
+			for i := range n {
+				q[i] += q[i] + eq[i] + ld.h[l]*ld.d[l][i]
+			}
+		}
+		sum += nw.node(&q)
+	}
+	return s.ref.node + sum/(s.horizon*c.Period)
+}
