@@ -1,0 +1,42 @@
+package rules
+
+import (
+	"railproof/calc/evaluate"
+	"railproof/calc/quantity"
+	"railproof/calc/spread"
+	"railproof/calc/stage"
+)
+
+// Worst is the extreme value of one quantity and where it was found.
+type Worst struct {
+	Value  float64  // [any] in the quantity's unit
+	Banded bool     // Low and High are given
+	Low    float64  // [any] with the loss models at the lower end of their bands
+	High   float64  // [any] with the loss models at the upper end of their bands
+	Corner int      // the caller's number of the corner
+	Beyond []string // pointers of tables used beyond their ends there
+}
+
+// Extreme is the least and the greatest value of one quantity.
+type Extreme struct{ Least, Greatest Worst }
+
+// PointStatus is how the evaluation at one corner ended.
+type PointStatus struct {
+	Status evaluate.Status
+	Corner int
+}
+
+// Case is all that rules may look at.
+type Case struct {
+	StageAt       string // pointer of the stage in the request, "/stage"
+	Stage         *stage.Stage
+	Spreads       []spread.Variable
+	Assumed       []stage.Assumed // numbers nobody gave: to a rule they are missing
+	RequirementAt string          // pointer of the requirement, "/requirement"
+	Requirement   *stage.Requirement
+	Nominal       *quantity.Vector // at typical values and conditions
+	NominalUses   []string         // pointers of tables used beyond their ends there
+	Extremes      map[quantity.ID]Extreme
+	FullLoad      map[quantity.ID]Extreme // the same with the load at its greatest
+	Statuses      []PointStatus           // of every evaluation behind the extremes; one per distinct status is enough
+}

@@ -1,0 +1,222 @@
+package rules
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"railproof/calc/evaluate"
+)
+
+// RuleOperatingStatus is this package's own rule: the stage must work at every
+// point that the worst values were taken from.
+const RuleOperatingStatus = "engine/operating-status"
+
+// Report is the outcome of a check.
+type Report struct {
+	Verdict       Overall
+	Findings      []Finding
+	Overrides     []Override // what derived packs changed
+	NotApplicable []string   // rules that found no place to look at
+}
+
+// Check applies the packs' rules to a case. today is the date against which
+// waivers expire.
+//
+// Any failure of an error or a warning fails the whole; otherwise any error not
+// evaluated, or nothing evaluated at all, leaves it incomplete; otherwise it
+// passes.
+func Check(c *Case, packs []*Pack, waivers []Waiver, today Date) Report {
+	p := prepare(c)
+	r := Report{Findings: p.statuses()}
+	for _, pack := range packs {
+		r.Overrides = append(r.Overrides, pack.Overrides...)
+		for i := range pack.Rules {
+			rule := &pack.Rules[i]
+			found := p.apply(pack, rule)
+			if len(found) == 0 {
+				r.NotApplicable = append(r.NotApplicable, rule.ID)
+			}
+			r.Findings = append(r.Findings, found...)
+		}
+	}
+	r.Findings = waive(r.Findings, waivers, today)
+	r.Verdict = verdict(r.Findings)
+	return r
+}
+
+func verdict(findings []Finding) Overall {
+	failed, gap, evaluated := false, false, false
+	for i := range findings {
+		f := &findings[i]
+		switch f.Verdict {
+		case Fail:
+			failed = failed || f.Severity != Note
+		case NotEvaluated:
+			gap = gap || f.Severity == Error
+		case Pass, Waived:
+			evaluated = true
+		}
+	}
+	switch {
+	case failed:
+		return Failed
+	case gap || !evaluated:
+		return Incomplete
+	}
+	return Passed
+}
+
+// statuses returns the findings about points at which the stage does not work.
+func (p *prepared) statuses() []Finding {
+	var out []Finding
+	seen := map[evaluate.Status]bool{}
+	for _, s := range p.c.Statuses {
+		if s.Status.OK() || seen[s.Status] {
+			continue
+		}
+		seen[s.Status] = true
+		f := blank()
+		f.Rule, f.Title, f.Pointer = RuleOperatingStatus, "The stage works at every corner", p.c.StageAt
+		f.Corners = []int{s.Corner}
+		f.Basis = "this service's own rule: a point that cannot be evaluated is no pass"
+		f.Detail = fmt.Sprintf("The stage is not in regular operation at a corner: %s.", s.Status)
+		switch s.Status {
+		case evaluate.NotRun, evaluate.NotConverged:
+			f.Missing = []string{"an answer at this corner"}
+		default:
+			f.Verdict = Fail
+		}
+		out = append(out, f)
+	}
+	return out
+}
+
+// apply returns one finding for every place that a rule covers.
+func (p *prepared) apply(pack *Pack, rule *Rule) []Finding {
+	var out []Finding
+	for i := range rule.Bodies {
+		body := &rule.Bodies[i]
+		for place := range body.Scope.places(p.c.Stage) {
+			if f, applies := p.judge(pack, rule, body, place); applies {
+				out = append(out, f)
+			}
+		}
+	}
+	return out
+}
+
+func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding, bool) {
+	facts := p.at(body.Scope, place, pack.Parameters)
+	part := body.Scope.part(place)
+	f := blank()
+	f.Rule, f.Title, f.Severity, f.Relation, f.Unit = rule.ID, rule.Title, rule.Severity, rule.Relation, rule.Unit
+	f.Basis, f.Pack, f.Edition, f.Provenance, f.Origin = rule.Basis, pack.ID, pack.Edition, pack.Provenance, rule.Origin
+	f.Pointer = join(p.c.StageAt, part, rule.At)
+
+	gate := &Look{facts: facts}
+	if body.When != nil {
+		applies := body.When(gate)
+		if len(gate.missing) > 0 || gate.problem != "" {
+			return p.unevaluated(f, gate, part), true
+		}
+		if !applies {
+			return f, false
+		}
+	}
+	look := &Look{facts: facts, beyond: gate.beyond}
+	for _, need := range rule.Needs {
+		if !look.Has(need) {
+			look.missing = append(look.missing, need)
+		}
+	}
+	f.Value = body.Value(look)
+	f.Corners = slices.Clone(look.corners)
+	f.Limit = body.Limit(look)
+	if len(look.missing) > 0 || look.problem != "" || math.IsNaN(f.Value) || math.IsNaN(f.Limit) {
+		return p.unevaluated(f, look, part), true
+	}
+	f.Margin = margin(rule.Relation, f.Value, f.Limit, rule.Unit)
+	pass := meets(rule.Relation, f.Value, f.Limit)
+	if look.banded {
+		p.band(&f, body, facts, pass)
+	}
+	if len(look.beyond) > 0 {
+		return p.unevaluated(f, look, part), true
+	}
+	f.Verdict = Fail
+	if pass {
+		f.Verdict = Pass
+	}
+	if part == "" {
+		part = "stage"
+	}
+	f.Detail = rule.Message.fill(&f, part)
+	if f.WithinBand {
+		f.Detail += fmt.Sprintf(" The loss models leave it between %s and %s %s, on both sides of the limit.", figure(f.ValueLow), figure(f.ValueHigh), printed(f.Unit))
+	}
+	return f, true
+}
+
+// band computes the value at both ends of the model bands.
+func (p *prepared) band(f *Finding, body *Body, facts *facts, pass bool) {
+	low := &Look{facts: facts, side: sideLow}
+	high := &Look{facts: facts, side: sideHigh}
+	a, b := body.Value(low), body.Value(high)
+	la, lb := body.Limit(low), body.Limit(high)
+	f.ValueLow, f.ValueHigh = math.Min(a, b), math.Max(a, b)
+	f.WithinBand = meets(f.Relation, a, la) != pass || meets(f.Relation, b, lb) != pass
+}
+
+// unevaluated says why a rule could not be decided.
+func (p *prepared) unevaluated(f Finding, l *Look, part string) Finding {
+	f.Verdict = NotEvaluated
+	f.Beyond = l.beyond
+	for _, name := range l.missing {
+		f.Missing = append(f.Missing, p.place(name, part))
+	}
+	var why []string
+	if len(f.Missing) > 0 {
+		why = append(why, "missing: "+strings.Join(f.Missing, ", "))
+	}
+	if len(l.beyond) > 0 {
+		why = append(why, "rests on a table beyond its ends: "+strings.Join(l.beyond, ", "))
+	}
+	if l.problem != "" {
+		why = append(why, l.problem)
+	}
+	if len(why) == 0 {
+		why = append(why, "the value or its limit is not a number")
+	}
+	f.Detail = "Not evaluated; " + strings.Join(why, "; ") + "."
+	return f
+}
+
+// place returns where a missing fact would be given: the pointer of a field, or
+// the name of a quantity.
+func (p *prepared) place(name, part string) string {
+	root, rest, _ := strings.Cut(name, ".")
+	path := strings.ReplaceAll(rest, ".", "/")
+	switch root + "." {
+	case rootPart, rootPartLeast, rootPartGreatest:
+		return join(p.c.StageAt, part, path)
+	case rootStage, rootStageLeast, rootStageGreatest:
+		return join(p.c.StageAt, path)
+	case rootRequirement:
+		return join(p.c.RequirementAt, path)
+	case rootParameter:
+		return name
+	}
+	return rest
+}
+
+// join builds a pointer of a prefix and tails, any of which may be empty.
+func join(at string, tails ...string) string {
+	for _, t := range tails {
+		if t != "" {
+			at += "/" + t
+		}
+	}
+	return at
+}
