@@ -30,7 +30,7 @@ func terms(theta float64) int {
 
 // square is a matrix with as many rows as the circuit has states, row by row
 // without gaps.
-type square [maxStates * maxStates]float64
+type square [MaxStates * MaxStates]float64
 
 // ladder holds the interval map over h, 2h, 4h ... up to the whole interval:
 //
@@ -67,7 +67,7 @@ func (ld *ladder) build(nw *network, tp *topology, t float64) bool {
 	f := &ld.f[0]
 	var unit, rate, column vec
 	for j := range n {
-		if j < nw.phases && tp.pos[j] == resting {
+		if j < nw.phases && tp.pos[j] == Resting {
 			for i := range n {
 				f[i*n+j] = 0
 			}
@@ -167,7 +167,7 @@ func multiply(dst, a, b *square, n int) {
 // solve overwrites x with the solution of a x = b and a with its elimination.
 // Rows are scaled by their largest entry before a pivot is chosen, for currents
 // and voltages have different units. It reports false for a singular matrix.
-func solve(a *square, pivot *[maxStates]int, x *vec, n int) bool {
+func solve(a *square, pivot *[MaxStates]int, x *vec, n int) bool {
 	var scale vec
 	for i := range n {
 		big := 0.0
@@ -210,7 +210,7 @@ func solve(a *square, pivot *[maxStates]int, x *vec, n int) bool {
 }
 
 // substitute solves with an elimination left by solve.
-func substitute(a *square, pivot *[maxStates]int, x *vec, n int) {
+func substitute(a *square, pivot *[MaxStates]int, x *vec, n int) {
 	for k := range n {
 		at := pivot[k]
 		x[k], x[at] = x[at], x[k]

@@ -19,7 +19,7 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 	into[0] = out
 	count := 1
 	for j := range nw.phases {
-		if v.top.pos[j] == resting {
+		if v.top.pos[j] == Resting {
 			continue
 		}
 		watch[count][j] = 1

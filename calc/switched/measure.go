@@ -137,23 +137,23 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 		var lit tally
 		for j := range nw.phases {
 			lt := &legs[s.legOf(j)]
-			if v.top.pos[j] == resting {
+			if v.top.pos[j] == Resting {
 				lt.range_.add(0)
 				continue
 			}
 			i := s.ref.i[j]
 			q := m.q[j]
 			part := tally{i*v.t + q, i*i*v.t + 2*i*q + m.x[j*n+j]}
-			if v.top.pos[j] == high {
+			if v.top.pos[j] == High {
 				lt.high.charge += part.charge
 				lt.high.square += part.square
 				lit.charge += part.charge
 				for l := range nw.phases {
-					if v.top.pos[l] == high {
+					if v.top.pos[l] == High {
 						lit.square += i*s.ref.i[l]*v.t + s.ref.i[l]*q + i*m.q[l] + m.x[j*n+l]
 					}
 				}
-				if s.next(k, j) != high {
+				if s.next(k, j) != High {
 					lt.cut = i + v.stop[j]
 				}
 			} else {
@@ -161,7 +161,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 				lt.rect.square += part.square
 				lt.conduct += v.t
 			}
-			if s.next(k, j) == high && (v.top.pos[j] != high || s.cyclic && j == nw.phases-1) {
+			if s.next(k, j) == High && (v.top.pos[j] != High || s.cyclic && j == nw.phases-1) {
 				lt.turnOn = i + v.stop[j]
 			}
 		}

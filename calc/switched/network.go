@@ -2,19 +2,23 @@ package switched
 
 import "math"
 
-const maxStates = MaxPhases + MaxBanks
+// MaxStates is the greatest number of states of a circuit.
+const MaxStates = MaxPhases + MaxBanks
 
-// vec is a state or its rate: one entry per phase current, then one per bank
-// voltage. Entries beyond the circuit's size are not used.
-type vec [maxStates]float64
+// State holds one current per phase [A], then one voltage per bank [V], without
+// gap; or the rate of these [A/s, V/s], a deviation, or weights of a sum over
+// them. Entries beyond the circuit's size are not used.
+type State [MaxStates]float64
 
-// position tells where the switches of one phase stand.
-type position uint8
+type vec = State
+
+// Position tells where the switches of one phase stand.
+type Position uint8
 
 const (
-	resting    position = iota // both open, no current
-	high                       // high side on
-	rectifying                 // rectifier conducts
+	Resting    Position = iota // both open, no current
+	High                       // high side on
+	Rectifying                 // rectifier conducts
 )
 
 // network is what no switch touches: the output node and its banks.
@@ -109,7 +113,7 @@ func (r *reference) set(nw *network, v, perPhase float64) {
 //
 // for each phase that conducts. A phase at rest has no row.
 type topology struct {
-	pos  [MaxPhases]position
+	pos  [MaxPhases]Position
 	r    [MaxPhases]float64 // resistance in the conducting path
 	invL [MaxPhases]float64 // 0 at rest
 	b    vec
@@ -122,12 +126,12 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 		leg := c.leg(p)
 		var u float64
 		switch tp.pos[p] {
-		case resting:
+		case Resting:
 			tp.r[p], tp.invL[p], tp.b[p] = 0, 0, 0
 			continue
-		case high:
+		case High:
 			u, tp.r[p] = c.Vin, leg.Winding+leg.HighSide
-		case rectifying:
+		case Rectifying:
 			u, tp.r[p] = -leg.Rectifier.Threshold, leg.Winding+leg.Rectifier.Slope
 		}
 		tp.invL[p] = 1 / leg.L

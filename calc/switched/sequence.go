@@ -31,7 +31,7 @@ type Solver struct {
 	conduct [MaxPhases]float64 // [1] end of conduction in each leg's own cycle, 1 in continuous conduction
 	ladders [ladderCount]ladder
 	total   square
-	pivot   [maxStates]int
+	pivot   [MaxStates]int
 	closure float64 // [1] relative closure of one more period
 	rounds  int
 	work    cell
@@ -120,11 +120,11 @@ func (s *Solver) schedule(c *Circuit, duty float64) {
 			angle -= math.Floor(angle)
 			switch {
 			case angle < duty:
-				v.top.pos[j] = high
+				v.top.pos[j] = High
 			case angle < s.conduction(j):
-				v.top.pos[j] = rectifying
+				v.top.pos[j] = Rectifying
 			default:
-				v.top.pos[j] = resting
+				v.top.pos[j] = Resting
 			}
 		}
 	}
@@ -152,7 +152,7 @@ func (s *Solver) periodic(c *Circuit) bool {
 		copy(v.f[:n*n], ld.f[ld.levels][:n*n])
 		v.d = ld.d[ld.levels]
 		for p := range nw.phases {
-			if v.top.pos[p] == resting {
+			if v.top.pos[p] == Resting {
 				for j := range n {
 					f[p*n+j] = 0
 				}
@@ -230,7 +230,7 @@ func (s *Solver) traverse(x *vec) vec {
 	for k := range s.count {
 		v := &s.iv[k]
 		for p := range s.nw.phases {
-			if v.top.pos[p] == resting {
+			if v.top.pos[p] == Resting {
 				sum[p] -= s.ref.i[p] + at[p]
 				at[p] = -s.ref.i[p]
 			}
@@ -256,7 +256,7 @@ func (s *Solver) traverse(x *vec) vec {
 }
 
 // next returns the position that slot j takes after interval k.
-func (s *Solver) next(k, j int) position {
+func (s *Solver) next(k, j int) Position {
 	if k+1 < s.count {
 		return s.iv[k+1].top.pos[j]
 	}
