@@ -64,7 +64,8 @@ func (l *Inductor) InductanceOver(valley, peak float64) float64 {
 }
 
 const (
-	swingSteps     = 24    // [1] Newton takes 3 to 5; the bound ends a step into a kink
+	swingSteps     = 8     // [1] plain Newton takes 3 to 5 on a curve without sharp corners
+	bracketSteps   = 80    // [1] bisection alone ends within 60
 	swingTolerance = 1e-13 // [1] of the current swing, a few roundings
 )
 
@@ -85,20 +86,82 @@ func (l *Inductor) SwingAbout(mean, flux float64) (valley, peak float64) {
 	if l.InductanceAtCurrent.Empty() {
 		return valley, peak
 	}
+	if v, p, ok := l.swingInSegment(mean, flux); ok {
+		return v, p
+	}
 	for range swingSteps {
 		z, f := l.moments(valley, peak)
 		r0, r1 := flux-z, mean*flux-f
 		w := peak - valley
 		dp := (r1 - valley*r0) / (l.IncrementalAt(peak) * w)
 		dv := (r1 - peak*r0) / (l.IncrementalAt(valley) * w)
-		// A step that would cross valley and peak is halved until it does not.
-		for dp-dv <= -0.9*w {
-			dp, dv = dp/2, dv/2
-		}
-		valley, peak = valley+dv, peak+dp
-		if math.Abs(dp)+math.Abs(dv) <= swingTolerance*w {
+		if !(dp-dv > -0.9*w) {
 			break
 		}
+		valley, peak = valley+dv, peak+dp
+		if math.Abs(dp)+math.Abs(dv) <= swingTolerance*(peak-valley) {
+			return valley, peak
+		}
+	}
+	return l.swingBracketed(mean, flux)
+}
+
+// swingInSegment solves the same in closed form but for one small correction,
+// where the whole swing lies in one segment of the table.
+//
+//	Linc = a + b i:  w = Δλ/L(u),  u = I − b w²/(12 L(u))
+//
+// with u the middle and w the width of the swing.
+func (l *Inductor) swingInSegment(mean, flux float64) (valley, peak float64, ok bool) {
+	t := &l.InductanceAtCurrent
+	i, n := 1, len(t.X)
+	for i < n-1 && mean > t.X[i] {
+		i++
+	}
+	if n < 2 {
+		return 0, 0, false
+	}
+	b := l.Inductance * (t.Y[i] - t.Y[i-1]) / (t.X[i] - t.X[i-1])
+	at := l.Inductance*t.Y[i-1] - b*t.X[i-1]
+	u := mean
+	for range swingSteps {
+		inverse := 1 / (at + b*u)
+		w := flux * inverse
+		next := mean - b*w*w*inverse/12
+		moved := math.Abs(next - u)
+		u = next
+		if moved <= swingTolerance*w {
+			valley, peak = u-w/2, u+w/2
+			return valley, peak, valley >= t.X[i-1] && peak <= t.X[i]
+		}
+	}
+	return 0, 0, false
+}
+
+// swingBracketed solves the same for the flux linkage half-way between valley and
+// peak, of which the mean current is a rising function. It serves curves so sharp
+// that Newton cycles.
+func (l *Inductor) swingBracketed(mean, flux float64) (valley, peak float64) {
+	low := l.FluxLinkage(mean) - flux/2
+	high := low + flux
+	centre := (low + high) / 2
+	for range bracketSteps {
+		valley, peak = l.CurrentAtFlux(centre-flux/2), l.CurrentAtFlux(centre+flux/2)
+		_, f := l.moments(valley, peak)
+		excess := f/flux - mean
+		if excess > 0 {
+			high = centre
+		} else {
+			low = centre
+		}
+		next := centre - excess*flux/(peak-valley)
+		if !(next > low && next < high) {
+			next = (low + high) / 2
+		}
+		if math.Abs(next-centre) <= swingTolerance*flux {
+			break
+		}
+		centre = next
 	}
 	return valley, peak
 }
@@ -112,13 +175,33 @@ func (l *Inductor) CurrentAtFlux(flux float64) float64 {
 	if l.InductanceAtCurrent.Empty() {
 		return math.Copysign(i, flux)
 	}
-	for range swingSteps {
+	low, high := 0.0, i/l.leastMultiplier()
+	for range bracketSteps {
 		s, _ := biasMoments(&l.InductanceAtCurrent, 0, i)
-		d := (target - l.Inductance*s) / l.IncrementalAt(i)
-		i = max(i+d, i/2)
-		if math.Abs(d) <= swingTolerance*i {
+		lack := target - l.Inductance*s
+		if lack > 0 {
+			low = i
+		} else {
+			high = i
+		}
+		next := i + lack/l.IncrementalAt(i)
+		if !(next >= low && next <= high) {
+			next = (low + high) / 2
+		}
+		done := math.Abs(next-i) <= swingTolerance*next
+		i = next
+		if done {
 			break
 		}
 	}
 	return math.Copysign(i, flux)
+}
+
+// leastMultiplier bounds the multiplier at any current from below.
+func (l *Inductor) leastMultiplier() float64 {
+	least := MultiplierFloor
+	for _, y := range l.InductanceAtCurrent.Y {
+		least = min(least, y)
+	}
+	return least
 }

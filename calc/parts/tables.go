@@ -46,49 +46,66 @@ func overBias(t *numeric.Table, x float64) float64 {
 
 // biasMoments returns the integrals of m(x) and of x m(x) from a to b, where
 // 0 <= a <= b and m is overBias. Both are exact: m is linear between the table's
-// points and the point where the floor begins.
+// points, and beyond them up to where the floor begins.
 func biasMoments(t *numeric.Table, a, b float64) (zeroth, first float64) {
 	n := len(t.X)
-	at, y := a, overBias(t, a)
-	for i := 0; i <= n && at < b; i++ {
-		next := b
-		if i < n {
-			next = min(b, t.X[i])
-		} else if floor := floorBegins(t); floor < b {
-			next = max(at, floor)
-		}
-		if next <= at {
-			continue
-		}
-		at, y, zeroth, first = addPiece(t, at, y, next, zeroth, first)
+	if n == 0 {
+		return constantPiece(1, a, b)
 	}
-	if at < b {
-		_, _, zeroth, first = addPiece(t, at, y, b, zeroth, first)
+	if n == 1 || b <= t.X[0] {
+		return constantPiece(t.Y[0], a, b)
+	}
+	if a < t.X[0] {
+		zeroth, first = constantPiece(t.Y[0], a, t.X[0])
+		a = t.X[0]
+	}
+	i := 1
+	for ; i < n && a < b; i++ {
+		if a < t.X[i] {
+			q := min(b, t.X[i])
+			z, f := linearPiece(t, i, a, q)
+			zeroth, first, a = zeroth+z, first+f, q
+		}
+	}
+	if a < b {
+		z, f := tailMoments(t, a, b)
+		zeroth, first = zeroth+z, first+f
 	}
 	return zeroth, first
 }
 
-// addPiece adds the piece [p, q] on which m is linear; Simpson's rule is exact
-// for the quadratic x m(x).
-func addPiece(t *numeric.Table, p, mp, q, zeroth, first float64) (at, y, z, f float64) {
-	mq := overBias(t, q)
-	w := q - p
-	zeroth += w * (mp + mq) / 2
-	first += w * (p*mp + (p+q)*(mp+mq) + q*mq) / 6
-	return q, mq, zeroth, first
+// tailMoments is biasMoments beyond the table's end: the last slope, then the
+// floor.
+func tailMoments(t *numeric.Table, a, b float64) (zeroth, first float64) {
+	n := len(t.X)
+	last := t.Y[n-1]
+	floor := min(MultiplierFloor, last)
+	q := b
+	if slope := (last - t.Y[n-2]) / (t.X[n-1] - t.X[n-2]); slope < 0 {
+		q = min(b, t.X[n-1]+(floor-last)/slope)
+	}
+	if a < q {
+		zeroth, first = linearPiece(t, n-1, a, q)
+		a = q
+	}
+	if a < b {
+		z, f := constantPiece(floor, a, b)
+		zeroth, first = zeroth+z, first+f
+	}
+	return zeroth, first
 }
 
-// floorBegins returns the x beyond the table's end at which its continuation
-// meets the floor; far beyond any value when it does not.
-func floorBegins(t *numeric.Table) float64 {
-	const never = 1e300
-	n := len(t.X)
-	if n < 2 {
-		return never
-	}
-	slope := (t.Y[n-1] - t.Y[n-2]) / (t.X[n-1] - t.X[n-2])
-	if slope >= 0 || t.Y[n-1] <= MultiplierFloor {
-		return never
-	}
-	return t.X[n-1] + (MultiplierFloor-t.Y[n-1])/slope
+func constantPiece(m, p, q float64) (zeroth, first float64) {
+	zeroth = m * (q - p)
+	return zeroth, zeroth * (p + q) / 2
+}
+
+// linearPiece integrates segment i of the table from p to q; Simpson's rule is
+// exact for the quadratic x m(x).
+func linearPiece(t *numeric.Table, i int, p, q float64) (zeroth, first float64) {
+	slope := (t.Y[i] - t.Y[i-1]) / (t.X[i] - t.X[i-1])
+	mp := t.Y[i-1] + slope*(p-t.X[i-1])
+	mq := t.Y[i-1] + slope*(q-t.X[i-1])
+	w := q - p
+	return w * (mp + mq) / 2, w * (p*mp + (p+q)*(mp+mq) + q*mq) / 6
 }
