@@ -34,6 +34,7 @@ type Solver struct {
 	pivot   [MaxStates]int
 	closure float64 // [1] relative closure of one more period
 	rounds  int
+	fast    oneBank
 	work    cell
 	moments moments
 }

@@ -11,6 +11,9 @@ const (
 // FixedDuty solves the circuit with the high side on for the fraction duty of
 // every period.
 func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
+	if s.fast.takes(c) && s.fast.fixed(c, duty, sol) {
+		return
+	}
 	s.rounds = 0
 	s.prepare(c)
 	s.finish(c, s.settle(c, duty, false), sol)
@@ -19,6 +22,9 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 // Regulated solves the circuit at the duty ratio, between dutyLeast and
 // dutyGreatest, that makes the mean output voltage vout.
 func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) {
+	if s.fast.takes(c) && s.fast.regulated(c, vout, dutyLeast, dutyGreatest, sol) {
+		return
+	}
 	s.rounds = 0
 	s.prepare(c)
 	s.finish(c, s.regulate(c, vout, dutyLeast, dutyGreatest), sol)
