@@ -1,0 +1,123 @@
+package loop
+
+import (
+	"math"
+
+	"railproof/calc/switched"
+)
+
+// currentMode is the averaged modulator of peak current mode,
+//
+//	d = Fm (vc - Ri He i + kf vin + kr vo)
+//
+// In continuous conduction, with Sn and Sf the sensed slopes and Ts the period,
+//
+//	Fm = 1/((Sn + Se) Ts), He = 1 - s Ts/2 + s²/(π fs)²
+//	kf = -(D Ts Ri/L)(1 - D/2), kr = Ts Ri/(2 L)
+//
+// In discontinuous conduction the comparator sees the peak current, which starts
+// from rest every period: no sampling, Fm = 1/(Ri dIpk/dd + Se Ts),
+// kf = -Ri dIpk/dvin, kr = -Ri dIpk/dvo.
+//
+// Valid up to half the switching frequency. Source: R. B. Ridley, "A new,
+// continuous-time model for current-mode control", IEEE Trans. Power Electron.
+// 6(2), 1991 (remembered, unverified); checked against the sampled-data model.
+type currentMode struct {
+	fm, sense, kf, kr float64
+	period            float64
+	sampled           bool
+}
+
+func (m *currentMode) set(a *Averaged) {
+	p := &a.plant
+	ri, se, ts := p.Modulator.Sense, p.Modulator.Slope, p.Circuit.Period
+	m.period = ts
+	if p.Mode == switched.Discontinuous {
+		r := &a.resting
+		m.fm = 1 / (ri*r.peakDuty + se*ts)
+		m.kf, m.kr = -ri*r.peakLine, -ri*r.peakOutput
+		return
+	}
+	m.sampled, m.sense = true, ri
+	sn := ri * (p.Circuit.Vin - a.current*(a.leg.HighSide+a.leg.Winding) - p.Output) / a.leg.L
+	m.fm = 1 / ((sn + se) * ts)
+	m.kf = -p.Duty * ts * ri / a.leg.L * (1 - p.Duty/2)
+	m.kr = ts * ri / (2 * a.leg.L)
+}
+
+// close fills t with the transfer functions of the stage with its current loop.
+func (m *currentMode) close(a *Averaged, s, lag complex128, g *open, t *Transfers) {
+	fm := complex(m.fm, 0) * lag
+	ri := complex(0, 0)
+	if m.sampled {
+		wn := math.Pi / m.period
+		ri = complex(m.sense, 0) * (1 - s*complex(m.period/2, 0) + s*s/complex(wn*wn, 0))
+	}
+	kf, kr := complex(m.kf, 0), complex(m.kr, 0)
+	inner := 1 + fm*(ri*g.dutyCurrent-kr*g.duty)
+	t.Duty = complex(math.NaN(), math.NaN())
+	t.Control = fm * g.duty / inner
+	t.Line += g.duty * fm * (-ri*g.lineCurrent + kf + kr*g.line) / inner
+	// One ampere more load lowers the output by the impedance.
+	t.Impedance += g.duty * fm * (ri*g.loadCurrent + kr*g.impedance) / inner
+}
+
+// CurrentLoop describes the inner loop of peak current mode in the usual terms.
+type CurrentLoop struct {
+	RiseSlope  float64 // [V/s] Sn, sensed
+	FallSlope  float64 // [V/s] Sf, sensed
+	RampRatio  float64 // [1] mc = 1 + Se/Sn
+	Eigenvalue float64 // [1] -(Sf - Se)/(Sn + Se): what is left of a disturbance after one period
+	Quality    float64 // [1] Qp = 1/(π(mc D' - 1/2)); not positive: subharmonic oscillation
+	Modulator  float64 // [1/V] Fm = 1/((Sn + Se) Ts)
+	LeastSlope float64 // [V/s] slope compensation at which it becomes stable, (Sf - Sn)/2 or 0
+	DeadBeat   float64 // [V/s] slope at which a disturbance is gone after one period, Sf
+	Gain       float64 // [1] control to output at low frequency
+	Pole       float64 // [Hz] load pole
+	Zero       float64 // [Hz] of the series resistance
+	HalfRate   float64 // [Hz] fn = fs/2
+}
+
+// Stable reports whether a disturbance of the inductor current dies out.
+func (c CurrentLoop) Stable() bool { return math.Abs(c.Eigenvalue) < 1 }
+
+// IdealCurrentLoop returns the textbook figures of peak current mode for a
+// lossless stage in continuous conduction with one output capacitor and a
+// resistive load.
+//
+//	vo/vc = (R/Ri)/(1 + (R Ts/L)(mc D' - 1/2)) (1 + s C Rc)/(1 + s/wp) 1/(1 + s/(wn Qp) + s²/wn²)
+//	wp = 1/(C R) + (Ts/(L C))(mc D' - 1/2), wn = π fs
+//
+//	vin, vout [V]; l [H]; c [F]; esr, r [ohm]; fs [Hz]; sense [ohm]; slope [V/s]
+//
+// Source: R. B. Ridley, IEEE Trans. Power Electron. 6(2), 1991 (remembered,
+// unverified). Checked by TestReferenceLoop loop-14 and loop-15.
+func IdealCurrentLoop(v IdealStage, sense, slope float64) CurrentLoop {
+	ts := 1 / v.Frequency
+	d := v.Output / v.Input
+	sn, sf := sense*(v.Input-v.Output)/v.Inductance, sense*v.Output/v.Inductance
+	mc := 1 + slope/sn
+	x := mc*(1-d) - 0.5
+	return CurrentLoop{
+		RiseSlope: sn, FallSlope: sf, RampRatio: mc,
+		Eigenvalue: -(sf - slope) / (sn + slope),
+		Quality:    1 / (math.Pi * x),
+		Modulator:  1 / ((sn + slope) * ts),
+		LeastSlope: max(0, (sf-sn)/2), DeadBeat: sf,
+		Gain:     v.Load / sense / (1 + v.Load*ts/v.Inductance*x),
+		Pole:     (1/(v.Capacitance*v.Load) + ts/(v.Inductance*v.Capacitance)*x) / (2 * math.Pi),
+		Zero:     1 / (2 * math.Pi * v.ESR * v.Capacitance),
+		HalfRate: v.Frequency / 2,
+	}
+}
+
+// IdealStage is a lossless stage for the textbook formulas.
+type IdealStage struct {
+	Input       float64 // [V]
+	Output      float64 // [V]
+	Inductance  float64 // [H]
+	Capacitance float64 // [F]
+	ESR         float64 // [ohm]
+	Load        float64 // [ohm] resistive
+	Frequency   float64 // [Hz] switching frequency
+}
