@@ -32,6 +32,11 @@ func (s Status) String() string {
 // OK reports whether the stage works at the point.
 func (s Status) OK() bool { return s == OK }
 
+// Figures reports whether the result holds figures.
+func (s Status) Figures() bool {
+	return s == OK || s == OverTemperature || s == DropOut || s == TooShortOnTime
+}
+
 // Result is everything that one evaluation yields.
 type Result struct {
 	Status     Status

@@ -1,0 +1,292 @@
+package evaluate
+
+import (
+	"math"
+
+	"railproof/calc/losses"
+	"railproof/calc/parts"
+	"railproof/calc/stage"
+	"railproof/calc/switched"
+	"railproof/calc/thermal"
+)
+
+const (
+	// maxPasses bounds the joint iteration. Three passes are usual; a stage just
+	// below runaway or on a kink of its saturation curve takes more.
+	maxPasses = 80
+	// thermalSteps is how many Newton steps temperatures take on one circuit
+	// solution before the circuit is solved again.
+	thermalSteps = 3
+	// temperatureTolerance is the change [K] of the last Newton step, half of the
+	// thousandth of a kelvin that is promised.
+	temperatureTolerance = 5e-4
+	// circuitTolerance is the relative change of inductance and bridge voltage at
+	// which the circuit is the one that its own currents ask for.
+	circuitTolerance = 1e-9
+)
+
+// operating is the state of one evaluation while it runs.
+type operating struct {
+	point        *stage.Point
+	held         bool    // parts are held at a temperature
+	copper       float64 // [1] multiplier of the board's copper
+	output       float64 // [V] regulated voltage, or the present mean
+	duty         float64 // [1] fixed duty ratio; negative: regulated
+	bridge       float64 // [V]
+	path         float64 // [ohm] source and input path
+	input        float64 // [A] mean current through them
+	least, most  float64 // [1] duty ratios that the controller can make
+	deadTimeDuty float64 // [1]
+}
+
+// Eval computes the stage at a point, into r. It allocates nothing, and the
+// answer depends on stage and point only.
+//
+// Duty ratio, currents, inductance over the swing, bridge voltage and every
+// part's temperature depend on each other; a joint iteration finds them, from a
+// closed form. Each pass solves the circuit exactly, then moves temperatures by
+// Newton steps on the frozen currents. It ends when the circuit that was solved
+// is the one that its own currents and temperatures ask for.
+func (e *Evaluator) Eval(p *stage.Point, r *Result) {
+	var o operating
+	e.begin(p, &o)
+	status := e.iterate(&o)
+	e.fill(&o, status, r)
+}
+
+func (e *Evaluator) begin(p *stage.Point, o *operating) {
+	s := e.stage
+	*o = operating{point: p, duty: -1, bridge: p.Input}
+	board := p.AmbientDegC
+	start := p.AmbientDegC
+	if parts.Known(p.PartTemperatureDegC) {
+		o.held = true
+		board, start = p.PartTemperatureDegC, p.PartTemperatureDegC
+	} else {
+		e.setNetwork()
+	}
+	o.copper, _ = parts.CopperMultiplier(board)
+	for i := range e.degC {
+		e.degC[i] = start
+	}
+	e.setLoad(p.Load, o.copper)
+	o.path = p.SourceResistance + s.Board.InputPath*o.copper
+	switch p.Control.Kind {
+	case stage.RegulateTo:
+		o.output = p.Control.Voltage
+	case stage.ByFeedback:
+		o.output = s.Feedback.OutputVoltage()
+	case stage.FixedDuty:
+		o.duty = p.Control.Duty
+		o.output = o.duty * p.Input
+	}
+	for k := range e.inductance[:s.PhaseCount] {
+		e.inductance[k] = s.Inductor.Inductance
+		if len(s.Phases) > 0 && parts.Known(s.Phases[k].Inductance) {
+			e.inductance[k] = s.Phases[k].Inductance
+		}
+	}
+	e.operation = losses.Operation{AgeRatio: p.AgeRatio, BoardDegC: board, Solution: &e.solution}
+	if len(s.Phases) > 0 {
+		e.operation.Inductances = &e.inductance
+	}
+}
+
+// iterate runs the joint iteration and returns its status.
+func (e *Evaluator) iterate(o *operating) Status {
+	e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
+	load := e.circuit.Current + e.circuit.Conductance*o.output
+	e.start(&e.circuit, o.output, load, o.duty)
+	cold := e.degC
+	if _, _, runaway := e.follow(o); runaway {
+		e.degC = cold // the closed form's currents decide nothing
+	}
+	for range maxPasses {
+		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
+		e.limitDuty(o)
+		if o.duty >= 0 {
+			e.solver.FixedDuty(&e.circuit, o.duty, &e.solution)
+		} else {
+			e.solver.Regulated(&e.circuit, o.output, o.least, o.most, &e.solution)
+		}
+		status := fromSwitched(e.solution.Status)
+		if status == NoOperatingPoint || status == NotConverged {
+			return status
+		}
+		before := e.degC
+		circuitChange, temperatureChange, runaway := e.follow(o)
+		if runaway {
+			return Runaway
+		}
+		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
+			e.degC = before
+			return e.settled(o, status)
+		}
+	}
+	return NotConverged
+}
+
+// settled tells what the temperatures of a converged point mean.
+func (e *Evaluator) settled(o *operating, status Status) Status {
+	if o.held {
+		return status
+	}
+	if ratio, _ := e.network.Feedback(&e.slope); ratio >= 1 {
+		return Runaway
+	}
+	if status == OK && e.tooHot() {
+		return OverTemperature
+	}
+	return status
+}
+
+func fromSwitched(s switched.Status) Status {
+	switch s {
+	case switched.Solved:
+		return OK
+	case switched.DropOut:
+		return DropOut
+	case switched.TooShortOnTime:
+		return TooShortOnTime
+	case switched.NoOperatingPoint:
+		return NoOperatingPoint
+	}
+	return NotConverged
+}
+
+// limitDuty finds the duty ratios that the controller's times allow, less what
+// dead time adds to the duty ratio that it must command.
+//
+//	ΔD = 2 td f (Vsd − I Rls)/Vin
+func (e *Evaluator) limitDuty(o *operating) {
+	c, f := &e.stage.Controller, e.stage.SwitchingFrequency
+	o.deadTimeDuty = 0
+	if e.synchronous() {
+		i := e.solution.Leg.Inductor.Mean
+		o.deadTimeDuty = 2 * c.DeadTime * f * (e.stage.LowSide.BodyDiode - i*e.circuit.Leg.Rectifier.Slope) / o.bridge
+	}
+	o.least = math.Max(0, f*c.MinOnTime-o.deadTimeDuty)
+	o.most = math.Min(1, math.Min(c.MaxDutyRatio, 1-f*c.MinOffTime)-o.deadTimeDuty)
+}
+
+// follow takes the present circuit solution to the inductance, bridge voltage and
+// temperatures that it asks for. It returns the largest relative change of the
+// first two, and the largest change [K] of a temperature.
+func (e *Evaluator) follow(o *operating) (circuitChange, temperatureChange float64, runaway bool) {
+	circuitChange = e.followInductance()
+	if o.duty >= 0 {
+		circuitChange = math.Max(circuitChange, math.Abs(e.solution.OutputMean/o.output-1))
+		o.output = e.solution.OutputMean
+	}
+	op := &e.operation
+	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
+	op.PathMean = o.input
+	op.LoadRMS = e.loadRMS()
+	e.inputBanks()
+	e.model.Begin(op.Bridge, op.Output)
+	e.model.Freeze(op)
+	for range thermalSteps {
+		e.model.Powers(&e.degC, &e.power, &e.slope)
+		if o.held {
+			break
+		}
+		change, state := e.network.Step(o.point.AmbientDegC, &e.power, &e.slope, &e.degC)
+		if state == thermal.Runaway {
+			return circuitChange, change, true
+		}
+		temperatureChange += change
+		if state == thermal.Stepped && change <= temperatureTolerance {
+			break
+		}
+	}
+	return math.Max(circuitChange, e.followBridge(o)), temperatureChange, false
+}
+
+// followInductance reads valley and peak from the flux curve and returns the
+// relative change of the inductance over the swing.
+func (e *Evaluator) followInductance() float64 {
+	l := &e.stage.Inductor
+	if e.operation.Inductances != nil {
+		return e.followInductances()
+	}
+	one := &e.solution.Leg
+	e.valley, e.peak = one.Valley, one.Peak
+	if !l.Saturates() || !(one.Peak > one.Valley) {
+		return 0
+	}
+	e.valley, e.peak = swing(l, one, e.inductance[0])
+	next := l.InductanceOver(e.valley, e.peak)
+	change := math.Abs(next/e.inductance[0] - 1)
+	e.inductance[0] = next
+	return change
+}
+
+// swing returns the currents between which the flux of the solved waveform moves
+// the inductor.
+func swing(l *parts.Inductor, leg *switched.LegSolution, inductance float64) (valley, peak float64) {
+	flux := inductance * (leg.Peak - leg.Valley)
+	if leg.Mode == switched.Discontinuous {
+		return 0, l.CurrentAtFlux(flux)
+	}
+	return l.SwingAbout(leg.Inductor.Mean, flux)
+}
+
+func (e *Evaluator) followInductances() (change float64) {
+	e.valley, e.peak = math.Inf(1), math.Inf(-1)
+	for k := range e.stage.Phases {
+		l := e.stage.Inductor
+		if o := &e.stage.Phases[k]; parts.Known(o.Inductance) {
+			l.Inductance = o.Inductance
+		}
+		leg := &e.solution.Legs[k]
+		valley, peak := leg.Valley, leg.Peak
+		if l.Saturates() && peak > valley {
+			valley, peak = swing(&l, leg, e.inductance[k])
+			next := l.InductanceOver(valley, peak)
+			change = math.Max(change, math.Abs(next/e.inductance[k]-1))
+			e.inductance[k] = next
+		}
+		e.valley, e.peak = math.Min(e.valley, valley), math.Max(e.peak, peak)
+	}
+	return change
+}
+
+// followBridge solves source and input path for the mean input current and
+// returns the relative change of the bridge voltage.
+//
+//	Vb = Vin − R I,  I = P/Vb
+//
+// P is what the stage takes at the bridge: everything lost in its parts and
+// everything delivered.
+func (e *Evaluator) followBridge(o *operating) float64 {
+	power := e.solution.OutputPower
+	for p, w := range e.weight {
+		if w > 0 {
+			power += w * e.power[p]
+		}
+	}
+	rms := e.solution.Leg.Inductor.RMS
+	power += float64(e.stage.PhaseCount) * e.stage.Board.SwitchNodePath * o.copper * rms * rms
+	o.input = power / o.bridge
+	next := o.point.Input - o.path*o.input
+	change := math.Abs(next/o.bridge - 1)
+	o.bridge = math.Max(next, o.point.Input*leastBridge)
+	return change
+}
+
+// leastBridge keeps the bridge voltage of a source that cannot supply the load
+// above zero; such a point ends in drop-out.
+const leastBridge = 1e-2 // [1] of the source's voltage
+
+// loadRMS returns the RMS current through the output path: the load's, which
+// carries ripple where it is a resistor.
+func (e *Evaluator) loadRMS() float64 {
+	c, sol := &e.circuit, &e.solution
+	if c.Conductance == 0 || sol.OutputMean <= 0 {
+		return c.Current
+	}
+	// OutputPower = G <v²> + I0 <v> yields the mean square of the voltage.
+	square := (sol.OutputPower - c.Current*sol.OutputMean) / c.Conductance
+	g := c.Conductance
+	return math.Sqrt(g*g*square + 2*g*c.Current*sol.OutputMean + c.Current*c.Current)
+}

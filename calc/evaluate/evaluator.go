@@ -1,0 +1,120 @@
+package evaluate
+
+import (
+	"railproof/calc/losses"
+	"railproof/calc/parts"
+	"railproof/calc/stage"
+	"railproof/calc/switched"
+	"railproof/calc/thermal"
+)
+
+// Evaluator computes operating points of one stage. It owns all the memory that
+// an evaluation needs; use one per goroutine.
+type Evaluator struct {
+	stage   *stage.Stage
+	nominal float64 // [V] output voltage that the feedback's typical values set
+	model   losses.Model
+	network thermal.Network
+	weight  [losses.PartCount]float64 // [1] how often a part's power counts
+
+	solver    switched.Solver
+	circuit   switched.Circuit
+	legs      [switched.MaxPhases]switched.Leg
+	solution  switched.Solution
+	operation losses.Operation
+	inputBank [switched.MaxBanks]switched.Bank
+
+	degC, power, slope thermal.Vector
+	inductance         [switched.MaxPhases]float64 // [H] over the present swing
+	valley, peak       float64                     // [A] from the flux curve
+	input              input
+}
+
+// Prepare readies an evaluator for a stage that has passed Check. It works on a
+// copy of its own, whose numbers a caller may change through Stage.
+func Prepare(s *stage.Stage) *Evaluator {
+	e := &Evaluator{stage: s.Clone()}
+	if s.Feedback.Present {
+		e.nominal = s.Feedback.OutputVoltage()
+	}
+	e.model.Prepare(e.stage)
+	e.prepareNetwork()
+	return e
+}
+
+// Stage returns the evaluator's own stage. Its numbers may be set between
+// evaluations; its tables, topology, counts and exponents may not.
+func (e *Evaluator) Stage() *stage.Stage { return e.stage }
+
+// Circuit returns the switched circuit of the last evaluation, with every
+// element at its temperature, bias and current.
+func (e *Evaluator) Circuit() *switched.Circuit { return &e.circuit }
+
+// Solution returns the periodic steady state of the last evaluation.
+func (e *Evaluator) Solution() *switched.Solution { return &e.solution }
+
+func (e *Evaluator) synchronous() bool { return e.stage.Rectifier != stage.DiodeRectified }
+
+// prepareNetwork lays out the thermal network: which parts there are and which
+// heat each other. Parts of one phase heat parts of the same phase; what all
+// phases share is heated by each of them.
+func (e *Evaluator) prepareNetwork() {
+	s := e.stage
+	phases := float64(s.PhaseCount)
+	e.network.Reset()
+	add := func(p losses.Part, weight float64) {
+		e.network.Add(int(p), 0)
+		e.weight[p] = weight
+	}
+	add(losses.HighSide, phases)
+	if e.synchronous() {
+		add(losses.LowSide, phases)
+	} else {
+		add(losses.Diode, phases)
+	}
+	add(losses.Inductor, phases)
+	add(losses.Controller, 1)
+	for k := range s.OutputCapacitors {
+		add(losses.OutputCapacitor+losses.Part(k), 1)
+	}
+	for k := range s.InputCapacitors {
+		add(losses.InputCapacitor+losses.Part(k), 1)
+	}
+	for _, c := range s.ThermalCouplings {
+		a, okA := losses.PartByName(c.A)
+		b, okB := losses.PartByName(c.B)
+		if !okA || !okB || e.weight[a] == 0 || e.weight[b] == 0 {
+			continue
+		}
+		ontoA, ontoB := c.Resistance, c.Resistance
+		if e.weight[a] == 1 {
+			ontoA *= e.weight[b]
+		}
+		if e.weight[b] == 1 {
+			ontoB *= e.weight[a]
+		}
+		e.network.Couple(int(a), int(b), ontoA, ontoB)
+	}
+}
+
+// setNetwork puts the present resistances to ambient into the network. A
+// capacitor's is that of one piece, which carries its share of the bank's loss.
+func (e *Evaluator) setNetwork() {
+	s, n := e.stage, &e.network
+	n.SetSelf(int(losses.HighSide), s.HighSide.Thermal.JunctionToAmbient)
+	if e.synchronous() {
+		n.SetSelf(int(losses.LowSide), s.LowSide.Thermal.JunctionToAmbient)
+	} else {
+		n.SetSelf(int(losses.Diode), s.Diode.Thermal.JunctionToAmbient)
+	}
+	n.SetSelf(int(losses.Inductor), s.Inductor.Thermal.JunctionToAmbient)
+	n.SetSelf(int(losses.Controller), s.Controller.Thermal.JunctionToAmbient)
+	for k := range s.OutputCapacitors {
+		n.SetSelf(int(losses.OutputCapacitor)+k, bankToAmbient(&s.OutputCapacitors[k]))
+	}
+	for k := range s.InputCapacitors {
+		n.SetSelf(int(losses.InputCapacitor)+k, bankToAmbient(&s.InputCapacitors[k]))
+	}
+}
+
+func bankToAmbient(c *parts.Capacitor) float64 { return c.Thermal.JunctionToAmbient / c.Pieces() }
