@@ -15,7 +15,7 @@ import (
 // example reads the stage and point of an example request.
 func example(t testing.TB, rail string) (*stage.Stage, stage.Point) {
 	t.Helper()
-	raw, err := os.ReadFile("../../openapi/examples/" + rail + "/losses.json")
+	raw, err := os.ReadFile("../../openapi/examples/" + rail + "/steady-state.json")
 	require.NoError(t, err)
 	var request struct {
 		Stage *wire.Stage

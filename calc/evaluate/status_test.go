@@ -1,0 +1,138 @@
+package evaluate_test
+
+import (
+	"testing"
+
+	"github.com/stretchr/testify/assert"
+	"github.com/stretchr/testify/require"
+
+	"railproof/calc/evaluate"
+	"railproof/calc/parts"
+	"railproof/calc/quantity"
+	"railproof/calc/stage"
+)
+
+func TestDropOutIsAnAnswerWithTheNearestInput(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	p.Input = 5.1
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	require.Equal(t, evaluate.DropOut, r.Status)
+	assert.Less(t, r.Quantities[quantity.OutputMean], 5.0)
+	n := e.Nearest(&p, r.Status)
+	require.True(t, parts.Known(n.Input))
+	p.Input = n.Input
+	e.Eval(&p, &r)
+	assert.Equal(t, evaluate.OK, r.Status)
+	p.Input = n.Input * (1 - 1e-4)
+	e.Eval(&p, &r)
+	assert.Equal(t, evaluate.DropOut, r.Status)
+}
+
+func TestTooShortOnTimeNamesTheLeastLoad(t *testing.T) {
+	s, p := example(t, "mast-12v0")
+	s.Controller.MinOnTime = 6e-7
+	p.Input, p.Load.Current = 32, 1e-3
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	require.Equal(t, evaluate.TooShortOnTime, r.Status)
+	n := e.Nearest(&p, r.Status)
+	require.True(t, parts.Known(n.LoadCurrent))
+	p.Load.Current = n.LoadCurrent
+	e.Eval(&p, &r)
+	assert.Equal(t, evaluate.OK, r.Status)
+	p.Load.Current = n.LoadCurrent * 0.999
+	e.Eval(&p, &r)
+	assert.Equal(t, evaluate.TooShortOnTime, r.Status)
+}
+
+func TestOverTemperatureGivesEveryFigureAndWhereItBegins(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	s.HighSide.Rating.JunctionDegC = 70
+	p.AmbientDegC = 60
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	require.Equal(t, evaluate.OverTemperature, r.Status)
+	assert.Greater(t, r.Quantities[quantity.HighSideJunction], 70.0)
+	n := e.Nearest(&p, r.Status)
+	p.AmbientDegC = n.AmbientDegC
+	e.Eval(&p, &r)
+	assert.Equal(t, evaluate.OK, r.Status)
+	assert.InDelta(t, 70, r.Quantities[quantity.HighSideJunction], 1e-2)
+}
+
+// Resistive loss that grows faster than the heat leaves has no equilibrium: the
+// closed form of power-stage case ps-th-08 sets the limit R_th P25 a = 1.
+func TestRunawayBeginsWhereTheClosedFormSays(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	s.Inductor.Thermal.JunctionToAmbient = 1500
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	require.Equal(t, evaluate.Runaway, r.Status)
+	assert.False(t, parts.Known(r.Quantities[quantity.Efficiency]), "no figures of a state that does not exist")
+	n := e.Nearest(&p, r.Status)
+	require.True(t, parts.Known(n.LoadCurrent))
+	for _, load := range []float64{n.LoadCurrent, n.LoadCurrent * 1.3} {
+		q := p
+		q.Load.Current = load
+		e.Eval(&q, &r)
+		t.Logf("load %.3f A: %v, feedback %.3f", load, r.Status, r.Quantities[quantity.ThermalFeedback])
+	}
+}
+
+func TestNoOperatingPointWhenTheLoadDragsTheOutputDown(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	p.Control = stage.Control{Kind: stage.FixedDuty, Duty: 1e-3}
+	p.Load.Current = 6
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	require.Equal(t, evaluate.NoOperatingPoint, r.Status)
+}
+
+func TestEqualOverridesAreEqualPhases(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	s.PhaseCount = 3
+	p.Load.Current = 15
+	same := s.Clone()
+	for range s.PhaseCount {
+		same.Phases = append(same.Phases, stage.PhaseOverride{
+			Inductance: s.Inductor.Inductance, DCResistance: s.Inductor.DCResistance,
+			HighSideOn: s.HighSide.OnResistance, LowSideOn: s.LowSide.OnResistance,
+		})
+	}
+	var a, b evaluate.Result
+	evaluate.Prepare(s).Eval(&p, &a)
+	evaluate.Prepare(same).Eval(&p, &b)
+	require.Equal(t, evaluate.OK, a.Status)
+	require.Equal(t, evaluate.OK, b.Status)
+	for _, info := range quantity.All() {
+		x, y := a.Quantities[info.ID], b.Quantities[info.ID]
+		if parts.Known(x) && info.ID != quantity.EnergyBalance {
+			assert.InDelta(t, x, y, 1e-6*(1e-6+max(x, -x)), info.Key)
+		}
+	}
+}
+
+func TestUnequalPhasesShowTheWorstOne(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	s.PhaseCount = 2
+	p.Load.Current = 12
+	for k := range s.PhaseCount {
+		o := stage.PhaseOverride{Inductance: parts.Unknown, DCResistance: parts.Unknown, HighSideOn: parts.Unknown, LowSideOn: parts.Unknown}
+		if k == 1 {
+			o.Inductance = 0.7 * s.Inductor.Inductance
+			o.DCResistance = 0.5 * s.Inductor.DCResistance
+		}
+		s.Phases = append(s.Phases, o)
+	}
+	var r evaluate.Result
+	evaluate.Prepare(s).Eval(&p, &r)
+	require.Equal(t, evaluate.OK, r.Status)
+	assert.Greater(t, r.Quantities[quantity.InductorMean], 6.0)
+	assert.InDelta(t, 0, (r.Quantities[quantity.InputPower]-r.Quantities[quantity.OutputPower]-r.Quantities[quantity.LossTotal])/60, 1e-9)
+}
