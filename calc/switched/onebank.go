@@ -14,7 +14,7 @@ type oneBank struct {
 	v, i                     float64 // reference: output and inductor current
 	duty, t1, t2, t3         float64
 	on, off                  plane
-	oi, ov                   [planeOrder + 1]float64
+	mix                      taylor
 }
 
 // takes reports whether the circuit is of this kind.
@@ -37,12 +37,13 @@ func (ob *oneBank) set(c *Circuit) {
 // load current through the inductor; the bank is at rest there, so only the
 // current has a rate.
 //
-// With the interval maps of both, ξ → ξ + F_1 ξ + d_1 and the like,
+// Both intervals share σ, the mean of the states at the two edges, and what one
+// adds the other takes back:
 //
-//	(F_1 + F_2 + F_2 F_1) ξ = −(d_1 + d_2 + F_2 d_1)
+//	T_1 (X_1 σ + b_1 h_1) + T_2 (X_2 σ + b_2 h_2) = 0
 //
-// whose determinant is of the order (ωT)² in numbers of the order ωT: no
-// cancellation.
+// a 2x2 system whose determinant is of the order (ωT)² in numbers of the order
+// ωT: no cancellation.
 func (ob *oneBank) continuous(c *Circuit, duty, v float64) bool {
 	leg := &c.Leg
 	i := c.load(v)
@@ -51,29 +52,21 @@ func (ob *oneBank) continuous(c *Circuit, duty, v float64) bool {
 	ob.t2 = (1 - duty) * c.Period
 	ob.t3 = 0
 	r1, r2 := leg.Winding+leg.HighSide, leg.Winding+leg.Rectifier.Slope
-	if !ob.on.set(ob, ob.t1, r1, c.Vin-v-r1*i) || !ob.off.set(ob, ob.t2, r2, -leg.Rectifier.Threshold-v-r2*i) {
+	if !ob.on.set(ob, ob.t1, r1, c.Vin-v-r1*i, 0) || !ob.off.set(ob, ob.t2, r2, -leg.Rectifier.Threshold-v-r2*i, 0) {
 		return false
 	}
-	a, b := &ob.on.full, &ob.off.full
-	m11 := a.f11 + b.f11 + (b.f11*a.f11 + b.f12*a.f21)
-	m12 := a.f12 + b.f12 + (b.f11*a.f12 + b.f12*a.f22)
-	m21 := a.f21 + b.f21 + (b.f21*a.f11 + b.f22*a.f21)
-	m22 := a.f22 + b.f22 + (b.f21*a.f12 + b.f22*a.f22)
-	d1 := a.d1 + b.d1 + (b.f11*a.d1 + b.f12*a.d2)
-	d2 := a.d2 + b.d2 + (b.f21*a.d1 + b.f22*a.d2)
+	a, b := &ob.on, &ob.off
+	// T X = (t_a − t_b det) X + t_b tr P
+	m11, m12, m21, m22 := a.turn()
+	n11, n12, n21, n22 := b.turn()
+	m11, m12, m21, m22 = m11+n11, m12+n12, m21+n21, m22+n22
+	d1 := a.bi*(a.t.a+a.t.b*a.p11) + b.bi*(b.t.a+b.t.b*b.p11)
+	d2 := a.bi*(a.t.b*a.p21) + b.bi*(b.t.b*b.p21)
 	q := 1 / (m11*m22 - m12*m21)
-	ob.on.start((m12*d2-m22*d1)*q, (m21*d1-m11*d2)*q)
-	ob.off.start(ob.on.i1, ob.on.v1)
+	i, v = (m12*d2-m22*d1)*q, (m21*d1-m11*d2)*q
+	a.span(i, v)
+	b.span(i, v)
 	return true
-}
-
-// onMean returns ∫ι dτ over the on-time after expand.
-func (pl *plane) chargeAbout() float64 {
-	acc := 0.0
-	for k := pl.order &^ 1; k >= 0; k -= 2 {
-		acc += pl.ci[k] * inverse[k+1]
-	}
-	return 2 * pl.h * acc
 }
 
 // fixed solves at a duty ratio. It reports false when the general solver is
@@ -86,8 +79,6 @@ func (ob *oneBank) fixed(c *Circuit, duty float64, sol *Solution) bool {
 	if c.Leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
 		return false
 	}
-	ob.on.expand()
-	ob.off.expand()
 	ob.report(c, sol)
 	sol.Iterations = 1
 	return true
@@ -116,10 +107,8 @@ func (ob *oneBank) regulated(c *Circuit, vout, least, greatest float64, sol *Sol
 		if !ob.continuous(c, d, vout) || leg.Rectifier.Blocks && i+ob.off.i1 < 0 {
 			return false
 		}
-		ob.on.expand()
-		next := (base + dr*(i*d+ob.on.chargeAbout()/c.Period)) * inv
+		next := (base + dr*(i*d+ob.on.ci.mean(ob.on.order)*d)) * inv
 		if math.Abs(next-d) <= dutyAccuracy*d {
-			ob.off.expand()
 			ob.report(c, sol)
 			sol.Iterations = n + 1
 			return true
@@ -135,13 +124,10 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	on, off := &ob.on, &ob.off
 	perT := 1 / c.Period
 	w1, w2 := ob.t1*perT, ob.t2*perT
-	var li1, li2, lv1, lv2 legendreSeries
-	project(&on.ci, on.order, &li1)
-	project(&off.ci, off.order, &li2)
-	project(&on.cv, on.order, &lv1)
-	project(&off.cv, off.order, &lv2)
-	m1, m2 := ob.i+li1[0], ob.i+li2[0]
-	s1, s2 := li1.spread(), li2.spread()
+	i1, i2 := on.ci.mean(on.order), off.ci.mean(off.order)
+	v1, v2 := on.cv.mean(on.order), off.cv.mean(off.order)
+	s1, s2 := on.ci.spread(on.order), off.ci.spread(off.order)
+	m1, m2 := ob.i+i1, ob.i+i2
 	high := w1 * (m1*m1 + s1)
 	rect := w2 * (m2*m2 + s2)
 	ls := &sol.Leg
@@ -152,36 +138,36 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	ls.Inductor = Branch{ls.HighSide.Mean + ls.Rectifier.Mean, math.Sqrt(high + rect)}
 	ls.TurnOn = ob.i + on.i0
 	ls.TurnOff = ob.i + off.i0
-	ls.Peak = math.Max(ls.TurnOn, ls.TurnOff)
-	ls.Valley = math.Min(ls.TurnOn, ls.TurnOff)
-	if e, ok := interior(&on.ci, on.order); ok {
-		ls.Peak, ls.Valley = math.Max(ls.Peak, ob.i+e), math.Min(ls.Valley, ob.i+e)
-	}
-	if e, ok := interior(&off.ci, off.order); ok {
-		ls.Peak, ls.Valley = math.Max(ls.Peak, ob.i+e), math.Min(ls.Valley, ob.i+e)
-	}
+	swing := extent{min(on.i0, off.i0), max(on.i0, off.i0)}
+	on.ci.extremes(on.order, &swing)
+	off.ci.extremes(off.order, &swing)
+	ls.Valley, ls.Peak = ob.i+swing.least, ob.i+swing.most
 
-	// Bank current j = α (ι − G ν) and node o = α ν + ρ ι, both series again.
+	// Bank current j = α (ι − G ν) and node o = α ν + ρ ι, series again.
 	g, alpha, rho := ob.conductance, ob.alpha, ob.rho
-	j := w1*(li1[0]*li1[0]+s1) + w2*(li2[0]*li2[0]+s2)
-	meanV := w1*lv1[0] + w2*lv2[0]
-	o1, o2 := alpha*lv1[0]+rho*li1[0], alpha*lv2[0]+rho*li2[0]
+	o1, o2 := alpha*v1+rho*i1, alpha*v2+rho*i2
 	mean := w1*o1 + w2*o2
+	j := w1*(i1*i1+s1) + w2*(i2*i2+s2)
+	if g != 0 {
+		j1, j2 := alpha*(i1-g*v1), alpha*(i2-g*v2)
+		j = w1*(j1*j1+ob.spread(on, alpha, -alpha*g)) + w2*(j2*j2+ob.spread(off, alpha, -alpha*g))
+	}
+	node := extent{min(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0), max(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)}
+	ob.combine(on, rho, alpha)
+	ob.mix.extremes(on.order, &node)
 	variance := 0.0
 	if g != 0 {
-		j = ob.bank(w1, &li1, &lv1) + ob.bank(w2, &li2, &lv2)
-		for k := range li1 {
-			lv1[k] = alpha*lv1[k] + rho*li1[k]
-			lv2[k] = alpha*lv2[k] + rho*li2[k]
-		}
-		d1, d2 := o1-mean, o2-mean
-		variance = w1*(d1*d1+lv1.spread()) + w2*(d2*d2+lv2.spread())
+		variance = w1 * ((o1-mean)*(o1-mean) + ob.mix.spread(on.order))
+	}
+	ob.combine(off, rho, alpha)
+	ob.mix.extremes(off.order, &node)
+	if g != 0 {
+		variance += w2 * ((o2-mean)*(o2-mean) + ob.mix.spread(off.order))
 	}
 	sol.BankRMS[0] = math.Sqrt(j)
-	sol.BankMean[0] = ob.v + meanV
+	sol.BankMean[0] = ob.v + w1*v1 + w2*v2
 	sol.OutputMean = ob.v + mean
-	low, top := ob.nodeRange()
-	sol.OutputMin, sol.OutputMax = ob.v+low, ob.v+top
+	sol.OutputMin, sol.OutputMax = ob.v+node.least, ob.v+node.most
 	sol.Duty = ob.duty
 	sol.InputMean, sol.InputRMS = ls.HighSide.Mean, ls.HighSide.RMS
 	sol.InputPower = c.Vin * sol.InputMean
@@ -190,36 +176,39 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 		leg.Rectifier.Threshold*ls.Rectifier.Mean + c.Bank[0].ESR*j
 	scale := math.Max(math.Max(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*ls.HighSide.RMS)
 	sol.EnergyBalance = math.Abs(sol.InputPower-sol.OutputPower-loss) / scale
-	closure := math.Abs(off.i1-on.i0)*math.Abs(ob.v) + math.Abs(off.v1-on.v0)*math.Max(math.Abs(ls.Peak), math.Abs(ls.Valley))
-	sol.Residual = closure / (math.Abs(ob.v) * math.Max(math.Abs(ls.Peak), math.Abs(ls.Valley)))
+	sol.Residual = ob.closure()
 	sol.Status = Solved
 	if !(sol.OutputMean > 0) {
 		sol.Status = NoOperatingPoint
 	}
 }
 
-// bank returns the part of an interval in the mean square of the bank current.
-func (ob *oneBank) bank(w float64, li, lv *legendreSeries) float64 {
-	var j legendreSeries
-	for k := range j {
-		j[k] = ob.alpha * (li[k] - ob.conductance*lv[k])
+// combine forms the series a ι + b ν.
+func (ob *oneBank) combine(pl *plane, a, b float64) {
+	for k := range planeShort + 1 {
+		ob.mix[k] = a*pl.ci[k] + b*pl.cv[k]
 	}
-	return w * (j[0]*j[0] + j.spread())
+	for k := planeShort + 1; k <= pl.order; k++ {
+		ob.mix[k] = a*pl.ci[k] + b*pl.cv[k]
+	}
 }
 
-// nodeRange returns the extremes of the node's deviation.
-func (ob *oneBank) nodeRange() (least, most float64) {
-	alpha, rho := ob.alpha, ob.rho
-	a := alpha*ob.on.v0 + rho*ob.on.i0
-	b := alpha*ob.off.v0 + rho*ob.off.i0
-	least, most = math.Min(a, b), math.Max(a, b)
-	for _, pl := range [2]*plane{&ob.on, &ob.off} {
-		for k := 0; k <= pl.order; k++ {
-			ob.ov[k] = alpha*pl.cv[k] + rho*pl.ci[k]
-		}
-		if e, ok := interior(&ob.ov, pl.order); ok {
-			least, most = math.Min(least, e), math.Max(most, e)
-		}
+// spread returns the mean square about the mean of a ι + b ν.
+func (ob *oneBank) spread(pl *plane, a, b float64) float64 {
+	ob.combine(pl, a, b)
+	return ob.mix.spread(pl.order)
+}
+
+// closure returns by how much the series fail to meet at the edges, relative to
+// the reference: both intervals share σ, so their ends agree only if the
+// solution does.
+func (ob *oneBank) closure() float64 {
+	on, off := &ob.on, &ob.off
+	di := max(math.Abs(off.i1-on.i0), math.Abs(on.i1-off.i0))
+	dv := max(math.Abs(off.v1-on.v0), math.Abs(on.v1-off.v0))
+	scale := math.Abs(ob.i) + math.Abs(on.i1-on.i0)
+	if scale == 0 {
+		return dv / math.Abs(ob.v)
 	}
-	return least, most
+	return max(di/scale, dv/math.Abs(ob.v))
 }

@@ -1,11 +1,10 @@
 package switched
 
-import "math"
-
 const (
-	planeReach = 0.5 // greatest |A| t/2 for the series of plane
-	planeShort = 9   // order of the series for |A| t/2 ≤ 0.08
-	planeOrder = 16  // for planeReach; 0.5^15/16! = 1e-18
+	planeShort      = 8    // order of the series about the middle for |A| t/2 ≤ planeShortReach; remainder 0.08^8/9!
+	planeShortReach = 0.08 // |A| t/2
+	planeOrder      = 18   // the same for planeReach; remainder 1/19!
+	planeReach      = 1.0
 )
 
 // plane is one interval of the circuit with one phase and one bank, a system in
@@ -15,28 +14,47 @@ const (
 //	A = | −(R+αr)/L  −α/L  |     r = ESR, α = 1/(1 + r G)
 //	    |  α/C       −αG/C |
 //
-// By Cayley and Hamilton, X² = tr X − det, every power series in X is
-// p_0 + p_1 X with two numbers, which is the closed form for 2x2. For |X| ≤ 1/2
-// the series are shorter than exp, sin and sinh, free of cancellation, and
-// indifferent to whether the eigenvalues are real, equal or complex; beyond,
-// the general solver takes over.
+// everything is told from the middle of the interval and σ, the mean of the
+// states at both its ends. With e = X σ + b h (b the rate at the reference)
+//
+//	end − start = 2 T e,  T = tanh(X)/X
+//	rate in the middle times h: w = e / cosh X
+//	state in the middle: σ − X (cosh X − 1)/X² w
+//
+// These are even functions of X, hence a_0 + a_1 P with P = X² by Cayley and
+// Hamilton: the closed form for 2x2. For |X| ≤ 1 their series are shorter than
+// exp, sin and sinh, free of cancellation, and indifferent to whether the
+// eigenvalues are real, equal or complex; beyond, the general solver takes over.
 type plane struct {
 	h                  float64 // [s] half of the length
 	x11, x12, x21, x22 float64 // X
-	bh                 float64 // h times the rate of the current at the reference
+	p11, p12, p21, p22 float64 // P
+	bi, bv             float64 // h times the rate at the reference
 	order              int
-	half, full         affine // map over the first half, over the whole
-	i0, v0             float64
-	i1, v1             float64
-	ci, cv             [planeOrder + 1]float64 // Taylor about the middle, argument −1 to 1
+	tr, det            float64 // of X
+	tr2, det2          float64 // of P
+	s, k, t, inv       even    // sinh X/X, (cosh X − 1)/P, tanh X/X, 1/cosh X
+	i0, v0             float64 // state at the start
+	i1, v1             float64 // at the end
+	ci, cv             taylor
 }
 
-// affine maps (ι, ν) to (ι, ν) + F (ι, ν) + d.
-type affine struct{ f11, f12, f21, f22, d1, d2 float64 }
+// even is an even function of X: a + b X².
+type even struct{ a, b float64 }
 
-// set prepares the maps of the interval of length t, path resistance r and
-// driving voltage u at the reference.
-func (pl *plane) set(ob *oneBank, t, r, u float64) bool {
+func (pl *plane) times(f, g even) even {
+	bb := f.b * g.b
+	return even{f.a*g.a - bb*pl.det2, f.a*g.b + f.b*g.a + bb*pl.tr2}
+}
+
+// on applies the function to a vector.
+func (f even) on(pl *plane, i, v float64) (float64, float64) {
+	return f.a*i + f.b*(pl.p11*i+pl.p12*v), f.a*v + f.b*(pl.p21*i+pl.p22*v)
+}
+
+// set prepares the interval of length t, path resistance r and driving voltage
+// u at the reference, where the bank takes the current extra.
+func (pl *plane) set(ob *oneBank, t, r, u, extra float64) bool {
 	h := 0.5 * t
 	hl := h * ob.invL
 	pl.h = h
@@ -44,123 +62,98 @@ func (pl *plane) set(ob *oneBank, t, r, u float64) bool {
 	pl.x12 = -ob.alpha * hl
 	pl.x21 = ob.inject * h
 	pl.x22 = -ob.conductance * pl.x21
-	pl.bh = u * hl
+	pl.bi = u * hl
+	pl.bv = extra * pl.x21
 	cross := pl.x12 * pl.x21
-	size := math.Max(-pl.x11, -pl.x22)
-	size2 := size*size - cross
+	tr := pl.x11 + pl.x22
+	det := pl.x11*pl.x22 - cross
+	size := tr*tr - cross
 	switch {
-	case size2 <= 0.08*0.08/2:
+	case size <= planeShortReach*planeShortReach:
 		pl.order = planeShort
-	case size2 <= planeReach*planeReach/2:
+	case size <= planeReach*planeReach:
 		pl.order = planeOrder
 	default:
 		return false
 	}
-	tr := pl.x11 + pl.x22
-	det := pl.x11*pl.x22 - cross
-	// φ1(X) = 1 + X/2 (1 + X/3 (1 + ...)) = a + b X
-	a, b := 1.0, 0.0
-	for k := pl.order; k >= 2; k-- {
-		q := inverse[k]
-		a, b = 1-b*det*q, (a+b*tr)*q
+	pl.p11 = pl.x11*pl.x11 + cross
+	pl.p12 = tr * pl.x12
+	pl.p21 = tr * pl.x21
+	pl.p22 = pl.x22*pl.x22 + cross
+	tr2 := pl.p11 + pl.p22
+	det2 := det * det
+	pl.tr, pl.det, pl.tr2, pl.det2 = tr, det, tr2, det2
+	// P^n = u_n P − det2 u_{n−1} with u_1 = 1, u_{n+1} = tr2 u_n − det2 u_{n−1}
+	u3 := tr2*tr2 - det2
+	pl.s = even{1 - det2*(1./120+tr2*(1./5040)), 1./6 + tr2*(1./120) + u3*(1./5040)}
+	pl.k = even{1./2 - det2*(1./720+tr2*(1./40320)), 1./24 + tr2*(1./720) + u3*(1./40320)}
+	if pl.order > planeShort {
+		pl.long(u3)
 	}
-	// exp(X) − 1 = X φ1 = fa + fb X, its square, and (2 + exp(X) − 1) φ1 = 2 φ1(2X)
-	fa, fb := -b*det, a+b*tr
-	ga, gb := 2*fa+fa*fa-fb*fb*det, 2*fb+2*fa*fb+fb*fb*tr
-	ea, eb := 2+fa, fb
-	da, db := ea*a-eb*b*det, ea*b+eb*a+eb*b*tr
-	bh := pl.bh
-	pl.half = affine{fa + fb*pl.x11, fb * pl.x12, fb * pl.x21, fa + fb*pl.x22, (a + b*pl.x11) * bh, b * pl.x21 * bh}
-	pl.full = affine{ga + gb*pl.x11, gb * pl.x12, gb * pl.x21, ga + gb*pl.x22, (da + db*pl.x11) * bh, db * pl.x21 * bh}
+	// cosh X = 1 + P k
+	c := even{1 - pl.k.b*det2, pl.k.a + pl.k.b*tr2}
+	q := 1 / (c.a*(c.a+c.b*tr2) + c.b*c.b*det2)
+	pl.inv = even{(c.a + c.b*tr2) * q, -c.b * q}
+	pl.t = pl.times(pl.s, pl.inv)
 	return true
 }
 
-// start sets the state at the beginning and the one at the end.
-func (pl *plane) start(i, v float64) {
-	f := &pl.full
-	pl.i0, pl.v0 = i, v
-	pl.i1 = i + (f.f11*i + f.f12*v + f.d1)
-	pl.v1 = v + (f.f21*i + f.f22*v + f.d2)
-}
-
-// expand fills the Taylor series about the middle.
-func (pl *plane) expand() {
-	f := &pl.half
-	i := pl.i0 + (f.f11*pl.i0 + f.f12*pl.v0 + f.d1)
-	v := pl.v0 + (f.f21*pl.i0 + f.f22*pl.v0 + f.d2)
-	pl.ci[0], pl.cv[0] = i, v
-	i, v = pl.x11*i+pl.x12*v+pl.bh, pl.x21*i+pl.x22*v
-	pl.ci[1], pl.cv[1] = i, v
-	for k := 2; k <= pl.order; k++ {
-		q := inverse[k]
-		i, v = (pl.x11*i+pl.x12*v)*q, (pl.x21*i+pl.x22*v)*q
-		pl.ci[k], pl.cv[k] = i, v
+// long adds the terms from P^4 on.
+func (pl *plane) long(u3 float64) {
+	before, u := u3, pl.tr2*u3-pl.det2*pl.tr2
+	f := 1. / 5040 // 1/(2n+1)!
+	for n := 4; n <= planeOrder/2; n++ {
+		f *= inverse[2*n] * inverse[2*n+1]
+		g := f * inverse[2*n+2]
+		pl.s.a -= pl.det2 * before * f
+		pl.s.b += u * f
+		pl.k.a -= pl.det2 * before * g
+		pl.k.b += u * g
+		before, u = u, pl.tr2*u-pl.det2*before
 	}
 }
 
-// legendreSeries is the expansion of a function over an interval in Legendre
-// polynomials, up to the order that matters in the mean of its square.
-type legendreSeries [8]float64
-
-// project turns a Taylor series about the middle into Legendre's: the first
-// entry is the mean.
-func project(c *[planeOrder + 1]float64, order int, l *legendreSeries) {
-	l[0] = c[0] + c[2]/3 + c[4]/5 + c[6]/7 + c[8]/9
-	l[1] = c[1] + c[3]*(3./5) + c[5]*(3./7) + c[7]*(1./3) + c[9]*(3./11)
-	l[2] = c[2]*(2./3) + c[4]*(4./7) + c[6]*(10./21) + c[8]*(40./99)
-	l[3] = c[3]*(2./5) + c[5]*(4./9) + c[7]*(14./33) + c[9]*(56./143)
-	l[4] = c[4]*(8./35) + c[6]*(24./77) + c[8]*(48./143)
-	l[5] = c[5]*(8./63) + c[7]*(8./39) + c[9]*(16./65)
-	l[6], l[7] = 0, 0
-	if order > planeShort {
-		l[6] = c[6] * legendre[6][6]
-		l[6] += c[8] * legendre[8][6]
-		l[7] = c[7]*legendre[7][7] + c[9]*legendre[9][7]
-		for k := planeShort + 1; k <= order; k++ {
-			for j := k & 1; j < len(l); j += 2 {
-				l[j] += c[k] * legendre[k][j]
-			}
-		}
+// span sets the states at both ends and the series about the middle from the
+// mean of the states at the ends.
+func (pl *plane) span(i, v float64) {
+	ei, ev := pl.x11*i+pl.x12*v+pl.bi, pl.x21*i+pl.x22*v+pl.bv
+	ti, tv := pl.t.on(pl, ei, ev)
+	pl.i0, pl.v0, pl.i1, pl.v1 = i-ti, v-tv, i+ti, v+tv
+	wi, wv := pl.inv.on(pl, ei, ev)
+	ki, kv := pl.k.on(pl, wi, wv)
+	ci, cv := &pl.ci, &pl.cv
+	ci[0], cv[0] = i-(pl.x11*ki+pl.x12*kv), v-(pl.x21*ki+pl.x22*kv)
+	ci[1], cv[1] = wi, wv
+	oi, ov := wi, wv
+	ei, ev = 0.5*(pl.x11*wi+pl.x12*wv), 0.5*(pl.x21*wi+pl.x22*wv)
+	ci[2], cv[2] = ei, ev
+	oi, ov = pl.next(oi, ov, 1./6)
+	ei, ev = pl.next(ei, ev, 1./12)
+	ci[3], cv[3] = oi, ov
+	ci[4], cv[4] = ei, ev
+	oi, ov = pl.next(oi, ov, 1./20)
+	ei, ev = pl.next(ei, ev, 1./30)
+	ci[5], cv[5] = oi, ov
+	ci[6], cv[6] = ei, ev
+	oi, ov = pl.next(oi, ov, 1./42)
+	ei, ev = pl.next(ei, ev, 1./56)
+	ci[7], cv[7] = oi, ov
+	ci[8], cv[8] = ei, ev
+	for k := planeShort + 1; k < pl.order; k += 2 {
+		oi, ov = pl.next(oi, ov, inverse[k]*inverse[k-1])
+		ei, ev = pl.next(ei, ev, inverse[k]*inverse[k+1])
+		ci[k], cv[k] = oi, ov
+		ci[k+1], cv[k+1] = ei, ev
 	}
 }
 
-// spread returns the mean of the square of the function about its mean.
-func (l *legendreSeries) spread() float64 {
-	return l[1]*l[1]*(1./3) + l[2]*l[2]*(1./5) + l[3]*l[3]*(1./7) + l[4]*l[4]*(1./9) + l[5]*l[5]*(1./11) + l[6]*l[6]*(1./13) + l[7]*l[7]*(1./15)
+// next returns q P (i, v).
+func (pl *plane) next(i, v, q float64) (float64, float64) {
+	return (pl.p11*i + pl.p12*v) * q, (pl.p21*i + pl.p22*v) * q
 }
 
-// interior returns the extreme of the series c inside the interval, if there is
-// one: the zero of its derivative, which has at most one within half a radian
-// of the circuit's own oscillation.
-func interior(c *[planeOrder + 1]float64, order int) (value float64, found bool) {
-	odd := c[1] + 3*c[3] + 5*c[5] + 7*c[7] + 9*c[9]
-	even := 2*c[2] + 4*c[4] + 6*c[6] + 8*c[8]
-	for k := planeShort + 1; k <= order; k++ {
-		if k&1 == 0 {
-			even += float64(k) * c[k]
-		} else {
-			odd += float64(k) * c[k]
-		}
-	}
-	if !(math.Abs(even) > math.Abs(odd)) {
-		return 0, false
-	}
-	x := -odd / even
-	for range 3 {
-		value, rate, bend := 0.0, 0.0, 0.0
-		for k := order; k >= 0; k-- {
-			bend = bend*x + rate
-			rate = rate*x + value
-			value = value*x + c[k]
-		}
-		dx := rate / (2 * bend)
-		if !(math.Abs(dx) > 1e-7) {
-			return value - 0.5*rate*dx, true
-		}
-		x = math.Max(-1, math.Min(1, x-dx))
-	}
-	for k := order; k >= 0; k-- {
-		value = value*x + c[k]
-	}
-	return value, true
+// turn returns T X = tanh X, by P X = tr P − det X.
+func (pl *plane) turn() (m11, m12, m21, m22 float64) {
+	a, b := pl.t.a-pl.t.b*pl.det, pl.t.b*pl.tr
+	return a*pl.x11 + b*pl.p11, a*pl.x12 + b*pl.p12, a*pl.x21 + b*pl.p21, a*pl.x22 + b*pl.p22
 }
