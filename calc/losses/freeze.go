@@ -96,7 +96,7 @@ func (m *Model) addLeg(leg *switched.LegSolution, inductance float64, o *stage.P
 	c.rectifier += weight * ls * rectifier
 	c.rectifierMean += weight * leg.Rectifier.Mean
 	c.inductorDC += weight * dcr * mean2
-	c.inductorAC += weight * dcr * (rms2 - mean2)
+	c.inductorAC += weight * dcr * max(0, rms2-mean2) // a rounding below zero at no ripple
 	c.inductor += weight * rms2
 	c.overlap += weight * OverlapLoss(p.vin, p.f, leg.TurnOn, leg.TurnOff, p.ton, p.toff)
 	if leg.Mode == switched.Continuous && leg.TurnOn > 0 {
