@@ -1,7 +1,5 @@
 package switched
 
-import "math"
-
 // taylor holds the coefficients of a function over an interval about its middle,
 // argument −1 to 1; those above its order are not used.
 type taylor [planeOrder + 1]float64
@@ -59,8 +57,9 @@ func (l *legendreSeries) spread() float64 {
 
 // extremes widens the range by the extreme inside the interval, if there is one:
 // the zero of the derivative, of which there is at most one within a radian of
-// the circuit's own oscillation. The first guesses use the series up to x⁴; the
-// value is corrected to third order in the error of its place.
+// the circuit's own oscillation. The chord of the derivative gives its place x;
+// the value is corrected for what is left of the derivative there, to third
+// order, or the place is improved where that is not enough.
 func (c *taylor) extremes(order int, e *extent) {
 	odd := c[1] + 3*c[3] + 5*c[5] + 7*c[7]
 	even := 2*c[2] + 4*c[4] + 6*c[6] + 8*c[8]
@@ -68,21 +67,19 @@ func (c *taylor) extremes(order int, e *extent) {
 		odd += float64(k) * c[k]
 		even += float64(k+1) * c[k+1]
 	}
-	if !(math.Abs(even) > math.Abs(odd)) {
+	if odd >= even && odd >= -even || odd <= even && odd <= -even {
 		return
 	}
 	x := -odd / even
-	bend := 2*c[2] + x*(6*c[3]+x*(12*c[4]))
-	x -= (c[1] + x*(2*c[2]+x*(3*c[3]+x*(4*c[4])))) / bend
-	x = max(-1, min(1, x))
-	if order > planeShort {
+	xx := x * x
+	rate := c[1] + xx*(3*c[3]+xx*(5*c[5]+xx*(7*c[7]))) + x*(2*c[2]+xx*(4*c[4]+xx*(6*c[6]+xx*(8*c[8]))))
+	bend := 2*c[2] + xx*(12*c[4]+xx*(30*c[6])) + x*(6*c[3]+xx*(20*c[5]+xx*(42*c[7])))
+	dx := rate / bend
+	if order > planeShort || dx > 1e-3 || dx < -1e-3 {
 		e.add(c.stationary(x, order))
 		return
 	}
-	xx := x * x
-	value := c[0] + xx*(c[2]+xx*(c[4]+xx*(c[6]+xx*c[8]))) + x*(c[1]+xx*(c[3]+xx*(c[5]+xx*c[7])))
-	rate := c[1] + xx*(3*c[3]+xx*(5*c[5]+xx*(7*c[7]))) + x*(2*c[2]+xx*(4*c[4]+xx*(6*c[6]+xx*(8*c[8]))))
-	e.add(value - 0.5*rate*rate/bend)
+	e.add(c[0] + xx*(c[2]+xx*(c[4]+xx*(c[6]+xx*c[8]))) + x*(c[1]+xx*(c[3]+xx*(c[5]+xx*c[7]))) - 0.5*rate*dx)
 }
 
 // stationary returns the value where the derivative is zero, near x.
