@@ -3,23 +3,35 @@ package thermal
 import "math"
 
 const (
-	feedbackSteps     = 60   // [1] power iteration; each step gains a factor of the ratio of the two largest gains
-	feedbackTolerance = 1e-9 // [1] relative, far below any use of the figure
+	gainSteps     = 40    // [1] the iterations converge quadratically; the bound ends a cycle of roundings
+	gainTolerance = 1e-12 // [1] relative
 )
 
+// gains is the symmetric matrix √J R √J over the nodes that heat one another.
+type gains struct {
+	m    int
+	node [MaxNodes]uint8
+	at   [MaxNodes]int8 // place of a node in the matrix, -1 for none
+	root [MaxNodes]float64
+	s    [MaxNodes][MaxNodes]float64
+}
+
 // Feedback returns the largest gain of the loop from temperature over losses back
-// to temperature, and the node that carries most of it.
+// to temperature, and the node that carries most of it, -1 for none.
 //
-//	ρ = largest eigenvalue of R J,  R [K/W] the network, J = diag(dP/dT) [W/K]
+//	ρ = spectral radius of R J,  R [K/W] the network, J = diag(dP/dT) [W/K]
 //
 // Below one an equilibrium is stable; at one and above a disturbance grows:
-// runaway. R is symmetric and J diagonal, so the eigenvalues are real; where all
-// slopes are positive ρ is the spectral radius. A negative gain (a loss that
-// falls as its part warms) does not run away however large it is, and counts as
-// zero.
+// runaway. A loss that falls as its part warms never runs away; its slope counts
+// as zero, which leaves ρ a little high where such a part is coupled to others.
 //
-// Source: perturbation of T = Tamb + R P(T); power iteration. Checked against a
-// dense eigenvalue solver in TestFeedbackIsLargestEigenvalue.
+// With J >= 0, R J has the eigenvalues of the symmetric √J R √J. Its largest is
+// found in closed form up to two coupled nodes, by Newton on the characteristic
+// polynomial for three, and by Noda's iteration beyond, each from above.
+//
+// Source: perturbation of T = Tamb + R P(T). T. Noda, Numerische Mathematik 17,
+// 1971 (remembered, unverified). Checked against a dense eigenvalue solver in
+// TestFeedbackIsLargestEigenvalue.
 func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	node = -1
 	for _, i := range n.node[:n.n] {
@@ -30,77 +42,152 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	if n.couplings == 0 || node < 0 {
 		return ratio, node
 	}
-	return n.powerIteration(slope, ratio)
+	g := &n.gain
+	g.gather(n, slope)
+	if g.m < 2 {
+		return ratio, node
+	}
+	var coupled float64
+	switch g.m {
+	case 2:
+		coupled = g.largestOfTwo()
+	case 3:
+		coupled = g.largestOfThree()
+	default:
+		coupled = g.largestNoda()
+	}
+	return max(ratio, coupled), node
 }
 
-// powerIteration finds the largest eigenvalue of R J + shift, where the shift
-// makes every eigenvalue positive, by the Rayleigh quotient of the vector that
-// R J leaves in direction.
-func (n *Network) powerIteration(slope *Vector, guess float64) (ratio float64, node int) {
-	shift := 0.0
-	for _, i := range n.node[:n.n] {
-		shift = max(shift, -n.self[i]*slope[i])
-	}
-	var x Vector
-	for _, i := range n.node[:n.n] {
+// gather fills the matrix from the coupled nodes whose loss rises.
+func (g *gains) gather(n *Network, slope *Vector) {
+	g.m = 0
+	for _, i := range n.join[:n.joined] {
+		g.at[i] = -1
 		if slope[i] > 0 {
-			x[i] = n.self[i]
+			g.at[i] = int8(g.m)
+			g.node[g.m] = i
+			g.root[g.m] = math.Sqrt(slope[i])
+			g.m++
 		}
 	}
-	ratio = guess
-	for range feedbackSteps {
-		y := x
-		for _, i := range n.node[:n.n] {
-			y[i] = (n.self[i]*slope[i] + shift) * x[i]
+	for a := range g.m {
+		for b := range g.m {
+			g.s[a][b] = 0
 		}
-		for k := range n.coupling[:n.couplings] {
-			c := &n.coupling[k]
-			y[c.A] += c.OntoA * slope[c.B] * x[c.B]
-			y[c.B] += c.OntoB * slope[c.A] * x[c.A]
-		}
-		// Weighted by the slopes, R J is symmetric: this quotient errs by the
-		// square of the direction's error.
-		num, den, big := 0.0, 0.0, 0.0
-		node = -1
-		for _, i := range n.node[:n.n] {
-			w := math.Abs(slope[i])
-			num += w * x[i] * y[i]
-			den += w * x[i] * x[i]
-			if a := math.Abs(y[i]); a > big {
-				big, node = a, int(i)
+		i := g.node[a]
+		g.s[a][a] = n.self[i] * slope[i]
+	}
+	for k := range n.coupling[:n.couplings] {
+		c := &n.coupling[k]
+		a, b := g.at[c.A], g.at[c.B]
+		if a >= 0 && b >= 0 {
+			// The geometric mean serves a coupling of unequal counts.
+			r := c.OntoA
+			if c.OntoA != c.OntoB {
+				r = math.Sqrt(c.OntoA * c.OntoB)
 			}
+			r *= g.root[a] * g.root[b]
+			g.s[a][b] += r
+			g.s[b][a] += r
 		}
-		next := num/den - shift
-		for _, i := range n.node[:n.n] {
-			x[i] = y[i] / big
+	}
+}
+
+// largestOfTwo is the larger root of the quadratic.
+func (g *gains) largestOfTwo() float64 {
+	a, b, c := g.s[0][0], g.s[1][1], g.s[0][1]
+	half := (a - b) / 2
+	return (a+b)/2 + math.Sqrt(half*half+c*c)
+}
+
+// largestOfThree runs Newton down from a bound on the characteristic polynomial,
+// whose roots are real: the iteration falls monotonically onto the largest.
+func (g *gains) largestOfThree() float64 {
+	a, b, c := g.s[0][0], g.s[1][1], g.s[2][2]
+	d, e, f := g.s[0][1], g.s[0][2], g.s[1][2]
+	trace := a + b + c
+	minors := a*b + a*c + b*c - d*d - e*e - f*f
+	det := a*(b*c-f*f) - d*(d*c-e*f) + e*(d*f-b*e)
+	x := max(a+d+e, b+d+f, c+e+f)
+	for range gainSteps {
+		p := ((x-trace)*x+minors)*x - det
+		dp := (3*x-2*trace)*x + minors
+		if !(dp > 0) {
+			break
 		}
-		done := math.Abs(next-ratio) <= feedbackTolerance*math.Abs(next)
-		ratio = next
-		if done {
+		next := x - p/dp
+		if !(next < x*(1-gainTolerance)) {
+			break
+		}
+		x = next
+	}
+	return x
+}
+
+// largestNoda runs Noda's iteration for non-negative matrices: with the bound
+// μ = max (S x)i/xi it solves (μ − S) y = x, y towards the positive eigenvector.
+func (g *gains) largestNoda() float64 {
+	m := g.m
+	var x [MaxNodes]float64
+	for i := range m {
+		x[i] = 1
+	}
+	bound := math.Inf(1)
+	for range gainSteps {
+		mu, low := 0.0, math.Inf(1)
+		for i := range m {
+			sum := 0.0
+			for j := range m {
+				sum += g.s[i][j] * x[j]
+			}
+			mu, low = max(mu, sum/x[i]), min(low, sum/x[i])
+		}
+		if !(mu < bound) {
+			break
+		}
+		bound = mu
+		if mu-low <= gainTolerance*mu || !g.solveShifted(mu*(1+gainTolerance), &x) {
 			break
 		}
 	}
-	return max(ratio, 0), node
+	return bound
 }
 
-// LinearEquilibrium returns the temperature [degC] at which one part settles whose
-// loss is linear in temperature, in closed form.
-//
-//	P = Pc + P25 [1 + a (T − 25 °C)],  T = Tamb + Rth P
-//	T = [Tamb + Rth (Pc + P25 (1 − 25 a))]/(1 − Rth P25 a)
-//
-//	rth  [K/W] junction to ambient
-//	pc   [W]   loss that does not depend on temperature
-//	p25  [W]   resistive loss with the resistance at 25 °C
-//	a    [1/K] slope of the resistance
-//
-// ok is false for a gain Rth P25 a of one or more: no equilibrium.
-//
-// Derived; power-stage case ps-th-08.
-func LinearEquilibrium(ambientDegC, rth, pc, p25, a float64) (degC float64, ok bool) {
-	gain := rth * p25 * a
-	if !(gain < 1) {
-		return math.Inf(1), false
+// solveShifted replaces x by (shift − S)⁻¹ x, normed to a sum of m. For a shift
+// above the largest eigenvalue the matrix is an M-matrix: elimination needs no
+// pivoting. It reports false when the shift is not above.
+func (g *gains) solveShifted(shift float64, x *[MaxNodes]float64) bool {
+	m := g.m
+	var a [MaxNodes][MaxNodes]float64
+	for i := range m {
+		for j := range m {
+			a[i][j] = -g.s[i][j]
+		}
+		a[i][i] += shift
 	}
-	return (ambientDegC + rth*(pc+p25*(1-25*a))) / (1 - gain), true
+	for k := range m {
+		if !(a[k][k] > 0) {
+			return false
+		}
+		for i := k + 1; i < m; i++ {
+			f := a[i][k] / a[k][k]
+			for j := k; j < m; j++ {
+				a[i][j] -= f * a[k][j]
+			}
+			x[i] -= f * x[k]
+		}
+	}
+	sum := 0.0
+	for k := m - 1; k >= 0; k-- {
+		for j := k + 1; j < m; j++ {
+			x[k] -= a[k][j] * x[j]
+		}
+		x[k] /= a[k][k]
+		sum += x[k]
+	}
+	for i := range m {
+		x[i] = max(x[i]*float64(m)/sum, 1e-12)
+	}
+	return true
 }

@@ -7,6 +7,8 @@
 // allocates.
 package thermal
 
+import "slices"
+
 const (
 	MaxNodes     = 18 // [1]
 	MaxCouplings = 64 // [1]
@@ -25,16 +27,23 @@ type Coupling struct {
 // value is empty.
 //
 //	Ti = Tamb + Rii Pi + Σ Rij Pj
+//
+// It owns the workspace of Step and Feedback, so each goroutine needs its own.
 type Network struct {
 	n         int
 	node      [MaxNodes]uint8
 	self      Vector // [K/W]
 	couplings int
 	coupling  [MaxCouplings]Coupling
+	joined    int // nodes that take part in a coupling
+	join      [MaxNodes]uint8
+
+	lack, delta, next, inverse Vector // workspace of Step
+	gain                       gains  // workspace of Feedback
 }
 
 // Reset empties the network.
-func (n *Network) Reset() { n.n, n.couplings = 0, 0 }
+func (n *Network) Reset() { n.n, n.couplings, n.joined = 0, 0, 0 }
 
 // Add puts node i in the network with its resistance to ambient [K/W].
 func (n *Network) Add(i int, resistance float64) {
@@ -52,6 +61,12 @@ func (n *Network) SetSelf(i int, resistance float64) { n.self[i] = resistance }
 func (n *Network) Couple(a, b int, ontoA, ontoB float64) {
 	n.coupling[n.couplings] = Coupling{uint8(a), uint8(b), ontoA, ontoB}
 	n.couplings++
+	for _, i := range [...]uint8{uint8(a), uint8(b)} {
+		if !slices.Contains(n.join[:n.joined], i) {
+			n.join[n.joined] = i
+			n.joined++
+		}
+	}
 }
 
 // Full reports whether no further coupling can be taken.

@@ -19,10 +19,10 @@ const (
 	// Climb is the step upwards [K] where Newton's direction is of no use; losses
 	// of real parts do not bend back within less.
 	Climb = 25.0 // [K]
-	// sweeps of the coupled Newton equation; each reduces the error by the share
-	// of mutual heating, and the next outer step corrects what is left.
-	sweeps         = 4
-	sweepTolerance = 1e-6 // [K] far below the thousandth of a kelvin that is asked for
+	// Couplings enter a step by sweeps. Each shrinks the error by the share of
+	// mutual heating, a few per cent as a rule; the next step corrects what is left.
+	sweepLimit     = 60
+	sweepTolerance = 1e-5 // [1] of the largest change
 )
 
 // Step moves temperatures towards the equilibrium by one Newton step, given the
@@ -38,56 +38,55 @@ const (
 // fixed amount instead: an equilibrium further up, where a loss curve flattens,
 // is still found, and Runaway is returned above CeilingDegC only.
 //
-// The change is that of the inexact Newton step. A converged answer is checked by
-// the caller with Residual.
+// A converged answer is checked by the caller with Residual.
 func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change float64, state State) {
-	var g, delta, target Vector
-	n.Temperatures(ambientDegC, power, &target)
-	climbs := false
+	n.Temperatures(ambientDegC, power, &n.lack)
+	stable := true
 	for _, i := range n.node[:n.n] {
-		g[i] = target[i] - degC[i]
+		n.lack[i] -= degC[i]
 		d := 1 - n.self[i]*slope[i]
-		if !(d > 0) && g[i] > 0 {
-			climbs = true
-			break
-		}
-		delta[i] = g[i] / d
+		stable = stable && (d > 0 || !(n.lack[i] > 0))
+		n.inverse[i] = 1 / d
+		n.delta[i] = n.lack[i] * n.inverse[i]
 	}
-	if !climbs && n.couplings > 0 {
-		climbs = !n.sweep(&g, slope, &delta)
+	if stable && n.couplings > 0 {
+		stable = n.sweep(slope)
 	}
-	if climbs {
-		return n.climb(&g, slope, degC)
+	if !stable {
+		return n.climb(slope, degC)
 	}
 	for _, i := range n.node[:n.n] {
-		t := degC[i] + delta[i]
-		change = max(change, math.Abs(delta[i]))
-		degC[i] = t
-		if !(t <= CeilingDegC) {
+		degC[i] += n.delta[i]
+		change = max(change, math.Abs(n.delta[i]))
+		if !(degC[i] <= CeilingDegC) {
 			state = Runaway
 		}
 	}
 	return change, state
 }
 
-// sweep refines delta for the couplings; false if the coupled gain is one or more.
-func (n *Network) sweep(g, slope, delta *Vector) bool {
+// sweep refines delta for the couplings. It reports whether that converges, which
+// it does exactly if the gain of the coupled parts is below one.
+func (n *Network) sweep(slope *Vector) bool {
 	last := math.Inf(1)
-	for range sweeps {
-		next := *g
+	for range sweepLimit {
+		for _, i := range n.join[:n.joined] {
+			n.next[i] = n.lack[i]
+		}
 		for k := range n.coupling[:n.couplings] {
 			c := &n.coupling[k]
-			next[c.A] += c.OntoA * slope[c.B] * delta[c.B]
-			next[c.B] += c.OntoB * slope[c.A] * delta[c.A]
+			n.next[c.A] += c.OntoA * slope[c.B] * n.delta[c.B]
+			n.next[c.B] += c.OntoB * slope[c.A] * n.delta[c.A]
 		}
-		moved := 0.0
-		for _, i := range n.node[:n.n] {
-			next[i] /= 1 - n.self[i]*slope[i]
-			moved = max(moved, math.Abs(next[i]-delta[i]))
+		moved, largest := 0.0, 0.0
+		for _, i := range n.join[:n.joined] {
+			d := n.next[i] * n.inverse[i]
+			moved = max(moved, math.Abs(d-n.delta[i]))
+			largest = max(largest, math.Abs(d))
+			n.delta[i] = d
 		}
-		*delta = next
-		if moved <= sweepTolerance {
-			break
+		if moved <= sweepTolerance*largest {
+			return true
 		}
 		if !(moved < last) {
 			return false
@@ -97,20 +96,24 @@ func (n *Network) sweep(g, slope, delta *Vector) bool {
 	return true
 }
 
-func (n *Network) climb(g, slope, degC *Vector) (change float64, state State) {
+// climb raises every part that is short of its temperature.
+func (n *Network) climb(slope, degC *Vector) (change float64, state State) {
+	state = Climbed
 	for _, i := range n.node[:n.n] {
-		if g[i] > 0 && slope[i] > 0 {
-			degC[i] += Climb
-			change = Climb
+		if !(n.lack[i] > 0) {
+			continue
 		}
+		up := n.lack[i]
+		if slope[i] > 0 {
+			up = max(up, Climb)
+		}
+		degC[i] += up
+		change = max(change, up)
 		if !(degC[i] <= CeilingDegC) {
 			state = Runaway
 		}
 	}
-	if state == Runaway {
-		return change, state
-	}
-	return change, Climbed
+	return change, state
 }
 
 // Residual returns the largest |T(P) − T| [K] over the nodes.
