@@ -56,7 +56,7 @@ type Search struct {
 	borders    []border
 	starts     [][]start
 	resting    []bool // targets that a resumed search leaves alone
-	scattered  int // independent points spread evenly over the box
+	scattered  int    // independent points spread evenly over the box
 	evaluated  int
 }
 
