@@ -7,13 +7,12 @@ const (
 	gainTolerance = 1e-12 // [1] relative
 )
 
-// gains is the symmetric matrix √J R √J over the nodes that heat one another.
+// gains is the matrix R J over the nodes that heat one another.
 type gains struct {
 	m    int
 	node [MaxNodes]uint8
 	at   [MaxNodes]int8 // place of a node in the matrix, -1 for none
-	root [MaxNodes]float64
-	s    [MaxNodes][MaxNodes]float64
+	rj   [MaxNodes][MaxNodes]float64
 }
 
 // Feedback returns the largest gain of the loop from temperature over losses back
@@ -25,9 +24,10 @@ type gains struct {
 // runaway. A loss that falls as its part warms never runs away; its slope counts
 // as zero, which leaves ρ a little high where such a part is coupled to others.
 //
-// With J >= 0, R J has the eigenvalues of the symmetric √J R √J. Its largest is
-// found in closed form up to two coupled nodes, by Newton on the characteristic
-// polynomial for three, and by Noda's iteration beyond, each from above.
+// With J >= 0 the eigenvalues are real (R J is similar to the symmetric √J R √J).
+// The largest is found in closed form up to two coupled nodes, by Newton on the
+// characteristic polynomial for three, and by Noda's iteration beyond, each from
+// above.
 //
 // Source: perturbation of T = Tamb + R P(T). T. Noda, Numerische Mathematik 17,
 // 1971 (remembered, unverified). Checked against a dense eigenvalue solver in
@@ -67,56 +67,48 @@ func (g *gains) gather(n *Network, slope *Vector) {
 		if slope[i] > 0 {
 			g.at[i] = int8(g.m)
 			g.node[g.m] = i
-			g.root[g.m] = math.Sqrt(slope[i])
 			g.m++
 		}
 	}
-	for a := range g.m {
-		for b := range g.m {
-			g.s[a][b] = 0
+	for a, i := range g.node[:g.m] {
+		row := g.rj[a][:g.m]
+		for b := range row {
+			row[b] = 0
 		}
-		i := g.node[a]
-		g.s[a][a] = n.self[i] * slope[i]
+		row[a] = n.self[i] * slope[i]
 	}
 	for k := range n.coupling[:n.couplings] {
 		c := &n.coupling[k]
-		a, b := g.at[c.A], g.at[c.B]
-		if a >= 0 && b >= 0 {
-			// The geometric mean serves a coupling of unequal counts.
-			r := c.OntoA
-			if c.OntoA != c.OntoB {
-				r = math.Sqrt(c.OntoA * c.OntoB)
-			}
-			r *= g.root[a] * g.root[b]
-			g.s[a][b] += r
-			g.s[b][a] += r
+		if a, b := g.at[c.A], g.at[c.B]; a >= 0 && b >= 0 {
+			g.rj[a][b] += c.OntoA * slope[c.B]
+			g.rj[b][a] += c.OntoB * slope[c.A]
 		}
 	}
 }
 
 // largestOfTwo is the larger root of the quadratic.
 func (g *gains) largestOfTwo() float64 {
-	a, b, c := g.s[0][0], g.s[1][1], g.s[0][1]
+	a, b := g.rj[0][0], g.rj[1][1]
 	half := (a - b) / 2
-	return (a+b)/2 + math.Sqrt(half*half+c*c)
+	return (a+b)/2 + math.Sqrt(half*half+g.rj[0][1]*g.rj[1][0])
 }
 
-// largestOfThree runs Newton down from a bound on the characteristic polynomial,
-// whose roots are real: the iteration falls monotonically onto the largest.
+// largestOfThree runs Newton down from the largest row sum on the characteristic
+// polynomial, whose roots are real: it falls monotonically onto the largest.
 func (g *gains) largestOfThree() float64 {
-	a, b, c := g.s[0][0], g.s[1][1], g.s[2][2]
-	d, e, f := g.s[0][1], g.s[0][2], g.s[1][2]
-	trace := a + b + c
-	minors := a*b + a*c + b*c - d*d - e*e - f*f
-	det := a*(b*c-f*f) - d*(d*c-e*f) + e*(d*f-b*e)
-	x := max(a+d+e, b+d+f, c+e+f)
+	r, s, t := &g.rj[0], &g.rj[1], &g.rj[2]
+	trace := r[0] + s[1] + t[2]
+	minor := s[1]*t[2] - s[2]*t[1]
+	minors := r[0]*s[1] - r[1]*s[0] + r[0]*t[2] - r[2]*t[0] + minor
+	det := r[0]*minor - r[1]*(s[0]*t[2]-s[2]*t[0]) + r[2]*(s[0]*t[1]-s[1]*t[0])
+	x := max(r[0]+r[1]+r[2], s[0]+s[1]+s[2], t[0]+t[1]+t[2])
 	for range gainSteps {
 		p := ((x-trace)*x+minors)*x - det
-		dp := (3*x-2*trace)*x + minors
-		if !(dp > 0) {
+		slope := (3*x-2*trace)*x + minors
+		if !(slope > 0) {
 			break
 		}
-		next := x - p/dp
+		next := x - p/slope
 		if !(next < x*(1-gainTolerance)) {
 			break
 		}
@@ -126,7 +118,7 @@ func (g *gains) largestOfThree() float64 {
 }
 
 // largestNoda runs Noda's iteration for non-negative matrices: with the bound
-// μ = max (S x)i/xi it solves (μ − S) y = x, y towards the positive eigenvector.
+// μ = max (R J x)i/xi it solves (μ − R J) y = x, y towards the positive eigenvector.
 func (g *gains) largestNoda() float64 {
 	m := g.m
 	var x [MaxNodes]float64
@@ -139,7 +131,7 @@ func (g *gains) largestNoda() float64 {
 		for i := range m {
 			sum := 0.0
 			for j := range m {
-				sum += g.s[i][j] * x[j]
+				sum += g.rj[i][j] * x[j]
 			}
 			mu, low = max(mu, sum/x[i]), min(low, sum/x[i])
 		}
@@ -154,7 +146,7 @@ func (g *gains) largestNoda() float64 {
 	return bound
 }
 
-// solveShifted replaces x by (shift − S)⁻¹ x, normed to a sum of m. For a shift
+// solveShifted replaces x by (shift − R J)⁻¹ x, normed to a sum of m. For a shift
 // above the largest eigenvalue the matrix is an M-matrix: elimination needs no
 // pivoting. It reports false when the shift is not above.
 func (g *gains) solveShifted(shift float64, x *[MaxNodes]float64) bool {
@@ -162,7 +154,7 @@ func (g *gains) solveShifted(shift float64, x *[MaxNodes]float64) bool {
 	var a [MaxNodes][MaxNodes]float64
 	for i := range m {
 		for j := range m {
-			a[i][j] = -g.s[i][j]
+			a[i][j] = -g.rj[i][j]
 		}
 		a[i][i] += shift
 	}
