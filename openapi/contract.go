@@ -28,6 +28,7 @@ type Operation struct {
 	ID         string
 	Method     string         // "POST"
 	Path       string         // "/v1/jobs/{id}"
+	Summary    string         // one line for people
 	Query      []Parameter    // query parameters
 	InPath     []Parameter    // parameters in the path
 	Statuses   []int          // every status it can send, ascending

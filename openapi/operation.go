@@ -14,6 +14,7 @@ const (
 func (k *compiler) operation(method, path string, o map[string]any) *operation {
 	op := &operation{responses: map[int]*node{}}
 	op.ID, op.Method, op.Path = o["operationId"].(string), method, path
+	op.Summary, _ = o["summary"].(string)
 	for _, p := range list(o["parameters"]) {
 		k.parameter(op, k.deref(p))
 	}

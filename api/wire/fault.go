@@ -2,6 +2,7 @@ package wire
 
 import (
 	"errors"
+	"strconv"
 	"strings"
 
 	"railproof/calc/parts"
@@ -11,12 +12,12 @@ import (
 // Fault is one thing in a document that cannot be taken: where it stands, what
 // was given and what would be accepted.
 type Fault struct {
-	Pointer  string `json:"pointer"`            // RFC 6901, from the request's root
-	Keyword  string `json:"keyword"`            // what was violated: "maximum", "spread", "physics"
-	Detail   string `json:"detail"`             // for people
-	Limit    any    `json:"limit,omitempty"`    // the bound that was crossed
-	Received any    `json:"received,omitempty"` // what was given
-	Unit     string `json:"unit,omitempty"`     // UCUM code of limit and received
+	Pointer  string `json:"pointer"`           // RFC 6901, from the request's root
+	Keyword  string `json:"keyword"`           // what was violated: "maximum", "spread", "physics"
+	Detail   string `json:"detail"`            // for people
+	Limit    string `json:"limit,omitzero"`    // what is accepted
+	Received string `json:"received,omitzero"` // what was given
+	Unit     string `json:"unit,omitzero"`     // UCUM code of limit and received
 }
 
 // MaxFaults bounds the list of faults in one answer.
@@ -50,29 +51,36 @@ func physicalFaults(e *stage.InvalidError, root string) []Fault {
 		if f.Field != "" {
 			at += "/" + f.Field
 		}
-		faults[i] = Fault{Pointer: at, Keyword: "physics", Detail: sentence(f.Detail, f.Accepted), Limit: known(f.Limit), Received: known(f.Given), Unit: UnitOf(at)}
-		if !parts.Known(f.Given) {
+		faults[i] = Fault{Pointer: at, Keyword: "physics", Detail: f.Detail, Limit: f.Accepted, Received: figure(f.Given), Unit: UnitOf(at)}
+		if !parts.Known(f.Limit) && !parts.Known(f.Given) {
 			faults[i].Keyword = "required"
 		}
 	}
 	return faults
 }
 
-func sentence(detail, accepted string) string {
-	if accepted == "" {
-		return detail
+// figure writes a number for people and machines alike; nothing for an unknown.
+func figure(v float64) string {
+	if !parts.Known(v) {
+		return ""
 	}
-	return detail + "; accepted: " + accepted
-}
-
-func known(v float64) any {
-	if parts.Known(v) {
-		return v
-	}
-	return nil
+	return strconv.FormatFloat(v, 'g', -1, 64)
 }
 
 // EscapeToken writes one reference token of a JSON Pointer.
 func EscapeToken(s string) string {
 	return strings.ReplaceAll(strings.ReplaceAll(s, "~", "~0"), "/", "~1")
+}
+
+// faultsOf returns the faults of an *InvalidError, none of a nil error. Any other
+// error is a fault of this package's caller.
+func faultsOf(err error) []Fault {
+	if err == nil {
+		return nil
+	}
+	invalid, ok := errors.AsType[*InvalidError](err)
+	if !ok {
+		panic("wire: a check that reports no faults")
+	}
+	return invalid.Faults
 }

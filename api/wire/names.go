@@ -24,8 +24,8 @@ var modulatorModes = map[string]parts.ModulatorMode{
 }
 
 var compensatorTypes = map[string]parts.CompensatorType{
-	"op-amp-type-1": parts.OpAmpType1, "op-amp-type-2": parts.OpAmpType2, "op-amp-type-3": parts.OpAmpType3,
-	"transconductance-type-2": parts.TransconductanceType2, "transconductance-type-3": parts.TransconductanceType3,
+	"op-amp-1": parts.OpAmpType1, "op-amp-2": parts.OpAmpType2, "op-amp-3": parts.OpAmpType3,
+	"transconductance-2": parts.TransconductanceType2, "transconductance-3": parts.TransconductanceType3,
 }
 
 // nameOf returns the wire name of a value; the empty name is only an alias for

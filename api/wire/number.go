@@ -54,6 +54,14 @@ func (n Number) MarshalJSON() ([]byte, error) {
 	return appendFloat(nil, n.Value), nil
 }
 
+// ContractValue returns what stands on the wire, for the check of answers.
+func (n *Number) ContractValue() any {
+	if n.Spread != nil {
+		return n.Spread
+	}
+	return n.Value
+}
+
 // Of returns a bare number.
 func Of(v float64) *Number { return &Number{Value: v} }
 

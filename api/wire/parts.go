@@ -6,7 +6,7 @@ type MOSFET struct {
 	Assumed            *bool            `json:"assumed,omitzero"`
 	OnResistance       *Number          `json:"on_resistance_ohm"`
 	OnResistanceTemp   []JunctionFactor `json:"on_resistance_temp,omitzero"`
-	OnResistanceDrive  []DriveFactor    `json:"on_resistance_at_drive,omitzero"`
+	OnResistanceDrive  []DriveFactor    `json:"on_resistance_drive,omitzero"`
 	GateCharge         *Number          `json:"gate_charge_c,omitzero"`
 	GateSwitchCharge   *Number          `json:"gate_switch_charge_c,omitzero"`
 	GateSwitchChargeAt *float64         `json:"gate_switch_charge_at_v,omitzero"`
@@ -14,7 +14,7 @@ type MOSFET struct {
 	InternalGate       *Number          `json:"internal_gate_ohm,omitzero"`
 	OutputCharge       *Number          `json:"output_charge_c,omitzero"`
 	OutputChargeAt     *float64         `json:"output_charge_at_v,omitzero"`
-	OutputChargeTable  []VoltageCharge  `json:"output_charge_at_voltage,omitzero"`
+	OutputChargeTable  []VoltageCharge  `json:"output_charge_table,omitzero"`
 	RecoveryCharge     *Number          `json:"recovery_charge_c,omitzero"`
 	BodyDiode          *Number          `json:"body_diode_v,omitzero"`
 	Rating             *MOSFETRating    `json:"rating,omitzero"`
@@ -72,7 +72,7 @@ type Inductor struct {
 // Core describes the core loss.
 type Core struct {
 	Steinmetz *Steinmetz   `json:"steinmetz"`
-	Turns     *float64     `json:"turns"`
+	Turns     *Integer     `json:"turns"`
 	Area      *float64     `json:"area_m2"`
 	Volume    *float64     `json:"volume_m3"`
 	Temp      []CoreFactor `json:"temp,omitzero"`
@@ -105,7 +105,7 @@ type Capacitor struct {
 	Assumed           *bool             `json:"assumed,omitzero"`
 	Kind              string            `json:"kind,omitzero"`
 	Capacitance       *Number           `json:"capacitance_f"`
-	Count             *int              `json:"count,omitzero"`
+	Count             *Integer          `json:"count,omitzero"`
 	ESR               *Number           `json:"esr_ohm,omitzero"`
 	ESL               *Number           `json:"esl_h,omitzero"`
 	CapacitanceAtBias []BiasFactor      `json:"capacitance_at_bias,omitzero"`
@@ -133,6 +133,8 @@ type CapacitorLife struct {
 
 // Controller drives the switches.
 type Controller struct {
+	PartNumber       string            `json:"part_number,omitzero"`
+	Assumed          *bool             `json:"assumed,omitzero"`
 	Drive            *Number           `json:"drive_v,omitzero"`
 	GateOn           *Number           `json:"gate_on_ohm,omitzero"`
 	GateOff          *Number           `json:"gate_off_ohm,omitzero"`

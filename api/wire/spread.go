@@ -56,12 +56,12 @@ func (n *Number) faults(at string) []Fault {
 		return nil
 	}
 	var f []Fault
-	bad := func(token, detail string, received any) {
-		f = append(f, Fault{Pointer: at + token, Keyword: "spread", Detail: detail, Received: received, Unit: UnitOf(at + token)})
+	bad := func(token, detail string, received float64) {
+		f = append(f, Fault{Pointer: at + token, Keyword: "spread", Detail: detail, Received: figure(received), Unit: UnitOf(at + token)})
 	}
 	typ := n.typical()
 	if !parts.Known(typ) {
-		bad("", "a spread needs typ, or both min and max", nil)
+		bad("", "a spread needs typ, or both min and max", parts.Unknown)
 		return f
 	}
 	if s.Tol != nil {

@@ -5,7 +5,7 @@ package wire
 type Stage struct {
 	Name               string            `json:"name,omitzero"`
 	Rectifier          string            `json:"rectifier"`
-	PhaseCount         *int              `json:"phase_count,omitzero"`
+	PhaseCount         *Integer          `json:"phase_count,omitzero"`
 	SwitchingFrequency *Number           `json:"switching_frequency_hz"`
 	HighSide           *MOSFET           `json:"high_side"`
 	LowSide            *MOSFET           `json:"low_side,omitzero"`
@@ -46,7 +46,7 @@ type PhaseOverride struct {
 
 // ThermalCoupling is the rise of one part per watt in another.
 type ThermalCoupling struct {
-	PartA      string  `json:"part_a"`
-	PartB      string  `json:"part_b"`
+	A          string  `json:"a"`
+	B          string  `json:"b"`
 	Resistance float64 `json:"coupling_k_per_w"`
 }

@@ -51,11 +51,14 @@ func (d *Decoded) numbers(w *Stage, root string, faults *[]Fault) {
 			continue
 		}
 		delete(given, f.ID)
-		if s.plain != nil {
+		switch {
+		case s.plain != nil:
 			*f.Value = **s.plain
-			continue
+		case s.whole != nil:
+			*f.Value = float64(**s.whole)
+		default:
+			d.number(&f, *s.number, root+"/"+f.ID, members, faults)
 		}
-		d.number(&f, *s.number, root+"/"+f.ID, members, faults)
 	}
 	for _, id := range order {
 		if _, left := given[id]; left {
@@ -90,8 +93,8 @@ func endFault(at, end string, received, limit float64, n *Number) Fault {
 	if n.Spread.Tol != nil {
 		token = "/tol"
 	}
-	return Fault{Pointer: at + token, Keyword: "physics", Limit: limit, Received: received, Unit: UnitOf(at),
-		Detail: fmt.Sprintf("the spread's %s of %g lies outside the physical range; accepted: up to %g", end, received, limit)}
+	return Fault{Pointer: at + token, Keyword: "physics", Limit: "up to " + figure(limit), Received: figure(received), Unit: UnitOf(at),
+		Detail: "the spread's " + end + " lies outside the physical range"}
 }
 
 // physics runs the stage's own check and leaves out what was already faulted.
@@ -118,7 +121,7 @@ func (d *Decoded) physics(root string, known []Fault) []Fault {
 func (w *Stage) describe(s *stage.Stage, root string, faults *[]Fault) {
 	s.Name = w.Name
 	if w.PhaseCount != nil {
-		s.PhaseCount = *w.PhaseCount
+		s.PhaseCount = int(*w.PhaseCount)
 	}
 	if w.HighSide != nil {
 		w.HighSide.describe(&s.HighSide, root+"/high_side", faults)
@@ -148,15 +151,15 @@ func (w *Stage) describe(s *stage.Stage, root string, faults *[]Fault) {
 		s.Compensator.Type = compensatorTypes[w.Compensator.Type]
 	}
 	for _, c := range w.ThermalCouplings {
-		s.ThermalCouplings = append(s.ThermalCouplings, stage.ThermalCoupling{A: c.PartA, B: c.PartB, Resistance: c.Resistance})
+		s.ThermalCouplings = append(s.ThermalCouplings, stage.ThermalCoupling{A: c.A, B: c.B, Resistance: c.Resistance})
 	}
 }
 
 func (w *MOSFET) describe(m *parts.MOSFET, at string, faults *[]Fault) {
 	m.PartNumber, m.Assumed = w.PartNumber, isTrue(w.Assumed)
 	m.OnResistanceTemp = table(w.OnResistanceTemp, at+"/on_resistance_temp", "junction_degc", faults)
-	m.OnResistanceDrive = table(w.OnResistanceDrive, at+"/on_resistance_at_drive", "drive_v", faults)
-	m.OutputChargeTable = table(w.OutputChargeTable, at+"/output_charge_at_voltage", "drain_source_v", faults)
+	m.OnResistanceDrive = table(w.OnResistanceDrive, at+"/on_resistance_drive", "drive_v", faults)
+	m.OutputChargeTable = table(w.OutputChargeTable, at+"/output_charge_table", "voltage_v", faults)
 }
 
 func (w *Diode) describe(d *parts.Diode, at string, faults *[]Fault) {
@@ -175,11 +178,11 @@ func (w *Inductor) describe(l *parts.Inductor, at string, faults *[]Fault) {
 func (w *Capacitor) describe(c *parts.Capacitor, at string, faults *[]Fault) {
 	c.PartNumber, c.Assumed, c.Kind, c.Count = w.PartNumber, isTrue(w.Assumed), capacitorKinds[w.Kind], 1
 	if w.Count != nil {
-		c.Count = *w.Count
+		c.Count = int(*w.Count)
 	}
 	c.CapacitanceAtBias = table(w.CapacitanceAtBias, at+"/capacitance_at_bias", "bias_v", faults)
-	c.CapacitanceTemp = table(w.CapacitanceTemp, at+"/capacitance_temp", "capacitor_degc", faults)
-	c.ESRTemp = table(w.ESRTemp, at+"/esr_temp", "capacitor_degc", faults)
+	c.CapacitanceTemp = table(w.CapacitanceTemp, at+"/capacitance_temp", "temperature_degc", faults)
+	c.ESRTemp = table(w.ESRTemp, at+"/esr_temp", "temperature_degc", faults)
 	c.CapacitanceAgeing = table(w.Ageing, at+"/ageing", "age_ratio", faults)
 	if n := len(w.Ageing); n > 0 {
 		esr := make([]float64, n)

@@ -30,6 +30,8 @@ func EncodeStage(s *stage.Stage, variables []spread.Variable) *Stage {
 		case !found:
 		case place.plain != nil:
 			*place.plain = &v
+		case place.whole != nil:
+			*place.whole = whole(int(v))
 		case wide[id] != nil:
 			*place.number = spreadOf(wide[id])
 		default:
@@ -43,7 +45,7 @@ func EncodeStage(s *stage.Stage, variables []spread.Variable) *Stage {
 // outline builds the objects that exist in the stage, with all that is not a
 // registered number.
 func outline(s *stage.Stage) *Stage {
-	w := &Stage{Name: s.Name, Rectifier: nameOf(rectifiers, s.Rectifier), PhaseCount: &s.PhaseCount, HighSide: outlineMOSFET(&s.HighSide), Inductor: outlineInductor(&s.Inductor)}
+	w := &Stage{Name: s.Name, Rectifier: nameOf(rectifiers, s.Rectifier), PhaseCount: whole(s.PhaseCount), HighSide: outlineMOSFET(&s.HighSide), Inductor: outlineInductor(&s.Inductor)}
 	if s.Rectifier == stage.DiodeRectified {
 		d := &s.Diode
 		w.Diode = &Diode{PartNumber: d.PartNumber, Assumed: mark(d.Assumed), Leakage: rows(d.Leakage, func(x, y float64) JunctionCurrent { return JunctionCurrent{x, y} })}
@@ -97,7 +99,7 @@ func outlineInductor(l *parts.Inductor) *Inductor {
 
 func outlineCapacitor(c *parts.Capacitor) *Capacitor {
 	w := &Capacitor{
-		PartNumber: c.PartNumber, Assumed: mark(c.Assumed), Kind: nameOf(capacitorKinds, c.Kind), Count: &c.Count,
+		PartNumber: c.PartNumber, Assumed: mark(c.Assumed), Kind: nameOf(capacitorKinds, c.Kind), Count: whole(c.Count),
 		CapacitanceAtBias: rows(c.CapacitanceAtBias, func(x, y float64) BiasFactor { return BiasFactor{x, y} }),
 		CapacitanceTemp:   rows(c.CapacitanceTemp, func(x, y float64) CapacitorFactor { return CapacitorFactor{x, y} }),
 		ESRTemp:           rows(c.ESRTemp, func(x, y float64) CapacitorFactor { return CapacitorFactor{x, y} }),
@@ -117,6 +119,11 @@ func spreadOf(v *spread.Variable) *Number {
 		s.MatchTol = &v.MatchTol
 	}
 	return &Number{Spread: s}
+}
+
+func whole(n int) *Integer {
+	i := Integer(n)
+	return &i
 }
 
 func mark(b bool) *bool {

@@ -21,7 +21,7 @@ type (
 	}
 	// VoltageCharge is a charge at a drain-source voltage.
 	VoltageCharge struct {
-		Voltage float64 `json:"drain_source_v"`
+		Voltage float64 `json:"voltage_v"`
 		Charge  float64 `json:"charge_c"`
 	}
 	// JunctionCurrent is a current at a junction temperature.
@@ -46,14 +46,14 @@ type (
 	}
 	// CapacitorFactor multiplies a value at a capacitor temperature.
 	CapacitorFactor struct {
-		Capacitor  float64 `json:"capacitor_degc"`
+		Capacitor  float64 `json:"temperature_degc"`
 		Multiplier float64 `json:"multiplier_ratio"`
 	}
 	// AgeFactor multiplies capacitance and series resistance at an age.
 	AgeFactor struct {
 		Age         float64 `json:"age_ratio"`
-		Capacitance float64 `json:"capacitance_multiplier_ratio"`
-		ESR         float64 `json:"esr_multiplier_ratio"`
+		Capacitance float64 `json:"capacitance_ratio"`
+		ESR         float64 `json:"esr_ratio"`
 	}
 )
 
@@ -75,7 +75,7 @@ func table[R interface{ pair() (x, y float64) }](rows []R, at, column string, fa
 		if i > 0 && !(x > t.X[i-1]) {
 			p := at + "/" + strconv.Itoa(i) + "/" + column
 			*faults = append(*faults, Fault{
-				Pointer: p, Keyword: "table", Limit: t.X[i-1], Received: x, Unit: UnitOf(p),
+				Pointer: p, Keyword: "table", Limit: "above " + figure(t.X[i-1]), Received: figure(x), Unit: UnitOf(p),
 				Detail: fmt.Sprintf("a table rises strictly in its first column; the row before has %g", t.X[i-1]),
 			})
 		}

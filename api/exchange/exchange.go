@@ -1,0 +1,119 @@
+package exchange
+
+import (
+	"context"
+	"encoding/json"
+	"fmt"
+	"time"
+
+	v2 "github.com/go-json-experiment/json"
+
+	"railproof/api/wire"
+	"railproof/openapi"
+	"railproof/service"
+)
+
+// Exchange answers operations. It is safe for concurrent use.
+type Exchange struct {
+	contract *openapi.Contract
+	service  *service.Service
+}
+
+// New returns an exchange over the contract and the use cases.
+func New(contract *openapi.Contract, s *service.Service) *Exchange {
+	return &Exchange{contract: contract, service: s}
+}
+
+// Answer is a computed answer, checked against the contract.
+type Answer struct {
+	Operation string
+	Value     any      // the wire value that Body encodes
+	Body      []byte   // JSON, one line
+	ResultID  string   // empty for dictionaries
+	Timings   []Timing // outside the result
+}
+
+// Timing is the time one step took.
+type Timing struct {
+	Step string
+	Took time.Duration
+}
+
+// handler decodes a request, calls one use case and encodes its answer.
+type handler func(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error)
+
+// Computes reports whether the exchange has the operation and it takes a body.
+func (x *Exchange) Computes(operation string) bool { return computations[operation] != nil }
+
+// Do answers an operation that takes a body.
+func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answer, *Problem) {
+	h := computations[operation]
+	if h == nil {
+		panic("exchange: no operation " + operation)
+	}
+	watch := stopwatch{last: time.Now()}
+	tree, problem := parse(body)
+	if problem != nil {
+		return nil, problem
+	}
+	watch.lap("parse")
+	if faults := x.contract.ValidateRequest(operation, tree); faults != nil {
+		return nil, Schema(SchemaFault, faults)
+	}
+	watch.lap("check-request")
+	id, err := service.ResultID(operation, x.service.Engine(), body)
+	if err != nil {
+		return nil, problemOf(err)
+	}
+	watch.lap("digest")
+	value, err := h(ctx, x, body, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: id})
+	if err != nil {
+		return nil, problemOf(err)
+	}
+	watch.lap("compute")
+	a, problem := x.finish(operation, value, &watch)
+	if problem != nil {
+		return nil, problem
+	}
+	a.ResultID = id
+	return a, nil
+}
+
+// finish checks an answer against the contract and encodes it.
+func (x *Exchange) finish(operation string, value any, watch *stopwatch) (*Answer, *Problem) {
+	if faults := x.contract.ValidateResponse(operation, 200, value); faults != nil {
+		return nil, problemOf(fmt.Errorf("exchange: answer of %s breaks the contract: %+v", operation, faults))
+	}
+	watch.lap("check-answer")
+	body, err := json.Marshal(value)
+	if err != nil {
+		return nil, problemOf(fmt.Errorf("exchange: answer of %s cannot be encoded: %w", operation, err))
+	}
+	watch.lap("encode")
+	return &Answer{Operation: operation, Value: value, Body: append(body, '\n'), Timings: watch.laps}, nil
+}
+
+// decode reads a request that the contract has accepted.
+func decode[R any](body []byte) (*R, error) {
+	r := new(R)
+	if err := v2.Unmarshal(body, r, v2.RejectUnknownMembers(true)); err != nil {
+		return nil, &misread{err}
+	}
+	return r, nil
+}
+
+// misread is a request that the contract accepts and the wire types do not.
+type misread struct{ err error }
+
+func (m *misread) Error() string { return "exchange: " + m.err.Error() }
+
+type stopwatch struct {
+	last time.Time
+	laps []Timing
+}
+
+func (s *stopwatch) lap(step string) {
+	now := time.Now()
+	s.laps = append(s.laps, Timing{step, now.Sub(s.last)})
+	s.last = now
+}

@@ -1,0 +1,2 @@
+// Package render writes answers in forms for people and spreadsheets.
+package render

@@ -1,0 +1,72 @@
+package service
+
+import (
+	"context"
+	"errors"
+	"sync/atomic"
+	"time"
+)
+
+// ErrBusy tells that a lane's slots are taken and its queue is full or did not
+// move in time. The same call can succeed later.
+var ErrBusy = errors.New("service: busy")
+
+// laneKind keeps long work from short work: each has slots of its own.
+type laneKind uint8
+
+const (
+	interactive laneKind = iota
+	bulk
+	laneCount
+)
+
+// lane is a number of slots with a bounded queue before them.
+type lane struct {
+	slots   chan struct{}
+	waiting atomic.Int64
+	queue   int64
+	wait    time.Duration
+}
+
+func newLane(slots, queue int, wait time.Duration) *lane {
+	return &lane{slots: make(chan struct{}, slots), queue: int64(queue), wait: wait}
+}
+
+// enter takes a slot, or waits for one as long as the queue allows.
+func (l *lane) enter(ctx context.Context) error {
+	if err := context.Cause(ctx); err != nil {
+		return err
+	}
+	select {
+	case l.slots <- struct{}{}:
+		return nil
+	default:
+	}
+	if l.waiting.Add(1) > l.queue {
+		l.waiting.Add(-1)
+		return ErrBusy
+	}
+	defer l.waiting.Add(-1)
+	patience := time.NewTimer(l.wait)
+	defer patience.Stop()
+	select {
+	case l.slots <- struct{}{}:
+		return nil
+	case <-patience.C:
+		return ErrBusy
+	case <-ctx.Done():
+		return context.Cause(ctx)
+	}
+}
+
+func (l *lane) leave() { <-l.slots }
+
+// run calls work in a slot of the lane.
+func (s *Service) run(ctx context.Context, kind laneKind, work func() error) error {
+	l := s.lanes[kind]
+	if err := l.enter(ctx); err != nil {
+		return err
+	}
+	defer l.leave()
+	return work()
+}

@@ -1,0 +1,43 @@
+package service
+
+import (
+	"runtime"
+	"time"
+)
+
+// Options sets the budgets of a Service; a zero field means its default.
+type Options struct {
+	ContractVersion string        // version of the contract that requests were checked against
+	Workers         int           // slots of each lane; default: GOMAXPROCS at the time of New, at most the cores
+	QueueLength     int           // callers that may wait for a slot of a lane; default 64
+	QueueWait       time.Duration // how long one waits before it is turned away; default 2 s
+}
+
+// Service runs the use cases. It is safe for concurrent use and keeps nothing
+// between calls but the slots of its lanes.
+type Service struct {
+	engine  Engine
+	workers int
+	lanes   [laneCount]*lane
+}
+
+// New returns a service with the given budgets.
+func New(o Options) *Service {
+	if o.Workers == 0 {
+		o.Workers = min(runtime.NumCPU(), runtime.GOMAXPROCS(0))
+	}
+	if o.QueueLength == 0 {
+		o.QueueLength = 64
+	}
+	if o.QueueWait == 0 {
+		o.QueueWait = 2 * time.Second
+	}
+	s := &Service{engine: NewEngine(o.ContractVersion), workers: o.Workers}
+	for i := range s.lanes {
+		s.lanes[i] = newLane(o.Workers, o.QueueLength, o.QueueWait)
+	}
+	return s
+}
+
+// Engine names what computes the answers.
+func (s *Service) Engine() Engine { return s.engine }

@@ -1,0 +1,35 @@
+package service
+
+import (
+	"context"
+
+	"railproof/calc/evaluate"
+)
+
+// SteadyStateRequest asks for the exact periodic steady state at one point.
+type SteadyStateRequest struct {
+	Design         Design
+	Place          Place
+	WaveformPoints int // instants at which waveforms are given, corners besides; 0: none
+}
+
+// SteadyStateAnswer holds the outcome at the point.
+type SteadyStateAnswer struct {
+	Outcome *Outcome
+	Basis   Basis
+}
+
+// SteadyState solves the stage at one point.
+func (s *Service) SteadyState(ctx context.Context, r *SteadyStateRequest) (*SteadyStateAnswer, error) {
+	a := new(SteadyStateAnswer)
+	err := s.run(ctx, interactive, func() error {
+		e := evaluate.Prepare(r.Design.Stage)
+		a.Outcome = outcome(e, &r.Place.Point)
+		a.Basis = rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
+		return nil
+	})
+	if err != nil {
+		return nil, err
+	}
+	return a, nil
+}
