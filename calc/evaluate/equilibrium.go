@@ -14,15 +14,18 @@ const (
 	// maxPasses bounds the joint iteration. Three passes are usual; a stage just
 	// below runaway or on a kink of its saturation curve takes more.
 	maxPasses = 80
+	// startPasses is how often the closed form is followed before the circuit is
+	// solved: the first time bridge voltage and temperatures are far off.
+	startPasses = 2
 	// thermalSteps is how many Newton steps temperatures take on one circuit
-	// solution before the circuit is solved again.
-	thermalSteps = 3
+	// solution before the circuit is solved again; one suffices on the closed form.
+	thermalSteps = 2
 	// temperatureTolerance is the change [K] of the last Newton step, half of the
 	// thousandth of a kelvin that is promised.
 	temperatureTolerance = 5e-4
 	// circuitTolerance is the relative change of inductance and bridge voltage at
 	// which the circuit is the one that its own currents ask for.
-	circuitTolerance = 1e-9
+	circuitTolerance = 1e-8
 )
 
 // operating is the state of one evaluation while it runs.
@@ -94,12 +97,15 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 
 // iterate runs the joint iteration and returns its status.
 func (e *Evaluator) iterate(o *operating) Status {
-	e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
-	load := e.circuit.Current + e.circuit.Conductance*o.output
-	e.start(&e.circuit, o.output, load, o.duty)
 	cold := e.degC
-	if _, _, runaway := e.follow(o); runaway {
-		e.degC = cold // the closed form's currents decide nothing
+	for range startPasses {
+		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
+		load := e.circuit.Current + e.circuit.Conductance*o.output
+		e.start(&e.circuit, o.output, load, o.duty)
+		if _, _, runaway := e.follow(o, 1); runaway {
+			e.degC = cold // the closed form's currents decide nothing
+			break
+		}
 	}
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
@@ -114,7 +120,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 			return status
 		}
 		before := e.degC
-		circuitChange, temperatureChange, runaway := e.follow(o)
+		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
@@ -131,7 +137,7 @@ func (e *Evaluator) settled(o *operating, status Status) Status {
 	if o.held {
 		return status
 	}
-	if ratio, _ := e.network.Feedback(&e.slope); ratio >= 1 {
+	if e.feedback, _ = e.network.Feedback(&e.slope); e.feedback >= 1 {
 		return Runaway
 	}
 	if status == OK && e.tooHot() {
@@ -170,9 +176,10 @@ func (e *Evaluator) limitDuty(o *operating) {
 }
 
 // follow takes the present circuit solution to the inductance, bridge voltage and
-// temperatures that it asks for. It returns the largest relative change of the
-// first two, and the largest change [K] of a temperature.
-func (e *Evaluator) follow(o *operating) (circuitChange, temperatureChange float64, runaway bool) {
+// temperatures that it asks for, those by at most the given number of Newton
+// steps. It returns the largest relative change of the first two, and the largest
+// change [K] of a temperature.
+func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureChange float64, runaway bool) {
 	circuitChange = e.followInductance()
 	if o.duty >= 0 {
 		circuitChange = math.Max(circuitChange, math.Abs(e.solution.OutputMean/o.output-1))
@@ -185,7 +192,7 @@ func (e *Evaluator) follow(o *operating) (circuitChange, temperatureChange float
 	e.inputBanks()
 	e.model.Begin(op.Bridge, op.Output)
 	e.model.Freeze(op)
-	for range thermalSteps {
+	for range steps {
 		e.model.Powers(&e.degC, &e.power, &e.slope)
 		if o.held {
 			break

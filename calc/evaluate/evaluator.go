@@ -25,6 +25,7 @@ type Evaluator struct {
 	inputBank [switched.MaxBanks]switched.Bank
 
 	degC, power, slope thermal.Vector
+	feedback           float64                     // [1] gain of the loop from temperature to loss and back
 	inductance         [switched.MaxPhases]float64 // [H] over the present swing
 	valley, peak       float64                     // [A] from the flux curve
 	input              input

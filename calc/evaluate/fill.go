@@ -208,7 +208,7 @@ func (e *Evaluator) fillParts(o *operating, r *Result) {
 		q[quantity.InputCapacitorLife+id] = e.life(o, &s.InputCapacitors[k], losses.InputCapacitor+losses.Part(k), e.input.BankRMS[k])
 	}
 	if !o.held {
-		q[quantity.ThermalFeedback], _ = e.network.Feedback(&e.slope)
+		q[quantity.ThermalFeedback] = e.feedback
 	}
 }
 

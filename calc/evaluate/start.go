@@ -43,6 +43,7 @@ func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) 
 	sol.Duty = d
 	sol.BankRMS[0] = n * math.Sqrt(ripple*ripple/12)
 	sol.InputMean = n * one.HighSide.Mean
+	sol.InputRMS = n * one.HighSide.RMS
 }
 
 func (e *Evaluator) startDiscontinuous(c *switched.Circuit, output, i, fixedDuty float64) {
@@ -63,5 +64,6 @@ func (e *Evaluator) startDiscontinuous(c *switched.Circuit, output, i, fixedDuty
 	one.TurnOn, one.TurnOff = 0, one.Peak
 	sol.Duty = d
 	sol.InputMean = float64(c.Phases) * one.HighSide.Mean
+	sol.InputRMS = float64(c.Phases) * one.HighSide.RMS
 	sol.BankRMS[0] = float64(c.Phases) * math.Sqrt(math.Max(0, (d+one.Conduct)*third-i*i))
 }
