@@ -93,15 +93,16 @@ func (g *gains) largestOfTwo() float64 {
 	return (a+b)/2 + math.Sqrt(half*half+g.rj[0][1]*g.rj[1][0])
 }
 
-// largestOfThree runs Newton down from the largest row sum on the characteristic
-// polynomial, whose roots are real: it falls monotonically onto the largest.
+// largestOfThree runs Newton on the characteristic polynomial, whose roots are
+// real: from the bound that belongs to its trace and minors (met when the two
+// smaller roots are equal) it falls monotonically onto the largest.
 func (g *gains) largestOfThree() float64 {
 	r, s, t := &g.rj[0], &g.rj[1], &g.rj[2]
 	trace := r[0] + s[1] + t[2]
 	minor := s[1]*t[2] - s[2]*t[1]
 	minors := r[0]*s[1] - r[1]*s[0] + r[0]*t[2] - r[2]*t[0] + minor
 	det := r[0]*minor - r[1]*(s[0]*t[2]-s[2]*t[0]) + r[2]*(s[0]*t[1]-s[1]*t[0])
-	x := max(r[0]+r[1]+r[2], s[0]+s[1]+s[2], t[0]+t[1]+t[2])
+	x := (trace + 2*math.Sqrt(max(0, trace*trace-3*minors))) / 3
 	for range gainSteps {
 		p := ((x-trace)*x+minors)*x - det
 		slope := (3*x-2*trace)*x + minors

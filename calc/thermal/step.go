@@ -44,9 +44,12 @@ func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change 
 	stable := true
 	for _, i := range n.node[:n.n] {
 		n.lack[i] -= degC[i]
-		d := 1 - n.self[i]*slope[i]
-		stable = stable && (d > 0 || !(n.lack[i] > 0))
-		n.inverse[i] = 1 / d
+		n.inverse[i] = 1
+		if slope[i] != 0 {
+			d := 1 - n.self[i]*slope[i]
+			stable = stable && (d > 0 || !(n.lack[i] > 0))
+			n.inverse[i] = 1 / d
+		}
 		n.delta[i] = n.lack[i] * n.inverse[i]
 	}
 	if stable && n.couplings > 0 {

@@ -319,8 +319,9 @@ func BenchmarkThermal(b *testing.B) {
 	p, s, degC := Vector{}, Vector{}, Vector{}
 	for i := range 6 {
 		n.Add(i, 30)
-		p[i], s[i], degC[i] = 0.5, 0.001, 30
+		p[i], degC[i] = 0.5, 30
 	}
+	s[0], s[1], s[3] = 0.001, 0.0015, 0.0008
 	n.Couple(0, 1, 12, 12)
 	n.Couple(0, 3, 6, 6)
 	n.Couple(1, 3, 6, 6)
