@@ -12,8 +12,12 @@ type oneBank struct {
 	invL, inject, alpha, rho float64
 	conductance              float64
 	v, i                     float64 // reference: output and inductor current
+	extra, node              float64 // there: current left for the bank, node voltage
 	duty, t1, t2, t3         float64
 	on, off                  plane
+	rest                     rest
+	left, fall               float64 // [A, A/s] current and its rate at the end of conduction
+	gain, push               float64 // [V/s, A/s] what on-time does to ν at turn-on, to left
 	mix                      taylor
 }
 
@@ -48,6 +52,7 @@ func (ob *oneBank) continuous(c *Circuit, duty, v float64) bool {
 	leg := &c.Leg
 	i := c.load(v)
 	ob.v, ob.i, ob.duty = v, i, duty
+	ob.extra, ob.node = 0, v
 	ob.t1 = duty * c.Period
 	ob.t2 = (1 - duty) * c.Period
 	ob.t3 = 0
@@ -77,7 +82,7 @@ func (ob *oneBank) fixed(c *Circuit, duty float64, sol *Solution) bool {
 		return false
 	}
 	if c.Leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
-		return false
+		return ob.fixedResting(c, duty, sol)
 	}
 	ob.report(c, sol)
 	sol.Iterations = 1
@@ -100,6 +105,12 @@ func (ob *oneBank) regulated(c *Circuit, vout, least, greatest float64, sol *Sol
 	base := vout + vf + i*(leg.Winding+leg.Rectifier.Slope)
 	inv := 1 / (c.Vin + vf)
 	d := base / (c.Vin + vf - dr*i)
+	if leg.Rectifier.Blocks && vout < c.Vin && i > 0 {
+		t1, t2 := c.firstRest(vout)
+		if t1+t2 < c.Period && ob.regulatedResting(c, vout, least, greatest, t1, t2, sol) {
+			return true
+		}
+	}
 	for n := range maxDuty {
 		if !(d > least && d < greatest) {
 			return false
@@ -118,7 +129,7 @@ func (ob *oneBank) regulated(c *Circuit, vout, least, greatest float64, sol *Sol
 	return false
 }
 
-// report writes the figures of the state in continuous conduction.
+// report writes the figures of the state; t3 is zero in continuous conduction.
 func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	leg := &c.Leg
 	on, off := &ob.on, &ob.off
@@ -141,15 +152,18 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	swing := extent{min(on.i0, off.i0), max(on.i0, off.i0)}
 	on.ci.extremes(on.order, &swing)
 	off.ci.extremes(off.order, &swing)
-	ls.Valley, ls.Peak = ob.i+swing.least, ob.i+swing.most
 
 	// Bank current j = α (ι − G ν) and node o = α ν + ρ ι, series again.
 	g, alpha, rho := ob.conductance, ob.alpha, ob.rho
 	o1, o2 := alpha*v1+rho*i1, alpha*v2+rho*i2
 	mean := w1*o1 + w2*o2
-	j := w1*(i1*i1+s1) + w2*(i2*i2+s2)
+	if ob.t3 > 0 {
+		mean += ob.t3 * perT * alpha * ob.rest.mean
+	}
+	j1, j2 := i1+ob.extra, i2+ob.extra
+	j := w1*(j1*j1+s1) + w2*(j2*j2+s2)
 	if g != 0 {
-		j1, j2 := alpha*(i1-g*v1), alpha*(i2-g*v2)
+		j1, j2 = alpha*(j1-g*v1), alpha*(j2-g*v2)
 		j = w1*(j1*j1+ob.spread(on, alpha, -alpha*g)) + w2*(j2*j2+ob.spread(off, alpha, -alpha*g))
 	}
 	node := extent{min(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0), max(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)}
@@ -164,10 +178,21 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	if g != 0 {
 		variance += w2 * ((o2-mean)*(o2-mean) + ob.mix.spread(off.order))
 	}
-	sol.BankRMS[0] = math.Sqrt(j)
 	sol.BankMean[0] = ob.v + w1*v1 + w2*v2
-	sol.OutputMean = ob.v + mean
-	sol.OutputMin, sol.OutputMax = ob.v+node.least, ob.v+node.most
+	if ob.t3 > 0 {
+		r, w3 := &ob.rest, ob.t3*perT
+		swing.add(0)
+		node.add(alpha * r.start)
+		node.add(alpha * (r.start + r.change))
+		part := alpha*r.mean - mean
+		variance += w3 * (part*part + alpha*alpha*r.variance)
+		j += w3 * r.square
+		sol.BankMean[0] += w3 * r.mean
+	}
+	ls.Valley, ls.Peak = ob.i+swing.least, ob.i+swing.most
+	sol.BankRMS[0] = math.Sqrt(j)
+	sol.OutputMean = ob.node + mean
+	sol.OutputMin, sol.OutputMax = ob.node+node.least, ob.node+node.most
 	sol.Duty = ob.duty
 	sol.InputMean, sol.InputRMS = ls.HighSide.Mean, ls.HighSide.RMS
 	sol.InputPower = c.Vin * sol.InputMean
@@ -204,6 +229,9 @@ func (ob *oneBank) spread(pl *plane, a, b float64) float64 {
 // solution does.
 func (ob *oneBank) closure() float64 {
 	on, off := &ob.on, &ob.off
+	if ob.t3 > 0 {
+		return max(math.Abs(ob.left)/math.Abs(off.i0), math.Abs(ob.rest.start+ob.rest.change-on.v0)/math.Abs(ob.v))
+	}
 	di := max(math.Abs(off.i1-on.i0), math.Abs(on.i1-off.i0))
 	dv := max(math.Abs(off.v1-on.v0), math.Abs(on.v1-off.v0))
 	scale := math.Abs(ob.i) + math.Abs(on.i1-on.i0)

@@ -33,7 +33,8 @@ type plane struct {
 	order              int
 	tr, det            float64 // of X
 	tr2, det2          float64 // of P
-	s, k, t, inv       even    // sinh X/X, (cosh X − 1)/P, tanh X/X, 1/cosh X
+	s, k, t, inv, cosh even    // sinh X/X, (cosh X − 1)/P, tanh X/X, 1/cosh X, cosh X
+	sc, ss             even    // S cosh X, S², where displacements from the start are needed
 	i0, v0             float64 // state at the start
 	i1, v1             float64 // at the end
 	ci, cv             taylor
@@ -91,7 +92,8 @@ func (pl *plane) set(ob *oneBank, t, r, u, extra float64) bool {
 		pl.long(u3)
 	}
 	// cosh X = 1 + P k
-	c := even{1 - pl.k.b*det2, pl.k.a + pl.k.b*tr2}
+	pl.cosh = even{1 - pl.k.b*det2, pl.k.a + pl.k.b*tr2}
+	c := &pl.cosh
 	q := 1 / (c.a*(c.a+c.b*tr2) + c.b*c.b*det2)
 	pl.inv = even{(c.a + c.b*tr2) * q, -c.b * q}
 	pl.t = pl.times(pl.s, pl.inv)
