@@ -134,7 +134,7 @@ func (c *compiler) rule(pack string, d *RuleDocument, at string) rules.Rule {
 				body.When = e.holds
 			}
 		}
-		value, bound := c.expression(at+"/value", d.Value, scope, unit), c.expression(limitAt, string(limit), scope, unit)
+		value, bound := c.expression(at+"/value", string(d.Value), scope, unit), c.expression(limitAt, string(limit), scope, unit)
 		if value != nil && bound != nil {
 			body.Value, body.Limit = value.number, bound.number
 		}

@@ -41,7 +41,7 @@ type RuleDocument struct {
 	Severity string   `json:"severity"`
 	Scope    []string `json:"scope"`
 	When     string   `json:"when,omitempty"`
-	Value    string   `json:"value"`
+	Value    Text     `json:"value"`
 	AtMost   Text     `json:"at_most,omitempty"`
 	AtLeast  Text     `json:"at_least,omitempty"`
 	Unit     string   `json:"unit"`

@@ -105,7 +105,7 @@ func TestLoadingRefuses(t *testing.T) {
 		"json/duplicate":             {`{"id":"a","id":"b"}`, "/id", ""},
 		"json/unknown-field":         {`{"id":"a","colour":"b"}`, "/colour", "unknown field"},
 		"json/type":                  {`{"id":7}`, "/id", "a number does not fit"},
-		"json/limit-type":            {`{"rules":[{"at_most":[1]}]}`, "/rules/0/at_most", "expression or a number"},
+		"json/limit-type":            {`{"rules":[{"at_most":[1]}]}`, "/rules/0/at_most", "a list does not fit"},
 		"json/syntax":                {`{"id":`, "/id", "not JSON"},
 		"size":                       {strings.Repeat("#", maxDocument+1), "", "longer than"},
 		"parameter/name":             {document() + "parameters: {Room: {value: 1, least: 0, greatest: 2, meaning: m}}\n", "/parameters/Room", "lower-case"},
@@ -145,26 +145,28 @@ func TestYAMLAndJSONSayTheSame(t *testing.T) {
 func TestExpressionsCompute(t *testing.T) {
 	c := fullCase(stage.Synchronous)
 	value := func(text, unit string) rules.Finding {
-		return verdictOf(t, check(t, c, document("value: "+text, "at_most: 1000000000", "unit: "+unit)), "house/heat")
+		return verdictOf(t, check(t, c, document("value: '"+text+"'", "at_most: 1000000000", "unit: "+unit)), "house/heat")
 	}
 	for text, want := range map[string]float64{
-		"2 + 3 * 4":     14,
-		"min(3, 2)":     2,
-		"max(1, 2, 3)":  3,
-		"abs(-2)":       2,
-		"sqrt(2 * 8.0)": 4,
-		"linear(85, 70, 0.5, 110, 0.3)":                   0.425,
-		"linear(20, 70, 0.5, 110, 0.3)":                   0.5,
-		"linear(120, 70, 0.5, 110, 0.3)":                  0.3,
-		"stage.phase_count == 1 ? 5 : 6":                  5,
+		"2 + 3 * 4":                      14,
+		"min(3, 2)":                      2,
+		"max(1, 2, 3)":                   3,
+		"abs(-2)":                        2,
+		"sqrt(2 * 8.0)":                  4,
+		"linear(85, 70, 0.5, 110, 0.3)":  0.425,
+		"linear(20, 70, 0.5, 110, 0.3)":  0.5,
+		"linear(120, 70, 0.5, 110, 0.3)": 0.3,
+		"stage.phase_count == 1 ? 5 : 6": 5,
 		"greatest.inductor_rms_a / part.rating.heating_a": 6.1 / 9,
-		"1.0 / (6.283185 * sqrt(stage.inductor.inductance_h * 1)) > 0 ? 1 : 2": 1,
 	} {
 		if strings.Contains(text, "phase_count") {
 			c.Stage.PhaseCount = 1
 		}
 		require.InDelta(t, want, value(text, `"1"`).Value, 1e-12, text)
 	}
+	c.Stage.Inductor.Inductance, c.Stage.OutputCapacitors[0].Capacitance = 1e-5, 1e-5
+	resonance := check(t, c, document("scope: [output_capacitors/*]", "value: 1 / (6.283185307179586 * sqrt(stage.inductor.inductance_h * part.capacitance_f))", "at_most: stage.switching_frequency_hz", "unit: Hz"))
+	require.InDelta(t, 15915.494309, verdictOf(t, resonance, "house/heat").Value, 1e-5)
 	require.InDelta(t, 55.0, value("greatest.inductor_winding_degc - 25", "Cel").Value, 1e-12)
 	require.InDelta(t, 45.0, value("part.rating.winding_degc - greatest.inductor_winding_degc", "K").Value, 1e-12)
 }
