@@ -55,7 +55,9 @@ func TestFaultsPointAtTheirPlace(t *testing.T) {
 			Fault{"/stage/inductor/dc_resistence_ohm", "additionalProperties", "unknown field", "dc_resistance_ohm", "0.001", ""},
 		},
 		"unknown field whose name needs escaping": {
-			func(_, s, _ object) { s["feedback"] = object{"reference_v": 0.8, "upper_ohm": 1.0, "lower_ohm": 1.0, "a/b~c": true} },
+			func(_, s, _ object) {
+				s["feedback"] = object{"reference_v": 0.8, "upper_ohm": 1.0, "lower_ohm": 1.0, "a/b~c": true}
+			},
 			Fault{"/stage/feedback/a~1b~0c", "additionalProperties", "unknown field", "one of lower_ohm, reference_v or upper_ohm", "true", ""},
 		},
 		"missing field": {
