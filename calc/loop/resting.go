@@ -20,9 +20,9 @@ import (
 // from the exact exponentials at constant output voltage. Checked by
 // TestReferenceLoop loop-07.
 type resting struct {
-	byDuty, byLine, byOutput float64 // [A] [S] [S] derivatives of the mean current
-	peakDuty                 float64 // [A] derivatives of the peak current
-	peakLine, peakOutput     float64 // [S]
+	byDuty, byLine, byOutput       float64 // [A] [S] [S] derivatives of the mean inductor current
+	onDuty, onLine, onOutput       float64 // [A] [S] [S] of the mean high-side current
+	peakDuty, peakLine, peakOutput float64 // [A] [S] [S] of the peak current
 }
 
 // differenceStep is the relative step of the central differences below; their
@@ -31,32 +31,36 @@ const differenceStep = 1e-5
 
 func (r *resting) set(p *Plant, leg *switched.Leg) {
 	period, d, vin, v := p.Circuit.Period, p.Duty, p.Circuit.Vin, p.Output
-	slope := func(h float64, at func(x float64) (mean, peak float64)) (mean, peak float64) {
-		m1, p1 := at(h)
-		m0, p0 := at(-h)
-		return (m1 - m0) / (2 * h), (p1 - p0) / (2 * h)
+	slope := func(h float64, at func(x float64) restingRun) (mean, on, peak float64) {
+		hi, lo := at(h), at(-h)
+		return (hi.mean - lo.mean) / (2 * h), (hi.on - lo.on) / (2 * h), (hi.peak - lo.peak) / (2 * h)
 	}
-	r.byDuty, r.peakDuty = slope(differenceStep*d, func(x float64) (float64, float64) { return restingCurrent(leg, period, d+x, vin, v) })
-	r.byLine, r.peakLine = slope(differenceStep*vin, func(x float64) (float64, float64) { return restingCurrent(leg, period, d, vin+x, v) })
-	r.byOutput, r.peakOutput = slope(differenceStep*v, func(x float64) (float64, float64) { return restingCurrent(leg, period, d, vin, v+x) })
+	r.byDuty, r.onDuty, r.peakDuty = slope(differenceStep*d, func(x float64) restingRun { return restingCurrents(leg, period, d+x, vin, v) })
+	r.byLine, r.onLine, r.peakLine = slope(differenceStep*vin, func(x float64) restingRun { return restingCurrents(leg, period, d, vin+x, v) })
+	r.byOutput, r.onOutput, r.peakOutput = slope(differenceStep*v, func(x float64) restingRun { return restingCurrents(leg, period, d, vin, v+x) })
 }
 
-// restingCurrent returns mean and peak of a current that starts at rest, rises
-// for d T and falls to zero, at constant output voltage:
+// restingRun sums up one period's current of a phase that comes to rest.
+type restingRun struct {
+	mean, on, peak float64 // [A] of the inductor, of the high side, greatest
+}
+
+// restingCurrents returns the currents of a phase that starts at rest, rises for
+// d T and falls to zero, at constant output voltage:
 //
 //	Ipk = (Vin-V) t1/L φ1(-R1 t1/L),  q1 = (Vin-V) t1²/L φ2(-R1 t1/L)
 //	q2 = L Ipk²/(V+Vth) (x - ln(1+x))/x²,  x = Ipk R2/(V+Vth)
-//	I = (q1 + q2)/T,  φ1(x) = (e^x - 1)/x,  φ2(x) = (e^x - 1 - x)/x²
-func restingCurrent(leg *switched.Leg, period, d, vin, v float64) (mean, peak float64) {
+//	I = (q1 + q2)/T,  Ion = q1/T,  φ1(x) = (e^x - 1)/x,  φ2(x) = (e^x - 1 - x)/x²
+func restingCurrents(leg *switched.Leg, period, d, vin, v float64) restingRun {
 	t1 := d * period
 	rise := (vin - v) / leg.L
 	a := -(leg.HighSide + leg.Winding) * t1 / leg.L
-	peak = rise * t1 * phi1(a)
+	peak := rise * t1 * phi1(a)
 	q1 := rise * t1 * t1 * phi2(a)
 	fall := v + leg.Rectifier.Threshold
 	x := peak * (leg.Rectifier.Slope + leg.Winding) / fall
 	q2 := leg.L * peak * peak / fall * lagging(x)
-	return (q1 + q2) / period, peak
+	return restingRun{(q1 + q2) / period, q1 / period, peak}
 }
 
 func phi1(x float64) float64 {

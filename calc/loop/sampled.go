@@ -47,6 +47,8 @@ type Sampled struct {
 	whole    statespace.Map
 	matrix   statespace.Real
 	complexs workspace
+	scan     scan
+	spare    statespace.Transfer
 }
 
 // Status tells how far a loop model could be set up.

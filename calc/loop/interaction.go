@@ -1,0 +1,102 @@
+package loop
+
+import (
+	"math"
+	"math/cmplx"
+
+	"railproof/calc/switched"
+)
+
+// Interaction tells what a source impedance does to the loop at one frequency.
+type Interaction struct {
+	Source  complex128 // [ohm] Zo, seen by the bridge
+	Null    complex128 // [ohm] ZN, input impedance with the output held still by the duty ratio
+	Driving complex128 // [ohm] ZD, input impedance with the control voltage held still
+	Closed  complex128 // [ohm] Zi, input impedance with the loop closed
+	Loop    complex128 // [1] loop gain with the source impedance
+}
+
+// InteractionAt returns the interaction of the averaged model with a source.
+//
+//	T' = T (1 + Zo/ZN)/(1 + Zo/ZD)
+//	in continuous conduction and voltage mode ZN = -Ve/(I D), ZD = (Zs + Zp)/D²
+//
+// With |Zo| well below |ZN| and |ZD| at every frequency the loop does not notice;
+// where it is not, T' tells, and Sampled with the plant's Source decides.
+//
+// Source: R. D. Middlebrook, "Input filter considerations in design and
+// application of switching regulators", IEEE IAS 1976 (remembered, unverified).
+// Checked by TestReferenceLoop loop-16 and against the sampled-data model of the
+// stage with its source.
+func (a *Averaged) InteractionAt(s *Source, frequency float64) Interaction {
+	w := complex(0, 2*math.Pi*frequency)
+	g, dutyIn, lineIn := a.input(w)
+	t := a.At(frequency)
+	admittance := func(line complex128) complex128 { return lineIn + dutyIn*(line-g.line)/g.duty }
+	null, driving := admittance(0), admittance(t.Line)
+	zo := s.Impedance(frequency)
+	return Interaction{
+		Source: zo, Null: 1 / null, Driving: 1 / driving, Closed: 1 / admittance(t.ClosedLine),
+		Loop: t.Loop * (1 + zo*null) / (1 + zo*driving),
+	}
+}
+
+// input returns the bare stage with the response of its mean input current to
+// duty ratio and input voltage.
+func (a *Averaged) input(s complex128) (g open, duty, line complex128) {
+	n := complex(a.phases, 0)
+	if a.plant.Mode == switched.Discontinuous {
+		g = a.resting.at(a, s)
+		r := &a.resting
+		return g, n * (complex(r.onDuty, 0) + complex(r.onOutput, 0)*g.duty), n * (complex(r.onLine, 0) + complex(r.onOutput, 0)*g.line)
+	}
+	g = a.continuous(s)
+	d := complex(a.plant.Duty, 0)
+	return g, n * (d*g.dutyCurrent + complex(a.current, 0)), n * d * g.lineCurrent
+}
+
+// SourceMargin is the verdict on a source impedance over frequency.
+type SourceMargin struct {
+	Null      float64 // [dB] least of |ZN|/|Zo|
+	NullAt    float64 // [Hz]
+	Driving   float64 // [dB] least of |ZD|/|Zo|
+	DrivingAt float64 // [Hz]
+	Input     float64 // [dB] least of |Zi|/|Zo|, loop closed
+	InputAt   float64 // [Hz]
+}
+
+// Customary is the separation of the impedances that is customarily asked for
+// [dB]; 6 to 10 dB are usual (remembered, unverified).
+const Customary = 6.0
+
+// SourceMargins returns the least separation of source and input impedances on a
+// logarithmic grid up to half the decision rate.
+func (a *Averaged) SourceMargins(s *Source) SourceMargin {
+	m := SourceMargin{Null: math.Inf(1), Driving: math.Inf(1), Input: math.Inf(1)}
+	nyquist := a.plant.Nyquist()
+	const points = 400
+	step := math.Pow(searchSpan, 1.0/(points-1))
+	f := nyquist / searchSpan
+	for range points {
+		x := a.InteractionAt(s, f)
+		least := func(z complex128, db, at *float64) {
+			if d := 20 * math.Log10(cmplx.Abs(z)/cmplx.Abs(x.Source)); d < *db {
+				*db, *at = d, f
+			}
+		}
+		least(x.Null, &m.Null, &m.NullAt)
+		least(x.Driving, &m.Driving, &m.DrivingAt)
+		least(x.Closed, &m.Input, &m.InputAt)
+		f *= step
+	}
+	return m
+}
+
+// NegativeResistance returns the low-frequency input resistance of a stage that
+// keeps its output power whatever the input voltage [ohm]:
+//
+//	R = -Vin²/P
+//
+// Source: C. Basso, Switch-Mode Power Supplies, 2nd ed., 2014, section 1.10, as
+// summarised in a public guide. Checked by TestReferenceLoop loop-18.
+func NegativeResistance(vin, power float64) float64 { return -vin * vin / power }

@@ -1,0 +1,161 @@
+package loop
+
+import (
+	"math"
+	"math/cmplx"
+
+	"railproof/calc/parts"
+	"railproof/calc/statespace"
+)
+
+// Stability is the verdict of the closed loop's eigenvalues.
+type Stability uint8
+
+const (
+	Undecided Stability = iota
+	Stable              // every eigenvalue of the closed-loop map lies inside the unit circle
+	Unstable            // one does not
+)
+
+// Crossed tells whether the loop gain passes through 1.
+type Crossed uint8
+
+const (
+	NoSearch    Crossed = iota
+	Crosses             // it falls through 1 at least once
+	AlwaysBelow         // the loop gain is below 1 everywhere
+	AlwaysAbove         // it is above 1 up to half the decision rate
+	OnlyRises           // it ends above 1 after a rise, without a fall
+)
+
+const (
+	MaxCrossovers     = 12 // [1] crossings kept; more are counted only
+	MaxPhaseCrossings = 12 // [1]
+)
+
+// Crossover is a frequency at which the loop gain is 1.
+type Crossover struct {
+	Frequency float64 // [Hz]
+	Margin    float64 // [deg] 180° plus the phase of the loop gain, in (-180°, 180°]
+	Falls     bool    // the gain falls through 1
+}
+
+// PhaseCrossing is a frequency at which the loop gain is negative real.
+type PhaseCrossing struct {
+	Frequency float64 // [Hz]
+	Margin    float64 // [dB] -20 log |T|; negative where the gain is above 1
+}
+
+// Margins is the verdict on one loop. Whether it is stable is said by Stability
+// alone; a margin describes how far it is from changing.
+type Margins struct {
+	Status          Status
+	Stability       Stability
+	SpectralRadius  float64    // [1] greatest modulus of the closed loop's eigenvalues, per decision
+	Dominant        complex128 // [1] that eigenvalue
+	DominantAt      float64    // [Hz] its frequency of oscillation
+	CurrentLoop     complex128 // [1] largest eigenvalue of the stage with its current loop closed; 0 in voltage mode
+	Subharmonic     bool       // peak current mode: the current loop alternates and does not settle
+	Crossed         Crossed
+	CrossoverCount  int
+	Crossovers      [MaxCrossovers]Crossover
+	PhaseCount      int
+	PhaseCrossings  [MaxPhaseCrossings]PhaseCrossing
+	Crossover       float64 // [Hz] highest at which the gain falls through 1; NaN: none
+	PhaseMargin     float64 // [deg] least over all crossovers; NaN: no crossover
+	GainMargin      float64 // [dB] least by which the gain may rise; NaN: no phase crossing with the gain below 1
+	GainReduction   float64 // [dB] least by which it may fall; NaN: no phase crossing with the gain above 1
+	Modulus         float64 // [1] least |1 + T|
+	ModulusAt       float64 // [Hz]
+	Bandwidth       float64 // [Hz] above which |T/(1+T)| stays 3 dB down; NaN: not below half the decision rate
+	Conditional     bool    // stable, but a lower gain is not
+	LowestFrequency float64 // [Hz] at which the search began
+	Nyquist         float64 // [Hz] at which it ended
+}
+
+// Margins analyses the sampled-data loop. It allocates nothing.
+func (s *Sampled) Margins(m *Margins) {
+	*m = Margins{Status: s.Status, Crossover: math.NaN(), PhaseMargin: math.NaN(), GainMargin: math.NaN(), GainReduction: math.NaN(), Modulus: math.NaN(), ModulusAt: math.NaN(), Bandwidth: math.NaN()}
+	if !s.Status.OK() {
+		return
+	}
+	if !s.decide(m) {
+		m.Status = NotConverged
+		return
+	}
+	m.search(s, &s.scan)
+}
+
+// decide finds the eigenvalues of the current loop and of the closed loop, and
+// collects the frequencies around which the loop gain may change quickly.
+func (s *Sampled) decide(m *Margins) bool {
+	j := &s.joint
+	var e statespace.ComplexPoint
+	nyquist := s.plant.Nyquist()
+	m.Nyquist, m.LowestFrequency = nyquist, nyquist/searchSpan
+	s.scan.reset(nyquist)
+
+	if s.plant.Modulator.Mode == parts.PeakCurrentMode {
+		if !s.eigenvalues(&s.inner, j.Network, &e) {
+			return false
+		}
+		m.CurrentLoop = largest(&e, j.Network)
+		m.Subharmonic = real(m.CurrentLoop) <= -1
+	}
+	if !s.transfer.Eigenvalues(&e) {
+		return false
+	}
+	s.scan.around(&e, j.N, s.window.length)
+	if !s.eigenvalues(&s.closed, j.N, &e) {
+		return false
+	}
+	s.scan.around(&e, j.N, s.window.length)
+	m.Dominant = largest(&e, j.N)
+	m.SpectralRadius = cmplx.Abs(m.Dominant)
+	m.DominantAt = math.Abs(cmplx.Phase(m.Dominant)) / (2 * math.Pi * s.window.length)
+	m.Stability = Unstable
+	if m.SpectralRadius < 1 {
+		m.Stability = Stable
+	}
+	return true
+}
+
+// eigenvalues sets e to the eigenvalues of the leading n rows and columns of a.
+func (s *Sampled) eigenvalues(a *statespace.Real, n int, e *statespace.ComplexPoint) bool {
+	s.matrix.N = n
+	for i := range n {
+		copy(s.matrix.A[i*n:i*n+n], a.A[i*a.N:i*a.N+n])
+	}
+	var none statespace.Point
+	s.spare.Reduce(&s.matrix, &none, &none)
+	return s.spare.Eigenvalues(e)
+}
+
+func largest(e *statespace.ComplexPoint, n int) complex128 {
+	best := complex128(0)
+	for _, x := range e[:n] {
+		// Of a conjugate pair the one above the axis, whichever was found first.
+		if a, b := cmplx.Abs(x), cmplx.Abs(best); a > b*(1+1e-12) || a >= b*(1-1e-12) && imag(x) > imag(best) {
+			best = x
+		}
+	}
+	return best
+}
+
+// gain is a loop gain to be searched.
+type gain interface {
+	Loop(frequency float64) complex128
+}
+
+// Loop returns the averaged loop gain at a frequency [Hz].
+func (a *Averaged) Loop(frequency float64) complex128 { return a.At(frequency).Loop }
+
+// AveragedMargins searches the averaged loop gain of a plant whose sampled-data
+// model was set, on the same frequencies. Stability remains undecided: the
+// averaged model does not know it.
+func (s *Sampled) AveragedMargins(a *Averaged, m *Margins) {
+	var exact Margins
+	s.decide(&exact)
+	*m = Margins{Status: s.Status, Nyquist: exact.Nyquist, LowestFrequency: exact.LowestFrequency}
+	m.search(a, &s.scan)
+}
