@@ -45,7 +45,7 @@ var e192 = func() (m [192]int) {
 	return m
 }()
 
-// String returns the usual name, such as "E96".
+// String returns the usual name, such as "E96"; it is empty for no series.
 func (s Series) String() string {
 	switch s {
 	case E3:
@@ -63,7 +63,7 @@ func (s Series) String() string {
 	case E192:
 		return "E192"
 	}
-	panic("preferred: no such series")
+	return ""
 }
 
 // ByName returns the series with a name such as "E96".

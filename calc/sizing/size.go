@@ -1,0 +1,156 @@
+package sizing
+
+import (
+	"math"
+
+	"railproof/calc/stage"
+)
+
+// trials are the ways of drawing up a draft, from the smallest and cheapest parts
+// on: lower resistances, then larger inductors, which have less ripple and core loss.
+// The last one serves inputs that are hardly above the output.
+var trials = [...]trial{
+	{1, 1}, {0.7, 1}, {0.5, 1}, {0.35, 1}, {0.25, 1}, {0.17, 1}, {0.12, 1},
+	{0.25, 1.8}, {0.12, 1.8}, {0.25, 3.2}, {0.12, 3.2}, {0.12, 5.6},
+	{0.06, 1},
+}
+
+// Size sizes a stage for a requirement that has passed its Check. For a range of
+// switching frequencies it sizes at each frequency of the sweep and takes the one
+// that Select names.
+func Size(req *stage.Requirement, choice Choices) Answer {
+	fs := Frequencies(req, choice)
+	if len(fs) == 1 {
+		a := SizeAt(req, choice, fs[0])
+		a.Verify()
+		return a
+	}
+	answers := make([]Answer, len(fs))
+	for k, f := range fs {
+		answers[k] = SizeAt(req, choice, f)
+	}
+	a := Select(req, answers)
+	a.Verify()
+	return a
+}
+
+// SizeAt sizes a stage at one switching frequency [Hz]: the chunk of a sweep. It is
+// pure; the checks on the exact engine over all corners are Verify's.
+func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
+	var best *sizer
+	for _, try := range trials {
+		z := newSizer(req, choice, fs, try)
+		z.run()
+		if z.failed() {
+			if best == nil || best.failed() {
+				best = z // of failures the last: it has the least drops
+			}
+			continue
+		}
+		j := z.judge()
+		if best == nil || best.failed() || j.better(best.judged) {
+			best = z
+		}
+		z.judged = j
+		if j.meets(z) {
+			best = z
+			break
+		}
+	}
+	if !best.failed() {
+		best.conclude()
+	}
+	best.ans.Status = OK
+	if best.failed() {
+		best.ans.Status = Infeasible
+		best.ans.Stage, best.ans.Spreads, best.ans.Limits = nil, nil, nil
+	}
+	return best.ans
+}
+
+// run goes through the steps up to a complete draft; it stops at the first step
+// that finds the requirement impossible.
+func (z *sizer) run() {
+	z.newDraft()
+	z.controller()
+	z.budget()
+	if z.failed() {
+		return
+	}
+	z.regulation()
+	z.duty()
+	if z.failed() {
+		return
+	}
+	z.inductor()
+	if z.failed() {
+		return
+	}
+	for _, step := range [...]func(){z.output, z.input} {
+		if step(); z.failed() {
+			return
+		}
+	}
+	z.ratings()
+	z.loop()
+	z.life()
+	z.spreads()
+	z.conditions()
+	z.ans.Stage = z.draft
+}
+
+// inductor sizes the inductor; where no winding keeps within the budget the drops
+// are larger than budgeted, and the windows are computed again with them.
+func (z *sizer) inductor() {
+	const rounds = 4 // [1] each raises the budget to the part found; two are usual
+	windows := len(z.ans.Windows)
+	for range rounds {
+		z.ans.Windows = z.ans.Windows[:windows]
+		z.inductance()
+		if z.failed() {
+			return
+		}
+		_, z.inductorRMS = z.worst(bothLoads, func(c *corner) float64 {
+			valley, peak := z.swing(c)
+			return TriangleRMS(c.i, peak-valley)
+		})
+		if z.winding() {
+			return
+		}
+	}
+}
+
+// conclude adds what rests on the whole draft.
+func (z *sizer) conclude() {
+	z.limits()
+	z.judged.conflicts(z)
+	z.ans.Stage = z.draft
+	z.placeholders()
+	z.row()
+}
+
+// row fills the sweep's row of this frequency.
+func (z *sizer) row() {
+	d := z.draft
+	_, ripple := z.worst(bothLoads, func(c *corner) float64 { v, p := z.swing(c); return p - v })
+	total := 0.0
+	for k := range d.OutputCapacitors {
+		total += d.OutputCapacitors[k].Capacitance * d.OutputCapacitors[k].Pieces()
+	}
+	first := &d.OutputCapacitors[0]
+	b := bank{make: makeOf(first.Kind)}
+	b.left, b.grown = z.worstOf(first, z.voHigh)
+	_, output := z.worst(bothLoads, func(c *corner) float64 {
+		v, p := z.swing(c)
+		sum, rising := z.summed(c, p-v)
+		return OutputRipple(sum, rising, z.phases*z.fsLow, b.least(first), b.most(first))
+	})
+	z.ans.Sweep = []Row{{
+		Frequency: z.fs, Status: OK, Inductance: z.rated, OutputCapacitance: total, InputCapacitance: d.InputCapacitors[0].Capacitance * d.InputCapacitors[0].Pieces(),
+		InductorRipple: ripple, OutputRipple: output, OnTime: z.shortestOn, OnTimeMargin: z.shortestOn / z.choice.MinOnTime,
+		Loss: z.judged.typicalLoss, Efficiency: z.judged.typicalEfficiency,
+	}}
+	if math.IsInf(z.ans.Sweep[0].OnTimeMargin, 1) {
+		z.ans.Sweep[0].OnTimeMargin = math.NaN()
+	}
+}
