@@ -2,6 +2,7 @@ package service
 
 import (
 	"math"
+	"strings"
 
 	"railproof/calc/evaluate"
 	"railproof/calc/parts"
@@ -62,6 +63,9 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	}
 	var low, high evaluate.Result
 	for _, a := range d.Assumed {
+		if !bears(d.Stage, a.Field) {
+			continue
+		}
 		item := Assumption{Pointer: d.At + "/" + a.Field, Value: finite(a.Value), Low: finite(a.Low), High: finite(a.High), Why: a.Why}
 		if place := places[a.Field]; place != nil && a.Low != a.High {
 			was := *place
@@ -75,6 +79,13 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 		list = append(list, item)
 	}
 	return list
+}
+
+// bears reports whether the answer rests on a default: what a life is computed
+// from does not count where the data sheet states none.
+func bears(s *stage.Stage, field string) bool {
+	at, _, life := strings.Cut(field, "/life/")
+	return !life || parts.Known(*s.Field(at + "/life/rated_s"))
 }
 
 // effect picks the quantity that moves most between the results.

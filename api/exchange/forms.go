@@ -15,10 +15,19 @@ const jsonForm = "application/json"
 // nil where the answer has none in that form.
 type renderer func(value any) []byte
 
+// TextForm is plain text for reading; the command line shows it.
+const TextForm = "text/plain"
+
 // renderers are the forms besides JSON, by operation and media type. A new one is
-// a line here.
+// a line here; HTTP gives those that the contract lists.
 var renderers = map[string]map[string]renderer{
-	"losses": {"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) }},
+	"losses": {
+		"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.LossesText(v.(*wire.LossesAnswer))) },
+	},
+	"steadyState": {
+		TextForm: func(v any) []byte { return []byte(render.SteadyStateText(v.(*wire.SteadyStateAnswer))) },
+	},
 }
 
 // Forms returns the media types in which the operation can be answered, the
@@ -42,4 +51,9 @@ func (a *Answer) Render(form string) ([]byte, *Problem) {
 		return nil, problemOf(fmt.Errorf("exchange: no form %s of %s", form, a.Operation))
 	}
 	return render(a.Value), nil
+}
+
+// Gives reports whether the operation can be rendered in the form.
+func (x *Exchange) Gives(operation, form string) bool {
+	return x.Computes(operation) && (form == jsonForm || renderers[operation][form] != nil)
 }

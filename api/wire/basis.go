@@ -26,6 +26,12 @@ type Head struct {
 	ResultID string `json:"result_id"`
 }
 
+// Verdict is the status of the answer as a whole.
+func (a *LossesAnswer) Verdict() string { return a.Status }
+
+// Verdict is the status of the answer.
+func (a *SteadyStateAnswer) Verdict() string { return a.Status }
+
 // Basis stands at the end of every computed answer: what it rests on and what to
 // mind about it.
 type Basis struct {

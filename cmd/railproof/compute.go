@@ -1,0 +1,150 @@
+package main
+
+import (
+	"context"
+	"encoding/json"
+	"flag"
+	"fmt"
+	"io"
+	"os"
+
+	"railproof/api/exchange"
+	"railproof/openapi"
+	"railproof/service"
+)
+
+// computation is a subcommand that answers one operation of the contract from a
+// file.
+func computation(name, operation, summary, about string) *command {
+	return &command{
+		name: name, operand: "FILE|-", summary: summary,
+		about:   about + "\nThe request is read from FILE, or from standard input with -. The answer is JSON, the same\nbytes that the server sends for the same request.",
+		example: "railproof " + name + " --table openapi/examples/buoy-5v0/" + name + ".json",
+		prepare: func(flags *flag.FlagSet) action {
+			table := flags.Bool("table", false, "a table for reading instead of JSON")
+			csv := flags.Bool("csv", false, "comma-separated values instead of JSON, where the answer has them")
+			return func(ctx context.Context, t terminal, operands []string) int {
+				form := "application/json"
+				switch {
+				case *table && *csv:
+					fmt.Fprintf(t.err, "railproof %s: --table and --csv exclude each other\n", name)
+					return exitBadInput
+				case *table:
+					form = exchange.TextForm
+				case *csv:
+					form = "text/csv"
+				}
+				return compute(ctx, t, name, operation, form, operands)
+			}
+		},
+	}
+}
+
+// longestFile bounds what is read of a request, as the server does by default.
+const longestFile = 1 << 20 // [bytes]
+
+func compute(ctx context.Context, t terminal, name, operation, form string, operands []string) int {
+	if len(operands) != 1 {
+		fmt.Fprintf(t.err, "railproof %s: give one FILE, or - for standard input\n", name)
+		return exitBadInput
+	}
+	body, err := read(t, operands[0])
+	if err != nil {
+		fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
+		return exitBadInput
+	}
+	contract := openapi.Load()
+	x := exchange.New(contract, service.New(service.Options{ContractVersion: contract.Version()}))
+	if !x.Gives(operation, form) {
+		fmt.Fprintf(t.err, "railproof %s: this answer has no such form\n", name)
+		return exitBadInput
+	}
+	answer, problem := x.Do(ctx, operation, body)
+	if problem != nil {
+		return refuse(t, name, form, problem)
+	}
+	text, problem := answer.Render(form)
+	if problem != nil {
+		return refuse(t, name, form, problem)
+	}
+	if _, err := t.out.Write(text); err != nil {
+		return exitOurFault
+	}
+	return verdictCode(answer.Value)
+}
+
+func read(t terminal, from string) ([]byte, error) {
+	in := t.in
+	if from != "-" {
+		f, err := os.Open(from)
+		if err != nil {
+			return nil, err
+		}
+		defer f.Close()
+		in = f
+	}
+	body, err := io.ReadAll(io.LimitReader(in, longestFile+1))
+	if err != nil {
+		return nil, err
+	}
+	if len(body) > longestFile {
+		return nil, fmt.Errorf("%s is larger than %d bytes", from, longestFile)
+	}
+	return body, nil
+}
+
+// refuse tells why there is no answer: the problem body as the server sends it,
+// or its faults in lines for reading.
+func refuse(t terminal, name, form string, p *exchange.Problem) int {
+	if form == exchange.TextForm {
+		fmt.Fprintf(t.err, "railproof %s: %s\n", name, p.Title)
+		for _, f := range p.Errors {
+			fmt.Fprintf(t.err, "  %s: %s", pointerOrRoot(f.Pointer), f.Detail)
+			if f.Received != "" {
+				fmt.Fprintf(t.err, "; given %s %s", f.Received, f.Unit)
+			}
+			if f.Limit != "" {
+				fmt.Fprintf(t.err, "; accepted: %s", f.Limit)
+			}
+			fmt.Fprintln(t.err)
+		}
+	} else {
+		encoder := json.NewEncoder(t.err)
+		encoder.SetIndent("", "  ")
+		if err := encoder.Encode(p); err != nil {
+			return exitOurFault
+		}
+	}
+	if p.Cause != nil {
+		fmt.Fprintf(t.err, "railproof %s: %v\n", name, p.Cause)
+	}
+	switch p.Kind {
+	case exchange.Internal:
+		return exitOurFault
+	case exchange.Busy, exchange.Deadline:
+		return exitIncomplete
+	}
+	return exitBadInput
+}
+
+func pointerOrRoot(p string) string {
+	if p == "" {
+		return "the document"
+	}
+	return p
+}
+
+// verdictCode turns the status of an answer into an exit code.
+func verdictCode(value any) int {
+	v, ok := value.(interface{ Verdict() string })
+	if !ok {
+		return exitFine
+	}
+	switch v.Verdict() {
+	case "ok":
+		return exitFine
+	case "not-converged", "not-run", "not-evaluated":
+		return exitIncomplete
+	}
+	return exitFails
+}
