@@ -1,39 +1,64 @@
 package switched
 
+// watch is a sum over the states whose range over an interval is sought.
+type watch struct {
+	w      vec
+	range_ extent
+}
+
 // extremes widens the range of every conducting current and of the output node
 // by what they reach in interval k.
+func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *extent) {
+	nw := &s.nw
+	v := &s.iv[k]
+	s.watches[0].w = vec{}
+	for i := range nw.phases + nw.banks {
+		s.watches[0].w[i] = s.weight(i)
+	}
+	count := 1
+	for j := range nw.phases {
+		if v.top.pos[j] != Resting {
+			s.watches[count].w = vec{}
+			s.watches[count].w[j] = 1
+			count++
+		}
+	}
+	s.scan(k, rate, count)
+	out.add(s.watches[0].range_.least)
+	out.add(s.watches[0].range_.most)
+	count = 1
+	for j := range nw.phases {
+		if v.top.pos[j] != Resting {
+			e := &s.watches[count].range_
+			into := &legs[s.legOf(j)].range_
+			into.add(s.ref.i[j] + e.least)
+			into.add(s.ref.i[j] + e.most)
+			count++
+		}
+	}
+}
+
+// scan finds the ranges of the first count watches over interval k, which starts
+// at the given rate and whose first Taylor cell is at hand.
 //
 // The rates are followed on a mesh that starts at the first rung and widens with
 // the distance from the edge, as the stiff modes die away. Where a rate changes
 // sign the step is halved by the rungs below it until the Taylor cell is
 // reached, whose polynomial gives the extreme.
-func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *extent) {
-	nw, n := &s.nw, s.nw.n
+func (s *Solver) scan(k int, rate *vec, count int) {
+	n := s.nw.n
 	v := &s.iv[k]
 	ld := s.rungs(k)
-	var watch [MaxPhases + 1]vec
-	var into [MaxPhases + 1]*extent
-	for i := range n {
-		watch[0][i] = s.weight(i)
+	watches := s.watches[:count]
+	for i := range watches {
+		wt := &watches[i]
+		a, b := dot(&wt.w, &v.start, n), dot(&wt.w, &v.stop, n)
+		wt.range_ = extent{min(a, b), max(a, b)}
+		s.work.pick(&wt.w, n)
+		s.work.extremes(&wt.range_)
 	}
-	into[0] = out
-	count := 1
-	for j := range nw.phases {
-		if v.top.pos[j] == Resting {
-			continue
-		}
-		watch[count][j] = 1
-		into[count] = &legs[s.legOf(j)].range_
-		count++
-	}
-	var low [MaxPhases + 1]extent
-	for w := range count {
-		a, b := dot(&watch[w], &v.start, n), dot(&watch[w], &v.stop, n)
-		low[w] = extent{min(a, b), max(a, b)}
-	}
-	for w := range count {
-		s.work.pick(&watch[w], n) // still the first cell of the interval, set by moments
-		s.work.extremes(&low[w])
+	if ld.levels == 0 {
+		return
 	}
 	x, y := v.start, *rate
 	ld.step(0, &x, &x, n)
@@ -44,26 +69,15 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 			xb, yb := x, y
 			ld.step(m, &x, &xb, n)
 			ld.stepRate(m, &y, &yb, n)
-			for w := range count {
-				ra, rb := dot(&watch[w], &y, n), dot(&watch[w], &yb, n)
+			for i := range watches {
+				wt := &watches[i]
+				ra, rb := dot(&wt.w, &y, n), dot(&wt.w, &yb, n)
 				if (ra < 0) != (rb < 0) {
-					s.descend(&v.top, ld, m, x, y, &watch[w], &low[w])
+					s.descend(&v.top, ld, m, x, y, &wt.w, &wt.range_)
 				}
 			}
 			x, y = xb, yb
 		}
-	}
-	for w := range count {
-		add := 0.0
-		if w > 0 {
-			for j := range nw.phases {
-				if watch[w][j] == 1 {
-					add = s.ref.i[j]
-				}
-			}
-		}
-		into[w].add(add + low[w].least)
-		into[w].add(add + low[w].most)
 	}
 }
 

@@ -165,6 +165,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 				lt.turnOn = i + v.stop[j]
 			}
 		}
+		s.feed[k] = s.drawn(k, lit.charge)
 		input.charge += lit.charge
 		input.square += lit.square
 		area := nw.node(&m.q)
@@ -183,6 +184,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 		}
 		s.extremes(k, &m.y0, &legs, &out)
 	}
+	s.feeds = s.count
 	solved := s.horizon * c.Period
 	s.report(c, sol, &legs, &input, &out)
 	mean := nodeArea / solved
@@ -196,6 +198,23 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 		sol.BankRMS[b] = math.Sqrt(math.Max(0, bankSquare[b]) / solved)
 	}
 	sol.balance(c)
+}
+
+// drawn returns what interval k draws from the input, given the charge.
+func (s *Solver) drawn(k int, charge float64) feed {
+	v := &s.iv[k]
+	var rate vec
+	v.top.slope(&s.nw, &v.stop, &rate)
+	f := feed{t: v.t, charge: charge}
+	for j := range s.nw.phases {
+		if v.top.pos[j] == High {
+			f.i0 += s.ref.i[j] + v.start[j]
+			f.i1 += s.ref.i[j] + v.stop[j]
+			f.d0 += s.moments.y0[j]
+			f.d1 += rate[j]
+		}
+	}
+	return f
 }
 
 // weight returns the weight of state j in the node voltage.

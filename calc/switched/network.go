@@ -2,12 +2,13 @@ package switched
 
 import "math"
 
-// MaxStates is the greatest number of states of a circuit.
-const MaxStates = MaxPhases + MaxBanks
+// MaxStates is the greatest number of states of a circuit with its input banks.
+const MaxStates = MaxPhases + 2*MaxBanks
 
-// State holds one current per phase [A], then one voltage per bank [V], without
-// gap; or the rate of these [A/s, V/s], a deviation, or weights of a sum over
-// them. Entries beyond the circuit's size are not used.
+// State holds one current per phase [A], then one voltage per output bank [V],
+// then, where they are asked for, one per input bank, without gap; or the rate of
+// these [A/s, V/s], a deviation, or weights of a sum over them. Entries beyond
+// the circuit's size are not used.
 type State [MaxStates]float64
 
 type vec = State
@@ -42,10 +43,12 @@ type network struct {
 	inject           [MaxBanks]float64           // ρ g_k / C_k
 	relax            [MaxBanks][MaxBanks]float64 // d(dv_k/dt)/dv_j
 	capacitance      [MaxBanks]float64
+	input            inputNode
 }
 
 func (nw *network) set(c *Circuit) {
 	nw.phases, nw.banks, nw.n = c.Phases, c.Banks, c.Phases+c.Banks
+	nw.input.banks = 0
 	nw.conductance, nw.current = c.Conductance, c.Current
 	var g [MaxBanks]float64
 	sum := c.Conductance
@@ -149,6 +152,9 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 		worst = math.Max(worst, sum)
 	}
 	tp.norm = worst + math.Sqrt(inductive*capacitive)
+	if nw.input.banks > 0 {
+		nw.input.drive(nw, ref, tp)
+	}
 }
 
 // rate writes y = A x.
@@ -158,7 +164,7 @@ func (tp *topology) rate(nw *network, x, y *vec) {
 		sum += x[p]
 	}
 	vo := nw.rho * sum
-	banks := x[nw.phases:nw.n]
+	banks := x[nw.phases : nw.phases+nw.banks]
 	for k, v := range banks {
 		vo += nw.couple[k] * v
 	}
@@ -172,6 +178,9 @@ func (tp *topology) rate(nw *network, x, y *vec) {
 			acc += row[j] * v
 		}
 		y[nw.phases+k] = acc
+	}
+	if nw.input.banks > 0 {
+		nw.input.rate(nw, tp, x, y)
 	}
 }
 

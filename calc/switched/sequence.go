@@ -37,6 +37,10 @@ type Solver struct {
 	fast    oneBank
 	work    cell
 	moments moments
+	watches [MaxPhases + 1]watch
+	feed    [maxIntervals]feed
+	feeds   int  // how many of feed are filled
+	closed  bool // the solution is the closed form's
 }
 
 // prepare sets what depends on the circuit alone.
@@ -181,6 +185,9 @@ func (s *Solver) periodic(c *Circuit) bool {
 			s.total[to*n+to] -= 1
 		}
 	}
+	if nw.input.banks > 0 {
+		nw.input.pin(nw, &s.total, &e)
+	}
 	if !solve(&s.total, &s.pivot, &e, n) {
 		return false
 	}
@@ -188,6 +195,9 @@ func (s *Solver) periodic(c *Circuit) bool {
 	r := s.traverse(&x)
 	for i := range n {
 		r[i] = -r[i]
+	}
+	if nw.input.banks > 0 {
+		r[n-1] = 0 // the place of the equation that pin took
 	}
 	substitute(&s.total, &s.pivot, &r, n)
 	for i := range n {

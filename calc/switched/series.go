@@ -55,6 +55,16 @@ func (l *legendreSeries) spread() float64 {
 	return sum
 }
 
+// ends returns the derivative at −1 and at 1.
+func (c *taylor) ends(order int) (first, last float64) {
+	odd, even := 0.0, 0.0
+	for k := 1; k < order; k += 2 {
+		odd += float64(k) * c[k]
+		even += float64(k+1) * c[k+1]
+	}
+	return odd - even, odd + even
+}
+
 // extremes widens the range by the extreme inside the interval, if there is one:
 // the zero of the derivative, of which there is at most one within a radian of
 // the circuit's own oscillation. The chord of the derivative gives its place x;

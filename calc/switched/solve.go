@@ -12,9 +12,10 @@ const (
 // every period.
 func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 	if s.fast.takes(c) && s.fast.fixed(c, duty, sol) {
+		s.closed, s.feeds = true, 0
 		return
 	}
-	s.rounds = 0
+	s.closed, s.rounds = false, 0
 	s.prepare(c)
 	s.finish(c, s.settle(c, duty, false), sol)
 }
@@ -23,9 +24,10 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 // dutyGreatest, that makes the mean output voltage vout.
 func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) {
 	if s.fast.takes(c) && s.fast.regulated(c, vout, dutyLeast, dutyGreatest, sol) {
+		s.closed, s.feeds = true, 0
 		return
 	}
-	s.rounds = 0
+	s.closed, s.rounds = false, 0
 	s.prepare(c)
 	s.finish(c, s.regulate(c, vout, dutyLeast, dutyGreatest), sol)
 }
