@@ -56,7 +56,7 @@ func resolve(document map[string]any, ref string) any {
 var keywords = map[string]bool{
 	"type": true, "format": true, "description": true, "enum": true, "pattern": true, "items": true, "properties": true, "required": true,
 	"additionalProperties": true, "oneOf": true, "minimum": true, "maximum": true, "minLength": true, "maxLength": true, "minItems": true,
-	"maxItems": true, "minProperties": true, "maxProperties": true, "x-unit": true, "x-unit-of": true, "x-spread": true,
+	"maxItems": true, "minProperties": true, "maxProperties": true, "x-unit": true, "x-unit-of": true, "x-spread": true, "x-expression": true,
 }
 
 func (k *compiler) fill(n *node, s map[string]any) {

@@ -49,6 +49,12 @@ func (g *generator) value(s *openapi3.Schema) any {
 
 func (g *generator) object(s *openapi3.Schema) any {
 	o := map[string]any{}
+	if extra := s.AdditionalProperties.Schema; extra != nil {
+		for i := range g.IntN(4) {
+			o[string(rune('a'+i))] = g.value(extra.Value)
+		}
+		return o
+	}
 	names := sortedNames(s.Properties)
 	if s.MaxProps != nil && *s.MaxProps == 1 {
 		name := names[g.IntN(len(names))]
@@ -163,6 +169,8 @@ func goType(s *openapi3.Schema, depth int) reflect.Type {
 		return reflect.TypeFor[alternative]()
 	case s.Type == nil || depth > 6:
 		return reflect.TypeFor[any]()
+	case s.Type.Is("object") && s.AdditionalProperties.Schema != nil:
+		return reflect.MapOf(reflect.TypeFor[string](), goType(s.AdditionalProperties.Schema.Value, depth+1))
 	case s.Type.Is("object"):
 		var fields []reflect.StructField
 		for i, name := range sortedNames(s.Properties) {
