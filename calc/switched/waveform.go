@@ -1,0 +1,100 @@
+package switched
+
+import "math"
+
+// Waveform is one period of a solution, from the turn-on of phase 0. Every edge
+// stands twice, just before and just after, so that steps are steps.
+type Waveform struct {
+	Time        []float64   // [s]
+	Output      []float64   // [V] at the output node
+	Input       []float64   // [A] sum over phases of the high-side current
+	Inductor    [][]float64 // [A] per phase
+	SwitchNode  [][]float64 // [V] per phase
+	BankCurrent [][]float64 // [A] per bank, into the bank
+	BankVoltage [][]float64 // [V] per bank, at its capacitance
+}
+
+// Waveform solves the circuit at the duty ratio of sol and samples it at points
+// instants or a few more: both ends of every interval, and equal steps between
+// them, so many in each interval as its share of the period asks for. It reports
+// false if there is no solution there.
+func (s *Solver) Waveform(c *Circuit, sol *Solution, points int) (*Waveform, bool) {
+	s.prepare(c)
+	s.closed, s.rounds = false, 0
+	if s.settle(c, sol.Duty, false) != Solved {
+		return nil, false
+	}
+	w := &Waveform{
+		Inductor: make([][]float64, c.Phases), SwitchNode: make([][]float64, c.Phases),
+		BankCurrent: make([][]float64, c.Banks), BankVoltage: make([][]float64, c.Banks),
+	}
+	turns := 1
+	if s.cyclic {
+		turns = c.Phases
+	}
+	spare := float64(max(0, points-2*s.count*turns))
+	begin := 0.0
+	for turn := range turns {
+		for k := range s.count {
+			v := &s.iv[k]
+			steps := 1 + int(math.Round(spare*v.t/c.Period))
+			s.sample(c, w, k, turn, steps, begin)
+			begin += v.t
+		}
+	}
+	return w, true
+}
+
+// sample appends interval k of the given turn, from begin on.
+func (s *Solver) sample(c *Circuit, w *Waveform, k, turn, steps int, begin float64) {
+	nw, n := &s.nw, s.nw.n
+	v := &s.iv[k]
+	ld := &s.ladders[0]
+	ld.owner = -1
+	ld.build(nw, &v.top, v.t/float64(steps))
+	x := v.start
+	for i := 0; i <= steps; i++ {
+		if i == steps {
+			x = v.stop
+		}
+		s.point(c, w, k, turn, &x, begin+v.t*float64(i)/float64(steps))
+		ld.step(ld.levels, &x, &x, n)
+	}
+}
+
+// point appends one instant. In turn q phase p is in place (q − p) mod N.
+func (s *Solver) point(c *Circuit, w *Waveform, k, turn int, x *vec, at float64) {
+	nw := &s.nw
+	v := &s.iv[k]
+	var rate vec
+	v.top.slope(nw, x, &rate)
+	vo := s.ref.node + nw.node(x)
+	w.Time = append(w.Time, at)
+	w.Output = append(w.Output, vo)
+	input := 0.0
+	for p := range nw.phases {
+		j := (turn - p + nw.phases) % nw.phases
+		if !s.cyclic {
+			j = p
+		}
+		leg := c.leg(p)
+		i := s.ref.i[j] + x[j]
+		node := vo
+		switch v.top.pos[j] {
+		case High:
+			input += i
+			node = c.Vin - leg.HighSide*i
+		case Rectifying:
+			node = -leg.Rectifier.Threshold - leg.Rectifier.Slope*i
+		case Resting:
+			i = 0
+		}
+		w.Inductor[p] = append(w.Inductor[p], i)
+		w.SwitchNode[p] = append(w.SwitchNode[p], node)
+	}
+	w.Input = append(w.Input, input)
+	for b := range nw.banks {
+		w.BankCurrent[b] = append(w.BankCurrent[b], nw.capacitance[b]*rate[nw.phases+b])
+		w.BankVoltage[b] = append(w.BankVoltage[b], s.ref.v+x[nw.phases+b])
+	}
+}
