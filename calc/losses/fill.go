@@ -21,8 +21,8 @@ func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
 	n := max(s.PhaseCount, 1)
 	sheet.N = 0
 
-	rhs, _ := s.HighSide.OnResistanceAt(degC[HighSide], s.Controller.Drive)
-	perPhase := Resistive(rhs, c.highSide)
+	y, _ := s.HighSide.OnMultiplierAt(degC[HighSide])
+	perPhase := Resistive(m.point.rhs*y, c.highSide)
 	sheet.add(HighSide, Conduction, perPhase, n)
 	sheet.add(HighSide, Overlap, c.overlap, n)
 	sheet.add(HighSide, OutputCharge, c.charge, n)
@@ -34,7 +34,8 @@ func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
 		sheet.add(HighSide, JunctionCharge, c.junction, n)
 		perPhase += m.fillDiode(degC[Diode], sheet, n)
 	} else {
-		rls, _ := s.LowSide.OnResistanceAt(degC[LowSide], s.Controller.Drive)
+		y, _ = s.LowSide.OnMultiplierAt(degC[LowSide])
+		rls := m.point.rls * y
 		sheet.add(LowSide, Conduction, Resistive(rls, c.channel), n)
 		sheet.add(LowSide, DeadTime, c.deadLow, n)
 		perPhase += Resistive(rls, c.rectifier)
@@ -63,15 +64,15 @@ func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
 	inside = m.phases*perPhase + switchNode + outputPath
 	for k := range s.OutputCapacitors {
 		i := OutputCapacitor + Part(k)
-		r, _ := s.OutputCapacitors[k].ESRAt(degC[i], c.age)
-		p := Resistive(r, c.output[k])
+		y, _ = s.OutputCapacitors[k].ESRMultiplierAt(degC[i])
+		p := c.output[k] * y
 		sheet.add(i, SeriesResistance, p, 1)
 		inside += p
 	}
 	for k := range s.InputCapacitors {
 		i := InputCapacitor + Part(k)
-		r, _ := s.InputCapacitors[k].ESRAt(degC[i], c.age)
-		sheet.add(i, SeriesResistance, Resistive(r, c.input[k]), 1)
+		y, _ = s.InputCapacitors[k].ESRMultiplierAt(degC[i])
+		sheet.add(i, SeriesResistance, c.input[k]*y, 1)
 	}
 	return inside
 }

@@ -12,7 +12,7 @@ import (
 // phase's own resistance over the stage's where a phase is overridden, so that
 // each times the number of phases is exact.
 type currents struct {
-	duty, age     float64
+	duty          float64                    // [1]
 	highSide      float64                    // [A2]
 	rectifier     float64                    // [A2] as in the circuit
 	channel       float64                    // [A2] of the low side, less the dead times
@@ -35,7 +35,7 @@ type currents struct {
 	swing         float64                    // [T] peak to peak
 	board         float64                    // [1] copper multiplier
 	path, load    float64                    // [A2]
-	output, input [switched.MaxBanks]float64 // [A2]
+	output, input [switched.MaxBanks]float64 // [W] of each bank at 25 degC
 }
 
 // reset clears what the phases add to.
@@ -52,7 +52,7 @@ func (m *Model) Freeze(op *Operation) {
 	s, sol, p := m.st, op.Solution, &m.point
 	c := &m.currents
 	c.reset()
-	c.duty, c.age = sol.Duty, op.AgeRatio
+	c.duty = sol.Duty
 	c.path, c.load = op.PathMean*op.PathMean, op.LoadRMS*op.LoadRMS
 	if op.Inductances == nil {
 		m.addLeg(&sol.Leg, op.Inductance, nil, 1)
@@ -76,10 +76,10 @@ func (m *Model) Freeze(op *Operation) {
 	c.controller = c.gateDrive + p.quiescent + s.Controller.AuxiliaryPower
 	c.board, _ = parts.CopperMultiplier(op.BoardDegC)
 	for k := range s.OutputCapacitors {
-		c.output[k] = sol.BankRMS[k] * sol.BankRMS[k]
+		c.output[k] = Resistive(s.OutputCapacitors[k].ESRAged(op.AgeRatio), sol.BankRMS[k]*sol.BankRMS[k])
 	}
 	for k := range s.InputCapacitors {
-		c.input[k] = op.InputBank[k] * op.InputBank[k]
+		c.input[k] = Resistive(s.InputCapacitors[k].ESRAged(op.AgeRatio), op.InputBank[k]*op.InputBank[k])
 	}
 }
 

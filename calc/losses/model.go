@@ -60,6 +60,7 @@ type pointRates struct {
 	recovery     float64 // [W]
 	gateDrive    float64 // [W] of all phases
 	quiescent    float64 // [W]
+	rhs, rls     float64 // [ohm] at 25 degC and the drive voltage
 }
 
 // Begin computes charges and rates at the bridge voltage and output voltage [V].
@@ -72,6 +73,7 @@ func (m *Model) Begin(bridge, output float64) {
 	p.ton = Transition(charge, c.GateOn+hs.InternalGate, c.Drive-hs.Plateau)
 	p.toff = Transition(charge, c.GateOff+hs.InternalGate, hs.Plateau)
 
+	p.rhs = hs.OnResistanceDriven(c.Drive)
 	_, own := hs.OutputAt(bridge)
 	gates := hs.GateCharge
 	if s.Rectifier == stage.DiodeRectified {
@@ -85,6 +87,7 @@ func (m *Model) Begin(bridge, output float64) {
 		p.junction = 0
 		p.recovery = RecoveryLoss(bridge, s.LowSide.RecoveryCharge, p.f)
 		gates += s.LowSide.GateCharge
+		p.rls = s.LowSide.OnResistanceDriven(c.Drive)
 	}
 	p.gateDrive = m.phases * GateDriveLoss(gates, driveSource(c, bridge, output), p.f)
 	p.quiescent = QuiescentLoss(bridge, c.QuiescentCurrent)
@@ -109,19 +112,19 @@ func driveSource(c *parts.Controller, bridge, output float64) float64 {
 // left alone; Part is the index. A capacitor's entry is that of its whole bank.
 func (m *Model) Powers(degC, power, slope *thermal.Vector) {
 	s, c := m.st, &m.currents
-	r, dr := s.HighSide.OnResistanceAt(degC[HighSide], s.Controller.Drive)
-	power[HighSide] = Resistive(r, c.highSide) + c.highSideFixed
-	slope[HighSide] = dr * c.highSide
+	y, dy := s.HighSide.OnMultiplierAt(degC[HighSide])
+	power[HighSide] = Resistive(m.point.rhs*y, c.highSide) + c.highSideFixed
+	slope[HighSide] = m.point.rhs * dy * c.highSide
 
 	if s.Rectifier == stage.DiodeRectified {
 		m.diodePower(degC[Diode], power, slope)
 	} else {
-		r, dr = s.LowSide.OnResistanceAt(degC[LowSide], s.Controller.Drive)
-		power[LowSide] = Resistive(r, c.channel) + c.deadLow
-		slope[LowSide] = dr * c.channel
+		y, dy = s.LowSide.OnMultiplierAt(degC[LowSide])
+		power[LowSide] = Resistive(m.point.rls*y, c.channel) + c.deadLow
+		slope[LowSide] = m.point.rls * dy * c.channel
 	}
 
-	r, dr = s.Inductor.DCResistanceAt(degC[Inductor])
+	r, dr := s.Inductor.DCResistanceAt(degC[Inductor])
 	power[Inductor] = Resistive(r, c.winding)
 	slope[Inductor] = dr * c.winding
 	if c.core > 0 {
@@ -133,13 +136,13 @@ func (m *Model) Powers(degC, power, slope *thermal.Vector) {
 	power[Controller], slope[Controller] = c.controller, 0
 	for k := range s.OutputCapacitors {
 		i := OutputCapacitor + Part(k)
-		r, dr = s.OutputCapacitors[k].ESRAt(degC[i], c.age)
-		power[i], slope[i] = Resistive(r, c.output[k]), dr*c.output[k]
+		y, dy = s.OutputCapacitors[k].ESRMultiplierAt(degC[i])
+		power[i], slope[i] = c.output[k]*y, c.output[k]*dy
 	}
 	for k := range s.InputCapacitors {
 		i := InputCapacitor + Part(k)
-		r, dr = s.InputCapacitors[k].ESRAt(degC[i], c.age)
-		power[i], slope[i] = Resistive(r, c.input[k]), dr*c.input[k]
+		y, dy = s.InputCapacitors[k].ESRMultiplierAt(degC[i])
+		power[i], slope[i] = c.input[k]*y, c.input[k]*dy
 	}
 }
 

@@ -17,21 +17,27 @@ func (c *Capacitor) Pieces() float64 { return float64(max(c.Count, 1)) }
 // Checked against bias losses printed in TI data sheets SLUSF22, SLVSGP3A and
 // SLVSHH9, and onsemi NCP3170/D p. 16.
 func (c *Capacitor) CapacitanceAt(bias, degC, age float64) float64 {
-	return c.unbiased(degC, age) * overBias(&c.CapacitanceAtBias, math.Abs(bias))
+	return c.CapacitanceAged(age) * c.CapacitanceMultiplierAt(bias, degC)
+}
+
+// CapacitanceAged returns the bank's capacitance [F] at an age, unbiased and at
+// 25 °C: n C0 a(age) of CapacitanceAt.
+func (c *Capacitor) CapacitanceAged(age float64) float64 {
+	y, _ := overTemperature(&c.CapacitanceAgeing, age)
+	return c.Pieces() * c.Capacitance * y
+}
+
+// CapacitanceMultiplierAt returns what bias [V] and temperature leave of it [1]:
+// b(|V|) m(T) of CapacitanceAt.
+func (c *Capacitor) CapacitanceMultiplierAt(bias, degC float64) float64 {
+	y, _ := overTemperature(&c.CapacitanceTemp, degC)
+	return y * overBias(&c.CapacitanceAtBias, math.Abs(bias))
 }
 
 // unbiased is the bank's capacitance [F] at zero volts.
 func (c *Capacitor) unbiased(degC, age float64) float64 {
-	v := c.Pieces() * c.Capacitance
-	if !c.CapacitanceTemp.Empty() {
-		y, _ := overTemperature(&c.CapacitanceTemp, degC)
-		v *= y
-	}
-	if !c.CapacitanceAgeing.Empty() {
-		y, _ := overTemperature(&c.CapacitanceAgeing, age)
-		v *= y
-	}
-	return v
+	y, _ := overTemperature(&c.CapacitanceTemp, degC)
+	return c.CapacitanceAged(age) * y
 }
 
 // ESRAt returns the bank's series resistance [ohm] at a temperature and an age,
@@ -39,16 +45,22 @@ func (c *Capacitor) unbiased(degC, age float64) float64 {
 //
 //	R = ESR/n · m(T) · a(age)
 func (c *Capacitor) ESRAt(degC, age float64) (r, slope float64) {
-	r = c.ESR / c.Pieces()
-	if !c.ESRAgeing.Empty() {
-		y, _ := overTemperature(&c.ESRAgeing, age)
-		r *= y
-	}
-	if c.ESRTemp.Empty() {
-		return r, 0
-	}
-	y, dy := overTemperature(&c.ESRTemp, degC)
+	r = c.ESRAged(age)
+	y, dy := c.ESRMultiplierAt(degC)
 	return r * y, r * dy
+}
+
+// ESRAged returns the bank's series resistance [ohm] at an age and 25 °C:
+// ESR/n a(age) of ESRAt.
+func (c *Capacitor) ESRAged(age float64) float64 {
+	y, _ := overTemperature(&c.ESRAgeing, age)
+	return c.ESR / c.Pieces() * y
+}
+
+// ESRMultiplierAt returns the series resistance over that at 25 °C and its slope
+// [1/K]: m(T) of ESRAt.
+func (c *Capacitor) ESRMultiplierAt(degC float64) (y, slope float64) {
+	return overTemperature(&c.ESRTemp, degC)
 }
 
 // BankESL returns the bank's series inductance [H].

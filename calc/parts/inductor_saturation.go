@@ -67,6 +67,7 @@ const (
 	swingSteps     = 8     // [1] plain Newton takes 3 to 5 on a curve without sharp corners
 	bracketSteps   = 80    // [1] bisection alone ends within 60
 	swingTolerance = 1e-13 // [1] of the current swing, a few roundings
+	swingLast      = 1e-7  // [1] of the current swing: a Newton step after which none is needed
 )
 
 // SwingAbout returns valley and peak [A] of the current that a triangular flux
@@ -106,12 +107,13 @@ func (l *Inductor) SwingAbout(mean, flux float64) (valley, peak float64) {
 	return l.swingBracketed(mean, flux)
 }
 
-// swingInSegment solves the same in closed form but for one small correction,
-// where the whole swing lies in one segment of the table.
+// swingInSegment solves the same where the whole swing lies in one segment of the
+// table: closed form but for one small correction.
 //
 //	Linc = a + b i:  w = Δλ/L(u),  u = I − b w²/(12 L(u))
 //
-// with u the middle and w the width of the swing.
+// with u the middle and w the width of the swing. Newton on u; the slope of the
+// right-hand side, (b w/2L)², is small, so the second step is the last as a rule.
 func (l *Inductor) swingInSegment(mean, flux float64) (valley, peak float64, ok bool) {
 	t := &l.InductanceAtCurrent
 	i, n := 1, len(t.X)
@@ -126,11 +128,15 @@ func (l *Inductor) swingInSegment(mean, flux float64) (valley, peak float64, ok 
 	u := mean
 	for range swingSteps {
 		inverse := 1 / (at + b*u)
-		w := flux * inverse
-		next := mean - b*w*w*inverse/12
-		moved := math.Abs(next - u)
-		u = next
-		if moved <= swingTolerance*w {
+		w, bend := flux*inverse, b*inverse
+		slope := bend * bend * w * w / 4
+		if !(w > 0 && slope < 0.25) {
+			break
+		}
+		move := (mean - bend*w*w/12 - u) * (1 + slope)
+		u += move
+		if math.Abs(move) <= swingLast*w {
+			w -= bend * w * move // at the moved middle; what is left is its square
 			valley, peak = u-w/2, u+w/2
 			return valley, peak, valley >= t.X[i-1] && peak <= t.X[i]
 		}

@@ -143,7 +143,12 @@ func TestModelsDoNotAllocate(t *testing.T) {
 
 func BenchmarkInductor(b *testing.B) {
 	l := saturating()
-	b.Run("swing", func(b *testing.B) {
+	b.Run("swing/in-segment", func(b *testing.B) {
+		for b.Loop() {
+			l.SwingAbout(6, 8e-6)
+		}
+	})
+	b.Run("swing/across-a-point", func(b *testing.B) {
 		for b.Loop() {
 			l.SwingAbout(8, 8e-6)
 		}

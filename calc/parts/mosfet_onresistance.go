@@ -16,17 +16,25 @@ package parts
 // LTC3855 data sheet 3855f, p. 22; LTC3728 data sheet 3728fg, p. 28.
 // High-voltage parts reach 2 to 2.6 at their limit.
 func (m *MOSFET) OnResistanceAt(junctionDegC, drive float64) (r, slope float64) {
-	y, dy := overTemperature(&m.OnResistanceTemp, junctionDegC)
-	r = m.OnResistance
-	if !m.OnResistanceDrive.Empty() {
-		r *= m.driveMultiplier(drive)
-	}
+	y, dy := m.OnMultiplierAt(junctionDegC)
+	r = m.OnResistanceDriven(drive)
 	return r * y, r * dy
 }
 
-// driveMultiplier reads OnResistanceDrive with the same continuation as over
-// temperature: a weaker drive goes on raising the resistance.
-func (m *MOSFET) driveMultiplier(drive float64) float64 {
+// OnMultiplierAt returns the on-resistance over that at 25 °C and its slope
+// [1/K]: m(Tj) of OnResistanceAt.
+func (m *MOSFET) OnMultiplierAt(junctionDegC float64) (y, slope float64) {
+	return overTemperature(&m.OnResistanceTemp, junctionDegC)
+}
+
+// OnResistanceDriven returns the on-resistance at 25 °C [ohm] and a gate drive
+// voltage [V]: R25 g(Vdr) of OnResistanceAt. Beyond its ends the table goes on
+// with the last slope as over temperature: a weaker drive goes on raising the
+// resistance.
+func (m *MOSFET) OnResistanceDriven(drive float64) float64 {
+	if m.OnResistanceDrive.Empty() {
+		return m.OnResistance
+	}
 	y, _ := overTemperature(&m.OnResistanceDrive, drive)
-	return y
+	return m.OnResistance * y
 }

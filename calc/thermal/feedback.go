@@ -4,7 +4,8 @@ import "math"
 
 const (
 	gainSteps     = 40    // [1] the iterations converge quadratically; the bound ends a cycle of roundings
-	gainTolerance = 1e-12 // [1] relative
+	gainTolerance = 1e-6  // [1] relative step at which Newton ends: what is left is its square, or as much where two gains agree
+	nodaTolerance = 1e-12 // [1] relative width of Noda's bounds
 )
 
 // gains is the matrix R J over the nodes that heat one another.
@@ -13,6 +14,7 @@ type gains struct {
 	node [MaxNodes]uint8
 	at   [MaxNodes]int8 // place of a node in the matrix, -1 for none
 	rj   [MaxNodes][MaxNodes]float64
+	x    Vector
 }
 
 // Feedback returns the largest gain of the loop from temperature over losses back
@@ -42,8 +44,8 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	if n.couplings == 0 || node < 0 {
 		return ratio, node
 	}
-	g := &n.gain
-	g.gather(n, slope)
+	g := &n.coupled
+	g.gather(n, slope, true)
 	if g.m < 2 {
 		return ratio, node
 	}
@@ -59,12 +61,13 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	return max(ratio, coupled), node
 }
 
-// gather fills the matrix from the coupled nodes whose loss rises.
-func (g *gains) gather(n *Network, slope *Vector) {
+// gather fills the matrix from the coupled nodes whose loss depends on their
+// temperature, or only those whose loss rises with it.
+func (g *gains) gather(n *Network, slope *Vector, rising bool) {
 	g.m = 0
 	for _, i := range n.join[:n.joined] {
 		g.at[i] = -1
-		if slope[i] > 0 {
+		if slope[i] > 0 || slope[i] < 0 && !rising {
 			g.at[i] = int8(g.m)
 			g.node[g.m] = i
 			g.m++
@@ -109,11 +112,11 @@ func (g *gains) largestOfThree() float64 {
 		if !(slope > 0) {
 			break
 		}
-		next := x - p/slope
-		if !(next < x*(1-gainTolerance)) {
+		step := p / slope
+		x -= step
+		if !(step > gainTolerance*x) {
 			break
 		}
-		x = next
 	}
 	return x
 }
@@ -140,7 +143,7 @@ func (g *gains) largestNoda() float64 {
 			break
 		}
 		bound = mu
-		if mu-low <= gainTolerance*mu || !g.solveShifted(mu*(1+gainTolerance), &x) {
+		if mu-low <= nodaTolerance*mu || !g.solveShifted(mu*(1+nodaTolerance), &x) {
 			break
 		}
 	}

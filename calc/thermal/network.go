@@ -39,7 +39,7 @@ type Network struct {
 	join      [MaxNodes]uint8
 
 	lack, delta, next, inverse Vector // workspace of Step
-	gain                       gains  // workspace of Feedback
+	coupled                    gains  // workspace of Step and Feedback
 }
 
 // Reset empties the network.

@@ -19,10 +19,11 @@ const (
 	// Climb is the step upwards [K] where Newton's direction is of no use; losses
 	// of real parts do not bend back within less.
 	Climb = 25.0 // [K]
-	// Couplings enter a step by sweeps. Each shrinks the error by the share of
-	// mutual heating, a few per cent as a rule; the next step corrects what is left.
-	sweepLimit     = 60
-	sweepTolerance = 1e-5 // [1] of the largest change
+	// Mutual heating is a small share of own heating as a rule: few sweeps solve
+	// the coupled equation to a thousandth of the step, and the next step, smaller
+	// by far, corrects what is left. Where they do not, elimination does.
+	sweepLimit     = 5
+	sweepTolerance = 1e-3 // [1] of the largest change
 )
 
 // Step moves temperatures towards the equilibrium by one Newton step, given the
@@ -47,13 +48,13 @@ func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change 
 		n.inverse[i] = 1
 		if slope[i] != 0 {
 			d := 1 - n.self[i]*slope[i]
-			stable = stable && (d > 0 || !(n.lack[i] > 0))
+			stable = stable && d > 0
 			n.inverse[i] = 1 / d
 		}
 		n.delta[i] = n.lack[i] * n.inverse[i]
 	}
-	if stable && n.couplings > 0 {
-		stable = n.sweep(slope)
+	if stable && n.couplings > 0 && !n.sweep(slope) {
+		stable = n.eliminate(slope)
 	}
 	if !stable {
 		return n.climb(slope, degC)
@@ -68,10 +69,9 @@ func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change 
 	return change, state
 }
 
-// sweep refines delta for the couplings. It reports whether that converges, which
-// it does exactly if the gain of the coupled parts is below one.
+// sweep refines delta of the coupled nodes by Jacobi's iteration and reports
+// whether it has converged.
 func (n *Network) sweep(slope *Vector) bool {
-	last := math.Inf(1)
 	for range sweepLimit {
 		for _, i := range n.join[:n.joined] {
 			n.next[i] = n.lack[i]
@@ -91,27 +91,86 @@ func (n *Network) sweep(slope *Vector) bool {
 		if moved <= sweepTolerance*largest {
 			return true
 		}
-		if !(moved < last) {
+	}
+	return false
+}
+
+// eliminate replaces delta of the coupled nodes by the solution of the whole
+// equation, and reports whether the gain of the coupled nodes is below one.
+//
+// Elimination without exchange of rows does both: the leading minors of 1 − R J
+// are those of networks that grow by one node at a time, whose largest gains
+// interlace, so the first pivot that is not positive shows a gain of one or more
+// and no positive one hides it.
+func (n *Network) eliminate(slope *Vector) bool {
+	a := &n.coupled
+	a.gather(n, slope, false)
+	m := a.m
+	for k, i := range a.node[:m] {
+		a.x[k] = n.lack[i]
+	}
+	for k := range m {
+		row := &a.rj[k]
+		pivot := 1 - row[k]
+		if !(pivot > 0) {
 			return false
 		}
-		last = moved
+		inverse := 1 / pivot
+		for j := k + 1; j < m; j++ {
+			below := &a.rj[j]
+			f := below[k] * inverse // both carry the sign of −R J
+			if f == 0 {
+				continue
+			}
+			for l := k + 1; l < m; l++ {
+				below[l] += f * row[l]
+			}
+			a.x[j] += f * a.x[k]
+		}
+		row[k] = inverse
 	}
+	for k := m - 1; k >= 0; k-- {
+		row := &a.rj[k]
+		sum := a.x[k]
+		for j := k + 1; j < m; j++ {
+			sum += row[j] * a.x[j]
+		}
+		a.x[k] = sum * row[k]
+		n.delta[a.node[k]] = a.x[k]
+	}
+	n.heatOthers(slope)
 	return true
 }
 
-// climb raises every part that is short of its temperature.
+// heatOthers finds delta of the coupled nodes whose own loss is constant.
+func (n *Network) heatOthers(slope *Vector) {
+	for _, i := range n.join[:n.joined] {
+		if slope[i] == 0 {
+			n.delta[i] = n.lack[i]
+		}
+	}
+	for k := range n.coupling[:n.couplings] {
+		c := &n.coupling[k]
+		if slope[c.A] == 0 {
+			n.delta[c.A] += c.OntoA * slope[c.B] * n.delta[c.B]
+		}
+		if slope[c.B] == 0 {
+			n.delta[c.B] += c.OntoB * slope[c.A] * n.delta[c.A]
+		}
+	}
+}
+
+// climb moves every part by what it is short of, and at least by Climb where the
+// loss rises.
 func (n *Network) climb(slope, degC *Vector) (change float64, state State) {
 	state = Climbed
 	for _, i := range n.node[:n.n] {
-		if !(n.lack[i] > 0) {
-			continue
-		}
 		up := n.lack[i]
-		if slope[i] > 0 {
+		if up > 0 && slope[i] > 0 {
 			up = max(up, Climb)
 		}
 		degC[i] += up
-		change = max(change, up)
+		change = max(change, math.Abs(up))
 		if !(degC[i] <= CeilingDegC) {
 			state = Runaway
 		}

@@ -224,7 +224,7 @@ func TestFeedbackIsLargestEigenvalue(t *testing.T) {
 					want = max(want, real(v))
 				}
 				got, _ := n.Feedback(&slope)
-				if math.Abs(got-want) > 1e-9*want {
+				if math.Abs(got-want) > 2*gainTolerance*want {
 					t.Fatalf("got %.12g, want %.12g", got, want)
 				}
 			})
@@ -242,14 +242,11 @@ func TestStepSolvesCoupledLosses(t *testing.T) {
 			p25[i] = rapid.Float64Range(0, 2).Draw(t, "power")
 		}
 		ambient := rapid.Float64Range(25, 85).Draw(t, "ambient")
-		degC, state, _ := settle(n, ambient, linear(p25, slope))
 		gain, _ := n.Feedback(&slope)
-		if gain > 0.9 {
-			return // near and beyond one the answer may lie above the ceiling
+		if gain > 0.99 {
+			return
 		}
-		if state != Stepped {
-			t.Fatalf("gain %g: state %d", gain, state)
-		}
+		degC, state, _ := settle(n, ambient, linear(p25, slope))
 		// (1 − R J) T = Tamb + R (P25 − 25 J)
 		r := dense(n, nodes)
 		size := len(nodes)
@@ -270,8 +267,14 @@ func TestStepSolvesCoupledLosses(t *testing.T) {
 		for k := range nodes {
 			hottest = max(hottest, want.AtVec(k))
 		}
+		if hottest > CeilingDegC-Climb {
+			return // a transient of the search may touch the ceiling
+		}
+		if state != Stepped {
+			t.Fatalf("gain %g, hottest %g: state %d", gain, hottest, state)
+		}
 		for k, i := range nodes {
-			if hottest < CeilingDegC && math.Abs(degC[i]-want.AtVec(k)) > 1e-6 {
+			if math.Abs(degC[i]-want.AtVec(k)) > 1e-6 {
 				t.Fatalf("node %d: %.9g, want %.9g", i, degC[i], want.AtVec(k))
 			}
 		}
@@ -333,6 +336,56 @@ func BenchmarkThermal(b *testing.B) {
 	b.Run("feedback", func(b *testing.B) {
 		for b.Loop() {
 			n.Feedback(&s)
+		}
+	})
+}
+
+// TestEliminationAgreesWithSweeps: both solve the same equation, and a gain of one
+// or more shows as a pivot that is not positive, and only so.
+func TestEliminationAgreesWithSweeps(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		n, nodes, slope := draw(t, -0.02)
+		if n.couplings == 0 {
+			return
+		}
+		degC, power := Vector{}, Vector{}
+		for _, i := range nodes {
+			power[i] = rapid.Float64Range(0, 2).Draw(t, "power")
+		}
+		n.Step(25, &power, &slope, &degC) // leaves lack and inverse
+		verdict := n.eliminate(&slope)
+		size := len(nodes)
+		rj, r := mat.NewDense(size, size, nil), dense(n, nodes)
+		for k, i := range nodes {
+			for row := range nodes {
+				rj.Set(row, k, r.At(row, k)*slope[i])
+			}
+		}
+		var eig mat.Eigen
+		eig.Factorize(rj, mat.EigenNone)
+		largest := math.Inf(-1)
+		for _, v := range eig.Values(nil) {
+			largest = max(largest, real(v))
+		}
+		if math.Abs(largest-1) > 1e-6 && verdict != (largest < 1) {
+			t.Fatalf("largest eigenvalue %.9g, verdict stable: %v", largest, verdict)
+		}
+		if !verdict {
+			return
+		}
+		for _, i := range n.join[:n.joined] {
+			sum := n.lack[i] + n.self[i]*slope[i]*n.delta[i]
+			for _, c := range n.coupling[:n.couplings] {
+				if c.A == i {
+					sum += c.OntoA * slope[c.B] * n.delta[c.B]
+				}
+				if c.B == i {
+					sum += c.OntoB * slope[c.A] * n.delta[c.A]
+				}
+			}
+			if math.Abs(sum-n.delta[i]) > 1e-8*(1+math.Abs(n.delta[i])) {
+				t.Fatalf("node %d: %.12g does not solve its equation, %.12g", i, n.delta[i], sum)
+			}
 		}
 	})
 }
