@@ -153,7 +153,7 @@ func (k *compiler) members(n *node, s map[string]any) {
 // union compiles alternatives that differ in their JSON type.
 func (k *compiler) union(n *node, branches []any) {
 	n.kind = union
-	var accepts []string
+	accepts := make([]string, 0, len(branches))
 	for _, b := range branches {
 		branch := k.schema(b)
 		if n.branches[branch.kind] != nil || branch.kind == anything {

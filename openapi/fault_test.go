@@ -51,8 +51,8 @@ func TestFaultsPointAtTheirPlace(t *testing.T) {
 			Fault{"/stage/inductor/inductance", "additionalProperties", "unknown field", "inductance_h", "1e-06", ""},
 		},
 		"unknown field, misspelt": {
-			func(_, s, _ object) { s["inductor"].(object)["dc_resistence_ohm"] = 1e-3 },
-			Fault{"/stage/inductor/dc_resistence_ohm", "additionalProperties", "unknown field", "dc_resistance_ohm", "0.001", ""},
+			func(_, s, _ object) { s["inductor"].(object)["dc_resitance_ohm"] = 1e-3 },
+			Fault{"/stage/inductor/dc_resitance_ohm", "additionalProperties", "unknown field", "dc_resistance_ohm", "0.001", ""},
 		},
 		"unknown field whose name needs escaping": {
 			func(_, s, _ object) {

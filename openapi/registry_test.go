@@ -89,7 +89,7 @@ func TestQuantitiesAreTheTable(t *testing.T) {
 		}
 		require.Equal(t, q.Unit, s["x-unit"], q.Key)
 		require.Equal(t, q.Unit, column["x-unit"], q.Key)
-		require.Empty(t, openapi.Load().ValidateAs("Limit", map[string]any{"quantity": quantity.ID(q.ID).Key(), "max": 1.0}), q.Key)
+		require.Empty(t, openapi.Load().ValidateAs("Limit", map[string]any{"quantity": q.ID.Key(), "max": 1.0}), q.Key)
 	}
 }
 

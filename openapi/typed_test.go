@@ -50,7 +50,7 @@ type wireFeedback struct {
 }
 
 func pointers(faults []Fault) []string {
-	at := []string{}
+	at := make([]string, 0, len(faults))
 	for _, f := range faults {
 		at = append(at, f.Pointer+" "+f.Keyword)
 	}
