@@ -6,8 +6,8 @@ import "math"
 // evaluation. binaryLog and binaryPower replace math.Log and math.Exp there: a
 // table of 128 centres and a short polynomial each, a third of the time. Their
 // error is below 4e-16 (absolute, of the logarithm in [-1, 1], growing with its
-// size by rounding only) and 4e-16 (relative, of the power); fuzzed against math
-// in TestPowerKernels.
+// size by rounding only) and 4e-16 (relative, of the power); compared with math in
+// TestPowerKernels.
 
 const (
 	tableBits = 7

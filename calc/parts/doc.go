@@ -1,6 +1,7 @@
 // Package parts models the kinds of part a power stage is made of: switch,
-// diode, inductor, capacitor, controller. One file holds one kind: its data and
-// its behaviour over temperature, bias, current and drive.
+// diode, inductor, capacitor, controller. A kind's data stand in the file of its
+// name, its behaviour over temperature, bias, current, drive and age in files
+// that begin with it.
 //
 // Numbers are SI; a temperature in degrees Celsius says so in its name. A value
 // that the caller did not give is Unknown (NaN) until stage.ApplyDefaults puts

@@ -44,6 +44,9 @@ func (s *Stage) Check() error {
 			f.within(x.ID, v, x.Least, x.Greatest, "")
 		}
 	}
+	if drive, plateau := s.Controller.Drive, s.HighSide.Plateau; drive <= plateau {
+		f = append(f, Fault{Field: "controller/drive_v", Given: drive, Limit: plateau, Accepted: fmt.Sprintf("above the high side's gate plateau of %g V", plateau), Detail: "the gate is never driven beyond its plateau: the switch does not turn on"})
+	}
 	f.within("phase_count", float64(s.PhaseCount), 1, MaxPhases, "phases")
 	f.within("output_capacitors", float64(len(s.OutputCapacitors)), 1, MaxBanks, "banks")
 	f.within("input_capacitors", float64(len(s.InputCapacitors)), 0, MaxBanks, "banks")
