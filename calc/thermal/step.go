@@ -19,6 +19,9 @@ const (
 	// Climb is the step upwards [K] where Newton's direction is of no use; losses
 	// of real parts do not bend back within less.
 	Climb = 25.0 // [K]
+	// Reach is the longest step [K] of a node: beyond it the slope at hand says
+	// nothing, and a loss curve that flattens must not be passed by.
+	Reach = 100.0 // [K]
 	// Mutual heating is a small share of own heating as a rule: few sweeps solve
 	// the coupled equation to a thousandth of the step, and the next step, smaller
 	// by far, corrects what is left. Where they do not, elimination does.
@@ -60,8 +63,9 @@ func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change 
 		return n.climb(slope, degC)
 	}
 	for _, i := range n.node[:n.n] {
-		degC[i] += n.delta[i]
-		change = max(change, math.Abs(n.delta[i]))
+		d := min(max(n.delta[i], -Reach), Reach)
+		degC[i] += d
+		change = max(change, math.Abs(d))
 		if !(degC[i] <= CeilingDegC) {
 			state = Runaway
 		}

@@ -127,26 +127,30 @@ func TestExponentialLossSettlesAtTheLowerEquilibrium(t *testing.T) {
 	}
 }
 
-// TestFlatteningLossIsFoundBeyondAnUnstableStretch: a table whose slope exceeds
-// gain one and then flattens has an equilibrium further up.
-func TestFlatteningLossIsFoundBeyondAnUnstableStretch(t *testing.T) {
+// TestFlatteningLossIsFound: a table whose slope comes near gain one, or exceeds
+// it, and then flattens has an equilibrium further up.
+func TestFlatteningLossIsFound(t *testing.T) {
 	n := &Network{}
 	n.Add(0, 50)
-	p := func(_ int, degC float64) (float64, float64) {
-		switch {
-		case degC < 60:
-			return 0.5 + 0.03*(degC-25), 0.03
-		case degC < 120:
-			return 1.55 + 0.005*(degC-60), 0.005
-		}
-		return 1.85, 0
+	for name, steep := range map[string]float64{"gain 0.99": 0.0198, "gain 0.9999": 0.019998, "gain 1": 0.02, "gain 1.5": 0.03} {
+		t.Run(name, func(t *testing.T) {
+			p := func(_ int, degC float64) (float64, float64) {
+				if degC < 120 {
+					return 0.8 + steep*(degC-25), steep
+				}
+				return 0.8 + steep*95 + 0.001*(degC-120), 0.001
+			}
+			degC, state, _ := settle(n, 25, p)
+			if state != Stepped {
+				t.Fatalf("state %d", state)
+			}
+			w, _ := p(0, degC[0])
+			calctest.Close(t, "equilibrium", 25+50*w, degC[0], 1e-9)
+			if degC[0] < 120 {
+				t.Errorf("%g degC lies on the steep piece", degC[0])
+			}
+		})
 	}
-	degC, state, _ := settle(n, 25, p)
-	if state != Stepped {
-		t.Fatalf("state %d", state)
-	}
-	w, _ := p(0, degC[0])
-	calctest.Close(t, "equilibrium", 25+50*w, degC[0], 1e-9)
 }
 
 func TestFallingLossesSettle(t *testing.T) {
