@@ -36,65 +36,131 @@ type square [MaxStates * MaxStates]float64
 //
 //	ξ(τ + h_l) = ξ(τ) + F_l ξ(τ) + d_l,  F = exp(A h) − I,  d = ∫0^h exp(A τ) b dτ
 //
-// The first rung is a Taylor series for |A| h ≤ 1; each next one follows by
+// The first rung is the series of φ1 for |A| h ≤ 1/16; each next one follows by
 // F → 2F + F², d → 2d + F d. Working with F instead of exp(A h) keeps the slow
 // modes to full relative accuracy beside stiff ones.
 type ladder struct {
 	owner  int // interval for which the rungs were built, −1 for none
 	levels int // the whole interval is h_0 2^levels
-	terms  int
+	cell   int // greatest rung that a Taylor cell can span, |A| h ≤ 1
 	h      [maxLevels + 1]float64
 	f      [maxLevels + 1]square
 	d      [maxLevels + 1]vec
 }
 
+// firstRung is the reach of the series that starts the ladder, of degree 7 in
+// φ1: (1/16)^8/9! = 6e-16.
+const firstRung = 1. / 16
+
 // build fills the rungs for an interval of length t. It reports false when the
 // circuit is stiffer than maxLevels allows.
-func (ld *ladder) build(nw *network, tp *topology, t float64) bool {
+func (ld *ladder) build(s *scratch, nw *network, tp *topology, t float64) bool {
 	theta := tp.norm * t
 	ld.levels = 0
-	if !(theta <= 1) {
-		ld.levels = int(math.Ceil(math.Log2(theta)))
-		if !(theta < math.MaxFloat64) || ld.levels > maxLevels {
-			ld.levels = 0
+	if !(theta <= firstRung) {
+		if !(theta < math.MaxFloat64) {
 			return false
 		}
+		_, exponent := math.Frexp(theta / firstRung)
+		if exponent > maxLevels {
+			return false
+		}
+		ld.levels = exponent
 	}
+	ld.cell = min(ld.levels, 4)
 	h := math.Ldexp(t, -ld.levels)
 	ld.h[0] = h
-	ld.terms = terms(tp.norm * h)
 	n := nw.n
-	f := &ld.f[0]
-	var unit, rate, column vec
-	for j := range n {
-		if j < nw.phases && tp.pos[j] == Resting {
-			for i := range n {
-				f[i*n+j] = 0
-			}
-			continue
-		}
-		unit[j] = 1
-		tp.rate(nw, &unit, &rate)
-		unit[j] = 0
-		tp.displace(nw, &rate, h, ld.terms, &column)
-		for i := range n {
-			f[i*n+j] = column[i]
-		}
-	}
-	tp.displace(nw, &tp.b, h, ld.terms, &ld.d[0])
+	ld.first(s, nw, tp, h)
 	for l := range ld.levels {
 		ld.h[l+1] = 2 * ld.h[l]
-		f := &ld.f[l]
-		multiply(&ld.f[l+1], f, f, n)
-		for i := range n * n {
-			ld.f[l+1][i] += 2 * f[i]
-		}
-		apply(f, &ld.d[l], &ld.d[l+1], n)
+		f, g := &ld.f[l], &ld.f[l+1]
+		multiply(g, f, f, n)
+		addTwice(g, f, n)
+		d, e := &ld.d[l], &ld.d[l+1]
+		apply(f, d, e, n)
 		for i := range n {
-			ld.d[l+1][i] += 2 * ld.d[l][i]
+			e[i] += 2 * d[i]
 		}
 	}
 	return true
+}
+
+// scratch is work space of the matrix functions.
+type scratch struct{ b, b2, b3, p, q square }
+
+// first fills the lowest rung, with B = A h:
+//
+//	φ1(B) = I + B/2 + B²/6 + B³/24 + B⁴ (I/5! + B/6! + B²/7! + B³/8!),  F = B φ1
+func (ld *ladder) first(s *scratch, nw *network, tp *topology, h float64) {
+	n := nw.n
+	b, b2, b3 := &s.b, &s.b2, &s.b3
+	tp.matrix(nw, h, b)
+	multiply(b2, b, b, n)
+	multiply(b3, b2, b, n)
+	p, q := s.p[:n*n], s.q[:n*n]
+	for i := range p {
+		x, y, z := b[i], b2[i], b3[i]
+		q[i] = x*(1./720) + y*(1./5040) + z*(1./40320)
+	}
+	for i := range n {
+		q[i*n+i] += 1. / 120
+	}
+	f := &ld.f[0]
+	multiply(f, b, &s.q, n)
+	multiply(&s.p, b3, f, n)
+	for i := range p {
+		p[i] += b[i]*(1./2) + b2[i]*(1./6) + b3[i]*(1./24)
+	}
+	for i := range n {
+		p[i*n+i]++
+	}
+	multiply(f, b, &s.p, n)
+	var y vec
+	for i := range n {
+		y[i] = tp.b[i] * h
+	}
+	apply(&s.p, &y, &ld.d[0], n)
+}
+
+// matrix writes A h. A phase at rest has neither row nor column.
+func (tp *topology) matrix(nw *network, h float64, b *square) {
+	n, phases := nw.n, nw.phases
+	for p := range phases {
+		row := b[p*n : p*n+n]
+		hl := -h * tp.invL[p]
+		for q := range phases {
+			row[q] = nw.rho * hl
+			if tp.pos[q] == Resting {
+				row[q] = 0
+			}
+		}
+		row[p] += tp.r[p] * hl
+		for k := range nw.banks {
+			row[phases+k] = nw.couple[k] * hl
+		}
+		for k := phases + nw.banks; k < n; k++ {
+			row[k] = 0
+		}
+	}
+	for k := range nw.banks {
+		row := b[(phases+k)*n : (phases+k)*n+n]
+		for q := range phases {
+			row[q] = nw.inject[k] * h
+			if tp.pos[q] == Resting {
+				row[q] = 0
+			}
+		}
+		for j := range nw.banks {
+			row[phases+j] = nw.relax[k][j] * h
+		}
+		for j := phases + nw.banks; j < n; j++ {
+			row[j] = 0
+		}
+	}
+	if nw.input.banks > 0 {
+		nw.input.matrix(nw, tp, h, b)
+	}
 }
 
 // displace writes ∫0^h exp(Aτ) y dτ = h Σ (A h)^k y/(k+1)!, the way the state
@@ -130,37 +196,6 @@ func (ld *ladder) stepRate(l int, y, dst *vec, n int) {
 	apply(&ld.f[l], y, &z, n)
 	for i := range n {
 		dst[i] = y[i] + z[i]
-	}
-}
-
-// apply writes y = M x.
-func apply(m *square, x, y *vec, n int) {
-	for i := range n {
-		row := m[i*n : i*n+n]
-		acc := 0.0
-		for j, a := range row {
-			acc += a * x[j]
-		}
-		y[i] = acc
-	}
-}
-
-// multiply writes dst = a b; dst is neither.
-func multiply(dst, a, b *square, n int) {
-	for i := range n {
-		out := dst[i*n : i*n+n]
-		left := a[i*n : i*n+n]
-		x := left[0]
-		for j, v := range b[:n] {
-			out[j] = x * v
-		}
-		for k := 1; k < n; k++ {
-			x := left[k]
-			row := b[k*n : k*n+n]
-			for j, v := range row {
-				out[j] += x * v
-			}
-		}
 	}
 }
 

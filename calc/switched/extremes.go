@@ -57,51 +57,52 @@ func (s *Solver) scan(k int, rate *vec, count int) {
 		s.work.pick(&wt.w, n)
 		s.work.extremes(&wt.range_)
 	}
-	if ld.levels == 0 {
+	if ld.levels == ld.cell {
 		return
 	}
-	x, y := v.start, *rate
-	ld.step(0, &x, &x, n)
-	ld.stepRate(0, &y, &y, n)
-	for l := range ld.levels {
-		m := max(l-2, 0)
+	y := *rate
+	ld.stepRate(ld.cell, &y, &y, n)
+	at := 1 << ld.cell // in first rungs
+	for l := ld.cell; l < ld.levels; l++ {
+		m := l - 1 // two steps per doubling, four in the last two
+		if l >= ld.levels-2 {
+			m--
+		}
 		for range 1 << (l - m) {
-			xb, yb := x, y
-			ld.step(m, &x, &xb, n)
+			yb := y
 			ld.stepRate(m, &y, &yb, n)
 			for i := range watches {
 				wt := &watches[i]
-				ra, rb := dot(&wt.w, &y, n), dot(&wt.w, &yb, n)
-				if (ra < 0) != (rb < 0) {
-					s.descend(&v.top, ld, m, x, y, &wt.w, &wt.range_)
+				if (dot(&wt.w, &y, n) < 0) != (dot(&wt.w, &yb, n) < 0) {
+					s.descend(v, ld, m, at, y, wt)
 				}
 			}
-			x, y = xb, yb
+			y = yb
+			at += 1 << m
 		}
 	}
 }
 
-// descend finds the extreme of the functional w in the step of rung m that
-// starts at x with rate y.
-func (s *Solver) descend(tp *topology, ld *ladder, m int, x, y vec, w *vec, e *extent) {
+// descend finds the extreme of a watch in the step of rung m that starts after
+// at first rungs with rate y.
+func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 	n := s.nw.n
-	for ; m > 0; m-- {
+	for ; m > ld.cell; m-- {
 		ym := y
 		ld.stepRate(m-1, &y, &ym, n)
-		if (dot(w, &y, n) < 0) == (dot(w, &ym, n) < 0) {
-			ld.step(m-1, &x, &x, n)
+		if (dot(&wt.w, &y, n) < 0) == (dot(&wt.w, &ym, n) < 0) {
+			at += 1 << (m - 1)
 			y = ym
 		}
 	}
-	s.work.set(&s.nw, tp, &x, &y, ld.h[0])
-	s.work.pick(w, n)
-	s.work.extremes(e)
-}
-
-func dot(w, x *vec, n int) float64 {
-	acc := 0.0
-	for i := range n {
-		acc += w[i] * x[i]
+	x := v.start
+	for l := 0; at > 0; l++ {
+		if at&1 != 0 {
+			ld.step(l, &x, &x, n)
+		}
+		at >>= 1
 	}
-	return acc
+	s.work.set(&s.nw, &v.top, &x, &y, ld.h[m])
+	s.work.pick(&wt.w, n)
+	s.work.extremes(&wt.range_)
 }

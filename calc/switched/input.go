@@ -73,6 +73,25 @@ func (in *inputNode) rate(nw *network, tp *topology, x, y *vec) {
 	}
 }
 
+// matrix writes the rows of the input banks into A h.
+func (in *inputNode) matrix(nw *network, tp *topology, h float64, b *square) {
+	n, at := nw.n, nw.phases+nw.banks
+	for k := range in.banks {
+		row := b[(at+k)*n : (at+k)*n+n]
+		for j := range row {
+			row[j] = 0
+		}
+		for p := range nw.phases {
+			if tp.pos[p] == High {
+				row[p] = -in.inject[k] * h
+			}
+		}
+		for j := range in.banks {
+			row[at+j] = in.relax[k][j] * h
+		}
+	}
+}
+
 // pin replaces the last equation of the periodic state, which the others imply,
 // by one for the charge of the banks: none at the start. Only the voltage's
 // alternating part is meant.

@@ -159,7 +159,7 @@ func (s *Solver) stretch(k int, st *Stretch) {
 func (s *Solver) driven(tp *topology, ld *ladder, b *State) State {
 	n := s.nw.n
 	var d, e State
-	tp.displace(&s.nw, b, ld.h[0], ld.terms, &d)
+	tp.displace(&s.nw, b, ld.h[0], terms(firstRung), &d)
 	for l := range ld.levels {
 		apply(&ld.f[l], &d, &e, n)
 		for i := range n {

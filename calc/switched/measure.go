@@ -25,10 +25,10 @@ func (m *moments) set(s *Solver, k int) {
 	ld := s.rungs(k)
 	v.top.slope(nw, &v.start, &m.y0)
 	ce := &s.work
-	ce.set(nw, &v.top, &v.start, &m.y0, ld.h[0])
+	ce.set(nw, &v.top, &v.start, &m.y0, ld.h[ld.cell])
 	m.first(ce, n)
 	e := &m.scratch[0]
-	for l := range ld.levels {
+	for l := ld.cell; l < ld.levels; l++ {
 		h, d := ld.h[l], &ld.d[l]
 		copy(e[:n*n], ld.f[l][:n*n])
 		for i := range n {
@@ -36,8 +36,8 @@ func (m *moments) set(s *Solver, k int) {
 		}
 		var eq vec
 		apply(e, &m.q, &eq, n)
-		m.transport(e, &m.x, n)
-		m.transport(e, &m.y, n)
+		congruent(e, &m.x, &m.scratch[1], n)
+		congruent(e, &m.y, &m.scratch[1], n)
 		for i := range n {
 			for j := range n {
 				m.x[i*n+j] += eq[i]*d[j] + d[i]*eq[j] + h*d[i]*d[j]
@@ -81,24 +81,6 @@ func (m *moments) first(ce *cell, n int) {
 			for l := range n {
 				m.x[i*n+l] += ai * a[l]
 				m.y[i*n+l] += bi * b[l]
-			}
-		}
-	}
-}
-
-// transport adds E M Eᵀ to the symmetric matrix M.
-func (m *moments) transport(e, sym *square, n int) {
-	t := &m.scratch[1]
-	multiply(t, e, sym, n)
-	for i := range n {
-		for j := 0; j <= i; j++ {
-			acc := 0.0
-			for k := range n {
-				acc += t[i*n+k] * e[j*n+k]
-			}
-			sym[i*n+j] += acc
-			if i != j {
-				sym[j*n+i] = sym[i*n+j]
 			}
 		}
 	}

@@ -124,7 +124,7 @@ type topology struct {
 }
 
 func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
-	inductive, capacitive, worst := 0.0, 0.0, 0.0
+	inductive, capacitive, worst, trace, most := 0.0, 0.0, 0.0, 0.0, 0.0
 	for p := range nw.phases {
 		leg := c.leg(p)
 		var u float64
@@ -145,12 +145,12 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 	for k := range nw.banks {
 		tp.b[nw.phases+k] = nw.inject[k] * ref.extra
 		capacitive += nw.inject[k]
-		sum := 0.0
-		for j := range nw.banks {
-			sum += math.Abs(nw.relax[k][j])
-		}
-		worst = math.Max(worst, sum)
+		trace -= nw.relax[k][k]
+		most = max(most, -nw.relax[k][k])
 	}
+	// The banks' own matrix is symmetric in scaled voltages and diagonally
+	// dominant: its norm is below its trace and below twice its greatest entry.
+	worst = max(worst, min(trace, 2*most))
 	tp.norm = worst + math.Sqrt(inductive*capacitive)
 	if nw.input.banks > 0 {
 		nw.input.drive(nw, ref, tp)

@@ -292,6 +292,7 @@ func TestAgainstIntegration(t *testing.T) {
 				t.Fatal("status", sol.Status)
 			}
 			checkOracle(t, k.c, &sol, 6000, 1e-8)
+			t.Logf("mode %d duty %.4f output %.4f ripple %.4g balance %.2g rounds %d", sol.Leg.Mode, sol.Duty, sol.OutputMean, sol.OutputMax-sol.OutputMin, sol.EnergyBalance, sol.Iterations)
 		})
 	}
 }

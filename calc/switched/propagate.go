@@ -20,6 +20,7 @@ type Propagator struct {
 	ref   reference
 	top   topology
 	rungs ladder
+	work  scratch
 	cell  cell
 	built float64 // length for which the rungs stand, 0 for none
 }
@@ -102,7 +103,7 @@ func (p *Propagator) Advance(x *State, dt float64) bool {
 func (p *Propagator) climb(dt float64) bool {
 	if p.built != dt {
 		p.built = 0
-		if !p.rungs.build(&p.nw, &p.top, dt) {
+		if !p.rungs.build(&p.work, &p.nw, &p.top, dt) {
 			return false
 		}
 		p.built = dt
@@ -123,18 +124,18 @@ func (p *Propagator) Crossing(x, w *State, level, ramp, dt float64) (at float64,
 	n, ld := p.nw.n, &p.rungs
 	start := *x
 	f := dot(w, x, n) - level
-	if t, ok := p.cross(x, w, level, ramp, ld.h[0]); ok {
+	if t, ok := p.cross(x, w, level, ramp, ld.h[ld.cell]); ok {
 		return t, true
 	}
-	ld.step(0, &start, x, n)
-	at = ld.h[0]
-	for l := range ld.levels {
-		m := max(l-2, 0)
+	ld.step(ld.cell, &start, x, n)
+	at = ld.h[ld.cell]
+	for l := ld.cell; l < ld.levels; l++ {
+		m := l - 2
 		for range 1 << (l - m) {
 			var to State
 			ld.step(m, x, &to, n)
 			if end := at + ld.h[m]; (dot(w, &to, n)-level-ramp*end < 0) != (f < 0) {
-				for ; m > 0; m-- {
+				for ; m > ld.cell; m-- {
 					var mid State
 					ld.step(m-1, x, &mid, n)
 					if t := at + ld.h[m-1]; (dot(w, &mid, n)-level-ramp*t < 0) == (f < 0) {
@@ -142,11 +143,11 @@ func (p *Propagator) Crossing(x, w *State, level, ramp, dt float64) (at float64,
 					}
 				}
 				from := *x
-				if t, ok := p.cross(x, w, level+ramp*at, ramp, ld.h[0]); ok {
+				if t, ok := p.cross(x, w, level+ramp*at, ramp, ld.h[m]); ok {
 					return at + t, true
 				}
-				ld.step(0, &from, x, n) // the sign turns within rounding of the end
-				return at + ld.h[0], true
+				ld.step(m, &from, x, n) // the sign turns within rounding of the end
+				return at + ld.h[m], true
 			}
 			*x = to
 			at += ld.h[m]

@@ -31,6 +31,9 @@ type Solver struct {
 	conduct [MaxPhases]float64 // [1] end of conduction in each leg's own cycle, 1 in continuous conduction
 	ladders [ladderCount]ladder
 	total   square
+	whole   square
+	product square
+	scratch scratch
 	pivot   [MaxStates]int
 	closure float64 // [1] relative closure of one more period
 	rounds  int
@@ -143,14 +146,17 @@ func (s *Solver) schedule(c *Circuit, duty float64) {
 // displacements themselves then refines it once.
 func (s *Solver) periodic(c *Circuit) bool {
 	nw, n := &s.nw, s.nw.n
-	var f, g square
+	f, g := &s.whole, &s.product
+	for i := range n * n {
+		f[i] = 0
+	}
 	var d, e vec
 	for k := range s.count {
 		v := &s.iv[k]
 		v.top.set(nw, &s.ref, c)
 		ld := &s.ladders[k%ladderCount]
 		ld.owner = -1
-		if !ld.build(nw, &v.top, v.t) {
+		if !ld.build(&s.scratch, nw, &v.top, v.t) {
 			return false
 		}
 		ld.owner = k
@@ -165,7 +171,7 @@ func (s *Solver) periodic(c *Circuit) bool {
 				d[p] = -s.ref.i[p]
 			}
 		}
-		multiply(&g, &v.f, &f, n)
+		multiply(g, &v.f, f, n)
 		apply(&v.f, &d, &e, n)
 		for i := range n * n {
 			f[i] += v.f[i] + g[i]
@@ -278,7 +284,7 @@ func (s *Solver) next(k, j int) Position {
 func (s *Solver) rungs(k int) *ladder {
 	ld := &s.ladders[k%ladderCount]
 	if ld.owner != k {
-		ld.build(&s.nw, &s.iv[k].top, s.iv[k].t)
+		ld.build(&s.scratch, &s.nw, &s.iv[k].top, s.iv[k].t)
 		ld.owner = k
 	}
 	return ld

@@ -148,7 +148,7 @@ func (s *Solver) meanOutput(c *Circuit) float64 {
 		var y, eq vec
 		v.top.slope(nw, &v.start, &y)
 		ce := &s.work
-		ce.set(nw, &v.top, &v.start, &y, ld.h[0])
+		ce.set(nw, &v.top, &v.start, &y, ld.h[ld.cell])
 		var q vec
 		for i := range n {
 			for j := 0; j <= ce.order; j += 2 {
@@ -156,7 +156,7 @@ func (s *Solver) meanOutput(c *Circuit) float64 {
 			}
 			q[i] *= ce.h
 		}
-		for l := range ld.levels {
+		for l := ld.cell; l < ld.levels; l++ {
 			apply(&ld.f[l], &q, &eq, n)
 			for i := range n {
 				q[i] += q[i] + eq[i] + ld.h[l]*ld.d[l][i]

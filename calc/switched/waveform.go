@@ -51,7 +51,7 @@ func (s *Solver) sample(c *Circuit, w *Waveform, k, turn, steps int, begin float
 	v := &s.iv[k]
 	ld := &s.ladders[0]
 	ld.owner = -1
-	ld.build(nw, &v.top, v.t/float64(steps))
+	ld.build(&s.scratch, nw, &v.top, v.t/float64(steps))
 	x := v.start
 	for i := 0; i <= steps; i++ {
 		if i == steps {
