@@ -102,6 +102,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
+		e.shareStart()
 		if _, _, runaway := e.follow(o, 1); runaway {
 			e.degC = cold // the closed form's currents decide nothing
 			break
@@ -118,6 +119,9 @@ func (e *Evaluator) iterate(o *operating) Status {
 		status := fromSwitched(e.solution.Status)
 		if status == NoOperatingPoint || status == NotConverged {
 			return status
+		}
+		if !e.share() {
+			return NotConverged
 		}
 		before := e.degC
 		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
@@ -189,7 +193,6 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
 	op.PathMean = o.input
 	op.LoadRMS = e.loadRMS()
-	e.inputBanks()
 	e.model.Begin(op.Bridge, op.Output)
 	e.model.Freeze(op)
 	for range steps {

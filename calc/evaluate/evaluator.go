@@ -28,7 +28,7 @@ type Evaluator struct {
 	feedback           float64                     // [1] gain of the loop from temperature to loss and back
 	inductance         [switched.MaxPhases]float64 // [H] over the present swing
 	valley, peak       float64                     // [A] from the flux curve
-	input              input
+	input              switched.InputSolution
 }
 
 // Prepare readies an evaluator for a stage that has passed Check. It works on a

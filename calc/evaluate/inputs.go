@@ -2,15 +2,30 @@ package evaluate
 
 import "math"
 
-// input is what flows in the input capacitors.
-type input struct {
-	RipplePP float64
-	BankRMS  [6]float64
+// shareStart splits the input banks' current of the closed form by capacitance,
+// where the iteration begins.
+func (e *Evaluator) shareStart() {
+	banks := len(e.stage.InputCapacitors)
+	sol, sum := &e.solution, 0.0
+	for k := range banks {
+		sum += e.inputBank[k].C
+	}
+	rms := math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+	for k := range banks {
+		e.operation.InputBank[k] = rms * e.inputBank[k].C / sum
+	}
 }
 
-func (e *Evaluator) inputBanks() {
-	e.input.RipplePP = math.NaN()
-	sol := &e.solution
-	e.input.BankRMS[0] = math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+// share solves the input banks on the circuit solution; without banks the source
+// carries everything.
+func (e *Evaluator) share() bool {
+	banks := len(e.stage.InputCapacitors)
+	if banks == 0 {
+		return true
+	}
+	if !e.solver.InputBanks(&e.circuit, &e.solution, banks, &e.inputBank, &e.input) {
+		return false
+	}
 	e.operation.InputBank = e.input.BankRMS
+	return true
 }
