@@ -72,6 +72,11 @@ func NewMonteCarlo(p *Problem, place Placer, plan Plan) (*MonteCarlo, error) {
 			panic("corners: random coordinates do not come first")
 		}
 	}
+	for _, c := range plan.Corners {
+		if len(c) != len(p.Coordinates) {
+			panic("corners: a corner of another length than the box")
+		}
+	}
 	if plan.First > 0 {
 		if plan.Sampling.Method != sampling.Independent {
 			return nil, fmt.Errorf("corners: only independent samples can start at a number other than 0")

@@ -8,7 +8,7 @@ import (
 
 const (
 	allVerticesUpTo = 12   // coordinates: 4096 vertices
-	cornersUpTo     = 6    // condition coordinates whose corners are all tried
+	cornersUpTo     = 6    // conditions and biases whose corners are all tried
 	scatterEvenly   = 1024 // points anywhere in the box
 	scatterOnEnds   = 1024 // points with tolerances at their ends and conditions anywhere
 	startsKept      = 3    // of the scattered points, for each target
@@ -82,10 +82,10 @@ func (p *Problem) corners(b *batch, from Origin, typical []float64, of []int, li
 	}
 }
 
-// conditions lists the coordinates that are conditions.
+// conditions lists the coordinates that are not tolerances.
 func (p *Problem) conditions() (list []int) {
 	for i := range p.Coordinates {
-		if p.Coordinates[i].Kind == Condition {
+		if p.Coordinates[i].Kind != Random {
 			list = append(list, i)
 		}
 	}

@@ -45,6 +45,18 @@ func (m *MonteCarlo) Beyond(corner, limit int) int {
 // Worst returns the worst samples of a target, the worst first.
 func (m *MonteCarlo) Worst(target int) []WorstSample { return m.total.worst[target] }
 
+// WorstPoints returns the coordinates and numbers of the worst sample of every
+// target, for Search.Resume.
+func (m *MonteCarlo) WorstPoints() (points [][]float64, samples []int) {
+	for _, w := range m.total.worst {
+		if len(w) > 0 {
+			points = append(points, m.Sample(w[0].Sample, w[0].Corner))
+			samples = append(samples, w[0].Sample)
+		}
+	}
+	return points, samples
+}
+
 // Failures returns the failed evaluations by kind and corner.
 func (m *MonteCarlo) Failures() []FailureCount {
 	var list []FailureCount
