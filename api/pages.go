@@ -3,6 +3,7 @@ package api
 import (
 	"fmt"
 	"html"
+	"io/fs"
 	"slices"
 	"strings"
 
@@ -10,16 +11,58 @@ import (
 
 	"railproof/api/docs"
 	"railproof/api/exchange"
+	"railproof/openapi"
 )
 
-// documentation routes the pages for people below /docs.
-func (a *API) documentation() {
+// docsPages answers /docs/{page}.
+func docsPages() echo.HandlerFunc {
+	pages := map[string]echo.HandlerFunc{}
 	for _, p := range docs.Pages() {
-		a.echo.GET("/docs/"+p.Name, page(p.Title, docs.HTML(p.Text)))
+		pages[p.Name] = page(p.Title, docs.HTML(p.Text))
 	}
+	return oneOf(pages, "page")
+}
+
+// problemPages answers /docs/problems/{kind}.
+func problemPages() echo.HandlerFunc {
+	pages := map[string]echo.HandlerFunc{}
 	for _, k := range exchange.Kinds() {
 		text := fmt.Sprintf("<h1>%s</h1>\n<p>Status %d, type <code>%s</code>.</p>\n<p>%s</p>\n", html.EscapeString(k.Title), k.Status, k.Kind, html.EscapeString(k.Meaning))
-		a.echo.GET("/docs/problems/"+string(k.Kind), page(k.Title, text))
+		pages[string(k.Kind)] = page(k.Title, text)
+	}
+	return oneOf(pages, "kind")
+}
+
+// example answers /examples/{rail}/{name}.
+func example() echo.HandlerFunc {
+	files := map[string]echo.HandlerFunc{}
+	examples := openapi.Examples()
+	err := fs.WalkDir(examples, ".", func(name string, d fs.DirEntry, err error) error {
+		if err != nil || d.IsDir() {
+			return err
+		}
+		text, err := fs.ReadFile(examples, name)
+		files[name] = document(echo.MIMEApplicationJSON, text)
+		return err
+	})
+	if err != nil {
+		panic("api: the embedded examples cannot be read")
+	}
+	return oneOf(files, "rail", "name")
+}
+
+// oneOf picks the handler that the path parameters name.
+func oneOf(handlers map[string]echo.HandlerFunc, parameters ...string) echo.HandlerFunc {
+	return func(c echo.Context) error {
+		name := c.Param(parameters[0])
+		for _, p := range parameters[1:] {
+			name += "/" + c.Param(p)
+		}
+		handler := handlers[name]
+		if handler == nil {
+			return echo.ErrNotFound
+		}
+		return handler(c)
 	}
 }
 

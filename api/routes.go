@@ -27,7 +27,6 @@ func (a *API) routes() {
 	for id := range handlers {
 		panic("api: no operation " + id + " in the contract")
 	}
-	a.documentation()
 }
 
 // handlers are the operations that take no body, by their identifiers.
@@ -36,6 +35,9 @@ func (a *API) handlers() map[string]echo.HandlerFunc {
 		"getContractJson": document("application/json", openapi.JSON()),
 		"getContractYaml": document("application/yaml", openapi.YAML()),
 		"getDocs":         a.overview,
+		"getDocsPage":     docsPages(),
+		"getProblemPage":  problemPages(),
+		"getExample":      example(),
 		"getHealth":       health,
 		"getReadiness":    a.readiness,
 	}

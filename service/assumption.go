@@ -39,7 +39,8 @@ var telling = []quantity.ID{
 // are computed and its result; nil where no point gave figures.
 func assumptions(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	list := defaults(d, e, base)
-	list = append(list, gaps(d)...)
+	list = append(list, omissions(d)...)
+	list = append(list, placeholders(d)...)
 	if base != nil {
 		list = append(list, beyondTables(d, base)...)
 	}
@@ -123,19 +124,28 @@ func finite(v float64) float64 {
 	return v
 }
 
-// gaps lists what the stage leaves out as a whole, and its placeholder parts.
-func gaps(d *Design) []Assumption {
+// numberless is an assumption that no number stands for.
+func numberless(pointer, why string) Assumption {
+	return Assumption{Pointer: pointer, Value: parts.Unknown, Low: parts.Unknown, High: parts.Unknown, Why: why}
+}
+
+// omissions lists what the stage leaves out as a whole.
+func omissions(d *Design) []Assumption {
+	var list []Assumption
+	if !d.Stage.Inductor.Core.Present {
+		list = append(list, numberless(d.At+"/inductor/core", "core not described: core loss left out"))
+	}
+	if len(d.Stage.InputCapacitors) == 0 {
+		list = append(list, numberless(d.At+"/input_capacitors", "no input capacitors given: input ripple and their losses left out"))
+	}
+	return list
+}
+
+// placeholders lists the parts that are proposals.
+func placeholders(d *Design) []Assumption {
 	var list []Assumption
 	s := d.Stage
-	none := func(tail, why string) {
-		list = append(list, Assumption{Pointer: d.At + tail, Value: parts.Unknown, Low: parts.Unknown, High: parts.Unknown, Why: why})
-	}
-	if !s.Inductor.Core.Present {
-		none("/inductor/core", "core not described: core loss left out")
-	}
-	if len(s.InputCapacitors) == 0 {
-		none("/input_capacitors", "no input capacitors given: input ripple and their losses left out")
-	}
+	none := func(tail, why string) { list = append(list, numberless(d.At+tail, why)) }
 	const placeholder = "placeholder part: its values are proposals, not those of a part"
 	if s.HighSide.Assumed {
 		none("/high_side", placeholder)

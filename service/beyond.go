@@ -23,10 +23,7 @@ type tableUse struct {
 func beyondTables(d *Design, base *basis) []Assumption {
 	var list []Assumption
 	for _, use := range tablesBeyond(d.Stage, base) {
-		a := Assumption{
-			Pointer: d.At + use.tail, Value: parts.Unknown, Low: parts.Unknown, High: parts.Unknown,
-			Why: "read beyond its ends: the last slope goes on; the effect compares with the last value held",
-		}
+		a := numberless(d.At+use.tail, "read beyond its ends: the last slope goes on; the effect compares with the last value held")
 		held := d.Stage.Clone()
 		t := use.table(held)
 		*t = flatBeyond(*t)

@@ -25,6 +25,9 @@ var renderers = map[string]map[string]renderer{
 		"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.LossesText(v.(*wire.LossesAnswer))) },
 	},
+	"sizing": {
+		TextForm: func(v any) []byte { return []byte(render.SizingText(v.(*wire.SizingAnswer))) },
+	},
 	"steadyState": {
 		TextForm: func(v any) []byte { return []byte(render.SteadyStateText(v.(*wire.SteadyStateAnswer))) },
 	},

@@ -4,5 +4,6 @@ package exchange
 // a file of its own beside it.
 var computations = map[string]handler{
 	"losses":      losses,
+	"sizing":      size,
 	"steadyState": steadyState,
 }

@@ -27,7 +27,12 @@ var schemas = map[string]reflect.Type{
 	"LossItem": reflect.TypeFor[LossItem](), "LossesRequest": reflect.TypeFor[LossesRequest](), "GridRequest": reflect.TypeFor[GridRequest](),
 	"LossesItem": reflect.TypeFor[LossesItem](), "LossesGrid": reflect.TypeFor[LossesGrid](), "LossesAnswer": reflect.TypeFor[LossesAnswer](),
 	"SteadyStateRequest": reflect.TypeFor[SteadyStateRequest](), "SteadyStateAnswer": reflect.TypeFor[SteadyStateAnswer](),
-	"Fault": reflect.TypeFor[Fault](), "QuantityInfo": reflect.TypeFor[QuantityInfo](), "QuantitiesAnswer": reflect.TypeFor[QuantitiesAnswer](),
+	"Requirement": reflect.TypeFor[Requirement](), "FrequencyRange": reflect.TypeFor[FrequencyRange](), "Targets": reflect.TypeFor[Targets](),
+	"SizingRequest": reflect.TypeFor[SizingRequest](), "SizingChoices": reflect.TypeFor[SizingChoices](), "SizingAnswer": reflect.TypeFor[SizingAnswer](),
+	"Window": reflect.TypeFor[Window](), "Bound": reflect.TypeFor[Bound](), "Corner": reflect.TypeFor[Corner](), "RequiredRating": reflect.TypeFor[RequiredRating](),
+	"Conflict": reflect.TypeFor[SizingConflict](), "Divider": reflect.TypeFor[Divider](), "SizingCheck": reflect.TypeFor[SizingCheck](), "SweepRow": reflect.TypeFor[SweepRow](),
+	"Equation": reflect.TypeFor[Equation](),
+	"Fault":    reflect.TypeFor[Fault](), "QuantityInfo": reflect.TypeFor[QuantityInfo](), "QuantitiesAnswer": reflect.TypeFor[QuantitiesAnswer](),
 	"PreferredSeries": reflect.TypeFor[PreferredSeries](), "PreferredValuesAnswer": reflect.TypeFor[PreferredValuesAnswer](),
 }
 

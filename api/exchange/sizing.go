@@ -1,0 +1,23 @@
+package exchange
+
+import (
+	"context"
+
+	"railproof/api/wire"
+)
+
+func size(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error) {
+	w, err := decode[wire.SizingRequest](body)
+	if err != nil {
+		return nil, err
+	}
+	r, err := w.Decode()
+	if err != nil {
+		return nil, err
+	}
+	a, err := x.service.Sizing(ctx, r)
+	if err != nil {
+		return nil, err
+	}
+	return wire.EncodeSizing(w, r, a, head), nil
+}

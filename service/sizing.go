@@ -1,0 +1,82 @@
+package service
+
+import (
+	"context"
+
+	"railproof/calc/caution"
+	"railproof/calc/evaluate"
+	"railproof/calc/sizing"
+	"railproof/calc/spread"
+	"railproof/calc/stage"
+)
+
+// SizingRequest asks for a stage that meets a requirement.
+type SizingRequest struct {
+	At          string // pointer of the requirement in the request: "/requirement"
+	Requirement stage.Requirement
+	Choices     sizing.Choices
+	Assumed     []stage.Assumed // defaults of the requirement itself, by its field ids
+}
+
+// SizingAnswer is what sizing says, and what it rests on.
+type SizingAnswer struct {
+	sizing.Answer
+	Basis Basis
+}
+
+// Sizing sizes a stage at each switching frequency that the requirement asks for,
+// chooses one, and checks the draft on the exact engine.
+func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, error) {
+	a := new(SizingAnswer)
+	err := s.run(ctx, bulk, func() error {
+		frequencies := sizing.Frequencies(&r.Requirement, r.Choices)
+		answers := make([]sizing.Answer, len(frequencies))
+		err := inChunks(ctx, len(answers), 1, s.workers, noWorkspace, func(_ struct{}, from, _ int) {
+			answers[from] = sizing.SizeAt(&r.Requirement, r.Choices, frequencies[from])
+		})
+		if err != nil {
+			return err
+		}
+		a.Answer = sizing.Select(&r.Requirement, answers)
+		a.Verify()
+		a.Basis.Assumptions, err = s.sizingAssumptions(ctx, r, &a.Answer)
+		a.rests(r)
+		return err
+	})
+	if err != nil {
+		return nil, err
+	}
+	return a, nil
+}
+
+func noWorkspace() struct{} { return struct{}{} }
+
+// rests gathers cautions and warnings.
+func (a *SizingAnswer) rests(r *SizingRequest) {
+	var seen caution.Seen
+	seen.AddRequirement(r.At, &r.Requirement)
+	if a.Stage != nil {
+		var result evaluate.Result
+		e := evaluate.Prepare(a.Stage)
+		e.Eval(&a.Point, &result)
+		seen.Add("/point", a.Stage, &a.Point, &result)
+		a.Basis.Cautions = caution.Of(a.Stage, "/stage", a.Spreads, &seen)
+	} else {
+		a.Basis.Cautions = caution.Of(bare(&r.Requirement), "/stage", []spread.Variable{}, &seen)
+	}
+	for _, n := range a.Notes {
+		a.Basis.Warnings = append(a.Basis.Warnings, Warning{Code: n.Code, Pointer: fieldPointer(r.At, n.Field), Detail: n.Detail})
+	}
+}
+
+// bare is a stage of which only the kind is known.
+func bare(r *stage.Requirement) *stage.Stage {
+	return stage.NewStage(r.Rectifier, 0, 0, 0, false, false, false, false)
+}
+
+func fieldPointer(at, field string) string {
+	if field == "" {
+		return at
+	}
+	return at + "/" + field
+}
