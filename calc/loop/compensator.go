@@ -266,3 +266,25 @@ func solve3(m *[3][4]float64) (x, y, z float64) {
 	d := det(0, 1, 2)
 	return det(3, 1, 2) / d, det(0, 3, 2) / d, det(0, 1, 3) / d
 }
+
+// Rest returns the states of the network with the output voltage vo and the
+// control voltage vc standing still and no current in any capacitor.
+func Rest(c *parts.Compensator, f *stage.Feedback, vo, vc float64) [MaxCompensatorStates]float64 {
+	a := describe(c, f, HeldLow, Limits{Low: vc})
+	vfb := vo * f.Lower / (f.Upper + f.Lower)
+	var x [MaxCompensatorStates]float64
+	x[0] = vfb - vc
+	if a.transconduct {
+		x[0] = vc
+	}
+	if a.feedback == twoCapacitors {
+		x[a.shunt] = x[0]
+	}
+	if a.lead {
+		x[a.lead3] = vo - vfb
+	}
+	if a.slow {
+		x[a.slowAt] = vc
+	}
+	return x
+}

@@ -257,3 +257,17 @@ func (s *Sampled) Loop(frequency float64) complex128 {
 	sin, cos := math.Sincos(2 * math.Pi * frequency * s.window.length)
 	return s.transfer.At(complex(cos, sin))
 }
+
+// Instant is the periodic solution at the instant a comparator decides.
+type Instant struct {
+	State [statespace.MaxStates]float64 // [any] states of the joint system, without integral and tone
+	Legs  Legs                          // phase 0 is about to turn off
+	At    float64                       // [s] after the clock of phase 0
+}
+
+// Decision returns the periodic solution as the comparator of phase 0 decides.
+func (s *Sampled) Decision() Instant {
+	d := Instant{Legs: s.window.segment[0].legs, At: s.plant.Duty*s.plant.Circuit.Period - s.plant.Modulator.Delay}
+	copy(d.State[:s.joint.N], s.start[:s.joint.N])
+	return d
+}

@@ -29,16 +29,16 @@ func (l *Ladder) Cross(e *Event, z *Point, limit float64) float64 {
 	last := len(l.rungs) - 1
 	for i := 0; i <= last; i++ {
 		rung := &l.rungs[i]
-		if at+rung.Time > limit {
+		if at+rung.time > limit {
 			continue
 		}
-		rung.Apply(&next, z)
-		if e.At(&next, w, at+rung.Time) < 0 {
+		rung.apply(&next, z, &l.System)
+		if e.At(&next, w, at+rung.time) < 0 {
 			*z = next
-			at += rung.Time
+			at += rung.time
 		}
 	}
-	rest := min(l.rungs[last].Time, limit-at)
+	rest := min(l.rungs[last].time, limit-at)
 	if !(rest > 0) {
 		return at
 	}

@@ -9,7 +9,23 @@ import "math"
 type Ladder struct {
 	System System
 	Step   float64 // [s]
-	rungs  []Map   // over Step / 2^i
+	rungs  []rung  // over Step / 2^i
+}
+
+// rung is a Map without the room it does not use.
+type rung struct {
+	time float64   // [s]
+	f    []float64 // N rows of N+M
+}
+
+func (r *rung) apply(dst, z *Point, s *System) {
+	n, w := s.N, s.N+s.M
+	for i := 0; i < n; i++ {
+		dst[i] = dot(r.f[i*w:i*w+w], z[:w])
+	}
+	for k := 0; k < s.M; k++ {
+		dst[n+k] = z[n+k] + float64(s.Rate[k]*r.time)
+	}
 }
 
 const (
@@ -22,29 +38,36 @@ const (
 // NewLadder returns the ladder of s for steps of the given length.
 func NewLadder(s *System, step float64) *Ladder {
 	l := &Ladder{System: *s, Step: step}
-	n := halvingsFor(s, step, rungNorm)
-	l.rungs = make([]Map, n+1)
-	var work Map
-	l.rungs[n].series(s, math.Ldexp(step, -n), taylorTerms, &work)
-	for i := n - 1; i >= 0; i-- {
-		l.rungs[i].Compose(&l.rungs[i+1], &l.rungs[i+1])
-		l.rungs[i].Time = math.Ldexp(step, -i)
+	last := halvingsFor(s, step, rungNorm)
+	used := s.N * (s.N + s.M)
+	l.rungs = make([]rung, last+1)
+	room := make([]float64, (last+1)*used)
+	var a, b Map
+	now, next := &a, &b
+	now.series(s, math.Ldexp(step, -last), taylorTerms, next)
+	for i := last; ; i-- {
+		l.rungs[i] = rung{math.Ldexp(step, -i), room[i*used : (i+1)*used]}
+		copy(l.rungs[i].f, now.F[:used])
+		if i == 0 {
+			return l
+		}
+		next.Compose(now, now)
+		now, next = next, now
 	}
-	return l
 }
 
 // Whole sets dst to the point one full Step after z.
-func (l *Ladder) Whole(dst, z *Point) { l.rungs[0].Apply(dst, z) }
+func (l *Ladder) Whole(dst, z *Point) { l.rungs[0].apply(dst, z, &l.System) }
 
 // Advance moves z by the time t, 0 <= t <= Step.
 func (l *Ladder) Advance(z *Point, t float64) {
 	var next Point
 	for i := range l.rungs {
 		m := &l.rungs[i]
-		if t >= m.Time {
-			m.Apply(&next, z)
+		if t >= m.time {
+			m.apply(&next, z, &l.System)
 			*z = next
-			t -= m.Time
+			t -= m.time
 		}
 	}
 	if t > 0 {

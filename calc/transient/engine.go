@@ -1,0 +1,210 @@
+package transient
+
+import (
+	"math"
+
+	"railproof/calc/loop"
+	"railproof/calc/parts"
+	"railproof/calc/statespace"
+	"railproof/calc/switched"
+)
+
+// phase is what the controller knows about one phase.
+type phase struct {
+	clock   float64 // [s] next turn-on
+	count   int     // clocks that have passed
+	since   float64 // [s] last turn-on
+	ramp    float64 // [V] comparator ramp at the present time
+	off     float64 // [s] when the high side turns off, +Inf while undecided
+	decided bool    // the comparator or the limit has tripped
+	limited bool    // it was the limit
+}
+
+// moment is the complete state of a run at one time; it is copied to try things.
+type moment struct {
+	at     float64 // [s]
+	z      statespace.Point
+	rate   [statespace.MaxInputs]float64 // of the inputs
+	rates  int                           // index of that rate among those met
+	legs   loop.Legs
+	drive  loop.Drive
+	next   int     // next breakpoint
+	soft   bool    // the reference is still being ramped up: reverse current is blocked
+	began  float64 // [s] start of the present period
+	waits  bool    // the constant-current load is not yet connected
+	phases [switched.MaxPhases]phase
+}
+
+// Engine runs one setup. It is made by New and used by one goroutine.
+type Engine struct {
+	setup  Setup
+	joint  loop.Joint
+	delay  float64 // [s] comparator to switch
+	blank  float64 // [s] after turn-on before the comparator counts
+	most   float64 // [s] longest on-time
+	slope  float64 // [V/s] comparator ramp without feed-forward
+	follow float64 // [1/s] ramp slope per volt of source, with feed-forward
+	sense  float64
+	limit  float64 // [A] +Inf: none
+	width  int     // states and inputs
+	points []breakpoint
+
+	control [loop.DriveStates]statespace.Functional
+	trip    [loop.DriveStates][switched.MaxPhases]statespace.Event // comparator
+	over    [switched.MaxPhases]statespace.Event                   // current limit
+	rest    [switched.MaxPhases]statespace.Event                   // inductor current falls to zero
+	high    statespace.Event                                       // control voltage above its upper limit
+	low     statespace.Event                                       // below its lower limit
+	leave   [loop.DriveStates]statespace.Event                     // a held control voltage moves again
+	connect statespace.Event                                       // the output lets the load start
+	watched []watcher
+
+	rateList [][statespace.MaxInputs]float64
+	shelf    map[uint32]*interval
+
+	now    moment
+	status Status
+	edges  int  // in the present period
+	trial  bool // a period is only tried out: nothing is recorded
+	shape  [loop.DriveStates][signals]statespace.Functional
+	rec    recorder
+	run    tally
+
+	startMean float64 // [V]
+	lastMean  float64 // [V] of the last period
+}
+
+// interval is the exact motion in one state of switches, amplifier and inputs.
+type interval struct {
+	*statespace.Ladder
+	slopes [signals]statespace.Functional // of the recorded signals
+}
+
+// Status tells how a run stands.
+type Status uint8
+
+const (
+	NotRun    Status = iota
+	Running          // periods are left
+	Finished         // the whole duration was run
+	NoStart          // no periodic solution was found to start from
+	Stalled          // more edges within one period than a controller can make
+	Collapsed        // the load drags the output below zero, where the circuit is no longer that of the model
+)
+
+// OK reports whether the whole run was made.
+func (s Status) OK() bool { return s == Finished }
+
+const (
+	stepsPerPeriod = 12  // [1] whole steps in a period; extremes and crossings between them are solved
+	maxEdges       = 400 // [1] in one period
+	sameTime       = 1e-12
+)
+
+// New prepares a run. The error is a *stage.InvalidError. A start that cannot be
+// found is a status of the engine.
+func New(s *Setup) (*Engine, error) {
+	if err := s.Check(); err != nil {
+		return nil, err
+	}
+	p := &s.Plant
+	e := &Engine{setup: *s, status: Running, delay: p.Modulator.Delay, sense: 0, limit: math.Inf(1), shelf: map[uint32]*interval{}}
+	e.joint.Integrate = true
+	for _, ev := range s.Events {
+		if ev.Kind == ControlTone {
+			e.joint.ToneRate = 2 * math.Pi * ev.Frequency
+		}
+	}
+	e.joint.Set(p, loop.Limits{Low: s.Bounds.ControlLow, High: s.Bounds.ControlHigh})
+	e.width = e.joint.N + loop.Inputs
+	e.blank = max(0, s.Bounds.MinOn-e.delay)
+	period := p.Circuit.Period
+	e.most = period * s.Bounds.MaxDuty
+	if s.Bounds.MinOff > 0 {
+		e.most = min(e.most, period-s.Bounds.MinOff)
+	}
+	e.slope = p.RampSlope()
+	if p.Modulator.Mode == parts.PeakCurrentMode {
+		e.sense = p.Modulator.Sense
+	} else if p.Modulator.FeedForward {
+		e.follow, e.slope = e.slope/p.Circuit.Vin, 0
+	}
+	if parts.Known(p.Modulator.CurrentLimit) {
+		e.limit = p.Modulator.CurrentLimit
+	}
+	e.functionals()
+	e.functionalsOfSignals()
+	e.schedule()
+	e.rec.set(e)
+	e.begin()
+	return e, nil
+}
+
+// functionals prepares the linear outputs that are watched.
+func (e *Engine) functionals() {
+	j := &e.joint
+	for d := range e.control {
+		e.control[d] = j.Control(loop.Drive(d))
+	}
+	b := &e.setup.Bounds
+	e.high = statespace.Event{Output: e.control[loop.Linear], Offset: -b.ControlHigh}
+	e.low = statespace.Event{Output: negated(e.control[loop.Linear]), Offset: b.ControlLow}
+	e.leave[loop.HeldHigh].Output = negated(j.Push(loop.HeldHigh))
+	e.leave[loop.HeldLow].Output = j.Push(loop.HeldLow)
+	for i := range j.Circuit.Phases {
+		for d := range e.trip {
+			f := negated(e.control[d])
+			f[i] += e.sense
+			if j.ToneRate != 0 {
+				f[j.Tone] -= 1
+			}
+			e.trip[d][i].Output = f
+		}
+		e.over[i].Output[i], e.over[i].Offset = 1, -e.limit
+		e.rest[i].Output[i] = -1
+	}
+	e.connect = statespace.Event{Output: j.Output, Offset: -e.setup.Start.LoadFrom}
+}
+
+func negated(f statespace.Functional) statespace.Functional {
+	for i := range f {
+		f[i] = -f[i]
+	}
+	return f
+}
+
+// at returns the motion in the present state of the engine.
+func (e *Engine) motion() *interval {
+	m := &e.now
+	key := uint32(m.rates)<<16 | uint32(m.drive)<<14
+	for i := range e.joint.Circuit.Phases {
+		key |= uint32(m.legs[i]) << (2 * i)
+	}
+	v, ok := e.shelf[key]
+	if !ok {
+		var s statespace.System
+		e.joint.Assemble(&s, &m.legs, m.drive)
+		s.Rate = m.rate
+		v = &interval{Ladder: statespace.NewLadder(&s, e.setup.Plant.Circuit.Period/stepsPerPeriod)}
+		for k := range v.slopes {
+			f := e.signal(k)
+			v.slopes[k] = slopeOf(&f, &s)
+		}
+		e.shelf[key] = v
+	}
+	return v
+}
+
+// slopeOf returns the functional whose value is the rate of change of f.
+func slopeOf(f *statespace.Functional, s *statespace.System) statespace.Functional {
+	var g statespace.Functional
+	for i := range s.N {
+		for k, a := range s.Row(i) {
+			g[k] += f[i] * a
+		}
+	}
+	for k := range s.M {
+		g[s.N+s.M-1] += f[s.N+k] * s.Rate[k]
+	}
+	return g
+}

@@ -1,0 +1,222 @@
+package transient
+
+import (
+	"math"
+
+	"railproof/calc/loop"
+	"railproof/calc/statespace"
+)
+
+// begin puts the engine into the start of its run.
+func (e *Engine) begin() {
+	e.rateIndex()
+	s := &e.setup
+	f := &s.Plant.Feedback
+	e.run.target, e.run.band = f.OutputVoltage(), s.Band
+	e.run.least, e.run.most = math.Inf(1), math.Inf(-1)
+	e.startMean = math.NaN()
+	if s.Start.Kind == AtRest {
+		e.fromRest()
+	} else if !e.fromPeriodic() {
+		e.status = NoStart
+		return
+	}
+	e.run.start(e, noEvent)
+}
+
+// inputs sets the inputs of the run's start.
+func (e *Engine) inputs(z *statespace.Point) {
+	n, c := e.joint.N, &e.joint.Circuit
+	z[n+loop.InputLoad], z[n+loop.InputVoltage], z[n+loop.InputOne] = c.Current, c.Vin, 1
+	z[n+loop.InputReference] = e.setup.Plant.Feedback.Reference
+	if e.joint.ToneRate != 0 {
+		z[e.joint.Tone+1] = e.toneAmplitude()
+	}
+}
+
+func (e *Engine) toneAmplitude() float64 {
+	for _, v := range e.setup.Events {
+		if v.Kind == ControlTone {
+			return v.Change
+		}
+	}
+	return 0
+}
+
+// fromRest starts with a precharged output and nothing moving.
+func (e *Engine) fromRest() {
+	s, j, m := &e.setup, &e.joint, &e.now
+	c := &j.Circuit
+	e.inputs(&m.z)
+	m.z[j.N+loop.InputReference] = 0
+	m.z[j.N+loop.InputLoad] = 0
+	m.waits = c.Current != 0
+	for k := range c.Banks {
+		m.z[j.Bank+k] = s.Start.Precharge
+	}
+	shunts := j.Network - s.Plant.Source.Shunts
+	for k := range s.Plant.Source.Shunts {
+		m.z[shunts+k] = c.Vin
+	}
+	rest := loop.Rest(&s.Plant.Compensator, &s.Plant.Feedback, s.Start.Precharge, s.Bounds.ControlLow)
+	copy(m.z[j.Network:j.Integral], rest[:])
+	m.drive, m.soft = loop.HeldLow, true
+	for i := range c.Phases {
+		m.legs[i] = loop.Idle
+		m.phases[i] = phase{clock: e.clock(i, 0), count: 0, off: math.Inf(1)}
+	}
+}
+
+// fromPeriodic starts in the periodic closed-loop solution, found by Newton's
+// method on the map over one period from the solution of the linearised model.
+func (e *Engine) fromPeriodic() bool {
+	var model loop.Sampled
+	if !model.Set(&e.setup.Plant).OK() {
+		return false
+	}
+	e.trial = true
+	defer func() { e.trial = false }()
+	events := e.points
+	e.points = nil // none of them during the search
+	defer func() { e.points = events }()
+
+	d := model.Decision()
+	e.placeAt(&d)
+	e.advance(e.setup.Plant.Circuit.Period) // to the clock of phase 0
+	e.rewind()
+	if e.status != Running || !e.shoot() {
+		return false
+	}
+	e.startMean = e.lastMean
+	e.run.target = e.lastMean
+	if e.joint.ToneRate != 0 {
+		e.now.z[e.joint.Tone], e.now.z[e.joint.Tone+1] = 0, e.toneAmplitude()
+	}
+	return true
+}
+
+// placeAt puts the engine at the instant of a comparator's decision.
+func (e *Engine) placeAt(d *loop.Instant) {
+	j, m := &e.joint, &e.now
+	c := &j.Circuit
+	*m = moment{at: d.At, legs: d.Legs, drive: loop.Linear}
+	copy(m.z[:j.Integral], d.State[:j.Integral])
+	e.inputs(&m.z)
+	if j.ToneRate != 0 {
+		m.z[j.Tone+1] = 0 // no tone while the periodic solution is sought
+	}
+	for i := range c.Phases {
+		// The last clock of the phase not after now.
+		n := int(math.Floor((d.At-e.clock(i, 0))/c.Period + sameTime))
+		p := &m.phases[i]
+		*p = phase{count: n + 1, since: e.clock(i, n), clock: e.clock(i, n+1), off: math.Inf(1)}
+		ramp := e.slope
+		if e.follow != 0 {
+			ramp = e.follow * c.Vin
+		}
+		p.ramp = ramp * (m.at - p.since)
+	}
+	m.phases[0].decided = true
+	m.phases[0].off = m.at + e.delay
+}
+
+// rewind takes the time of the present moment back by one period.
+func (e *Engine) rewind() {
+	m := &e.now
+	period := e.joint.Circuit.Period
+	m.at -= period
+	if math.Abs(m.at) <= e.grain() {
+		m.at = 0
+	}
+	m.began = m.at
+	for i := range e.joint.Circuit.Phases {
+		p := &m.phases[i]
+		p.count--
+		p.since, p.off, p.clock = p.since-period, p.off-period, e.clock(i, p.count)
+	}
+}
+
+const (
+	shootingRounds    = 16
+	shootingStep      = 1e-6  // [1] relative step of the difference quotients
+	shootingTolerance = 1e-11 // [1] relative closure of one period at which the search ends
+	shootingEnough    = 1e-8  // [1] at which its result is accepted if rounding stops it
+)
+
+// shoot solves for the moment that one period carries into itself, by Newton's
+// method with difference quotients. The present moment, at the clock of phase 0
+// and time 0, is its start and its result.
+func (e *Engine) shoot() bool {
+	n := e.joint.Integral
+	best := math.Inf(1)
+	for range shootingRounds {
+		base := e.now
+		if !e.period() {
+			return false
+		}
+		image := e.now
+		closure := 0.0
+		for k := range n {
+			closure = max(closure, math.Abs(image.z[k]-base.z[k])/scaleOf(base.z[k]))
+		}
+		if closure <= shootingTolerance || closure >= best && closure <= shootingEnough {
+			return true
+		}
+		best = min(best, closure)
+		var m statespace.Real
+		m.N = n
+		var right statespace.Point
+		for k := range n {
+			h := shootingStep * scaleOf(base.z[k])
+			e.now = base
+			e.now.z[k] += h
+			if !e.period() {
+				return false
+			}
+			for i := range n {
+				x := -(e.now.z[i] - image.z[i]) / h
+				if i == k {
+					x++
+				}
+				m.Set(i, k, x)
+			}
+			right[k] = image.z[k] - base.z[k]
+		}
+		if !m.Solve(&right) {
+			return false
+		}
+		e.now = base
+		for k := range n {
+			e.now.z[k] += right[k]
+		}
+		// One period refreshes what the controller holds besides the states.
+		if !e.period() {
+			return false
+		}
+	}
+	return best <= shootingEnough
+}
+
+// scaleOf returns the size against which a state's change is measured.
+func scaleOf(x float64) float64 { return max(math.Abs(x), 1e-2) }
+
+// period runs one period and takes the time back.
+func (e *Engine) period() bool {
+	e.advance(e.joint.Circuit.Period)
+	e.rewind()
+	return e.status == Running
+}
+
+// Advance runs at most the given number of periods and reports whether the run
+// goes on. A service calls it in chunks and looks for cancellation in between.
+func (e *Engine) Advance(periods int) bool {
+	if e.status != Running {
+		return false
+	}
+	end := e.setup.Duration
+	e.advance(min(end, e.now.at+float64(periods)*e.joint.Circuit.Period))
+	if e.status == Running && e.now.at >= end-e.grain() {
+		e.status = Finished
+	}
+	return e.status == Running
+}
