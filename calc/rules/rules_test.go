@@ -348,3 +348,16 @@ func TestScopesByName(t *testing.T) {
 	_, ok := ParseScope("resistor")
 	require.False(t, ok)
 }
+
+func TestComparePairsByRuleAndPlace(t *testing.T) {
+	f := func(rule, pointer string, v Verdict, margin float64) Finding {
+		return Finding{Rule: rule, Pointer: pointer, Verdict: v, Margin: margin}
+	}
+	before := []Finding{f("a", "/0", Pass, 0.1), f("a", "/1", Pass, 0.1), f("b", "/0", Fail, -0.1), f("c", "", NotEvaluated, math.NaN())}
+	after := []Finding{f("a", "/1", Pass, 0.1+1e-9), f("b", "/0", Pass, 0.1), f("c", "", NotEvaluated, math.NaN()), f("a", "/2", Pass, 0.1)}
+	var kinds []ChangeKind
+	for _, c := range Compare(before, after) {
+		kinds = append(kinds, c.Kind)
+	}
+	require.Equal(t, []ChangeKind{Unchanged, VerdictChanged, Unchanged, Appeared, Disappeared}, kinds)
+}

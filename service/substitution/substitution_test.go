@@ -26,6 +26,9 @@ func assessed(findings ...rules.Finding) *Assessment {
 	a.Nominal[quantity.LossTotal] = 2
 	a.Report = rules.Report{Verdict: rules.Passed, Findings: findings}
 	for _, f := range findings {
+		if f.Severity == rules.Note {
+			continue
+		}
 		switch f.Verdict {
 		case rules.Fail:
 			a.Report.Verdict = rules.Failed
@@ -52,7 +55,7 @@ func TestVerdicts(t *testing.T) {
 	warningPassed := warning
 	warningPassed.Verdict = rules.Pass
 	danger := assessed(finding("a", rules.Pass, 0.1))
-	danger.Cautions = []caution.Caution{{Code: caution.BeyondAbsoluteMaximum, Pointer: "/stage/high_side/rating/drain_source_v", Value: 50}}
+	danger.Cautions = []caution.Caution{{Code: caution.BeyondAbsoluteMaximum, Pointer: "/stage/high_side/rating/drain_source_v", Value: 50, Detail: "voltage"}}
 	assumed := assessed(finding("a", rules.Pass, 0.1))
 	assumed.Assumed = []string{"/stage/inductor/dc_resistance_ohm", "/stage/board/input_path_ohm"}
 	cases := []struct {
@@ -205,8 +208,8 @@ func TestRanking(t *testing.T) {
 	require.Equal(t, []string{"cheap", "dear", "no-cost", "lacking", "failing"}, ids(Weights{Cost: 1}), "no cost, no place by cost")
 	require.Equal(t, []string{"no-cost", "dear", "cheap", "lacking", "failing"}, ids(Weights{}), "no weights: the order given")
 	o := Rank(assessed(hot(0.3)), list, nil, Weights{Loss: 2, Cost: 1})[0]
-	require.Equal(t, "dear", o.ID)
-	require.InDelta(t, (2*0.5+2/0.1)/3, o.Score, 1e-12)
-	require.InDelta(t, 0.5, o.Terms.Temperature, 1e-12)
+	require.Equal(t, "cheap", o.ID)
+	require.InDelta(t, (2*0.9+1/0.1)/3, o.Score, 1e-12)
+	require.InDelta(t, 0.6, o.Terms.Temperature, 1e-12)
 	require.Equal(t, list[0].ID, "failing", "the caller's list stays in order")
 }
