@@ -47,13 +47,15 @@ func (z *sizer) budget() {
 	hot := z.hotSwitch()
 	on := z.onResistance(allowed, duty*i*i*hot, z.switching(rating, vin, i))
 	d.HighSide = switchPlaceholder(rating, on, i, z.junction)
-	z.drops = Drops{HighSide: on * hot}
+	temp := table(onResistanceTemp[:], 1)
+	cold := temp.At(r.AmbientDegC.Min)
+	z.drops, z.leastDrops = Drops{HighSide: on * hot}, Drops{HighSide: on * cold}
 	if r.Rectifier == stage.DiodeRectified {
 		z.diode(i, duty)
 	} else {
 		on = z.onResistance(allowed, (1-duty)*i*i*hot, z.fs*(outputProduct*silicon(rating)*vin/2+(recoveryProduct*vin+gateProduct*driveFor(rating))*silicon(rating)))
 		d.LowSide = switchPlaceholder(rating, on, i, z.junction)
-		z.drops.Rectifier = on * hot
+		z.drops.Rectifier, z.leastDrops.Rectifier = on*hot, on*cold
 	}
 	copper, _ := parts.CopperMultiplier(z.junction)
 	z.drops.Winding = z.try.effort * windingLossShare * allowed / (i * i)
@@ -97,5 +99,6 @@ func (z *sizer) diode(i, duty float64) {
 	cold := math.Max(0, parts.ReferenceDegC-r.AmbientDegC.Min)
 	z.drops.Threshold = d.Threshold*(1+thresholdTol) - d.ThresholdTemp*cold
 	v, _ := d.ThresholdAt(z.junction)
-	z.leastThreshold = math.Max(0, v-thresholdTol*d.Threshold)
+	z.leastDrops.Rectifier = d.Slope
+	z.leastDrops.Threshold = math.Max(0, v-thresholdTol*d.Threshold)
 }

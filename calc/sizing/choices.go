@@ -11,7 +11,7 @@ type Choices struct {
 	InductorSeries  preferred.Series // default E6
 	CapacitorSeries preferred.Series // default E6
 	DividerSeries   preferred.Series // default E96
-	Reference       float64          // [V] default 0.8, or the output voltage where that is lower
+	Reference       float64          // [V] default 0.8, lower where the output is not above it
 	LowerOhm        float64          // [ohm] lower divider resistor, default 10e3
 	MinOnTime       float64          // [s] default 1e-7
 	MinOffTime      float64          // [s] default 2e-7
@@ -24,6 +24,17 @@ type Choices struct {
 // NewChoices returns choices that are all left open.
 func NewChoices() Choices {
 	return Choices{Reference: parts.Unknown, LowerOhm: parts.Unknown, MinOnTime: parts.Unknown, MinOffTime: parts.Unknown, MaxDutyRatio: parts.Unknown}
+}
+
+// defaultReference returns 0.8 V, or a lower reference that leaves the divider an
+// upper resistor, which the loop needs.
+func defaultReference(output float64) float64 {
+	for _, v := range [...]float64{0.8, 0.6, 0.4} {
+		if output >= 1.05*v {
+			return v
+		}
+	}
+	return 0.75 * output
 }
 
 // withDefaults fills in what was left open.
@@ -46,7 +57,7 @@ func (c Choices) withDefaults(output float64) Choices {
 	series(&c.InductorSeries, preferred.E6)
 	series(&c.CapacitorSeries, preferred.E6)
 	series(&c.DividerSeries, preferred.E96)
-	number(&c.Reference, min(0.8, output))
+	number(&c.Reference, defaultReference(output))
 	number(&c.LowerOhm, 10e3)
 	number(&c.MinOnTime, 1e-7)
 	number(&c.MinOffTime, 2e-7)

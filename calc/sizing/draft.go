@@ -19,36 +19,13 @@ func (z *sizer) newDraft() {
 	}
 }
 
-// largestPart is how much more energy than it needs the largest inductor considered
-// could store, for the sake of its resistance.
-const largestPart = 8.0 // [1]
-
-// winding chooses the size of the inductor: the smallest whose winding resistance
-// keeps within the budget. It reports whether one does; the budget is then what the
-// drops were computed with.
-func (z *sizer) winding() bool {
-	size := 1.0
-	for size < largestPart && windingLeast(z.rated, z.saturationAt, size) > z.windingBudget {
-		size *= 1.25
-	}
-	least := windingLeast(z.rated, z.saturationAt, size)
-	dcr := math.Max(least, math.Min(z.windingBudget, 2*least))
-	z.draft.Inductor = inductorPlaceholder(z.rated, z.saturationAt, z.inductorRMS, dcr, size, z.junction)
-	if dcr > z.windingBudget {
-		copper, _ := parts.CopperMultiplier(z.junction)
-		z.windingBudget = dcr
-		z.drops.Winding = dcr * (1 + windingTol) * copper
-		return false
-	}
-	return true
-}
-
 // spreads lists the tolerances of the draft's values: those that the windows were
 // computed with.
 func (z *sizer) spreads() {
 	d := z.draft
+	values := numbers(d)
 	add := func(field string, low, high float64) {
-		v := d.Field(field)
+		v := values[field]
 		if v == nil || *v == 0 || !parts.Known(*v) {
 			return
 		}
@@ -86,6 +63,15 @@ func (z *sizer) spreads() {
 	both("feedback/lower_ohm", z.grade.resistor)
 }
 
+// numbers returns the stage's numbers by field id.
+func numbers(s *stage.Stage) map[string]*float64 {
+	m := map[string]*float64{}
+	for _, f := range s.Fields() {
+		m[f.ID] = f.Value
+	}
+	return m
+}
+
 func bankField(side string, k int) string {
 	return side + "_capacitors/" + string(rune('0'+k))
 }
@@ -118,7 +104,7 @@ func (z *sizer) conditions() {
 //
 //	Io = N ton² fs (Vin − Vo)(Vin + Vth)/(2 L (Vo + Vth))
 func (z *sizer) leastRegularLoad() float64 {
-	ton, vin, vo, vth := z.choice.MinOnTime, z.req.Input.Max, z.voLow, z.leastThreshold
+	ton, vin, vo, vth := z.choice.MinOnTime, z.req.Input.Max, z.voLow, z.leastDrops.Threshold
 	i := ton * ton * z.fsHigh * (vin - vo) * (vin + vth) / (2 * z.leastL.Inductance * (vo + vth))
 	return roundUp(regularMargin * z.phases * i)
 }

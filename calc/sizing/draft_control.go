@@ -3,19 +3,22 @@ package sizing
 import (
 	"math"
 
+	"railproof/calc/evaluate"
+	"railproof/calc/loop"
 	"railproof/calc/parts"
 	"railproof/calc/preferred"
+	"railproof/calc/stage"
 )
 
 const (
-	gateOnOhm          = 2.5  // [ohm] driver and resistor, turn-on
-	gateOffOhm         = 1.5  // [ohm] turn-off
-	transconductance   = 1e-3 // [S] of the draft's error amplifier
-	amplifierOhm       = 1e6  // [ohm] its output resistance
-	senseAtLimit       = 0.5  // [V] current signal at the current limit
-	limitOverPeak      = 1.15 // [1] current limit over the greatest current
-	slopeOverNeed      = 1.2  // [1] slope compensation over half the falling slope
-	zeroUnderCrossover = 5.0  // [1] crossover over the compensator's zero
+	gateOnOhm        = 2.5  // [ohm] driver and resistor, turn-on
+	gateOffOhm       = 1.5  // [ohm] turn-off
+	transconductance = 1e-3 // [S] of the draft's error amplifier
+	amplifierOhm     = 1e6  // [ohm] its output resistance
+	senseAtLimit     = 0.5  // [V] current signal at the current limit
+	limitOverPeak    = 1.15 // [1] current limit over the greatest current
+	slopeOverNeed    = 1.2  // [1] slope compensation over half the falling slope
+	comparatorDelay  = 4e-8 // [s] of comparator and driver
 )
 
 // controller fills in the draft's controller, before parts are chosen.
@@ -40,51 +43,58 @@ func (z *sizer) controller() {
 	}
 }
 
-// loop fills in a peak-current-mode modulator and a transconductance amplifier with
-// one zero and one pole. Above the pole of load and output capacitor the plant is
-// the sense gain and the impedance of the output banks, so that
+// modulator fills in a peak-current-mode modulator. The current limit lies above the
+// greatest current, in recovery from the load step too, and below the saturation
+// rating. Slope compensation is half the falling slope at the least inductance and
+// more, which is stable at every duty ratio.
 //
-//	|Gc(fc)| = Ri/(N |Z(fc)|),  Gc = gm k Rz above the zero,  k = Rl/(Ru + Rl)
+//	Se = 1.2 · Ri (Vo + Vth)/(2 L)
 //
-// The zero lies a factor of five below the crossover, the pole at half the switching
-// frequency or, if lower, where the first bank turns resistive. Slope compensation
-// is half the falling slope at the least inductance and more, which is stable at
-// every duty ratio.
-//
-// Source: R. B. Ridley's current-mode model in its low-frequency limit; usual
-// placement. The loop's own analysis verifies the margins.
-func (z *sizer) loop() {
-	d := z.draft
-	most := math.Max(z.peakMost, z.transientPeak()+z.rippleMost/2)
-	limit := limitOverPeak * most
-	m := &d.Modulator
-	*m = parts.Modulator{Present: true, Mode: parts.PeakCurrentMode, Sense: senseAtLimit / limit, CurrentLimit: limit, FeedForwardAt: parts.Unknown, Ramp: parts.Unknown}
-	saturated := z.leastL.IncrementalAt(z.peakMost)
-	m.Slope = slopeOverNeed * m.Sense * (z.voHigh + z.drops.Threshold) / (2 * saturated)
-	fc := crossoverRatio * z.fs
-	impedance := z.outputImpedance(fc)
-	k := d.Feedback.Lower / (d.Feedback.Upper + d.Feedback.Lower)
-	gain := m.Sense / (z.phases * impedance)
-	fz, fp := fc/zeroUnderCrossover, z.fs/2
-	first := &d.OutputCapacitors[0]
-	fp = math.Min(fp, math.Max(3*fc, 1/(2*math.Pi*first.ESR*first.Capacitance)))
-	rz := gain / (transconductance * k)
-	cz := 1 / (2 * math.Pi * fz * rz)
-	d.Compensator = parts.Compensator{
-		Present: true, Type: parts.TransconductanceType2, Transconductance: transconductance, OutputOhm: amplifierOhm,
-		FeedbackOhm: preferred.E24.Nearest(rz), FeedbackF: preferred.E12.Nearest(cz), ShuntF: preferred.E12.Nearest(cz / (fp/fz - 1)),
-		GainBandwidth: parts.Unknown, OpenLoopGain: parts.Unknown, LeadOhm: parts.Unknown, LeadF: parts.Unknown,
+// Source: R. B. Ridley's condition for the current loop, Se > (Sf − Sn)/2.
+func (z *sizer) modulator() {
+	limit := limitOverPeak * math.Max(z.peakMost, z.transientPeak())
+	m := &z.draft.Modulator
+	*m = parts.Modulator{
+		Present: true, Mode: parts.PeakCurrentMode, Sense: senseAtLimit / limit, CurrentLimit: limit,
+		Delay: math.Min(comparatorDelay, z.shortestOn/4), FeedForwardAt: parts.Unknown, Ramp: parts.Unknown,
 	}
+	m.Slope = slopeOverNeed * m.Sense * (z.voHigh + z.drops.Threshold) / (2 * z.leastL.IncrementalAt(z.peakMost))
 }
 
-// outputImpedance returns the magnitude of the output banks' impedance at a
-// frequency [ohm], at typical values, bias and 25 degC.
-func (z *sizer) outputImpedance(f float64) float64 {
-	var y complex128
-	for i := range z.draft.OutputCapacitors {
-		c := &z.draft.OutputCapacitors[i]
-		esr, _ := c.ESRAt(parts.ReferenceDegC, 0)
-		y += 1 / complex(esr, -1/(2*math.Pi*f*c.CapacitanceAt(z.req.Output, parts.ReferenceDegC, 0)))
+// compensator designs a transconductance amplifier with one zero and one pole on the
+// exact loop at typical input and the greatest load. Where the wanted phase margin
+// or crossover cannot be had, both are lowered in steps; false if none can.
+func (z *sizer) compensator() bool {
+	e := evaluate.Prepare(z.draft)
+	var r evaluate.Result
+	p := stage.Point{
+		Input: z.req.Input.Typ, SourceResistance: z.req.SourceResistance, Load: stage.Load{Current: z.req.LoadCurrent.Max},
+		AmbientDegC: z.req.AmbientDegC.Typ, PartTemperatureDegC: parts.Unknown, Control: stage.Control{Kind: stage.ByFeedback},
 	}
-	return 1 / math.Hypot(real(y), imag(y))
+	if e.Eval(&p, &r); !r.Status.Figures() {
+		return false
+	}
+	d := z.draft
+	plant := loop.Plant{Circuit: *e.Circuit(), Modulator: d.Modulator, Feedback: d.Feedback, Compensator: parts.Compensator{
+		Present: true, Type: parts.TransconductanceType2, Transconductance: transconductance, OutputOhm: amplifierOhm,
+		GainBandwidth: parts.Unknown, OpenLoopGain: parts.Unknown, LeadOhm: parts.Unknown, LeadF: parts.Unknown,
+	}}
+	plant.Operate(e.Solution())
+	var s loop.Sampled
+	for _, try := range loopTargets {
+		design, err := s.Synthesise(&plant, loop.Target{
+			Crossover: try.crossover * z.fs, PhaseMargin: try.margin, Type: parts.TransconductanceType2,
+			Rounding: loop.Rounding{Resistors: preferred.E24, Capacitors: preferred.E12},
+		})
+		if err == nil && design.Margins.Stability == loop.Stable {
+			d.Compensator = design.Compensator
+			z.crossover, z.phaseMargin = design.Margins.Crossover, design.Margins.PhaseMargin
+			return true
+		}
+	}
+	return false
 }
+
+// loopTargets are the crossover, over the switching frequency, and phase margin [deg]
+// that the compensator is designed for, the best first.
+var loopTargets = [...]struct{ crossover, margin float64 }{{crossoverRatio, 60}, {crossoverRatio, 50}, {0.07, 55}, {0.05, 50}, {0.03, 50}, {0.02, 45}, {0.01, 45}}

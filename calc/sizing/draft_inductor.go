@@ -3,6 +3,7 @@ package sizing
 import (
 	"math"
 
+	"railproof/calc/magnetics"
 	"railproof/calc/parts"
 )
 
@@ -53,4 +54,52 @@ func inductorPlaceholder(l, sat, rms, dcr, size, junction float64) parts.Inducto
 func windingLeast(l, sat, size float64) float64 {
 	energy := size * l * sat * sat / 2
 	return l / (windingTime * math.Pow(energy/windingEnergy, 2.0/3))
+}
+
+// Sizes of inductor looked at, in steps of their stored energy.
+const (
+	largestPart = 16.0 // [1] over what is needed
+	sizeStep    = 1.25 // [1]
+)
+
+// winding chooses the size of the inductor: the smallest whose winding resistance
+// keeps within the budget, but none larger than the one of least loss. It reports
+// whether the budget is kept; if not, the drops are raised to the part found.
+func (z *sizer) winding() bool {
+	copper, _ := parts.CopperMultiplier(z.junction)
+	hot := (1 + windingTol) * copper
+	i := z.req.LoadCurrent.Max / z.phases
+	size, dcr, least := 1.0, 0.0, math.Inf(1)
+	for s := 1.0; s <= largestPart; s *= sizeStep {
+		r := windingLeast(z.rated, z.saturationAt, s)
+		loss := r*hot*i*i + z.coreLoss(s)
+		if loss > least {
+			break // a larger core loses more than its copper saves
+		}
+		size, dcr, least = s, r, loss
+		if r <= z.windingBudget {
+			break
+		}
+	}
+	within := dcr <= z.windingBudget
+	if within {
+		dcr = math.Min(z.windingBudget, 2*dcr)
+	}
+	z.draft.Inductor = inductorPlaceholder(z.rated, z.saturationAt, z.inductorRMS, dcr, size, z.junction)
+	if !within {
+		z.windingBudget, z.drops.Winding = dcr, dcr*hot
+	}
+	return within
+}
+
+// coreLoss returns the core loss of a placeholder of a size at the typical input
+// [W], where its temperature multiplier is 1.
+func (z *sizer) coreLoss(size float64) float64 {
+	p := inductorPlaceholder(z.rated, z.saturationAt, z.inductorRMS, 0, size, z.junction)
+	c := &p.Core
+	duty := IdealDuty(z.req.Input.Typ, z.req.Output)
+	t := magnetics.PrepareTriangle(c.Alpha, c.Beta)
+	t.At(c.K, z.fs)
+	linkage := z.req.Output * (1 - duty) / z.fs
+	return c.Volume * t.Density(magnetics.FluxSwing(linkage, c.Turns, c.Area), duty, 1-duty)
 }

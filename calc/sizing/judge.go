@@ -65,8 +65,9 @@ func (z *sizer) judge() judgement {
 func (z *sizer) lossyCorners(degC *[losses.PartCount]float64) judgement {
 	d, r := z.draft, z.req
 	e := evaluate.Prepare(d)
+	values := numbers(e.Stage())
 	for _, v := range z.ans.Spreads {
-		*e.Stage().Field(v.Field) = lossyEnd(v.Field, v.Min, v.Typ, v.Max)
+		*values[v.Field] = lossyEnd(v.Field, v.Min, v.Typ, v.Max)
 	}
 	j := judgement{efficiency: math.Inf(1), hottest: math.Inf(-1), works: true}
 	for p := range degC {
@@ -121,9 +122,9 @@ func (j *judgement) add(res *evaluate.Result, degC *[losses.PartCount]float64) {
 // lossyEnd returns the end of a tolerance that loses more.
 func lossyEnd(field string, least, typ, most float64) float64 {
 	switch {
-	case strings.HasSuffix(field, "_c"), strings.HasSuffix(field, "resistance_ohm"), strings.HasSuffix(field, "esr_ohm"), strings.HasSuffix(field, "threshold_v"), strings.HasSuffix(field, "dead_time_s"):
+	case strings.HasSuffix(field, "_c"), strings.HasSuffix(field, "resistance_ohm"), strings.HasSuffix(field, "esr_ohm"), strings.HasSuffix(field, "threshold_v"), strings.HasSuffix(field, "dead_time_s"), field == "feedback/lower_ohm":
 		return most
-	case strings.HasSuffix(field, "inductance_h"), strings.HasSuffix(field, "capacitance_f"):
+	case strings.HasSuffix(field, "inductance_h"), strings.HasSuffix(field, "capacitance_f"), field == "feedback/reference_v", field == "feedback/upper_ohm":
 		return least
 	}
 	return typ

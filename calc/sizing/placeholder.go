@@ -74,5 +74,5 @@ func (z *sizer) placeholders() {
 		part("controller/min_on_time_s", z.choice.MinOnTime, 3e-8, 2e-7, "least on-time of the controller")
 	}
 	part("controller/max_duty_ratio", math.Min(z.dutyMost, z.choice.MaxDutyRatio), 0.85, 1, "greatest duty ratio of the controller, its least off-time included")
-	part("modulator/sense_ohm", d.Modulator.Sense, d.Modulator.Sense/2, d.Modulator.Sense*2, fmt.Sprintf("peak current mode; crossover placed at a tenth of the switching frequency, %s Hz", number(crossoverRatio*z.fs)))
+	part("modulator/sense_ohm", d.Modulator.Sense, d.Modulator.Sense/2, d.Modulator.Sense*2, fmt.Sprintf("peak current mode; the loop is designed for a crossover of %s Hz with a phase margin of %s°", number(z.crossover), number(z.phaseMargin)))
 }

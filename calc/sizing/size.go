@@ -92,7 +92,7 @@ func (z *sizer) run() {
 		}
 	}
 	z.ratings()
-	z.loop()
+	z.modulator()
 	z.life()
 	z.spreads()
 	z.conditions()
@@ -124,6 +124,9 @@ func (z *sizer) inductor() {
 func (z *sizer) conclude() {
 	z.limits()
 	z.judged.conflicts(z)
+	if !z.failed() && !z.compensator() {
+		z.note("loop-not-designed", "switching_frequency_hz", "no compensator of the draft's kind gives a stable loop; the draft has a modulator and none")
+	}
 	z.ans.Stage = z.draft
 	z.placeholders()
 	z.row()

@@ -29,17 +29,19 @@ type sizer struct {
 	mostL             float64        // [H] greatest inductance of one phase
 	rippleMost        float64        // [A] greatest ripple of one phase
 
-	grade          accuracy
-	windingBudget  float64 // [ohm] typical at 25 degC
-	leastThreshold float64 // [V] of the diode, hot
-	shortestOn     float64 // [s]
-	rated          float64 // [H] rated inductance of the part chosen
-	saturationAt   float64 // [A] saturation rating of the part chosen
-	peakMost       float64 // [A] greatest inductor current of one phase
-	inductorRMS    float64 // [A] greatest, one phase
-	outputRMS      float64 // [A] greatest, all banks together
-	inputRMS       float64 // [A] greatest
-	inputCorner    corner  // where
+	grade         accuracy
+	windingBudget float64 // [ohm] typical at 25 degC
+	leastDrops    Drops   // cold, but the diode's threshold, which is least when hot
+	shortestOn    float64 // [s]
+	rated         float64 // [H] rated inductance of the part chosen
+	saturationAt  float64 // [A] saturation rating of the part chosen
+	peakMost      float64 // [A] greatest inductor current of one phase
+	inductorRMS   float64 // [A] greatest, one phase
+	outputRMS     float64 // [A] greatest, all banks together
+	inputRMS      float64 // [A] greatest
+	crossover     float64 // [Hz] of the draft's loop
+	phaseMargin   float64 // [deg]
+	inputCorner   corner  // where
 
 	draft  *stage.Stage
 	judged judgement

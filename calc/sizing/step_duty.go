@@ -9,7 +9,7 @@ import (
 
 // regulation sets the ends of the regulated output voltage from the divider, the
 // reference and their tolerances, the cheapest grade that keeps the tolerance
-// asked for.
+// asked for and lies above the voltage to be held.
 //
 //	Vo = Vref (1 ± r) (1 + Ru (1 ± t)/(Rl (1 ∓ t)))
 func (z *sizer) regulation() {
@@ -26,7 +26,8 @@ func (z *sizer) regulation() {
 		low = c.Reference * (1 - g.reference) * (1 + d.Upper/d.Lower*(1-g.resistor)/(1+g.resistor))
 		high = c.Reference * (1 + g.reference) * (1 + d.Upper/d.Lower*(1+g.resistor)/(1-g.resistor))
 		worst = math.Max(high/r.Output-1, 1-low/r.Output+1.4*path)
-		if !known(r.OutputTolerance) || worst <= r.OutputTolerance {
+		held := !known(z.want.HoldUp.Time) || z.want.HoldUp.To < low
+		if held && (!known(r.OutputTolerance) || worst <= r.OutputTolerance) {
 			break
 		}
 	}
@@ -79,10 +80,10 @@ func (z *sizer) duty() {
 }
 
 // shortest returns the operating point of the shortest on-time in continuous
-// conduction: greatest input, least output, nothing lost.
+// conduction: greatest input, least output, least load, cold.
 func (z *sizer) shortest() corner {
 	c := z.at(z.req.Input.Max, z.voLow, z.req.LoadCurrent.Min, false)
-	c.off = z.voLow + z.leastThreshold
+	c.on, c.off = inductorVoltages(c.bridge, z.voLow, c.i, z.leastDrops)
 	c.duty = c.off / (c.on + c.off)
 	c.Duty, c.Frequency = c.duty, z.fsHigh
 	return c

@@ -65,8 +65,9 @@ type verifier struct {
 
 func newVerifier(a *Answer) *verifier {
 	v := &verifier{answer: a, eval: evaluate.Prepare(a.Stage), worst: evaluate.OK}
+	values := numbers(v.eval.Stage())
 	for i := range a.Spreads {
-		v.value = append(v.value, v.eval.Stage().Field(a.Spreads[i].Field))
+		v.value = append(v.value, values[a.Spreads[i].Field])
 	}
 	v.point = stage.Point{SourceResistance: a.Conditions.SourceResistance, PartTemperatureDegC: parts.Unknown, Control: a.Conditions.Control}
 	return v

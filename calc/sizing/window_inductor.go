@@ -38,6 +38,12 @@ func (z *sizer) inductance() {
 		}
 		w.Series, z.rated = finer, finer.AtLeast(least.Part)
 	}
+	if most != nil && z.rated > most.Part && z.rippleIsOurs(least) {
+		z.want.InductorRippleRatio *= 1.25
+		z.assume("targets/inductor_ripple_ratio", z.want.InductorRippleRatio, 0.2, mostRippleRatio, "ripple target not given: raised for the sake of the recovery time")
+		z.inductance()
+		return
+	}
 	if most != nil && z.rated > most.Part {
 		z.conflict("inductance", least.Part, most.Part, "H", fmt.Sprintf("%s asks for more inductance than %s allows", least.Constraint, most.Constraint), least.Field, most.Field)
 	}
@@ -46,6 +52,15 @@ func (z *sizer) inductance() {
 	z.mostL = z.rated * (1 + inductanceTol)
 	w.Chosen = z.leastL.InductanceOver(io-z.rippleMost/2, io+z.rippleMost/2)
 	z.ans.Windows = append(z.ans.Windows, w)
+}
+
+// mostRippleRatio is how far a ripple target that was not given is raised.
+const mostRippleRatio = 0.8 // [1]
+
+// rippleIsOurs reports whether a bound stems from a ripple target that was not given
+// and may still be raised.
+func (z *sizer) rippleIsOurs(b *Bound) bool {
+	return b.Constraint == "inductor-ripple" && !known(z.req.Targets.InductorRippleRatio) && 1.25*z.want.InductorRippleRatio <= mostRippleRatio
 }
 
 // transientPeak returns the greatest current of one phase while the load step is
