@@ -42,7 +42,9 @@ type square [MaxStates * MaxStates]float64
 type ladder struct {
 	owner  int // interval for which the rungs were built, −1 for none
 	levels int // the whole interval is h_0 2^levels
-	cell   int // greatest rung that a Taylor cell can span, |A| h ≤ 1
+	cell   int // greatest rung that a Taylor cell can span, |A| h ≤ 1/2
+	norm   float64
+	a      square // A h_0
 	h      [maxLevels + 1]float64
 	f      [maxLevels + 1]square
 	d      [maxLevels + 1]vec
@@ -67,7 +69,8 @@ func (ld *ladder) build(s *scratch, nw *network, tp *topology, t float64) bool {
 		}
 		ld.levels = exponent
 	}
-	ld.cell = min(ld.levels, 4)
+	ld.cell = min(ld.levels, 3)
+	ld.norm = tp.norm
 	h := math.Ldexp(t, -ld.levels)
 	ld.h[0] = h
 	n := nw.n
@@ -87,14 +90,14 @@ func (ld *ladder) build(s *scratch, nw *network, tp *topology, t float64) bool {
 }
 
 // scratch is work space of the matrix functions.
-type scratch struct{ b, b2, b3, p, q square }
+type scratch struct{ b2, b3, p, q square }
 
 // first fills the lowest rung, with B = A h:
 //
 //	φ1(B) = I + B/2 + B²/6 + B³/24 + B⁴ (I/5! + B/6! + B²/7! + B³/8!),  F = B φ1
 func (ld *ladder) first(s *scratch, nw *network, tp *topology, h float64) {
 	n := nw.n
-	b, b2, b3 := &s.b, &s.b2, &s.b3
+	b, b2, b3 := &ld.a, &s.b2, &s.b3
 	tp.matrix(nw, h, b)
 	multiply(b2, b, b, n)
 	multiply(b3, b2, b, n)

@@ -102,7 +102,7 @@ func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 		}
 		at >>= 1
 	}
-	s.work.set(&s.nw, &v.top, &x, &y, ld.h[m])
+	s.work.set(ld, &v.top, m, &x, &y, n)
 	s.work.pick(&wt.w, n)
 	s.work.extremes(&wt.range_)
 }

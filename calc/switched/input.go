@@ -183,7 +183,7 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 	all := extent{math.Inf(1), math.Inf(-1)}
 	for k := range s.count {
 		v := &s.iv[k]
-		s.moments.set(s, k)
+		s.moments.set(s, k, false)
 		for b := range banks {
 			i := at + b
 			square[b] += nw.input.capacitance[b] * nw.input.capacitance[b] * s.moments.y[i*n+i]

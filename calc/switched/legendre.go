@@ -1,5 +1,7 @@
 package switched
 
+import "math"
+
 // legendre[k][j] is the weight of the Legendre polynomial P_j in x^k,
 //
 //	x^k = Σ_j (2j+1) k! / (2^((k−j)/2) ((k−j)/2)! (k+j+1)!!) P_j(x),  k − j even
@@ -33,27 +35,51 @@ type cell struct {
 	series [maxTerms + 1]float64 // of the quantity in question
 }
 
-// set expands the state that starts at x with slope y.
-func (ce *cell) set(nw *network, tp *topology, x, y *vec, h float64) {
-	half := 0.5 * h
-	ce.h = h
-	ce.order = terms(tp.norm*half) + 2
-	if ce.order > maxTerms {
-		ce.order = maxTerms
+// set expands the state that starts at x with rate y over rung l of the ladder.
+func (ce *cell) set(ld *ladder, tp *topology, l int, x, y *vec, n int) {
+	ce.h = ld.h[l]
+	half := 0.5 * ce.h
+	ce.order = min(terms(ld.norm*half)+2, maxTerms)
+	middle, rate := &ce.c[0], &ce.c[1]
+	scale := math.Ldexp(1, l-1) // half over the first rung
+	if l > 0 {
+		ld.step(l-1, x, middle, n)
+		ld.stepRate(l-1, y, rate, n)
+	} else {
+		ce.crawl(ld, x, y, n)
 	}
-	var moved, rate vec
-	tp.displace(nw, y, half, ce.order, &moved)
-	tp.rate(nw, &moved, &rate)
-	for i := range nw.n {
-		ce.c[0][i] = x[i] + moved[i]
-		ce.c[1][i] = (y[i] + rate[i]) * half
+	for i := range n {
+		rate[i] *= half
 	}
 	for k := 2; k <= ce.order; k++ {
-		tp.rate(nw, &ce.c[k-1], &ce.c[k])
-		q := half * inverse[k]
-		for i := range nw.n {
-			ce.c[k][i] *= q
+		c := &ce.c[k]
+		apply(&ld.a, &ce.c[k-1], c, n)
+		q := scale * inverse[k]
+		for i := range n {
+			c[i] *= q
 		}
+	}
+}
+
+// crawl goes half of the first rung by its Taylor series.
+func (ce *cell) crawl(ld *ladder, x, y *vec, n int) {
+	var moved, term, next vec
+	for i := range n {
+		term[i] = 0.5 * ld.h[0] * y[i]
+		moved[i] = term[i]
+	}
+	for k := 2; k <= ce.order; k++ {
+		apply(&ld.a, &term, &next, n)
+		q := 0.5 * inverse[k]
+		for i := range n {
+			term[i] = next[i] * q
+			moved[i] += term[i]
+		}
+	}
+	apply(&ld.a, &moved, &next, n)
+	for i := range n {
+		ce.c[0][i] = x[i] + moved[i]
+		ce.c[1][i] = y[i] + next[i]/ld.h[0]
 	}
 }
 
@@ -85,10 +111,17 @@ func (ce *cell) rate(x float64) float64 {
 	return acc
 }
 
-const cellParts = 8
+const cellParts = 4
 
 // extremes widens e by the extremes of the series inside the cell.
 func (ce *cell) extremes(e *extent) {
+	rest := 0.0
+	for k := 2; k <= ce.order; k++ {
+		rest += float64(k) * math.Abs(ce.series[k])
+	}
+	if math.Abs(ce.series[1]) > rest {
+		return // the rate keeps its sign
+	}
 	x0 := -1.0
 	r0 := ce.rate(x0)
 	for i := 1; i <= cellParts; i++ {

@@ -2,90 +2,6 @@ package switched
 
 import "math"
 
-// moments are the integrals over one interval of the deviation ξ, of its
-// products and of the products of its rates y = dξ/dt:
-//
-//	Q = ∫ξ dτ,  X = ∫ξ ξᵀ dτ,  Y = ∫y yᵀ dτ
-//
-// Over the first rung h they follow exactly from the Taylor series in Legendre
-// form. Each doubling then adds the second half, in which ξ(h+τ) = E ξ(τ) + d:
-//
-//	Q → Q + E Q + h d
-//	X → X + E X Eᵀ + (E Q) dᵀ + d (E Q)ᵀ + h d dᵀ
-//	Y → Y + E Y Eᵀ
-type moments struct {
-	q, y0   vec
-	x, y    square
-	scratch [2]square
-}
-
-func (m *moments) set(s *Solver, k int) {
-	nw, n := &s.nw, s.nw.n
-	v := &s.iv[k]
-	ld := s.rungs(k)
-	v.top.slope(nw, &v.start, &m.y0)
-	ce := &s.work
-	ce.set(nw, &v.top, &v.start, &m.y0, ld.h[ld.cell])
-	m.first(ce, n)
-	e := &m.scratch[0]
-	for l := ld.cell; l < ld.levels; l++ {
-		h, d := ld.h[l], &ld.d[l]
-		copy(e[:n*n], ld.f[l][:n*n])
-		for i := range n {
-			e[i*n+i] += 1
-		}
-		var eq vec
-		apply(e, &m.q, &eq, n)
-		congruent(e, &m.x, &m.scratch[1], n)
-		congruent(e, &m.y, &m.scratch[1], n)
-		for i := range n {
-			for j := range n {
-				m.x[i*n+j] += eq[i]*d[j] + d[i]*eq[j] + h*d[i]*d[j]
-			}
-		}
-		for i := range n {
-			m.q[i] += eq[i] + h*d[i]
-		}
-	}
-}
-
-// first fills the moments over the cell.
-func (m *moments) first(ce *cell, n int) {
-	var a, b vec
-	for i := range n * n {
-		m.x[i], m.y[i] = 0, 0
-	}
-	perSecond := 2 / ce.h // x runs from −1 to 1 within h
-	for j := 0; j <= ce.order; j++ {
-		a, b = vec{}, vec{}
-		for k := j; k <= ce.order; k += 2 {
-			w := legendre[k][j]
-			for i := range n {
-				a[i] += w * ce.c[k][i]
-			}
-			if k < ce.order {
-				w *= float64(k+1) * perSecond
-				for i := range n {
-					b[i] += w * ce.c[k+1][i]
-				}
-			}
-		}
-		if j == 0 {
-			for i := range n {
-				m.q[i] = a[i] * ce.h
-			}
-		}
-		w := ce.h * inverse[2*j+1]
-		for i := range n {
-			ai, bi := w*a[i], w*b[i]
-			for l := range n {
-				m.x[i*n+l] += ai * a[l]
-				m.y[i*n+l] += bi * b[l]
-			}
-		}
-	}
-}
-
 // tally gathers a current over the period.
 type tally struct{ charge, square float64 }
 
@@ -111,12 +27,19 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 	out := extent{math.Inf(1), math.Inf(-1)}
 	var input tally
 	var nodeArea, nodeSquare float64
-	var bankArea, bankSquare [MaxBanks]float64
+	var bankSquare [MaxBanks]float64
 	m := &s.moments
 	for k := range s.count {
 		v := &s.iv[k]
-		m.set(s, k)
+		single := nw.phases == 1 && v.top.pos[0] != Resting
+		m.set(s, k, !single)
 		var lit tally
+		var current, node linear
+		if single {
+			current = s.kirchhoff(k)
+			m.q[0] = current.mean(v, n)
+			m.x[0] = current.square(v, &m.y, n)
+		}
 		for j := range nw.phases {
 			lt := &legs[s.legOf(j)]
 			if v.top.pos[j] == Resting {
@@ -150,18 +73,24 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 		s.feed[k] = s.drawn(k, lit.charge)
 		input.charge += lit.charge
 		input.square += lit.square
-		area := nw.node(&m.q)
-		nodeArea += area
-		var cx vec
-		for i := range n {
-			for j := range n {
-				cx[i] += m.x[i*n+j] * s.weight(j)
+		if single {
+			node = s.nodeOf(k, &current)
+			nodeArea += node.mean(v, n)
+			if c.Conductance != 0 {
+				nodeSquare += node.square(v, &m.y, n)
 			}
+		} else {
+			nodeArea += nw.node(&m.q)
+			var cx vec
+			for i := range n {
+				for j := range n {
+					cx[i] += m.x[i*n+j] * s.weight(j)
+				}
+			}
+			nodeSquare += nw.node(&cx)
 		}
-		nodeSquare += nw.node(&cx)
 		for b := range nw.banks {
 			at := nw.phases + b
-			bankArea[b] += m.q[at]
 			bankSquare[b] += nw.capacitance[b] * nw.capacitance[b] * m.y[at*n+at]
 		}
 		s.extremes(k, &m.y0, &legs, &out)
@@ -176,7 +105,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 	variance := math.Max(0, nodeSquare/solved-mean*mean)
 	sol.OutputPower = vo*load + c.Conductance*variance
 	for b := range nw.banks {
-		sol.BankMean[b] = s.ref.v + bankArea[b]/solved
+		sol.BankMean[b] = vo // no direct current flows in a bank
 		sol.BankRMS[b] = math.Sqrt(math.Max(0, bankSquare[b]) / solved)
 	}
 	sol.balance(c)

@@ -124,7 +124,7 @@ func (p *Propagator) Crossing(x, w *State, level, ramp, dt float64) (at float64,
 	n, ld := p.nw.n, &p.rungs
 	start := *x
 	f := dot(w, x, n) - level
-	if t, ok := p.cross(x, w, level, ramp, ld.h[ld.cell]); ok {
+	if t, ok := p.cross(x, w, level, ramp, ld.cell); ok {
 		return t, true
 	}
 	ld.step(ld.cell, &start, x, n)
@@ -143,7 +143,7 @@ func (p *Propagator) Crossing(x, w *State, level, ramp, dt float64) (at float64,
 					}
 				}
 				from := *x
-				if t, ok := p.cross(x, w, level+ramp*at, ramp, ld.h[m]); ok {
+				if t, ok := p.cross(x, w, level+ramp*at, ramp, m); ok {
 					return at + t, true
 				}
 				ld.step(m, &from, x, n) // the sign turns within rounding of the end
@@ -157,12 +157,13 @@ func (p *Propagator) Crossing(x, w *State, level, ramp, dt float64) (at float64,
 }
 
 // cross looks for a crossing in one Taylor cell and moves x there.
-func (p *Propagator) cross(x, w *State, level, ramp, h float64) (at float64, found bool) {
+func (p *Propagator) cross(x, w *State, level, ramp float64, rung int) (at float64, found bool) {
 	n := p.nw.n
 	var y State
 	p.top.slope(&p.nw, x, &y)
 	ce := &p.cell
-	ce.set(&p.nw, &p.top, x, &y, h)
+	ce.set(&p.rungs, &p.top, rung, x, &y, n)
+	h := ce.h
 	ce.pick(w, n)
 	ce.series[0] -= level + 0.5*ramp*h
 	ce.series[1] -= 0.5 * ramp * h

@@ -122,7 +122,7 @@ func (s *Solver) firstDuty(c *Circuit, vout float64) (d, slope float64) {
 	vf := leg.Rectifier.Threshold
 	i := c.load(vout) / float64(c.Phases)
 	d = (vout + vf + i*(leg.Winding+leg.Rectifier.Slope)) / (c.Vin + vf - (leg.HighSide-leg.Rectifier.Slope)*i)
-	slope = (c.Vin + vf) / (1 + c.Conductance*(leg.Winding+leg.Rectifier.Slope)/float64(c.Phases))
+	slope = (c.Vin + vf - (leg.HighSide-leg.Rectifier.Slope)*i) / (1 + c.Conductance*(leg.Winding+leg.Rectifier.Slope)/float64(c.Phases))
 	if leg.Rectifier.Blocks && vout < c.Vin {
 		swing := (c.Vin - vout) * d * c.Period / leg.L
 		if i < 0.5*swing {
@@ -141,6 +141,9 @@ func (s *Solver) minDuty(c *Circuit, vout, d float64) float64 {
 // meanOutput returns the mean node voltage of the periodic state at hand.
 func (s *Solver) meanOutput(c *Circuit) float64 {
 	nw, n := &s.nw, s.nw.n
+	if nw.phases == 1 && s.conduct[0] == 1 {
+		return s.meanByVoltSeconds(c)
+	}
 	sum := 0.0
 	for k := range s.count {
 		v := &s.iv[k]
@@ -148,7 +151,7 @@ func (s *Solver) meanOutput(c *Circuit) float64 {
 		var y, eq vec
 		v.top.slope(nw, &v.start, &y)
 		ce := &s.work
-		ce.set(nw, &v.top, &v.start, &y, ld.h[ld.cell])
+		ce.set(ld, &v.top, ld.cell, &v.start, &y, n)
 		var q vec
 		for i := range n {
 			for j := 0; j <= ce.order; j += 2 {
@@ -165,4 +168,24 @@ func (s *Solver) meanOutput(c *Circuit) float64 {
 		sum += nw.node(&q)
 	}
 	return s.ref.node + sum/(s.horizon*c.Period)
+}
+
+// meanByVoltSeconds is the mean output of one phase in continuous conduction:
+// the inductor's volt-seconds over a period vanish,
+//
+//	V + V_F + I (R_w + R_r) + (R_hs − R_r) q/T = D (Vin + V_F),  I = I_0 + G V
+//
+// with the charge q through the high side.
+func (s *Solver) meanByVoltSeconds(c *Circuit) float64 {
+	leg := c.leg(0)
+	vf := leg.Rectifier.Threshold
+	q := 0.0
+	for k := range s.count {
+		if v := &s.iv[k]; v.top.pos[0] == High {
+			i := s.kirchhoff(k)
+			q += i.mean(v, s.nw.n) + s.ref.i[0]*v.t
+		}
+	}
+	r := leg.Winding + leg.Rectifier.Slope
+	return (s.duty*(c.Vin+vf) - vf - r*c.Current - (leg.HighSide-leg.Rectifier.Slope)*q/c.Period) / (1 + r*c.Conductance)
 }

@@ -12,6 +12,9 @@ type Waveform struct {
 	SwitchNode  [][]float64 // [V] per phase
 	BankCurrent [][]float64 // [A] per bank, into the bank
 	BankVoltage [][]float64 // [V] per bank, at its capacitance
+
+	InputNode    []float64   // [V] alternating part at the input banks; nil without them
+	InputCurrent [][]float64 // [A] per input bank, into the bank
 }
 
 // Waveform solves the circuit at the duty ratio of sol and samples it at points
@@ -19,14 +22,27 @@ type Waveform struct {
 // them, so many in each interval as its share of the period asks for. It reports
 // false if there is no solution there.
 func (s *Solver) Waveform(c *Circuit, sol *Solution, points int) (*Waveform, bool) {
+	return s.WaveformWithInput(c, sol, points, 0, nil)
+}
+
+// WaveformWithInput is Waveform with input banks, which share the alternating part
+// of the input current as in InputBanks.
+func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int, bank *[MaxBanks]Bank) (*Waveform, bool) {
 	s.prepare(c)
 	s.closed, s.rounds = false, 0
 	if s.settle(c, sol.Duty, false) != Solved {
 		return nil, false
 	}
+	if banks > 0 {
+		s.nw.input.set(banks, bank, sol.InputMean)
+		s.nw.n = s.nw.phases + s.nw.banks + banks
+		if !s.periodic(c) {
+			return nil, false
+		}
+	}
 	w := &Waveform{
 		Inductor: make([][]float64, c.Phases), SwitchNode: make([][]float64, c.Phases),
-		BankCurrent: make([][]float64, c.Banks), BankVoltage: make([][]float64, c.Banks),
+		BankCurrent: make([][]float64, c.Banks), BankVoltage: make([][]float64, c.Banks), InputCurrent: make([][]float64, banks),
 	}
 	turns := 1
 	if s.cyclic {
@@ -97,4 +113,14 @@ func (s *Solver) point(c *Circuit, w *Waveform, k, turn int, x *vec, at float64)
 		w.BankCurrent[b] = append(w.BankCurrent[b], nw.capacitance[b]*rate[nw.phases+b])
 		w.BankVoltage[b] = append(w.BankVoltage[b], s.ref.v+x[nw.phases+b])
 	}
+	if len(w.InputCurrent) == 0 {
+		return
+	}
+	in, at := &nw.input, nw.phases+nw.banks
+	node := in.rho * (in.mean - input)
+	for b := range w.InputCurrent {
+		node += in.couple[b] * x[at+b]
+		w.InputCurrent[b] = append(w.InputCurrent[b], in.capacitance[b]*rate[at+b])
+	}
+	w.InputNode = append(w.InputNode, node)
 }

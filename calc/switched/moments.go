@@ -1,0 +1,99 @@
+package switched
+
+// moments are the integrals over one interval of the deviation ξ, of its
+// products and of the products of its rates y = dξ/dt:
+//
+//	Q = ∫ξ dτ,  X = ∫ξ ξᵀ dτ,  Y = ∫y yᵀ dτ
+//
+// Over the first cell they follow exactly from the Taylor series in Legendre
+// form. Each doubling then adds the second half, in which ξ(h+τ) = E ξ(τ) + d:
+//
+//	Q → Q + E Q + h d
+//	X → X + E X Eᵀ + (E Q) dᵀ + d (E Q)ᵀ + h d dᵀ
+//	Y → Y + E Y Eᵀ
+type moments struct {
+	q, y0   vec
+	x, y    square
+	scratch [2]square
+	l       [momentOrder + 1]vec
+}
+
+// momentOrder is how far the Legendre series goes in products. Within a cell,
+// |A| h/2 ≤ 1/4, coefficient j is below 4^−j/(1·3·5···(2j−1)) of the first, and
+// enters squared.
+const momentOrder = 7
+
+// set computes Y alone, or all three, over interval k.
+func (m *moments) set(s *Solver, k int, all bool) {
+	n := s.nw.n
+	v := &s.iv[k]
+	ld := s.rungs(k)
+	v.top.slope(&s.nw, &v.start, &m.y0)
+	ce := &s.work
+	ce.set(ld, &v.top, ld.cell, &v.start, &m.y0, n)
+	m.project(ce, 1, 2/ce.h, n)
+	m.products(ce.h, &m.y, n)
+	if all {
+		m.project(ce, 0, 1, n)
+		m.products(ce.h, &m.x, n)
+		for i := range n {
+			m.q[i] = m.l[0][i] * ce.h
+		}
+	}
+	e, t := &m.scratch[0], &m.scratch[1]
+	for l := ld.cell; l < ld.levels; l++ {
+		copy(e[:n*n], ld.f[l][:n*n])
+		for i := range n {
+			e[i*n+i]++
+		}
+		congruent(e, &m.y, t, n)
+		if !all {
+			continue
+		}
+		h, d := ld.h[l], &ld.d[l]
+		var eq vec
+		apply(e, &m.q, &eq, n)
+		congruent(e, &m.x, t, n)
+		for i := range n {
+			for j := range n {
+				m.x[i*n+j] += eq[i]*d[j] + d[i]*eq[j] + h*d[i]*d[j]
+			}
+		}
+		for i := range n {
+			m.q[i] += eq[i] + h*d[i]
+		}
+	}
+}
+
+// project fills the Legendre coefficients of the series, or of its derivative
+// with respect to x times scale.
+func (m *moments) project(ce *cell, derivative int, scale float64, n int) {
+	for j := 0; j <= momentOrder; j++ {
+		l := &m.l[j]
+		*l = vec{}
+		for k := j; k+derivative <= ce.order; k += 2 {
+			w := legendre[k][j] * scale
+			if derivative == 1 {
+				w *= float64(k + 1)
+			}
+			c := &ce.c[k+derivative]
+			for i := range n {
+				l[i] += w * c[i]
+			}
+		}
+	}
+}
+
+// products writes the integral over h of the products of the projected series.
+func (m *moments) products(h float64, dst *square, n int) {
+	for i := range n {
+		for l := 0; l <= i; l++ {
+			acc := 0.0
+			for j := momentOrder; j >= 0; j-- {
+				acc += m.l[j][i] * m.l[j][l] * inverse[2*j+1]
+			}
+			dst[i*n+l] = acc * h
+			dst[l*n+i] = dst[i*n+l]
+		}
+	}
+}
