@@ -116,11 +116,11 @@ func (s *Solver) point(c *Circuit, w *Waveform, k, turn int, x *vec, at float64)
 	if len(w.InputCurrent) == 0 {
 		return
 	}
-	in, at := &nw.input, nw.phases+nw.banks
+	in, first := &nw.input, nw.phases+nw.banks
 	node := in.rho * (in.mean - input)
 	for b := range w.InputCurrent {
-		node += in.couple[b] * x[at+b]
-		w.InputCurrent[b] = append(w.InputCurrent[b], in.capacitance[b]*rate[at+b])
+		node += in.couple[b] * x[first+b]
+		w.InputCurrent[b] = append(w.InputCurrent[b], in.capacitance[b]*rate[first+b])
 	}
 	w.InputNode = append(w.InputNode, node)
 }
