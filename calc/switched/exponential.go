@@ -195,6 +195,15 @@ func (ld *ladder) step(l int, x, dst *vec, n int) {
 
 // stepRate writes the rate h_l later. dst may be y.
 func (ld *ladder) stepRate(l int, y, dst *vec, n int) {
+	if n == 4 {
+		m := (*[16]float64)(ld.f[l][:])
+		a, b, c, d := y[0], y[1], y[2], y[3]
+		dst[0] = a + (m[0]*a + m[1]*b + m[2]*c + m[3]*d)
+		dst[1] = b + (m[4]*a + m[5]*b + m[6]*c + m[7]*d)
+		dst[2] = c + (m[8]*a + m[9]*b + m[10]*c + m[11]*d)
+		dst[3] = d + (m[12]*a + m[13]*b + m[14]*c + m[15]*d)
+		return
+	}
 	var z vec
 	apply(&ld.f[l], y, &z, n)
 	for i := range n {

@@ -2,8 +2,16 @@ package switched
 
 // watch is a sum over the states whose range over an interval is sought.
 type watch struct {
-	w      vec
-	range_ extent
+	w    vec
+	only int // the one state it consists of, −1 for more
+	span extent
+}
+
+func (wt *watch) of(x *vec, n int) float64 {
+	if wt.only >= 0 {
+		return x[wt.only]
+	}
+	return dot(&wt.w, x, n)
 }
 
 // extremes widens the range of every conducting current and of the output node
@@ -11,26 +19,25 @@ type watch struct {
 func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *extent) {
 	nw := &s.nw
 	v := &s.iv[k]
-	s.watches[0].w = vec{}
+	s.watches[0].only = -1
 	for i := range nw.phases + nw.banks {
 		s.watches[0].w[i] = s.weight(i)
 	}
 	count := 1
 	for j := range nw.phases {
 		if v.top.pos[j] != Resting {
-			s.watches[count].w = vec{}
-			s.watches[count].w[j] = 1
+			s.watches[count].only = j
 			count++
 		}
 	}
 	s.scan(k, rate, count)
-	out.add(s.watches[0].range_.least)
-	out.add(s.watches[0].range_.most)
+	out.add(s.watches[0].span.least)
+	out.add(s.watches[0].span.most)
 	count = 1
 	for j := range nw.phases {
 		if v.top.pos[j] != Resting {
-			e := &s.watches[count].range_
-			into := &legs[s.legOf(j)].range_
+			e := &s.watches[count].span
+			into := &legs[s.legOf(j)].span
 			into.add(s.ref.i[j] + e.least)
 			into.add(s.ref.i[j] + e.most)
 			count++
@@ -52,16 +59,17 @@ func (s *Solver) scan(k int, rate *vec, count int) {
 	watches := s.watches[:count]
 	for i := range watches {
 		wt := &watches[i]
-		a, b := dot(&wt.w, &v.start, n), dot(&wt.w, &v.stop, n)
-		wt.range_ = extent{min(a, b), max(a, b)}
-		s.work.pick(&wt.w, n)
-		s.work.extremes(&wt.range_)
+		a, b := wt.of(&v.start, n), wt.of(&v.stop, n)
+		wt.span = extent{min(a, b), max(a, b)}
+		s.work.pick(wt, n)
+		s.work.extremes(&wt.span)
 	}
 	if ld.levels == ld.cell {
 		return
 	}
-	y := *rate
-	ld.stepRate(ld.cell, &y, &y, n)
+	buffer := [2]vec{*rate}
+	y, yb := &buffer[0], &buffer[1]
+	ld.stepRate(ld.cell, y, y, n)
 	at := 1 << ld.cell // in first rungs
 	for l := ld.cell; l < ld.levels; l++ {
 		m := l - 1 // two steps per doubling, four in the last two
@@ -69,15 +77,14 @@ func (s *Solver) scan(k int, rate *vec, count int) {
 			m--
 		}
 		for range 1 << (l - m) {
-			yb := y
-			ld.stepRate(m, &y, &yb, n)
+			ld.stepRate(m, y, yb, n)
 			for i := range watches {
 				wt := &watches[i]
-				if (dot(&wt.w, &y, n) < 0) != (dot(&wt.w, &yb, n) < 0) {
-					s.descend(v, ld, m, at, y, wt)
+				if (wt.of(y, n) < 0) != (wt.of(yb, n) < 0) {
+					s.descend(v, ld, m, at, *y, wt)
 				}
 			}
-			y = yb
+			y, yb = yb, y
 			at += 1 << m
 		}
 	}
@@ -90,7 +97,7 @@ func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 	for ; m > ld.cell; m-- {
 		ym := y
 		ld.stepRate(m-1, &y, &ym, n)
-		if (dot(&wt.w, &y, n) < 0) == (dot(&wt.w, &ym, n) < 0) {
+		if (wt.of(&y, n) < 0) == (wt.of(&ym, n) < 0) {
 			at += 1 << (m - 1)
 			y = ym
 		}
@@ -103,6 +110,6 @@ func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 		at >>= 1
 	}
 	s.work.set(ld, &v.top, m, &x, &y, n)
-	s.work.pick(&wt.w, n)
-	s.work.extremes(&wt.range_)
+	s.work.pick(wt, n)
+	s.work.extremes(&wt.span)
 }

@@ -190,6 +190,7 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 		}
 		w := &s.watches[0].w
 		*w = vec{}
+		s.watches[0].only = -1
 		offset := nw.input.mean
 		for p := range nw.phases {
 			if v.top.pos[p] == High {
@@ -202,8 +203,8 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 		}
 		s.scan(k, &s.moments.y0, 1)
 		offset *= nw.input.rho
-		all.add(offset + s.watches[0].range_.least)
-		all.add(offset + s.watches[0].range_.most)
+		all.add(offset + s.watches[0].span.least)
+		all.add(offset + s.watches[0].span.most)
 	}
 	for b := range banks {
 		dst.BankRMS[b] = math.Sqrt(square[b] / (s.horizon * c.Period))

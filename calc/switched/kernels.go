@@ -92,6 +92,9 @@ func congruent(e, m, t *square, n int) {
 }
 
 func dot(w, x *vec, n int) float64 {
+	if n == 4 {
+		return w[0]*x[0] + w[1]*x[1] + w[2]*x[2] + w[3]*x[3]
+	}
 	acc := 0.0
 	for i := range n {
 		acc += w[i] * x[i]

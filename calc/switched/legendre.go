@@ -83,14 +83,10 @@ func (ce *cell) crawl(ld *ladder, x, y *vec, n int) {
 	}
 }
 
-// pick forms the series of the functional Σ w_i ξ_i.
-func (ce *cell) pick(w *vec, n int) {
+// pick forms the series of a watched quantity.
+func (ce *cell) pick(wt *watch, n int) {
 	for k := 0; k <= ce.order; k++ {
-		acc := 0.0
-		for i := range n {
-			acc += w[i] * ce.c[k][i]
-		}
-		ce.series[k] = acc
+		ce.series[k] = wt.of(&ce.c[k], n)
 	}
 }
 

@@ -12,7 +12,7 @@ func (t *tally) branch(period float64) Branch {
 type legTally struct {
 	high, rect   tally
 	conduct      float64
-	range_       extent
+	span         extent
 	turnOn, cut  float64
 	discontinous bool
 }
@@ -22,7 +22,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 	nw, n := &s.nw, s.nw.n
 	var legs [MaxPhases]legTally
 	for p := range legs {
-		legs[p].range_ = extent{math.Inf(1), math.Inf(-1)}
+		legs[p].span = extent{math.Inf(1), math.Inf(-1)}
 	}
 	out := extent{math.Inf(1), math.Inf(-1)}
 	var input tally
@@ -43,7 +43,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 		for j := range nw.phases {
 			lt := &legs[s.legOf(j)]
 			if v.top.pos[j] == Resting {
-				lt.range_.add(0)
+				lt.span.add(0)
 				continue
 			}
 			i := s.ref.i[j]
@@ -170,7 +170,7 @@ func (s *Solver) report(c *Circuit, sol *Solution, legs *[MaxPhases]legTally, in
 		ls.Rectifier = lt.rect.branch(c.Period)
 		both := tally{lt.high.charge + lt.rect.charge, lt.high.square + lt.rect.square}
 		ls.Inductor = both.branch(c.Period)
-		ls.Peak, ls.Valley = lt.range_.most, lt.range_.least
+		ls.Peak, ls.Valley = lt.span.most, lt.span.least
 		ls.TurnOn, ls.TurnOff = lt.turnOn, lt.cut
 	}
 	if c.Legs != nil {

@@ -164,7 +164,7 @@ func (p *Propagator) cross(x, w *State, level, ramp float64, rung int) (at float
 	ce := &p.cell
 	ce.set(&p.rungs, &p.top, rung, x, &y, n)
 	h := ce.h
-	ce.pick(w, n)
+	ce.pick(&watch{w: *w, only: -1}, n)
 	ce.series[0] -= level + 0.5*ramp*h
 	ce.series[1] -= 0.5 * ramp * h
 	a, fa := -1.0, dot(w, x, n)-level
