@@ -3,10 +3,10 @@ package parts
 import "math"
 
 const (
-	lifeHalving   = 10.0 // [K] a rise that halves the life
-	riseValidity  = 40.0 // [K] ripple rise at which the ripple rule's life is zero
-	boltzmannInEV = 8.617333262e-5
-	zeroCelsiusK  = 273.15
+	lifeHalving   = 10.0           // [K] a rise that halves the life
+	riseValidity  = 40.0           // [K] ripple rise at which the ripple rule's life is zero
+	boltzmannInEV = 8.617333262e-5 // [eV/K]
+	zeroCelsiusK  = 273.15         // [K]
 )
 
 // RippleRise returns the rise [K] of a piece's core over its surroundings by

@@ -53,5 +53,6 @@ func (s *Stage) Check() error {
 	if n := len(s.Phases); n > 0 && n != s.PhaseCount {
 		f = append(f, Fault{Field: "phases", Given: float64(n), Limit: float64(s.PhaseCount), Accepted: fmt.Sprintf("%d entries, one for each phase", s.PhaseCount), Detail: "phase overrides"})
 	}
+	f.couplings(s)
 	return f.err()
 }

@@ -11,7 +11,7 @@ import "slices"
 
 const (
 	MaxNodes     = 18 // [1]
-	MaxCouplings = 64 // [1]
+	MaxCouplings = 64 // [1] as the contract takes
 )
 
 // Vector holds one number per node.
@@ -68,9 +68,6 @@ func (n *Network) Couple(a, b int, ontoA, ontoB float64) {
 		}
 	}
 }
-
-// Full reports whether no further coupling can be taken.
-func (n *Network) Full() bool { return n.couplings == MaxCouplings }
 
 // Temperatures computes every node's temperature [degC] from the powers [W].
 func (n *Network) Temperatures(ambientDegC float64, power, dst *Vector) {
