@@ -30,7 +30,7 @@ type Effect struct {
 // telling lists the quantities of which the one that moves most, relative to its
 // value, tells how much an assumption matters.
 var telling = []quantity.ID{
-	quantity.LossTotal, quantity.Efficiency, quantity.OutputRipplePP, quantity.OutputRippleWithESLPP, quantity.InductorRipplePP,
+	quantity.LossTotal, quantity.Efficiency, quantity.OutputMean, quantity.OutputRipplePP, quantity.OutputRippleWithESLPP, quantity.InductorRipplePP,
 	quantity.HighSideJunction, quantity.LowSideJunction, quantity.DiodeJunction, quantity.ControllerJunction, quantity.InductorWinding,
 	quantity.OutputCapacitorLife, quantity.InputCapacitorLife, quantity.OutputCapacitorTemperature, quantity.InputCapacitorTemperature,
 }

@@ -4,6 +4,7 @@ import (
 	"context"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/switched"
 )
 
 // SteadyStateRequest asks for the exact periodic steady state at one point.
@@ -15,8 +16,9 @@ type SteadyStateRequest struct {
 
 // SteadyStateAnswer holds the outcome at the point.
 type SteadyStateAnswer struct {
-	Outcome *Outcome
-	Basis   Basis
+	Outcome  *Outcome
+	Waveform *switched.Waveform // nil if none was asked for, or there is no solution
+	Basis    Basis
 }
 
 // SteadyState solves the stage at one point.
@@ -25,6 +27,11 @@ func (s *Service) SteadyState(ctx context.Context, r *SteadyStateRequest) (*Stea
 	err := s.run(ctx, interactive, func() error {
 		e := evaluate.Prepare(r.Design.Stage)
 		a.Outcome = outcome(e, &r.Place.Point)
+		if r.WaveformPoints > 0 && a.Outcome.Status.Figures() {
+			var again evaluate.Result
+			e.Eval(&r.Place.Point, &again)
+			a.Waveform, _ = e.Waveform(r.WaveformPoints)
+		}
 		a.Basis = rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
 		return nil
 	})

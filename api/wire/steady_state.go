@@ -24,6 +24,7 @@ type SteadyStateAnswer struct {
 	NearestOperable  *NearestOperable  `json:"nearest_operable,omitzero"`
 	Runaway          *Runaway          `json:"runaway,omitzero"`
 	Detail           string            `json:"detail,omitzero"`
+	Waveforms        *Waveforms        `json:"waveforms,omitzero"`
 	Basis
 }
 
@@ -48,6 +49,7 @@ func EncodeSteadyState(w *SteadyStateRequest, r *service.SteadyStateRequest, a *
 		Head: head, Status: o.Status.String(), Stage: w.Stage, Point: w.Point, ConductionMode: modeNames[o.Mode],
 		Quantities:       encodeQuantities(&o.Quantities, banksOf(r.Design.Stage), func(i quantity.Info) bool { return i.Group == quantity.SteadyState }),
 		PartTemperatures: encodeTemperatures(r.Design.Stage, o),
-		NearestOperable:  encodeNearest(o.Nearest), Runaway: encodeOnset(o.Onset), Detail: o.Detail, Basis: encodeBasis(&a.Basis),
+		NearestOperable:  encodeNearest(o.Nearest), Runaway: encodeOnset(o.Onset), Detail: o.Detail,
+		Waveforms: encodeWaveform(a.Waveform, o.Quantities[quantity.BridgeVoltage]), Basis: encodeBasis(&a.Basis),
 	}
 }

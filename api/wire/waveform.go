@@ -1,0 +1,77 @@
+package wire
+
+import (
+	"strconv"
+
+	"railproof/calc/switched"
+)
+
+// Waveforms hold one period, columnar. Where a curve jumps, the same instant
+// stands twice.
+type Waveforms struct {
+	Time            []float64   `json:"time_s"`
+	Inductor        [][]float64 `json:"inductor_a"`
+	SwitchNode      [][]float64 `json:"switch_node_v"`
+	Output          []float64   `json:"output_v"`
+	Input           []float64   `json:"input_a"`
+	InputVoltage    []float64   `json:"input_v,omitzero"`
+	OutputCapacitor [][]float64 `json:"output_capacitor_a"`
+	InputCapacitor  [][]float64 `json:"input_capacitor_a"`
+}
+
+// encodeWaveform shows a waveform with six significant digits. bridge is the mean
+// voltage at the input capacitors [V].
+func encodeWaveform(w *switched.Waveform, bridge float64) *Waveforms {
+	if w == nil {
+		return nil
+	}
+	out := &Waveforms{
+		Time: rounded(w.Time), Inductor: roundedAll(w.Inductor), SwitchNode: roundedAll(w.SwitchNode), Output: rounded(w.Output),
+		Input: rounded(w.Input), OutputCapacitor: roundedAll(w.BankCurrent), InputCapacitor: roundedAll(w.InputCurrent),
+	}
+	if w.InputNode != nil {
+		out.InputVoltage = rounded(raised(w.Time, w.InputNode, bridge))
+	}
+	return out
+}
+
+// raised shifts a sampled curve so that its mean over time is the given one.
+func raised(time, curve []float64, mean float64) []float64 {
+	area := 0.0
+	for k := 1; k < len(curve); k++ {
+		area += (time[k] - time[k-1]) * (curve[k] + curve[k-1]) / 2
+	}
+	shift := mean - area/(time[len(time)-1]-time[0])
+	up := make([]float64, len(curve))
+	for k, v := range curve {
+		up[k] = v + shift
+	}
+	return up
+}
+
+func roundedAll(curves [][]float64) [][]float64 {
+	out := make([][]float64, len(curves))
+	for i, c := range curves {
+		out[i] = rounded(c)
+	}
+	return out
+}
+
+// waveformDigits is what a picture or a comparison needs, at two thirds of the
+// bytes of full precision.
+const waveformDigits = 6
+
+// rounded returns the numbers nearest to the values that have six significant
+// digits.
+func rounded(values []float64) []float64 {
+	out := make([]float64, len(values))
+	var text [32]byte
+	for i, v := range values {
+		short, err := strconv.ParseFloat(string(strconv.AppendFloat(text[:0], v, 'e', waveformDigits-1, 64)), 64)
+		if err != nil {
+			panic("wire: a number that cannot be read back")
+		}
+		out[i] = short
+	}
+	return out
+}
