@@ -1,14 +1,17 @@
 package corners
 
-// Cost is the number of evaluations that a part of the analysis takes at most.
+// Cost is the number of evaluations that each part of an analysis takes at most.
+// Monte Carlo and attribution tell theirs exactly.
 type Cost struct {
-	Search int // extreme values
+	Search int // extreme values, without Resume
+	Resume int // what a Resume with one point per target adds
+	Linear int // root-sum-square
+	Width  int // shares of the worst-case width
 }
 
-// Budget returns an upper bound of the evaluations of a problem's search, known
-// before it starts.
+// Budget returns upper bounds of a problem's evaluations, known before it starts.
 func Budget(p *Problem) Cost {
-	n := len(p.Coordinates)
+	n, targets := len(p.Coordinates), len(p.Targets)
 	ladders, levels := 0, 0
 	for i := range p.Coordinates {
 		ladders += len(p.ladder(i))
@@ -24,6 +27,11 @@ func Budget(p *Problem) Cost {
 	climb := climbRounds * (ladders + 3)
 	line := 2*len(lengths) + 3
 	descent := descentIterations * (2*n + line)
-	perTarget := 3*climb + (1+startsKept)*descent
-	return Cost{Search: survey + len(p.Targets)*perTarget + bordersKept*borderRounds*(borderSections-1)}
+	border := bordersKept * borderRounds * (borderSections - 1)
+	return Cost{
+		Search: survey + border + targets*(3*climb+(1+startsKept)*descent),
+		Resume: targets * (1 + climb + descent),
+		Linear: targets * (1 + 4*n + 2),
+		Width:  targets * n,
+	}
 }

@@ -213,7 +213,7 @@ func (d *Design) Corner(p *stage.Point) []float64 {
 // Value is one number of the stage at some coordinates.
 type Value struct {
 	Pointer string // of the spread; of a scale, the factor itself
-	Value   float64
+	Value   float64 // [any]
 }
 
 // At returns the design at coordinates: the stage with every number put in, the

@@ -230,13 +230,15 @@ func TestExamplesFromEndToEnd(t *testing.T) {
 		linear := corners.NewLinear(p, base)
 		run(linear, d, 2)
 		mc, err := corners.NewMonteCarlo(p, d.Spreads(), corners.Plan{
-			Sampling: sampling.Design{Seed: 1, Samples: 500}, Corners: at, Limits: r.limits, Worst: 3, Workers: 2, Span: s.Span,
+			Sampling: sampling.Design{Seed: 1, Samples: 200}, Corners: at, Limits: r.limits, Worst: 3, Workers: 2, Span: s.Span,
 		})
 		require.NoError(t, err)
 		run(mc, d, 2)
+		before := s.Evaluations()
 		points, samples := mc.WorstPoints()
 		s.Resume(points, samples)
 		run(s, d, 2)
+		assert.LessOrEqual(t, s.Evaluations()-before, corners.Budget(p).Resume, name)
 		for i, e := range s.Extremes() {
 			w := mc.Worst(i)[0]
 			sign := 1.0

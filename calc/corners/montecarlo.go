@@ -41,6 +41,7 @@ const (
 	greatestBins   = 2048      // [1] per sketch
 	leastBins      = 64        // [1]
 	sketchBytes    = 6 << 20   // for the counts of one worker
+	hardlyVaries   = 1e-6      // of the span
 	taskEvaluates  = 64        // [1] below a millisecond for evaluations up to 15 us
 	spanMargin     = 1.0 / 256 // of the span, so that its ends fall inside the grid
 	countBytes     = 4
@@ -162,7 +163,7 @@ func (m *MonteCarlo) setGrids() {
 		for q := range m.p.Quantities {
 			lo, hi := math.Inf(1), math.Inf(-1)
 			for i := c; i < m.pilot.len(); i += corners {
-				if v := m.pilot.result(i)[q]; v == v {
+				if v := m.pilot.result(i)[q]; v-v == 0 {
 					lo, hi = min(lo, v), max(hi, v)
 				}
 			}
@@ -171,16 +172,24 @@ func (m *MonteCarlo) setGrids() {
 	}
 }
 
+// gridFor lays a grid over the pilot's range with a margin, no wider than what is
+// known to be possible; over all of that where the pilot hardly varies, since then
+// it says little of what the run will meet.
 func (m *MonteCarlo) gridFor(q int, lo, hi float64) grid {
 	if lo > hi { // the pilot found no value
-		return newGrid(0, 0, m.bins)
+		lo, hi = 0, 0
 	}
 	margin := pilotMargin * (hi - lo)
 	from, to := lo-margin, hi+margin
 	if m.plan.Span != nil {
 		if least, greatest := m.plan.Span(q); least <= greatest {
 			edge := spanMargin * (greatest - least)
-			from, to = max(from, min(lo, least-edge)), min(to, max(hi, greatest+edge))
+			least, greatest = least-edge, greatest+edge
+			if hi-lo < hardlyVaries*(greatest-least) {
+				from, to = least, greatest
+			} else {
+				from, to = max(from, min(lo, least)), min(to, max(hi, greatest))
+			}
 		}
 	}
 	return newGrid(from, to, m.bins)

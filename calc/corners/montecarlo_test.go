@@ -3,6 +3,7 @@ package corners
 import (
 	"fmt"
 	"math"
+	"runtime"
 	"slices"
 	"testing"
 
@@ -285,9 +286,11 @@ func TestFirstSampleContinuesARun(t *testing.T) {
 }
 
 func TestConstantAndMissingQuantities(t *testing.T) {
-	set, p := spreads(t, 1, 0, 2, spread.Uniform)
-	mc := simulate(t, p, set, function(func(z, out []float64) { out[0], out[1] = 5, math.NaN() }),
+	set, p := spreads(t, 1, 0, 3, spread.Uniform)
+	mc := simulate(t, p, set, function(func(z, out []float64) { out[0], out[1], out[2] = 5, math.NaN(), 0 }),
 		Plan{Sampling: sampling.Design{Seed: 1, Samples: 1000}, Corners: [][]float64{{0}}, Worst: 1})
+	zero := mc.Statistics(0, 2)
+	assert.Equal(t, []float64{0, 0, 0}, []float64{zero.Mean, zero.Deviation, zero.Quantile(0.01, 0.95).Value})
 	s := mc.Statistics(0, 0)
 	assert.InDelta(t, 5, s.Mean, 1e-11)
 	assert.InDelta(t, 0, s.Deviation, 1e-11)
@@ -315,6 +318,41 @@ func TestFarValuesAreHeldAndCounted(t *testing.T) {
 	assert.Positive(t, s.Far)
 	assert.Equal(t, 1e9, s.Greatest)
 	assert.Less(t, s.Mean, 1.0)
+}
+
+// A pilot that meets only the flat part of a quantity does not blind the run, if the
+// search has seen the rest.
+func TestRarelyVaryingQuantityUsesTheKnownSpan(t *testing.T) {
+	set, p := spreads(t, 1, 0, 1, spread.Uniform)
+	m := function(func(z, out []float64) { out[0] = 1 + 1e4*math.Max(0, z[0]-0.9999) })
+	s := NewSearch(p)
+	Run(s, m)
+	mc := simulate(t, p, set, m, Plan{Sampling: sampling.Design{Seed: 3, Samples: 1 << 18}, Corners: [][]float64{{0}}, Span: s.Span})
+	st := mc.Statistics(0, 0)
+	assert.Zero(t, st.Far)
+	assert.Greater(t, st.Greatest, 1.5)
+	assert.InDelta(t, 1+0.5*0.5e-4, st.Mean, 1e-5)
+}
+
+// A run's memory does not grow with its samples.
+func TestRunMemoryStaysWithinItsBound(t *testing.T) {
+	set, p := spreads(t, 20, 3, 51, spread.Uniform)
+	p.Targets = p.Targets[:16]
+	m := function(func(z, out []float64) { copy(out, z) })
+	plan := Plan{Sampling: sampling.Design{Seed: 1, Samples: 20000}, Worst: 100, Workers: 2}
+	for k := range 8 {
+		c := make([]float64, 23)
+		c[22] = float64(k) / 8
+		plan.Corners = append(plan.Corners, c)
+	}
+	var before, after runtime.MemStats
+	runtime.ReadMemStats(&before)
+	mc, err := NewMonteCarlo(p, set, plan)
+	require.NoError(t, err)
+	runWorkers(mc, m, 2)
+	runtime.ReadMemStats(&after)
+	assert.Less(t, after.TotalAlloc-before.TotalAlloc, uint64(64<<20))
+	assert.Equal(t, 20000, mc.Statistics(7, 50).Units)
 }
 
 func TestSketchMemoryIsBounded(t *testing.T) {

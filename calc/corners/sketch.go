@@ -10,9 +10,12 @@ type grid struct {
 	middle, perRun float64 // centre and inverse width, for the sums
 }
 
+// leastHalfWidth keeps the inverse of a grid's width finite.
+const leastHalfWidth = 1e-300
+
 func newGrid(lo, hi float64, bins int) grid {
 	if !(hi > lo) { // a constant, or nothing known
-		half := math.Max(1e-12*math.Abs(lo), math.SmallestNonzeroFloat64*float64(4*bins))
+		half := max(1e-12*math.Abs(lo), leastHalfWidth)
 		lo, hi = lo-half, hi+half
 	}
 	return grid{lo, hi, float64(bins) / (hi - lo), lo + (hi-lo)/2, 1 / (hi - lo)}
@@ -47,7 +50,7 @@ func (s *sketch) add(g *grid, values []float64, first, stride int) {
 	n, sum, square, least, greatest := s.n, s.sum, s.square, s.min, s.max
 	for i := first; i < len(values); i += stride {
 		v := values[i]
-		if v != v {
+		if v-v != 0 { // not a number, or infinite
 			continue
 		}
 		n++

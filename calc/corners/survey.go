@@ -9,8 +9,8 @@ import (
 const (
 	allVerticesUpTo = 12   // coordinates: 4096 vertices
 	cornersUpTo     = 6    // conditions and biases whose corners are all tried
-	scatterEvenly   = 1024 // points anywhere in the box
-	scatterOnEnds   = 1024 // points with tolerances at their ends and conditions anywhere
+	scatterEvenly   = 3072 // points anywhere in the box
+	scatterOnEnds   = 2048 // points with tolerances at their ends and conditions anywhere
 	startsKept      = 3    // of the scattered points, for each target
 )
 
