@@ -17,7 +17,7 @@ type Evaluator struct {
 	network thermal.Network
 	weight  [losses.PartCount]float64 // [1] how often a part's power counts
 
-	solver    switched.Solver
+	solver    *switched.Solver // by far the largest part; kept by Reset
 	circuit   switched.Circuit
 	legs      [switched.MaxPhases]switched.Leg
 	solution  switched.Solution
@@ -34,13 +34,20 @@ type Evaluator struct {
 // Prepare readies an evaluator for a stage that has passed Check. It works on a
 // copy of its own, whose numbers a caller may change through Stage.
 func Prepare(s *stage.Stage) *Evaluator {
-	e := &Evaluator{stage: s.Clone()}
+	e := &Evaluator{solver: new(switched.Solver)}
+	e.Reset(s)
+	return e
+}
+
+// Reset readies the evaluator for another stage, as Prepare does, in the memory
+// that it has.
+func (e *Evaluator) Reset(s *stage.Stage) {
+	*e = Evaluator{stage: s.Clone(), solver: e.solver}
 	if s.Feedback.Present {
 		e.nominal = s.Feedback.OutputVoltage()
 	}
 	e.model.Prepare(e.stage)
 	e.prepareNetwork()
-	return e
 }
 
 // Stage returns the evaluator's own stage. Its numbers may be set between
