@@ -102,10 +102,12 @@ func (n *Network) sweep(slope *Vector) bool {
 // eliminate replaces delta of the coupled nodes by the solution of the whole
 // equation, and reports whether the gain of the coupled nodes is below one.
 //
-// Elimination without exchange of rows does both: the leading minors of 1 − R J
-// are those of networks that grow by one node at a time, whose largest gains
-// interlace, so the first pivot that is not positive shows a gain of one or more
-// and no positive one hides it.
+// Elimination without exchange of rows does both. The leading minors of 1 − R J
+// are those of the network as its nodes get their slopes one after the other. Each
+// slope moves at most one gain through one, and the sign of the minor with it; so
+// as long as every pivot is positive all gains are below one, and with rising
+// losses only, one that is not means a gain of one or more. A falling loss that
+// just holds a part whose own gain reaches one is not given credit.
 func (n *Network) eliminate(slope *Vector) bool {
 	a := &n.coupled
 	a.gather(n, slope, false)

@@ -2,6 +2,7 @@ package thermal
 
 import (
 	"math"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/mat"
@@ -228,7 +229,7 @@ func TestFeedbackIsLargestEigenvalue(t *testing.T) {
 					want = max(want, real(v))
 				}
 				got, _ := n.Feedback(&slope)
-				if math.Abs(got-want) > 2*gainTolerance*want {
+				if math.Abs(got-want) > 2*gainTolerance*want+1e-12 {
 					t.Fatalf("got %.12g, want %.12g", got, want)
 				}
 			})
@@ -344,11 +345,12 @@ func BenchmarkThermal(b *testing.B) {
 	})
 }
 
-// TestEliminationAgreesWithSweeps: both solve the same equation, and a gain of one
-// or more shows as a pivot that is not positive, and only so.
-func TestEliminationAgreesWithSweeps(t *testing.T) {
+// TestElimination: its answer solves the coupled equation, and a gain of one or
+// more among the coupled nodes shows as a pivot that is not positive; with rising
+// losses only so.
+func TestElimination(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
-		n, nodes, slope := draw(t, -0.02)
+		n, nodes, slope := draw(t, rapid.SampledFrom([]float64{-0.02, 0}).Draw(t, "least slope"))
 		if n.couplings == 0 {
 			return
 		}
@@ -358,11 +360,11 @@ func TestEliminationAgreesWithSweeps(t *testing.T) {
 		}
 		n.Step(25, &power, &slope, &degC) // leaves lack and inverse
 		verdict := n.eliminate(&slope)
-		size := len(nodes)
+		size := n.joined
 		rj, r := mat.NewDense(size, size, nil), dense(n, nodes)
-		for k, i := range nodes {
-			for row := range nodes {
-				rj.Set(row, k, r.At(row, k)*slope[i])
+		for k, i := range n.join[:size] {
+			for row, j := range n.join[:size] {
+				rj.Set(row, k, r.At(slices.Index(nodes, int(j)), slices.Index(nodes, int(i)))*slope[i])
 			}
 		}
 		var eig mat.Eigen
@@ -371,7 +373,8 @@ func TestEliminationAgreesWithSweeps(t *testing.T) {
 		for _, v := range eig.Values(nil) {
 			largest = max(largest, real(v))
 		}
-		if math.Abs(largest-1) > 1e-6 && verdict != (largest < 1) {
+		falls := slices.ContainsFunc(nodes, func(i int) bool { return slope[i] < 0 })
+		if verdict && largest > 1+1e-6 || !verdict && largest < 1-1e-6 && !falls {
 			t.Fatalf("largest eigenvalue %.9g, verdict stable: %v", largest, verdict)
 		}
 		if !verdict {
