@@ -212,7 +212,7 @@ func (d *Design) Corner(p *stage.Point) []float64 {
 
 // Value is one number of the stage at some coordinates.
 type Value struct {
-	Pointer string // of the spread; of a scale, the factor itself
+	Pointer string  // of the spread; of a scale, the factor itself
 	Value   float64 // [any]
 }
 

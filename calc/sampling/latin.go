@@ -60,7 +60,7 @@ func (l *latinReplicate) at(i uint64, u []float64) {
 	key := Key(l.jitter, i)
 	for j := range l.order {
 		p := &l.order[j]
-		place := (float64(Bits(key, uint64(j))>>40) + 0.5) * 0x1p-24
-		u[j] = (float64(p.at(i)) + place) / float64(p.n)
+		place := (float64(int64(Bits(key, uint64(j))>>40)) + 0.5) * 0x1p-24
+		u[j] = (float64(int64(p.at(i))) + place) / float64(p.n)
 	}
 }

@@ -61,7 +61,13 @@ func (s *Set) place(u, z []float64) {
 	for i := range s.normal {
 		l := &s.normal[i]
 		w := normalQuantile(l.tail + u[l.to]*l.rest)
-		z[l.to] = max(-1, min(1, w*l.side[math.Float64bits(w)>>63]))
+		w *= l.side[math.Float64bits(w)>>63]
+		if w > 1 {
+			w = 1
+		} else if w < -1 {
+			w = -1
+		}
+		z[l.to] = w
 	}
 }
 
