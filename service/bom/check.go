@@ -1,0 +1,193 @@
+package bom
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"railproof/calc/rules"
+	"railproof/service/notation"
+)
+
+// Aspects in which a line can disagree with a proof.
+const (
+	AspectPresent    = "present"
+	AspectQuantity   = "quantity"
+	AspectValue      = "value"
+	AspectTolerance  = "tolerance"
+	AspectVoltage    = "voltage"
+	AspectDielectric = "dielectric"
+	AspectPartNumber = "part-number"
+	AspectAlternate  = "alternate"
+)
+
+// Finding is one aspect of one line, or of a role where no line stands for it.
+type Finding struct {
+	Rail        string
+	Role        string
+	Row         int // 0 if the role as a whole is meant
+	Designators []string
+	Aspect      string
+	Verdict     rules.Verdict
+	Proven      string // for people, with its unit
+	Found       string
+	Detail      string
+}
+
+// equal is the relative difference below which two nominal values are the same:
+// well below the finest step of any preferred series, well above rounding.
+const equal = 1e-4
+
+// rounding is the relative excess that comes from decimal notation only.
+const rounding = 1e-9
+
+// judge compares one line with what was proven for its role.
+func judge(rail string, e *Expectation, l *Line, bound []string) []Finding {
+	c := comparison{base: Finding{Rail: rail, Role: e.Role, Row: l.Row, Designators: bound}}
+	c.quantity(l)
+	c.partNumber(e, l)
+	if e.HasValue {
+		c.values(e, l)
+	}
+	return c.found
+}
+
+type comparison struct {
+	base  Finding
+	found []Finding
+}
+
+func (c *comparison) add(aspect string, v rules.Verdict, proven, found, detail string) {
+	f := c.base
+	f.Aspect, f.Verdict, f.Proven, f.Found, f.Detail = aspect, v, proven, found, detail
+	c.found = append(c.found, f)
+}
+
+// quantity compares the line's own quantity with its designators.
+func (c *comparison) quantity(l *Line) {
+	if math.IsNaN(l.Quantity) {
+		return
+	}
+	v, detail := rules.Pass, "the quantity is that of the designators"
+	if l.Quantity != float64(len(l.Designators)) {
+		v, detail = rules.Fail, "the quantity is not that of the designators on the line"
+	}
+	c.add(AspectQuantity, v, fmt.Sprint(len(l.Designators)), fmt.Sprint(l.Quantity), detail)
+}
+
+func (c *comparison) partNumber(e *Expectation, l *Line) {
+	switch {
+	case e.PartNumber == "" && e.HasValue:
+	case e.PartNumber == "":
+		c.add(AspectPartNumber, rules.NotEvaluated, "", l.PartNumber, "the proof names no part number, and there is no value to compare")
+	case l.PartNumber == e.PartNumber:
+		c.add(AspectPartNumber, rules.Pass, e.PartNumber, l.PartNumber, "the part that was proven")
+	case l.PartNumber == "":
+		c.add(AspectPartNumber, rules.NotEvaluated, e.PartNumber, "", "the line names no part number")
+	default:
+		c.add(AspectPartNumber, rules.Fail, e.PartNumber, l.PartNumber, "not the part that was proven")
+	}
+}
+
+func (c *comparison) values(e *Expectation, l *Line) {
+	text := strings.TrimSpace(l.Value + " " + l.Tolerance + " " + voltageText(l.Voltage))
+	r, err := notation.Read(e.Kind, text)
+	if err != nil {
+		detail := err.Error()
+		if p, ok := err.(*notation.Problem); ok {
+			detail = fmt.Sprintf("%.60q: %s", p.Text, p.Detail)
+		}
+		c.add(AspectValue, rules.NotEvaluated, notation.SI(e.Value, e.Kind.Unit()), text, detail)
+		return
+	}
+	c.value(e, &r)
+	c.tolerance(e, &r, text)
+	if e.Kind == notation.Capacitor && !strings.HasPrefix(e.Role, "compensator/") {
+		c.voltage(e, &r, text)
+		c.dielectric(e, &r)
+	}
+}
+
+// voltageText gives a bare number in a voltage column its unit.
+func voltageText(cell string) string {
+	if cell != "" && strings.Trim(cell, "0123456789.,") == "" {
+		return cell + " V"
+	}
+	return cell
+}
+
+func (c *comparison) value(e *Expectation, r *notation.Reading) {
+	unit := e.Kind.Unit()
+	proven, found := notation.SI(e.Value, unit), notation.SI(r.Value, unit)
+	if math.Abs(r.Value-e.Value) <= equal*math.Abs(e.Value) {
+		c.add(AspectValue, rules.Pass, proven, found, "the value that was proven")
+		return
+	}
+	if !math.IsNaN(r.ToleranceLow) && inside(e, r) {
+		c.add(AspectValue, rules.Pass, proven, found, "another value, but with its tolerance inside the range that was proven")
+		return
+	}
+	c.add(AspectValue, rules.Fail, proven, found, "not the value that was proven")
+}
+
+// inside reports whether the reading's whole range lies in the proven one.
+func inside(e *Expectation, r *notation.Reading) bool {
+	low, high := r.Value*(1-r.ToleranceLow), r.Value*(1+r.ToleranceHigh)
+	return low >= e.Min*(1-rounding) && high <= e.Max*(1+rounding)
+}
+
+func (c *comparison) tolerance(e *Expectation, r *notation.Reading, text string) {
+	proven := between(e.Min/e.Value-1, e.Max/e.Value-1)
+	switch {
+	case math.IsNaN(r.ToleranceLow):
+		detail := "the line tells no tolerance"
+		for i := range r.Doubts {
+			detail += "; " + r.Doubts[i].Detail
+		}
+		c.add(AspectTolerance, rules.NotEvaluated, proven, text, detail)
+	case inside(e, r):
+		c.add(AspectTolerance, rules.Pass, proven, between(-r.ToleranceLow, r.ToleranceHigh), "inside the range that was proven")
+	default:
+		c.add(AspectTolerance, rules.Fail, proven, between(-r.ToleranceLow, r.ToleranceHigh), "the part may lie outside the range that was proven")
+	}
+}
+
+// between prints a tolerance.
+func between(low, high float64) string {
+	if math.Abs(low+high) < rounding {
+		return fmt.Sprintf("±%.4g %%", 100*high)
+	}
+	return fmt.Sprintf("%+.4g %% %+.4g %%", 100*low, 100*high)
+}
+
+func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
+	proven := "unknown"
+	if !math.IsNaN(e.Voltage) {
+		proven = fmt.Sprintf("%.4g V", e.Voltage)
+	}
+	switch {
+	case math.IsNaN(e.Voltage):
+		c.add(AspectVoltage, rules.NotEvaluated, proven, text, "the proof has no voltage rating for this part")
+	case math.IsNaN(r.Voltage):
+		c.add(AspectVoltage, rules.NotEvaluated, proven, text, "the line tells no voltage rating")
+	case r.Voltage >= e.Voltage*(1-rounding):
+		c.add(AspectVoltage, rules.Pass, proven, fmt.Sprintf("%.4g V", r.Voltage), "at least the rating that was proven")
+	default:
+		c.add(AspectVoltage, rules.Fail, proven, fmt.Sprintf("%.4g V", r.Voltage), "less than the rating that was proven")
+	}
+}
+
+func (c *comparison) dielectric(e *Expectation, r *notation.Reading) {
+	if e.Class == "" || r.Dielectric == "" {
+		return
+	}
+	class := "class-1"
+	if strings.ContainsAny(r.Dielectric[:1], "XYZ") {
+		class = "class-2"
+	}
+	if class == e.Class {
+		c.add(AspectDielectric, rules.Pass, e.Class, r.Dielectric, "the class that was proven")
+		return
+	}
+	c.add(AspectDielectric, rules.Fail, e.Class, r.Dielectric, "another class than was proven")
+}
