@@ -108,7 +108,7 @@ func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
 	v := s.ref.v
 	for p := range legs {
 		least[p], most[p] = duty, 1
-		if !c.leg(p).Rectifier.Blocks || warm {
+		if !c.leg(p).Rectifier.Blocks || warm && s.conduct[p] > duty {
 			continue
 		}
 		v = c.restingOutput(p, duty)
@@ -143,16 +143,23 @@ func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
 					continue // conducts all the time
 				}
 				s.iv[k].top.slope(&s.nw, &s.iv[k].stop, &slope)
-				if left > 0 {
-					least[p] = math.Max(least[p], at)
-				} else {
-					most[p] = math.Min(most[p], at)
+				if legs == 1 { // several shift each other's zeros
+					if left > 0 {
+						least[p] = math.Max(least[p], at)
+					} else {
+						most[p] = math.Min(most[p], at)
+					}
 				}
 				to := at - left/(slope[j]*c.Period)
-				if !(to > least[p] && to < most[p]) && left != 0 {
-					to = 0.5 * (least[p] + most[p])
-					if left > 0 && most[p] == 1 {
-						to = 1
+				switch {
+				case left == 0:
+					to = at
+				case left > 0 && !(to < most[p]) && most[p] == 1:
+					to = 1
+				case !(to > least[p] && to < most[p]):
+					to = 0.5 * (at + least[p])
+					if left > 0 {
+						to = 0.5 * (at + most[p])
 					}
 				}
 				s.conduct[p] = to

@@ -17,6 +17,10 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 	}
 	s.closed, s.rounds = false, 0
 	s.prepare(c)
+	if c.idle() {
+		s.standStill(c, duty, Solved, sol)
+		return
+	}
 	s.finish(c, s.settle(c, duty, false), sol)
 }
 
@@ -29,7 +33,47 @@ func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, so
 	}
 	s.closed, s.rounds = false, 0
 	s.prepare(c)
+	if c.idle() {
+		switch {
+		case vout < c.Vin:
+			s.standStill(c, dutyLeast, TooShortOnTime, sol)
+		default:
+			s.standStill(c, dutyGreatest, DropOut, sol)
+		}
+		return
+	}
 	s.finish(c, s.regulate(c, vout, dutyLeast, dutyGreatest), sol)
+}
+
+// idle tells that nothing takes charge from the output: no load, and no
+// rectifier that conducts backwards.
+func (c *Circuit) idle() bool {
+	for p := range c.Phases {
+		if !c.leg(p).Rectifier.Blocks {
+			return false
+		}
+	}
+	return c.Current == 0 && c.Conductance == 0
+}
+
+// standStill writes the state of an idle circuit: the output has risen to the
+// input and no current flows at all.
+func (s *Solver) standStill(c *Circuit, duty float64, status Status, sol *Solution) {
+	*sol = Solution{Status: status, Duty: duty, OutputMean: c.Vin, OutputMin: c.Vin, OutputMax: c.Vin}
+	for k := range c.Banks {
+		sol.BankMean[k] = c.Vin
+	}
+	sol.Leg.Mode = Discontinuous
+	if c.Legs != nil {
+		for p := range c.Phases {
+			sol.Legs[p].Mode = Discontinuous
+		}
+	}
+	s.feed[0] = feed{t: c.Period}
+	s.feeds = 1
+	if !(c.Vin > 0 && c.Vin < math.MaxFloat64) {
+		sol.Status = NotConverged
+	}
 }
 
 // finish measures the state and checks the answer itself.
