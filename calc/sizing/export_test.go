@@ -16,3 +16,9 @@ func Grades() (g [][2]float64) {
 	}
 	return g
 }
+
+// ModelMargin is what the closed forms are held to against the exact engine.
+const ModelMargin = modelMargin
+
+// RecoverySlowness is the time of the fastest recovery per ampere and henry.
+var RecoverySlowness = recoverySlowness

@@ -123,26 +123,21 @@ func failsSomewhere(s *stage.Stage, a *sizing.Answer, r *stage.Requirement, stat
 // technology.
 func noStageIsEfficient(t *testing.T, k int, req *stage.Requirement, c *sizing.Conflict) {
 	a, r := relaxed(t, req)
-	base := a.Stage
 	best := 0.0
 	mean := r.LoadCurrent.Max / float64(r.PhaseCount)
-	dies := func(around float64, f func(float64)) { logarithmic(around/20, around*3, 8, f) }
+	on := a.Stage.HighSide.OnResistance
 	for _, l := range [...]float64{1, 1.5, 2.2, 3.3, 4.7, 6.8} {
 		for _, size := range [...]float64{1, 2.5, 8} {
-			dies(base.HighSide.OnResistance, func(hs float64) {
-				dies(base.HighSide.OnResistance, func(ls float64) {
-					s := base.Clone()
-					rating := s.HighSide.Rating.DrainSource
-					cool := s.HighSide.Thermal
-					s.HighSide = sizing.SwitchPlaceholder(rating, hs, mean, 125)
-					s.HighSide.Thermal = cool
-					if s.Rectifier != stage.DiodeRectified {
-						s.LowSide = sizing.SwitchPlaceholder(rating, ls, mean, 125)
-						s.LowSide.Thermal = cool
-					}
-					h, sat := s.Inductor.Inductance*l, s.Inductor.Rating.Saturation
-					s.Inductor = sizing.InductorPlaceholder(h, sat, mean, sizing.WindingLeast(h, sat, size), size, 125)
-					best = math.Max(best, leastEfficiency(s, &a, r, math.Max(best, r.Targets.Efficiency)))
+			s := a.Stage.Clone()
+			h, sat := s.Inductor.Inductance*l, s.Inductor.Rating.Saturation
+			s.Inductor = sizing.InductorPlaceholder(h, sat, mean, sizing.WindingLeast(h, sat, size), size, 125)
+			e := evaluate.Prepare(s)
+			logarithmic(on/20, on*3, 8, func(hs float64) {
+				logarithmic(on/20, on*3, 8, func(ls float64) {
+					lossy(e.Stage(), s, &a)
+					setDie(&e.Stage().HighSide, hs, mean)
+					setDie(&e.Stage().LowSide, ls, mean)
+					best = math.Max(best, leastEfficiency(e, r, math.Max(best, r.Targets.Efficiency)))
 				})
 			})
 		}
@@ -150,21 +145,34 @@ func noStageIsEfficient(t *testing.T, k int, req *stage.Requirement, c *sizing.C
 	assert.Less(t, best, req.Targets.Efficiency, "%d: a grid finds a stage of this efficiency; sizing found %g", k, c.Available)
 }
 
+// setDie gives a switch the numbers of another die, its losses at the upper end of
+// their tolerances.
+func setDie(m *parts.MOSFET, on, mean float64) {
+	p := sizing.SwitchPlaceholder(m.Rating.DrainSource, on, mean, 125)
+	const up = 1.3
+	m.OnResistance, m.GateCharge, m.GateSwitchCharge, m.OutputCharge, m.RecoveryCharge = up*p.OnResistance, up*p.GateCharge, up*p.GateSwitchCharge, up*p.OutputCharge, up*p.RecoveryCharge
+}
+
+// lossy sets every number of a stage with a spread to the end that loses more.
+func lossy(s, typical *stage.Stage, a *sizing.Answer) {
+	to := s.Fields()
+	from := typical.Fields()
+	for _, v := range a.Spreads {
+		for i := range to {
+			if to[i].ID == v.Field {
+				*to[i].Value = *from[i].Value * sizing.LossyEnd(v.Field, v.Min, v.Typ, v.Max) / v.Typ
+			}
+		}
+	}
+}
+
 // leastEfficiency returns the least efficiency at the greatest load, or 0 as soon as
 // it falls below what is of interest.
-func leastEfficiency(s *stage.Stage, a *sizing.Answer, r *stage.Requirement, interest float64) float64 {
-	e := evaluate.Prepare(s)
-	n := map[string]*float64{}
-	for _, f := range e.Stage().Fields() {
-		n[f.ID] = f.Value
-	}
-	for _, v := range a.Spreads {
-		ratio := sizing.LossyEnd(v.Field, v.Min, v.Typ, v.Max) / v.Typ
-		*n[v.Field] *= ratio
-	}
+func leastEfficiency(e *evaluate.Evaluator, r *stage.Requirement, interest float64) float64 {
 	least := 1.0
 	var res evaluate.Result
 	fs := e.Stage().SwitchingFrequency
+	defer func() { e.Stage().SwitchingFrequency = fs }()
 	for _, f := range [2]float64{1.08, 0.92} {
 		e.Stage().SwitchingFrequency = fs * f
 		for _, vin := range [3]float64{r.Input.Max, r.Input.Min, r.Input.Typ} {

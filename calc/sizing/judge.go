@@ -133,8 +133,11 @@ func lossyEnd(field string, least, typ, most float64) float64 {
 // meets reports whether the draft keeps the efficiency it was budgeted for and the
 // junction limit.
 func (j judgement) meets(z *sizer) bool {
-	return j.works && j.efficiency >= 1/(1+z.lossShare) && j.hottest <= z.junction
+	return j.cool(z) && j.efficiency >= 1/(1+z.lossShare)
 }
+
+// cool reports whether the draft works within the junction limit.
+func (j judgement) cool(z *sizer) bool { return j.works && j.hottest <= z.junction }
 
 // better reports whether j is the better draft where neither meets its targets.
 func (j judgement) better(than judgement) bool {

@@ -39,6 +39,9 @@ func Size(req *stage.Requirement, choice Choices) Answer {
 func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 	var best *sizer
 	for _, try := range trials {
+		if try.inductance > 1 && !known(req.Targets.Efficiency) && best.judged.cool(best) {
+			continue // loss alone, which nobody limits, is no reason for a larger inductor
+		}
 		z := newSizer(req, choice, fs, try)
 		z.run()
 		if z.failed() {
