@@ -24,6 +24,7 @@ const (
 	InputReference        // [1] of the reference voltage
 	InputOne              // [1] of the constant
 	Inputs                // [1] how many
+	NoInput        = -1
 )
 
 // Joint is the stage with its compensator and source as one linear system for
@@ -37,6 +38,7 @@ type Joint struct {
 	Networks   [DriveStates]Network
 	Integrate  bool    // add the integral of the output voltage
 	ToneRate   float64 // [rad/s] 0: no tone
+	ToneInput  int     // input that the tone is added to, or NoInput: it is a state only
 	N          int     // states
 	Bank       int     // index of the first bank voltage
 	Feed       int     // of the first source state
@@ -98,6 +100,9 @@ func (j *Joint) setOutput() {
 		j.Output[j.Bank+k] = 1 / (c.Bank[k].ESR * g)
 	}
 	j.Output[j.N+InputLoad] = -1 / g
+	if j.ToneRate != 0 && j.ToneInput == InputLoad {
+		j.Output[j.Tone] = -1 / g
+	}
 }
 
 // Control returns the functional of the control voltage in a drive.
@@ -192,6 +197,12 @@ func (j *Joint) Assemble(s *statespace.System, legs *Legs, drive Drive) {
 		addTo(s.Row(j.Integral), &j.Output, 1)
 	}
 	if j.ToneRate != 0 {
+		if j.ToneInput == InputVoltage {
+			for i := range j.Tone {
+				row := s.Row(i)
+				row[j.Tone] += row[j.N+InputVoltage]
+			}
+		}
 		s.Row(j.Tone)[j.Tone+1] = j.ToneRate
 		s.Row(j.Tone + 1)[j.Tone] = -j.ToneRate
 	}

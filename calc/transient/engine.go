@@ -67,6 +67,7 @@ type Engine struct {
 	edges  int  // in the present period
 	trial  bool // a period is only tried out: nothing is recorded
 	shape  [loop.DriveStates][signals]statespace.Functional
+	head   [signals]reading // as the present step begins
 	rec    recorder
 	run    tally
 
@@ -111,8 +112,9 @@ func New(s *Setup) (*Engine, error) {
 	e := &Engine{setup: *s, status: Running, delay: p.Modulator.Delay, sense: 0, limit: math.Inf(1), shelf: map[uint32]*interval{}}
 	e.joint.Integrate = true
 	for _, ev := range s.Events {
-		if ev.Kind == ControlTone {
+		if ev.Kind.tone() {
 			e.joint.ToneRate = 2 * math.Pi * ev.Frequency
+			e.joint.ToneInput = toneInput(ev.Kind)
 		}
 	}
 	e.joint.Set(p, loop.Limits{Low: s.Bounds.ControlLow, High: s.Bounds.ControlHigh})
@@ -155,8 +157,8 @@ func (e *Engine) functionals() {
 		for d := range e.trip {
 			f := negated(e.control[d])
 			f[i] += e.sense
-			if j.ToneRate != 0 {
-				f[j.Tone] -= 1
+			if j.ToneRate != 0 && j.ToneInput == loop.NoInput {
+				f[j.Tone]--
 			}
 			e.trip[d][i].Output = f
 		}
@@ -207,4 +209,15 @@ func slopeOf(f *statespace.Functional, s *statespace.System) statespace.Function
 		g[s.N+s.M-1] += f[s.N+k] * s.Rate[k]
 	}
 	return g
+}
+
+// toneInput returns the input that a tone is added to.
+func toneInput(k EventKind) int {
+	switch k {
+	case LoadTone:
+		return loop.InputLoad
+	case InputTone:
+		return loop.InputVoltage
+	}
+	return loop.NoInput
 }

@@ -85,20 +85,34 @@ func (r *recorder) set(e *Engine) {
 	}
 }
 
-// at returns the bucket of a signal at a time, or nil outside the record.
-func (r *recorder) at(k int, t float64) *bucket {
+// index returns the bucket of a time, or -1 outside the record.
+func (r *recorder) index(t float64) int {
 	if r.width == 0 || t < r.from {
-		return nil
+		return -1
 	}
-	i := int((t - r.from) / r.width)
-	b := r.buckets[k]
-	switch {
-	case i < len(b):
-		return &b[i]
-	case i == len(b) && t <= r.from+r.width*float64(len(b))*(1+sameTime):
-		return &b[i-1] // the end of the record itself
+	n := len(r.buckets[Output])
+	switch i := int((t - r.from) / r.width); {
+	case i < n:
+		return i
+	case i == n && t <= r.from+r.width*float64(n)*(1+sameTime):
+		return n - 1 // the end of the record itself
 	}
-	return nil
+	return -1
+}
+
+// reading is a signal's value and slope.
+type reading struct{ value, slope float64 }
+
+// look reads the signals at the present point, as a stretch without edges begins.
+func (e *Engine) look(v *interval) {
+	if e.trial {
+		return
+	}
+	i := e.rec.index(e.now.at)
+	for k := range signals {
+		e.head[k] = reading{e.shape[e.now.drive][k].At(&e.now.z, e.width), v.slopes[k].At(&e.now.z, e.width)}
+		e.keep(k, i, Sample{e.now.at, e.head[k].value})
+	}
 }
 
 // observe takes the signals' values and extremes over the step from the present
@@ -111,60 +125,72 @@ func (e *Engine) observe(v *interval, z *statespace.Point, h float64) {
 	if m.drive != loop.Linear {
 		e.run.now.Clamped += h
 	}
+	to := m.at + h
+	i := e.rec.index(to)
 	for k := range signals {
 		if k == InductorSum && e.joint.Circuit.Phases == 1 {
 			continue
 		}
 		f := &e.shape[m.drive][k]
-		from, to := Sample{m.at, f.At(&m.z, e.width)}, Sample{m.at + h, f.At(z, e.width)}
-		e.keep(k, from)
-		e.keep(k, to)
-		s0, s1 := v.slopes[k].At(&m.z, e.width), v.slopes[k].At(z, e.width)
-		if !(s0*s1 < 0) {
+		was, is := e.head[k], reading{f.At(z, e.width), v.slopes[k].At(z, e.width)}
+		e.head[k] = is
+		e.keep(k, i, Sample{to, is.value})
+		if !(was.slope*is.slope < 0) {
 			continue
 		}
-		// An extreme lies inside. Solve it only where it can count: the tangents
-		// at both ends bound it.
-		sign := 1.0
-		if s0 > 0 {
-			sign = -1
-		}
-		bound := sign * max(sign*from.Value-math.Abs(s0)*h, sign*to.Value-math.Abs(s1)*h)
-		if !e.counts(k, bound, m.at, m.at+h) {
+		// An extreme lies inside; it is solved only where it can count.
+		if !e.counts(k, between(was, is, h), m.at, i) {
 			continue
 		}
 		turn := statespace.Event{Output: v.slopes[k]}
-		if sign < 0 {
+		if was.slope > 0 {
 			turn.Output = negated(turn.Output)
 		}
 		x := m.z
-		at := v.Cross(&turn, &x, h)
-		e.keep(k, Sample{m.at + at, f.At(&x, e.width)})
+		at := m.at + v.Cross(&turn, &x, h)
+		e.keep(k, e.rec.index(at), Sample{at, f.At(&x, e.width)})
 	}
 	for i := 1; i < e.joint.Circuit.Phases; i++ {
 		e.run.inductor(Sample{m.at, m.z[i]})
-		e.run.inductor(Sample{m.at + h, z[i]})
+		e.run.inductor(Sample{to, z[i]})
 	}
 }
 
-// counts reports whether a value somewhere in a stretch of time would be a new
-// extreme of a signal.
-func (e *Engine) counts(k int, value, from, to float64) bool {
-	if e.run.counts(k, value) {
-		return true
+// between estimates the extreme between two readings with slopes of opposite sign
+// from the cubic through them, short by a thousandth of what it rises between
+// them: a new extreme counts when it beats the old one by more than that.
+func between(from, to reading, h float64) float64 {
+	// y = y0 + s0 t + b t² + c t³ with t in [0, h]
+	mean := (to.value - from.value) / h
+	b, c := (3*mean-2*from.slope-to.slope)/h, (from.slope+to.slope-2*mean)/(h*h)
+	// The root of s0 + 2 b t + 3 c t² between the ends, in the form without cancellation.
+	t := -from.slope / (b + math.Copysign(math.Sqrt(max(0, b*b-3*c*from.slope)), to.slope))
+	y := from.value + t*(from.slope+t*(b+t*c))
+	outer := max(from.value, to.value)
+	if from.slope < 0 {
+		outer = min(from.value, to.value)
 	}
-	for _, t := range [2]float64{from, to} {
-		if b := e.rec.at(k, t); b != nil && (!b.used || value < b.least.Value || value > b.greatest.Value) {
-			return true
-		}
-	}
-	return false
+	return y - 1e-3*(y-outer)
 }
 
-func (e *Engine) keep(k int, s Sample) {
+// counts reports whether a value in a stretch of time that ends in bucket i would
+// be a new extreme of a signal.
+func (e *Engine) counts(k int, value, from float64, i int) bool {
+	return e.run.counts(k, value) || e.rec.counts(k, value, i) || e.rec.counts(k, value, e.rec.index(from))
+}
+
+func (r *recorder) counts(k int, value float64, i int) bool {
+	if i < 0 {
+		return false
+	}
+	b := &r.buckets[k][i]
+	return !b.used || value < b.least.Value || value > b.greatest.Value
+}
+
+func (e *Engine) keep(k, i int, s Sample) {
 	e.run.keep(k, s)
-	if b := e.rec.at(k, s.At); b != nil {
-		b.add(s)
+	if i >= 0 {
+		e.rec.buckets[k][i].add(s)
 	}
 }
 

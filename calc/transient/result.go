@@ -50,6 +50,7 @@ type tally struct {
 	any    bool    // a period has ended since the event
 
 	least, most, lastLeast, lastMost float64 // [V] output in the present and in the last period
+	closing                          bool    // the run is about to end: these are wanted exactly
 	history                          [historyLength]PeriodFigures
 	periods                          int
 }
@@ -94,7 +95,7 @@ func (r *tally) close(e *Engine) Outcome {
 func (r *tally) counts(k int, value float64) bool {
 	switch k {
 	case Output:
-		return value > r.now.Highest.Value || value < r.now.Lowest.Value || value > r.most || value < r.least
+		return value > r.now.Highest.Value || value < r.now.Lowest.Value || r.closing && (value > r.most || value < r.least)
 	case Inductor:
 		return value > r.now.InductorPeak.Value || value < r.now.InductorLeast.Value
 	}
@@ -148,6 +149,7 @@ func (e *Engine) closePeriod() {
 			e.status = Collapsed
 		}
 	}
+	e.run.closing = m.at >= e.setup.Duration-2.5*e.joint.Circuit.Period
 	m.began = m.at
 	m.z[e.joint.Integral] = 0
 }

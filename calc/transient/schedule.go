@@ -41,7 +41,7 @@ func (e *Engine) schedule() {
 			input = loop.InputVoltage
 		case ReferenceStep:
 			input = loop.InputReference
-		case ControlTone:
+		case ControlTone, LoadTone, InputTone:
 			continue
 		}
 		if !(v.Slew > 0) || math.IsInf(v.Slew, 1) {

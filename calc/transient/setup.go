@@ -55,7 +55,11 @@ const (
 	InputStep
 	ReferenceStep
 	ControlTone // a sine is added to the control voltage at the comparator, from the start of the run
+	LoadTone    // to the load current
+	InputTone   // to the source voltage; a feed-forward ramp does not follow it
 )
+
+func (k EventKind) tone() bool { return k >= ControlTone }
 
 // Event is one disturbance. A ramp at a finite slew begins at At.
 type Event struct {
@@ -139,7 +143,7 @@ func (s *Setup) Check() error {
 		if !(math.Abs(e.Change) <= math.MaxFloat64) {
 			f = append(f, stage.Fault{Field: at + "change", Given: e.Change, Limit: parts.Unknown, Accepted: "a finite number", Detail: "size of the step"})
 		}
-		if e.Kind == ControlTone {
+		if e.Kind.tone() {
 			tones++
 			within(at+"frequency_hz", e.Frequency, 1e-6/period, 0.5/period*float64(s.Plant.Circuit.Phases), "frequency of the tone")
 		}

@@ -36,7 +36,7 @@ func (e *Engine) inputs(z *statespace.Point) {
 
 func (e *Engine) toneAmplitude() float64 {
 	for _, v := range e.setup.Events {
-		if v.Kind == ControlTone {
+		if v.Kind.tone() {
 			return v.Change
 		}
 	}

@@ -182,6 +182,7 @@ func (e *Engine) glide(t float64) {
 	m := &e.now
 	v := e.motion()
 	e.watch()
+	e.look(v)
 	for m.at < t-e.grain() {
 		h := t - m.at
 		var z statespace.Point
