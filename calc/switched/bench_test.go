@@ -41,6 +41,16 @@ func BenchmarkSolve(b *testing.B) {
 		run("fixed/dcm/banks="+n, light(buoy(banks)), 0.1)
 		run("regulated/dcm/banks="+n, light(buoy(banks)), 0)
 	}
+	for name, c := range map[string]*Circuit{"ccm/banks=1": buoy(1), "dcm/banks=1": light(buoy(1)), "ccm/banks=3": buoy(3)} {
+		b.Run("approach/"+name, func(b *testing.B) {
+			var s Solver
+			var sol Solution
+			s.Regulated(c, 5, 0.01, 0.95, &sol)
+			for b.Loop() {
+				s.Approach(c, 5, 0.01, 0.95, &sol)
+			}
+		})
+	}
 	four := buoy(2)
 	four.Phases = 4
 	run("fixed/ccm/phases=4/banks=2", four, 0.2132)

@@ -161,6 +161,21 @@ func (ce *cell) stationary(a, b, ra float64) float64 {
 // extent is a greatest and a least value.
 type extent struct{ least, most float64 }
 
+func between(a, b float64) extent {
+	if a < b {
+		return extent{a, b}
+	}
+	return extent{b, a}
+}
+
+// greater is max without its care for signed zeros.
+func greater(a, b float64) float64 {
+	if a > b {
+		return a
+	}
+	return b
+}
+
 func (e *extent) add(v float64) {
 	if v < e.least {
 		e.least = v

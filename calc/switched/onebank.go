@@ -149,7 +149,7 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	ls.Inductor = Branch{ls.HighSide.Mean + ls.Rectifier.Mean, math.Sqrt(high + rect)}
 	ls.TurnOn = ob.i + on.i0
 	ls.TurnOff = ob.i + off.i0
-	swing := extent{min(on.i0, off.i0), max(on.i0, off.i0)}
+	swing := between(on.i0, off.i0)
 	on.ci.extremes(on.order, &swing)
 	off.ci.extremes(off.order, &swing)
 
@@ -166,7 +166,7 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 		j1, j2 = alpha*(j1-g*v1), alpha*(j2-g*v2)
 		j = w1*(j1*j1+ob.spread(on, alpha, -alpha*g)) + w2*(j2*j2+ob.spread(off, alpha, -alpha*g))
 	}
-	node := extent{min(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0), max(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)}
+	node := between(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)
 	ob.combine(on, rho, alpha)
 	ob.mix.extremes(on.order, &node)
 	variance := 0.0
@@ -199,7 +199,7 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	sol.OutputPower = sol.OutputMean*c.load(sol.OutputMean) + g*variance
 	loss := leg.Winding*(high+rect) + leg.HighSide*high + leg.Rectifier.Slope*rect +
 		leg.Rectifier.Threshold*ls.Rectifier.Mean + c.Bank[0].ESR*j
-	scale := math.Max(math.Max(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*ls.HighSide.RMS)
+	scale := greater(greater(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*ls.HighSide.RMS)
 	sol.EnergyBalance = math.Abs(sol.InputPower-sol.OutputPower-loss) / scale
 	sol.Residual = ob.closure()
 	sol.Status = Solved
@@ -210,9 +210,16 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 
 // combine forms the series a ι + b ν.
 func (ob *oneBank) combine(pl *plane, a, b float64) {
-	for k := range planeShort + 1 {
-		ob.mix[k] = a*pl.ci[k] + b*pl.cv[k]
-	}
+	mix, ci, cv := &ob.mix, &pl.ci, &pl.cv
+	mix[0] = a*ci[0] + b*cv[0]
+	mix[1] = a*ci[1] + b*cv[1]
+	mix[2] = a*ci[2] + b*cv[2]
+	mix[3] = a*ci[3] + b*cv[3]
+	mix[4] = a*ci[4] + b*cv[4]
+	mix[5] = a*ci[5] + b*cv[5]
+	mix[6] = a*ci[6] + b*cv[6]
+	mix[7] = a*ci[7] + b*cv[7]
+	mix[8] = a*ci[8] + b*cv[8]
 	for k := planeShort + 1; k <= pl.order; k++ {
 		ob.mix[k] = a*pl.ci[k] + b*pl.cv[k]
 	}
@@ -232,11 +239,11 @@ func (ob *oneBank) closure() float64 {
 	if ob.t3 > 0 {
 		return max(math.Abs(ob.left)/math.Abs(off.i0), math.Abs(ob.rest.start+ob.rest.change-on.v0)/math.Abs(ob.v))
 	}
-	di := max(math.Abs(off.i1-on.i0), math.Abs(on.i1-off.i0))
-	dv := max(math.Abs(off.v1-on.v0), math.Abs(on.v1-off.v0))
-	scale := math.Abs(ob.i) + math.Abs(on.i1-on.i0)
-	if scale == 0 {
-		return dv / math.Abs(ob.v)
+	di := greater(math.Abs(off.i1-on.i0), math.Abs(on.i1-off.i0))
+	dv := greater(math.Abs(off.v1-on.v0), math.Abs(on.v1-off.v0))
+	current, voltage := math.Abs(ob.i)+math.Abs(on.i1-on.i0), math.Abs(ob.v)
+	if current == 0 {
+		return dv / voltage
 	}
-	return max(di/scale, dv/math.Abs(ob.v))
+	return greater(di*voltage, dv*current) / (current * voltage)
 }
