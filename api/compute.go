@@ -1,9 +1,9 @@
 package api
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
-	"io"
 	"net/http"
 	"strings"
 
@@ -31,7 +31,7 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 			return refusal{problem}
 		}
 		form := c.Get(formKey).(string)
-		bytes, problem := answer.Render(form)
+		text, problem := answer.Render(form)
 		if problem != nil {
 			return refusal{problem}
 		}
@@ -41,7 +41,7 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		if c.QueryParam("timings") == "true" {
 			h.Set("Server-Timing", serverTiming(answer.Timings))
 		}
-		return c.Blob(http.StatusOK, form, bytes)
+		return c.Blob(http.StatusOK, form, text)
 	}
 }
 
@@ -54,14 +54,18 @@ func (a *API) body(c echo.Context) ([]byte, *exchange.Problem) {
 	if r.ContentLength > a.maxBody {
 		return nil, tooLarge()
 	}
-	body, err := io.ReadAll(http.MaxBytesReader(c.Response(), r.Body, a.maxBody))
+	var arrived bytes.Buffer
+	if r.ContentLength > 0 {
+		arrived.Grow(int(r.ContentLength) + bytes.MinRead)
+	}
+	_, err := arrived.ReadFrom(http.MaxBytesReader(c.Response(), r.Body, a.maxBody))
 	if _, over := errors.AsType[*http.MaxBytesError](err); over {
 		return nil, tooLarge()
 	}
 	if err != nil {
 		return nil, exchange.NewProblem(exchange.Malformed, "the body did not arrive completely")
 	}
-	return body, nil
+	return arrived.Bytes(), nil
 }
 
 // serverTiming writes the milliseconds of each step.

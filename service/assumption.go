@@ -37,12 +37,12 @@ var telling = []quantity.ID{
 
 // assumptions lists what the answer rests on. base is the point at which effects
 // are computed and its result; nil where no point gave figures.
-func assumptions(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
+func (s *Service) assumptions(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	list := defaults(d, e, base)
 	list = append(list, omissions(d)...)
 	list = append(list, placeholders(d)...)
 	if base != nil {
-		list = append(list, beyondTables(d, base)...)
+		list = append(list, s.beyondTables(d, base)...)
 	}
 	return list
 }

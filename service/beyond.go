@@ -20,7 +20,7 @@ type tableUse struct {
 // beyondTables lists the tables that the point reads beyond their ends. Their
 // effect is the change that appears if each stayed at its last value instead of
 // going on with its last slope.
-func beyondTables(d *Design, base *basis) []Assumption {
+func (s *Service) beyondTables(d *Design, base *basis) []Assumption {
 	var list []Assumption
 	for _, use := range tablesBeyond(d.Stage, base) {
 		a := numberless(d.At+use.tail, "read beyond its ends: the last slope goes on; the effect compares with the last value held")
@@ -28,7 +28,9 @@ func beyondTables(d *Design, base *basis) []Assumption {
 		t := use.table(held)
 		*t = flatBeyond(*t)
 		var r evaluate.Result
-		evaluate.Prepare(held).Eval(base.point, &r)
+		e := s.evaluator(held)
+		e.Eval(base.point, &r)
+		s.release(e)
 		if a.Effect = effect(base.result, &r, &r); a.Effect != nil {
 			a.Effect.AtLow, a.Effect.AtHigh = parts.Unknown, parts.Unknown
 		}

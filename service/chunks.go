@@ -11,11 +11,12 @@ import (
 // given number of workers. Which worker takes a chunk does not matter, because
 // work stores by index; so any number of workers gives the same result. Between
 // chunks it looks at the context and lets others run. prepare makes a worker's
-// own workspace.
-func inChunks[W any](ctx context.Context, n, size, workers int, prepare func() W, work func(w W, from, to int)) error {
+// own workspace, release gives it back.
+func inChunks[W any](ctx context.Context, n, size, workers int, prepare func() W, release func(W), work func(w W, from, to int)) error {
 	var next atomic.Int64
 	loop := func() error {
 		space := prepare()
+		defer release(space)
 		for {
 			if err := context.Cause(ctx); err != nil {
 				return err

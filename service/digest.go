@@ -1,55 +1,135 @@
 package service
 
 import (
-	"bytes"
 	"crypto/sha256"
 	"encoding/hex"
-	"fmt"
-
-	"github.com/go-json-experiment/json/jsontext"
+	"math"
+	"slices"
+	"strconv"
+	"unicode/utf16"
+	"unicode/utf8"
 )
 
 // ResultID names the answer to a request: "res_" and the SHA-256, in hexadecimal,
 // of the RFC 8785 form of {"engine": …, "operation": …, "request": …}. The request
-// is JSON text; how it is spaced, ordered or how its numbers are written does not
-// matter.
-func ResultID(operation string, e Engine, request []byte) (string, error) {
-	canonical, err := Canonical(request)
-	if err != nil {
-		return "", err
+// is a tree as a strict JSON parser yields it; how its text was spaced, ordered or
+// how its numbers were written does not matter.
+func ResultID(operation string, e Engine, request any) string {
+	document := map[string]any{
+		"engine":    map[string]any{"name": e.Name, "version": e.Version, "contract_version": e.ContractVersion, "platform": e.Platform},
+		"operation": operation,
+		"request":   request,
 	}
-	var b bytes.Buffer
-	b.Grow(len(canonical) + 256)
-	b.WriteString(`{"engine":{"contract_version":`)
-	quote(&b, e.ContractVersion)
-	b.WriteString(`,"name":`)
-	quote(&b, e.Name)
-	b.WriteString(`,"platform":`)
-	quote(&b, e.Platform)
-	b.WriteString(`,"version":`)
-	quote(&b, e.Version)
-	b.WriteString(`},"operation":`)
-	quote(&b, operation)
-	b.WriteString(`,"request":`)
-	b.Write(canonical)
-	b.WriteByte('}')
-	sum := sha256.Sum256(b.Bytes())
-	return "res_" + hex.EncodeToString(sum[:]), nil
+	sum := sha256.Sum256(AppendCanonical(make([]byte, 0, 8<<10), document))
+	return "res_" + hex.EncodeToString(sum[:])
 }
 
-// Canonical returns the RFC 8785 form of JSON text and leaves the text alone.
-func Canonical(text []byte) ([]byte, error) {
-	v := jsontext.Value(bytes.Clone(text))
-	if err := v.Canonicalize(); err != nil {
-		return nil, fmt.Errorf("service: canonical form: %w", err)
+// AppendCanonical appends the RFC 8785 form of a tree of map[string]any, []any,
+// float64, string, bool and nil. Strings are valid UTF-8 and numbers finite, as
+// every parsed document has them; anything else is the caller's bug.
+func AppendCanonical(b []byte, v any) []byte {
+	switch v := v.(type) {
+	case nil:
+		return append(b, "null"...)
+	case bool:
+		return strconv.AppendBool(b, v)
+	case float64:
+		return appendNumber(b, v)
+	case string:
+		return appendString(b, v)
+	case []any:
+		b = append(b, '[')
+		for i, entry := range v {
+			if i > 0 {
+				b = append(b, ',')
+			}
+			b = AppendCanonical(b, entry)
+		}
+		return append(b, ']')
+	case map[string]any:
+		return appendObject(b, v)
 	}
-	return v, nil
+	panic("service: no JSON value")
 }
 
-func quote(b *bytes.Buffer, s string) {
-	q, err := jsontext.AppendQuote(b.AvailableBuffer(), s)
-	if err != nil {
-		panic("service: a name of ours is not UTF-8")
+// appendObject writes the members in the order of their names' UTF-16 code units.
+func appendObject(b []byte, members map[string]any) []byte {
+	var room [32]string
+	names := room[:0]
+	plain := true
+	for name := range members {
+		names = append(names, name)
+		plain = plain && isASCII(name)
 	}
-	b.Write(q)
+	if plain { // bytes and code units sort alike
+		slices.Sort(names)
+	} else {
+		slices.SortFunc(names, func(x, y string) int { return slices.Compare(utf16.Encode([]rune(x)), utf16.Encode([]rune(y))) })
+	}
+	b = append(b, '{')
+	for i, name := range names {
+		if i > 0 {
+			b = append(b, ',')
+		}
+		b = append(appendString(b, name), ':')
+		b = AppendCanonical(b, members[name])
+	}
+	return append(b, '}')
+}
+
+func isASCII(s string) bool {
+	for i := range len(s) {
+		if s[i] >= utf8.RuneSelf {
+			return false
+		}
+	}
+	return true
+}
+
+// appendNumber writes a number as ECMAScript does: the shortest digits that read
+// back, with an exponent from 1e21 and below 1e-6.
+func appendNumber(b []byte, v float64) []byte {
+	size := math.Abs(v)
+	switch {
+	case math.IsNaN(v) || math.IsInf(v, 0):
+		panic("service: a number that JSON does not have")
+	case v == 0:
+		return append(b, '0')
+	case size >= 1e-6 && size < 1e21:
+		return strconv.AppendFloat(b, v, 'f', -1, 64)
+	}
+	b = strconv.AppendFloat(b, v, 'e', -1, 64)
+	if n := len(b); b[n-2] == '0' && (b[n-3] == '-' || b[n-3] == '+') { // e-09 is written e-9
+		b[n-2] = b[n-1]
+		b = b[:n-1]
+	}
+	return b
+}
+
+const hexadecimal = "0123456789abcdef"
+
+// appendString writes a string with the fewest escapes.
+func appendString(b []byte, s string) []byte {
+	b = append(b, '"')
+	for i := range len(s) {
+		switch c := s[i]; {
+		case c == '"' || c == '\\':
+			b = append(b, '\\', c)
+		case c >= ' ':
+			b = append(b, c)
+		case c == '\b':
+			b = append(b, '\\', 'b')
+		case c == '\t':
+			b = append(b, '\\', 't')
+		case c == '\n':
+			b = append(b, '\\', 'n')
+		case c == '\f':
+			b = append(b, '\\', 'f')
+		case c == '\r':
+			b = append(b, '\\', 'r')
+		default:
+			b = append(b, '\\', 'u', '0', '0', hexadecimal[c>>4], hexadecimal[c&15])
+		}
+	}
+	return append(b, '"')
 }

@@ -58,14 +58,14 @@ func (s *Service) LossesGrid(ctx context.Context, r *GridRequest) (*GridAnswer, 
 	err := s.run(ctx, bulk, func() error {
 		sketches := make([]gridSketch, (n+gridChunk-1)/gridChunk)
 		err := inChunks(ctx, n, gridChunk, s.workers,
-			func() *evaluate.Evaluator { return evaluate.Prepare(r.Design.Stage) },
+			func() *evaluate.Evaluator { return s.evaluator(r.Design.Stage) }, s.release,
 			func(e *evaluate.Evaluator, from, to int) {
 				r.chunk(a, e, &sketches[from/gridChunk], from, to)
 			})
 		if err != nil {
 			return err
 		}
-		r.conclude(a, sketches)
+		s.conclude(r, a, sketches)
 		return nil
 	})
 	if err != nil {
@@ -107,8 +107,9 @@ func (r *GridRequest) chunk(a *GridAnswer, e *evaluate.Evaluator, k *gridSketch,
 }
 
 // conclude merges the sketches in their order and says what the answer rests on.
-func (r *GridRequest) conclude(a *GridAnswer, sketches []gridSketch) {
-	e := evaluate.Prepare(r.Design.Stage)
+func (s *Service) conclude(r *GridRequest, a *GridAnswer, sketches []gridSketch) {
+	e := s.evaluator(r.Design.Stage)
+	defer s.release(e)
 	var warn warnings
 	warn.unused(&r.Design)
 	warn.typicalControl(&r.Design, "/grid", &r.Base.Control)
@@ -129,7 +130,7 @@ func (r *GridRequest) conclude(a *GridAnswer, sketches []gridSketch) {
 			e.Eval(&p, base.result)
 		}
 	}
-	a.Basis = Basis{assumptions(&r.Design, e, base), caution.Of(r.Design.Stage, r.Design.At, r.Design.Variables, &seen), warn.list}
+	a.Basis = Basis{s.assumptions(&r.Design, e, base), caution.Of(r.Design.Stage, r.Design.At, r.Design.Variables, &seen), warn.list}
 }
 
 // dropInapplicable removes the columns of quantities that the stage does not have.

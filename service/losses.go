@@ -40,8 +40,9 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 	}
 	a := &LossesAnswer{Status: evaluate.OK, Outcomes: make([]*Outcome, len(r.Places))}
 	err := s.run(ctx, kind, func() error {
-		e := evaluate.Prepare(r.Design.Stage)
-		err := inChunks(ctx, len(r.Places), pointChunk, 1, func() *evaluate.Evaluator { return e },
+		e := s.evaluator(r.Design.Stage)
+		defer s.release(e)
+		err := inChunks(ctx, len(r.Places), pointChunk, 1, func() *evaluate.Evaluator { return e }, func(*evaluate.Evaluator) {},
 			func(e *evaluate.Evaluator, from, to int) {
 				for i := from; i < to; i++ {
 					a.Outcomes[i] = outcome(e, &r.Places[i].Point)
@@ -53,7 +54,7 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 		for _, o := range a.Outcomes {
 			a.Status = worse(a.Status, o.Status)
 		}
-		a.Basis = rests(&r.Design, e, r.Places, a.Outcomes)
+		a.Basis = s.rests(&r.Design, e, r.Places, a.Outcomes)
 		return nil
 	})
 	if err != nil {
@@ -64,7 +65,7 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 
 // rests gathers assumptions, cautions and warnings of outcomes. Effects of
 // assumptions are computed at the first point that gave figures.
-func rests(d *Design, e *evaluate.Evaluator, places []Place, outcomes []*Outcome) Basis {
+func (s *Service) rests(d *Design, e *evaluate.Evaluator, places []Place, outcomes []*Outcome) Basis {
 	var base *basis
 	var seen caution.Seen
 	var warn warnings
@@ -80,7 +81,7 @@ func rests(d *Design, e *evaluate.Evaluator, places []Place, outcomes []*Outcome
 		}
 	}
 	return Basis{
-		Assumptions: assumptions(d, e, base),
+		Assumptions: s.assumptions(d, e, base),
 		Cautions:    caution.Of(d.Stage, d.At, d.Variables, &seen),
 		Warnings:    warn.list,
 	}

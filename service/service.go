@@ -2,7 +2,11 @@ package service
 
 import (
 	"runtime"
+	"sync"
 	"time"
+
+	"railproof/calc/evaluate"
+	"railproof/calc/stage"
 )
 
 // Options sets the budgets of a Service; a zero field means its default.
@@ -19,6 +23,7 @@ type Service struct {
 	engine  Engine
 	workers int
 	lanes   [laneCount]*lane
+	idle    sync.Pool // of *evaluate.Evaluator: each is large, and any serves any stage
 }
 
 // New returns a service with the given budgets.
@@ -38,6 +43,17 @@ func New(o Options) *Service {
 	}
 	return s
 }
+
+// evaluator returns one for the stage; give it back with release.
+func (s *Service) evaluator(of *stage.Stage) *evaluate.Evaluator {
+	if e, ok := s.idle.Get().(*evaluate.Evaluator); ok {
+		e.Reset(of)
+		return e
+	}
+	return evaluate.Prepare(of)
+}
+
+func (s *Service) release(e *evaluate.Evaluator) { s.idle.Put(e) }
 
 // Engine names what computes the answers.
 func (s *Service) Engine() Engine { return s.engine }

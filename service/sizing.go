@@ -31,7 +31,7 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 	err := s.run(ctx, bulk, func() error {
 		frequencies := sizing.Frequencies(&r.Requirement, r.Choices)
 		answers := make([]sizing.Answer, len(frequencies))
-		err := inChunks(ctx, len(answers), 1, s.workers, noWorkspace, func(_ struct{}, from, _ int) {
+		err := inChunks(ctx, len(answers), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, from, _ int) {
 			answers[from] = sizing.SizeAt(&r.Requirement, r.Choices, frequencies[from])
 		})
 		if err != nil {
@@ -40,7 +40,7 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 		a.Answer = sizing.Select(&r.Requirement, answers)
 		a.Verify()
 		a.Basis.Assumptions, err = s.sizingAssumptions(ctx, r, &a.Answer)
-		a.rests(r)
+		s.sizingRests(r, a)
 		return err
 	})
 	if err != nil {
@@ -51,13 +51,16 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 
 func noWorkspace() struct{} { return struct{}{} }
 
+func keepNothing(struct{}) {}
+
 // rests gathers cautions and warnings.
-func (a *SizingAnswer) rests(r *SizingRequest) {
+func (s *Service) sizingRests(r *SizingRequest, a *SizingAnswer) {
 	var seen caution.Seen
 	seen.AddRequirement(r.At, &r.Requirement)
 	if a.Stage != nil {
 		var result evaluate.Result
-		e := evaluate.Prepare(a.Stage)
+		e := s.evaluator(a.Stage)
+		defer s.release(e)
 		e.Eval(&a.Point, &result)
 		seen.Add("/point", a.Stage, &a.Point, &result)
 		a.Basis.Cautions = caution.Of(a.Stage, "/stage", a.Spreads, &seen)

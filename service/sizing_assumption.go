@@ -18,12 +18,12 @@ import (
 func (s *Service) sizingAssumptions(ctx context.Context, r *SizingRequest, a *sizing.Answer) ([]Assumption, error) {
 	assumed := append(append([]stage.Assumed(nil), r.Assumed...), a.Assumed...)
 	list := make([]Assumption, len(assumed))
-	err := inChunks(ctx, len(assumed), 1, s.workers, noWorkspace, func(_ struct{}, i, _ int) {
+	err := inChunks(ctx, len(assumed), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, i, _ int) {
 		f := &assumed[i]
 		list[i] = Assumption{Pointer: fieldPointer(r.At, f.Field), Value: finite(f.Value), Low: finite(f.Low), High: finite(f.High), Why: f.Why}
 		if _, ofDraft := strings.CutPrefix(f.Field, "stage/"); ofDraft {
 			list[i].Pointer = "/" + f.Field
-			list[i].Effect = draftEffect(a, f)
+			list[i].Effect = s.draftEffect(a, f)
 		} else if base := chosenRow(a); base != nil && f.Low != f.High {
 			list[i].Effect = rowEffect(base, resized(r, f, f.Low, a.Frequency), resized(r, f, f.High, a.Frequency))
 		}
@@ -39,11 +39,12 @@ func (s *Service) sizingAssumptions(ctx context.Context, r *SizingRequest, a *si
 
 // draftEffect evaluates the draft at its typical point with an assumed value of it
 // at either end of its range.
-func draftEffect(a *sizing.Answer, f *stage.Assumed) *Effect {
+func (s *Service) draftEffect(a *sizing.Answer, f *stage.Assumed) *Effect {
 	if a.Stage == nil || f.Low == f.High {
 		return nil
 	}
-	e := evaluate.Prepare(a.Stage)
+	e := s.evaluator(a.Stage)
+	defer s.release(e)
 	place := e.Stage().Field(strings.TrimPrefix(f.Field, "stage/"))
 	if place == nil {
 		return nil

@@ -25,14 +25,15 @@ type SteadyStateAnswer struct {
 func (s *Service) SteadyState(ctx context.Context, r *SteadyStateRequest) (*SteadyStateAnswer, error) {
 	a := new(SteadyStateAnswer)
 	err := s.run(ctx, interactive, func() error {
-		e := evaluate.Prepare(r.Design.Stage)
+		e := s.evaluator(r.Design.Stage)
+		defer s.release(e)
 		a.Outcome = outcome(e, &r.Place.Point)
 		if r.WaveformPoints > 0 && a.Outcome.Status.Figures() {
 			var again evaluate.Result
 			e.Eval(&r.Place.Point, &again)
 			a.Waveform, _ = e.Waveform(r.WaveformPoints)
 		}
-		a.Basis = rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
+		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
 		return nil
 	})
 	if err != nil {

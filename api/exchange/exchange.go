@@ -61,10 +61,7 @@ func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answ
 		return nil, Schema(SchemaFault, faults)
 	}
 	watch.lap("check-request")
-	id, err := service.ResultID(operation, x.service.Engine(), body)
-	if err != nil {
-		return nil, problemOf(err)
-	}
+	id := service.ResultID(operation, x.service.Engine(), tree)
 	watch.lap("digest")
 	value, err := h(ctx, x, body, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: id})
 	if err != nil {

@@ -1,0 +1,154 @@
+package render
+
+import (
+	"image/color"
+	"math"
+
+	"gonum.org/v1/plot/vg"
+	"gonum.org/v1/plot/vg/draw"
+)
+
+// bars draws horizontal bars, one below the other, over one scale.
+type bars struct {
+	scale  scale
+	base   float64 // where bars begin
+	rows   []bar
+	marks  []mark // lines at x
+	legend []legendItem
+}
+
+// bar is one row: a heading, or a name, a bar and what it says in figures.
+type bar struct {
+	name    string
+	figures string
+	heading bool
+	spans   []span
+	low     float64 // whisker; NaN: none
+	high    float64
+}
+
+// span is one piece of a bar.
+type span struct {
+	from, to float64
+	tone     color.Color
+}
+
+var (
+	barStep   = px(21)
+	barHeight = px(12)
+)
+
+func (b *bars) height(width vg.Length) vg.Length {
+	h := vg.Length(len(b.rows))*barStep + tickLength + 2*lineStep(smallInk)
+	if lines := flow(b.legend, width); len(lines) > 0 {
+		h += vg.Length(len(lines))*legendStep + px(4)
+	}
+	if b.marked() {
+		h += lineStep(limitInk) + px(2)
+	}
+	return h
+}
+
+func (b *bars) marked() bool {
+	for _, m := range b.marks {
+		if m.label != "" {
+			return true
+		}
+	}
+	return false
+}
+
+// columns returns the widths of names and figures: as wide as their texts, and
+// never so wide that the bars have no room.
+func (b *bars) columns(width vg.Length) (names, figures vg.Length) {
+	for _, r := range b.rows {
+		if !r.heading {
+			names = max(names, bodyInk.Width(plain(r.name)))
+		}
+		figures = max(figures, bodyInk.Width(r.figures))
+	}
+	return min(names+px(10), 0.42*width), min(figures+px(10), 0.34*width)
+}
+
+func (b *bars) draw(c draw.Canvas) {
+	width := c.Max.X - c.Min.X
+	names, figures := b.columns(width)
+	top := c.Max.Y
+	if lines := flow(b.legend, width); len(lines) > 0 {
+		drawLegend(c, lines)
+		top -= vg.Length(len(lines))*legendStep + px(4)
+	}
+	markY := top - lineStep(limitInk)/2
+	if b.marked() {
+		top -= lineStep(limitInk) + px(2)
+	}
+	field := vg.Rectangle{Min: vg.Point{X: c.Min.X + names, Y: top - vg.Length(len(b.rows))*barStep}, Max: vg.Point{X: c.Max.X - figures, Y: top}}
+	x := b.scale.along(field.Min.X, field.Max.X)
+	b.grid(c, field, x)
+	for i, r := range b.rows {
+		y := top - (vg.Length(i)+0.5)*barStep
+		if r.heading {
+			write(c, headInk, c.Min.X, y, draw.XLeft, clip(headInk, r.name, width-figures-px(8)))
+			write(c, headInk, c.Max.X, y, draw.XRight, r.figures)
+			continue
+		}
+		write(c, bodyInk, c.Min.X+px(8), y, draw.XLeft, clip(bodyInk, r.name, names-px(14)))
+		write(c, bodyInk, c.Max.X, y, draw.XRight, clip(bodyInk, r.figures, figures))
+		b.row(c, &r, y, x)
+	}
+	at := x(b.base)
+	c.StrokeLine2(stroke(axisTone, 1.2), at, field.Min.Y, at, field.Max.Y)
+	b.lines(c, field, markY, x)
+}
+
+func (b *bars) row(c draw.Canvas, r *bar, y vg.Length, x func(float64) vg.Length) {
+	for _, s := range r.spans {
+		from, to := x(min(s.from, s.to)), x(max(s.from, s.to))
+		if math.IsNaN(float64(from + to)) {
+			continue
+		}
+		fill(c, s.tone, vg.Rectangle{Min: vg.Point{X: from, Y: y - barHeight/2}, Max: vg.Point{X: max(to, from+px(0.7)), Y: y + barHeight/2}})
+	}
+	if !math.IsNaN(r.low) && !math.IsNaN(r.high) && r.low < r.high {
+		from, to := x(r.low), x(r.high)
+		line := stroke(inkColor, 1.2)
+		c.StrokeLine2(line, from, y, to, y)
+		c.StrokeLine2(line, from, y-px(3), from, y+px(3))
+		c.StrokeLine2(line, to, y-px(3), to, y+px(3))
+	}
+}
+
+func (b *bars) grid(c draw.Canvas, field vg.Rectangle, x func(float64) vg.Length) {
+	for _, t := range spaced(b.scale.ticks(max(2, int((field.Max.X-field.Min.X)/px(70)))), x) {
+		at := x(t.at)
+		if t.label == "" {
+			continue
+		}
+		c.StrokeLine2(stroke(gridTone, 1), at, field.Min.Y, at, field.Max.Y)
+		c.StrokeLine2(stroke(axisTone, 1), at, field.Min.Y, at, field.Min.Y-tickLength)
+		write(c, smallInk, at, field.Min.Y-tickLength-lineStep(smallInk)/2, draw.XCenter, t.label)
+	}
+	c.StrokeLine2(stroke(axisTone, 1), field.Min.X, field.Min.Y, field.Max.X, field.Min.Y)
+	title := b.scale.titled()
+	write(c, smallInk, max(field.Max.X, c.Min.X+smallInk.Width(title)), field.Min.Y-tickLength-1.5*lineStep(smallInk), draw.XRight, title)
+}
+
+// lines draws the marks with their labels above the field.
+func (b *bars) lines(c draw.Canvas, field vg.Rectangle, markY vg.Length, x func(float64) vg.Length) {
+	end := c.Min.X - px(8)
+	for _, m := range b.marks {
+		at := x(m.x)
+		if !(at >= field.Min.X-1 && at <= field.Max.X+1) {
+			continue
+		}
+		text, line := smallInk, dashed(mutedTone, 1.2)
+		if m.limit {
+			text, line = limitInk, stroke(limitTone, 1.6)
+		}
+		c.StrokeLine2(line, at, field.Min.Y, at, field.Max.Y)
+		half := text.Width(m.label) / 2
+		middle := min(max(at, c.Min.X+half, end+px(8)+half), c.Max.X-half)
+		write(c, text, middle, markY, draw.XCenter, m.label)
+		end = middle + half
+	}
+}
