@@ -48,10 +48,18 @@ func (z *sizer) worstOf(p *parts.Capacitor, bias float64) (left, grown float64) 
 	return left * (1 - capacitanceTol), grown * (1 + seriesTol)
 }
 
+// mostCount is the greatest number of pieces in a bank that anybody would place.
+const mostCount = 1000.0 // [1]
+
 // fill returns the bank with enough pieces for a rated capacitance and a ripple
-// current [A], each piece as small as the series allows.
-func (b *bank) fill(z *sizer, rated, rms, fs float64) parts.Capacitor {
+// current [A], each piece as small as the series allows. field is the target behind
+// the capacitance.
+func (b *bank) fill(z *sizer, rated, rms, fs float64, field string) parts.Capacitor {
 	count := math.Max(1, math.Max(math.Ceil(rated/b.piece.Capacitance*(1-1e-9)), math.Ceil(rms/b.piece.Rating.RippleCurrent)))
+	if !(count <= mostCount) {
+		z.conflict("capacitor-count", math.Min(count, math.MaxFloat32), mostCount, "1", "more of the largest pieces of the kind than a bank holds", field, "load/max_a")
+		count = mostCount
+	}
 	p := b.make.pieceOf(math.Min(b.piece.Capacitance, z.choice.CapacitorSeries.AtLeast(rated/count)), b.piece.Rating.Voltage, fs)
 	p.Count = int(count)
 	return p

@@ -39,6 +39,10 @@ func (z *sizer) budget() {
 	d.Board.OutputPath = math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output/io)
 	z.source = r.SourceResistance + d.Board.InputPath
 
+	if !(z.junction > r.AmbientDegC.Max) {
+		z.conflict("junction-temperature", r.AmbientDegC.Max, z.junction, "Cel", "the ambient alone is as warm as a junction may get", "targets/junction_degc", "ambient/max_degc")
+		return
+	}
 	rating := ratingAtLeast(switchRatings[:], voltageMargin*r.Input.Max)
 	if math.IsNaN(rating) {
 		z.conflict("voltage-rating", voltageMargin*r.Input.Max, switchRatings[len(switchRatings)-1], "V", "no switch is sold for the greatest input voltage with its margin", "input/max_v")

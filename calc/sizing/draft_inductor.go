@@ -43,7 +43,7 @@ func inductorPlaceholder(l, sat, rms, dcr, size, junction float64) parts.Inducto
 			Temp:    table([][2]float64{{25, 1.3}, {90, 1}, {125, 1.1}}, 1),
 			BandLow: 0.7, BandHigh: 1.3,
 		},
-		Rating:  parts.InductorRating{Saturation: sat, Heating: roundUp(currentMargin * rms), WindingDegC: max(125, 5*math.Ceil(junction/5))},
+		Rating:  parts.InductorRating{Saturation: sat, Heating: roundUp(currentMargin * rms), WindingDegC: min(500, max(125, 5*math.Ceil(junction/5)))},
 		Thermal: parts.Thermal{JunctionToAmbient: surfaceRth * math.Sqrt(surfaceVolume/volume)},
 		Assumed: true,
 	}

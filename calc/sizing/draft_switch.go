@@ -56,7 +56,7 @@ func switchPlaceholder(rating, onOhm, mean, junction float64) parts.MOSFET {
 		RecoveryCharge: recoveryProduct * k / onOhm,
 		BodyDiode:      0.85,
 		Rating: parts.MOSFETRating{
-			DrainSource: rating, GateSource: 4 * driveFor(rating), DrainCurrent: roundUp(max(4*mean, 1)), JunctionDegC: max(150, 25*math.Ceil((junction+15)/25)),
+			DrainSource: rating, GateSource: 4 * driveFor(rating), DrainCurrent: roundUp(max(4*mean, 1)), JunctionDegC: junctionRating(junction),
 		},
 		Assumed: true,
 	}
@@ -85,7 +85,7 @@ func diodePlaceholder(rating, rated, junction float64) parts.Diode {
 		Threshold: 0.30 + 0.003*rating, Slope: 0.12 / rated, ThresholdTemp: -1.2e-3,
 		JunctionCharge: 1.1e-9 * rated * math.Sqrt(rating/productVoltage), JunctionAt: rating / 2,
 		Leakage: table([][2]float64{{25, 2.5e-6 * rated}, {75, 5e-5 * rated}, {125, 1e-3 * rated}}, 1),
-		Rating:  parts.DiodeRating{Reverse: rating, Forward: rated, JunctionDegC: max(150, 25*math.Ceil((junction+15)/25))},
+		Rating:  parts.DiodeRating{Reverse: rating, Forward: rated, JunctionDegC: junctionRating(junction)},
 		Assumed: true,
 	}
 	if rating > 200 {
@@ -94,6 +94,11 @@ func diodePlaceholder(rating, rated, junction float64) parts.Diode {
 		d.Leakage = table([][2]float64{{25, 1e-7 * rated}, {75, 3e-6 * rated}, {125, 5e-5 * rated}}, 1)
 	}
 	return d
+}
+
+// junctionRating returns a junction rating above the limit that is designed for.
+func junctionRating(limit float64) float64 {
+	return min(500, max(150, 25*math.Ceil((limit+15)/25)))
 }
 
 // roundUp returns x to two digits, not below x, so that a placeholder's rating

@@ -59,6 +59,30 @@ func (z *sizer) judge() judgement {
 	}
 }
 
+// coolingNeeded returns the thermal resistance that would hold the hottest switch at
+// the junction limit [K/W]: the rise allowed over its loss there, negative where the
+// ambient is already above.
+func (z *sizer) coolingNeeded() float64 {
+	e := evaluate.Prepare(z.draft)
+	p := stage.Point{
+		Input: z.req.Input.Max, SourceResistance: z.req.SourceResistance, Load: stage.Load{Current: z.req.LoadCurrent.Max},
+		AmbientDegC: z.req.AmbientDegC.Max, AgeRatio: 1, PartTemperatureDegC: z.junction, Control: stage.Control{Kind: stage.ByFeedback},
+	}
+	var res evaluate.Result
+	least := math.MaxFloat32
+	for _, p.Input = range [2]float64{z.req.Input.Min, z.req.Input.Max} {
+		if e.Eval(&p, &res); !res.Status.Figures() {
+			continue
+		}
+		for _, part := range [...]losses.Part{losses.HighSide, losses.LowSide, losses.Diode, losses.Controller} {
+			if w := res.Losses.Of(part); w > 0 {
+				least = math.Min(least, (z.junction-p.AmbientDegC)/w)
+			}
+		}
+	}
+	return least
+}
+
 // lossyCorners evaluates the draft at the greatest load over input range, ambient
 // and both ends of the frequency, and takes the worst; degC receives the greatest
 // temperature of each part, NaN for parts the stage has not.
@@ -150,7 +174,8 @@ func (j judgement) better(than judgement) bool {
 // conflicts records the targets that no effort reached.
 func (j judgement) conflicts(z *sizer) {
 	if !j.works {
-		z.conflict("thermal-runaway", z.junction, math.Inf(1), "Cel", "with the best cooling considered there is no thermal equilibrium at the greatest load", "ambient/max_degc", "load/max_a")
+		needed := z.coolingNeeded()
+		z.conflict("thermal-runaway", needed, coolings[len(coolings)-1], "K/W", "with the best cooling considered there is no thermal equilibrium at the greatest load", "ambient/max_degc", "load/max_a")
 		return
 	}
 	if e := z.req.Targets.Efficiency; known(e) && j.efficiency < e {

@@ -33,6 +33,7 @@ func (z *sizer) life() {
 			}
 			if available < z.want.Life {
 				z.conflict("capacitor-life", z.want.Life, available, "s", "the longest endurance sold does not last at the greatest ambient", "targets/life_s", "ambient/max_degc")
+				return
 			}
 		}
 	}

@@ -1,6 +1,7 @@
 package sizing
 
 import (
+	"errors"
 	"math"
 
 	"railproof/calc/stage"
@@ -47,6 +48,9 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 		if z.failed() {
 			if best == nil || best.failed() {
 				best = z // of failures the last: it has the least drops
+			}
+			if z.hopeless() {
+				break
 			}
 			continue
 		}
@@ -99,7 +103,17 @@ func (z *sizer) run() {
 	z.life()
 	z.spreads()
 	z.conditions()
-	z.ans.Stage = z.draft
+	z.inRange()
+}
+
+// inRange records a placeholder that would lie outside what the contract takes for a
+// part, which happens at absurd powers, voltages or frequencies.
+func (z *sizer) inRange() {
+	var invalid *stage.InvalidError
+	if errors.As(z.draft.Check(), &invalid) {
+		f := invalid.Faults[0]
+		z.conflict("part-range", f.Given, f.Limit, "1", "no such part: "+f.Field+" of the draft would be "+f.Detail, "load/max_a", "input/max_v", "switching_frequency_hz")
+	}
 }
 
 // inductor sizes the inductor; where no winding keeps within the budget the drops

@@ -107,5 +107,17 @@ func (z *sizer) conflict(constraint string, needed, available float64, unit, det
 	z.ans.Conflicts = append(z.ans.Conflicts, Conflict{Fields: fields, Constraint: constraint, Needed: needed, Available: available, Unit: unit, Detail: detail})
 }
 
+// hopeless reports whether a conflict was found that other resistances do not mend.
+func (z *sizer) hopeless() bool {
+	for _, c := range z.ans.Conflicts {
+		switch c.Constraint {
+		case "greatest-duty", "least-on-time", "source-power", "output-tolerance", "hold-up", "inductance":
+		default:
+			return true
+		}
+	}
+	return false
+}
+
 // failed reports whether a conflict was found.
 func (z *sizer) failed() bool { return len(z.ans.Conflicts) > 0 }

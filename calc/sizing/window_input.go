@@ -43,10 +43,14 @@ func (z *sizer) input() {
 		return i.RMS()
 	})
 	d := z.draft
-	d.InputCapacitors = []parts.Capacitor{b.fill(z, bound.Part, z.inputRMS*currentMargin, z.fs)}
+	d.InputCapacitors = []parts.Capacitor{b.fill(z, bound.Part, z.inputRMS*currentMargin, z.fs, bound.Field)}
 	filled := &d.InputCapacitors[0]
 	w := Window{Name: "input_capacitance_f", Unit: "F", Series: z.choice.CapacitorSeries, Preferred: filled.Capacitance, Count: filled.Count, Chosen: b.least(filled), Bounds: []Bound{bound}}
-	z.ans.Windows = append(z.ans.Windows, w, z.inputResistance(&b, filled, &c))
+	z.ans.Windows = append(z.ans.Windows, w)
+	if z.failed() {
+		return
+	}
+	z.ans.Windows = append(z.ans.Windows, z.inputResistance(&b, filled, &c))
 }
 
 // inputFormula gives the charge in symbols where both extremes lie on the edges of

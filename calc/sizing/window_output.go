@@ -27,10 +27,7 @@ func (z *sizer) output() {
 		return
 	}
 	carrier := &first
-	need := ripple.Part
-	for _, b := range slow {
-		need = math.Max(need, b.Part)
-	}
+	need, field := neediest(&ripple, slow)
 	_, most := z.worst(bothLoads, func(c *corner) float64 {
 		v, p := z.swing(c)
 		s, _ := z.summed(c, p-v)
@@ -45,13 +42,10 @@ func (z *sizer) output() {
 		}
 	}
 	if carrier == &first {
-		d.OutputCapacitors = []parts.Capacitor{first.fill(z, need, rms, fsum)}
+		d.OutputCapacitors = []parts.Capacitor{first.fill(z, need, rms, fsum, field)}
 	} else {
-		need = 0
-		for _, b := range slow {
-			need = math.Max(need, b.Part)
-		}
-		d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum), carrier.fill(z, need, 0, fsum)}
+		need, field = neediest(&Bound{}, slow)
+		d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum, ripple.Field), carrier.fill(z, need, 0, fsum, field)}
 	}
 	for _, b := range slow {
 		w.Bounds = append(w.Bounds, b.Bound)
@@ -61,8 +55,24 @@ func (z *sizer) output() {
 	if carrier != &first {
 		w.Chosen += carrier.least(&d.OutputCapacitors[1])
 	}
-	z.ans.Windows = append(z.ans.Windows, w, z.seriesResistance(&first, carrier, slow, ripple, sum, rising))
+	z.ans.Windows = append(z.ans.Windows, w)
+	if z.failed() {
+		return
+	}
+	z.ans.Windows = append(z.ans.Windows, z.seriesResistance(&first, carrier, slow, ripple, sum, rising))
 	z.outputRMS = rms
+}
+
+// neediest returns the greatest rated capacitance that the bounds ask for, and the
+// target behind it.
+func neediest(ripple *Bound, slow []chargeBound) (rated float64, field string) {
+	rated, field = ripple.Part, ripple.Field
+	for i := range slow {
+		if slow[i].Part > rated {
+			rated, field = slow[i].Part, slow[i].Field
+		}
+	}
+	return rated, field
 }
 
 // bulk returns the second kind of bank for the voltage: polymer where it is made
