@@ -43,6 +43,7 @@ type Body struct {
 	When  Predicate // nil: always
 	Value Number
 	Limit Number
+	Reads []string // names of the facts that value and limit may look up
 }
 
 // Rule compares a value with a limit.

@@ -361,3 +361,22 @@ func TestComparePairsByRuleAndPlace(t *testing.T) {
 	}
 	require.Equal(t, []ChangeKind{Unchanged, VerdictChanged, Unchanged, Appeared, Disappeared}, kinds)
 }
+
+func TestNeedsNamesWhatRulesRead(t *testing.T) {
+	read := func(scope Scope, when Predicate, names ...string) *Pack {
+		return &Pack{Rules: []Rule{{Bodies: []Body{{Scope: scope, When: when, Reads: names}}}}}
+	}
+	c := testCase()
+	d := Needs(c, []*Pack{
+		read(OverInductor, nil, "greatest.inductor_rms_a", "part.rating.heating_a", "nominal.inductor_rms_a"),
+		read(OverOutputCapacitors, nil, "greatest.output_capacitor_rms_a", "greatest.inductor_rms_a"),
+		read(OverDiode, nil, "greatest.diode_junction_degc"),
+		read(OverStage, func(l *Look) bool { return l.Number("requirement.output.voltage_v") > 100 }, "least.load_v"),
+		read(OverStage, func(l *Look) bool { return l.Number("greatest.load_v") > 100 }, "full_load_least.efficiency_ratio"),
+	})
+	require.Equal(t, Demand{
+		Nominal:       []quantity.ID{quantity.InductorRMS},
+		Greatest:      []quantity.ID{quantity.InductorRMS, quantity.OutputCapacitorRMS, quantity.OutputCapacitorRMS + 1},
+		FullLoadLeast: []quantity.ID{quantity.Efficiency},
+	}, d)
+}

@@ -223,3 +223,36 @@ func TestAMissingQuantityNeverPasses(t *testing.T) {
 	})
 	require.Greater(t, touched, 50)
 }
+
+// What Needs leaves out must make no difference to any verdict.
+func TestNeedsIsEnough(t *testing.T) {
+	rectifiers(func(kind stage.Rectifier) {
+		c := fullCase(kind)
+		want := rules.Check(c, allBuiltin(), nil, rules.Date{})
+		d := rules.Needs(c, allBuiltin())
+		keep := func(all map[quantity.ID]rules.Extreme, least, greatest []quantity.ID) map[quantity.ID]rules.Extreme {
+			out := map[quantity.ID]rules.Extreme{}
+			for id, e := range all {
+				if !slices.Contains(least, id) {
+					e.Least.Value = unknown
+				}
+				if !slices.Contains(greatest, id) {
+					e.Greatest.Value = unknown
+				}
+				out[id] = e
+			}
+			return out
+		}
+		c.Extremes, c.FullLoad = keep(c.Extremes, d.Least, d.Greatest), keep(c.FullLoad, d.FullLoadLeast, d.FullLoadGreatest)
+		for id := range c.Nominal {
+			if !slices.Contains(d.Nominal, quantity.ID(id)) {
+				c.Nominal[id] = unknown
+			}
+		}
+		require.Equal(t, want.Verdict, rules.Check(c, allBuiltin(), nil, rules.Date{}).Verdict)
+		for i, f := range rules.Check(c, allBuiltin(), nil, rules.Date{}).Findings {
+			require.Equal(t, want.Findings[i].Verdict, f.Verdict, "%s: %s", f.Rule, f.Detail)
+		}
+		require.Less(t, len(d.Least)+len(d.Greatest)+len(d.Nominal), 60)
+	})
+}

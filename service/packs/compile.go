@@ -137,6 +137,7 @@ func (c *compiler) rule(pack string, d *RuleDocument, at string) rules.Rule {
 		value, bound := c.expression(at+"/value", string(d.Value), scope, unit), c.expression(limitAt, string(limit), scope, unit)
 		if value != nil && bound != nil {
 			body.Value, body.Limit = value.number, bound.number
+			body.Reads = slices.Concat(value.reads, bound.reads)
 		}
 		known := environmentOf(scope).names
 		for j, need := range d.Needs {

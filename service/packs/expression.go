@@ -17,6 +17,7 @@ type expression struct {
 	program cel.Program
 	names   map[string]rules.Name
 	dim     dimension
+	reads   []string // facts that the text names, in its order
 }
 
 // compile checks a text in an environment: names, types and dimensions.
@@ -28,7 +29,8 @@ func compile(text string, e *environment) (*expression, error) {
 	if issues.Err() != nil {
 		return nil, firstIssue(issues)
 	}
-	if err := knownNames(parsed.NativeRep(), e.names); err != nil {
+	reads, err := knownNames(parsed.NativeRep(), e.names)
+	if err != nil {
 		return nil, err
 	}
 	wholeNumbersToDoubles(parsed.NativeRep().Expr())
@@ -44,7 +46,7 @@ func compile(text string, e *environment) (*expression, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &expression{program, e.names, dim}, nil
+	return &expression{program, e.names, dim, reads}, nil
 }
 
 // wholeNumbersToDoubles lets a pack write 2 where it means 2.0: facts are all
@@ -74,9 +76,10 @@ func firstIssue(issues *cel.Issues) error {
 	return fmt.Errorf("column %d: %s", first.Location.Column()+1, first.Message)
 }
 
-// knownNames refuses the first name that the scope does not have, with the
-// nearest one that it has.
-func knownNames(tree *ast.AST, names map[string]rules.Name) error {
+// knownNames lists the facts that an expression names. It refuses the first that
+// the scope does not have, with the nearest one that it has.
+func knownNames(tree *ast.AST, names map[string]rules.Name) ([]string, error) {
+	var reads []string
 	var walk func(e ast.Expr) error
 	walk = func(e ast.Expr) error {
 		switch e.Kind() {
@@ -96,13 +99,15 @@ func knownNames(tree *ast.AST, names map[string]rules.Name) error {
 			}
 			key := strings.TrimPrefix(dotted(e), presence)
 			if _, ok := names[key]; ok {
+				reads = append(reads, key)
 				return nil
 			}
 			return fmt.Errorf("column %d: %s is not a name here%s", column(tree, e), key, suggestion(key, names))
 		}
 		return nil
 	}
-	return walk(tree.Expr())
+	err := walk(tree.Expr())
+	return reads, err
 }
 
 // isName reports whether an expression is a name, plain or dotted.
