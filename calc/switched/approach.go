@@ -11,6 +11,9 @@ import "math"
 //
 // Where a step does not serve (a limit of the duty ratio, a change of mode,
 // several phases) Approach is Regulated and returns 0.
+//
+// Approach leaves OutputMin and OutputMax to OutputRange, which serves once at
+// the end.
 func (s *Solver) Approach(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) (change float64) {
 	if c.Phases == 1 && c.Legs == nil {
 		if sol.Leg.Mode == Continuous {
@@ -28,6 +31,19 @@ func (s *Solver) Approach(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol
 	}
 	s.Regulated(c, vout, dutyLeast, dutyGreatest, sol)
 	return 0
+}
+
+// OutputRange writes the range of the output voltage of the solution that this
+// Solver found last, if it is sol.
+func (s *Solver) OutputRange(sol *Solution) {
+	if s.closed {
+		s.fast.outputRange(sol)
+		return
+	}
+	if s.count > 0 && sol.Status != NotConverged {
+		out := s.nodeRange()
+		sol.OutputMin, sol.OutputMax = s.ref.node+out.least, s.ref.node+out.most
+	}
 }
 
 // approachContinuous takes the duty ratio from the volt-second balance with the
@@ -58,7 +74,11 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 			return 0, false
 		}
 		s.closed = false
-		s.finish(c, Solved, sol)
+		sol.clear(Solved, s.rounds, s.duty)
+		s.measure(c, sol, nil)
+		if !(sol.EnergyBalance <= solvedBalance && sol.OutputMean > 0) {
+			return 0, false
+		}
 	}
 	if sol.Status != Solved {
 		return 0, false

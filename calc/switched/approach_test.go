@@ -26,6 +26,7 @@ func TestApproachReachesRegulated(t *testing.T) {
 				change = s.Approach(c, 5, 0.01, 0.95, &sol)
 				steps++
 			}
+			s.OutputRange(&sol)
 			if steps > 4 {
 				t.Errorf("%d steps", steps)
 			}

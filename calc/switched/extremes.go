@@ -1,5 +1,7 @@
 package switched
 
+import "math"
+
 // watch is a sum over the states whose range over an interval is sought.
 type watch struct {
 	w    vec
@@ -14,26 +16,24 @@ func (wt *watch) of(x *vec, n int) float64 {
 	return dot(&wt.w, x, n)
 }
 
-// extremes widens the range of every conducting current and of the output node
-// by what they reach in interval k.
+// extremes widens the range of every conducting current by what it reaches in
+// interval k, and that of the output node if out is given.
 func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *extent) {
 	nw := &s.nw
 	v := &s.iv[k]
-	s.watches[0].only = -1
-	for i := range nw.phases + nw.banks {
-		s.watches[0].w[i] = s.weight(i)
-	}
-	count := 1
+	count := 0
 	for j := range nw.phases {
 		if v.top.pos[j] != Resting {
 			s.watches[count].only = j
 			count++
 		}
 	}
+	if out != nil {
+		s.watchNode(count)
+		count++
+	}
 	s.scan(k, rate, count)
-	out.add(s.watches[0].span.least)
-	out.add(s.watches[0].span.most)
-	count = 1
+	count = 0
 	for j := range nw.phases {
 		if v.top.pos[j] != Resting {
 			e := &s.watches[count].span
@@ -43,6 +43,35 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 			count++
 		}
 	}
+	if out != nil {
+		e := &s.watches[count].span
+		out.add(e.least)
+		out.add(e.most)
+	}
+}
+
+// watchNode makes watch i that of the output node.
+func (s *Solver) watchNode(i int) {
+	s.watches[i] = watch{only: -1}
+	for j := range s.nw.phases + s.nw.banks {
+		s.watches[i].w[j] = s.weight(j)
+	}
+}
+
+// nodeRange returns the range of the node's deviation over the periodic state.
+func (s *Solver) nodeRange() extent {
+	out := extent{math.Inf(1), math.Inf(-1)}
+	s.watchNode(0)
+	for k := range s.count {
+		v, ld := &s.iv[k], s.rungs(k)
+		rate := &s.moments.y0
+		v.top.slope(&s.nw, &v.start, rate)
+		s.work.set(ld, &v.top, ld.cell, &v.start, rate, s.nw.n)
+		s.scan(k, rate, 1)
+		out.add(s.watches[0].span.least)
+		out.add(s.watches[0].span.most)
+	}
+	return out
 }
 
 // scan finds the ranges of the first count watches over interval k, which starts
@@ -50,8 +79,8 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 //
 // The rates are followed on a mesh that starts at the first rung and widens with
 // the distance from the edge, as the stiff modes die away. Where a rate changes
-// sign the step is halved by the rungs below it until the Taylor cell is
-// reached, whose polynomial gives the extreme.
+// sign the step is halved by the rungs below it down to the first, over which a
+// Taylor cell gives the extreme.
 func (s *Solver) scan(k int, rate *vec, count int) {
 	n := s.nw.n
 	v := &s.iv[k]
@@ -94,7 +123,7 @@ func (s *Solver) scan(k int, rate *vec, count int) {
 // at first rungs with rate y.
 func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 	n := s.nw.n
-	for ; m > ld.cell; m-- {
+	for ; m > 0; m-- {
 		ym := y
 		ld.stepRate(m-1, &y, &ym, n)
 		if (wt.of(&y, n) < 0) == (wt.of(&ym, n) < 0) {

@@ -78,6 +78,10 @@ func multiply4(c, a, b *[16]float64) {
 // congruent adds E M Eᵀ to the symmetric matrix M; t is work space.
 func congruent(e, m, t *square, n int) {
 	multiply(t, e, m, n)
+	if n == 4 {
+		congruent4((*[16]float64)(m[:]), (*[16]float64)(t[:]), (*[16]float64)(e[:]))
+		return
+	}
 	for i := range n {
 		left := t[i*n : i*n+n]
 		for j := 0; j <= i; j++ {
@@ -88,6 +92,17 @@ func congruent(e, m, t *square, n int) {
 			m[i*n+j] += acc
 			m[j*n+i] = m[i*n+j]
 		}
+	}
+}
+
+// congruent4 adds t eᵀ to m.
+func congruent4(m, t, e *[16]float64) {
+	for i := 0; i < 4; i++ {
+		x, y, z, w := t[4*i], t[4*i+1], t[4*i+2], t[4*i+3]
+		m[4*i] += x*e[0] + y*e[1] + z*e[2] + w*e[3]
+		m[4*i+1] += x*e[4] + y*e[5] + z*e[6] + w*e[7]
+		m[4*i+2] += x*e[8] + y*e[9] + z*e[10] + w*e[11]
+		m[4*i+3] += x*e[12] + y*e[13] + z*e[14] + w*e[15]
 	}
 }
 

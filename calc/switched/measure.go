@@ -17,14 +17,14 @@ type legTally struct {
 	discontinous bool
 }
 
-// measure writes the figures of the periodic state found.
-func (s *Solver) measure(c *Circuit, sol *Solution) {
+// measure writes the figures of the periodic state found, but for the range of
+// the output, which it leaves in out if given.
+func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 	nw, n := &s.nw, s.nw.n
 	var legs [MaxPhases]legTally
 	for p := range legs {
 		legs[p].span = extent{math.Inf(1), math.Inf(-1)}
 	}
-	out := extent{math.Inf(1), math.Inf(-1)}
 	var input tally
 	var nodeArea, nodeSquare float64
 	var bankSquare [MaxBanks]float64
@@ -93,11 +93,11 @@ func (s *Solver) measure(c *Circuit, sol *Solution) {
 			at := nw.phases + b
 			bankSquare[b] += nw.capacitance[b] * nw.capacitance[b] * m.y[at*n+at]
 		}
-		s.extremes(k, &m.y0, &legs, &out)
+		s.extremes(k, &m.y0, &legs, out)
 	}
 	s.feeds = s.count
 	solved := s.horizon * c.Period
-	s.report(c, sol, &legs, &input, &out)
+	s.report(c, sol, &legs, &input)
 	mean := nodeArea / solved
 	vo := s.ref.node + mean
 	sol.OutputMean = vo
@@ -144,13 +144,11 @@ func (s *Solver) legOf(j int) int {
 	return j
 }
 
-// report fills the legs, the input and the output range.
-func (s *Solver) report(c *Circuit, sol *Solution, legs *[MaxPhases]legTally, input *tally, out *extent) {
+// report fills the legs and the input.
+func (s *Solver) report(c *Circuit, sol *Solution, legs *[MaxPhases]legTally, input *tally) {
 	sol.Duty = s.duty
 	sol.Residual = s.closure
 	sol.Iterations = s.rounds
-	sol.OutputMin = s.ref.node + out.least
-	sol.OutputMax = s.ref.node + out.most
 	count := 1
 	if c.Legs != nil {
 		count = c.Phases

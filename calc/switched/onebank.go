@@ -166,24 +166,14 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 		j1, j2 = alpha*(j1-g*v1), alpha*(j2-g*v2)
 		j = w1*(j1*j1+ob.spread(on, alpha, -alpha*g)) + w2*(j2*j2+ob.spread(off, alpha, -alpha*g))
 	}
-	node := between(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)
-	ob.combine(on, rho, alpha)
-	ob.mix.extremes(on.order, &node)
 	variance := 0.0
 	if g != 0 {
-		variance = w1 * ((o1-mean)*(o1-mean) + ob.mix.spread(on.order))
-	}
-	ob.combine(off, rho, alpha)
-	ob.mix.extremes(off.order, &node)
-	if g != 0 {
-		variance += w2 * ((o2-mean)*(o2-mean) + ob.mix.spread(off.order))
+		variance = w1*((o1-mean)*(o1-mean)+ob.spread(on, rho, alpha)) + w2*((o2-mean)*(o2-mean)+ob.spread(off, rho, alpha))
 	}
 	sol.BankMean[0] = ob.v + w1*v1 + w2*v2
 	if ob.t3 > 0 {
 		r, w3 := &ob.rest, ob.t3*perT
 		swing.add(0)
-		node.add(alpha * r.start)
-		node.add(alpha * (r.start + r.change))
 		part := alpha*r.mean - mean
 		variance += w3 * (part*part + alpha*alpha*r.variance)
 		j += w3 * r.square
@@ -192,7 +182,6 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	ls.Valley, ls.Peak = ob.i+swing.least, ob.i+swing.most
 	sol.BankRMS[0] = math.Sqrt(j)
 	sol.OutputMean = ob.node + mean
-	sol.OutputMin, sol.OutputMax = ob.node+node.least, ob.node+node.most
 	sol.Duty = ob.duty
 	sol.InputMean, sol.InputRMS = ls.HighSide.Mean, ls.HighSide.RMS
 	sol.InputPower = c.Vin * sol.InputMean
@@ -206,6 +195,22 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	if !(sol.OutputMean > 0) {
 		sol.Status = NoOperatingPoint
 	}
+}
+
+// outputRange writes the extremes of the node, at edges or inside.
+func (ob *oneBank) outputRange(sol *Solution) {
+	alpha, rho := ob.alpha, ob.rho
+	on, off := &ob.on, &ob.off
+	node := between(alpha*on.v0+rho*on.i0, alpha*off.v0+rho*off.i0)
+	ob.combine(on, rho, alpha)
+	ob.mix.extremes(on.order, &node)
+	ob.combine(off, rho, alpha)
+	ob.mix.extremes(off.order, &node)
+	if ob.t3 > 0 {
+		node.add(alpha * ob.rest.start)
+		node.add(alpha * (ob.rest.start + ob.rest.change))
+	}
+	sol.OutputMin, sol.OutputMax = ob.node+node.least, ob.node+node.most
 }
 
 // combine forms the series a ι + b ν.

@@ -202,6 +202,7 @@ func TestClosedFormAgainstGeneral(t *testing.T) {
 		if s.fast.set(c); !s.fast.fixed(c, d, &a) || a.Status != Solved {
 			continue
 		}
+		s.fast.outputRange(&a)
 		s.prepare(c)
 		s.finish(c, s.settle(c, d, false), &b)
 		if b.Status != Solved {

@@ -3,9 +3,10 @@ package switched
 import "math"
 
 const (
-	maxSearch    = 60
-	outputReach  = 1e-13 // [1] regulated mean output: sought deviation from its target
-	outputAccept = 1e-11 // [1] accepted one, when rounding stops the search
+	maxSearch     = 60
+	outputReach   = 1e-13 // [1] regulated mean output: sought deviation from its target
+	outputAccept  = 1e-11 // [1] accepted one, when rounding stops the search
+	solvedBalance = 1e-6  // [1] energy balance beyond which an answer is none
 )
 
 // FixedDuty solves the circuit with the high side on for the fraction duty of
@@ -13,6 +14,7 @@ const (
 func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 	if s.fast.takes(c) && s.fast.fixed(c, duty, sol) {
 		s.closed, s.feeds = true, 0
+		s.fast.outputRange(sol)
 		return
 	}
 	s.closed, s.rounds = false, 0
@@ -29,6 +31,7 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) {
 	if s.fast.takes(c) && s.fast.regulated(c, vout, dutyLeast, dutyGreatest, sol) {
 		s.closed, s.feeds = true, 0
+		s.fast.outputRange(sol)
 		return
 	}
 	s.closed, s.rounds = false, 0
@@ -43,6 +46,11 @@ func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, so
 		return
 	}
 	s.finish(c, s.regulate(c, vout, dutyLeast, dutyGreatest), sol)
+}
+
+// clear empties the solution.
+func (sol *Solution) clear(status Status, rounds int, duty float64) {
+	*sol = Solution{Status: status, Iterations: rounds, Duty: duty}
 }
 
 // idle tells that nothing takes charge from the output: no load, and no
@@ -70,7 +78,7 @@ func (s *Solver) standStill(c *Circuit, duty float64, status Status, sol *Soluti
 		}
 	}
 	s.feed[0] = feed{t: c.Period}
-	s.feeds = 1
+	s.feeds, s.count = 1, 0
 	if !(c.Vin > 0 && c.Vin < math.MaxFloat64) {
 		sol.Status = NotConverged
 	}
@@ -78,13 +86,16 @@ func (s *Solver) standStill(c *Circuit, duty float64, status Status, sol *Soluti
 
 // finish measures the state and checks the answer itself.
 func (s *Solver) finish(c *Circuit, status Status, sol *Solution) {
-	*sol = Solution{Status: status, Iterations: s.rounds, Duty: s.duty}
+	sol.clear(status, s.rounds, s.duty)
 	if status == NotConverged {
 		return
 	}
-	s.measure(c, sol)
+	out := extent{math.Inf(1), math.Inf(-1)}
+	s.measure(c, sol, &out)
+	sol.OutputMin = s.ref.node + out.least
+	sol.OutputMax = s.ref.node + out.most
 	switch {
-	case !(sol.EnergyBalance <= 1e-6 && sol.OutputMax < math.MaxFloat64 && sol.Leg.Peak < math.MaxFloat64):
+	case !(sol.EnergyBalance <= solvedBalance && sol.OutputMax < math.MaxFloat64 && sol.Leg.Peak < math.MaxFloat64):
 		sol.Status = NotConverged
 	case sol.OutputMean <= 0:
 		sol.Status = NoOperatingPoint
