@@ -23,6 +23,9 @@ const (
 	// temperatureTolerance is the change [K] of the last Newton step, half of the
 	// thousandth of a kelvin that is promised.
 	temperatureTolerance = 5e-4
+	// dutyTolerance is the relative step of the duty ratio at which the output is
+	// regulated.
+	dutyTolerance = 1e-9
 	// circuitTolerance is the relative change of inductance and bridge voltage at
 	// which the circuit is the one that its own currents ask for.
 	circuitTolerance = 1e-8
@@ -111,10 +114,11 @@ func (e *Evaluator) iterate(o *operating) Status {
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
 		e.limitDuty(o)
+		dutyChange := 0.0
 		if o.duty >= 0 {
 			e.solver.FixedDuty(&e.circuit, o.duty, &e.solution)
 		} else {
-			e.solver.Regulated(&e.circuit, o.output, o.least, o.most, &e.solution)
+			dutyChange = e.solver.Approach(&e.circuit, o.output, o.least, o.most, &e.solution)
 		}
 		status := fromSwitched(e.solution.Status)
 		if status == NoOperatingPoint || status == NotConverged {
@@ -128,7 +132,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 		if runaway {
 			return Runaway
 		}
-		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
+		if dutyChange <= dutyTolerance && circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
 			return e.settled(o, status)
 		}
