@@ -134,6 +134,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 		}
 		if dutyChange <= dutyTolerance && circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
+			e.solver.OutputRange(&e.solution)
 			return e.settled(o, status)
 		}
 	}
