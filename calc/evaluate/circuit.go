@@ -20,21 +20,21 @@ func (e *Evaluator) setLoad(l stage.Load, copper float64) {
 
 // setCircuit gives every element of the circuit its value at the parts' present
 // temperatures, the bias voltages and the present inductance.
-func (e *Evaluator) setCircuit(bridge, output, ageRatio, copper float64) {
+func (e *Evaluator) setCircuit(bridge, output, copper float64) {
 	s, c := e.stage, &e.circuit
 	c.Vin = bridge
 	c.Period = 1 / s.SwitchingFrequency
 	c.Phases = s.PhaseCount
 	leg := &c.Leg
 	leg.L = e.inductance[0]
-	rhs, _ := s.HighSide.OnResistanceAt(e.degC[losses.HighSide], s.Controller.Drive)
+	hot, _ := s.HighSide.OnMultiplierAt(e.degC[losses.HighSide])
 	rw, _ := s.Inductor.DCResistanceAt(e.degC[losses.Inductor])
-	leg.HighSide = rhs
+	leg.HighSide = e.base.highSide * hot
 	leg.Winding = rw + s.Board.SwitchNodePath*copper
 	leg.Rectifier.Blocks = s.Rectifier != stage.Synchronous
 	if e.synchronous() {
-		rls, _ := s.LowSide.OnResistanceAt(e.degC[losses.LowSide], s.Controller.Drive)
-		leg.Rectifier.Threshold, leg.Rectifier.Slope = 0, rls
+		hot, _ := s.LowSide.OnMultiplierAt(e.degC[losses.LowSide])
+		leg.Rectifier.Threshold, leg.Rectifier.Slope = 0, e.base.lowSide*hot
 	} else {
 		vt, _ := s.Diode.ThresholdAt(e.degC[losses.Diode])
 		leg.Rectifier.Threshold, leg.Rectifier.Slope = vt, s.Diode.Slope
@@ -45,10 +45,10 @@ func (e *Evaluator) setCircuit(bridge, output, ageRatio, copper float64) {
 	}
 	c.Banks = len(s.OutputCapacitors)
 	for k := range s.OutputCapacitors {
-		c.Bank[k] = bankAt(&s.OutputCapacitors[k], output, e.degC[int(losses.OutputCapacitor)+k], ageRatio)
+		c.Bank[k] = e.base.output[k].at(&s.OutputCapacitors[k], output, e.degC[int(losses.OutputCapacitor)+k])
 	}
 	for k := range s.InputCapacitors {
-		e.inputBank[k] = bankAt(&s.InputCapacitors[k], bridge, e.degC[int(losses.InputCapacitor)+k], ageRatio)
+		e.inputBank[k] = e.base.input[k].at(&s.InputCapacitors[k], bridge, e.degC[int(losses.InputCapacitor)+k])
 	}
 }
 
@@ -77,7 +77,35 @@ func (e *Evaluator) setLegs() {
 	c.Legs = &e.legs
 }
 
-func bankAt(c *parts.Capacitor, bias, degC, ageRatio float64) switched.Bank {
-	esr, _ := c.ESRAt(degC, ageRatio)
-	return switched.Bank{C: c.CapacitanceAt(bias, degC, ageRatio), ESR: esr}
+// base holds what drive voltage and age make of the parts: constant within a
+// point.
+type base struct {
+	highSide, lowSide float64 // [ohm] at 25 degC
+	output, input     [switched.MaxBanks]baseBank
+}
+
+// baseBank is a bank without bias at 25 degC.
+type baseBank struct {
+	c, esr float64 // [F], [ohm]
+}
+
+func (b *baseBank) at(c *parts.Capacitor, bias, degC float64) switched.Bank {
+	hot, _ := c.ESRMultiplierAt(degC)
+	return switched.Bank{C: b.c * c.CapacitanceMultiplierAt(bias, degC), ESR: b.esr * hot}
+}
+
+func (e *Evaluator) setBase(ageRatio float64) {
+	s, b := e.stage, &e.base
+	b.highSide = s.HighSide.OnResistanceDriven(s.Controller.Drive)
+	if e.synchronous() {
+		b.lowSide = s.LowSide.OnResistanceDriven(s.Controller.Drive)
+	}
+	for k := range s.OutputCapacitors {
+		c := &s.OutputCapacitors[k]
+		b.output[k] = baseBank{c.CapacitanceAged(ageRatio), c.ESRAged(ageRatio)}
+	}
+	for k := range s.InputCapacitors {
+		c := &s.InputCapacitors[k]
+		b.input[k] = baseBank{c.CapacitanceAged(ageRatio), c.ESRAged(ageRatio)}
+	}
 }

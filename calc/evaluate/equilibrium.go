@@ -76,6 +76,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		e.degC[i] = start
 	}
 	e.setLoad(p.Load, o.copper)
+	e.setBase(p.AgeRatio)
 	o.path = p.SourceResistance + s.Board.InputPath*o.copper
 	switch p.Control.Kind {
 	case stage.RegulateTo:
@@ -102,7 +103,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 func (e *Evaluator) iterate(o *operating) Status {
 	cold := e.degC
 	for range startPasses {
-		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
+		e.setCircuit(o.bridge, o.output, o.copper)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
 		e.shareStart()
@@ -112,7 +113,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 		}
 	}
 	for range maxPasses {
-		e.setCircuit(o.bridge, o.output, o.point.AgeRatio, o.copper)
+		e.setCircuit(o.bridge, o.output, o.copper)
 		e.limitDuty(o)
 		dutyChange := 0.0
 		if o.duty >= 0 {

@@ -23,6 +23,7 @@ type Evaluator struct {
 	solution  switched.Solution
 	operation losses.Operation
 	inputBank [switched.MaxBanks]switched.Bank
+	base      base
 
 	degC, power, slope thermal.Vector
 	feedback           float64                     // [1] gain of the loop from temperature to loss and back
