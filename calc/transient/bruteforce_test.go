@@ -155,7 +155,6 @@ func TestLargeStepsAgainstPlainIntegration(t *testing.T) {
 			o := e.Result().Outcomes[1]
 			x := plain{p: &p, b: b, load: c.from, vref: p.Feedback.Reference}
 			least, greatest, peak := x.run(s, at, c.to, setup.Duration)
-			t.Logf("least %.6g greatest %.6g peak %.6g clamped %.3g limited %d", least, greatest, peak, o.Clamped, o.Limited)
 			// The plain integration sees edges on its own grid, 1/4000 of a period.
 			scale := greatest - least
 			require.InDelta(t, least, o.Lowest.Value, 5e-3*scale)

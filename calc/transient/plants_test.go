@@ -74,14 +74,3 @@ func run(t testing.TB, s *Setup) (*Engine, Result) {
 	}
 	return e, e.Result()
 }
-
-func TestLoadStepOfVoltageMode(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
-	s := Setup{
-		Plant: p, Bounds: bounds(&p), Duration: 1e-3, Band: 0.025, Saturation: 12,
-		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3, Slew: 1e6}}, Record: Record{Points: 500},
-	}
-	_, r := run(t, &s)
-	require.Equal(t, Finished, r.Status)
-	t.Logf("%+v", r)
-}

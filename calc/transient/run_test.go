@@ -1,0 +1,255 @@
+package transient
+
+import (
+	"math"
+	"testing"
+
+	"github.com/stretchr/testify/require"
+
+	"railproof/calc/loop"
+	"railproof/calc/parts"
+	"railproof/calc/stage"
+	"railproof/calc/switched"
+)
+
+// atLoad moves the plant to another constant-current load.
+func atLoad(t testing.TB, p loop.Plant, current float64) loop.Plant {
+	c := p.Circuit
+	c.Current = current
+	return solved(t, c, 5, p.Modulator, p.Compensator)
+}
+
+func TestSettledStateIsTheSteadyState(t *testing.T) {
+	for name, p := range stages(t) {
+		t.Run(name, func(t *testing.T) {
+			period := p.Circuit.Period
+			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 6000 * period, Band: 0.02, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 10.37 * period, Change: 0.5 * p.Circuit.Current, Slew: 1e6}}}
+			_, r := run(t, &setup)
+			require.Equal(t, Finished, r.Status)
+			require.True(t, r.Settled, "change %g", r.FinalChange)
+			require.False(t, r.Alternates)
+			c := p.Circuit
+			c.Current *= 1.5
+			var solver switched.Solver
+			var s switched.Solution
+			solver.Regulated(&c, 5, 0, 1, &s)
+			require.True(t, s.Status.OK())
+			require.InEpsilon(t, 5, r.StartMean, 1e-5, "an amplifier of finite gain leaves a small error")
+			tolerance := 1e-6
+			if gain := p.Compensator.OpenLoopGain; gain > 0 && !math.IsInf(gain, 1) {
+				// It regulates the load to the change of control voltage over gain.
+				tolerance += 1 / gain
+			}
+			require.InEpsilon(t, r.StartMean, r.Final.Mean, tolerance)
+			ripple := s.OutputMax - s.OutputMin
+			require.InDelta(t, s.OutputMax-s.OutputMean, r.FinalMost-r.Final.Mean, 1e-3*ripple)
+			require.InDelta(t, s.OutputMin-s.OutputMean, r.FinalLeast-r.Final.Mean, 1e-3*ripple)
+			require.InDelta(t, s.Leg.TurnOn, r.Final.Inductor, 1e-6*s.Leg.Peak)
+			require.False(t, math.IsNaN(r.Outcomes[1].Recovery))
+		})
+	}
+}
+
+func TestNothingMovesWithoutAnEvent(t *testing.T) {
+	for name, p := range stages(t) {
+		t.Run(name, func(t *testing.T) {
+			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 200 * p.Circuit.Period, Band: 1e-6, Saturation: parts.Unknown}
+			_, r := run(t, &setup)
+			require.True(t, r.Settled)
+			require.Less(t, r.FinalChange, 1e-9)
+			require.Zero(t, r.Outcomes[0].Recovery, "it never leaves the band")
+			require.Zero(t, r.Outcomes[0].Skipped)
+		})
+	}
+}
+
+func TestStartUpFromRestAndIntoAPrechargedOutput(t *testing.T) {
+	synchronous := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
+	for name, c := range map[string]struct {
+		precharge, softStart, loadFrom, overshoot float64
+	}{
+		"from-zero":             {0, 1e-3, 2.5, 0.01},
+		"precharged":            {3, 1e-3, 4, 0.01},
+		"precharged-above":      {5.5, 1e-3, 2.5, 0.51},
+		"quicker-than-the-loop": {0, 20e-6, 2.5, 0.3},
+		"without-soft-start":    {0, 0, 2.5, 0.3},
+		"load-connects-last":    {0, 1e-3, 5, 0.03},
+	} {
+		t.Run(name, func(t *testing.T) {
+			setup := Setup{Plant: synchronous, Bounds: bounds(&synchronous), Duration: 4e-3, Band: 0.05, Saturation: parts.Unknown,
+				Start: Start{Kind: AtRest, Precharge: c.precharge, SoftStart: c.softStart, LoadFrom: c.loadFrom}, Record: Record{Points: 400}}
+			e, r := run(t, &setup)
+			o := r.Outcomes[0]
+			require.Equal(t, Finished, r.Status)
+			require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
+			require.LessOrEqual(t, o.Up, c.overshoot)
+			require.False(t, math.IsNaN(o.Recovery))
+			if c.precharge > 0 && c.precharge < 5 {
+				// Nothing is drawn from the precharged output before the reference
+				// passes it; then the load connects.
+				require.Greater(t, o.Lowest.Value, c.precharge-1e-2)
+				require.GreaterOrEqual(t, o.InductorLeast.Value, -1.5, "the precharge is not drawn back into the input")
+			}
+			w := e.Waveform(Output)
+			require.Greater(t, len(w), 300)
+			for i := 1; i < len(w); i++ {
+				require.Greater(t, w[i].At, w[i-1].At)
+			}
+		})
+	}
+}
+
+func TestInputAndReferenceSteps(t *testing.T) {
+	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
+	forward := p
+	forward.Modulator.FeedForward, forward.Modulator.FeedForwardAt = true, 24
+	deviation := func(p loop.Plant) float64 {
+		setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 1e-3, Band: 0.02, Saturation: parts.Unknown,
+			Events: []Event{{Kind: InputStep, At: 1e-4, Change: 6, Slew: 1e6}}}
+		_, r := run(t, &setup)
+		require.True(t, r.Settled)
+		require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
+		return r.Outcomes[1].Up
+	}
+	plain, fed := deviation(p), deviation(forward)
+	require.Greater(t, plain, 5*fed, "feed-forward keeps an input step from the output: %g against %g", plain, fed)
+
+	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 2e-3, Band: 0.02, Saturation: parts.Unknown,
+		Events: []Event{{Kind: ReferenceStep, At: 1e-4, Change: 0.08, Slew: 2e3}}}
+	_, r := run(t, &setup)
+	require.InEpsilon(t, 5.5, r.Outcomes[1].Target, 1e-9)
+	require.InEpsilon(t, 5.5, r.Final.Mean, 1e-6)
+}
+
+func TestDeviationScalesWithSmallStepsAndMatchesTheAveragedLoop(t *testing.T) {
+	for name, p := range stages(t) {
+		if p.Mode == switched.Discontinuous {
+			continue
+		}
+		t.Run(name, func(t *testing.T) {
+			p := designed(t, p, p.Compensator.Type, 10e3, 60)
+			var l loop.LinearStep
+			require.True(t, l.Set(&p))
+			const change = 0.01
+			want := l.Run(change, 500e-6, 3000)
+			period := p.Circuit.Period
+			at := 5 * period
+			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: at + 500e-6, Saturation: parts.Unknown}
+			still, err := New(&setup)
+			require.NoError(t, err)
+			setup.Events = []Event{{Kind: LoadStep, At: at, Change: change}}
+			moved, err := New(&setup)
+			require.NoError(t, err)
+			got := 0.0
+			for until := at; until < setup.Duration; until += period / 8 {
+				still.advance(until)
+				moved.advance(until)
+				got = max(got, still.joint.Output.At(&still.now.z, still.width)-moved.joint.Output.At(&moved.now.z, moved.width))
+			}
+			// The averaged loop answers at once, the switched one with its next edge;
+			// the averaged current loop leaves its sampling out.
+			tolerance := 0.03
+			if p.Modulator.Mode == parts.PeakCurrentMode {
+				tolerance = 0.05
+			}
+			require.InEpsilon(t, want.Peak, got, tolerance)
+		})
+	}
+}
+
+func TestPhasesShareTheStep(t *testing.T) {
+	c := buoy()
+	c.Phases = 2
+	unequal := c
+	unequal.Legs = &[switched.MaxPhases]switched.Leg{c.Leg, c.Leg}
+	unequal.Legs[1].L *= 1.3
+	for name, c := range map[string]switched.Circuit{"equal": c, "unequal": unequal} {
+		t.Run(name, func(t *testing.T) {
+			p := solved(t, c, 5, voltageMode(), opAmp())
+			p = designed(t, p, parts.OpAmpType3, 60e3, 55)
+			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 10e-3, Band: 0.02, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 100}}
+			e, r := run(t, &setup)
+			require.Equal(t, Finished, r.Status)
+			require.True(t, r.Settled, "change %g", r.FinalChange)
+			require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
+			require.Len(t, e.Waveform(InductorSum), len(e.Waveform(Inductor)))
+		})
+	}
+}
+
+func TestChunksDoNotChangeTheRun(t *testing.T) {
+	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.02, Saturation: 5,
+		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 50}}
+	whole, err := New(&setup)
+	require.NoError(t, err)
+	whole.Advance(math.MaxInt32)
+	pieces, err := New(&setup)
+	require.NoError(t, err)
+	for pieces.Advance(1) {
+	}
+	a, b := whole.Result(), pieces.Result()
+	require.InDelta(t, a.Outcomes[1].Down, b.Outcomes[1].Down, 1e-12)
+	require.InDelta(t, a.Final.Mean, b.Final.Mean, 1e-12)
+	require.True(t, a.Outcomes[1].Saturates)
+	require.Equal(t, len(whole.Waveform(Output)), len(pieces.Waveform(Output)))
+}
+
+func TestRecordKeepsTheTrueExtremes(t *testing.T) {
+	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 3e-4, Band: 0.02, Saturation: parts.Unknown,
+		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 20}}
+	coarse, r := run(t, &setup)
+	setup.Record.Points = 5000
+	fine, _ := run(t, &setup)
+	extremes := func(w []Sample) (least, greatest float64) {
+		least, greatest = math.Inf(1), math.Inf(-1)
+		for _, s := range w {
+			least, greatest = min(least, s.Value), max(greatest, s.Value)
+		}
+		return least, greatest
+	}
+	a, b := extremes(coarse.Waveform(Output))
+	c, d := extremes(fine.Waveform(Output))
+	require.InDelta(t, a, c, 1e-7)
+	require.InDelta(t, b, d, 1e-7)
+	require.InDelta(t, r.Outcomes[1].Lowest.Value, a, 1e-7)
+	require.LessOrEqual(t, len(coarse.Waveform(Output)), 40)
+}
+
+func TestMeaninglessSetupsAreRefusedWithTheirFields(t *testing.T) {
+	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	good := Setup{Plant: p, Bounds: bounds(&p), Duration: 1e-4, Saturation: parts.Unknown}
+	for field, change := range map[string]func(s *Setup){
+		"duration_s":                func(s *Setup) { s.Duration = 0 },
+		"modulator/ramp_v":          func(s *Setup) { s.Plant.Modulator.Ramp = 0 },
+		"compensator/feedback_f":    func(s *Setup) { s.Plant.Compensator.FeedbackF = 0 },
+		"controller/min_on_time_s":  func(s *Setup) { s.Bounds.MinOn = -1 },
+		"controller/max_duty_ratio": func(s *Setup) { s.Bounds.MaxDuty = 1.5 },
+		"events/1/at_s":             func(s *Setup) { s.Events = []Event{{At: 5e-5}, {At: 1e-5}} },
+		"events/0/change":           func(s *Setup) { s.Events = []Event{{Change: math.NaN()}} },
+		"events/0/frequency_hz":     func(s *Setup) { s.Events = []Event{{Kind: ControlTone, Frequency: 400e3}} },
+		"start/precharge_v":         func(s *Setup) { s.Start = Start{Kind: AtRest, Precharge: 30} },
+		"record/points":             func(s *Setup) { s.Record.Points = MaxPoints + 1 },
+		"modulator/current_limit_a": func(s *Setup) { s.Plant.Modulator.CurrentLimit = -1 },
+		"band_v":                    func(s *Setup) { s.Band = math.NaN() },
+		"control_high_v":            func(s *Setup) { s.Bounds.ControlHigh = -1 },
+		"start/soft_start_s":        func(s *Setup) { s.Start = Start{Kind: AtRest, SoftStart: 1} },
+		"compensator/lead_ohm":      func(s *Setup) { s.Plant.Compensator.LeadOhm = 0 },
+		"events/0/slew":             func(s *Setup) { s.Events = []Event{{Slew: -1}} },
+		"record/to_s":               func(s *Setup) { s.Record.To = 1 },
+		"controller/min_off_time_s": func(s *Setup) { s.Bounds.MinOff = 1 },
+		"start/load_from_v":         func(s *Setup) { s.Start = Start{Kind: AtRest, LoadFrom: 6} },
+	} {
+		t.Run(field, func(t *testing.T) {
+			s := good
+			change(&s)
+			_, err := New(&s)
+			var invalid *stage.InvalidError
+			require.ErrorAs(t, err, &invalid)
+			require.Equal(t, field, invalid.Faults[0].Field)
+		})
+	}
+}
