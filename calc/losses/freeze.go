@@ -99,8 +99,8 @@ func (m *Model) addLeg(leg *switched.LegSolution, inductance float64, o *stage.P
 	c.inductorAC += weight * dcr * max(0, rms2-mean2) // a rounding below zero at no ripple
 	c.inductor += weight * rms2
 	c.overlap += weight * OverlapLoss(p.vin, p.f, leg.TurnOn, leg.TurnOff, p.ton, p.toff)
-	if leg.Mode == switched.Continuous && leg.TurnOn > 0 {
-		c.recovery += weight * p.recovery
+	if leg.Mode == switched.Continuous {
+		c.recovery += weight * p.recovery * recoveryShare(leg.TurnOn, leg.Peak-leg.Valley)
 	}
 	if s.Rectifier != stage.DiodeRectified {
 		c.channel += weight * ls * max(0, rectifier-DeadTimeShare(p.f, p.td, leg.TurnOn, leg.TurnOff))
