@@ -9,6 +9,7 @@ import (
 
 	"railproof/api/wire"
 	"railproof/calc/evaluate"
+	"railproof/calc/numeric"
 	"railproof/calc/stage"
 )
 
@@ -29,12 +30,48 @@ func example(t testing.TB, rail string) (*stage.Stage, stage.Point) {
 	return decoded.Stage, point
 }
 
+// banks gives a stage three output banks: its own ceramics, a polymer and an
+// electrolytic capacitor.
+func banks(s *stage.Stage) {
+	ceramic := s.OutputCapacitors[0]
+	for _, b := range []struct{ c, esr float64 }{{1.5e-4, 1.2e-2}, {4.7e-4, 6e-2}} {
+		more := ceramic
+		more.Count, more.Capacitance, more.ESR = 1, b.c, b.esr
+		more.CapacitanceAtBias = numeric.Table{}
+		s.OutputCapacitors = append(s.OutputCapacitors, more)
+	}
+}
+
+// BenchmarkEval evaluates buoy-5v0 with tables, core loss, thermal coupling and
+// all its spreads in place: steady state, every loss, equilibrium.
 func BenchmarkEval(b *testing.B) {
-	s, p := example(b, "buoy-5v0")
-	e := evaluate.Prepare(s)
-	var r evaluate.Result
-	b.ReportAllocs()
-	for b.Loop() {
-		e.Eval(&p, &r)
+	for _, bench := range []struct {
+		name  string
+		alter func(*stage.Stage, *stage.Point)
+	}{
+		{"ccm/one-bank", func(*stage.Stage, *stage.Point) {}},
+		{"dcm/one-bank", func(s *stage.Stage, p *stage.Point) {
+			s.Rectifier, p.Load.Current = stage.SynchronousEmulated, 0.3
+		}},
+		{"ccm/three-banks", func(s *stage.Stage, _ *stage.Point) { banks(s) }},
+		{"ccm/three-banks-stiff", func(s *stage.Stage, _ *stage.Point) {
+			banks(s)
+			s.OutputCapacitors[0].ESR = 1e-5
+		}},
+	} {
+		b.Run(bench.name, func(b *testing.B) {
+			s, p := example(b, "buoy-5v0")
+			bench.alter(s, &p)
+			e := evaluate.Prepare(s)
+			var r evaluate.Result
+			e.Eval(&p, &r)
+			if r.Status != evaluate.OK {
+				b.Fatal(r.Status)
+			}
+			b.ReportAllocs()
+			for b.Loop() {
+				e.Eval(&p, &r)
+			}
+		})
 	}
 }
