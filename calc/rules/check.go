@@ -113,7 +113,9 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 	f := blank()
 	f.Rule, f.Title, f.Severity, f.Relation, f.Unit = rule.ID, rule.Title, rule.Severity, rule.Relation, rule.Unit
 	f.Basis, f.Pack, f.Edition, f.Provenance, f.Origin = rule.Basis, pack.ID, pack.Edition, pack.Provenance, rule.Origin
-	f.Pointer = join(p.c.StageAt, part, rule.At)
+	if f.Pointer = rule.Pointer; f.Pointer == "" {
+		f.Pointer = join(p.c.StageAt, part, rule.At)
+	}
 
 	gate := &Look{facts: facts}
 	if body.When != nil {

@@ -4,16 +4,16 @@ package rules
 type ChangeKind uint8
 
 const (
-	Unchanged ChangeKind = iota
-	Appeared             // only the second check has it
-	Disappeared
-	VerdictChanged
-	MarginChanged
+	Unchanged  ChangeKind = iota
+	Appears               // only the second check has it
+	Disappears            // only the first check has it
+	Better                // the verdict, or the margin of the same verdict
+	Worse
 )
 
 // String returns the kind as it stands on the wire.
 func (k ChangeKind) String() string {
-	return [...]string{"unchanged", "appeared", "disappeared", "verdict-changed", "margin-changed"}[k]
+	return [...]string{"unchanged", "appears", "disappears", "better", "worse"}[k]
 }
 
 // Change is one finding in two checks; nil where a check does not have it.
@@ -44,7 +44,7 @@ func Compare(before, after []Finding) []Change {
 	}
 	for i := range before {
 		if b, left := earlier[place{before[i].Rule, before[i].Pointer}]; left {
-			changes = append(changes, Change{Disappeared, b, nil})
+			changes = append(changes, Change{Disappears, b, nil})
 			delete(earlier, place{before[i].Rule, before[i].Pointer})
 		}
 	}
@@ -52,13 +52,21 @@ func Compare(before, after []Finding) []Change {
 }
 
 func kindOf(before, after *Finding) ChangeKind {
+	if before == nil {
+		return Appears
+	}
+	gain := after.Margin - before.Margin
+	if a, b := worth[before.Verdict], worth[after.Verdict]; a != b {
+		gain = float64(b - a)
+	}
 	switch {
-	case before == nil:
-		return Appeared
-	case before.Verdict != after.Verdict:
-		return VerdictChanged
-	case before.Margin-after.Margin > sameMargin || after.Margin-before.Margin > sameMargin:
-		return MarginChanged
+	case gain > sameMargin:
+		return Better
+	case gain < -sameMargin:
+		return Worse
 	}
 	return Unchanged
 }
+
+// worth orders verdicts from the worst to the best.
+var worth = [...]int{Fail: 0, NotEvaluated: 1, Waived: 2, Pass: 3}

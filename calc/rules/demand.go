@@ -58,13 +58,13 @@ func (d *Demand) add(name string, place int) {
 	if list == nil {
 		return
 	}
+	if id, ok := quantity.ByKey(key); ok { // a limit names the bank itself
+		*list = append(*list, id)
+		return
+	}
 	for _, q := range quantity.All() {
 		if q.Key == key {
-			id := q.ID
-			if q.Family != quantity.Single {
-				id += quantity.ID(place)
-			}
-			*list = append(*list, id)
+			*list = append(*list, q.ID+quantity.ID(place))
 		}
 	}
 }

@@ -83,8 +83,13 @@ func prepare(c *Case) *prepared {
 		}
 	}
 	for _, q := range quantity.All() {
-		if q.Family == quantity.Single {
+		switch q.Family {
+		case quantity.Single:
 			p.addQuantity(p.shared, q.Key, q.ID)
+		case quantity.PerOutputBank:
+			p.addBanks(q, len(c.Stage.OutputCapacitors))
+		case quantity.PerInputBank:
+			p.addBanks(q, len(c.Stage.InputCapacitors))
 		}
 	}
 	p.shared[rootStage+"phase_count"] = fact{value: float64(c.Stage.PhaseCount)}
@@ -97,6 +102,15 @@ func addField(to map[string]fact, root, id string, r fieldRange) {
 	to[root+key] = fact{value: r.typ}
 	to[bare+"_least."+key] = fact{value: r.least}
 	to[bare+"_greatest."+key] = fact{value: r.most}
+}
+
+// addBanks makes one bank's quantity known to limits, which name it with its
+// index.
+func (p *prepared) addBanks(q quantity.Info, banks int) {
+	for k := range banks {
+		id := q.ID + quantity.ID(k)
+		p.addQuantity(p.shared, id.Key(), id)
+	}
 }
 
 func (p *prepared) addQuantity(to map[string]fact, key string, id quantity.ID) {

@@ -54,6 +54,7 @@ type Rule struct {
 	Relation Relation
 	Unit     string // UCUM code of value and limit
 	At       string // pointer of the finding below its part, "rating/voltage_v"; "" for the part itself
+	Pointer  string // whole pointer of the finding, where it is not about a part; "" to use At
 	Needs    []string
 	Message  Message
 	Basis    string // where the limit stands, or that it is common practice

@@ -359,7 +359,7 @@ func TestComparePairsByRuleAndPlace(t *testing.T) {
 	for _, c := range Compare(before, after) {
 		kinds = append(kinds, c.Kind)
 	}
-	require.Equal(t, []ChangeKind{Unchanged, VerdictChanged, Unchanged, Appeared, Disappeared}, kinds)
+	require.Equal(t, []ChangeKind{Unchanged, Better, Unchanged, Appears, Disappears}, kinds)
 }
 
 func TestNeedsNamesWhatRulesRead(t *testing.T) {
@@ -379,4 +379,61 @@ func TestNeedsNamesWhatRulesRead(t *testing.T) {
 		Greatest:      []quantity.ID{quantity.InductorRMS, quantity.OutputCapacitorRMS, quantity.OutputCapacitorRMS + 1},
 		FullLoadLeast: []quantity.ID{quantity.Efficiency},
 	}, d)
+}
+
+func TestChangesHaveADirection(t *testing.T) {
+	f := func(v Verdict, margin float64) []Finding { return []Finding{{Verdict: v, Margin: margin}} }
+	for name, c := range map[string]struct {
+		before, after []Finding
+		want          ChangeKind
+	}{
+		"margin-shrinks":     {f(Pass, 0.2), f(Pass, 0.1), Worse},
+		"margin-grows":       {f(Fail, -0.2), f(Fail, -0.1), Better},
+		"pass-to-fail":       {f(Pass, 0.2), f(Fail, -0.1), Worse},
+		"pass-to-gap":        {f(Pass, 0.2), f(NotEvaluated, math.NaN()), Worse},
+		"fail-to-gap":        {f(Fail, -0.2), f(NotEvaluated, math.NaN()), Better},
+		"gap-to-pass":        {f(NotEvaluated, math.NaN()), f(Pass, 0.1), Better},
+		"still-a-gap":        {f(NotEvaluated, math.NaN()), f(NotEvaluated, math.NaN()), Unchanged},
+		"within-the-solvers": {f(Pass, 0.2), f(Pass, 0.2-1e-8), Unchanged},
+	} {
+		require.Equal(t, c.want, Compare(c.before, c.after)[0].Kind, name)
+	}
+}
+
+func TestLimitsOfARequestAreRules(t *testing.T) {
+	c := testCase()
+	c.Extremes[quantity.OutputCapacitorRMS+1] = Extreme{Greatest: Worst{Value: 0.7, Corner: 9}}
+	nan := math.NaN()
+	limits := []Limit{
+		{Quantity: quantity.InductorRMS, Min: nan, Max: 7.5},
+		{Quantity: quantity.InductorRMS, Min: nan, Max: 7.5, AtNominal: true},
+		{Quantity: quantity.OutputMean, Min: 4.8, Max: 5.05},
+		{Quantity: quantity.OutputCapacitorRMS + 1, Min: nan, Max: 1},
+		{Quantity: quantity.PhaseMargin, Min: 40, Max: nan},
+	}
+	pack := LimitRules("/limits", limits)
+	r := Check(c, []*Pack{pack}, nil, today)
+	type row struct {
+		rule, pointer string
+		verdict       Verdict
+	}
+	var got []row
+	for _, f := range r.Findings {
+		got = append(got, row{f.Rule, f.Pointer, f.Verdict})
+	}
+	require.Equal(t, []row{
+		{"limits/inductor_rms_a.max", "/limits/0", Fail},
+		{"limits/inductor_rms_a.max", "/limits/1", Pass},
+		{"limits/output_mean_v.min", "/limits/2", Pass},
+		{"limits/output_mean_v.max", "/limits/2", Fail},
+		{"limits/output_capacitor_rms_a.1.max", "/limits/3", Pass},
+		{"limits/phase_margin_deg.min", "/limits/4", NotEvaluated},
+	}, got)
+	require.Equal(t, "It is 8 A; the limit is 7.5 A.", r.Findings[0].Detail)
+	require.Equal(t, []int{9}, r.Findings[4].Corners)
+	require.Equal(t, []string{"phase_margin_deg"}, r.Findings[5].Missing)
+	d := Needs(c, []*Pack{pack})
+	require.Equal(t, []quantity.ID{quantity.InductorRMS}, d.Nominal)
+	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.PhaseMargin}, d.Least)
+	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.InductorRMS, quantity.OutputCapacitorRMS + 1}, d.Greatest)
 }

@@ -4,17 +4,18 @@ import (
 	"math"
 
 	"railproof/calc/quantity"
+	"railproof/calc/rules"
 	"railproof/calc/stage"
 )
 
 // LimitsOf returns the limits that a requirement sets on quantities.
-func LimitsOf(r *stage.Requirement) []Limit {
+func LimitsOf(r *stage.Requirement) []rules.Limit {
 	none := math.NaN()
 	t := &r.Targets
-	list := []Limit{{quantity.LoadVoltage, r.Output * (1 - r.OutputTolerance), r.Output * (1 + r.OutputTolerance)}}
+	list := []rules.Limit{{Quantity: quantity.LoadVoltage, Min: r.Output * (1 - r.OutputTolerance), Max: r.Output * (1 + r.OutputTolerance)}}
 	atMost := func(id quantity.ID, most float64) {
 		if most > 0 {
-			list = append(list, Limit{id, none, most})
+			list = append(list, rules.Limit{Quantity: id, Min: none, Max: most})
 		}
 	}
 	atMost(quantity.OutputRippleWithESLPP, t.OutputRipple)

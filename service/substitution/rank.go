@@ -26,12 +26,12 @@ type Terms struct {
 
 func unknownTerms() Terms { return Terms{math.NaN(), math.NaN(), math.NaN(), math.NaN()} }
 
-// Rank judges the candidates and puts the best first: accepted before needs
-// review before rejected, within these by score, and those without a score, for
-// want of a figure that has a weight, in the order given.
+// Rank judges the candidates, in the order given, and ranks them: accepted before
+// needs-review before rejected, within these by score, and last those without a
+// score for want of a figure that has a weight. Equals keep their order.
 //
 //	score = Σ weight · term / Σ weight
-func Rank(before *Assessment, candidates []Candidate, limits []Limit, w Weights) []Outcome {
+func Rank(before *Assessment, candidates []Candidate, limits []rules.Limit, w Weights) []Outcome {
 	outcomes := make([]Outcome, len(candidates))
 	leastCost, leastArea := math.Inf(1), math.Inf(1)
 	for i := range candidates {
@@ -53,20 +53,30 @@ func Rank(before *Assessment, candidates []Candidate, limits []Limit, w Weights)
 		}
 		o.Score = score(o.Terms, w)
 	}
-	order := map[Verdict]int{Accepted: 0, NeedsReview: 1, Rejected: 2}
-	slices.SortStableFunc(outcomes, func(a, b Outcome) int {
-		if d := order[a.Verdict] - order[b.Verdict]; d != 0 {
-			return d
-		}
-		switch {
-		case a.Score < b.Score || !math.IsNaN(a.Score) && math.IsNaN(b.Score):
-			return -1
-		case a.Score > b.Score || math.IsNaN(a.Score) && !math.IsNaN(b.Score):
-			return 1
-		}
-		return 0
-	})
+	order := make([]int, len(outcomes))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(i, j int) int { return compare(&outcomes[i], &outcomes[j]) })
+	for place, i := range order {
+		outcomes[i].Rank = place + 1
+	}
 	return outcomes
+}
+
+// compare is negative where a ranks before b.
+func compare(a, b *Outcome) int {
+	places := [...]int{Accepted: 0, NeedsReview: 1, Rejected: 2}
+	if d := places[a.Verdict] - places[b.Verdict]; d != 0 {
+		return d
+	}
+	switch {
+	case a.Score < b.Score || !math.IsNaN(a.Score) && math.IsNaN(b.Score):
+		return -1
+	case a.Score > b.Score || math.IsNaN(a.Score) && !math.IsNaN(b.Score):
+		return 1
+	}
+	return 0
 }
 
 // temperature returns the greatest used share of a permitted temperature rise.

@@ -52,12 +52,6 @@ type Reason struct {
 	Detail  string
 }
 
-// Limit bounds a quantity; NaN where it does not.
-type Limit struct {
-	Quantity quantity.ID
-	Min, Max float64
-}
-
 // Move is one quantity before and after, at typical values and at worst.
 type Move struct {
 	Quantity                      quantity.ID
@@ -65,6 +59,15 @@ type Move struct {
 	LeastBefore, LeastAfter       float64
 	GreatestBefore, GreatestAfter float64
 	Min, Max                      float64 // limits; NaN for none
+}
+
+// Worst returns the extreme value that matters: the least where only a lower
+// limit is set, else the greatest.
+func (m *Move) Worst() (before, after float64) {
+	if !math.IsNaN(m.Min) && math.IsNaN(m.Max) {
+		return m.LeastBefore, m.LeastAfter
+	}
+	return m.GreatestBefore, m.GreatestAfter
 }
 
 // Outcome is what is known and decided about one candidate.
@@ -77,7 +80,8 @@ type Outcome struct {
 	Moves    []Move
 	Changes  []rules.Change // findings that appear, disappear or change
 	Cautions []caution.Caution
-	Score    float64 // weighted, lower is better; NaN if not ranked
+	Score    float64 // weighted, lower is better; NaN if not known
+	Rank     int     // from 1 for the best; 0 before Rank has compared it with others
 	Terms    Terms
 }
 
@@ -85,7 +89,7 @@ type Outcome struct {
 const moved = 1e-6
 
 // Judge compares a candidate with the stage as it was proven.
-func Judge(before *Assessment, c *Candidate, limits []Limit) Outcome {
+func Judge(before *Assessment, c *Candidate, limits []rules.Limit) Outcome {
 	o := Outcome{ID: c.ID, Role: c.Role, Score: math.NaN(), Terms: unknownTerms()}
 	if c.After == nil {
 		o.Missing = c.Missing
@@ -116,7 +120,7 @@ func (o *Outcome) reason(code, rule, pointer, detail string) {
 }
 
 // moves lists the quantities that differ, in the order of the table.
-func moves(before, after *Assessment, limits []Limit) []Move {
+func moves(before, after *Assessment, limits []rules.Limit) []Move {
 	var list []Move
 	none := math.NaN()
 	for id := quantity.ID(0); id < quantity.Count; id++ {
@@ -131,7 +135,7 @@ func moves(before, after *Assessment, limits []Limit) []Move {
 			continue
 		}
 		for _, l := range limits {
-			if l.Quantity == id {
+			if l.Quantity == id && !l.AtNominal {
 				m.Min, m.Max = l.Min, l.Max
 			}
 		}

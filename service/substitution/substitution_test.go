@@ -153,6 +153,11 @@ func TestMovesShowTypicalWorstAndLimit(t *testing.T) {
 	require.Equal(t, quantity.OutputRippleWithESLPP, list[0].Quantity)
 	require.Equal(t, 0.03, list[0].Max)
 	require.True(t, math.IsNaN(list[0].Min))
+	b, a := list[1].Worst()
+	require.Equal(t, []float64{7, 7.5}, []float64{b, a})
+	list[1].Min = 1
+	b, a = list[1].Worst()
+	require.Equal(t, []float64{5, 5}, []float64{b, a}, "a lower limit looks at the least")
 	require.Equal(t, quantity.InductorPeak, list[1].Quantity)
 	require.Equal(t, []float64{7, 7.5}, []float64{list[1].GreatestBefore, list[1].GreatestAfter})
 }
@@ -168,7 +173,7 @@ func TestChangedFindings(t *testing.T) {
 		}
 		got[f.Rule] = c.Kind.String()
 	}
-	require.Equal(t, map[string]string{"gone": "disappeared", "moved": "margin-changed", "turned": "verdict-changed", "new": "appeared"}, got)
+	require.Equal(t, map[string]string{"gone": "disappears", "moved": "worse", "turned": "worse", "new": "appears"}, got)
 }
 
 func TestOnlyNewCautionsAreTold(t *testing.T) {
@@ -189,27 +194,30 @@ func TestRanking(t *testing.T) {
 		f.Unit = "Cel"
 		return f
 	}
-	make := func(id string, loss, margin, cost float64) Candidate {
+	part := func(id string, loss, margin, cost float64) Candidate {
 		a := assessed(hot(margin))
 		a.Nominal[quantity.LossTotal] = loss
 		return Candidate{ID: id, Role: "/stage/inductor", After: a, Cost: cost, Area: math.NaN()}
 	}
-	failing := make("failing", 0.1, 0.9, 0.1)
+	failing := part("failing", 0.1, 0.9, 0.1)
 	failing.After.Report.Findings[0].Verdict = rules.Fail
 	lacking := Candidate{ID: "lacking", Role: "/stage/inductor", Missing: []string{"/stage/inductor/inductance_h"}, Cost: 0.2, Area: math.NaN()}
-	list := []Candidate{failing, lacking, make("no-cost", 1, 0.5, math.NaN()), make("dear", 1, 0.5, 2), make("cheap", 1.8, 0.4, 1)}
+	list := []Candidate{failing, lacking, part("no-cost", 1, 0.5, math.NaN()), part("dear", 1, 0.5, 2), part("cheap", 1.8, 0.4, 1)}
 	ids := func(w Weights) (ids []string) {
-		for _, o := range Rank(assessed(hot(0.3)), list, nil, w) {
-			ids = append(ids, o.ID)
+		outcomes := Rank(assessed(hot(0.3)), list, nil, w)
+		ids = make([]string, len(outcomes))
+		for i, o := range outcomes {
+			require.Equal(t, list[i].ID, o.ID, "in the order given")
+			ids[o.Rank-1] = o.ID
 		}
 		return ids
 	}
 	require.Equal(t, []string{"no-cost", "dear", "cheap", "lacking", "failing"}, ids(Weights{Loss: 1, Temperature: 1}))
 	require.Equal(t, []string{"cheap", "dear", "no-cost", "lacking", "failing"}, ids(Weights{Cost: 1}), "no cost, no place by cost")
 	require.Equal(t, []string{"no-cost", "dear", "cheap", "lacking", "failing"}, ids(Weights{}), "no weights: the order given")
-	o := Rank(assessed(hot(0.3)), list, nil, Weights{Loss: 2, Cost: 1})[0]
+	o := Rank(assessed(hot(0.3)), list, nil, Weights{Loss: 2, Cost: 1})[4]
 	require.Equal(t, "cheap", o.ID)
 	require.InDelta(t, (2*0.9+1/0.1)/3, o.Score, 1e-12)
 	require.InDelta(t, 0.6, o.Terms.Temperature, 1e-12)
-	require.Equal(t, list[0].ID, "failing", "the caller's list stays in order")
+	require.Equal(t, 1, o.Rank)
 }

@@ -40,7 +40,7 @@ func (o *Outcome) weigh(c rules.Change, role string) {
 		switch {
 		case was != rules.Fail:
 			o.reason(ReasonFails, f.Rule, f.Pointer, f.Detail)
-		case c.Before.Margin > f.Margin && c.Kind == rules.MarginChanged:
+		case c.Kind == rules.Worse:
 			o.reason(ReasonWorse, f.Rule, f.Pointer, "failed before too, by less: "+f.Detail)
 		default:
 			o.reason(ReasonStillFails, f.Rule, f.Pointer, "the proven stage fails it too: "+f.Detail)

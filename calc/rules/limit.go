@@ -1,0 +1,53 @@
+package rules
+
+import (
+	"strconv"
+	"strings"
+
+	"railproof/calc/parts"
+	"railproof/calc/quantity"
+)
+
+// Limit bounds one quantity.
+type Limit struct {
+	Quantity  quantity.ID
+	Min       float64 // [any] in the quantity's unit; NaN: none
+	Max       float64 // [any] in the quantity's unit; NaN: none
+	AtNominal bool    // must hold at typical values and conditions, not at the worst corner
+}
+
+// LimitPack is the identifier of the pack that LimitRules makes.
+const LimitPack = "limits"
+
+// LimitRules makes rules of the limits that a request states itself. at is the
+// pointer of their list ("/limits").
+func LimitRules(at string, limits []Limit) *Pack {
+	pack := &Pack{ID: LimitPack, Title: "Limits of the request", Edition: "as given", Provenance: "stated in the request"}
+	for i, l := range limits {
+		info, _ := quantity.Of(l.Quantity)
+		key := l.Quantity.Key()
+		one := func(r Relation, root, side string, bound float64) {
+			if !parts.Known(bound) {
+				return
+			}
+			if l.AtNominal {
+				root = rootNominal
+			}
+			name := root + key
+			pack.Rules = append(pack.Rules, Rule{
+				ID: LimitPack + "/" + strings.ReplaceAll(key, "/", ".") + "." + side, Title: "Limit: " + info.Meaning,
+				Relation: r, Unit: info.Unit, Basis: "stated in the request", Message: limitMessage, Pointer: at + "/" + strconv.Itoa(i),
+				Bodies: []Body{{
+					Value: func(l *Look) float64 { return l.Number(name) },
+					Limit: func(*Look) float64 { return bound },
+					Reads: []string{name},
+				}},
+			})
+		}
+		one(AtLeast, rootLeast, "min", l.Min)
+		one(AtMost, rootGreatest, "max", l.Max)
+	}
+	return pack
+}
+
+var limitMessage = Message{[]piece{{"It is ", "value"}, {" ", "unit"}, {"; the limit is ", "limit"}, {" ", "unit"}, {".", ""}}}
