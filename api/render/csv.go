@@ -45,9 +45,11 @@ func words(s string) string {
 }
 
 // headed writes a column's name with its unit, as the contract names it.
-func headed(name string) string {
-	if unit := wire.UnitOf(name); unit != "" && unit != "1" {
-		return name + " [" + unit + "]"
+func headed(name string) string { return withUnit(name, wire.UnitOf(name)) }
+
+func withUnit(name, unit string) string {
+	if unit == "" || unit == "1" {
+		return name
 	}
-	return name
+	return name + " [" + unit + "]"
 }

@@ -35,7 +35,7 @@ func gridCSV(g *wire.LossesGrid) []byte {
 	columns := g.Rows.Quantities.List()
 	header := []string{"cell", headed("input_v"), headed("load_current_a"), headed("ambient_degc"), "status", "conduction_mode"}
 	for _, c := range columns {
-		header = append(header, headed(c.Key))
+		header = append(header, withUnit(c.Key, unitOfKey(c.Key)))
 	}
 	s := newSheet(header...)
 	row, failed := 0, 0

@@ -284,14 +284,17 @@ func encodeRow(r *sizing.Row) SweepRow {
 	}
 }
 
-// bounded returns the number's place, or nil for one that is unknown or infinite.
+// unbounded is the magnitude from which a number stands for no bound at all: JSON
+// has no infinity, and no value of a design comes near it.
+const unbounded = 1e30
+
+// bounded returns the number's place, or nil for one that is unknown or no bound.
 func bounded(v *float64) *float64 {
-	if math.IsNaN(*v) || math.IsInf(*v, 0) {
+	if !(math.Abs(*v) < unbounded) {
 		return nil
 	}
 	return v
 }
 
-// within returns the number, cut to what the contract can say: JSON has no
-// infinity, and no bound of a design comes near this one.
-func within(v float64) float64 { return min(max(v, -1e30), 1e30) }
+// within returns the number, cut to what the contract can say.
+func within(v float64) float64 { return min(max(v, -unbounded), unbounded) }

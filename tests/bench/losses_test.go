@@ -1,0 +1,60 @@
+// Package bench measures what a caller of the server sees.
+package bench
+
+import (
+	"bytes"
+	"context"
+	"io/fs"
+	"net/http"
+	"net/http/httptest"
+	"slices"
+	"testing"
+	"time"
+
+	"github.com/stretchr/testify/require"
+
+	"railproof/api"
+	"railproof/openapi"
+	"railproof/service"
+)
+
+func handler() http.Handler {
+	return api.New(api.Options{Service: service.New(service.Options{ContractVersion: openapi.Load().Version()})})
+}
+
+func example(b testing.TB, name string) []byte {
+	b.Helper()
+	body, err := fs.ReadFile(openapi.Examples(), name)
+	require.NoError(b, err)
+	return body
+}
+
+// serve answers one request in process: everything but the socket.
+func serve(b testing.TB, h http.Handler, path string, body []byte, headers ...string) *httptest.ResponseRecorder {
+	b.Helper()
+	r := httptest.NewRequestWithContext(context.Background(), http.MethodPost, path, bytes.NewReader(body))
+	r.Header.Set("Content-Type", "application/json")
+	for i := 0; i < len(headers); i += 2 {
+		r.Header.Set(headers[i], headers[i+1])
+	}
+	w := httptest.NewRecorder()
+	h.ServeHTTP(w, r)
+	require.Equal(b, http.StatusOK, w.Code, "%s", w.Body)
+	return w
+}
+
+// BenchmarkLossesOnePoint is the server time of one point, both validations
+// included; the median is reported beside the mean.
+func BenchmarkLossesOnePoint(b *testing.B) {
+	h, body := handler(), example(b, "buoy-5v0/losses.json")
+	serve(b, h, "/v1/losses", body)
+	b.ReportAllocs()
+	took := make([]time.Duration, 0, 1<<16)
+	for b.Loop() {
+		start := time.Now()
+		serve(b, h, "/v1/losses", body)
+		took = append(took, time.Since(start))
+	}
+	slices.Sort(took)
+	b.ReportMetric(float64(took[len(took)/2].Nanoseconds()), "median-ns/op")
+}
