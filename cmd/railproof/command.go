@@ -65,7 +65,8 @@ func (c *command) run(ctx context.Context, args []string, t terminal) int {
 	flags := flag.NewFlagSet(c.name, flag.ContinueOnError)
 	flags.SetOutput(io.Discard)
 	act := c.prepare(flags)
-	switch err := flags.Parse(args); {
+	operands, err := parse(flags, args)
+	switch {
 	case errors.Is(err, flag.ErrHelp):
 		c.help(t.out, flags)
 		return exitFine
@@ -73,7 +74,20 @@ func (c *command) run(ctx context.Context, args []string, t terminal) int {
 		fmt.Fprintf(t.err, "railproof %s: %v\nrailproof help %s tells more\n", c.name, err, c.name)
 		return exitBadInput
 	}
-	return act(ctx, t, flags.Args())
+	return act(ctx, t, operands)
+}
+
+// parse reads flags wherever they stand, before or after the file.
+func parse(flags *flag.FlagSet, args []string) (operands []string, err error) {
+	for {
+		if err := flags.Parse(args); err != nil {
+			return nil, err
+		}
+		if flags.NArg() == 0 {
+			return operands, nil
+		}
+		operands, args = append(operands, flags.Arg(0)), flags.Args()[1:]
+	}
 }
 
 func usage(w io.Writer) {
