@@ -11,14 +11,14 @@ import (
 	"railproof/calc/rules"
 )
 
-var identifier = regexp.MustCompile(`^[a-z0-9]+(-[a-z0-9]+)*$`)
+var identifier = regexp.MustCompile(`^[a-z0-9][a-z0-9._-]*$`)
 
 // parameterName is what stands after "parameter." in an expression.
 var parameterName = regexp.MustCompile(`^[a-z][a-z0-9_]*$`)
 
 const (
 	maxIdentifier = 64   // [1] bytes
-	maxText       = 1000 // [1] bytes of a title, message or reason
+	maxText       = 1024 // [1] bytes of a title, message or reason
 )
 
 // compiler checks one document and collects its faults.
@@ -55,7 +55,7 @@ func (c *compiler) text(pointer, value string) {
 
 func (c *compiler) identifier(pointer, value string) {
 	if len(value) > maxIdentifier || !identifier.MatchString(value) {
-		c.fault(pointer, "%.80q is not an identifier: lower-case letters, digits and single hyphens, at most %d", value, maxIdentifier)
+		c.fault(pointer, "%.80q is not an identifier: lower-case letters, digits, dots, underscores and hyphens, at most %d", value, maxIdentifier)
 	}
 }
 

@@ -21,7 +21,7 @@ const presence = "known."
 
 // Bounds of one expression.
 const (
-	maxExpression = 600  // [1] code points
+	maxExpression = 2000 // [1] code points
 	maxDepth      = 40   // [1] nesting
 	maxCost       = 2000 // [1] steps of evaluation
 )

@@ -5,6 +5,7 @@ import (
 	"maps"
 	"slices"
 	"strconv"
+	"strings"
 
 	"railproof/calc/rules"
 )
@@ -149,12 +150,13 @@ func (c *compiler) derive(d *Document, base *loaded, parameters map[string]Param
 				parameters[o.Parameter] = p
 			}
 		case o.Rule != "" && o.Parameter == "":
-			at1 := slices.IndexFunc(list, func(r RuleDocument) bool { return r.ID == o.Rule })
-			if at1 < 0 {
+			id := strings.TrimPrefix(o.Rule, d.Extends+"/")
+			place := slices.IndexFunc(list, func(r RuleDocument) bool { return r.ID == id })
+			if place < 0 {
 				c.fault(at+"/rule", "%.80s is not a rule of %s", o.Rule, d.Extends)
 				continue
 			}
-			list = c.overrideRule(list, at1, o, at, change)
+			list = c.overrideRule(list, place, o, at, change)
 		default:
 			c.fault(at, "names either a rule or a parameter")
 		}

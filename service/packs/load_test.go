@@ -76,14 +76,14 @@ func TestLoadingRefuses(t *testing.T) {
 		"function/macro":             {document("when: \"[1].all(x, x > 0)\""), "/rules/0/when", ""},
 		"expression/list":            {document("when: \"1 in [1]\""), "/rules/0/when", ""},
 		"expression/empty":           {document(`value: ""`), "/rules/0/value", "empty"},
-		"expression/too-long":        {document("value: greatest.inductor_rms_a" + strings.Repeat(" + greatest.inductor_rms_a", 40)), "/rules/0/value", ""},
+		"expression/too-long":        {document("value: greatest.inductor_rms_a" + strings.Repeat(" + greatest.inductor_rms_a", 90)), "/rules/0/value", ""},
 		"expression/too-deep":        {document("value: " + deep), "/rules/0/value", ""},
 		"rule/no-limit":              {strings.Replace(document(), "    at_most: part.rating.heating_a\n", "", 1), "/rules/0", "exactly one"},
 		"rule/two-limits":            {document("at_least: 1"), "/rules/0", "exactly one"},
 		"rule/severity":              {document("severity: fatal"), "/rules/0/severity", "none of"},
 		"rule/scope":                 {document("scope: [resistor]"), "/rules/0/scope/0", "not a scope"},
 		"rule/no-scope":              {document("scope: []"), "/rules/0/scope", "at least one"},
-		"rule/identifier":            {document("id: Heat_1"), "/rules/0/id", "identifier"},
+		"rule/identifier":            {document("id: Heat 1"), "/rules/0/id", "identifier"},
 		"rule/message":               {document(`message: "{valu}"`), "/rules/0/message", "{valu}"},
 		"rule/no-basis":              {document(`basis: ""`), "/rules/0/basis", "must be given"},
 		"rule/unknown-field":         {document("limit: 3"), "/rules/0/limit", "unknown field"},
@@ -200,7 +200,7 @@ extends: general-practice
 overrides:
   - {rule: inductor-heating, limit: 0.8 * part.rating.heating_a, reason: warm hull}
   - {rule: inductor-ripple-low, severity: warning, reason: noise}
-  - {rule: gain-margin, enabled: false, reason: measured instead}
+  - {rule: general-practice/gain-margin, enabled: false, reason: measured instead}
 rules:
   - {id: rail-input, title: Rail input, severity: note, scope: [stage], value: requirement.input.max_v, at_most: 36, unit: V, message: "{value} V", basis: bus specification}
 `

@@ -16,7 +16,7 @@ import (
 const (
 	maxDocument = 256 << 10 // [1] bytes
 	maxNesting  = 12        // [1] levels
-	maxRules    = 400       // [1]
+	maxRules    = 512       // [1] with the inherited ones
 )
 
 // Parsed is a document with the lines of its text.
