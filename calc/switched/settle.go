@@ -2,11 +2,6 @@ package switched
 
 import "math"
 
-const (
-	maxRounds   = 60
-	zeroCurrent = 1e-12 // [1] of a period; the end of conduction is found to this, its effect is of second order
-)
-
 // load returns the current that the load takes at the output voltage v.
 func (c *Circuit) load(v float64) float64 { return c.Current + c.Conductance*v }
 
@@ -89,86 +84,4 @@ func (s *Solver) reverses(c *Circuit) bool {
 		}
 	}
 	return false
-}
-
-// settleResting finds the state in discontinuous conduction.
-//
-// For given ends of conduction the circuit is a fixed sequence of linear
-// intervals; the current left at such an end is dropped. The end is then moved
-// to where the current is zero by Newton's step on the exact solution, kept
-// inside a bracket. A wrong end drops or holds back a charge of second order
-// only, so the steps of several phases need no coupling and converge
-// quadratically.
-func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
-	legs := c.Phases
-	if s.cyclic {
-		legs = 1
-	}
-	var least, most [MaxPhases]float64
-	v := s.ref.v
-	for p := range legs {
-		least[p], most[p] = duty, 1
-		if !c.leg(p).Rectifier.Blocks || warm && s.conduct[p] > duty {
-			continue
-		}
-		v = c.restingOutput(p, duty)
-		vf := c.leg(p).Rectifier.Threshold
-		s.conduct[p] = math.Min(1, duty*(1+math.Max(0, c.Vin-v)/(v+vf)))
-		if !(s.conduct[p] > duty && v > 0) {
-			s.conduct[p] = 0.5 * (1 + duty)
-		}
-	}
-	for range maxRounds {
-		s.rounds++
-		s.ref.set(&s.nw, v, 0)
-		s.schedule(c, duty)
-		if !s.periodic(c) {
-			return NotConverged
-		}
-		v += s.iv[0].start[s.nw.phases]
-		moved := 0.0
-		for k := range s.count {
-			var slope vec
-			for j := range c.Phases {
-				if s.iv[k].top.pos[j] != Rectifying || s.next(k, j) == Rectifying || !c.leg(j).Rectifier.Blocks {
-					continue
-				}
-				p := j
-				if s.cyclic {
-					p = 0
-				}
-				left := s.iv[k].stop[j]
-				at := s.conduct[p]
-				if left >= 0 && at == 1 {
-					continue // conducts all the time
-				}
-				s.iv[k].top.slope(&s.nw, &s.iv[k].stop, &slope)
-				if legs == 1 { // several shift each other's zeros
-					if left > 0 {
-						least[p] = math.Max(least[p], at)
-					} else {
-						most[p] = math.Min(most[p], at)
-					}
-				}
-				to := at - left/(slope[j]*c.Period)
-				switch {
-				case left == 0:
-					to = at
-				case left > 0 && !(to < most[p]) && most[p] == 1:
-					to = 1
-				case !(to > least[p] && to < most[p]):
-					to = 0.5 * (at + least[p])
-					if left > 0 {
-						to = 0.5 * (at + most[p])
-					}
-				}
-				s.conduct[p] = to
-				moved = math.Max(moved, math.Abs(to-at)/to)
-			}
-		}
-		if moved <= zeroCurrent {
-			return Solved
-		}
-	}
-	return NotConverged
 }

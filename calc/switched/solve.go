@@ -87,7 +87,7 @@ func (s *Solver) standStill(c *Circuit, duty float64, status Status, sol *Soluti
 // finish measures the state and checks the answer itself.
 func (s *Solver) finish(c *Circuit, status Status, sol *Solution) {
 	sol.clear(status, s.rounds, s.duty)
-	if status == NotConverged {
+	if status == NotConverged || status == NoOperatingPoint {
 		return
 	}
 	out := extent{math.Inf(1), math.Inf(-1)}
@@ -114,11 +114,18 @@ func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
 	warm := false
 	for i := range maxSearch {
 		status := s.settle(c, d, warm)
-		if status != Solved {
+		e := -vout
+		switch status {
+		case Solved:
+			e = s.meanOutput(c) - vout
+		case NoOperatingPoint:
+			if d >= greatest {
+				return status
+			}
+		default:
 			return status
 		}
-		warm = true
-		e := s.meanOutput(c) - vout
+		warm = status == Solved
 		if math.Abs(e) <= outputReach*vout {
 			return Solved
 		}
