@@ -131,18 +131,13 @@ func (c *collector) hotPlug() {
 
 func (c *collector) source() {
 	resistance := c.seen.SourceResistance
-	if c.stage != nil {
-		resistance += c.stage.Board.InputPath
-	}
 	if !parts.Known(resistance) {
 		resistance = 0
 	}
 	if power := c.seen.Input * c.seen.Input / (4 * resistance); power > powerPS1 {
-		current, unit, detail := parts.Unknown, "A", "The source and copper given limit a short circuit to this current"
+		current, unit, detail := parts.Unknown, "", "The source is taken as stiff, so nothing limits a short circuit"
 		if resistance > 0 {
-			current = c.seen.Input / resistance
-		} else {
-			unit, detail = "", "The source is taken as stiff, so nothing limits a short circuit"
+			current, unit, detail = c.seen.Input/resistance, "A", "The source alone limits a short circuit, to this current"
 		}
 		c.add(FaultCurrent, c.seen.InputPointer, current, parts.Unknown, unit,
 			detail+"; a cracked ceramic capacitor or a failed switch is one. Name a fuse or a current limit; a fuse's time-current curve is not checked here.")

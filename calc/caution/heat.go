@@ -40,7 +40,7 @@ func (c *collector) runaway() {
 // over warns if a known rating is exceeded by a known stress.
 func (c *collector) over(tail string, stress, rating float64, unit, what string) {
 	if stress > rating {
-		c.add(BeyondAbsoluteMaximum, c.at+"/"+tail, stress, rating, unit, what+" is beyond the part's absolute maximum: it may fail at once or age fast.")
+		c.add(BeyondAbsoluteMaximum, c.at+"/"+tail, stress, rating, unit, what+" is beyond the part's rating: it may fail at once or age fast.")
 	}
 }
 

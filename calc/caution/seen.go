@@ -25,6 +25,10 @@ type Seen struct {
 	points           int
 }
 
+// sameVoltage is the relative excess of a regulated output over what was asked
+// for that comes from the solver.
+const sameVoltage = 1e-6 // [1]
+
 // Add takes in an operating point and its result. at is the point's pointer in
 // the request ("/point", "/points/3"). r is nil where nothing was evaluated.
 func (s *Seen) Add(at string, st *stage.Stage, p *stage.Point, r *evaluate.Result) {
@@ -66,7 +70,9 @@ func (s *Seen) AddQuantities(least, most *quantity.Vector) {
 		s.Greatest[i] = greatest(s.Greatest[i], most[i])
 		s.Least[i] = -greatest(-s.Least[i], -least[i])
 	}
-	s.Output = greatest(s.Output, most[quantity.OutputMean])
+	if found := most[quantity.OutputMean]; !(found <= s.Output*(1+sameVoltage)) {
+		s.Output = greatest(s.Output, found)
+	}
 }
 
 func (s *Seen) start() {

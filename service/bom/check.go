@@ -12,12 +12,12 @@ import (
 // Aspects in which a line can disagree with a proof.
 const (
 	AspectPresent    = "present"
-	AspectQuantity   = "quantity"
+	AspectCount      = "count"
 	AspectValue      = "value"
 	AspectTolerance  = "tolerance"
-	AspectVoltage    = "voltage"
-	AspectDielectric = "dielectric"
-	AspectPartNumber = "part-number"
+	AspectRating     = "rating"
+	AspectKind       = "kind"
+	AspectPartNumber = "part_number"
 	AspectAlternate  = "alternate"
 )
 
@@ -31,6 +31,9 @@ type Finding struct {
 	Verdict     rules.Verdict
 	Proven      string // for people, with its unit
 	Found       string
+	ProvenValue float64 // in Unit; only where Unit is given
+	FoundValue  float64
+	Unit        string // UCUM code
 	Detail      string
 }
 
@@ -44,7 +47,7 @@ const rounding = 1e-9
 // judge compares one line with what was proven for its role.
 func judge(rail string, e *Expectation, l *Line, bound []string) []Finding {
 	c := comparison{base: Finding{Rail: rail, Role: e.Role, Row: l.Row, Designators: bound}}
-	c.quantity(l)
+	c.count(l)
 	c.partNumber(e, l)
 	if e.HasValue {
 		c.values(e, l)
@@ -53,8 +56,9 @@ func judge(rail string, e *Expectation, l *Line, bound []string) []Finding {
 }
 
 type comparison struct {
-	base  Finding
-	found []Finding
+	base   Finding
+	found  []Finding
+	proven bool // the line names the proven part: what it leaves unsaid is that part's
 }
 
 func (c *comparison) add(aspect string, v rules.Verdict, proven, found, detail string) {
@@ -63,16 +67,23 @@ func (c *comparison) add(aspect string, v rules.Verdict, proven, found, detail s
 	c.found = append(c.found, f)
 }
 
-// quantity compares the line's own quantity with its designators.
-func (c *comparison) quantity(l *Line) {
-	if math.IsNaN(l.Quantity) {
+// figures adds numbers to the last finding.
+func (c *comparison) figures(proven, found float64, unit string) {
+	f := &c.found[len(c.found)-1]
+	f.ProvenValue, f.FoundValue, f.Unit = proven, found, unit
+}
+
+// count compares the pieces that a line states with its designators.
+func (c *comparison) count(l *Line) {
+	if math.IsNaN(l.Count) {
 		return
 	}
-	v, detail := rules.Pass, "the quantity is that of the designators"
-	if l.Quantity != float64(len(l.Designators)) {
-		v, detail = rules.Fail, "the quantity is not that of the designators on the line"
+	v, detail := rules.Pass, "as many pieces as designators"
+	if l.Count != float64(len(l.Designators)) {
+		v, detail = rules.Fail, "the line states another number of pieces than it has designators"
 	}
-	c.add(AspectQuantity, v, fmt.Sprint(len(l.Designators)), fmt.Sprint(l.Quantity), detail)
+	c.add(AspectCount, v, fmt.Sprint(len(l.Designators)), fmt.Sprint(l.Count), detail)
+	c.figures(float64(len(l.Designators)), l.Count, "1")
 }
 
 func (c *comparison) partNumber(e *Expectation, l *Line) {
@@ -90,7 +101,11 @@ func (c *comparison) partNumber(e *Expectation, l *Line) {
 }
 
 func (c *comparison) values(e *Expectation, l *Line) {
-	text := strings.TrimSpace(l.Value + " " + l.Tolerance + " " + voltageText(l.Voltage))
+	c.proven = e.PartNumber != "" && l.PartNumber == e.PartNumber
+	if c.proven && l.Value == "" {
+		return
+	}
+	text := strings.TrimSpace(l.Value + " " + l.Tolerance + " " + ratingText(e.Kind, l.Rating))
 	r, err := notation.Read(e.Kind, text)
 	if err != nil {
 		detail := err.Error()
@@ -108,9 +123,9 @@ func (c *comparison) values(e *Expectation, l *Line) {
 	}
 }
 
-// voltageText gives a bare number in a voltage column its unit.
-func voltageText(cell string) string {
-	if cell != "" && strings.Trim(cell, "0123456789.,") == "" {
+// ratingText gives a bare number in the rating column of a capacitor its unit.
+func ratingText(kind notation.Kind, cell string) string {
+	if kind == notation.Capacitor && cell != "" && strings.Trim(cell, "0123456789.,") == "" {
 		return cell + " V"
 	}
 	return cell
@@ -121,13 +136,16 @@ func (c *comparison) value(e *Expectation, r *notation.Reading) {
 	proven, found := notation.SI(e.Value, unit), notation.SI(r.Value, unit)
 	if math.Abs(r.Value-e.Value) <= equal*math.Abs(e.Value) {
 		c.add(AspectValue, rules.Pass, proven, found, "the value that was proven")
+		c.figures(e.Value, r.Value, e.Kind.UCUM())
 		return
 	}
 	if !math.IsNaN(r.ToleranceLow) && inside(e, r) {
 		c.add(AspectValue, rules.Pass, proven, found, "another value, but with its tolerance inside the range that was proven")
+		c.figures(e.Value, r.Value, e.Kind.UCUM())
 		return
 	}
 	c.add(AspectValue, rules.Fail, proven, found, "not the value that was proven")
+	c.figures(e.Value, r.Value, e.Kind.UCUM())
 }
 
 // inside reports whether the reading's whole range lies in the proven one.
@@ -139,6 +157,7 @@ func inside(e *Expectation, r *notation.Reading) bool {
 func (c *comparison) tolerance(e *Expectation, r *notation.Reading, text string) {
 	proven := between(e.Min/e.Value-1, e.Max/e.Value-1)
 	switch {
+	case math.IsNaN(r.ToleranceLow) && c.proven:
 	case math.IsNaN(r.ToleranceLow):
 		detail := "the line tells no tolerance"
 		for i := range r.Doubts {
@@ -166,14 +185,17 @@ func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
 		proven = fmt.Sprintf("%.4g V", e.Voltage)
 	}
 	switch {
+	case math.IsNaN(r.Voltage) && c.proven:
 	case math.IsNaN(e.Voltage):
-		c.add(AspectVoltage, rules.NotEvaluated, proven, text, "the proof has no voltage rating for this part")
+		c.add(AspectRating, rules.NotEvaluated, proven, text, "the proof has no voltage rating for this part")
 	case math.IsNaN(r.Voltage):
-		c.add(AspectVoltage, rules.NotEvaluated, proven, text, "the line tells no voltage rating")
+		c.add(AspectRating, rules.NotEvaluated, proven, text, "the line tells no voltage rating")
 	case r.Voltage >= e.Voltage*(1-rounding):
-		c.add(AspectVoltage, rules.Pass, proven, fmt.Sprintf("%.4g V", r.Voltage), "at least the rating that was proven")
+		c.add(AspectRating, rules.Pass, proven, fmt.Sprintf("%.4g V", r.Voltage), "at least the rating that was proven")
+		c.figures(e.Voltage, r.Voltage, "V")
 	default:
-		c.add(AspectVoltage, rules.Fail, proven, fmt.Sprintf("%.4g V", r.Voltage), "less than the rating that was proven")
+		c.add(AspectRating, rules.Fail, proven, fmt.Sprintf("%.4g V", r.Voltage), "less than the rating that was proven")
+		c.figures(e.Voltage, r.Voltage, "V")
 	}
 }
 
@@ -186,8 +208,8 @@ func (c *comparison) dielectric(e *Expectation, r *notation.Reading) {
 		class = "class-2"
 	}
 	if class == e.Class {
-		c.add(AspectDielectric, rules.Pass, e.Class, r.Dielectric, "the class that was proven")
+		c.add(AspectKind, rules.Pass, e.Class, r.Dielectric, "the class that was proven")
 		return
 	}
-	c.add(AspectDielectric, rules.Fail, e.Class, r.Dielectric, "another class than was proven")
+	c.add(AspectKind, rules.Fail, e.Class, r.Dielectric, "another class than was proven")
 }

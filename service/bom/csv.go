@@ -13,14 +13,15 @@ import (
 	"unicode/utf8"
 )
 
-// Mapping names the columns of a CSV text. Designators and Value are required.
+// Mapping names the columns of a CSV text. Designators is required.
 type Mapping struct {
+	Separator   rune // comma, semicolon or tab; 0: found from the header
 	Designators string
 	Value       string
 	Tolerance   string
-	Voltage     string
+	Rating      string
 	PartNumber  string
-	Quantity    string
+	Count       string
 	NotFitted   string // a column in which anything but empty, 0, no, false or fitted means not fitted
 }
 
@@ -89,12 +90,16 @@ func reader(raw []byte, comma rune) *csv.Reader {
 }
 
 // columns holds the index of every mapped column, -1 where none is mapped.
-type columns struct{ designators, value, tolerance, voltage, partNumber, quantity, notFitted int }
+type columns struct{ designators, value, tolerance, rating, partNumber, count, notFitted int }
 
 // separator finds the separator with which the header has every mapped column.
 func separator(raw []byte, m Mapping) (rune, columns, error) {
 	var first error
-	for _, comma := range []rune{',', ';', '\t'} {
+	candidates := []rune{',', ';', '\t'}
+	if m.Separator != 0 {
+		candidates = []rune{m.Separator}
+	}
+	for _, comma := range candidates {
 		header, err := reader(raw, comma).Read()
 		if err != nil {
 			if first == nil {
@@ -119,7 +124,7 @@ func locate(header []string, m Mapping) (columns, error) {
 	find := func(name string, required bool) int {
 		if name == "" {
 			if required && fault == nil {
-				fault = &FormatError{1, 0, "the mapping names no column for designators or for values"}
+				fault = &FormatError{1, 0, "the mapping names no column for the designators"}
 			}
 			return -1
 		}
@@ -137,7 +142,7 @@ func locate(header []string, m Mapping) (columns, error) {
 		}
 		return found
 	}
-	c := columns{find(m.Designators, true), find(m.Value, true), find(m.Tolerance, false), find(m.Voltage, false), find(m.PartNumber, false), find(m.Quantity, false), find(m.NotFitted, false)}
+	c := columns{find(m.Designators, true), find(m.Value, false), find(m.Tolerance, false), find(m.Rating, false), find(m.PartNumber, false), find(m.Count, false), find(m.NotFitted, false)}
 	return c, fault
 }
 
@@ -171,16 +176,16 @@ func (c *columns) line(r *csv.Reader, record []string) (Line, error) {
 			return Line{}, fault(i, "a cell of more than %d bytes", maxCell)
 		}
 	}
-	l := Line{Row: row, Value: cell(c.value), Tolerance: cell(c.tolerance), Voltage: cell(c.voltage), PartNumber: cell(c.partNumber), Quantity: math.NaN()}
+	l := Line{Row: row, Value: cell(c.value), Tolerance: cell(c.tolerance), Rating: cell(c.rating), PartNumber: cell(c.partNumber), Count: math.NaN()}
 	designators, err := Designators(cell(c.designators))
 	if err != nil {
 		return Line{}, fault(c.designators, "%v", err)
 	}
 	l.Designators = designators
-	if text := cell(c.quantity); text != "" {
-		l.Quantity, err = strconv.ParseFloat(text, 64)
-		if err != nil || !(l.Quantity >= 0 && l.Quantity <= 1e9) {
-			return Line{}, fault(c.quantity, "%.40q is not a quantity", text)
+	if text := cell(c.count); text != "" {
+		l.Count, err = strconv.ParseFloat(text, 64)
+		if err != nil || !(l.Count >= 0 && l.Count <= 1e9) {
+			return Line{}, fault(c.count, "%.40q is not a number of pieces", text)
 		}
 	}
 	l.NotFitted = !slices.Contains([]string{"", "0", "no", "false", "fitted"}, strings.ToLower(cell(c.notFitted)))

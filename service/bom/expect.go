@@ -25,7 +25,7 @@ type Expectation struct {
 }
 
 // Expect returns what a proven stage says about a role: high_side, low_side,
-// diode, inductor, a bank such as output_capacitors/0, or a field of feedback and
+// diode, controller, inductor, a bank such as output_capacitors/0, or a field of feedback and
 // compensator such as feedback/upper_ohm. ok is false if the stage has no such
 // part.
 func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectation, ok bool) {
@@ -41,6 +41,8 @@ func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectati
 	case "diode":
 		e.PartNumber, e.Count = s.Diode.PartNumber, phases
 		return e, s.Rectifier == stage.DiodeRectified
+	case "controller":
+		return e, true
 	case "inductor":
 		e.PartNumber, e.Count, e.Kind = s.Inductor.PartNumber, phases, notation.Inductor
 		return e, e.value("inductor/inductance_h", s, spreads)

@@ -23,9 +23,9 @@ type Line struct {
 	Designators []string
 	Value       string
 	Tolerance   string // empty where the value's text has it
-	Voltage     string // rated voltage; empty where the value's text has it
+	Rating      string // rated voltage or current; empty where the value's text has it
 	PartNumber  string
-	Quantity    float64 // NaN if not given
+	Count       float64 // pieces that the line states; NaN if it does not
 	NotFitted   bool
 }
 
@@ -55,6 +55,28 @@ func Designators(text string) ([]string, error) {
 		return nil, fmt.Errorf("more than %d designators", maxDesignators)
 	}
 	return list, nil
+}
+
+// Range is a run of designators that belongs to a rail, such as C300 to C349.
+type Range struct {
+	Prefix      string
+	First, Last int
+}
+
+// ParseRange reads the first and the last designator of a range.
+func ParseRange(from, to string) (Range, error) {
+	prefix, first, ok := split(from)
+	prefixTo, last, okTo := split(to)
+	if !ok || !okTo || prefix != prefixTo || last < first {
+		return Range{}, fmt.Errorf("%.20q to %.20q is not a range of designators", from, to)
+	}
+	return Range{prefix, first, last}, nil
+}
+
+// covers reports whether a designator lies in the range.
+func (g Range) covers(designator string) bool {
+	prefix, n, ok := split(designator)
+	return ok && prefix == g.Prefix && n >= g.First && n <= g.Last
 }
 
 // split parts a designator into its letters and its number.

@@ -4,7 +4,6 @@ import (
 	"context"
 	"fmt"
 	"slices"
-	"strings"
 
 	"railproof/calc/rules"
 	"railproof/calc/spread"
@@ -17,12 +16,6 @@ type Binding struct {
 	Role        string
 	Designators []string
 	Alternates  []string // part numbers that were approved beside the proven one
-}
-
-// Range is a run of designators that belongs to a rail, such as C300 to C349.
-type Range struct {
-	Prefix      string
-	First, Last int
 }
 
 // Rail is a proven stage and where its parts stand on the board.
@@ -212,7 +205,7 @@ func (x *index) binding(r *Rail, b *Binding, e *Expectation, alternates []Altern
 	if pieces != e.Count {
 		v, detail = rules.Fail, "not the number of pieces that was proven"
 	}
-	found = append(found, Finding{Rail: r.Name, Role: b.Role, Designators: b.Designators, Aspect: AspectQuantity, Verdict: v, Proven: fmt.Sprint(e.Count), Found: fmt.Sprint(pieces), Detail: detail})
+	found = append(found, Finding{Rail: r.Name, Role: b.Role, Designators: b.Designators, Aspect: AspectCount, Verdict: v, Proven: fmt.Sprint(e.Count), Found: fmt.Sprint(pieces), ProvenValue: float64(e.Count), FoundValue: float64(pieces), Unit: "1", Detail: detail})
 	for _, i := range order {
 		x.used[i] = true
 		found = append(found, judge(r.Name, expected(e, alternates, x.lines[i].PartNumber), &x.lines[i], perLine[i])...)
@@ -292,7 +285,7 @@ func (x *index) unbound(r *Rail) []Unbound {
 		l := &x.lines[i]
 		var among []string
 		for _, d := range l.Designators {
-			if !x.bound[d] && r.covers(d) {
+			if !x.bound[d] && slices.ContainsFunc(r.Ranges, func(g Range) bool { return g.covers(d) }) {
 				among = append(among, d)
 			}
 		}
@@ -301,9 +294,4 @@ func (x *index) unbound(r *Rail) []Unbound {
 		}
 	}
 	return out
-}
-
-func (r *Rail) covers(designator string) bool {
-	prefix, n, ok := split(designator)
-	return ok && slices.ContainsFunc(r.Ranges, func(g Range) bool { return strings.EqualFold(g.Prefix, prefix) && n >= g.First && n <= g.Last })
 }

@@ -21,6 +21,9 @@ const (
 // Unit returns the unit of the kind's value as it is written.
 func (k Kind) Unit() string { return [...]string{"Ω", "F", "H"}[k] }
 
+// UCUM returns the UCUM code of the unit.
+func (k Kind) UCUM() string { return [...]string{"Ohm", "F", "H"}[k] }
+
 // String returns the kind's name.
 func (k Kind) String() string { return [...]string{"resistor", "capacitor", "inductor"}[k] }
 
