@@ -14,12 +14,12 @@ import (
 )
 
 // computation is a subcommand that answers one operation of the contract from a
-// file.
-func computation(name, operation, summary, about string) *command {
+// file; file is one of its examples.
+func computation(name, operation, file, summary, about string) *command {
 	return &command{
 		name: name, operand: "FILE|-", summary: summary,
 		about:   about + "\nThe request is read from FILE, or from standard input with -. The answer is JSON, the same\nbytes that the server sends for the same request.",
-		example: "railproof " + name + " --table openapi/examples/buoy-5v0/" + name + ".json",
+		example: "railproof " + name + " --table openapi/examples/buoy-5v0/" + file,
 		prepare: func(flags *flag.FlagSet) action {
 			table := flags.Bool("table", false, "a table for reading instead of JSON")
 			csv := flags.Bool("csv", false, "comma-separated values instead of JSON, where the answer has them")

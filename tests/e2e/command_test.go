@@ -1,0 +1,107 @@
+package e2e
+
+import (
+	"encoding/json"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+	"testing"
+	"unicode/utf8"
+
+	"github.com/stretchr/testify/require"
+)
+
+func TestExitCodes(t *testing.T) {
+	losses := example(t, "buoy-5v0/losses.json")
+	changed := func(was, is string) string {
+		require.Contains(t, losses, was)
+		return strings.ReplaceAll(losses, was, is)
+	}
+	cases := []struct {
+		name  string
+		input string
+		args  []string
+		code  int
+	}{
+		{"fine", losses, []string{"losses", "-"}, 0},
+		{"does-not-work", changed(`"input_v": 24,`, `"input_v": 5.01,`), []string{"losses", "-"}, 1},
+		{"infeasible", `{"requirement": {"input": {"min_v": 5.1, "max_v": 5.5}, "output": {"voltage_v": 5}, "load": {"max_a": 50}, "ambient": {"min_degc": 0, "max_degc": 85}, "switching_frequency_hz": 2e6}}`, []string{"size", "-"}, 1},
+		{"syntax", "{", []string{"losses", "-"}, 2},
+		{"schema", `{"stage": {}}`, []string{"losses", "-"}, 2},
+		{"physics", changed(`"regulate_to_v": 5`, `"regulate_to_v": 50`), []string{"losses", "-"}, 2},
+		{"flag-after-the-file", losses, []string{"losses", "-", "--csv=false"}, 0},
+		{"no-such-file", "", []string{"losses", "nowhere.json"}, 2},
+		{"no-file", "", []string{"losses"}, 2},
+		{"unknown-flag", "", []string{"losses", "--frobnicate", "-"}, 2},
+		{"unknown-subcommand", "", []string{"frobnicate"}, 2},
+		{"no-subcommand", "", nil, 2},
+		{"no-such-form", example(t, "buoy-5v0/sizing.json"), []string{"size", "--csv", "-"}, 2},
+		{"address-taken-by-nobody", "", []string{"serve", "--address", "256.0.0.1:1"}, 2},
+		{"help", "", []string{"help"}, 0},
+		{"version", "", []string{"version"}, 0},
+	}
+	for _, c := range cases {
+		t.Run(c.name, func(t *testing.T) {
+			r := railproof(t, c.input, c.args...)
+			require.Equal(t, c.code, r.code, "out %.300s\nerr %.600s", r.out, r.err)
+			switch {
+			case c.code == 2:
+				require.Empty(t, r.out)
+				require.NotEmpty(t, r.err)
+			case slices.Contains(c.args, "-"):
+				require.True(t, json.Valid([]byte(r.out)))
+				require.Empty(t, r.err)
+			}
+		})
+	}
+}
+
+func TestEverySubcommandHasHelpWithARealExample(t *testing.T) {
+	overview := railproof(t, "", "help")
+	require.Equal(t, 0, overview.code)
+	found := 0
+	for line := range strings.Lines(overview.out) {
+		name, _, _ := strings.Cut(strings.TrimSpace(line), " ")
+		if !strings.HasPrefix(line, "  ") || name == "" {
+			continue
+		}
+		help := railproof(t, "", "help", name)
+		if help.code == 2 {
+			continue // a continued line of the exit codes
+		}
+		found++
+		_, after, has := strings.Cut(help.out, "example:\n  railproof ")
+		require.True(t, has, name)
+		args := strings.Fields(strings.SplitN(after, "\n", 2)[0])
+		if args[0] == "serve" {
+			continue
+		}
+		r := railproof(t, "", args...)
+		require.Equal(t, 0, r.code, "%v: %s", args, r.err)
+		require.NotEmpty(t, r.out)
+	}
+	require.GreaterOrEqual(t, found, 5)
+}
+
+func TestTablesFitTheTerminal(t *testing.T) {
+	files, err := filepath.Glob(filepath.Join(root, "openapi/examples/*/*.json"))
+	require.NoError(t, err)
+	ran := 0
+	for _, file := range files {
+		name := strings.TrimSuffix(filepath.Base(file), ".json")
+		command := map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size"}[name]
+		if command == "" {
+			continue
+		}
+		ran++
+		text, err := os.ReadFile(file)
+		require.NoError(t, err)
+		r := railproof(t, string(text), command, "--table", "-")
+		require.Contains(t, []int{0, 1}, r.code, "%s: %s", file, r.err)
+		for line := range strings.Lines(r.out) {
+			require.LessOrEqual(t, utf8.RuneCountInString(strings.TrimRight(line, "\n")), 100, "%s: %s", file, line)
+		}
+	}
+	require.Positive(t, ran)
+}
