@@ -144,8 +144,12 @@ func (e *Evaluator) iterate(o *operating) Status {
 
 // settled tells what the temperatures of a converged point mean.
 func (e *Evaluator) settled(o *operating, status Status) Status {
+	e.hottest = e.degC
 	if o.held {
 		return status
+	}
+	if e.operation.Inductances != nil && !e.settlePhases(o) {
+		return Runaway
 	}
 	if e.feedback, _ = e.network.Feedback(&e.slope); e.feedback >= 1 {
 		return Runaway

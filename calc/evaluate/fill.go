@@ -13,7 +13,7 @@ import (
 // tooHot reports whether a part lies above its rated temperature.
 func (e *Evaluator) tooHot() bool {
 	s := e.stage
-	above := func(p losses.Part, rating float64) bool { return e.degC[p] > rating }
+	above := func(p losses.Part, rating float64) bool { return e.hottest[p] > rating }
 	if above(losses.HighSide, s.HighSide.Rating.JunctionDegC) ||
 		above(losses.Inductor, s.Inductor.Rating.WindingDegC) ||
 		above(losses.Controller, s.Controller.Rating.JunctionDegC) {
@@ -58,7 +58,7 @@ func (e *Evaluator) fill(o *operating, status Status, r *Result) {
 	}
 	for p, w := range e.weight {
 		if w > 0 {
-			r.PartDegC[p] = e.degC[p]
+			r.PartDegC[p] = e.hottest[p]
 		}
 	}
 	q := &r.Quantities
@@ -104,12 +104,15 @@ func (e *Evaluator) fillWaveforms(o *operating, q *quantity.Vector) {
 }
 
 // asked is the output voltage that the point asks for [V]; 0 at a fixed duty
-// ratio. A feedback that has drifted still has its typical values to answer to.
+// ratio that names none. A feedback that has drifted still has its typical values
+// to answer to.
 func (e *Evaluator) asked(p *stage.Point) float64 {
-	switch p.Control.Kind {
-	case stage.RegulateTo:
+	switch {
+	case p.Asked > 0:
+		return p.Asked
+	case p.Control.Kind == stage.RegulateTo:
 		return p.Control.Voltage
-	case stage.ByFeedback:
+	case p.Control.Kind == stage.ByFeedback:
 		return e.nominal
 	}
 	return 0
@@ -181,7 +184,7 @@ func (e *Evaluator) fillPowers(o *operating, r *Result) {
 func (e *Evaluator) fillParts(o *operating, r *Result) {
 	q, s := &r.Quantities, e.stage
 	set := func(power, temperature quantity.ID, p losses.Part) {
-		q[power], q[temperature] = r.Losses.Of(p), e.degC[p]
+		q[power], q[temperature] = r.Losses.Of(p), e.hottest[p]
 	}
 	set(quantity.HighSideLoss, quantity.HighSideJunction, losses.HighSide)
 	if e.synchronous() {

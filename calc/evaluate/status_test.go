@@ -130,9 +130,14 @@ func TestUnequalPhasesShowTheWorstOne(t *testing.T) {
 		}
 		s.Phases = append(s.Phases, o)
 	}
-	var r evaluate.Result
+	var r, mean evaluate.Result
 	evaluate.Prepare(s).Eval(&p, &r)
 	require.Equal(t, evaluate.OK, r.Status)
 	assert.Greater(t, r.Quantities[quantity.InductorMean], 6.0)
+	equal := s.Clone()
+	equal.Phases = nil
+	evaluate.Prepare(equal).Eval(&p, &mean)
+	assert.Greater(t, r.Quantities[quantity.HighSideJunction], mean.Quantities[quantity.HighSideJunction]+1,
+		"the phase that carries more is hotter than equal phases would be")
 	assert.InDelta(t, 0, (r.Quantities[quantity.InputPower]-r.Quantities[quantity.OutputPower]-r.Quantities[quantity.LossTotal])/60, 1e-9)
 }

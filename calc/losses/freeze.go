@@ -39,7 +39,8 @@ type currents struct {
 }
 
 // reset clears what the phases add to.
-func (c *currents) reset() {
+func (c *currents) reset(duty float64) {
+	c.duty = duty
 	c.highSide, c.rectifier, c.channel, c.rectifierMean = 0, 0, 0, 0
 	c.inductorDC, c.inductorAC, c.inductor = 0, 0, 0
 	c.overlap, c.recovery, c.deadLow, c.deadHigh = 0, 0, 0, 0
@@ -47,24 +48,40 @@ func (c *currents) reset() {
 }
 
 // Freeze takes a circuit solution; call Begin before. Afterwards the losses
-// depend on the parts' temperatures only.
+// depend on the parts' temperatures only. Those of unequal phases are the mean.
 func (m *Model) Freeze(op *Operation) {
-	s, sol, p := m.st, op.Solution, &m.point
-	c := &m.currents
-	c.reset()
-	c.duty = sol.Duty
-	c.path, c.load = op.PathMean*op.PathMean, op.LoadRMS*op.LoadRMS
+	m.currents.reset(op.Solution.Duty)
 	if op.Inductances == nil {
-		m.addLeg(&sol.Leg, op.Inductance, nil, 1)
+		m.addLeg(&op.Solution.Leg, op.Inductance, nil, 1)
 	} else {
-		for k := range s.PhaseCount {
-			var override *stage.PhaseOverride
-			if k < len(s.Phases) {
-				override = &s.Phases[k]
-			}
-			m.addLeg(&sol.Legs[k], op.Inductances[k], override, 1/m.phases)
+		for k := range m.st.PhaseCount {
+			m.addPhase(op, k, 1/m.phases)
 		}
 	}
+	m.freezeShared(op)
+}
+
+// FreezePhase is Freeze with the currents of phase k alone, for the temperatures
+// that this phase's own parts reach.
+func (m *Model) FreezePhase(op *Operation, k int) {
+	m.currents.reset(op.Solution.Duty)
+	m.addPhase(op, k, 1)
+	m.freezeShared(op)
+}
+
+// addPhase adds phase k of an unequal circuit, with its override if it has one.
+func (m *Model) addPhase(op *Operation, k int, weight float64) {
+	var override *stage.PhaseOverride
+	if k < len(m.st.Phases) {
+		override = &m.st.Phases[k]
+	}
+	m.addLeg(&op.Solution.Legs[k], op.Inductances[k], override, weight)
+}
+
+// freezeShared completes what all phases share.
+func (m *Model) freezeShared(op *Operation) {
+	s, sol, p, c := m.st, op.Solution, &m.point, &m.currents
+	c.path, c.load = op.PathMean*op.PathMean, op.LoadRMS*op.LoadRMS
 	if sol.Duty > 0 && sol.Duty < 1 {
 		c.charge, c.junction, c.gateDrive = p.outputCharge, p.junction, p.gateDrive
 	} else { // the switches rest
