@@ -127,6 +127,10 @@ type feed struct {
 // found last, for the same circuit. It reports false if there is none.
 func (s *Solver) InputBanks(c *Circuit, sol *Solution, banks int, bank *[MaxBanks]Bank, dst *InputSolution) bool {
 	dst.RMS = math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+	if sol.InputRMS == 0 {
+		*dst = InputSolution{}
+		return true
+	}
 	if banks == 1 {
 		dst.BankRMS[0] = dst.RMS
 		if pp, ok := s.ripple(&bank[0], sol.InputMean); ok {
@@ -168,11 +172,13 @@ func (s *Solver) ripple(b *Bank, mean float64) (pp float64, ok bool) {
 
 // shareInput solves the circuit together with its input banks.
 func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBanks]Bank, dst *InputSolution) bool {
-	s.prepare(c)
-	if s.settle(c, sol.Duty, false) != Solved {
-		return false
-	}
 	nw := &s.nw
+	if s.closed || s.count == 0 {
+		s.prepare(c)
+		if s.settle(c, sol.Duty, false) != Solved {
+			return false
+		}
+	}
 	nw.input.set(banks, bank, sol.InputMean)
 	nw.n = nw.phases + nw.banks + banks
 	if !s.periodic(c) {

@@ -30,6 +30,9 @@ func (s *Solver) Waveform(c *Circuit, sol *Solution, points int) (*Waveform, boo
 func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int, bank *[MaxBanks]Bank) (*Waveform, bool) {
 	s.prepare(c)
 	s.closed, s.rounds = false, 0
+	if c.idle() {
+		return c.idleWaveform(sol.Duty, banks), true
+	}
 	if s.settle(c, sol.Duty, false) != Solved {
 		return nil, false
 	}
@@ -40,10 +43,7 @@ func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int,
 			return nil, false
 		}
 	}
-	w := &Waveform{
-		Inductor: make([][]float64, c.Phases), SwitchNode: make([][]float64, c.Phases),
-		BankCurrent: make([][]float64, c.Banks), BankVoltage: make([][]float64, c.Banks), InputCurrent: make([][]float64, banks),
-	}
+	w := c.newWaveform(banks)
 	turns := 1
 	if s.cyclic {
 		turns = c.Phases
@@ -53,12 +53,38 @@ func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int,
 	for turn := range turns {
 		for k := range s.count {
 			v := &s.iv[k]
-			steps := 1 + int(math.Round(spare*v.t/c.Period))
+			steps := 1 + int(math.Ceil(spare*v.t/c.Period))
 			s.sample(c, w, k, turn, steps, begin)
 			begin += v.t
 		}
 	}
 	return w, true
+}
+
+func (c *Circuit) newWaveform(inputs int) *Waveform {
+	return &Waveform{
+		Inductor: make([][]float64, c.Phases), SwitchNode: make([][]float64, c.Phases),
+		BankCurrent: make([][]float64, c.Banks), BankVoltage: make([][]float64, c.Banks), InputCurrent: make([][]float64, inputs),
+	}
+}
+
+// idleWaveform is that of a circuit that stands still with its output at the
+// input voltage, which is on every switch node whether its high side is on or not.
+func (c *Circuit) idleWaveform(duty float64, inputs int) *Waveform {
+	w := c.newWaveform(inputs)
+	w.Time = []float64{0, duty * c.Period, c.Period}
+	zero, vin := []float64{0, 0, 0}, []float64{c.Vin, c.Vin, c.Vin}
+	w.Output, w.Input = vin, zero
+	for p := range c.Phases {
+		w.Inductor[p], w.SwitchNode[p] = zero, vin
+	}
+	for k := range c.Banks {
+		w.BankCurrent[k], w.BankVoltage[k] = zero, vin
+	}
+	for k := range inputs {
+		w.InputCurrent[k], w.InputNode = zero, zero
+	}
+	return w
 }
 
 // sample appends interval k of the given turn, from begin on.
