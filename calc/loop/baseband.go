@@ -294,7 +294,9 @@ func (s *Sampled) DutyGain() (float64, bool) {
 		g := &s.window.segment[k]
 		var system statespace.System
 		j.Assemble(&system, &g.legs, Linear)
-		s.whole.Exp(&system, g.time, &s.scratch)
+		if !s.whole.Exp(&system, g.time, &s.scratch) {
+			return math.NaN(), false
+		}
 		s.carry(&s.whole, &x)
 		switch g.ends {
 		case turnsOff:

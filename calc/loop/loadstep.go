@@ -66,9 +66,13 @@ func (l *LinearStep) Set(p *Plant) bool {
 }
 
 // Run returns the response to a step of the load by change [A], followed for the
-// time span [s] in the given number of exact steps.
-func (l *LinearStep) Run(change, span float64, steps int) LinearResponse {
-	ladder := statespace.NewLadder(&l.system, span/float64(steps))
+// time span [s] in the given number of exact steps, and false for a system too
+// stiff for them.
+func (l *LinearStep) Run(change, span float64, steps int) (LinearResponse, bool) {
+	ladder, ok := statespace.NewLadder(&l.system, span/float64(steps))
+	if !ok {
+		return LinearResponse{}, false
+	}
 	var z statespace.Point
 	z[l.n+InputLoad] = change
 	w := l.n + Inputs
@@ -101,7 +105,7 @@ func (l *LinearStep) Run(change, span float64, steps int) LinearResponse {
 		}
 		last = is
 	}
-	return r
+	return r, true
 }
 
 // slope returns the functional of the output's rate of change.

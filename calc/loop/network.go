@@ -54,7 +54,10 @@ func (w want) network(c parts.Compensator, f *stage.Feedback) parts.Compensator 
 			pair := PlaceLead(w.crossover, lead)
 			ratio := pair.Pole / pair.Zero
 			both := f.Upper * f.Lower / (f.Upper + f.Lower)
-			c.LeadOhm = max(0, (f.Upper-ratio*both)/(ratio-1))
+			c.LeadOhm = (f.Upper - ratio*both) / (ratio - 1)
+			if c.LeadOhm < leadNegligible*both {
+				c.LeadOhm = 0 // all the lead that the divider allows: no resistor is left
+			}
 			c.LeadF = 1 / (2 * math.Pi * pair.Zero * (f.Upper + c.LeadOhm))
 			raise = math.Sqrt(ratio)
 		}
@@ -75,6 +78,8 @@ func leadBound(f *stage.Feedback) float64 {
 }
 
 const (
+	leadNegligible = 1e-6 // [1] of the divider's resistance
+
 	boostShare  = 0.95 // [1] of the theoretical boost that a buildable network reaches: K of a type II stays below 25
 	leastTwo    = 5.0  // [deg] least boost of a network with zero and pole, so that they stay apart
 	leastThree  = 20.0 // [deg] likewise for two zeros and two poles

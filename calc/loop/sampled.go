@@ -59,6 +59,7 @@ const (
 	Analysed             // the periodic solution exists and was linearised
 	NoComparison         // the control voltage's ripple outruns the ramp: the comparator has no clean crossing
 	SingularPoint        // the periodic equations have no unique solution
+	TooStiff             // a time constant is too short against the period to be carried through it
 	NotConverged         // the eigenvalues did not settle
 	NotRegulating        // drop-out, least on-time or a failed solve: there is no loop to analyse
 )
@@ -76,7 +77,10 @@ func (s *Sampled) Set(p *Plant) Status {
 	s.joint = Joint{}
 	s.joint.Set(&s.plant, Limits{})
 	s.window.set(&s.plant)
-	s.propagate()
+	if !s.propagate() {
+		s.Status = TooStiff
+		return s.Status
+	}
 	if !s.settle() {
 		s.Status = SingularPoint
 		return s.Status
@@ -93,7 +97,7 @@ func (s *Sampled) Set(p *Plant) Status {
 
 // propagate fills the segments' systems and maps and their product over the
 // window, as a map of the whole point.
-func (s *Sampled) propagate() {
+func (s *Sampled) propagate() bool {
 	j, w := &s.joint, &s.window
 	s.whole.Identity(j.N, Inputs)
 	for k := range w.count {
@@ -108,7 +112,9 @@ func (s *Sampled) propagate() {
 		if s.config[k] == k {
 			j.Assemble(&s.systems[k], &g.legs, Linear)
 		}
-		s.maps[k].Exp(&s.systems[s.config[k]], g.time, &s.scratch)
+		if !s.maps[k].Exp(&s.systems[s.config[k]], g.time, &s.scratch) {
+			return false
+		}
 		s.scratch.Compose(&s.maps[k], &s.whole)
 		copyMap(&s.whole, &s.scratch)
 		if g.ends == comesToRest {
@@ -116,6 +122,7 @@ func (s *Sampled) propagate() {
 			clear(s.whole.F[g.phase*width : (g.phase+1)*width])
 		}
 	}
+	return true
 }
 
 // copyMap copies the used part of a map.

@@ -16,15 +16,21 @@ const (
 	// is below 0.5^15/15! = 2e-17 of the first.
 	taylorNorm  = 0.5
 	taylorTerms = 14
-	maxHalvings = 60
+	// maxHalvings bounds the stiffness: squaring multiplies rounding by two each
+	// time, so 2^34 time constants leave six digits.
+	maxHalvings = 34
 )
 
 // Exp sets m to the exact map of s over the time t >= 0, by scaling, Taylor
 // series and squaring. Method: C. Moler, C. Van Loan, "Nineteen dubious ways to
 // compute the exponential of a matrix", SIAM Review 45 (2003), method 3
-// (remembered, unverified).
-func (m *Map) Exp(s *System, t float64, work *Map) {
+// (remembered, unverified). It reports false for a system too stiff for the time,
+// whose map would be rounding only.
+func (m *Map) Exp(s *System, t float64, work *Map) bool {
 	halvings := halvingsFor(s, t, taylorNorm)
+	if halvings > maxHalvings {
+		return false
+	}
 	from, to := m, work
 	if halvings%2 == 1 {
 		from, to = work, m
@@ -35,6 +41,7 @@ func (m *Map) Exp(s *System, t float64, work *Map) {
 		from, to = to, from
 	}
 	m.Time = t
+	return true
 }
 
 // halvingsFor returns how often t must be halved for the norm of A t to be at
@@ -42,7 +49,7 @@ func (m *Map) Exp(s *System, t float64, work *Map) {
 func halvingsFor(s *System, t, limit float64) int {
 	norm := s.norm() * t
 	n := 0
-	for norm > limit && n < maxHalvings {
+	for norm > limit && n <= maxHalvings {
 		norm /= 2
 		n++
 	}

@@ -35,10 +35,14 @@ const (
 	restTerms = 8
 )
 
-// NewLadder returns the ladder of s for steps of the given length.
-func NewLadder(s *System, step float64) *Ladder {
+// NewLadder returns the ladder of s for steps of the given length, and false for
+// a system too stiff for them.
+func NewLadder(s *System, step float64) (*Ladder, bool) {
 	l := &Ladder{System: *s, Step: step}
 	last := halvingsFor(s, step, rungNorm)
+	if last > maxHalvings {
+		return nil, false
+	}
 	used := s.N * (s.N + s.M)
 	l.rungs = make([]rung, last+1)
 	room := make([]float64, (last+1)*used)
@@ -49,7 +53,7 @@ func NewLadder(s *System, step float64) *Ladder {
 		l.rungs[i] = rung{math.Ldexp(step, -i), room[i*used : (i+1)*used]}
 		copy(l.rungs[i].f, now.F[:used])
 		if i == 0 {
-			return l
+			return l, true
 		}
 		next.Compose(now, now)
 		now, next = next, now

@@ -62,7 +62,7 @@ func TestExponentialAgainstGeneralMatrixExponential(t *testing.T) {
 		for _, time := range []float64{0, 1e-9, 3e-7, 2e-5} {
 			s := sample(r, n, 3, 3)
 			var m, work Map
-			m.Exp(&s, time, &work)
+			require.True(t, m.Exp(&s, time, &work))
 			want := augmented(&s, time)
 			for i := 0; i < n; i++ {
 				for j := 0; j < n+3; j++ {
@@ -80,7 +80,8 @@ func TestLadderReachesEveryTimeTheExponentialDoes(t *testing.T) {
 	for range 20 {
 		s := sample(r, 6, 4, 4)
 		const step = 1e-6
-		l := NewLadder(&s, step)
+		l, ok := NewLadder(&s, step)
+		require.True(t, ok)
 		for _, fraction := range []float64{0, 1e-5, 0.1, 0.5, 0.77, 1} {
 			z := start(r, &s)
 			var m, work Map
@@ -102,7 +103,8 @@ func TestCrossingLiesOnTheExactSolution(t *testing.T) {
 	for range 300 {
 		s := sample(r, 5, 4, 3)
 		const step = 1e-6
-		l := NewLadder(&s, step)
+		l, ok := NewLadder(&s, step)
+		require.True(t, ok)
 		z := start(r, &s)
 		e := Event{Offset: r.NormFloat64(), Ramp: 3e6 * r.Float64(), Curve: 1e12 * r.NormFloat64()}
 		for i := 0; i < s.N+s.M; i++ {
@@ -132,7 +134,7 @@ func TestCrossingLiesOnTheExactSolution(t *testing.T) {
 func TestSecondDerivativeIsThatOfTheFirst(t *testing.T) {
 	r := rand.New(rand.NewPCG(8, 8))
 	s := sample(r, 4, 3, 1)
-	l := NewLadder(&s, 1e-6)
+	l, _ := NewLadder(&s, 1e-6)
 	z := start(r, &s)
 	var d0, dd, d1 Point
 	s.Derivative(&d0, &z)
@@ -198,6 +200,18 @@ func TestTransferAndEigenvaluesAgainstDenseSolve(t *testing.T) {
 	}
 }
 
+func TestTooStiffSystemsAreRefused(t *testing.T) {
+	var s System
+	s.Reset(1, 1)
+	s.Row(0)[0] = -1e18
+	var m, work Map
+	require.False(t, m.Exp(&s, 1e-6, &work))
+	_, ok := NewLadder(&s, 1e-6)
+	require.False(t, ok)
+	s.Row(0)[0] = math.Inf(-1)
+	require.False(t, m.Exp(&s, 1e-6, &work))
+}
+
 func TestSingularMatrixIsRefused(t *testing.T) {
 	m := Real{N: 2}
 	m.Set(0, 0, 1)
@@ -212,7 +226,7 @@ func TestSingularMatrixIsRefused(t *testing.T) {
 func TestAdvancingAllocatesNothing(t *testing.T) {
 	r := rand.New(rand.NewPCG(1, 1))
 	s := sample(r, 7, 4, 3)
-	l := NewLadder(&s, 1e-6)
+	l, _ := NewLadder(&s, 1e-6)
 	z := start(r, &s)
 	var m, work Map
 	require.Zero(t, testing.AllocsPerRun(20, func() {
@@ -224,7 +238,7 @@ func TestAdvancingAllocatesNothing(t *testing.T) {
 func BenchmarkSeven(b *testing.B) {
 	r := rand.New(rand.NewPCG(1, 1))
 	s := sample(r, 7, 4, 3)
-	l := NewLadder(&s, 1e-7)
+	l, _ := NewLadder(&s, 1e-7)
 	z := start(r, &s)
 	b.Run("exponential", func(b *testing.B) {
 		var m, work Map

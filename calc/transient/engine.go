@@ -90,6 +90,7 @@ const (
 	Finished         // the whole duration was run
 	NoStart          // no periodic solution was found to start from
 	Stalled          // more edges within one period than a controller can make
+	TooStiff         // a time constant is too short against the period to be followed
 	Collapsed        // the load drags the output below zero, where the circuit is no longer that of the model
 )
 
@@ -175,7 +176,8 @@ func negated(f statespace.Functional) statespace.Functional {
 	return f
 }
 
-// at returns the motion in the present state of the engine.
+// motion returns the motion in the present state of the engine, or nil if it is
+// too stiff to be followed.
 func (e *Engine) motion() *interval {
 	m := &e.now
 	key := uint32(m.rates)<<16 | uint32(m.drive)<<14
@@ -187,7 +189,12 @@ func (e *Engine) motion() *interval {
 		var s statespace.System
 		e.joint.Assemble(&s, &m.legs, m.drive)
 		s.Rate = m.rate
-		v = &interval{Ladder: statespace.NewLadder(&s, e.setup.Plant.Circuit.Period/stepsPerPeriod)}
+		ladder, ok := statespace.NewLadder(&s, e.setup.Plant.Circuit.Period/stepsPerPeriod)
+		if !ok {
+			e.status = TooStiff
+			return nil
+		}
+		v = &interval{Ladder: ladder}
 		for k := range v.slopes {
 			f := e.signal(k)
 			v.slopes[k] = slopeOf(&f, &s)

@@ -111,7 +111,8 @@ func textbookLoadStep(t *testing.T, p *published) {
 	plant := textbookPlant(p)
 	var l loop.LinearStep
 	require.True(t, l.Set(&plant))
-	r := l.Run(p.in("delta_I"), 2e-3, 2000)
+	r, ok := l.Run(p.in("delta_I"), 2e-3, 2000)
+	require.True(t, ok)
 	var a loop.Averaged
 	a.Set(&plant)
 	peak, fc := 0.0, 0.0

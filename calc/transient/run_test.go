@@ -132,7 +132,8 @@ func TestDeviationScalesWithSmallStepsAndMatchesTheAveragedLoop(t *testing.T) {
 			var l loop.LinearStep
 			require.True(t, l.Set(&p))
 			const change = 0.01
-			want := l.Run(change, 500e-6, 3000)
+			want, ok := l.Run(change, 500e-6, 3000)
+			require.True(t, ok)
 			period := p.Circuit.Period
 			at := 5 * period
 			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: at + 500e-6, Saturation: parts.Unknown}

@@ -181,6 +181,9 @@ func (e *Engine) watch() {
 func (e *Engine) glide(t float64) {
 	m := &e.now
 	v := e.motion()
+	if v == nil {
+		return
+	}
 	e.watch()
 	e.look(v)
 	for m.at < t-e.grain() {
