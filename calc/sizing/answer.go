@@ -46,7 +46,7 @@ type Answer struct {
 	Notes      []Note
 }
 
-// Window returns the window with a name, or nil.
+// Window returns the window with a name, of the first bank, or nil.
 func (a *Answer) Window(name string) *Window {
 	for i := range a.Windows {
 		if a.Windows[i].Name == name {
@@ -76,6 +76,7 @@ type Note struct {
 // Window is the range of values that satisfies every constraint looked at.
 type Window struct {
 	Name      string // output_capacitance_f and so on
+	Bank      int    // capacitor bank that it is for
 	Unit      string // UCUM code
 	Bounds    []Bound
 	Chosen    float64 // [any] of the draft stage, as the circuit sees it at the worse end of tolerance, bias and age

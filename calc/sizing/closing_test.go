@@ -94,8 +94,8 @@ func (b *box) corners(begin, visit func()) {
 
 // proven are the limits whose keeping sizing promises over the whole box.
 var proven = map[quantity.ID]bool{
-	quantity.OutputRipplePP: true, quantity.InputRipplePP: true, quantity.InductorRipplePP: true, quantity.InductorPeak: true, quantity.BoundaryLoad: true,
-	quantity.OutputError: true, quantity.HighSideJunction: true, quantity.LowSideJunction: true, quantity.DiodeJunction: true, quantity.Efficiency: true,
+	quantity.OutputRipplePP: true, quantity.OutputRippleWithESLPP: true, quantity.InputRipplePP: true, quantity.InductorRipplePP: true, quantity.InductorPeak: true, quantity.BoundaryLoad: true,
+	quantity.LoadVoltage: true, quantity.HighSideJunction: true, quantity.LowSideJunction: true, quantity.DiodeJunction: true, quantity.Efficiency: true,
 }
 
 // keeps reports whether the present evaluation keeps a limit, and says what it saw.

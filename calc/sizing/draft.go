@@ -120,6 +120,7 @@ func (z *sizer) limits() {
 	}
 	none := math.NaN()
 	add(quantity.OutputRipplePP, none, w.OutputRipple, "targets/output_ripple_pp_v")
+	add(quantity.OutputRippleWithESLPP, none, w.OutputRipple, "targets/output_ripple_pp_v")
 	add(quantity.InputRipplePP, none, w.InputRipple, "targets/input_ripple_pp_v")
 	add(quantity.InductorRipplePP, none, z.rippleMost, "targets/inductor_ripple_ratio")
 	add(quantity.InductorPeak, none, z.saturationAt, "load/max_a")
@@ -127,7 +128,7 @@ func (z *sizer) limits() {
 		add(quantity.BoundaryLoad, none, w.ContinuousDownTo, "targets/continuous_down_to_a")
 	}
 	if known(r.OutputTolerance) {
-		add(quantity.OutputError, -r.OutputTolerance, r.OutputTolerance, "output/tolerance_ratio")
+		add(quantity.LoadVoltage, r.Output*(1-r.OutputTolerance), r.Output*(1+r.OutputTolerance), "output/tolerance_ratio")
 	}
 	add(quantity.HighSideJunction, none, w.JunctionDegC, "targets/junction_degc")
 	if r.Rectifier == stage.DiodeRectified {

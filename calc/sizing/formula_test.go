@@ -134,6 +134,12 @@ func TestEveryFormulaGivesItsFigure(t *testing.T) {
 		req := generate(k)
 		a := sizing.SizeAt(req, sizing.NewChoices(), req.SwitchingFrequency.Min)
 		for _, w := range a.Windows {
+			if low := w.Least(); a.Status.OK() && low != nil {
+				assert.GreaterOrEqual(t, w.Chosen*(1+1e-9), low.Value, "%d %s by %s", k, w.Name, low.Constraint)
+			}
+			if high := w.Most(); a.Status.OK() && high != nil {
+				assert.LessOrEqual(t, w.Chosen*(1-1e-9), high.Value, "%d %s by %s", k, w.Name, high.Constraint)
+			}
 			for _, b := range w.Bounds {
 				what := fmt.Sprintf("%d %s by %s: %s", k, w.Name, b.Constraint, b.Formula)
 				calctest.Close(t, what, follow(t, b.Formula, b.Inputs), b.Value, 1e-9)

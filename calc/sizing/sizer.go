@@ -94,7 +94,14 @@ func (z *sizer) defaults() {
 	z.assume("targets/efficiency_ratio", e, 0.7, 0.97, "efficiency target not given: resistances of the draft are budgeted for this")
 }
 
+// assume tells what stood in for a field; a later word replaces an earlier one.
 func (z *sizer) assume(field string, value, low, high float64, why string) {
+	for i := range z.ans.Assumed {
+		if z.ans.Assumed[i].Field == field {
+			z.ans.Assumed[i] = stage.Assumed{Field: field, Value: value, Low: low, High: high, Why: why}
+			return
+		}
+	}
 	z.ans.Assumed = append(z.ans.Assumed, stage.Assumed{Field: field, Value: value, Low: low, High: high, Why: why})
 }
 

@@ -29,7 +29,7 @@ func anything(r *rand.Rand) (*stage.Requirement, sizing.Choices) {
 	req := &stage.Requirement{
 		Input: stage.Range{Min: low, Typ: (low + high) / 2, Max: high}, SourceResistance: float64(r.IntN(4)/3) * ratio(1e-6, 1e3),
 		Output: vo, OutputTolerance: float64(r.IntN(2)) * ratio(1e-3, 0.5), LoadCurrent: stage.Range{Min: io * r.Float64() * float64(r.IntN(2)), Max: io},
-		AmbientDegC: stage.Range{Min: -100 + 150*r.Float64(), Max: 60 + 240*r.Float64()}, Rectifier: stage.Rectifier(r.IntN(3)), PhaseCount: 1 + r.IntN(6),
+		AmbientDegC: stage.Range{Min: -100 + 150*r.Float64(), Max: 60 + 60*r.Float64()}, Rectifier: stage.Rectifier(r.IntN(3)), PhaseCount: 1 + r.IntN(6),
 	}
 	req.LoadCurrent.Typ = (req.LoadCurrent.Min + io) / 2
 	req.AmbientDegC.Typ = (req.AmbientDegC.Min + req.AmbientDegC.Max) / 2
@@ -40,7 +40,7 @@ func anything(r *rand.Rand) (*stage.Requirement, sizing.Choices) {
 	t.ContinuousDownTo = maybe(0.5, ratio(1e-5, 1e5))
 	t.LoadStep = stage.LoadStep{Step: maybe(0.5, ratio(1e-5, 1e5)), Slew: maybe(0.5, ratio(1, 1e12)), Deviation: maybe(0.7, ratio(1e-6, 1e3)), Recovery: maybe(0.7, ratio(1e-9, 10))}
 	t.HoldUp = stage.HoldUp{Time: maybe(0.3, ratio(1e-6, 100)), To: ratio(1e-3, 1) * vo}
-	t.Efficiency, t.JunctionDegC, t.Life = maybe(0.5, r.Float64()), maybe(0.5, 500*r.Float64()), maybe(0.3, ratio(1, 1e12))
+	t.Efficiency, t.JunctionDegC, t.Life = maybe(0.5, r.Float64()), maybe(0.5, 90+200*r.Float64()), maybe(0.3, ratio(1, 1e9))
 	c := sizing.NewChoices()
 	if r.IntN(2) == 0 {
 		c.OutputKind, c.InputKind = parts.CapacitorKind(1+r.IntN(7)), parts.CapacitorKind(1+r.IntN(7))

@@ -19,48 +19,63 @@ func (z *sizer) output() {
 	if !ok {
 		return
 	}
-	w := Window{Name: "output_capacitance_f", Unit: "F", Series: z.choice.CapacitorSeries}
-	ripple, sum, rising := z.rippleCapacitance(&first)
-	w.Bounds = append(w.Bounds, ripple)
+	ripple, steady := z.rippleCapacitance(&first)
 	slow := z.slowBounds(&first)
 	if z.failed() {
 		return
 	}
-	carrier := &first
-	need, field := neediest(&ripple, slow)
 	_, most := z.worst(bothLoads, func(c *corner) float64 {
 		v, p := z.swing(c)
 		s, _ := z.summed(c, p-v)
 		return s
 	})
 	rms := most / math.Sqrt(12)
+	need, field := neediest(&ripple, slow)
+	second, two := bank{}, false
+	if need > mostPieces*first.piece.Capacitance && need > 1.5*ripple.Part {
+		second, two = z.bulk(stress, fsum)
+	}
 	d := z.draft
-	if need > mostPieces*first.piece.Capacitance && need > ripple.Part*1.5 {
-		if bulk, ok := z.bulk(stress, fsum); ok {
-			carrier = &bulk
-			slow = z.slowBounds(carrier)
-		}
-	}
-	if carrier == &first {
+	w := Window{Name: "output_capacitance_f", Unit: "F", Series: z.choice.CapacitorSeries, Bounds: []Bound{ripple}}
+	if !two {
 		d.OutputCapacitors = []parts.Capacitor{first.fill(z, need, rms, fsum, field)}
-	} else {
-		need, field = neediest(&Bound{}, slow)
-		d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum, ripple.Field), carrier.fill(z, need, 0, fsum, field)}
+		w.add(slow)
+		z.describe(w, 0, &first, slow, &ripple, &steady)
+		return
 	}
-	for _, b := range slow {
-		w.Bounds = append(w.Bounds, b.Bound)
+	slow = z.slowBounds(&second)
+	need, field = neediest(&Bound{}, slow)
+	d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum, ripple.Field), second.fill(z, need, 0, fsum, field)}
+	z.describe(w, 0, &first, nil, &ripple, &steady)
+	w.Bounds = nil
+	w.add(slow)
+	z.describe(w, 1, &second, slow, nil, nil)
+}
+
+// add appends the bounds by load step and hold-up.
+func (w *Window) add(slow []chargeBound) {
+	for i := range slow {
+		w.Bounds = append(w.Bounds, slow[i].Bound)
 	}
-	w.Preferred, w.Count = d.OutputCapacitors[0].Capacitance, d.OutputCapacitors[0].Count
-	w.Chosen = first.least(&d.OutputCapacitors[0])
-	if carrier != &first {
-		w.Chosen += carrier.least(&d.OutputCapacitors[1])
-	}
+}
+
+// describe completes the window of a filled bank's capacitance and adds it with that
+// of the bank's series resistance.
+func (z *sizer) describe(w Window, k int, b *bank, slow []chargeBound, ripple *Bound, r *steadyRipple) {
+	filled := &z.draft.OutputCapacitors[k]
+	w.Bank, w.Preferred, w.Count, w.Chosen = k, filled.Capacitance, filled.Count, b.least(filled)
 	z.ans.Windows = append(z.ans.Windows, w)
 	if z.failed() {
 		return
 	}
-	z.ans.Windows = append(z.ans.Windows, z.seriesResistance(&first, carrier, slow, ripple, sum, rising))
-	z.outputRMS = rms
+	esr := Window{Name: "output_esr_ohm", Unit: "Ohm", Bank: k, Preferred: math.NaN(), Count: filled.Count, Chosen: b.most(filled)}
+	if ripple != nil {
+		esr.Bounds = append(esr.Bounds, z.rippleResistance(b, filled, ripple, r))
+	}
+	for i := range slow {
+		esr.Bounds = append(esr.Bounds, slow[i].resistance(b, filled))
+	}
+	z.ans.Windows = append(z.ans.Windows, esr)
 }
 
 // neediest returns the greatest rated capacitance that the bounds ask for, and the
@@ -86,30 +101,40 @@ func (z *sizer) bulk(stress, fs float64) (bank, bool) {
 	return bank{}, false
 }
 
-// rippleCapacitance returns the bound by steady ripple, with the ripple current and
-// its rising fraction at the deciding corner.
-func (z *sizer) rippleCapacitance(b *bank) (bound Bound, sum, rising float64) {
+// steadyRipple is the current into the output capacitors at the corner that decides.
+type steadyRipple struct {
+	sum    float64 // [A] peak to peak, of all phases together
+	rising float64 // [1] part of its period in which it rises
+	slope  float64 // [A/s] by which the slope of one phase changes at an edge
+}
+
+// rippleCapacitance returns the bound by steady ripple and the current behind it.
+func (z *sizer) rippleCapacitance(b *bank) (Bound, steadyRipple) {
 	dv, fs := z.ripple, z.phases*z.fsLow
-	figure := func(c *corner) (need, sum, rising float64) {
+	// Of a kind of capacitor, series inductance times capacitance does not depend on
+	// how many are paralleled either: the edge step is an addend of the charge.
+	lambda := b.piece.ESL * b.left * b.piece.Capacitance
+	figure := func(c *corner) (need float64, r steadyRipple) {
 		valley, peak := z.swing(c)
-		sum, rising = z.summed(c, peak-valley)
-		if sum == 0 {
-			return 0, 0, 0.5
+		r.sum, r.rising = z.summed(c, peak-valley)
+		r.slope = c.bridge * (peak - valley) / c.flux(z.fsLow)
+		need = lambda * r.slope / dv
+		if r.sum > 0 {
+			need += modelMargin * CapacitanceForRipple(r.sum, r.rising, fs, dv, b.tau)
 		}
-		return modelMargin * CapacitanceForRipple(sum, rising, fs, dv, b.tau), sum, rising
+		return need, r
 	}
-	c, v := z.worst(bothLoads, func(c *corner) float64 { need, _, _ := figure(c); return need })
-	_, sum, rising = figure(&c)
-	x := b.tau * fs
-	shape, inputs := shapeFormula(rising, x)
-	bound = Bound{
+	c, v := z.worst(bothLoads, func(c *corner) float64 { need, _ := figure(c); return need })
+	_, r := figure(&c)
+	shape, inputs := shapeFormula(r.rising, b.tau*fs)
+	return Bound{
 		Side: AtLeast, Constraint: "output-ripple", Field: "targets/output_ripple_pp_v", Value: v, Factor: b.left, Part: v / b.left, Corner: c.Corner,
 		Ideal:   z.idealRippleCapacitance(),
-		Formula: "C = kM * dI * (" + shape + ") / (N * fs * dV)",
-		Inputs:  append(inputs, Input{"kM", modelMargin, "1"}, Input{"dI", sum, "A"}, Input{"N", z.phases, "1"}, Input{"fs", z.fsLow, "Hz"}, Input{"dV", dv, "V"}),
-		Source:  "triangular current into capacitance and series resistance, exact; derived",
-	}
-	return bound, sum, rising
+		Formula: "C = (kM * dI * (" + shape + ") / (N * fs) + lambda * dIdt) / dV",
+		Inputs: append(inputs, Input{"kM", modelMargin, "1"}, Input{"dI", r.sum, "A"}, Input{"N", z.phases, "1"}, Input{"fs", z.fsLow, "Hz"},
+			Input{"lambda", lambda, "H.F"}, Input{"dIdt", r.slope, "A/s"}, Input{"dV", dv, "V"}),
+		Source: "triangular current into capacitance and series resistance, exact, and the edge step ESL Vin/L; derived, onsemi NCP3170/D, eq. 16 and 17",
+	}, r
 }
 
 // shapeFormula returns ΔV fs C/ΔI in symbols, as rippleShape takes it.
@@ -187,7 +212,7 @@ func (z *sizer) stepBounds(b *bank) []chargeBound {
 	bounds = append(bounds, b.chargeBound("step-waiting", field, "dI * tw", s.Step*t, s.Step, dv,
 		CapacitanceForWaiting(s.Step, (1-IdealDuty(z.req.Input.Max, z.req.Output))/(n*z.fs), s.Deviation), wait.Corner,
 		"longest time without energy; Texas Instruments TPS40200 data sheet SLUS659F", Input{"tw", t, "s"}))
-	fc := z.leastCrossover()
+	fc := crossoverRatio * z.fs
 	return append(bounds, b.chargeBound("step-bandwidth", field, "dI / (2 * pi * fc)", s.Step/(2*math.Pi*fc), s.Step, dv,
 		CapacitanceForBandwidth(s.Step, crossoverRatio*z.fs, s.Deviation), Corner{Frequency: z.fsLow, Input: math.NaN(), Output: math.NaN(), Load: z.req.LoadCurrent.Max, Duty: math.NaN()},
 		"output impedance of a closed loop at its crossover, estimate", Input{"fc", fc, "Hz"}))
@@ -213,33 +238,31 @@ func (z *sizer) holdUp(b *bank) []chargeBound {
 	return []chargeBound{bound}
 }
 
-// seriesResistance returns the window of the series resistance: by ripple for the
-// first bank, by the load step for the bank that carries it.
-func (z *sizer) seriesResistance(first, carrier *bank, slow []chargeBound, ripple Bound, sum, rising float64) Window {
-	d := z.draft
-	w := Window{Name: "output_esr_ohm", Unit: "Ohm", Preferred: math.NaN(), Count: d.OutputCapacitors[0].Count, Chosen: first.most(&d.OutputCapacitors[0])}
-	c, fs, dv := first.least(&d.OutputCapacitors[0]), z.phases*z.fsLow, z.ripple/modelMargin
-	v := ESRForRipple(sum, rising, fs, c, dv)
-	formula, inputs := resistanceFormula(rising, dv*fs*c/sum)
-	w.Bounds = append(w.Bounds, Bound{
-		Side: AtMost, Constraint: "output-ripple", Field: "targets/output_ripple_pp_v", Value: v, Factor: first.grown, Part: v / first.grown, Ideal: z.ripple / sum, Corner: ripple.Corner,
-		Formula: formula, Inputs: append(inputs, Input{"dV", dv, "V"}, Input{"dI", sum, "A"}, Input{"N", z.phases, "1"}, Input{"fs", z.fsLow, "Hz"}, Input{"C", c, "F"}),
-		Source: "triangular current into capacitance and series resistance, exact; derived",
-	})
-	filled := &d.OutputCapacitors[len(d.OutputCapacitors)-1]
-	for _, b := range slow {
-		c := carrier.least(filled)
-		if b.Constraint == "hold-up" {
-			c *= b.Factor / carrier.left
-		}
-		v := (b.within - b.charge/c) / b.current
-		w.Bounds = append(w.Bounds, Bound{
-			Side: AtMost, Constraint: b.Constraint, Field: b.Field, Value: v, Factor: carrier.grown, Part: v / carrier.grown, Ideal: b.within / b.current, Corner: b.Corner,
-			Formula: "ESR = (dV - Q / C) / dI", Inputs: []Input{{"dV", b.within, "V"}, {"Q", b.charge, "C"}, {"C", c, "F"}, {"dI", b.current, "A"}},
-			Source: b.Source,
-		})
+// rippleResistance returns the bound on a filled bank's series resistance by steady
+// ripple: what ESRForRipple leaves at the bank's least capacitance.
+func (z *sizer) rippleResistance(b *bank, filled *parts.Capacitor, ripple *Bound, r *steadyRipple) Bound {
+	c, fs := b.least(filled), z.phases*z.fsLow
+	dv := (z.ripple - filled.BankESL()*r.slope) / modelMargin
+	v := ESRForRipple(r.sum, r.rising, fs, c, dv)
+	formula, inputs := resistanceFormula(r.rising, dv*fs*c/r.sum)
+	return Bound{
+		Side: AtMost, Constraint: "output-ripple", Field: ripple.Field, Value: v, Factor: b.grown, Part: v / b.grown, Ideal: z.ripple / r.sum, Corner: ripple.Corner,
+		Formula: formula, Inputs: append(inputs, Input{"dV", dv, "V"}, Input{"dI", r.sum, "A"}, Input{"N", z.phases, "1"}, Input{"fs", z.fsLow, "Hz"}, Input{"C", c, "F"}),
+		Source: ripple.Source,
 	}
-	return w
+}
+
+// resistance returns the bound on a filled bank's series resistance by the same
+// constraint: what the charge leaves of the voltage.
+func (s *chargeBound) resistance(b *bank, filled *parts.Capacitor) Bound {
+	// Under hold-up the capacitance is the mean over the voltages passed.
+	c := b.least(filled) * s.Factor / b.left
+	v := (s.within - s.charge/c) / s.current
+	return Bound{
+		Side: AtMost, Constraint: s.Constraint, Field: s.Field, Value: v, Factor: b.grown, Part: v / b.grown, Ideal: s.within / s.current, Corner: s.Corner,
+		Formula: "ESR = (dV - Q / C) / dI", Inputs: []Input{{"dV", s.within, "V"}, {"Q", s.charge, "C"}, {"C", c, "F"}, {"dI", s.current, "A"}},
+		Source: s.Source,
+	}
 }
 
 // resistanceFormula returns the branch of ESRForRipple in symbols, y being
@@ -254,10 +277,3 @@ func resistanceFormula(rising, y float64) (string, []Input) {
 	}
 	return "ESR = dV / dI", nil
 }
-
-// leastCrossover returns the lowest crossover frequency of the draft's loop.
-func (z *sizer) leastCrossover() float64 { return crossoverRatio * z.fs * crossoverLeft }
-
-// crossoverLeft is what tolerances leave of the crossover frequency times the
-// capacitance, which in peak current mode depends on the sense gain only.
-const crossoverLeft = 0.8 // [1]
