@@ -16,6 +16,7 @@ type Point struct {
 	Ambient         float64  `json:"ambient_degc"`
 	Age             *float64 `json:"age_ratio,omitzero"`
 	PartTemperature *float64 `json:"part_temperature_degc,omitzero"`
+	Asked           *float64 `json:"asked_v,omitzero"`
 	Control         *Control `json:"control,omitzero"`
 }
 
@@ -37,7 +38,7 @@ type Control struct {
 func (w *Point) Decode(at string, s *stage.Stage) (stage.Point, error) {
 	p := stage.Point{
 		Input: w.Input, SourceResistance: or(w.Source, 0), AmbientDegC: w.Ambient, AgeRatio: or(w.Age, 0),
-		PartTemperatureDegC: or(w.PartTemperature, parts.Unknown), Control: w.Control.decode(),
+		PartTemperatureDegC: or(w.PartTemperature, parts.Unknown), Asked: or(w.Asked, 0), Control: w.Control.decode(),
 	}
 	if l := w.Load; l != nil {
 		p.Load.Current = or(l.Current, 0)
@@ -50,7 +51,7 @@ func (w *Point) Decode(at string, s *stage.Stage) (stage.Point, error) {
 
 // EncodePoint writes a point of calc in the contract's shape.
 func EncodePoint(p *stage.Point) *Point {
-	w := &Point{Input: p.Input, Source: unless(p.SourceResistance, 0), Ambient: p.AmbientDegC, Age: unless(p.AgeRatio, 0), Control: encodeControl(&p.Control)}
+	w := &Point{Input: p.Input, Source: unless(p.SourceResistance, 0), Ambient: p.AmbientDegC, Age: unless(p.AgeRatio, 0), Asked: unless(p.Asked, 0), Control: encodeControl(&p.Control)}
 	w.Load = &Load{Current: &p.Load.Current}
 	if p.Load.Conductance > 0 {
 		r := 1 / p.Load.Conductance

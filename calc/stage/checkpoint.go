@@ -52,6 +52,9 @@ func (p *Point) Check(s *Stage) error {
 	if parts.Known(p.PartTemperatureDegC) {
 		f.within("part_temperature_degc", p.PartTemperatureDegC, -100, 500, "degC")
 	}
+	if p.Asked != 0 {
+		f.within("asked_v", p.Asked, 1e-2, 1e4, "V")
+	}
 	f.control(&p.Control, s, p.Input)
 	return f.err()
 }

@@ -107,6 +107,7 @@ type Point struct {
 	AmbientDegC         float64 // [degC]
 	AgeRatio            float64 // [1] 0 new, 1 end of life
 	PartTemperatureDegC float64 // [degC] every part held there; parts.Unknown: electro-thermal equilibrium
+	Asked               float64 // [V] output voltage that the output error refers to; 0: what the control asks for
 	Control             Control
 }
 
