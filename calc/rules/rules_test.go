@@ -355,8 +355,9 @@ func TestComparePairsByRuleAndPlace(t *testing.T) {
 	}
 	before := []Finding{f("a", "/0", Pass, 0.1), f("a", "/1", Pass, 0.1), f("b", "/0", Fail, -0.1), f("c", "", NotEvaluated, math.NaN())}
 	after := []Finding{f("a", "/1", Pass, 0.1+1e-9), f("b", "/0", Pass, 0.1), f("c", "", NotEvaluated, math.NaN()), f("a", "/2", Pass, 0.1)}
-	var kinds []ChangeKind
-	for _, c := range Compare(before, after) {
+	changes := Compare(before, after)
+	kinds := make([]ChangeKind, 0, len(changes))
+	for _, c := range changes {
 		kinds = append(kinds, c.Kind)
 	}
 	require.Equal(t, []ChangeKind{Unchanged, Better, Unchanged, Appears, Disappears}, kinds)
@@ -417,7 +418,7 @@ func TestLimitsOfARequestAreRules(t *testing.T) {
 		rule, pointer string
 		verdict       Verdict
 	}
-	var got []row
+	got := make([]row, 0, len(r.Findings))
 	for _, f := range r.Findings {
 		got = append(got, row{f.Rule, f.Pointer, f.Verdict})
 	}

@@ -309,8 +309,9 @@ func TestLineResults(t *testing.T) {
 		line(9, "L1", "6u8 20%", "coil-1"), line(4, "R1", "56k2 1%", ""), line(5, "R2", "10.7", ""), line(6, "C1", "22u 16V 20%", ""), line(7, "Q1", "", ""),
 	}, []Rail{r}, nil)
 	require.NoError(t, err)
-	var got []string
-	for _, l := range report.ByLine() {
+	list := report.ByLine()
+	got := make([]string, 0, len(list))
+	for _, l := range list {
 		got = append(got, fmt.Sprint(l.Row, " ", l.Role, " ", l.Designators, " ", l.Verdict))
 	}
 	require.Equal(t, []string{

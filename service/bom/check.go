@@ -1,6 +1,7 @@
 package bom
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"strings"
@@ -109,7 +110,8 @@ func (c *comparison) values(e *Expectation, l *Line) {
 	r, err := notation.Read(e.Kind, text)
 	if err != nil {
 		detail := err.Error()
-		if p, ok := err.(*notation.Problem); ok {
+		var p *notation.Problem
+		if errors.As(err, &p) {
 			detail = fmt.Sprintf("%.60q: %s", p.Text, p.Detail)
 		}
 		c.add(AspectValue, rules.NotEvaluated, notation.SI(e.Value, e.Kind.Unit()), text, detail)

@@ -2,6 +2,7 @@ package notation
 
 import (
 	"encoding/json"
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -163,7 +164,8 @@ func TestAmbiguousTextIsPointedAt(t *testing.T) {
 		t.Run(c.kind.String()+"/"+c.text, func(t *testing.T) {
 			got, err := Read(c.kind, c.text)
 			require.Error(t, err, "read as %+v", got)
-			p := err.(*Problem)
+			var p *Problem
+			require.ErrorAs(t, err, &p)
 			require.NotEmpty(t, p.Detail)
 			require.Contains(t, c.text, p.Text)
 			require.Equal(t, p.Text, c.text[p.Offset:p.Offset+len(p.Text)])
@@ -282,8 +284,8 @@ func FuzzRead(f *testing.F) {
 	f.Fuzz(func(t *testing.T, kind int, text string) {
 		got, err := Read(Kind(uint(kind)%3), text)
 		if err != nil {
-			p := err.(*Problem)
-			if p.Detail == "" || p.Offset < 0 || p.Offset > len(text) {
+			var p *Problem
+			if !errors.As(err, &p) || p.Detail == "" || p.Offset < 0 || p.Offset > len(text) {
 				t.Fatalf("%q: problem without a place: %+v", text, p)
 			}
 			return

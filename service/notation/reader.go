@@ -127,7 +127,7 @@ func (r *reader) words() []word {
 	var joined []word
 	for i := 0; i < len(list); i++ {
 		w := list[i]
-		if i+1 < len(list) && bare.MatchString(w.text) && isUnit(list[i+1].text) && !(packages[w.text] && len(list[i+1].text) == 1) && strings.TrimSpace(r.plain[w.at+len(w.text):list[i+1].at]) == "" {
+		if i+1 < len(list) && bare.MatchString(w.text) && isUnit(list[i+1].text) && (!packages[w.text] || len(list[i+1].text) > 1) && strings.TrimSpace(r.plain[w.at+len(w.text):list[i+1].at]) == "" {
 			next := list[i+1]
 			w.text = r.plain[w.at : next.at+len(next.text)]
 			i++

@@ -44,7 +44,7 @@ func (r *reader) exponent(w word, number, rest string) (float64, bool, *Problem)
 	if len(sign) > 1 || !digits(power) || len(power) > 3 {
 		return 0, false, nil
 	}
-	if !strings.EqualFold(unit, r.kind.Unit()) && !(r.kind == Resistor && strings.EqualFold(unit, "ohm")) {
+	if !strings.EqualFold(unit, r.kind.Unit()) && (r.kind != Resistor || !strings.EqualFold(unit, "ohm")) {
 		return 0, false, r.problem(w, "an exponent, or a letter in the place of the decimal point? Write the unit behind it")
 	}
 	v, _, p := r.number(w, number, "e"+sign+power)

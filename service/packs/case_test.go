@@ -149,8 +149,9 @@ func randomise(c *rules.Case, r *rand.Rand) {
 }
 
 func allBuiltin() []*rules.Pack {
-	var all []*rules.Pack
-	for _, e := range Builtin().All() {
+	entries := Builtin().All()
+	all := make([]*rules.Pack, 0, len(entries))
+	for _, e := range entries {
 		all = append(all, e.Pack)
 	}
 	return all

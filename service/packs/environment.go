@@ -3,6 +3,7 @@ package packs
 import (
 	"maps"
 	"math"
+	"slices"
 	"sync"
 
 	"railproof/calc/rules"
@@ -84,7 +85,7 @@ func newEnvironment(s rules.Scope) *environment {
 	} {
 		operatorsUsed.IncludeFunctions = append(operatorsUsed.IncludeFunctions, env.NewFunction(name))
 	}
-	options := append(variables, functions()...)
+	options := slices.Concat(variables, functions())
 	options = append(options,
 		cel.StdLib(cel.StdLibSubset(operatorsUsed)),
 		cel.ClearMacros(),

@@ -43,7 +43,7 @@ func (l *Library) Pack(id string) (Entry, bool) {
 
 // All returns every pack, sorted by identifier.
 func (l *Library) All() []Entry {
-	var all []Entry
+	all := make([]Entry, 0, len(l.loaded))
 	for _, id := range slices.Sorted(maps.Keys(l.loaded)) {
 		all = append(all, Entry{l.loaded[id].pack, &l.loaded[id].document})
 	}

@@ -11,7 +11,7 @@ type log struct {
 type run struct {
 	Tool        tool         `json:"tool"`
 	Invocations []invocation `json:"invocations"`
-	Artifacts   []artifact   `json:"artifacts,omitempty"`
+	Documents   []document   `json:"artifacts,omitempty"` //nolint:misspell // the standard spells it so
 	Results     []result     `json:"results"`
 	Properties  *runBag      `json:"properties,omitempty"`
 }
@@ -47,11 +47,11 @@ type invocation struct {
 	ExecutionSuccessful bool `json:"executionSuccessful"`
 }
 
-type artifact struct {
-	Location artifactLocation `json:"location"`
+type document struct {
+	Location documentLocation `json:"location"`
 }
 
-type artifactLocation struct {
+type documentLocation struct {
 	URI   string `json:"uri"`
 	Index *int   `json:"index,omitempty"`
 }
@@ -74,7 +74,7 @@ type location struct {
 }
 
 type physicalLocation struct {
-	Artifact artifactLocation `json:"artifactLocation"`
+	Document documentLocation `json:"artifactLocation"`
 	Region   *region          `json:"region,omitempty"`
 }
 

@@ -50,7 +50,7 @@ func Write(r *rules.Report, o Options) ([]byte, error) {
 		one.Properties.Overrides = append(one.Properties.Overrides, override(v))
 	}
 	if o.InputURI != "" {
-		one.Artifacts = []artifact{{artifactLocation{URI: o.InputURI}}}
+		one.Documents = []document{{documentLocation{URI: o.InputURI}}}
 	}
 	out, err := json.MarshalIndent(log{Schema: schemaURI, Version: "2.1.0", Runs: []run{one}}, "", "  ")
 	if err != nil {
@@ -117,7 +117,7 @@ func (w *writer) location(pointer string) location {
 		return l
 	}
 	first := 0
-	l.Physical = &physicalLocation{Artifact: artifactLocation{URI: w.options.InputURI, Index: &first}}
+	l.Physical = &physicalLocation{Document: documentLocation{URI: w.options.InputURI, Index: &first}}
 	if at, ok := w.options.Places.Find(pointer); ok {
 		l.Physical.Region = &region{at.Line, at.Column}
 	}

@@ -32,8 +32,10 @@ func report() *rules.Report {
 	waiver := &rules.Waiver{Rule: "p/c", Reason: "measured on the bench", Approver: "A. Harbour", Expires: rules.Date{Year: 2030, Month: 5, Day: 1}}
 	nan := math.NaN()
 	f := func(rule, pointer string, s rules.Severity, v rules.Verdict) rules.Finding {
-		return rules.Finding{Rule: rule, Title: "Title of " + rule, Severity: s, Pointer: pointer, Verdict: v, Value: 3, Limit: 2, Unit: "A", Margin: -0.5, ValueLow: nan, ValueHigh: nan,
-			Detail: "Detail of " + rule, Basis: "common practice", Pack: "p", Edition: "1", Provenance: "practice", Corners: []int{4}}
+		return rules.Finding{
+			Rule: rule, Title: "Title of " + rule, Severity: s, Pointer: pointer, Verdict: v, Value: 3, Limit: 2, Unit: "A", Margin: -0.5, ValueLow: nan, ValueHigh: nan,
+			Detail: "Detail of " + rule, Basis: "common practice", Pack: "p", Edition: "1", Provenance: "practice", Corners: []int{4},
+		}
 	}
 	waived := f("p/c", "/stage/inductor", rules.Error, rules.Waived)
 	waived.WaivedFrom, waived.Waiver = rules.Fail, waiver
@@ -107,7 +109,7 @@ func TestResults(t *testing.T) {
 	require.NoError(t, json.Unmarshal(out, &l))
 	r := l.Runs[0]
 	require.Len(t, r.Tool.Driver.Rules, 5, "a rule stands once")
-	kinds := []string{}
+	kinds := make([]string, 0, len(r.Results))
 	for _, x := range r.Results {
 		kinds = append(kinds, x.Kind+"/"+x.Level)
 		require.Equal(t, x.RuleID, r.Tool.Driver.Rules[x.RuleIndex].ID)
