@@ -13,6 +13,7 @@ type workspace struct {
 	resolvent [maxSegments]statespace.Complex      // (jw I - A) of each switch state, stage only, factored
 	observe   [maxSegments]statespace.ComplexPoint // output row times its inverse
 	forced    [maxSegments]statespace.ComplexPoint // periodic response to the excitation
+	turn      [maxSegments]complex128              // e^{jwt} as each segment ends
 	network   statespace.Complex                   // (jw I - A) of the compensator, factored
 	inner     statespace.Complex
 	closed    statespace.Complex
@@ -37,9 +38,9 @@ const noInput = -1
 // component of the free part is -c (jw - A)^-1 [e^{-jwt} x] over the interval.
 func (s *Sampled) At(frequency float64) Transfers {
 	w := 2 * math.Pi * frequency
-	jw := complex(0, w)
-	z := cmplx.Exp(jw * complex(s.window.length, 0))
-	s.prepare(jw, z)
+	sin, cos := math.Sincos(w * s.window.length)
+	z := complex(cos, sin)
+	s.prepare(w, z)
 	t := Transfers{Loop: s.transfer.At(z)}
 	t.Control = s.respond(w, excitation{input: noInput, drive: 1})
 	t.Duty = complex(math.NaN(), math.NaN())
@@ -58,10 +59,15 @@ func (s *Sampled) At(frequency float64) Transfers {
 
 // prepare factors the matrices of one frequency. The states before Network move
 // independently of the compensator, so their systems are factored by themselves.
-func (s *Sampled) prepare(jw, z complex128) {
+func (s *Sampled) prepare(w float64, z complex128) {
 	j, ws := &s.joint, &s.complexs
 	m := j.Network
+	jw := complex(0, w)
+	at := 0.0
 	for k := range s.window.count {
+		at += s.window.segment[k].time
+		sin, cos := math.Sincos(w * at)
+		ws.turn[k] = complex(cos, sin)
 		if s.config[k] != k {
 			continue
 		}
@@ -117,7 +123,7 @@ func (s *Sampled) respond(w float64, e excitation) complex128 {
 
 	// The window's answer to a zero deviation is the right side of z x = M x + h.
 	var x statespace.ComplexPoint
-	s.travel(w, n, &x, late, e.input != noInput, nil)
+	s.travel(n, &x, late, e.input != noInput, nil)
 	rotateComplex(&x, j.Circuit.Phases)
 	solver.Solve(&x)
 	late -= complex(s.plant.sense(), 0) * x[0]
@@ -127,7 +133,7 @@ func (s *Sampled) respond(w float64, e excitation) complex128 {
 		}
 	}
 	var component complex128
-	s.travel(w, n, &x, late, e.input != noInput, &component)
+	s.travel(n, &x, late, e.input != noInput, &component)
 	component /= complex(s.window.length, 0)
 	if e.input != noInput {
 		component += complex(j.Output[j.N+e.input], 0)
@@ -182,10 +188,10 @@ func (s *Sampled) force(n, input int) {
 // travel carries the deviation x of the first n states through the window, with
 // the turn-off late by late/Slope, and adds to component the integral of
 // e^{-jwt} times the output, the excitation's direct share left out.
-func (s *Sampled) travel(w float64, n int, x *statespace.ComplexPoint, late complex128, excited bool, component *complex128) {
+func (s *Sampled) travel(n int, x *statespace.ComplexPoint, late complex128, excited bool, component *complex128) {
 	j, ws := &s.joint, &s.complexs
 	width := j.N + Inputs
-	at, turn := 0.0, complex128(1) // e^{jwt}
+	turn := complex128(1) // e^{jwt}
 	for k := range s.window.count {
 		g := &s.window.segment[k]
 		if g.time > 0 {
@@ -197,18 +203,16 @@ func (s *Sampled) travel(w float64, n int, x *statespace.ComplexPoint, late comp
 				}
 			}
 			if component != nil {
-				*component += observed(observe, x, j.Network, conjugate(turn))
+				*component += observed(observe, x, j.Network) * conjugate(turn)
 			}
 			f := s.maps[k].F[:]
 			var next statespace.ComplexPoint
 			for i := range n {
 				next[i] = dotComplex(f[i*width:i*width+n], x)
 			}
-			at += g.time
-			sin, cos := math.Sincos(w * at)
-			turn = complex(cos, sin)
+			turn = ws.turn[k]
 			if component != nil {
-				*component -= observed(observe, &next, j.Network, conjugate(turn))
+				*component -= observed(observe, &next, j.Network) * conjugate(turn)
 			}
 			copy(x[:n], next[:n])
 			if excited {
@@ -234,12 +238,12 @@ func (s *Sampled) travel(w float64, n int, x *statespace.ComplexPoint, late comp
 	}
 }
 
-func observed(row, x *statespace.ComplexPoint, n int, factor complex128) complex128 {
+func observed(row, x *statespace.ComplexPoint, n int) complex128 {
 	sum := complex128(0)
 	for i := range n {
 		sum += row[i] * x[i]
 	}
-	return sum * factor
+	return sum
 }
 
 func dotComplex(row []float64, x *statespace.ComplexPoint) complex128 {

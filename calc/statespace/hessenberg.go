@@ -108,17 +108,12 @@ func (t *Transfer) At(z complex128) complex128 {
 			continue
 		}
 		f := lower[k] * reciprocal(upper[k])
-		for j := k + 1; j < n; j++ {
-			lower[j] -= f * upper[j]
-		}
+		subtract(lower[k+1:], upper[k+1:], f)
 		b[k+1] -= f * b[k]
 	}
 	sum := complex128(0)
 	for i := n - 1; i >= 0; i-- {
-		x := b[i]
-		for j := i + 1; j < n; j++ {
-			x -= a[i*n+j] * b[j]
-		}
+		x := b[i] - product(a[i*n+i+1:i*n+n], b[i+1:n])
 		b[i] = x * reciprocal(a[i*n+i])
 		sum += complex(t.row[i]*real(b[i]), t.row[i]*imag(b[i]))
 	}

@@ -57,8 +57,9 @@ func (m *Real) Solve(b *Point) bool {
 // ComplexPoint is a complex state.
 type ComplexPoint [MaxStates]complex128
 
-// Complex is a square complex matrix of up to MaxStates rows with its triangular
-// factors, row by row with stride N.
+// Complex is a square complex matrix of up to MaxStates rows and then its
+// triangular factors, row by row with stride N; the factors' diagonal holds the
+// reciprocals of the pivots.
 type Complex struct {
 	N     int
 	A     [MaxStates * MaxStates]complex128 // [any]
@@ -80,24 +81,33 @@ func (m *Complex) Factor() bool {
 		if m.A[p*n+k] == 0 {
 			return false
 		}
+		upper := m.A[k*n : k*n+n]
 		if p != k {
-			for j := 0; j < n; j++ {
-				m.A[p*n+j], m.A[k*n+j] = m.A[k*n+j], m.A[p*n+j]
+			other := m.A[p*n : p*n+n]
+			for j := range upper {
+				upper[j], other[j] = other[j], upper[j]
 			}
 		}
-		inverse := reciprocal(m.A[k*n+k])
+		upper[k] = reciprocal(upper[k])
 		for i := k + 1; i < n; i++ {
-			if m.A[i*n+k] == 0 {
+			row := m.A[i*n : i*n+n]
+			if row[k] == 0 {
 				continue
 			}
-			f := m.A[i*n+k] * inverse
-			m.A[i*n+k] = f
-			for j := k + 1; j < n; j++ {
-				m.A[i*n+j] -= f * m.A[k*n+j]
-			}
+			row[k] *= upper[k]
+			subtract(row[k+1:], upper[k+1:], row[k])
 		}
 	}
 	return true
+}
+
+// subtract takes f times b from a.
+func subtract(a, b []complex128, f complex128) {
+	b = b[:len(a)]
+	re, im := real(f), imag(f)
+	for j, y := range b {
+		a[j] -= complex(float64(re*real(y))-float64(im*imag(y)), float64(re*imag(y))+float64(im*real(y)))
+	}
 }
 
 // Solve replaces b[:N] by the solution of M x = b, after Factor.
@@ -108,31 +118,34 @@ func (m *Complex) Solve(b *ComplexPoint) {
 		b[p], b[k] = b[k], b[p]
 	}
 	for i := 1; i < n; i++ {
-		for j := 0; j < i; j++ {
-			b[i] -= m.A[i*n+j] * b[j]
-		}
+		b[i] -= product(m.A[i*n:i*n+i], b[:i])
 	}
 	for i := n - 1; i >= 0; i-- {
-		for j := i + 1; j < n; j++ {
-			b[i] -= m.A[i*n+j] * b[j]
-		}
-		b[i] /= m.A[i*n+i]
+		b[i] = (b[i] - product(m.A[i*n+i+1:i*n+n], b[i+1:n])) * m.A[i*n+i]
 	}
+}
+
+// product is the scalar product without conjugation.
+func product(a, b []complex128) complex128 {
+	b = b[:len(a)]
+	var re, im float64
+	for i, x := range a {
+		y := b[i]
+		re += float64(real(x)*real(y)) - float64(imag(x)*imag(y))
+		im += float64(real(x)*imag(y)) + float64(imag(x)*real(y))
+	}
+	return complex(re, im)
 }
 
 // SolveTransposed replaces b[:N] by the solution of x M = b, after Factor.
 func (m *Complex) SolveTransposed(b *ComplexPoint) {
 	n := m.N
 	for i := 0; i < n; i++ {
-		for j := 0; j < i; j++ {
-			b[i] -= m.A[j*n+i] * b[j]
-		}
-		b[i] /= m.A[i*n+i]
+		b[i] *= m.A[i*n+i]
+		subtract(b[i+1:n], m.A[i*n+i+1:i*n+n], b[i])
 	}
-	for i := n - 2; i >= 0; i-- {
-		for j := i + 1; j < n; j++ {
-			b[i] -= m.A[j*n+i] * b[j]
-		}
+	for i := n - 1; i > 0; i-- {
+		subtract(b[:i], m.A[i*n:i*n+i], b[i])
 	}
 	for k := n - 1; k >= 0; k-- {
 		p := m.pivot[k]
