@@ -57,18 +57,18 @@ type basis struct {
 func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	list := make([]Assumption, 0, len(d.Assumed)+4)
 	places := make(map[string]*float64, len(d.Assumed))
-	if base != nil && len(d.Assumed) > 0 {
+	if len(d.Assumed) > 0 {
 		for _, f := range e.Stage().Fields() {
 			places[f.ID] = f.Value
 		}
 	}
 	var low, high evaluate.Result
 	for _, a := range d.Assumed {
-		if !bears(d.Stage, a.Field) {
+		if !bears(places, a.Field) {
 			continue
 		}
 		item := Assumption{Pointer: d.At + "/" + a.Field, Value: finite(a.Value), Low: finite(a.Low), High: finite(a.High), Why: a.Why}
-		if place := places[a.Field]; place != nil && a.Low != a.High {
+		if place := places[a.Field]; base != nil && place != nil && a.Low != a.High {
 			was := *place
 			*place = a.Low
 			e.Eval(base.point, &low)
@@ -84,9 +84,9 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 
 // bears reports whether the answer rests on a default: what a life is computed
 // from does not count where the data sheet states none.
-func bears(s *stage.Stage, field string) bool {
+func bears(places map[string]*float64, field string) bool {
 	at, _, life := strings.Cut(field, "/life/")
-	return !life || parts.Known(*s.Field(at + "/life/rated_s"))
+	return !life || parts.Known(*places[at+"/life/rated_s"])
 }
 
 // effect picks the quantity that moves most between the results.

@@ -60,20 +60,27 @@ func onset(e *evaluate.Evaluator, p *stage.Point) *Onset {
 			return r.Status.Figures()
 		})
 	}
-	o := &Onset{AmbientDegC: search(&q.AmbientDegC, coldestAmbient), LoadCurrent: search(&q.Load.Current, 0), Input: p.Input}
-	switch {
-	case parts.Known(o.AmbientDegC):
+	o := &Onset{AmbientDegC: search(&q.AmbientDegC, coldestAmbient), LoadCurrent: search(&q.Load.Current, 0), Input: p.Input, Feedback: parts.Unknown}
+	o.Detail = "no stable equilibrium was found at any colder ambient or smaller load"
+	if parts.Known(o.AmbientDegC) {
 		q.AmbientDegC = o.AmbientDegC
-		o.Detail = "runaway begins just above this ambient temperature"
-	case parts.Known(o.LoadCurrent):
-		q.Load.Current = o.LoadCurrent
-		o.Detail = "runaway begins just above this load"
-	default:
-		q.Load = stage.Load{}
-		o.Detail = "no stable equilibrium was found at any colder ambient or smaller load"
+		o.closer(e, q, "runaway begins just above this ambient temperature")
+		q = *p
 	}
-	o.Part, o.Feedback = fastest(e, q)
+	if parts.Known(o.LoadCurrent) {
+		q.Load.Current = o.LoadCurrent
+		o.closer(e, q, "runaway begins just above this load")
+	}
 	return o
+}
+
+// closer takes part and feedback from a point just before runaway, unless another
+// point is nearer to the loss of stability.
+func (o *Onset) closer(e *evaluate.Evaluator, p stage.Point, detail string) {
+	part, feedback := fastest(e, p)
+	if !(feedback <= o.Feedback) {
+		o.Part, o.Feedback, o.Detail = part, feedback, detail
+	}
 }
 
 // lastCalm halves the interval between a value at which calm does not hold and an

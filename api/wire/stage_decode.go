@@ -48,6 +48,7 @@ func (d *Decoded) numbers(w *Stage, root string, faults *[]Fault) {
 	for _, f := range d.Stage.Fields() {
 		s, found := given[f.ID]
 		if !found {
+			*f.Value = parts.Unknown
 			continue
 		}
 		delete(given, f.ID)

@@ -2,7 +2,9 @@ package wire
 
 import (
 	"encoding/json"
+	"errors"
 	"reflect"
+	"strings"
 	"testing"
 
 	v2 "github.com/go-json-experiment/json"
@@ -130,4 +132,23 @@ func TestEncodeAndDecodeAgree(t *testing.T) {
 	}
 	require.Equal(t, d.Stage.HighSide.OnResistanceTemp, again.Stage.HighSide.OnResistanceTemp)
 	require.Equal(t, d.Stage.OutputCapacitors[0].CapacitanceAtBias, again.Stage.OutputCapacitors[0].CapacitanceAtBias)
+}
+
+// The numbers that only some modulators and compensators have are unknown until
+// they are given, whatever the order in which the topology becomes known.
+func TestLoopValuesAreUnknownUntilGiven(t *testing.T) {
+	text := strings.Replace(readExample(t), `"feedback":`, `"modulator": {"mode": "peak-current", "sense_ohm": 0.05},
+		"compensator": {"type": "transconductance-2", "transconductance_s": 1e-3, "feedback_f": 1e-8, "feedback_ohm": 1e4}, "feedback":`, 1)
+	d, err := parseStage(t, []byte(text)).Decode("/stage")
+	require.NoError(t, err)
+	var assumed []string
+	for _, a := range d.Assumed {
+		assumed = append(assumed, a.Field)
+	}
+	require.Subset(t, assumed, []string{"modulator/slope_v_per_s", "compensator/output_ohm", "compensator/shunt_f"})
+	_, err = parseStage(t, []byte(strings.Replace(text, `, "sense_ohm": 0.05`, ``, 1))).Decode("/stage")
+	invalid, ok := errors.AsType[*InvalidError](err)
+	require.True(t, ok)
+	require.Equal(t, "required", invalid.Faults[0].Keyword)
+	require.Equal(t, "/stage/modulator/sense_ohm", invalid.Faults[0].Pointer)
 }
