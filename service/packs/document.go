@@ -1,8 +1,3 @@
-// Package packs holds the design rules as data: documents in YAML or JSON whose
-// conditions, values and limits are expressions in the Common Expression
-// Language. A document is checked when it is loaded, for names, types and
-// dimensions, and made into functions that calc/rules calls; nothing is left to
-// find out when a rule fires.
 package packs
 
 import (
