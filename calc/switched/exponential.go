@@ -30,7 +30,7 @@ func terms(theta float64) int {
 
 // square is a matrix with as many rows as the circuit has states, row by row
 // without gaps.
-type square [MaxStates * MaxStates]float64
+type square [maxStates * maxStates]float64
 
 // ladder holds the interval map over h, 2h, 4h ... up to the whole interval:
 //
@@ -134,7 +134,7 @@ func (tp *topology) matrix(nw *network, h float64, b *square) {
 		hl := -h * tp.invL[p]
 		for q := range phases {
 			row[q] = nw.rho * hl
-			if tp.pos[q] == Resting {
+			if tp.pos[q] == resting {
 				row[q] = 0
 			}
 		}
@@ -150,7 +150,7 @@ func (tp *topology) matrix(nw *network, h float64, b *square) {
 		row := b[(phases+k)*n : (phases+k)*n+n]
 		for q := range phases {
 			row[q] = nw.inject[k] * h
-			if tp.pos[q] == Resting {
+			if tp.pos[q] == resting {
 				row[q] = 0
 			}
 		}
@@ -163,24 +163,6 @@ func (tp *topology) matrix(nw *network, h float64, b *square) {
 	}
 	if nw.input.banks > 0 {
 		nw.input.matrix(nw, tp, h, b)
-	}
-}
-
-// displace writes ∫0^h exp(Aτ) y dτ = h Σ (A h)^k y/(k+1)!, the way the state
-// goes in h when it sets out at rate y.
-func (tp *topology) displace(nw *network, y *vec, h float64, terms int, dst *vec) {
-	var term, next vec
-	for i := range nw.n {
-		term[i] = y[i] * h
-		dst[i] = term[i]
-	}
-	for k := 2; k <= terms+1; k++ {
-		tp.rate(nw, &term, &next)
-		q := h * inverse[k]
-		for i := range nw.n {
-			term[i] = next[i] * q
-			dst[i] += term[i]
-		}
 	}
 }
 
@@ -214,7 +196,7 @@ func (ld *ladder) stepRate(l int, y, dst *vec, n int) {
 // solve overwrites x with the solution of a x = b and a with its elimination.
 // Rows are scaled by their largest entry before a pivot is chosen, for currents
 // and voltages have different units. It reports false for a singular matrix.
-func solve(a *square, pivot *[MaxStates]int, x *vec, n int) bool {
+func solve(a *square, pivot *[maxStates]int, x *vec, n int) bool {
 	var scale vec
 	for i := range n {
 		big := 0.0
@@ -257,7 +239,7 @@ func solve(a *square, pivot *[MaxStates]int, x *vec, n int) bool {
 }
 
 // substitute solves with an elimination left by solve.
-func substitute(a *square, pivot *[MaxStates]int, x *vec, n int) {
+func substitute(a *square, pivot *[maxStates]int, x *vec, n int) {
 	for k := range n {
 		at := pivot[k]
 		x[k], x[at] = x[at], x[k]

@@ -23,7 +23,7 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 	v := &s.iv[k]
 	count := 0
 	for j := range nw.phases {
-		if v.top.pos[j] != Resting {
+		if v.top.pos[j] != resting {
 			s.watches[count].only = j
 			count++
 		}
@@ -35,7 +35,7 @@ func (s *Solver) extremes(k int, rate *vec, legs *[MaxPhases]legTally, out *exte
 	s.scan(k, rate, count)
 	count = 0
 	for j := range nw.phases {
-		if v.top.pos[j] != Resting {
+		if v.top.pos[j] != resting {
 			e := &s.watches[count].span
 			into := &legs[s.legOf(j)].span
 			into.add(s.ref.i[j] + e.least)
@@ -66,7 +66,7 @@ func (s *Solver) nodeRange() extent {
 		v, ld := &s.iv[k], s.rungs(k)
 		rate := &s.moments.y0
 		v.top.slope(&s.nw, &v.start, rate)
-		s.work.set(ld, &v.top, ld.cell, &v.start, rate, s.nw.n)
+		s.work.set(ld, ld.cell, &v.start, rate, s.nw.n)
 		s.scan(k, rate, 1)
 		out.add(s.watches[0].span.least)
 		out.add(s.watches[0].span.most)
@@ -138,7 +138,7 @@ func (s *Solver) descend(v *interval, ld *ladder, m, at int, y vec, wt *watch) {
 		}
 		at >>= 1
 	}
-	s.work.set(ld, &v.top, m, &x, &y, n)
+	s.work.set(ld, m, &x, &y, n)
 	s.work.pick(wt, n)
 	s.work.extremes(&wt.span)
 }

@@ -45,7 +45,7 @@ func (in *inputNode) set(banks int, bank *[MaxBanks]Bank, mean float64) {
 func (in *inputNode) drive(nw *network, ref *reference, tp *topology) {
 	current := in.mean
 	for p := range nw.phases {
-		if tp.pos[p] == High {
+		if tp.pos[p] == high {
 			current -= ref.i[p]
 		}
 	}
@@ -56,16 +56,16 @@ func (in *inputNode) drive(nw *network, ref *reference, tp *topology) {
 	}
 }
 
-func (in *inputNode) rate(nw *network, tp *topology, x, y *vec) {
+func (in *inputNode) slope(nw *network, tp *topology, x, y *vec) {
 	current := 0.0
 	for p := range nw.phases {
-		if tp.pos[p] == High {
+		if tp.pos[p] == high {
 			current += x[p]
 		}
 	}
 	at := nw.phases + nw.banks
 	for k := range in.banks {
-		acc := -in.inject[k] * current
+		acc := tp.b[at+k] - in.inject[k]*current
 		for j := range in.banks {
 			acc += in.relax[k][j] * x[at+j]
 		}
@@ -82,7 +82,7 @@ func (in *inputNode) matrix(nw *network, tp *topology, h float64, b *square) {
 			row[j] = 0
 		}
 		for p := range nw.phases {
-			if tp.pos[p] == High {
+			if tp.pos[p] == high {
 				row[p] = -in.inject[k] * h
 			}
 		}
@@ -199,7 +199,7 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 		s.watches[0].only = -1
 		offset := nw.input.mean
 		for p := range nw.phases {
-			if v.top.pos[p] == High {
+			if v.top.pos[p] == high {
 				w[p] = -nw.input.rho
 				offset -= s.ref.i[p]
 			}

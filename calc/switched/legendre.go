@@ -36,7 +36,7 @@ type cell struct {
 }
 
 // set expands the state that starts at x with rate y over rung l of the ladder.
-func (ce *cell) set(ld *ladder, tp *topology, l int, x, y *vec, n int) {
+func (ce *cell) set(ld *ladder, l int, x, y *vec, n int) {
 	ce.h = ld.h[l]
 	half := 0.5 * ce.h
 	ce.order = min(terms(ld.norm*half)+2, maxTerms)

@@ -31,7 +31,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 	m := &s.moments
 	for k := range s.count {
 		v := &s.iv[k]
-		single := nw.phases == 1 && v.top.pos[0] != Resting
+		single := nw.phases == 1 && v.top.pos[0] != resting
 		m.set(s, k, !single)
 		var lit tally
 		var current, node linear
@@ -42,23 +42,23 @@ func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 		}
 		for j := range nw.phases {
 			lt := &legs[s.legOf(j)]
-			if v.top.pos[j] == Resting {
+			if v.top.pos[j] == resting {
 				lt.span.add(0)
 				continue
 			}
 			i := s.ref.i[j]
 			q := m.q[j]
 			part := tally{i*v.t + q, i*i*v.t + 2*i*q + m.x[j*n+j]}
-			if v.top.pos[j] == High {
+			if v.top.pos[j] == high {
 				lt.high.charge += part.charge
 				lt.high.square += part.square
 				lit.charge += part.charge
 				for l := range nw.phases {
-					if v.top.pos[l] == High {
+					if v.top.pos[l] == high {
 						lit.square += i*s.ref.i[l]*v.t + s.ref.i[l]*q + i*m.q[l] + m.x[j*n+l]
 					}
 				}
-				if s.next(k, j) != High {
+				if s.next(k, j) != high {
 					lt.cut = i + v.stop[j]
 				}
 			} else {
@@ -66,7 +66,7 @@ func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 				lt.rect.square += part.square
 				lt.conduct += v.t
 			}
-			if s.next(k, j) == High && (v.top.pos[j] != High || s.cyclic && j == nw.phases-1) {
+			if s.next(k, j) == high && (v.top.pos[j] != high || s.cyclic && j == nw.phases-1) {
 				lt.turnOn = i + v.stop[j]
 			}
 		}
@@ -118,7 +118,7 @@ func (s *Solver) drawn(k int, charge float64) feed {
 	v.top.slope(&s.nw, &v.stop, &rate)
 	f := feed{t: v.t, charge: charge}
 	for j := range s.nw.phases {
-		if v.top.pos[j] == High {
+		if v.top.pos[j] == high {
 			f.i0 += s.ref.i[j] + v.start[j]
 			f.i1 += s.ref.i[j] + v.stop[j]
 			f.d0 += s.moments.y0[j]

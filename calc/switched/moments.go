@@ -30,7 +30,7 @@ func (m *moments) set(s *Solver, k int, all bool) {
 	ld := s.rungs(k)
 	v.top.slope(&s.nw, &v.start, &m.y0)
 	ce := &s.work
-	ce.set(ld, &v.top, ld.cell, &v.start, &m.y0, n)
+	ce.set(ld, ld.cell, &v.start, &m.y0, n)
 	m.project(ce, 1, 2/ce.h, n)
 	m.products(ce.h, &m.y, n)
 	if all {

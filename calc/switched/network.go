@@ -2,24 +2,21 @@ package switched
 
 import "math"
 
-// MaxStates is the greatest number of states of a circuit with its input banks.
-const MaxStates = MaxPhases + 2*MaxBanks
+const maxStates = MaxPhases + 2*MaxBanks
 
-// State holds one current per phase [A], then one voltage per output bank [V],
-// then, where they are asked for, one per input bank, without gap; or the rate of
-// these [A/s, V/s], a deviation, or weights of a sum over them. Entries beyond
-// the circuit's size are not used.
-type State [MaxStates]float64
+// vec holds one current per phase [A], then one voltage per output bank [V],
+// then, where they are asked for, one per input bank, without gap; or the rates
+// of these, a deviation, or weights of a sum over them. Entries beyond the
+// circuit's size are not used.
+type vec [maxStates]float64
 
-type vec = State
-
-// Position tells where the switches of one phase stand.
-type Position uint8
+// position tells where the switches of one phase stand.
+type position uint8
 
 const (
-	Resting    Position = iota // both open, no current
-	High                       // high side on
-	Rectifying                 // rectifier conducts
+	resting    position = iota // both open, no current
+	high                       // high side on
+	rectifying                 // rectifier conducts
 )
 
 // network is what no switch touches: the output node and its banks.
@@ -116,7 +113,7 @@ func (r *reference) set(nw *network, v, perPhase float64) {
 //
 // for each phase that conducts. A phase at rest has no row.
 type topology struct {
-	pos  [MaxPhases]Position
+	pos  [MaxPhases]position
 	r    [MaxPhases]float64 // resistance in the conducting path
 	invL [MaxPhases]float64 // 0 at rest
 	b    vec
@@ -129,12 +126,12 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 		leg := c.leg(p)
 		var u float64
 		switch tp.pos[p] {
-		case Resting:
+		case resting:
 			tp.r[p], tp.invL[p], tp.b[p] = 0, 0, 0
 			continue
-		case High:
+		case high:
 			u, tp.r[p] = c.Vin, leg.Winding+leg.HighSide
-		case Rectifying:
+		case rectifying:
 			u, tp.r[p] = -leg.Rectifier.Threshold, leg.Winding+leg.Rectifier.Slope
 		}
 		tp.invL[p] = 1 / leg.L
@@ -157,8 +154,8 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 	}
 }
 
-// rate writes y = A x.
-func (tp *topology) rate(nw *network, x, y *vec) {
+// slope writes y = A x + b, the time derivative of the state.
+func (tp *topology) slope(nw *network, x, y *vec) {
 	sum := 0.0
 	for p := range nw.phases {
 		sum += x[p]
@@ -169,10 +166,10 @@ func (tp *topology) rate(nw *network, x, y *vec) {
 		vo += nw.couple[k] * v
 	}
 	for p := range nw.phases {
-		y[p] = -(tp.r[p]*x[p] + vo) * tp.invL[p]
+		y[p] = tp.b[p] - (tp.r[p]*x[p]+vo)*tp.invL[p]
 	}
 	for k := range banks {
-		acc := nw.inject[k] * sum
+		acc := tp.b[nw.phases+k] + nw.inject[k]*sum
 		row := &nw.relax[k]
 		for j, v := range banks {
 			acc += row[j] * v
@@ -180,15 +177,7 @@ func (tp *topology) rate(nw *network, x, y *vec) {
 		y[nw.phases+k] = acc
 	}
 	if nw.input.banks > 0 {
-		nw.input.rate(nw, tp, x, y)
-	}
-}
-
-// slope writes y = A x + b, the time derivative of the state.
-func (tp *topology) slope(nw *network, x, y *vec) {
-	tp.rate(nw, x, y)
-	for i := range nw.n {
-		y[i] += tp.b[i]
+		nw.input.slope(nw, tp, x, y)
 	}
 }
 

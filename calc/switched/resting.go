@@ -29,7 +29,7 @@ func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
 		moved, dropped, current := 0.0, 0.0, 0.0
 		for k := range s.count {
 			for j := range c.Phases {
-				if s.iv[k].top.pos[j] != Rectifying || s.next(k, j) == Rectifying || !c.leg(j).Rectifier.Blocks {
+				if s.iv[k].top.pos[j] != rectifying || s.next(k, j) == rectifying || !c.leg(j).Rectifier.Blocks {
 					continue
 				}
 				p := s.legOf(j)

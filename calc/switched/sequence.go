@@ -34,7 +34,7 @@ type Solver struct {
 	whole   square
 	product square
 	scratch scratch
-	pivot   [MaxStates]int
+	pivot   [maxStates]int
 	closure float64 // [1] relative closure of one more period
 	rounds  int
 	fast    oneBank
@@ -128,11 +128,11 @@ func (s *Solver) schedule(c *Circuit, duty float64) {
 			angle -= math.Floor(angle)
 			switch {
 			case angle < duty:
-				v.top.pos[j] = High
+				v.top.pos[j] = high
 			case angle < s.conduction(j):
-				v.top.pos[j] = Rectifying
+				v.top.pos[j] = rectifying
 			default:
-				v.top.pos[j] = Resting
+				v.top.pos[j] = resting
 			}
 		}
 	}
@@ -163,7 +163,7 @@ func (s *Solver) periodic(c *Circuit) bool {
 		copy(v.f[:n*n], ld.f[ld.levels][:n*n])
 		v.d = ld.d[ld.levels]
 		for p := range nw.phases {
-			if v.top.pos[p] == Resting {
+			if v.top.pos[p] == resting {
 				for j := range n {
 					f[p*n+j] = 0
 				}
@@ -247,7 +247,7 @@ func (s *Solver) traverse(x *vec) vec {
 	for k := range s.count {
 		v := &s.iv[k]
 		for p := range s.nw.phases {
-			if v.top.pos[p] == Resting {
+			if v.top.pos[p] == resting {
 				sum[p] -= s.ref.i[p] + at[p]
 				at[p] = -s.ref.i[p]
 			}
@@ -273,7 +273,7 @@ func (s *Solver) traverse(x *vec) vec {
 }
 
 // next returns the position that slot j takes after interval k.
-func (s *Solver) next(k, j int) Position {
+func (s *Solver) next(k, j int) position {
 	if k+1 < s.count {
 		return s.iv[k+1].top.pos[j]
 	}

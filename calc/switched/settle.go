@@ -78,7 +78,7 @@ func (s *Solver) settle(c *Circuit, duty float64, warm bool) Status {
 func (s *Solver) reverses(c *Circuit) bool {
 	for k := range s.count {
 		for j := range c.Phases {
-			if s.iv[k].top.pos[j] == Rectifying && c.leg(j).Rectifier.Blocks && s.ref.i[j]+s.iv[k].stop[j] < 0 {
+			if s.iv[k].top.pos[j] == rectifying && c.leg(j).Rectifier.Blocks && s.ref.i[j]+s.iv[k].stop[j] < 0 {
 				return true
 			}
 		}

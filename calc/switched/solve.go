@@ -213,7 +213,7 @@ func (s *Solver) meanOutput(c *Circuit) float64 {
 		var y, eq vec
 		v.top.slope(nw, &v.start, &y)
 		ce := &s.work
-		ce.set(ld, &v.top, ld.cell, &v.start, &y, n)
+		ce.set(ld, ld.cell, &v.start, &y, n)
 		var q vec
 		for i := range n {
 			for j := 0; j <= ce.order; j += 2 {
@@ -243,7 +243,7 @@ func (s *Solver) meanByVoltSeconds(c *Circuit) float64 {
 	vf := leg.Rectifier.Threshold
 	q := 0.0
 	for k := range s.count {
-		if v := &s.iv[k]; v.top.pos[0] == High {
+		if v := &s.iv[k]; v.top.pos[0] == high {
 			i := s.kirchhoff(k)
 			q += i.mean(v, s.nw.n) + s.ref.i[0]*v.t
 		}

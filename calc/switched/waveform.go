@@ -123,12 +123,12 @@ func (s *Solver) point(c *Circuit, w *Waveform, k, turn int, x *vec, at float64)
 		i := s.ref.i[j] + x[j]
 		node := vo
 		switch v.top.pos[j] {
-		case High:
+		case high:
 			input += i
 			node = c.Vin - leg.HighSide*i
-		case Rectifying:
+		case rectifying:
 			node = -leg.Rectifier.Threshold - leg.Rectifier.Slope*i
-		case Resting:
+		case resting:
 			i = 0
 		}
 		w.Inductor[p] = append(w.Inductor[p], i)
