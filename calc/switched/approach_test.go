@@ -10,8 +10,10 @@ import (
 // From the solution of a circuit two per cent away, few steps reach what
 // Regulated finds.
 func TestApproachReachesRegulated(t *testing.T) {
-	for name, c := range map[string]*Circuit{"ccm": buoy(1), "ccm, three banks": buoy(3), "dcm": light(buoy(1)), "dcm, two banks": light(buoy(2)),
-		"resistor": func() *Circuit { c := buoy(1); c.Current, c.Conductance = 1, 1; return c }()} {
+	for name, c := range map[string]*Circuit{
+		"ccm": buoy(1), "ccm, three banks": buoy(3), "dcm": light(buoy(1)), "dcm, two banks": light(buoy(2)),
+		"resistor": func() *Circuit { c := buoy(1); c.Current, c.Conductance = 1, 1; return c }(),
+	} {
 		t.Run(name, func(t *testing.T) {
 			var s Solver
 			var sol, want Solution

@@ -10,11 +10,10 @@ func (t *tally) branch(period float64) Branch {
 }
 
 type legTally struct {
-	high, rect   tally
-	conduct      float64
-	span         extent
-	turnOn, cut  float64
-	discontinous bool
+	high, rect  tally
+	conduct     float64
+	span        extent
+	turnOn, cut float64
 }
 
 // measure writes the figures of the periodic state found, but for the range of

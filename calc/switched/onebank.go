@@ -189,7 +189,10 @@ func (ob *oneBank) report(c *Circuit, sol *Solution) {
 	loss := leg.Winding*(high+rect) + leg.HighSide*high + leg.Rectifier.Slope*rect +
 		leg.Rectifier.Threshold*ls.Rectifier.Mean + c.Bank[0].ESR*j
 	scale := greater(greater(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*ls.HighSide.RMS)
-	sol.EnergyBalance = math.Abs(sol.InputPower-sol.OutputPower-loss) / scale
+	sol.EnergyBalance = 0
+	if residual := sol.InputPower - sol.OutputPower - loss; residual != 0 {
+		sol.EnergyBalance = math.Abs(residual) / scale
+	}
 	sol.Residual = ob.closure()
 	sol.Status = Solved
 	if !(sol.OutputMean > 0) {
@@ -247,7 +250,10 @@ func (ob *oneBank) closure() float64 {
 	di := greater(math.Abs(off.i1-on.i0), math.Abs(on.i1-off.i0))
 	dv := greater(math.Abs(off.v1-on.v0), math.Abs(on.v1-off.v0))
 	current, voltage := math.Abs(ob.i)+math.Abs(on.i1-on.i0), math.Abs(ob.v)
-	if current == 0 {
+	switch {
+	case voltage == 0:
+		return di + dv
+	case current == 0:
 		return dv / voltage
 	}
 	return greater(di*voltage, dv*current) / (current * voltage)

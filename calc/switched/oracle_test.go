@@ -99,7 +99,7 @@ func (o *oracle) run(start []float64, steps int) {
 	c := o.c
 	o.state = append(append([]float64{}, start...), make([]float64, 4*c.Phases+3+c.Banks)...)
 	o.out = extent{math.Inf(1), math.Inf(-1)}
-	edges := []float64{0, 1}
+	edges := append(make([]float64, 0, 2+2*MaxPhases), 0, 1)
 	for p := range c.Phases {
 		at := float64(p) / float64(c.Phases)
 		edges = append(edges, at, math.Mod(at+o.duty, 1))
@@ -166,7 +166,7 @@ func checkOracle(t *testing.T, c *Circuit, sol *Solution, steps int, tol float64
 	if !ok {
 		t.Fatal("no waveform")
 	}
-	var start []float64
+	start := make([]float64, 0, c.Phases+c.Banks)
 	for p := range c.Phases {
 		start = append(start, w.Inductor[p][0])
 	}

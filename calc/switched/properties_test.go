@@ -113,7 +113,7 @@ func about(c *Circuit) string {
 func figures(sol *Solution, banks int) (volts, amps, watts []float64) {
 	l := &sol.Leg
 	volts = []float64{sol.OutputMean, sol.OutputMin, sol.OutputMax, sol.OutputMax - sol.OutputMin}
-	amps = []float64{l.Inductor.Mean, l.Inductor.RMS, l.HighSide.Mean, l.HighSide.RMS, l.Rectifier.Mean, l.Rectifier.RMS, l.Peak, l.Valley, l.TurnOn, l.TurnOff, sol.InputMean, sol.InputRMS}
+	amps = append(make([]float64, 0, 12+banks), l.Inductor.Mean, l.Inductor.RMS, l.HighSide.Mean, l.HighSide.RMS, l.Rectifier.Mean, l.Rectifier.RMS, l.Peak, l.Valley, l.TurnOn, l.TurnOff, sol.InputMean, sol.InputRMS)
 	amps = append(amps, sol.BankRMS[:banks]...)
 	watts = []float64{sol.InputPower, sol.OutputPower}
 	return
@@ -367,6 +367,43 @@ func TestStatuses(t *testing.T) {
 				calctest.Close(t, "duty", sol.Duty, k.hi, 0)
 			case TooShortOnTime:
 				calctest.Close(t, "duty", sol.Duty, k.lo, 0)
+			}
+		})
+	}
+}
+
+// The high side never on, and always on: direct current, or none at all.
+func TestEndsOfTheDutyRatio(t *testing.T) {
+	slow := buoy(1)
+	slow.Period = 1e-3
+	for name, c := range map[string]*Circuit{"one bank": buoy(1), "two banks": buoy(2), "general solver": slow, "three phases": func() *Circuit { c := buoy(1); c.Phases = 3; return c }()} {
+		t.Run(name, func(t *testing.T) {
+			var s Solver
+			var sol Solution
+			s.FixedDuty(c, 1, &sol)
+			if sol.Status != Solved {
+				t.Fatal(sol.Status)
+			}
+			i := c.Current / float64(c.Phases)
+			calctest.Close(t, "output", sol.OutputMean, 24-i*(7e-3+9e-3), 1e-13)
+			calctest.Within(t, "ripple", sol.OutputMax-sol.OutputMin, 0, 1e-12)
+			calctest.Close(t, "high side", sol.Leg.HighSide.RMS, i, 1e-13)
+			calctest.Within(t, "rectifier", sol.Leg.Rectifier.RMS, 0, 1e-13)
+			calctest.Within(t, "balance", sol.EnergyBalance, 0, 1e-13)
+			calctest.Poison(&sol)
+			s.FixedDuty(c, 0, &sol)
+			if sol.Status != NoOperatingPoint {
+				t.Error(sol.Status)
+			}
+			e := *c
+			e.Current = 0
+			calctest.Poison(&sol)
+			s.FixedDuty(&e, 0, &sol)
+			if sol.Status != NoOperatingPoint {
+				t.Error(sol.Status)
+			}
+			for _, x := range []float64{sol.OutputMean, sol.OutputMin, sol.OutputMax, sol.Leg.Inductor.RMS, sol.BankRMS[0], sol.EnergyBalance, sol.Residual} {
+				calctest.Within(t, "nothing flows", x, 0, 1e-12)
 			}
 		})
 	}

@@ -12,8 +12,8 @@ type publishedCase struct {
 	Circuit struct {
 		Vin  float64   `json:"vin"`
 		Rect string    `json:"rect"`
-		Rhs  float64   `json:"r_hs"`
-		Rls  float64   `json:"r_ls"`
+		RHS  float64   `json:"r_hs"`
+		RLS  float64   `json:"r_ls"`
 		Vf   float64   `json:"vf"`
 		Rd   float64   `json:"rd"`
 		L    float64   `json:"l"`
@@ -52,11 +52,11 @@ type publishedCase struct {
 func (p *publishedCase) circuit() *Circuit {
 	k := &p.Circuit
 	c := &Circuit{Vin: k.Vin, Period: 1 / k.F, Phases: 1, Banks: len(k.C), Conductance: k.G, Current: k.I0}
-	c.Leg = Leg{L: k.L, Winding: k.DCR, HighSide: k.Rhs}
+	c.Leg = Leg{L: k.L, Winding: k.DCR, HighSide: k.RHS}
 	if k.Rect == "diode" {
 		c.Leg.Rectifier = Rectifier{Threshold: k.Vf, Slope: k.Rd, Blocks: true}
 	} else {
-		c.Leg.Rectifier = Rectifier{Slope: k.Rls}
+		c.Leg.Rectifier = Rectifier{Slope: k.RLS}
 	}
 	for i := range k.C {
 		c.Bank[i] = Bank{C: k.C[i], ESR: k.ESR[i]}
