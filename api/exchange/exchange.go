@@ -6,8 +6,6 @@ import (
 	"fmt"
 	"time"
 
-	v2 "github.com/go-json-experiment/json"
-
 	"railproof/api/wire"
 	"railproof/openapi"
 	"railproof/service"
@@ -40,7 +38,7 @@ type Timing struct {
 }
 
 // handler decodes a request, calls one use case and encodes its answer.
-type handler func(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error)
+type handler func(ctx context.Context, x *Exchange, tree any, head wire.Head) (any, error)
 
 // Computes reports whether the exchange has the operation and it takes a body.
 func (x *Exchange) Computes(operation string) bool { return computations[operation] != nil }
@@ -63,7 +61,7 @@ func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answ
 	watch.lap("check-request")
 	id := service.ResultID(operation, x.service.Engine(), tree)
 	watch.lap("digest")
-	value, err := h(ctx, x, body, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: id})
+	value, err := h(ctx, x, tree, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: id})
 	if err != nil {
 		return nil, problemOf(err)
 	}
@@ -91,18 +89,13 @@ func (x *Exchange) finish(operation string, value any, watch *stopwatch) (*Answe
 }
 
 // decode reads a request that the contract has accepted.
-func decode[R any](body []byte) (*R, error) {
+func decode[R any](tree any) (*R, error) {
 	r := new(R)
-	if err := v2.Unmarshal(body, r, v2.RejectUnknownMembers(true)); err != nil {
-		return nil, &misread{err}
+	if err := wire.FromTree(tree, r); err != nil {
+		return nil, fmt.Errorf("exchange: a request that the contract accepts and the wire types do not: %w", err)
 	}
 	return r, nil
 }
-
-// misread is a request that the contract accepts and the wire types do not.
-type misread struct{ err error }
-
-func (m *misread) Error() string { return "exchange: " + m.err.Error() }
 
 type stopwatch struct {
 	last time.Time

@@ -6,8 +6,8 @@ import (
 	"railproof/api/wire"
 )
 
-func losses(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error) {
-	w, err := decode[wire.LossesRequest](body)
+func losses(ctx context.Context, x *Exchange, tree any, head wire.Head) (any, error) {
+	w, err := decode[wire.LossesRequest](tree)
 	if err != nil {
 		return nil, err
 	}

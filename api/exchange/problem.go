@@ -136,9 +136,6 @@ func problemOf(err error) *Problem {
 	if invalid, ok := errors.AsType[*wire.InvalidError](err); ok {
 		return NewProblem(PhysicsFault, first(invalid.Faults), invalid.Faults...)
 	}
-	if unread, ok := errors.AsType[*misread](err); ok {
-		return unreadable(unread.err)
-	}
 	switch {
 	case errors.Is(err, service.ErrBusy):
 		p := NewProblem(Busy, "every slot is taken and the queue is full")

@@ -6,8 +6,8 @@ import (
 	"railproof/api/wire"
 )
 
-func size(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error) {
-	w, err := decode[wire.SizingRequest](body)
+func size(ctx context.Context, x *Exchange, tree any, head wire.Head) (any, error) {
+	w, err := decode[wire.SizingRequest](tree)
 	if err != nil {
 		return nil, err
 	}

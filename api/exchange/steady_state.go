@@ -6,8 +6,8 @@ import (
 	"railproof/api/wire"
 )
 
-func steadyState(ctx context.Context, x *Exchange, body []byte, head wire.Head) (any, error) {
-	w, err := decode[wire.SteadyStateRequest](body)
+func steadyState(ctx context.Context, x *Exchange, tree any, head wire.Head) (any, error) {
+	w, err := decode[wire.SteadyStateRequest](tree)
 	if err != nil {
 		return nil, err
 	}

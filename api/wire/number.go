@@ -2,11 +2,7 @@ package wire
 
 import (
 	"encoding/json"
-	"fmt"
 	"strconv"
-
-	v2 "github.com/go-json-experiment/json"
-	"github.com/go-json-experiment/json/jsontext"
 )
 
 // Number is a JSON number or, for a value with a tolerance, a spread object.
@@ -25,25 +21,6 @@ type Spread struct {
 	Distribution string   `json:"distribution,omitzero"`
 	Group        string   `json:"group,omitzero"`
 	MatchTol     *float64 `json:"match_tol,omitzero"`
-}
-
-// UnmarshalJSONFrom reads a number or a spread object.
-func (n *Number) UnmarshalJSONFrom(d *jsontext.Decoder) error {
-	switch kind := d.PeekKind(); kind {
-	case '0':
-		t, err := d.ReadToken()
-		if err != nil {
-			return err
-		}
-		n.Spread = nil
-		n.Value, err = t.Float()
-		return err
-	case '{':
-		n.Spread = new(Spread)
-		return v2.UnmarshalDecode(d, n.Spread)
-	default:
-		return fmt.Errorf("a number or a spread object, not %v", kind)
-	}
 }
 
 // MarshalJSON writes what was read.

@@ -2,10 +2,6 @@ package wire
 
 import (
 	"encoding/json"
-	"fmt"
-
-	v2 "github.com/go-json-experiment/json"
-	"github.com/go-json-experiment/json/jsontext"
 
 	"railproof/calc/parts"
 	"railproof/calc/stage"
@@ -89,25 +85,6 @@ type Frequency struct {
 type FrequencyRange struct {
 	Min float64 `json:"min"`
 	Max float64 `json:"max"`
-}
-
-// UnmarshalJSONFrom reads a number or a range.
-func (f *Frequency) UnmarshalJSONFrom(d *jsontext.Decoder) error {
-	switch kind := d.PeekKind(); kind {
-	case '0':
-		t, err := d.ReadToken()
-		if err != nil {
-			return err
-		}
-		f.Sweep = nil
-		f.Fixed, err = t.Float()
-		return err
-	case '{':
-		f.Sweep = new(FrequencyRange)
-		return v2.UnmarshalDecode(d, f.Sweep)
-	default:
-		return fmt.Errorf("a number or a range, not %v", kind)
-	}
 }
 
 // MarshalJSON writes what was read.

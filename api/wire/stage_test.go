@@ -7,7 +7,6 @@ import (
 	"strings"
 	"testing"
 
-	v2 "github.com/go-json-experiment/json"
 	"github.com/stretchr/testify/require"
 
 	"railproof/calc/parts"
@@ -17,8 +16,10 @@ import (
 
 func parseStage(t *testing.T, text []byte) *Stage {
 	t.Helper()
+	var tree any
+	require.NoError(t, json.Unmarshal(text, &tree))
 	var w Stage
-	require.NoError(t, v2.Unmarshal(text, &w, v2.RejectUnknownMembers(true)))
+	require.NoError(t, FromTree(tree, &w))
 	return &w
 }
 
