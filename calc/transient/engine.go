@@ -66,8 +66,8 @@ type Engine struct {
 	status Status
 	edges  int  // in the present period
 	trial  bool // a period is only tried out: nothing is recorded
-	shape  [loop.DriveStates][signals]statespace.Functional
-	head   [signals]reading // as the present step begins
+	shape  [loop.DriveStates][maxSignals]statespace.Functional
+	head   [maxSignals]reading // as the present step begins
 	rec    recorder
 	run    tally
 
@@ -78,7 +78,7 @@ type Engine struct {
 // interval is the exact motion in one state of switches, amplifier and inputs.
 type interval struct {
 	*statespace.Ladder
-	slopes [signals]statespace.Functional // of the recorded signals
+	slopes [maxSignals]statespace.Functional // of the recorded signals
 }
 
 // Status tells how a run stands.
@@ -136,7 +136,6 @@ func New(s *Setup) (*Engine, error) {
 		e.limit = p.Modulator.CurrentLimit
 	}
 	e.functionals()
-	e.functionalsOfSignals()
 	e.schedule()
 	e.rec.set(e)
 	e.begin()
@@ -165,6 +164,11 @@ func (e *Engine) functionals() {
 		}
 		e.over[i].Output[i], e.over[i].Offset = 1, -e.limit
 		e.rest[i].Output[i] = -1
+	}
+	for d := range e.shape {
+		for k := range firstInductor + j.Circuit.Phases {
+			e.shape[d][k] = e.signal(k, loop.Drive(d))
+		}
 	}
 	e.connect = statespace.Event{Output: j.Output, Offset: -e.setup.Start.LoadFrom}
 }
@@ -195,9 +199,8 @@ func (e *Engine) motion() *interval {
 			return nil
 		}
 		v = &interval{Ladder: ladder}
-		for k := range v.slopes {
-			f := e.signal(k)
-			v.slopes[k] = slopeOf(&f, &s)
+		for k := range e.rec.count {
+			v.slopes[k] = slopeOf(&e.shape[m.drive][k], &s)
 		}
 		e.shelf[key] = v
 	}

@@ -2,86 +2,65 @@ package transient
 
 import (
 	"math"
+	"sort"
 
 	"railproof/calc/loop"
 	"railproof/calc/statespace"
+	"railproof/calc/switched"
 )
 
-// Recorded signals.
+// Signals whose extremes are kept: output, control voltage, then the inductor
+// current of every phase.
 const (
-	Output       = iota // [V] output voltage at the capacitors
-	Inductor            // [A] inductor current of phase 0
-	InductorSum         // [A] of all phases
-	ControlValue        // [V] control voltage
-	signals
+	outputSignal = iota
+	controlSignal
+	firstInductor
+	maxSignals = firstInductor + switched.MaxPhases
 )
 
-// signal returns the functional of a recorded signal in the present drive.
-func (e *Engine) signal(k int) statespace.Functional {
-	var f statespace.Functional
-	switch k {
-	case Output:
-		return e.joint.Output
-	case ControlValue:
-		return e.control[e.now.drive]
-	case Inductor:
-		f[0] = 1
-	case InductorSum:
-		for i := range e.joint.Circuit.Phases {
-			f[i] = 1
-		}
-	}
-	return f
+// Row is one instant of the record.
+type Row struct {
+	At        float64                     // [s]
+	Output    float64                     // [V] at the capacitors
+	Control   float64                     // [V] output of the error amplifier
+	Reference float64                     // [V]
+	Load      float64                     // [A] constant-current part
+	Input     float64                     // [V] of the source
+	Inductor  [switched.MaxPhases]float64 // [A]
+	Duty      float64                     // [1] of phase 0 in the period that the instant lies in
+	period    int
+	order     int // in which rows were read: at a jump two of them share an instant
 }
 
-// Sample is a value at a time.
-type Sample struct {
-	At    float64 // [s]
-	Value float64 // [any] in the signal's unit
+// extremes holds the rows of the least and the greatest value of one signal.
+type extremes struct {
+	least, greatest    float64
+	leastRow, greatRow Row
+	used               bool
 }
 
-// bucket keeps the extremes of one signal in a stretch of the record.
-type bucket struct {
-	least, greatest Sample
-	used            bool
-}
-
-func (b *bucket) add(s Sample) {
-	if !b.used {
-		b.least, b.greatest, b.used = s, s, true
-		return
-	}
-	if s.Value < b.least.Value {
-		b.least = s
-	}
-	if s.Value > b.greatest.Value {
-		b.greatest = s
-	}
-}
-
-// recorder decimates the waveforms: of every bucket the true extremes are kept.
+// recorder decimates the waveforms: of every bucket the true extremes of every
+// signal are kept, each with all signals at that instant.
 type recorder struct {
 	from, width float64
-	buckets     [signals][]bucket
-}
-
-// PeriodFigures sums up one period.
-type PeriodFigures struct {
-	At       float64 // [s] its end
-	Mean     float64 // [V] mean output voltage, exact
-	Inductor float64 // [A] inductor current of phase 0 at the clock
-	Control  float64 // [V] control voltage at the clock
+	count       int // signals
+	rows        int // read so far
+	buckets     [][]extremes
 }
 
 func (r *recorder) set(e *Engine) {
 	s := &e.setup
+	r.count = firstInductor + e.joint.Circuit.Phases
 	if s.Record.Points == 0 {
 		return
 	}
+	n := max(1, s.Record.Points/(2*r.count))
 	r.from = s.Record.From
-	r.width = (s.recordEnd() - r.from) / float64(s.Record.Points)
-	for k := range r.buckets {
-		r.buckets[k] = make([]bucket, s.Record.Points)
+	r.width = (s.recordEnd() - r.from) / float64(n)
+	r.buckets = make([][]extremes, n)
+	room := make([]extremes, n*r.count)
+	for i := range r.buckets {
+		r.buckets[i] = room[i*r.count : (i+1)*r.count]
 	}
 }
 
@@ -90,7 +69,7 @@ func (r *recorder) index(t float64) int {
 	if r.width == 0 || t < r.from {
 		return -1
 	}
-	n := len(r.buckets[Output])
+	n := len(r.buckets)
 	switch i := int((t - r.from) / r.width); {
 	case i < n:
 		return i
@@ -98,6 +77,32 @@ func (r *recorder) index(t float64) int {
 		return n - 1 // the end of the record itself
 	}
 	return -1
+}
+
+// signal returns the functional of a signal in a drive.
+func (e *Engine) signal(k int, d loop.Drive) statespace.Functional {
+	switch k {
+	case outputSignal:
+		return e.joint.Output
+	case controlSignal:
+		return e.control[d]
+	}
+	var f statespace.Functional
+	f[k-firstInductor] = 1
+	return f
+}
+
+// row reads all signals of a point.
+func (e *Engine) row(z *statespace.Point, at float64) Row {
+	n := e.joint.N
+	r := Row{
+		At: at, Output: e.joint.Output.At(z, e.width), Control: e.control[e.now.drive].At(z, e.width),
+		Reference: z[n+loop.InputReference], Load: z[n+loop.InputLoad], Input: z[n+loop.InputVoltage],
+		Duty: math.NaN(), period: e.run.periods, order: e.rec.rows,
+	}
+	e.rec.rows++
+	copy(r.Inductor[:e.joint.Circuit.Phases], z[:e.joint.Circuit.Phases])
+	return r
 }
 
 // reading is a signal's value and slope.
@@ -108,10 +113,11 @@ func (e *Engine) look(v *interval) {
 	if e.trial {
 		return
 	}
-	i := e.rec.index(e.now.at)
-	for k := range signals {
-		e.head[k] = reading{e.shape[e.now.drive][k].At(&e.now.z, e.width), v.slopes[k].At(&e.now.z, e.width)}
-		e.keep(k, i, Sample{e.now.at, e.head[k].value})
+	m := &e.now
+	i := e.rec.index(m.at)
+	for k := range e.rec.count {
+		e.head[k] = reading{e.shape[m.drive][k].At(&m.z, e.width), v.slopes[k].At(&m.z, e.width)}
+		e.keep(k, i, e.head[k].value, &m.z, m.at)
 	}
 }
 
@@ -125,16 +131,16 @@ func (e *Engine) observe(v *interval, z *statespace.Point, h float64) {
 	if m.drive != loop.Linear {
 		e.run.now.Clamped += h
 	}
+	if m.legs[0] == loop.High {
+		e.run.on += h
+	}
 	to := m.at + h
 	i := e.rec.index(to)
-	for k := range signals {
-		if k == InductorSum && e.joint.Circuit.Phases == 1 {
-			continue
-		}
+	for k := range e.rec.count {
 		f := &e.shape[m.drive][k]
 		was, is := e.head[k], reading{f.At(z, e.width), v.slopes[k].At(z, e.width)}
 		e.head[k] = is
-		e.keep(k, i, Sample{to, is.value})
+		e.keep(k, i, is.value, z, to)
 		if !(was.slope*is.slope < 0) {
 			continue
 		}
@@ -148,11 +154,7 @@ func (e *Engine) observe(v *interval, z *statespace.Point, h float64) {
 		}
 		x := m.z
 		at := m.at + v.Cross(&turn, &x, h)
-		e.keep(k, e.rec.index(at), Sample{at, f.At(&x, e.width)})
-	}
-	for i := 1; i < e.joint.Circuit.Phases; i++ {
-		e.run.inductor(Sample{m.at, m.z[i]})
-		e.run.inductor(Sample{to, z[i]})
+		e.keep(k, e.rec.index(at), f.At(&x, e.width), &x, at)
 	}
 }
 
@@ -183,49 +185,73 @@ func (r *recorder) counts(k int, value float64, i int) bool {
 	if i < 0 {
 		return false
 	}
-	b := &r.buckets[k][i]
-	return !b.used || value < b.least.Value || value > b.greatest.Value
+	x := &r.buckets[i][k]
+	return !x.used || value < x.least || value > x.greatest
 }
 
-func (e *Engine) keep(k, i int, s Sample) {
-	e.run.keep(k, s)
-	if i >= 0 {
-		e.rec.buckets[k][i].add(s)
+// keep takes a value of a signal in bucket i.
+func (e *Engine) keep(k, i int, value float64, z *statespace.Point, at float64) {
+	e.run.keep(k, Sample{at, value})
+	if i < 0 {
+		return
+	}
+	x := &e.rec.buckets[i][k]
+	if !x.used || value < x.least {
+		x.least, x.leastRow = value, e.row(z, at)
+	}
+	if !x.used || value > x.greatest {
+		x.greatest, x.greatRow = value, e.row(z, at)
+	}
+	x.used = true
+}
+
+// finish writes the duty ratio of the period that ends into its rows.
+func (r *recorder) finish(period int, duty, began, ended float64) {
+	if r.width == 0 {
+		return
+	}
+	first, last := r.index(began), r.index(ended)
+	if first < 0 && last < 0 {
+		return
+	}
+	if last < 0 {
+		last = len(r.buckets) - 1
+	}
+	for i := max(0, first); i <= last; i++ {
+		for k := range r.buckets[i] {
+			x := &r.buckets[i][k]
+			for _, row := range [2]*Row{&x.leastRow, &x.greatRow} {
+				if row.period == period && x.used {
+					row.Duty = duty
+				}
+			}
+		}
 	}
 }
 
-// Waveform returns the record of a signal: of every bucket the least and the
-// greatest value in the order in which they came, or one point where they are
-// one.
-func (e *Engine) Waveform(signal int) []Sample {
-	if signal == InductorSum && e.joint.Circuit.Phases == 1 {
-		signal = Inductor
-	}
-	var w []Sample
-	for _, b := range e.rec.buckets[signal] {
-		if !b.used {
-			continue
-		}
-		first, second := b.least, b.greatest
-		if second.At < first.At {
-			first, second = second, first
-		}
-		w = append(w, first)
-		if second.At > first.At {
-			w = append(w, second)
+// Rows returns the record in order of time: the instants of all kept extremes.
+// The duty ratio of a period that has not ended is NaN.
+func (e *Engine) Rows() []Row {
+	var rows []Row
+	for _, b := range e.rec.buckets {
+		for k := range b {
+			if b[k].used {
+				rows = append(rows, b[k].leastRow, b[k].greatRow)
+			}
 		}
 	}
-	return w
-}
-
-// functionalsOfSignals prepares the recorded signals for every drive.
-func (e *Engine) functionalsOfSignals() {
-	drive := e.now.drive
-	for d := range e.shape {
-		e.now.drive = loop.Drive(d)
-		for k := range e.shape[d] {
-			e.shape[d][k] = e.signal(k)
+	sort.Slice(rows, func(i, j int) bool {
+		if rows[i].At != rows[j].At {
+			return rows[i].At < rows[j].At
+		}
+		return rows[i].order < rows[j].order
+	})
+	kept := 0
+	for i := range rows {
+		if i == 0 || rows[i].At != rows[kept-1].At || rows[i].Output != rows[kept-1].Output || rows[i].Control != rows[kept-1].Control {
+			rows[kept] = rows[i]
+			kept++
 		}
 	}
-	e.now.drive = drive
+	return rows[:kept]
 }

@@ -3,8 +3,15 @@ package transient
 import (
 	"math"
 
+	"railproof/calc/loop"
 	"railproof/calc/parts"
 )
+
+// Sample is a value at a time.
+type Sample struct {
+	At    float64 // [s]
+	Value float64 // [any] in the signal's unit
+}
 
 // Outcome is what happened from one event to the next, or from the start to the
 // first event.
@@ -21,7 +28,17 @@ type Outcome struct {
 	Limited         int     // pulses ended by the current limit
 	AtMaxDuty       int     // pulses ended by the greatest duty ratio or the least off-time
 	Skipped         int     // pulses left out because the comparator was tripped at the clock
+	Continuous      int     // periods in which every phase conducted throughout
+	Discontinuous   int     // periods in which one rested
 	Clamped         float64 // [s] for which the error amplifier rested at a limit
+}
+
+// PeriodFigures sums up one period.
+type PeriodFigures struct {
+	At       float64 // [s] its end
+	Mean     float64 // [V] mean output voltage, exact
+	Inductor float64 // [A] inductor current of phase 0 at the clock
+	Control  float64 // [V] control voltage at the clock
 }
 
 // Result sums up a run.
@@ -48,6 +65,8 @@ type tally struct {
 	late   float64 // [s] end of the last period outside the band
 	inside bool    // the last period was inside
 	any    bool    // a period has ended since the event
+	on     float64 // [s] for which phase 0 was on in the present period
+	rested bool    // a phase rested in the present period
 
 	least, most, lastLeast, lastMost float64 // [V] output in the present and in the last period
 	closing                          bool    // the run is about to end: these are wanted exactly
@@ -93,18 +112,18 @@ func (r *tally) close(e *Engine) Outcome {
 }
 
 func (r *tally) counts(k int, value float64) bool {
-	switch k {
-	case Output:
+	switch {
+	case k == outputSignal:
 		return value > r.now.Highest.Value || value < r.now.Lowest.Value || r.closing && (value > r.most || value < r.least)
-	case Inductor:
+	case k >= firstInductor:
 		return value > r.now.InductorPeak.Value || value < r.now.InductorLeast.Value
 	}
 	return false
 }
 
 func (r *tally) keep(k int, s Sample) {
-	switch k {
-	case Output:
+	switch {
+	case k == outputSignal:
 		if s.Value > r.now.Highest.Value {
 			r.now.Highest = s
 		}
@@ -112,17 +131,13 @@ func (r *tally) keep(k int, s Sample) {
 			r.now.Lowest = s
 		}
 		r.most, r.least = max(r.most, s.Value), min(r.least, s.Value)
-	case Inductor:
-		r.inductor(s)
-	}
-}
-
-func (r *tally) inductor(s Sample) {
-	if s.Value > r.now.InductorPeak.Value {
-		r.now.InductorPeak = s
-	}
-	if s.Value < r.now.InductorLeast.Value {
-		r.now.InductorLeast = s
+	case k >= firstInductor:
+		if s.Value > r.now.InductorPeak.Value {
+			r.now.InductorPeak = s
+		}
+		if s.Value < r.now.InductorLeast.Value {
+			r.now.InductorLeast = s
+		}
 	}
 }
 
@@ -138,7 +153,13 @@ func (e *Engine) closePeriod() {
 		r := &e.run
 		p := PeriodFigures{m.at, e.lastMean, m.z[0], e.control[m.drive].At(&m.z, e.width)}
 		r.history[r.periods%historyLength] = p
+		e.rec.finish(r.periods, r.on/length, m.began, m.at)
 		r.periods++
+		if r.rested {
+			r.now.Discontinuous++
+		} else {
+			r.now.Continuous++
+		}
 		r.any, r.inside = true, math.Abs(p.Mean-r.target) <= r.band
 		if !r.inside {
 			r.late = m.at
@@ -148,6 +169,10 @@ func (e *Engine) closePeriod() {
 		if !(p.Mean > -collapse*r.target) {
 			e.status = Collapsed
 		}
+	}
+	e.run.on, e.run.rested = 0, false
+	for i := range e.joint.Circuit.Phases {
+		e.run.rested = e.run.rested || m.legs[i] == loop.Idle && e.joint.Circuit.Phases > 1
 	}
 	e.run.closing = m.at >= e.setup.Duration-2.5*e.joint.Circuit.Period
 	m.began = m.at

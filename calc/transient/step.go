@@ -97,6 +97,7 @@ func (e *Engine) turnOff(i int) {
 	m.phases[i].off = math.Inf(1)
 	if e.blocking(i) && m.z[i] <= 0 {
 		m.legs[i], m.z[i] = loop.Idle, 0
+		e.run.rested = true
 	}
 }
 
@@ -113,8 +114,11 @@ func (e *Engine) turnOn(i int) {
 	p.clock = e.clock(i, p.count)
 	if e.comparator(i).At(&m.z, e.width, 0) >= 0 || m.z[i] >= e.limit {
 		e.run.now.Skipped++
-		if m.legs[i] == loop.High {
+		switch m.legs[i] {
+		case loop.High:
 			e.turnOff(i)
+		case loop.Idle:
+			e.run.rested = true
 		}
 		return
 	}
@@ -275,6 +279,7 @@ func (e *Engine) fire(w *watcher) {
 		}
 	case currentRests:
 		m.legs[w.phase], m.z[w.phase] = loop.Idle, 0
+		e.run.rested = true
 	case controlHigh:
 		m.drive = loop.HeldHigh
 	case controlLow:

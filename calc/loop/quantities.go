@@ -1,0 +1,85 @@
+package loop
+
+import (
+	"math"
+
+	"railproof/calc/evaluate"
+	"railproof/calc/quantity"
+	"railproof/calc/stage"
+)
+
+// Bind sets the plant to an evaluated stage: its circuit with every element at
+// its temperature, bias and current, the operating point, and the loop around it.
+// It reports whether the stage regulates there.
+func (p *Plant) Bind(e *evaluate.Evaluator, s evaluate.Status) bool {
+	st := e.Stage()
+	source := p.Source
+	*p = Plant{Circuit: *e.Circuit(), Modulator: st.Modulator, Compensator: st.Compensator, Feedback: st.Feedback, Source: source}
+	p.Operate(e.Solution())
+	return s == evaluate.OK || s == evaluate.OverTemperature
+}
+
+// Analyser fills the loop quantities of evaluated stages. It keeps its workspace;
+// one per goroutine.
+type Analyser struct {
+	Plant   Plant
+	Sampled Sampled
+	Margins Margins
+}
+
+// Fill analyses the loop of the stage just evaluated into q and returns how far it
+// came. A stage whose loop has no meaning is reported by the error of Check.
+func (a *Analyser) Fill(e *evaluate.Evaluator, s evaluate.Status, q *quantity.Vector) (Status, error) {
+	a.Margins = Margins{}
+	regulates := a.Plant.Bind(e, s)
+	if !regulates {
+		a.Margins.Status = NotRegulating
+		a.Margins.Fill(q)
+		return NotRegulating, nil
+	}
+	if err := a.Plant.Check(); err != nil {
+		return NotRun, err
+	}
+	a.Sampled.Set(&a.Plant)
+	a.Sampled.Margins(&a.Margins)
+	a.Margins.Fill(q)
+	return a.Margins.Status, nil
+}
+
+// GainMarginCeiling is the greatest gain margin that is reported as a quantity
+// [dB]: a loop gain that is nowhere negative real has no gain margin, and for a
+// limit it has enough.
+const GainMarginCeiling = 60.0
+
+// Fill writes the loop quantities. NaN stands where there is none: no analysis, no
+// crossover. Of an unstable loop the modulus margin is the distance to -1 with a
+// negative sign, phase and gain margin are given where they are negative too, and
+// are NaN otherwise: no margin of an unstable loop can pass a limit.
+func (m *Margins) Fill(q *quantity.Vector) {
+	nan := math.NaN()
+	q[quantity.Crossover], q[quantity.PhaseMargin], q[quantity.GainMargin], q[quantity.ModulusMargin] = nan, nan, nan, nan
+	if !m.Status.OK() {
+		return
+	}
+	q[quantity.Crossover] = m.Crossover
+	if m.Stability == Stable {
+		q[quantity.PhaseMargin], q[quantity.ModulusMargin] = m.PhaseMargin, m.Modulus
+		q[quantity.GainMargin] = GainMarginCeiling
+		if m.GainMargin < GainMarginCeiling {
+			q[quantity.GainMargin] = m.GainMargin
+		}
+		return
+	}
+	q[quantity.ModulusMargin] = -m.Modulus
+	if m.PhaseMargin < 0 {
+		q[quantity.PhaseMargin] = m.PhaseMargin
+	}
+	if m.GainReduction > 0 {
+		q[quantity.GainMargin] = -m.GainReduction
+	}
+}
+
+// Present reports whether a stage has all that a loop needs.
+func Present(s *stage.Stage) bool {
+	return s.Modulator.Present && s.Compensator.Present && s.Feedback.Present
+}
