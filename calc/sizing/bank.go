@@ -77,18 +77,26 @@ type chargeBound struct {
 	Bound
 	charge  float64 // [C]
 	current float64 // [A] whose drop is added
+	allowance
+}
+
+// allowance is the voltage that a bound has to keep, and how it follows.
+type allowance struct {
 	within  float64 // [V]
+	field   string  // target behind it
+	formula string  // in symbols
+	inputs  []Input
 }
 
 // chargeBound completes a bound for the bank. charge is a formula for Q.
-func (b *bank) chargeBound(constraint, field string, charge string, q, current, within, ideal float64, c Corner, source string, inputs ...Input) chargeBound {
-	v := (q + b.tau*current) / within
+func (b *bank) chargeBound(constraint string, charge string, q, current float64, a allowance, ideal float64, c Corner, source string, inputs ...Input) chargeBound {
+	v := (q + b.tau*current) / a.within
 	return chargeBound{
-		charge: q, current: current, within: within,
+		charge: q, current: current, allowance: a,
 		Bound: Bound{
-			Side: AtLeast, Constraint: constraint, Field: field, Value: v, Factor: b.left, Part: v / b.left, Ideal: ideal, Corner: c,
-			Formula: fmt.Sprintf("C = (%s + tau * dI) / dV", charge),
-			Inputs:  append(inputs, Input{"tau", b.tau, "s"}, Input{"dI", current, "A"}, Input{"dV", within, "V"}),
+			Side: AtLeast, Constraint: constraint, Field: a.field, Value: v, Factor: b.left, Part: v / b.left, Ideal: ideal, Corner: c,
+			Formula: fmt.Sprintf("C = (%s + tau * dI) / %s", charge, a.formula),
+			Inputs:  append(append(inputs, Input{"tau", b.tau, "s"}, Input{"dI", current, "A"}), a.inputs...),
 			Source:  source,
 		},
 	}

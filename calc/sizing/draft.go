@@ -146,6 +146,7 @@ func (z *sizer) limits() {
 		if known(s.Recovery) {
 			add(quantity.LoadStepRecovery, none, s.Recovery, "targets/load_step/recovery_s")
 		}
+		add(quantity.LoadStepPeak, none, z.saturationAt, "targets/load_step/step_a")
 	}
 	if known(w.Life) {
 		for k := range z.draft.OutputCapacitors {

@@ -16,7 +16,7 @@ import (
 )
 
 // expression evaluates arithmetic in the symbols of a formula: + - * / ^,
-// brackets, sqrt, numbers and pi.
+// brackets, sqrt, exp, numbers and pi.
 type expression struct {
 	text   string
 	at     int
@@ -96,6 +96,8 @@ func (e *expression) atom() float64 {
 		return math.Pi
 	case word == "sqrt":
 		return math.Sqrt(e.atom())
+	case word == "exp":
+		return math.Exp(e.atom())
 	case unicode.IsDigit(c):
 		v, err := strconv.ParseFloat(word, 64)
 		if err != nil {

@@ -24,6 +24,7 @@ func Size(req *stage.Requirement, choice Choices) Answer {
 	if len(fs) == 1 {
 		a := SizeAt(req, choice, fs[0])
 		a.Verify()
+		a.VerifyStep(req)
 		return a
 	}
 	answers := make([]Answer, len(fs))
@@ -32,6 +33,7 @@ func Size(req *stage.Requirement, choice Choices) Answer {
 	}
 	a := Select(req, answers)
 	a.Verify()
+	a.VerifyStep(req)
 	return a
 }
 

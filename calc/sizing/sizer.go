@@ -37,7 +37,6 @@ type sizer struct {
 	saturationAt  float64 // [A] saturation rating of the part chosen
 	peakMost      float64 // [A] greatest inductor current of one phase
 	inductorRMS   float64 // [A] greatest, one phase
-	outputRMS     float64 // [A] greatest, all banks together
 	inputRMS      float64 // [A] greatest
 	crossover     float64 // [Hz] of the draft's loop
 	phaseMargin   float64 // [deg]

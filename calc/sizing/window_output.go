@@ -175,15 +175,47 @@ func (z *sizer) slowBounds(b *bank) []chargeBound {
 	return bounds
 }
 
-// stepBounds returns the bounds by the load step. What is allowed for the step is
-// the deviation less half the steady ripple.
+// What the output of the drafts' closed loops does after a load step, measured cycle
+// by cycle on the drafts of TestLoadStepsOfTheDrafts: after some periods it decays
+// towards its band at a rate below that of the crossover.
+const (
+	settlePeriods = 3.5 // [1]
+	settleRate    = 9.0 // [1] crossover's angular frequency over the rate of decay
+)
+
+// stepAllowance returns what the load step may move the output: the deviation less
+// half the steady ripple, or, where less, what decays into the recovery band in the
+// time allowed.
+//
+//	ΔV exp(−2π fc (tr − 3.5/fs)/9) ≤ band
+func (z *sizer) stepAllowance() allowance {
+	s := z.want.LoadStep
+	a := allowance{
+		within: s.Deviation - z.ripple/2, field: "targets/load_step/deviation_v",
+		formula: "(dVs - dVr / 2)", inputs: []Input{{"dVs", s.Deviation, "V"}, {"dVr", z.ripple, "V"}},
+	}
+	if !known(s.Recovery) {
+		return a
+	}
+	band, fc := recoveryBand*z.req.Output, crossoverRatio*z.fs
+	settling := math.Max(0, s.Recovery-settlePeriods/z.fs)
+	if v := band * math.Exp(2*math.Pi*fc*settling/settleRate); v < a.within {
+		a = allowance{
+			within: v, field: "targets/load_step/recovery_s",
+			formula: "(vb * exp(2 * pi * fc * ts / 9))", inputs: []Input{{"vb", band, "V"}, {"fc", fc, "Hz"}, {"ts", settling, "s"}},
+		}
+	}
+	return a
+}
+
+// stepBounds returns the bounds by the load step.
 func (z *sizer) stepBounds(b *bank) []chargeBound {
 	s := z.want.LoadStep
 	if !known(s.Step) || !known(s.Deviation) {
 		return nil
 	}
-	dv := s.Deviation - z.ripple/2
-	const field = "targets/load_step/deviation_v"
+	a := z.stepAllowance()
+	dv := a.within
 	n, l := z.phases, z.mostL
 	// The step may come at the worse extreme of the ripple.
 	halfRipple := func(c *corner) float64 {
@@ -197,7 +229,7 @@ func (z *sizer) stepBounds(b *bank) []chargeBound {
 		return l * i * i / (2 * n * reach(c))
 	})
 	i := s.Step + halfRipple(&up)
-	bounds := []chargeBound{b.chargeBound("step-application", field, "L * dI^2 / (2 * N * Vr)", q, i, dv,
+	bounds := []chargeBound{b.chargeBound("step-application", "L * dI^2 / (2 * N * Vr)", q, i, a,
 		CapacitanceForApplication(z.req.Input.Min, z.req.Output, z.rated/n, s.Step, s.Deviation, 1), up.Corner,
 		"charge between load and rising inductor current, derived", Input{"L", l, "H"}, Input{"N", n, "1"}, Input{"Vr", reach(&up), "V"})}
 	down, q := z.worst(greatestLoad, func(c *corner) float64 {
@@ -205,15 +237,15 @@ func (z *sizer) stepBounds(b *bank) []chargeBound {
 		return dv * CapacitanceForRelease(l/n, i, c.Output, dv)
 	})
 	i = s.Step + halfRipple(&down)
-	bounds = append(bounds, b.chargeBound("step-release", field, "L * dI^2 / (N * (2 * Vo + dV))", q, i, dv,
+	bounds = append(bounds, b.chargeBound("step-release", "L * dI^2 / (N * (2 * Vo + dV))", q, i, a,
 		CapacitanceForRelease(z.rated/n, s.Step, z.req.Output, s.Deviation), down.Corner,
-		"energy balance; Texas Instruments TPS40200 data sheet SLUS659F, eq. 15", Input{"L", l, "H"}, Input{"N", n, "1"}, Input{"Vo", down.Output, "V"}))
+		"energy balance; Texas Instruments TPS40200 data sheet SLUS659F, eq. 15", Input{"L", l, "H"}, Input{"N", n, "1"}, Input{"Vo", down.Output, "V"}, Input{"dV", dv, "V"}))
 	wait, t := z.worst(greatestLoad, func(c *corner) float64 { return (1 - c.duty) / (n * z.fsLow) })
-	bounds = append(bounds, b.chargeBound("step-waiting", field, "dI * tw", s.Step*t, s.Step, dv,
+	bounds = append(bounds, b.chargeBound("step-waiting", "dI * tw", s.Step*t, s.Step, a,
 		CapacitanceForWaiting(s.Step, (1-IdealDuty(z.req.Input.Max, z.req.Output))/(n*z.fs), s.Deviation), wait.Corner,
 		"longest time without energy; Texas Instruments TPS40200 data sheet SLUS659F", Input{"tw", t, "s"}))
 	fc := crossoverRatio * z.fs
-	return append(bounds, b.chargeBound("step-bandwidth", field, "dI / (2 * pi * fc)", s.Step/(2*math.Pi*fc), s.Step, dv,
+	return append(bounds, b.chargeBound("step-bandwidth", "dI / (2 * pi * fc)", s.Step/(2*math.Pi*fc), s.Step, a,
 		CapacitanceForBandwidth(s.Step, crossoverRatio*z.fs, s.Deviation), Corner{Frequency: z.fsLow, Input: math.NaN(), Output: math.NaN(), Load: z.req.LoadCurrent.Max, Duty: math.NaN()},
 		"output impedance of a closed loop at its crossover, estimate", Input{"fc", fc, "Hz"}))
 }
@@ -227,7 +259,8 @@ func (z *sizer) holdUp(b *bank) []chargeBound {
 		return nil
 	}
 	within := z.voLow - z.ripple/2 - h.To
-	bound := b.chargeBound("hold-up", "targets/hold_up/time_s", "Io * th", io*h.Time, io, within, CapacitanceForHoldUp(z.req.Output, h.To, io, h.Time),
+	a := allowance{within: within, field: "targets/hold_up/time_s", formula: "(Vo - dVr / 2 - Vto)", inputs: []Input{{"Vo", z.voLow, "V"}, {"dVr", z.ripple, "V"}, {"Vto", h.To, "V"}}}
+	bound := b.chargeBound("hold-up", "Io * th", io*h.Time, io, a, CapacitanceForHoldUp(z.req.Output, h.To, io, h.Time),
 		Corner{Input: math.NaN(), Output: z.voLow, Load: io, Frequency: math.NaN(), Duty: math.NaN()}, "charge balance at constant current", Input{"Io", io, "A"}, Input{"th", h.Time, "s"})
 	mean := math.Inf(1)
 	for _, degC := range [3]float64{z.req.AmbientDegC.Min, parts.ReferenceDegC, z.req.AmbientDegC.Max + selfHeating} {
