@@ -22,12 +22,14 @@ type Decoded struct {
 // error is an *InvalidError with every fault.
 func (w *Stage) Decode(root string) (*Decoded, error) {
 	var faults []Fault
-	d := &Decoded{Stage: stage.NewStage(rectifiers[w.Rectifier], len(w.OutputCapacitors), len(w.InputCapacitors), len(w.Phases),
+	d := &Decoded{Stage: stage.Outline(rectifiers[w.Rectifier], len(w.OutputCapacitors), len(w.InputCapacitors), len(w.Phases),
 		w.Modulator != nil, w.Compensator != nil, w.Feedback != nil, w.Inductor != nil && w.Inductor.Core != nil)}
 	w.describe(d.Stage, root, &faults)
-	d.numbers(w, root, &faults)
-	d.Assumed = d.Stage.ApplyDefaults()
-	faults = append(faults, d.physics(root, faults)...)
+	fields := d.Stage.Fields()
+	d.numbers(w, fields, root, &faults)
+	assumed, err := d.Stage.Complete(fields)
+	d.Assumed = assumed
+	faults = append(faults, beside(faults, err, root)...)
 	if len(faults) > 0 {
 		return nil, &InvalidError{faults}
 	}
@@ -35,7 +37,7 @@ func (w *Stage) Decode(root string) (*Decoded, error) {
 }
 
 // numbers fills the stage's registered numbers and collects their spreads.
-func (d *Decoded) numbers(w *Stage, root string, faults *[]Fault) {
+func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[]Fault) {
 	given := make(map[string]slot, 96)
 	var order []string
 	walk(reflect.ValueOf(w).Elem(), "", false, func(id string, s slot) {
@@ -45,7 +47,8 @@ func (d *Decoded) numbers(w *Stage, root string, faults *[]Fault) {
 		}
 	})
 	members := groups{}
-	for _, f := range d.Stage.Fields() {
+	for i := range fields {
+		f := &fields[i]
 		s, found := given[f.ID]
 		if !found {
 			*f.Value = parts.Unknown
@@ -58,7 +61,7 @@ func (d *Decoded) numbers(w *Stage, root string, faults *[]Fault) {
 		case s.whole != nil:
 			*f.Value = float64(**s.whole)
 		default:
-			d.number(&f, *s.number, root+"/"+f.ID, members, faults)
+			d.number(f, *s.number, root+"/"+f.ID, members, faults)
 		}
 	}
 	for _, id := range order {
@@ -98,9 +101,8 @@ func endFault(at, end string, received, limit float64, n *Number) Fault {
 		Detail: "the spread's " + end + " lies outside the physical range"}
 }
 
-// physics runs the stage's own check and leaves out what was already faulted.
-func (d *Decoded) physics(root string, known []Fault) []Fault {
-	err := d.Stage.Check()
+// beside returns the faults of the stage's own check that were not known before.
+func beside(known []Fault, err error, root string) []Fault {
 	if err == nil {
 		return nil
 	}

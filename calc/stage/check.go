@@ -30,9 +30,12 @@ func (e *InvalidError) Error() string {
 
 // Check reports what is missing from the stage or outside its physical bounds.
 // Call it after ApplyDefaults. The error is an *InvalidError.
-func (s *Stage) Check() error {
+func (s *Stage) Check() error { return s.check(s.Fields()) }
+
+func (s *Stage) check(fields []Field) error {
 	var f faults
-	for _, x := range s.Fields() {
+	for i := range fields {
+		x := &fields[i]
 		v := *x.Value
 		switch {
 		case !parts.Known(v):
