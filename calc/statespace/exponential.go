@@ -87,15 +87,16 @@ func (m *Map) series(s *System, t float64, terms int, term *Map) {
 			m.F[i*w+j] += x
 		}
 	}
-	var column [Width]float64
+	var column, image [Width]float64
 	for p := 2; p <= terms; p++ {
 		f := t / float64(p)
 		for j := 0; j < w; j++ {
 			for i := 0; i < n; i++ {
 				column[i] = term.F[i*w+j]
 			}
+			times(image[:n], s.A[:], column[:n], w)
 			for i := 0; i < n; i++ {
-				x := dot(s.A[i*w:i*w+n], column[:n])
+				x := image[i]
 				if p == 2 && j == w-1 {
 					// The ramps enter through [A B] [0; S] in the second term only.
 					for r := 0; r < k; r++ {
@@ -138,9 +139,7 @@ func (m *Map) Compose(b, a *Map) {
 // Apply sets dst to the point that z becomes; dst is not z.
 func (m *Map) Apply(dst, z *Point) {
 	n, w := m.N, m.N+m.M
-	for i := 0; i < n; i++ {
-		dst[i] = dot(m.F[i*w:i*w+w], z[:w])
-	}
+	times(dst[:n], m.F[:], z[:w], w)
 	for k := 0; k < m.M; k++ {
 		dst[n+k] = z[n+k] + float64(m.Rate[k]*m.Time)
 	}

@@ -20,9 +20,7 @@ type rung struct {
 
 func (r *rung) apply(dst, z *Point, s *System) {
 	n, w := s.N, s.N+s.M
-	for i := 0; i < n; i++ {
-		dst[i] = dot(r.f[i*w:i*w+w], z[:w])
-	}
+	times(dst[:n], r.f, z[:w], w)
 	for k := 0; k < s.M; k++ {
 		dst[n+k] = z[n+k] + float64(s.Rate[k]*r.time)
 	}
@@ -88,19 +86,23 @@ func (l *Ladder) expand(terms *series, z *Point, t float64) {
 	s := &l.System
 	n, w := s.N, s.N+s.M
 	terms[0] = *z
-	for i := 0; i < n; i++ {
-		terms[1][i] = t * dot(s.A[i*w:i*w+w], z[:w])
+	times(terms[1][:n], s.A[:], z[:w], w)
+	for i := range terms[1][:n] {
+		terms[1][i] *= t
 	}
 	for p := 2; p <= restTerms; p++ {
-		f := t / float64(p)
-		for i := 0; i < n; i++ {
-			x := dot(s.A[i*w:i*w+n], terms[p-1][:n])
-			if p == 2 {
+		x := terms[p][:n]
+		times(x, s.A[:], terms[p-1][:n], w)
+		if p == 2 {
+			for i := range x {
 				for k := 0; k < s.M-1; k++ {
-					x += s.A[i*w+n+k] * s.Rate[k] * t
+					x[i] += s.A[i*w+n+k] * s.Rate[k] * t
 				}
 			}
-			terms[p][i] = f * x
+		}
+		f := t / float64(p)
+		for i := range x {
+			x[i] *= f
 		}
 	}
 }
