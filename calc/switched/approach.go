@@ -10,24 +10,26 @@ import "math"
 // turn with solving it need one solution per turn in this way.
 //
 // Where a step does not serve (a limit of the duty ratio, a change of mode,
-// several phases) Approach is Regulated and returns 0.
+// several phases in continuous conduction or unequal ones) Approach is Regulated
+// and returns 0.
 //
 // Approach leaves OutputMin and OutputMax to OutputRange, which serves once at
 // the end.
 func (s *Solver) Approach(c *Circuit, vout, dutyLeast, dutyGreatest float64, sol *Solution) (change float64) {
-	if c.Phases == 1 && c.Legs == nil {
-		if sol.Leg.Mode == Continuous {
-			if change, ok := s.approachContinuous(c, vout, dutyLeast, dutyGreatest, sol); ok {
-				return change
-			}
-		} else if c.Banks == 1 && sol.Leg.Mode == Discontinuous {
-			ob := &s.fast
-			ob.set(c)
-			if change, ok := ob.approachResting(c, vout, dutyLeast, dutyGreatest, sol); ok {
-				s.closed, s.feeds = true, 0
-				return change
-			}
-		}
+	ok := false
+	switch {
+	case c.Legs != nil || c.idle():
+	case sol.Leg.Mode == Continuous && c.Phases == 1:
+		change, ok = s.approachContinuous(c, vout, dutyLeast, dutyGreatest, sol)
+	case sol.Leg.Mode == Discontinuous && s.fast.takes(c):
+		s.fast.set(c)
+		change, ok = s.fast.approachResting(c, vout, dutyLeast, dutyGreatest, sol)
+		s.closed, s.feeds = true, 0
+	case sol.Leg.Mode == Discontinuous:
+		change, ok = s.approachResting(c, vout, dutyLeast, dutyGreatest, sol)
+	}
+	if ok {
+		return change
 	}
 	s.Regulated(c, vout, dutyLeast, dutyGreatest, sol)
 	return 0
@@ -73,10 +75,7 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 		if s.settle(c, d, false) != Solved || s.conduct[0] < 1 {
 			return 0, false
 		}
-		s.closed = false
-		sol.clear(Solved, s.rounds, s.duty)
-		s.measure(c, sol, nil)
-		if !(sol.EnergyBalance <= solvedBalance && sol.OutputMean > 0) {
+		if !s.takeStock(c, sol) {
 			return 0, false
 		}
 	}
@@ -85,6 +84,24 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 	}
 	next := (base + dr*sol.Leg.HighSide.Mean) * inv
 	return math.Abs(next-d) / d, true
+}
+
+// approachResting takes one joint step of duty ratio and end of conduction and
+// solves there.
+func (s *Solver) approachResting(c *Circuit, vout, least, greatest float64, sol *Solution) (change float64, ok bool) {
+	s.rounds = 0
+	s.prepare(c)
+	change, ok = s.joint(c, vout, least, greatest, sol.Duty, sol.Duty+sol.Leg.Conduct, 2)
+	return change, ok && s.takeStock(c, sol)
+}
+
+// takeStock measures the state at hand but for the output's range, and reports
+// whether it is a solution.
+func (s *Solver) takeStock(c *Circuit, sol *Solution) bool {
+	s.closed = false
+	sol.clear(Solved, s.rounds, s.duty)
+	s.measure(c, sol, nil)
+	return sol.EnergyBalance <= solvedBalance && sol.OutputMean > 0
 }
 
 // approachResting takes one joint Newton step of on-time and conduction time and

@@ -124,7 +124,7 @@ func (ob *oneBank) meanOfRest(c *Circuit) float64 {
 func (c *Circuit) firstRest(v float64) (t1, t2 float64) {
 	leg := &c.Leg
 	u1, u2 := c.Vin-v, v+leg.Rectifier.Threshold
-	i := c.load(v)
+	i := c.load(v) / float64(c.Phases)
 	charge := 2 * i * c.Period / leg.L
 	peak := 0.0
 	for range 2 {

@@ -106,6 +106,14 @@ func (s *Solver) finish(c *Circuit, status Status, sol *Solution) {
 // guess is the averaged circuit's, the next follows the averaged slope, the rest
 // the secant, all inside a bracket.
 func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
+	if c.Legs == nil && c.Leg.Rectifier.Blocks && vout < c.Vin {
+		if t1, t2 := c.firstRest(vout); t1+t2 < c.Period {
+			if change, ok := s.joint(c, vout, least, greatest, t1/c.Period, (t1+t2)/c.Period, jointRounds); ok && change <= outputAccept {
+				return Solved
+			}
+			s.conduct[0] = 1
+		}
+	}
 	lo, hi := least, greatest
 	var atLeast, atGreatest bool
 	d, slope := s.firstDuty(c, vout)
@@ -188,16 +196,11 @@ func (s *Solver) firstDuty(c *Circuit, vout float64) (d, slope float64) {
 	if leg.Rectifier.Blocks && vout < c.Vin {
 		swing := (c.Vin - vout) * d * c.Period / leg.L
 		if i < 0.5*swing {
-			d = s.minDuty(c, vout, d)
-			// from I = D² T (Vin−V)(Vin+V_F)/(2L(V+V_F)): 2 dD/D = dV [1/(Vin−V) + 1/(V+V_F) + G/I]
-			slope = 2 / (d * (1/(c.Vin-vout) + 1/(vout+vf) + c.Conductance/math.Max(c.load(vout), 1e-300)))
+			d = math.Min(d, c.restingDuty(0, vout))
+			slope = c.restingSlope(vout, d)
 		}
 	}
 	return d, slope
-}
-
-func (s *Solver) minDuty(c *Circuit, vout, d float64) float64 {
-	return math.Min(d, c.restingDuty(0, vout))
 }
 
 // meanOutput returns the mean node voltage of the periodic state at hand.
