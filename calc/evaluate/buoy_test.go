@@ -1,10 +1,10 @@
 package evaluate_test
 
 import (
+	"encoding/json"
 	"os"
 	"testing"
 
-	"github.com/go-json-experiment/json"
 	"github.com/stretchr/testify/require"
 
 	"railproof/api/wire"
@@ -18,11 +18,10 @@ func example(t testing.TB, rail string) (*stage.Stage, stage.Point) {
 	t.Helper()
 	raw, err := os.ReadFile("../../openapi/examples/" + rail + "/steady-state.json")
 	require.NoError(t, err)
-	var request struct {
-		Stage *wire.Stage
-		Point *wire.Point
-	}
-	require.NoError(t, json.Unmarshal(raw, &request, json.MatchCaseInsensitiveNames(true)))
+	var request wire.SteadyStateRequest
+	var tree any
+	require.NoError(t, json.Unmarshal(raw, &tree))
+	require.NoError(t, wire.FromTree(tree, &request))
 	decoded, err := request.Stage.Decode("/stage")
 	require.NoError(t, err)
 	point, err := request.Point.Decode("/point", decoded.Stage)

@@ -26,9 +26,11 @@ const (
 	// dutyTolerance is the relative step of the duty ratio at which the output is
 	// regulated.
 	dutyTolerance = 1e-9
+	// maxPolish bounds the last steps to it, each of which gains three digits.
+	maxPolish = 6
 	// circuitTolerance is the relative change of inductance and bridge voltage at
 	// which the circuit is the one that its own currents ask for.
-	circuitTolerance = 1e-8
+	circuitTolerance = 1e-7
 )
 
 // operating is the state of one evaluation while it runs.
@@ -39,6 +41,7 @@ type operating struct {
 	output       float64 // [V] regulated voltage, or the present mean
 	duty         float64 // [1] fixed duty ratio; negative: regulated
 	bridge       float64 // [V]
+	begun        float64 // [V] bridge voltage for which charges and rates are computed
 	path         float64 // [ohm] source and input path
 	input        float64 // [A] mean current through them
 	least, most  float64 // [1] duty ratios that the controller can make
@@ -115,29 +118,62 @@ func (e *Evaluator) iterate(o *operating) Status {
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.output, o.copper)
 		e.limitDuty(o)
-		dutyChange := 0.0
-		if o.duty >= 0 {
-			e.solver.FixedDuty(&e.circuit, o.duty, &e.solution)
-		} else {
-			dutyChange = e.solver.Approach(&e.circuit, o.output, o.least, o.most, &e.solution)
-		}
+		dutyChange := e.solve(o)
 		status := fromSwitched(e.solution.Status)
-		if status == NoOperatingPoint || status == NotConverged {
-			return status
-		}
-		if !e.share() {
-			return NotConverged
+		if status == NoOperatingPoint || status == NotConverged || !e.share() {
+			return failed(status)
 		}
 		before := e.degC
 		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
-		if dutyChange <= dutyTolerance && circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
+		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
-			e.solver.OutputRange(&e.solution)
+			if dutyChange > dutyTolerance {
+				if status = e.polish(o); status == NotConverged {
+					return status
+				}
+			}
 			return e.settled(o, status)
 		}
+	}
+	return NotConverged
+}
+
+// solve solves the circuit at the given duty ratio, or makes one step towards the
+// regulated output, whose distance it returns as a relative change of the duty
+// ratio.
+func (e *Evaluator) solve(o *operating) (dutyChange float64) {
+	if o.duty >= 0 {
+		e.solver.FixedDuty(&e.circuit, o.duty, &e.solution)
+		return 0
+	}
+	return e.solver.Approach(&e.circuit, o.output, o.least, o.most, &e.solution)
+}
+
+// polish brings the output of the settled circuit to the regulated voltage.
+func (e *Evaluator) polish(o *operating) Status {
+	for range maxPolish {
+		change := e.solve(o)
+		status := fromSwitched(e.solution.Status)
+		if status == NoOperatingPoint || status == NotConverged || !e.share() {
+			return NotConverged
+		}
+		if change <= dutyTolerance {
+			e.followInductance()
+			e.operation.LoadRMS = e.loadRMS()
+			e.model.Freeze(&e.operation)
+			return status
+		}
+	}
+	return NotConverged
+}
+
+// failed is the status of a pass that has no solution to go on with.
+func failed(s Status) Status {
+	if s == NoOperatingPoint {
+		return s
 	}
 	return NotConverged
 }
@@ -203,7 +239,10 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
 	op.PathMean = o.input
 	op.LoadRMS = e.loadRMS()
-	e.model.Begin(op.Bridge, op.Output)
+	if !(math.Abs(o.bridge-o.begun) <= circuitTolerance*o.bridge) || o.duty >= 0 {
+		e.model.Begin(op.Bridge, op.Output)
+		o.begun = o.bridge
+	}
 	e.model.Freeze(op)
 	for range steps {
 		e.model.Powers(&e.degC, &e.power, &e.slope)

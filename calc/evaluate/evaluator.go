@@ -48,8 +48,28 @@ func (e *Evaluator) Reset(s *stage.Stage) {
 	if s.Feedback.Present {
 		e.nominal = s.Feedback.OutputVoltage()
 	}
+	prepareTables(e.stage)
 	e.model.Prepare(e.stage)
 	e.prepareNetwork()
+}
+
+// prepareTables readies every table that evaluation reads.
+func prepareTables(s *stage.Stage) {
+	for _, m := range []*parts.MOSFET{&s.HighSide, &s.LowSide} {
+		m.OnResistanceTemp.Prepare()
+		m.OnResistanceDrive.Prepare()
+		m.OutputChargeTable.Prepare()
+	}
+	s.Inductor.InductanceAtCurrent.Prepare()
+	s.Inductor.Core.Temp.Prepare()
+	for _, banks := range [][]parts.Capacitor{s.OutputCapacitors, s.InputCapacitors} {
+		for k := range banks {
+			c := &banks[k]
+			c.CapacitanceAtBias.Prepare()
+			c.CapacitanceTemp.Prepare()
+			c.ESRTemp.Prepare()
+		}
+	}
 }
 
 // Stage returns the evaluator's own stage. Its numbers may be set between

@@ -70,6 +70,7 @@ func (e *Evaluator) fill(o *operating, status Status, r *Result) {
 
 func (e *Evaluator) fillWaveforms(o *operating, q *quantity.Vector) {
 	sol := &e.solution
+	e.solver.OutputRange(sol)
 	leg := e.worstLeg()
 	q[quantity.OutputMean] = sol.OutputMean
 	q[quantity.OutputRipplePP] = sol.OutputMax - sol.OutputMin

@@ -11,7 +11,23 @@ package numeric
 type Table struct {
 	X []float64 // [any]
 	Y []float64 // [any]
+
+	slopes []float64 // of each segment, once Prepare was called
 }
+
+// Prepare computes the segments' slopes once, for tables that are read often.
+// The points may not change afterwards.
+func (t *Table) Prepare() {
+	if len(t.X) < 2 {
+		return
+	}
+	t.slopes = make([]float64, len(t.X)-1)
+	for i := range t.slopes {
+		t.slopes[i] = t.slope(i + 1)
+	}
+}
+
+func (t *Table) slope(i int) float64 { return (t.Y[i] - t.Y[i-1]) / (t.X[i] - t.X[i-1]) }
 
 // At returns the table's value at x, linear between points.
 // A table of one point is constant.
@@ -33,7 +49,11 @@ func (t *Table) AtSlope(x float64) (y, slope float64) {
 	for i < n-1 && x > t.X[i] {
 		i++
 	}
-	slope = (t.Y[i] - t.Y[i-1]) / (t.X[i] - t.X[i-1])
+	if t.slopes != nil {
+		slope = t.slopes[i-1]
+	} else {
+		slope = t.slope(i)
+	}
 	return t.Y[i-1] + float64(slope*(x-t.X[i-1])), slope
 }
 
