@@ -13,7 +13,7 @@ func TestApproachReachesRegulated(t *testing.T) {
 	for name, c := range map[string]*Circuit{
 		"ccm": buoy(1), "ccm, three banks": buoy(3), "dcm": light(buoy(1)), "dcm, two banks": light(buoy(2)),
 		"dcm, three phases": func() *Circuit { c := light(buoy(2)); c.Phases, c.Current = 3, 0.3; return c }(),
-		"resistor": func() *Circuit { c := buoy(1); c.Current, c.Conductance = 1, 1; return c }(),
+		"resistor":          func() *Circuit { c := buoy(1); c.Current, c.Conductance = 1, 1; return c }(),
 	} {
 		t.Run(name, func(t *testing.T) {
 			var s Solver
