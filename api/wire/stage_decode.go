@@ -97,8 +97,10 @@ func endFault(at, end string, received, limit float64, n *Number) Fault {
 	if n.Spread.Tol != nil {
 		token = "/tol"
 	}
-	return Fault{Pointer: at + token, Keyword: "physics", Limit: "up to " + figure(limit), Received: figure(received), Unit: UnitOf(at),
-		Detail: "the spread's " + end + " lies outside the physical range"}
+	return Fault{
+		Pointer: at + token, Keyword: "physics", Limit: "up to " + figure(limit), Received: figure(received), Unit: UnitOf(at),
+		Detail: "the spread's " + end + " lies outside the physical range",
+	}
 }
 
 // beside returns the faults of the stage's own check that were not known before.
