@@ -14,7 +14,7 @@ const (
 	gateOnOhm        = 2.5  // [ohm] driver and resistor, turn-on
 	gateOffOhm       = 1.5  // [ohm] turn-off
 	transconductance = 1e-3 // [S] of the draft's error amplifier
-	amplifierOhm     = 1e6  // [ohm] its output resistance
+	amplifierOhm     = 1e7  // [ohm] its output resistance
 	senseAtLimit     = 0.5  // [V] current signal at the current limit
 	limitOverPeak    = 1.15 // [1] current limit over the greatest current
 	slopeOverNeed    = 1.2  // [1] slope compensation over half the falling slope
