@@ -1,0 +1,115 @@
+//go:build e2e
+
+package jobs
+
+import (
+	"fmt"
+	"sync/atomic"
+	"testing"
+	"time"
+
+	"github.com/stretchr/testify/require"
+
+	"railproof/tests/cluster"
+)
+
+var databases atomic.Int64
+
+// fresh makes a database of its own in the cluster.
+func fresh(c *cluster.Cluster) place {
+	name := fmt.Sprintf("test%d", databases.Add(1))
+	c.Execute("CREATE DATABASE " + name)
+	return place{dsn: c.DSN + "&dbname=" + name}
+}
+
+func TestPostgreSQL(t *testing.T) {
+	c := cluster.Start(t)
+	everywhere(t, func(*testing.T) place { return fresh(c) })
+
+	t.Run("many processes that start at once migrate once", func(t *testing.T) {
+		p := fresh(c)
+		opened := make(chan error, 6)
+		for range cap(opened) {
+			go func() {
+				b, err := Open(t.Context(), Options{Executor: new(fakeExecutor), Engine: "test", DSN: p.dsn})
+				if err == nil {
+					err = b.Close(t.Context())
+				}
+				opened <- err
+			}()
+		}
+		for range cap(opened) {
+			require.NoError(t, <-opened)
+		}
+	})
+
+	t.Run("another process cancels within 200 ms", func(t *testing.T) {
+		p := fresh(c)
+		f := new(fakeExecutor)
+		worker := p.open(t, f, nil)
+		j := submit(t, worker, work{Steps: 10_000, Step: 10 * time.Millisecond, Name: "a"})
+		awaitRunning(t, worker, j.ID)
+		other := p.open(t, new(fakeExecutor), func(o *Options) { o.Engine = "other" })
+		before := time.Now()
+		_, err := other.Cancel(t.Context(), j.ID)
+		require.NoError(t, err)
+		require.Eventually(t, func() bool { return f.stopped.Load() == 1 }, 200*time.Millisecond, time.Millisecond)
+		t.Logf("stopped after %v", time.Since(before))
+	})
+
+	t.Run("parts are shared and merge to the same bytes", func(t *testing.T) {
+		p := fresh(c)
+		f, g := new(fakeExecutor), new(fakeExecutor)
+		a, b := p.open(t, f, nil), p.open(t, g, nil)
+		w := work{Steps: 201, Step: 5 * time.Millisecond, Parts: 20, Name: "a"}
+		j := await(t, a, submit(t, a, w).ID, Done)
+		require.EqualValues(t, 201, j.Done)
+		body, err := b.Result(t.Context(), "res_a")
+		require.NoError(t, err)
+		require.Equal(t, answerOf(w), body)
+		require.Positive(t, g.parts.Load(), "the other process helped")
+		require.Positive(t, f.parts.Load())
+		require.EqualValues(t, 20, f.parts.Load()+g.parts.Load())
+		t.Logf("parts: %d here, %d there", f.parts.Load(), g.parts.Load())
+	})
+
+	t.Run("a part that fails makes the job fail with the whole's problem", func(t *testing.T) {
+		b := fresh(c).open(t, new(fakeExecutor), nil)
+		j := await(t, b, submit(t, b, work{Steps: 10, Parts: 3, Fail: true, Name: "a"}).ID, Failed)
+		require.JSONEq(t, `{"title":"asked to fail"}`, string(j.Problem))
+	})
+
+	t.Run("the database goes and comes back", func(t *testing.T) {
+		f := new(fakeExecutor)
+		b := fresh(c).open(t, f, nil)
+		w := work{Steps: 40, Step: 50 * time.Millisecond, Name: "a"}
+		j := submit(t, b, w)
+		awaitRunning(t, b, j.ID)
+		c.Kill()
+		_, err := b.Get(t.Context(), j.ID)
+		require.ErrorIs(t, err, ErrStorage)
+		require.NotEmpty(t, b.Trouble())
+		time.Sleep(3 * time.Second) // the work ends meanwhile and cannot be stored
+		c.Resume()
+		back := time.Now()
+		require.Eventually(t, func() bool {
+			got, err := b.Get(t.Context(), j.ID)
+			return err == nil && got.State == Done
+		}, 30*time.Second, 20*time.Millisecond)
+		t.Logf("stored %v after the database was back", time.Since(back))
+		require.EqualValues(t, 1, f.executions.Load(), "what was computed was not computed again")
+		await(t, b, submit(t, b, work{Steps: 1, Name: "b"}).ID, Done)
+	})
+
+	t.Run("a process that stops beating loses its job to another", func(t *testing.T) {
+		p := fresh(c)
+		f := new(fakeExecutor)
+		dead := p.open(t, f, nil)
+		j := submit(t, dead, work{Steps: 10_000, Step: 10 * time.Millisecond, Name: "a"})
+		awaitRunning(t, dead, j.ID)
+		_, err := dead.db.exec(t.Context(), `UPDATE railproof_jobs SET request = $2, owner = 'process_gone', beat = beat - 11000 WHERE id = $1`, j.ID, request(work{Steps: 3, Step: time.Millisecond, Name: "a"}).Body)
+		require.NoError(t, err)
+		p.open(t, new(fakeExecutor), nil)
+		await(t, dead, j.ID, Done)
+	})
+}
