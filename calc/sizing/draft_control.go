@@ -88,6 +88,10 @@ func (z *sizer) compensator() bool {
 		})
 		if err == nil && design.Margins.Stability == loop.Stable {
 			d.Compensator = design.Compensator
+			if d.Check() != nil {
+				d.Compensator = parts.Compensator{} // parts that nobody can buy
+				continue
+			}
 			z.crossover, z.phaseMargin = design.Margins.Crossover, design.Margins.PhaseMargin
 			return true
 		}
