@@ -39,6 +39,7 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 		}
 		a.Answer = sizing.Select(&r.Requirement, answers)
 		a.Verify()
+		a.VerifyStep(&r.Requirement)
 		a.Basis.Assumptions, err = s.sizingAssumptions(ctx, r, &a.Answer)
 		s.sizingRests(r, a)
 		return err
