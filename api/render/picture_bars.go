@@ -67,7 +67,7 @@ func (b *bars) columns(width vg.Length) (names, figures vg.Length) {
 		}
 		figures = max(figures, bodyInk.Width(r.figures))
 	}
-	return min(names+px(10), 0.42*width), min(figures+px(10), 0.34*width)
+	return min(names+px(20), 0.42*width), min(figures+px(10), 0.34*width)
 }
 
 func (b *bars) draw(c draw.Canvas) {
@@ -85,26 +85,33 @@ func (b *bars) draw(c draw.Canvas) {
 	field := vg.Rectangle{Min: vg.Point{X: c.Min.X + names, Y: top - vg.Length(len(b.rows))*barStep}, Max: vg.Point{X: c.Max.X - figures, Y: top}}
 	x := b.scale.along(field.Min.X, field.Max.X)
 	b.grid(c, field, x)
+	at := x(b.base)
+	c.StrokeLine2(stroke(axisTone, 1.2), at, field.Min.Y, at, field.Max.Y)
 	for i, r := range b.rows {
 		y := top - (vg.Length(i)+0.5)*barStep
 		if r.heading {
-			write(c, headInk, c.Min.X, y, draw.XLeft, clip(headInk, r.name, width-figures-px(8)))
-			write(c, headInk, c.Max.X, y, draw.XRight, r.figures)
+			b.heading(c, &r, y)
 			continue
 		}
 		write(c, bodyInk, c.Min.X+px(8), y, draw.XLeft, clip(bodyInk, r.name, names-px(14)))
 		write(c, bodyInk, c.Max.X, y, draw.XRight, clip(bodyInk, r.figures, figures))
 		b.row(c, &r, y, x)
 	}
-	at := x(b.base)
-	c.StrokeLine2(stroke(axisTone, 1.2), at, field.Min.Y, at, field.Max.Y)
 	b.lines(c, field, markY, x)
+}
+
+// heading writes the row's name over the lines of the field.
+func (b *bars) heading(c draw.Canvas, r *bar, y vg.Length) {
+	name := clip(headInk, r.name, c.Max.X-c.Min.X-headInk.Width(r.figures)-px(12))
+	fill(c, paper, vg.Rectangle{Min: vg.Point{X: c.Min.X, Y: y - barStep/2}, Max: vg.Point{X: c.Min.X + headInk.Width(name) + px(6), Y: y + barStep/2}})
+	write(c, headInk, c.Min.X, y, draw.XLeft, name)
+	write(c, headInk, c.Max.X, y, draw.XRight, r.figures)
 }
 
 func (b *bars) row(c draw.Canvas, r *bar, y vg.Length, x func(float64) vg.Length) {
 	for _, s := range r.spans {
 		from, to := x(min(s.from, s.to)), x(max(s.from, s.to))
-		if math.IsNaN(float64(from + to)) {
+		if !(from < to) {
 			continue
 		}
 		fill(c, s.tone, vg.Rectangle{Min: vg.Point{X: from, Y: y - barHeight/2}, Max: vg.Point{X: max(to, from+px(0.7)), Y: y + barHeight/2}})

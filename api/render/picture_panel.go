@@ -11,15 +11,14 @@ import (
 // panel draws curves over a common horizontal scale: a head with the quantity and
 // the names of the curves, the curves, and the labels of the scale below.
 type panel struct {
-	x, y     scale
-	tall     vg.Length // of the field of curves
-	curves   []curve
-	marks    []mark
-	areas    []area
-	inset    *panel
-	bareX    bool // the panel below has the labels
-	gutter   vg.Length
-	headOnly bool // no head line: an inset
+	x, y   scale
+	tall   vg.Length // of the field of curves
+	curves []curve
+	marks  []mark
+	areas  []area
+	inset  *panel
+	bareX  bool // the panel below has the labels
+	gutter vg.Length
 }
 
 // curve is a line through points; NaN interrupts it.
@@ -36,7 +35,6 @@ type mark struct {
 	x, y  float64
 	label string
 	limit bool
-	to    float64 // for a line at x: it ends here instead of the field's edge; 0 and y NaN: whole field
 }
 
 // area is a shaded band between two values of y.
@@ -56,7 +54,7 @@ func (p *panel) gutterWidth() vg.Length {
 	return w + tickLength + labelGap
 }
 
-func (p *panel) yTicks() []tick { return p.y.ticks(max(2, int(p.tall/px(34)))) }
+func (p *panel) yTicks() []tick { return p.y.ticks(max(2, int(p.tall/px(27)))) }
 
 // alignPanels gives panels that stand above one another the same field.
 func alignPanels(list ...*panel) []block {
@@ -85,23 +83,18 @@ func (p *panel) head(width vg.Length) [][]legendItem {
 	items := []legendItem{{text: p.y.titled(), head: true}}
 	for _, c := range p.curves {
 		if c.name != "" {
-			items = append(items, legendItem{text: c.name, style: c.style, swatch: true, dots: c.dots && len(c.x) == 1})
+			items = append(items, legendItem{text: c.name, style: c.style, swatch: true, dots: c.style.Width == 0})
 		}
 	}
 	return flow(items, width)
 }
 
 func (p *panel) headHeight(width vg.Length) vg.Length {
-	if p.headOnly {
-		return 0
-	}
-	return vg.Length(len(p.head(width)))*legendStep + px(4)
+	return vg.Length(len(p.head(width)))*legendStep + px(7)
 }
 
 func (p *panel) draw(c draw.Canvas) {
-	if !p.headOnly {
-		drawLegend(c, p.head(c.Max.X-c.Min.X))
-	}
+	drawLegend(c, p.head(c.Max.X-c.Min.X))
 	field := vg.Rectangle{
 		Min: vg.Point{X: c.Min.X + p.gutter, Y: c.Max.Y - p.headHeight(c.Max.X-c.Min.X) - p.tall},
 		Max: vg.Point{X: c.Max.X - rightMargin, Y: c.Max.Y - p.headHeight(c.Max.X-c.Min.X)},
@@ -177,6 +170,9 @@ func spaced(list []tick, at func(float64) vg.Length) []tick {
 
 func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length, p *panel) {
 	for _, line := range decimate(c.x, c.y, x, y, px(0.5)) {
+		if c.style.Width == 0 {
+			break
+		}
 		if len(line) > 1 {
 			f.StrokeLines(c.style, f.ClipLinesXY(line)...)
 		}

@@ -113,7 +113,7 @@ func (s *scale) ticks(fit int) []tick {
 		}
 		label := strconv.FormatFloat(v*factor, 'f', min(decimals, 9), 64)
 		if s.log {
-			label = Figure3(v, s.unit)
+			label = trimmed(Figure3(v, s.unit))
 		}
 		list = append(list, tick{v, strings.Replace(label, "-", "−", 1)})
 	}
@@ -121,13 +121,13 @@ func (s *scale) ticks(fit int) []tick {
 }
 
 // decades returns the powers of ten with their unit, and the places between; nil
-// if there are fewer than two.
+// where the scale spans less than about one.
 func (s *scale) decades(fit int) []tick {
 	from, to := int(math.Ceil(math.Log10(s.least)-1e-9)), int(math.Floor(math.Log10(s.greatest)+1e-9))
-	if to-from < 1 {
+	if s.greatest < 8*s.least {
 		return nil
 	}
-	every := 1 + (to-from)/max(fit, 1)
+	every := 1 + max(to-from, 0)/max(fit, 1)
 	var list []tick
 	for d := from - 1; d <= to; d++ {
 		for m := 1; m < 10; m++ {
@@ -136,9 +136,8 @@ func (s *scale) decades(fit int) []tick {
 				continue
 			}
 			label := ""
-			if m == 1 && (d-from)%every == 0 || every == 1 && (to-from+1)*2 <= fit && (m == 2 || m == 5) {
-				label = Figure3(v, s.unit)
-				label = trimmed(label)
+			if m == 1 && (d-from)%every == 0 || every == 1 && (to-from+1)*3 <= fit+1 && (m == 2 || m == 5) {
+				label = trimmed(Figure3(v, s.unit))
 			}
 			list = append(list, tick{v, label})
 		}
