@@ -10,10 +10,16 @@ func apply(m *square, x, y *vec, n int) {
 		y[3] = m[12]*x[0] + m[13]*x[1] + m[14]*x[2] + m[15]*x[3]
 		return
 	}
+	if n == 3 {
+		m, x := (*[9]float64)(m[:]), (*[3]float64)(x[:])
+		y[0] = m[0]*x[0] + m[1]*x[1] + m[2]*x[2]
+		y[1] = m[3]*x[0] + m[4]*x[1] + m[5]*x[2]
+		y[2] = m[6]*x[0] + m[7]*x[1] + m[8]*x[2]
+		return
+	}
 	for i := range n {
-		row := m[i*n : i*n+n]
 		acc := 0.0
-		for j, a := range row {
+		for j, a := range m[i*n : i*n+n] {
 			acc += a * x[j]
 		}
 		y[i] = acc
@@ -78,7 +84,11 @@ func multiply4(c, a, b *[16]float64) {
 // congruent adds E M Eᵀ to the symmetric matrix M; t is work space.
 func congruent(e, m, t *square, n int) {
 	multiply(t, e, m, n)
-	if n == 4 {
+	switch n {
+	case 3:
+		congruent3((*[9]float64)(m[:]), (*[9]float64)(t[:]), (*[9]float64)(e[:]))
+		return
+	case 4:
 		congruent4((*[16]float64)(m[:]), (*[16]float64)(t[:]), (*[16]float64)(e[:]))
 		return
 	}
@@ -92,6 +102,16 @@ func congruent(e, m, t *square, n int) {
 			m[i*n+j] += acc
 			m[j*n+i] = m[i*n+j]
 		}
+	}
+}
+
+// congruent3 adds t eᵀ to m.
+func congruent3(m, t, e *[9]float64) {
+	for i := 0; i < 9; i += 3 {
+		x, y, z := t[i], t[i+1], t[i+2]
+		m[i] += x*e[0] + y*e[1] + z*e[2]
+		m[i+1] += x*e[3] + y*e[4] + z*e[5]
+		m[i+2] += x*e[6] + y*e[7] + z*e[8]
 	}
 }
 

@@ -51,6 +51,10 @@ func (ce *cell) set(ld *ladder, l int, x, y *vec, n int) {
 	for i := range n {
 		rate[i] *= half
 	}
+	if n == 4 {
+		ce.series4((*[16]float64)(ld.a[:]), scale)
+		return
+	}
 	for k := 2; k <= ce.order; k++ {
 		c := &ce.c[k]
 		apply(&ld.a, &ce.c[k-1], c, n)
@@ -58,6 +62,19 @@ func (ce *cell) set(ld *ladder, l int, x, y *vec, n int) {
 		for i := range n {
 			c[i] *= q
 		}
+	}
+}
+
+// series4 is the recursion of set for four states.
+func (ce *cell) series4(m *[16]float64, scale float64) {
+	x, y, z, w := ce.c[1][0], ce.c[1][1], ce.c[1][2], ce.c[1][3]
+	for k := 2; k <= ce.order; k++ {
+		q := scale * inverse[k]
+		x, y, z, w = q*x, q*y, q*z, q*w
+		x, y, z, w = m[0]*x+m[1]*y+m[2]*z+m[3]*w, m[4]*x+m[5]*y+m[6]*z+m[7]*w,
+			m[8]*x+m[9]*y+m[10]*z+m[11]*w, m[12]*x+m[13]*y+m[14]*z+m[15]*w
+		c := (*[4]float64)(ce.c[k][:])
+		c[0], c[1], c[2], c[3] = x, y, z, w
 	}
 }
 

@@ -69,16 +69,17 @@ func (m *moments) set(s *Solver, k int, all bool) {
 // with respect to x times scale.
 func (m *moments) project(ce *cell, derivative int, scale float64, n int) {
 	for j := 0; j <= momentOrder; j++ {
-		l := &m.l[j]
-		*l = vec{}
+		l := m.l[j][:n]
+		for i := range l {
+			l[i] = 0
+		}
 		for k := j; k+derivative <= ce.order; k += 2 {
 			w := legendre[k][j] * scale
 			if derivative == 1 {
 				w *= float64(k + 1)
 			}
-			c := &ce.c[k+derivative]
-			for i := range n {
-				l[i] += w * c[i]
+			for i, c := range ce.c[k+derivative][:n] {
+				l[i] += w * c
 			}
 		}
 	}
