@@ -18,19 +18,35 @@ type Bode struct {
 // Sweep fills dst with both models at the frequencies, which lie above zero. dst
 // is as long as frequencies.
 func (s *Sampled) Sweep(a *Averaged, frequencies []float64, dst []Bode) {
+	bare := s.bare()
 	for i, f := range frequencies {
 		b := &dst[i]
 		b.Frequency, b.Averaged, b.Sampled = f, a.At(f), s.At(f)
-		b.Deviation = deviation(&s.plant, &b.Averaged, &b.Sampled)
+		b.Deviation = bare.deviation(&b.Averaged, &b.Sampled, f)
 	}
+}
+
+// bare is the exact model of the stage without its compensator, whose ripple at
+// the comparator the averaged model knows nothing of.
+type bare struct{ stage *Sampled }
+
+func (s *Sampled) bare() bare {
+	if s.plant.Modulator.Mode == parts.VoltageMode {
+		return bare{} // from duty ratio to output the comparator plays no part
+	}
+	p := s.plant
+	p.Compensator.Present = false
+	b := bare{new(Sampled)}
+	b.stage.Set(&p)
+	return b
 }
 
 // deviation returns the relative distance of the averaged stage from the exact
 // one, |averaged/exact - 1|: duty ratio to output in voltage mode, control voltage
 // to output in peak current mode.
-func deviation(p *Plant, averaged, exact *Transfers) float64 {
-	if p.Modulator.Mode == parts.PeakCurrentMode {
-		return cmplx.Abs(averaged.Control/exact.Control - 1)
+func (b bare) deviation(averaged, exact *Transfers, frequency float64) float64 {
+	if b.stage != nil {
+		return cmplx.Abs(averaged.Control/b.stage.At(frequency).Control - 1)
 	}
 	return cmplx.Abs(averaged.Duty/exact.Duty - 1)
 }
@@ -51,9 +67,10 @@ const (
 // Agreement compares the averaged model of the same plant with the exact one.
 func (s *Sampled) Agreement(a *Averaged) Agreement {
 	fs := 1 / s.plant.Circuit.Period
+	bare := s.bare()
 	at := func(f float64) float64 {
 		x, y := a.At(f), s.At(f)
-		return deviation(&s.plant, &x, &y)
+		return bare.deviation(&x, &y, f)
 	}
 	g := Agreement{Thousandth: at(1e-3 * fs), Hundredth: at(1e-2 * fs), Tenth: at(0.1 * fs)}
 	step := math.Pow(s.plant.Nyquist()/(1e-3*fs), 1.0/agreementPoints)

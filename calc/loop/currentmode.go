@@ -72,10 +72,10 @@ type CurrentLoop struct {
 	Modulator  float64 // [1/V] Fm = 1/((Sn + Se) Ts)
 	LeastSlope float64 // [V/s] slope compensation at which it becomes stable, (Sf - Sn)/2 or 0
 	DeadBeat   float64 // [V/s] slope at which a disturbance is gone after one period, Sf
-	Gain       float64 // [1] control to output at low frequency
-	Pole       float64 // [Hz] load pole
-	Zero       float64 // [Hz] of the series resistance
 	HalfRate   float64 // [Hz] fn = fs/2
+	Gain       float64 // [1] control to output at low frequency; IdealCurrentLoop only
+	Pole       float64 // [Hz] load pole; IdealCurrentLoop only
+	Zero       float64 // [Hz] of the series resistance; IdealCurrentLoop only
 }
 
 // Stable reports whether a disturbance of the inductor current dies out.
@@ -94,21 +94,39 @@ func (c CurrentLoop) Stable() bool { return math.Abs(c.Eigenvalue) < 1 }
 // unverified). Checked by TestReferenceLoop loop-14 and loop-15.
 func IdealCurrentLoop(v IdealStage, sense, slope float64) CurrentLoop {
 	ts := 1 / v.Frequency
-	d := v.Output / v.Input
-	sn, sf := sense*(v.Input-v.Output)/v.Inductance, sense*v.Output/v.Inductance
+	c := currentLoop(sense*(v.Input-v.Output)/v.Inductance, sense*v.Output/v.Inductance, slope, v.Output/v.Input, ts)
+	x := c.RampRatio*(1-v.Output/v.Input) - 0.5
+	c.Gain = v.Load / sense / (1 + v.Load*ts/v.Inductance*x)
+	c.Pole = (1/(v.Capacitance*v.Load) + ts/(v.Inductance*v.Capacitance)*x) / (2 * math.Pi)
+	c.Zero = 1 / (2 * math.Pi * v.ESR * v.Capacitance)
+	return c
+}
+
+// currentLoop returns what follows from the sensed slopes, the ramp and the duty
+// ratio alone.
+func currentLoop(sn, sf, slope, duty, period float64) CurrentLoop {
 	mc := 1 + slope/sn
-	x := mc*(1-d) - 0.5
+	nan := math.NaN()
 	return CurrentLoop{
 		RiseSlope: sn, FallSlope: sf, RampRatio: mc,
 		Eigenvalue: -(sf - slope) / (sn + slope),
-		Quality:    1 / (math.Pi * x),
-		Modulator:  1 / ((sn + slope) * ts),
+		Quality:    1 / (math.Pi * (mc*(1-duty) - 0.5)),
+		Modulator:  1 / ((sn + slope) * period),
 		LeastSlope: max(0, (sf-sn)/2), DeadBeat: sf,
-		Gain:     v.Load / sense / (1 + v.Load*ts/v.Inductance*x),
-		Pole:     (1/(v.Capacitance*v.Load) + ts/(v.Inductance*v.Capacitance)*x) / (2 * math.Pi),
-		Zero:     1 / (2 * math.Pi * v.ESR * v.Capacitance),
-		HalfRate: v.Frequency / 2,
+		HalfRate: 0.5 / period, Gain: nan, Pole: nan, Zero: nan,
 	}
+}
+
+// CurrentLoop returns the figures of the current loop from the slopes at the mean
+// current, drops included, in continuous conduction. The exact eigenvalue is that
+// of Margins.
+func (p *Plant) CurrentLoop() CurrentLoop {
+	leg, c := p.average(), &p.Circuit
+	i := (c.Current + c.Conductance*p.Output) / float64(c.Phases)
+	ri := p.Modulator.Sense
+	rise := ri * (c.Vin - i*(leg.HighSide+leg.Winding) - p.Output) / leg.L
+	fall := ri * (p.Output + leg.Rectifier.Threshold + i*(leg.Rectifier.Slope+leg.Winding)) / leg.L
+	return currentLoop(rise, fall, p.Modulator.Slope, p.Duty, c.Period)
 }
 
 // IdealStage is a lossless stage for the textbook formulas.

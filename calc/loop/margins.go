@@ -54,8 +54,8 @@ type Margins struct {
 	SpectralRadius  float64    // [1] greatest modulus of the closed loop's eigenvalues, per decision
 	Dominant        complex128 // [1] that eigenvalue
 	DominantAt      float64    // [Hz] its frequency of oscillation
-	CurrentLoop     complex128 // [1] largest eigenvalue of the stage with its current loop closed; 0 in voltage mode
-	Subharmonic     bool       // peak current mode: the current loop alternates and does not settle
+	CurrentLoop     complex128 // [1] peak current mode: what is left of a disturbance of the current after one period; 0 in voltage mode
+	Subharmonic     bool       // peak current mode: it alternates and does not settle
 	Crossed         Crossed
 	CrossoverCount  int
 	Crossovers      [MaxCrossovers]Crossover
@@ -99,8 +99,7 @@ func (s *Sampled) decide(m *Margins) bool {
 		if !s.eigenvalues(&s.inner, j.Network, &e) {
 			return false
 		}
-		m.CurrentLoop = largest(&e, j.Network)
-		m.Subharmonic = real(m.CurrentLoop) <= -1
+		m.currentLoop(&e, j.Network, &s.plant)
 	}
 	if !s.transfer.Eigenvalues(&e) {
 		return false
@@ -118,6 +117,25 @@ func (s *Sampled) decide(m *Margins) bool {
 		m.Stability = Stable
 	}
 	return true
+}
+
+// currentLoop picks the current loop's eigenvalue from those of the stage with its
+// current loop closed: per period, the one nearest to what the slopes alone give.
+func (m *Margins) currentLoop(e *statespace.ComplexPoint, n int, p *Plant) {
+	ideal := complex(p.CurrentLoop().Eigenvalue, 0)
+	nearest := math.Inf(1)
+	for _, x := range e[:n] {
+		period := complex128(1)
+		for range p.Circuit.Phases {
+			period *= x
+		}
+		if d := cmplx.Abs(period - ideal); d < nearest {
+			nearest, m.CurrentLoop = d, period
+		}
+		if cmplx.Abs(x) >= 1 && real(period) < 0 {
+			m.Subharmonic = true
+		}
+	}
 }
 
 // eigenvalues sets e to the eigenvalues of the leading n rows and columns of a.

@@ -80,10 +80,12 @@ func TestAveragedAgreesWithSampledAtLowFrequency(t *testing.T) {
 			f := 1e-3 / c.Period
 			x, y := a.At(f), s.At(f)
 			for _, pair := range [][2]complex128{{x.Duty, y.Duty}, {x.Line, y.Line}, {x.Impedance, y.Impedance}} {
-				t.Log(pair, cmplx.Abs(pair[0]/pair[1]-1))
-				require.Less(t, cmplx.Abs(pair[0]/pair[1]-1), 0.01)
+				require.Less(t, cmplx.Abs(pair[0]/pair[1]-1), 1e-6)
 			}
-			t.Log(x.Loop, y.Loop, x.Loop/y.Loop, x.ClosedImpedance/y.ClosedImpedance, x.ClosedLine/y.ClosedLine)
+			// The ripple at the comparator takes some gain away.
+			require.Less(t, cmplx.Abs(x.Loop/y.Loop-1), 0.05)
+			require.Less(t, cmplx.Abs(x.ClosedImpedance/y.ClosedImpedance-1), 0.02)
+			require.Less(t, cmplx.Abs(x.ClosedLine/y.ClosedLine-1), 0.05)
 		})
 	}
 }

@@ -10,14 +10,14 @@ import (
 	"railproof/calc/preferred"
 )
 
-func bare() parts.Compensator {
+func ideal() parts.Compensator {
 	return parts.Compensator{GainBandwidth: math.Inf(1), OpenLoopGain: math.Inf(1), Transconductance: 1e-3, OutputOhm: math.Inf(1)}
 }
 
 func TestSynthesisMeetsItsTargetOnTheExactLoop(t *testing.T) {
-	slow := bare()
+	slow := ideal()
 	slow.GainBandwidth, slow.OpenLoopGain = 20e6, 1e5
-	finite := bare()
+	finite := ideal()
 	finite.OutputOhm = 3e6
 	late := voltageMode()
 	late.Delay = 80e-9
@@ -27,16 +27,16 @@ func TestSynthesisMeetsItsTargetOnTheExactLoop(t *testing.T) {
 		crossover float64
 		margin    float64
 	}{
-		"voltage/type-three":            {solvedPlant(t, buoy(), 5, voltageMode(), bare()), parts.OpAmpType3, 60e3, 52},
-		"voltage/type-three/delay":      {solvedPlant(t, buoy(), 5, late, bare()), parts.OpAmpType3, 60e3, 45},
+		"voltage/type-three":            {solvedPlant(t, buoy(), 5, voltageMode(), ideal()), parts.OpAmpType3, 60e3, 52},
+		"voltage/type-three/delay":      {solvedPlant(t, buoy(), 5, late, ideal()), parts.OpAmpType3, 60e3, 45},
 		"voltage/type-three/slow":       {solvedPlant(t, twoBanks(buoy()), 5, voltageMode(), slow), parts.OpAmpType3, 50e3, 50},
-		"voltage/type-two/resting":      {solvedPlant(t, diodeLight(buoy()), 5, voltageMode(), bare()), parts.OpAmpType2, 15e3, 65},
-		"voltage/type-one/resting":      {solvedPlant(t, diodeLight(buoy()), 5, voltageMode(), bare()), parts.OpAmpType1, 100, 20},
+		"voltage/type-two/resting":      {solvedPlant(t, diodeLight(buoy()), 5, voltageMode(), ideal()), parts.OpAmpType2, 15e3, 65},
+		"voltage/type-one/resting":      {solvedPlant(t, diodeLight(buoy()), 5, voltageMode(), ideal()), parts.OpAmpType1, 100, 20},
 		"voltage/ota-three":             {solvedPlant(t, twoBanks(buoy()), 5, voltageMode(), finite), parts.TransconductanceType3, 40e3, 50},
 		"current/ota-two":               {solvedPlant(t, buoy(), 5, currentModulator(), finite), parts.TransconductanceType2, 50e3, 60},
 		"current/type-two":              {solvedPlant(t, buoy(), 5, currentModulator(), slow), parts.OpAmpType2, 50e3, 60},
-		"current/ota-two/three-phases":  {solvedPlant(t, phases(buoy(), 3), 5, currentModulator(), bare()), parts.TransconductanceType2, 80e3, 55},
-		"voltage/type-three/six-phases": {solvedPlant(t, phases(buoy(), 6), 5, voltageMode(), bare()), parts.OpAmpType3, 100e3, 55},
+		"current/ota-two/three-phases":  {solvedPlant(t, phases(buoy(), 3), 5, currentModulator(), ideal()), parts.TransconductanceType2, 80e3, 55},
+		"voltage/type-three/six-phases": {solvedPlant(t, phases(buoy(), 6), 5, voltageMode(), ideal()), parts.OpAmpType3, 100e3, 55},
 	} {
 		t.Run(name, func(t *testing.T) {
 			var s Sampled
@@ -70,7 +70,7 @@ func TestSynthesisMeetsItsTargetOnTheExactLoop(t *testing.T) {
 }
 
 func TestUnreachableTargetsTellTheBound(t *testing.T) {
-	voltage := solvedPlant(t, buoy(), 5, voltageMode(), bare())
+	voltage := solvedPlant(t, buoy(), 5, voltageMode(), ideal())
 	t.Run("phase", func(t *testing.T) {
 		for _, kind := range []parts.CompensatorType{parts.OpAmpType2, parts.TransconductanceType2} {
 			var s Sampled
@@ -88,7 +88,7 @@ func TestUnreachableTargetsTellTheBound(t *testing.T) {
 	})
 	t.Run("phase/divider-bounds-the-lead", func(t *testing.T) {
 		// A 0.9 V output of a 0.8 V reference leaves a lead network hardly any room.
-		low := solvedPlant(t, buoy(), 0.9, voltageMode(), bare())
+		low := solvedPlant(t, buoy(), 0.9, voltageMode(), ideal())
 		var s Sampled
 		_, err := s.Synthesise(&low, Target{Crossover: 40e3, PhaseMargin: 60, Type: parts.TransconductanceType3})
 		var unreachable *UnreachableError

@@ -71,6 +71,7 @@ type Engine struct {
 	rec    recorder
 	run    tally
 
+	restless  bool    // the start is no periodic solution
 	startMean float64 // [V]
 	lastMean  float64 // [V] of the last period
 }
@@ -88,7 +89,7 @@ const (
 	NotRun    Status = iota
 	Running          // periods are left
 	Finished         // the whole duration was run
-	NoStart          // no periodic solution was found to start from
+	NoStart          // the operating point has no loop to start from
 	Stalled          // more edges within one period than a controller can make
 	TooStiff         // a time constant is too short against the period to be followed
 	Collapsed        // the load drags the output below zero, where the circuit is no longer that of the model

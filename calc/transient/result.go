@@ -47,6 +47,7 @@ type Result struct {
 	At          float64 // [s] reached
 	Periods     int
 	StartMean   float64 // [V] mean output before the first event, from a periodic start
+	Restless    bool    // no periodic solution was found: the run starts from what the loop settled to
 	Outcomes    []Outcome
 	Settled     bool // the last periods repeat each other
 	Alternates  bool // they repeat every second time: subharmonic oscillation
@@ -191,7 +192,7 @@ const (
 func (e *Engine) Result() Result {
 	r := &e.run
 	res := Result{
-		Status: e.status, At: e.now.at, Periods: r.periods, StartMean: e.startMean,
+		Status: e.status, At: e.now.at, Periods: r.periods, StartMean: e.startMean, Restless: e.restless,
 		Outcomes: append(append([]Outcome(nil), r.done...), r.close(e)), FinalLeast: r.lastLeast, FinalMost: r.lastMost,
 	}
 	if r.periods < historyLength {

@@ -261,3 +261,70 @@ func TestMeaninglessSetupsAreRefusedWithTheirFields(t *testing.T) {
 		})
 	}
 }
+
+func TestControllerLimitsAreKept(t *testing.T) {
+	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	p = atLoad(t, p, 1)
+	step := func(change float64, edit func(s *Setup)) (Setup, Outcome, Result) {
+		s := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
+			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: change}}, Record: Record{Points: 2000}}
+		edit(&s)
+		_, r := run(t, &s)
+		return s, r.Outcomes[1], r
+	}
+	t.Run("greatest-duty", func(t *testing.T) {
+		_, free, _ := step(8, func(*Setup) {})
+		_, bound, r := step(8, func(s *Setup) { s.Bounds.MaxDuty = 0.5 })
+		require.Positive(t, bound.AtMaxDuty)
+		require.Greater(t, bound.Down, free.Down)
+		require.Equal(t, Finished, r.Status)
+	})
+	t.Run("least-off-time", func(t *testing.T) {
+		_, bound, _ := step(8, func(s *Setup) { s.Bounds.MinOff = 1.2e-6 })
+		require.Positive(t, bound.AtMaxDuty)
+	})
+	t.Run("least-on-time", func(t *testing.T) {
+		s := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
+			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: -1}}, Record: Record{Points: 4000}}
+		s.Bounds.MinOn = 200e-9
+		e, _ := run(t, &s)
+		for _, row := range e.Rows() {
+			require.True(t, math.IsNaN(row.Duty) || row.Duty == 0 || row.Duty >= 0.1-1e-9, "duty %g at %g", row.Duty, row.At)
+		}
+	})
+	t.Run("current-limit", func(t *testing.T) {
+		_, o, r := step(5, func(s *Setup) { s.Plant.Modulator.CurrentLimit = 7.5 })
+		require.Positive(t, o.Limited)
+		require.LessOrEqual(t, o.InductorPeak.Value, 7.5+1e-9)
+		require.Equal(t, Finished, r.Status)
+	})
+	t.Run("current-limit-below-the-load", func(t *testing.T) {
+		_, _, r := step(8, func(s *Setup) { s.Plant.Modulator.CurrentLimit = 5 })
+		require.Equal(t, Collapsed, r.Status)
+		require.Less(t, r.At, 4e-4)
+	})
+	t.Run("delay-passes-the-limit", func(t *testing.T) {
+		_, o, _ := step(5, func(s *Setup) {
+			s.Plant.Modulator.CurrentLimit = 6.8
+			s.Plant.Modulator.Delay = 50e-9
+		})
+		require.Positive(t, o.Limited)
+		rise := (24 - 4.9) / 6.8e-6 * 50e-9
+		require.InDelta(t, 6.8+rise, o.InductorPeak.Value, 0.05*rise)
+	})
+}
+
+func TestLightLoadLeavesOutPulses(t *testing.T) {
+	c := buoy()
+	c.Leg.Rectifier.Blocks = true
+	design := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	c.Current = 0.02
+	p := solved(t, c, 5, voltageMode(), design.Compensator)
+	s := Setup{Plant: p, Bounds: bounds(&p), Duration: 2e-3, Band: 0.1, Saturation: parts.Unknown}
+	s.Bounds.MinOn = 200e-9 // five times what this load takes
+	_, r := run(t, &s)
+	require.Equal(t, Finished, r.Status)
+	require.True(t, r.Restless)
+	require.Positive(t, r.Outcomes[0].Skipped)
+	require.InDelta(t, 5, r.StartMean, 0.05)
+}

@@ -83,9 +83,16 @@ func (e *Engine) fromPeriodic() bool {
 	d := model.Decision()
 	e.placeAt(&d)
 	e.advance(e.setup.Plant.Circuit.Period) // to the clock of phase 0
-	e.rewind()
-	if e.status != Running || !e.shoot() {
+	e.rewind(1)
+	if e.status != Running {
 		return false
+	}
+	before := e.now
+	if !e.shoot() {
+		e.status, e.now = Running, before
+		if !e.relax() {
+			return false
+		}
 	}
 	e.startMean = e.lastMean
 	e.run.target = e.lastMean
@@ -120,19 +127,40 @@ func (e *Engine) placeAt(d *loop.Instant) {
 	m.phases[0].off = m.at + e.delay
 }
 
-// rewind takes the time of the present moment back by one period.
-func (e *Engine) rewind() {
+// relax runs the loop until it does what it will do for good, such as leaving out
+// pulses at a light load, and starts from there.
+func (e *Engine) relax() bool {
+	mean := 0.0
+	for n := range relaxPeriods {
+		if !e.period() {
+			return false
+		}
+		if n >= relaxPeriods-relaxMean {
+			mean += e.lastMean / relaxMean
+		}
+	}
+	e.lastMean, e.restless = mean, true
+	return true
+}
+
+const (
+	relaxPeriods = 3000 // [1] run before a start without a periodic solution
+	relaxMean    = 256  // [1] of them over which the mean output is taken
+)
+
+// rewind takes the time of the present moment back by whole periods.
+func (e *Engine) rewind(periods int) {
 	m := &e.now
-	period := e.joint.Circuit.Period
-	m.at -= period
+	back := float64(periods) * e.joint.Circuit.Period
+	m.at -= back
 	if math.Abs(m.at) <= e.grain() {
 		m.at = 0
 	}
 	m.began = m.at
 	for i := range e.joint.Circuit.Phases {
 		p := &m.phases[i]
-		p.count--
-		p.since, p.off, p.clock = p.since-period, p.off-period, e.clock(i, p.count)
+		p.count -= periods
+		p.since, p.off, p.clock = p.since-back, p.off-back, e.clock(i, p.count)
 	}
 }
 
@@ -203,7 +231,7 @@ func scaleOf(x float64) float64 { return max(math.Abs(x), 1e-2) }
 // period runs one period and takes the time back.
 func (e *Engine) period() bool {
 	e.advance(e.joint.Circuit.Period)
-	e.rewind()
+	e.rewind(1)
 	return e.status == Running
 }
 
