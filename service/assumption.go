@@ -145,29 +145,30 @@ func omissions(d *Design) []Assumption {
 func placeholders(d *Design) []Assumption {
 	var list []Assumption
 	s := d.Stage
-	none := func(tail, why string) { list = append(list, numberless(d.At+tail, why)) }
-	const placeholder = "placeholder part: its values are proposals, not those of a part"
+	none := func(tail string) {
+		list = append(list, numberless(d.At+tail, "placeholder part: its values are proposals, not those of a part"))
+	}
 	if s.HighSide.Assumed {
-		none("/high_side", placeholder)
+		none("/high_side")
 	}
 	if s.Rectifier == stage.DiodeRectified {
 		if s.Diode.Assumed {
-			none("/diode", placeholder)
+			none("/diode")
 		}
 	} else if s.LowSide.Assumed {
-		none("/low_side", placeholder)
+		none("/low_side")
 	}
 	if s.Inductor.Assumed {
-		none("/inductor", placeholder)
+		none("/inductor")
 	}
 	for i := range s.OutputCapacitors {
 		if s.OutputCapacitors[i].Assumed {
-			none(bankAt("/output_capacitors/", i), placeholder)
+			none(bankAt("/output_capacitors/", i))
 		}
 	}
 	for i := range s.InputCapacitors {
 		if s.InputCapacitors[i].Assumed {
-			none(bankAt("/input_capacitors/", i), placeholder)
+			none(bankAt("/input_capacitors/", i))
 		}
 	}
 	return list

@@ -185,24 +185,24 @@ func EncodeSizing(w *SizingRequest, r *service.SizingRequest, a *service.SizingA
 }
 
 // draft adds what can be posted on to the other operations.
-func (out *SizingAnswer) draft(a *service.SizingAnswer, at string) {
-	out.Stage = EncodeStage(a.Stage, a.Spreads)
-	out.Point, out.Conditions = EncodePoint(&a.Point), EncodeConditions(&a.Conditions)
-	d := &a.Divider
-	out.Divider = &Divider{Reference: d.Reference, Upper: d.Upper, Lower: d.Lower, Output: d.Output, Error: d.Error, WorstError: bounded(&d.WorstError), Series: d.Series.String()}
-	for i := range a.Limits {
-		l := &a.Limits[i]
+func (a *SizingAnswer) draft(from *service.SizingAnswer, at string) {
+	a.Stage = EncodeStage(from.Stage, from.Spreads)
+	a.Point, a.Conditions = EncodePoint(&from.Point), EncodeConditions(&from.Conditions)
+	d := &from.Divider
+	a.Divider = &Divider{Reference: d.Reference, Upper: d.Upper, Lower: d.Lower, Output: d.Output, Error: d.Error, WorstError: bounded(&d.WorstError), Series: d.Series.String()}
+	for i := range from.Limits {
+		l := &from.Limits[i]
 		limit := Limit{Quantity: l.Quantity.Key(), Min: bounded(&l.Least), Max: bounded(&l.Most)}
 		if l.FullLoad {
 			limit.At = "nominal"
 		}
-		out.Limits = append(out.Limits, limit)
+		a.Limits = append(a.Limits, limit)
 	}
-	for i := range a.Checks {
-		out.Checks = append(out.Checks, encodeCheck(&a.Checks[i], at))
+	for i := range from.Checks {
+		a.Checks = append(a.Checks, encodeCheck(&from.Checks[i], at))
 	}
-	if a.Worst != evaluate.NotRun {
-		out.ChecksStatus = a.Worst.String()
+	if from.Worst != evaluate.NotRun {
+		a.ChecksStatus = from.Worst.String()
 	}
 }
 

@@ -113,7 +113,7 @@ func beside(known []Fault, err error, root string) []Fault {
 		said[known[i].Pointer] = true
 	}
 	var faults []Fault
-	for _, f := range physicalFaults(err.(*stage.InvalidError), root) {
+	for _, f := range faultsOf(Located(err, root)) {
 		if !said[f.Pointer] {
 			faults = append(faults, f)
 		}

@@ -30,13 +30,10 @@ func example(b testing.TB, name string) []byte {
 }
 
 // serve answers one request in process: everything but the socket.
-func serve(b testing.TB, h http.Handler, path string, body []byte, headers ...string) *httptest.ResponseRecorder {
+func serve(b testing.TB, h http.Handler, path string, body []byte) *httptest.ResponseRecorder {
 	b.Helper()
 	r := httptest.NewRequestWithContext(context.Background(), http.MethodPost, path, bytes.NewReader(body))
 	r.Header.Set("Content-Type", "application/json")
-	for i := 0; i < len(headers); i += 2 {
-		r.Header.Set(headers[i], headers[i+1])
-	}
 	w := httptest.NewRecorder()
 	h.ServeHTTP(w, r)
 	require.Equal(b, http.StatusOK, w.Code, "%s", w.Body)

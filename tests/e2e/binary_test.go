@@ -3,6 +3,7 @@ package e2e
 
 import (
 	"bytes"
+	"context"
 	"errors"
 	"os"
 	"os/exec"
@@ -21,7 +22,7 @@ func TestMain(m *testing.M) {
 		panic(err)
 	}
 	program = filepath.Join(dir, "railproof")
-	build := exec.Command("go", "build", "-o", program, "railproof/cmd/railproof")
+	build := exec.CommandContext(context.Background(), "go", "build", "-o", program, "railproof/cmd/railproof")
 	build.Stderr = os.Stderr
 	if err := build.Run(); err != nil {
 		panic(err)
