@@ -21,6 +21,10 @@ const TextForm = "text/plain"
 // renderers are the forms besides JSON, by operation and media type. A new one is
 // a line here; HTTP gives those that the contract lists.
 var renderers = map[string]map[string]renderer{
+	"corners": {
+		"text/csv": func(v any) []byte { return render.CornersCSV(v.(*wire.CornersAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.CornersText(v.(*wire.CornersAnswer))) },
+	},
 	"losses": {
 		"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.LossesText(v.(*wire.LossesAnswer))) },

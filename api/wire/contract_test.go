@@ -31,8 +31,13 @@ var schemas = map[string]reflect.Type{
 	"SizingRequest": reflect.TypeFor[SizingRequest](), "SizingChoices": reflect.TypeFor[SizingChoices](), "SizingAnswer": reflect.TypeFor[SizingAnswer](),
 	"Window": reflect.TypeFor[Window](), "Bound": reflect.TypeFor[Bound](), "Corner": reflect.TypeFor[Corner](), "RequiredRating": reflect.TypeFor[RequiredRating](),
 	"Conflict": reflect.TypeFor[SizingConflict](), "Divider": reflect.TypeFor[Divider](), "SizingCheck": reflect.TypeFor[SizingCheck](), "SweepRow": reflect.TypeFor[SweepRow](),
-	"Equation": reflect.TypeFor[Equation](),
-	"Fault":    reflect.TypeFor[Fault](), "QuantityInfo": reflect.TypeFor[QuantityInfo](), "QuantitiesAnswer": reflect.TypeFor[QuantitiesAnswer](),
+	"Equation":       reflect.TypeFor[Equation](),
+	"CornersRequest": reflect.TypeFor[CornersRequest](), "CornerPoint": reflect.TypeFor[CornerPoint](), "Bias": reflect.TypeFor[Bias](), "CornersAnswer": reflect.TypeFor[CornersAnswer](),
+	"SearchEffort": reflect.TypeFor[SearchEffort](), "Variable": reflect.TypeFor[Variable](), "VariableValue": reflect.TypeFor[VariableValue](), "QuantityCorners": reflect.TypeFor[QuantityCorners](),
+	"WorstPoint": reflect.TypeFor[WorstPoint](), "Contribution": reflect.TypeFor[Contribution](), "TornadoBar": reflect.TypeFor[TornadoBar](), "Variance": reflect.TypeFor[Variance](),
+	"VarianceShare": reflect.TypeFor[VarianceShare](), "RootSumSquare": reflect.TypeFor[RootSumSquare](), "Statistics": reflect.TypeFor[Statistics](), "QuantileValue": reflect.TypeFor[QuantileValue](),
+	"Histogram": reflect.TypeFor[Histogram](), "Yield": reflect.TypeFor[Yield](), "FailureCount": reflect.TypeFor[FailureCount](), "WorstSample": reflect.TypeFor[WorstSample](),
+	"Fault": reflect.TypeFor[Fault](), "QuantityInfo": reflect.TypeFor[QuantityInfo](), "QuantitiesAnswer": reflect.TypeFor[QuantitiesAnswer](),
 	"PreferredSeries": reflect.TypeFor[PreferredSeries](), "PreferredValuesAnswer": reflect.TypeFor[PreferredValuesAnswer](),
 }
 

@@ -180,6 +180,9 @@ func (d *Design) stationaryInputs() (levels []float64) {
 // Problem returns the box. The caller sets its Targets.
 func (d *Design) Problem() *Problem { return &d.problem }
 
+// Scales returns the factors beside the spreads, in order.
+func (d *Design) Scales() []Scale { return d.scales }
+
 // Spreads returns the compiled spreads, the Placer of the Random coordinates.
 func (d *Design) Spreads() *spread.Set { return d.set }
 

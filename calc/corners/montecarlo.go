@@ -6,6 +6,7 @@ import (
 
 	"railproof/calc/evaluate"
 	"railproof/calc/sampling"
+	"railproof/calc/switched"
 )
 
 // Placer turns a point of the unit cube into the Random coordinates that follow
@@ -233,6 +234,8 @@ func (m *MonteCarlo) Sample(k, corner int) []float64 {
 type WorstSample struct {
 	Value          float64 // [any]
 	Sample, Corner int
+	Status         evaluate.Status
+	Mode           switched.Mode
 	score          float64
 }
 

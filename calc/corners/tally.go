@@ -6,6 +6,7 @@ import (
 
 	"railproof/calc/evaluate"
 	"railproof/calc/sampling"
+	"railproof/calc/switched"
 )
 
 // tally is what one worker has counted. Everything in it is integer, exact or the
@@ -22,8 +23,10 @@ type tally struct {
 
 	cursor *sampling.Cursor
 	u, z   []float64
-	out    []float64 // [corner][unit][quantity]
-	fails  []bool    // per limit, of the unit at hand
+	out    []float64         // [corner][unit][quantity]
+	status []evaluate.Status // [corner][unit]
+	mode   []switched.Mode
+	fails  []bool // per limit, of the unit at hand
 }
 
 func (m *MonteCarlo) newTally() *tally {
@@ -41,6 +44,8 @@ func (m *MonteCarlo) newTally() *tally {
 		u:        make([]float64, m.place.Len()),
 		z:        make([]float64, len(m.p.Coordinates)),
 		out:      make([]float64, m.unitsPerTask()*corners*q),
+		status:   make([]evaluate.Status, m.unitsPerTask()*corners),
+		mode:     make([]switched.Mode, m.unitsPerTask()*corners),
 		fails:    make([]bool, len(m.plan.Limits)),
 	}
 	counts := make([]uint32, len(t.sketches)*(m.bins+2))
@@ -64,7 +69,8 @@ func (t *tally) run(m *MonteCarlo, model Model, first, last int) {
 			copy(t.z[len(t.u):], at[len(t.u):])
 			m.place.Place(t.u, t.z)
 			out := t.out[(c*n+i)*q:][:q]
-			status, _ := model.Eval(t.z, out)
+			status, mode := model.Eval(t.z, out)
+			t.status[c*n+i], t.mode[c*n+i] = status, mode
 			if !status.OK() {
 				passed = false
 				t.fail(status, c, k)
@@ -87,7 +93,7 @@ func (t *tally) run(m *MonteCarlo, model Model, first, last int) {
 			t.sketches[(replicate*corners+c)*q+j].add(&m.grids[c*q+j], column, j, q)
 		}
 		for k := range t.worst {
-			t.keepWorst(m, k, column, m.plan.First+first, c)
+			t.keepWorst(m, k, column, m.plan.First+first, c, c*n)
 		}
 	}
 }
@@ -116,8 +122,9 @@ func (t *tally) check(limits []Limit, out []float64, corner int) bool {
 	return passed
 }
 
-// keepWorst puts a corner's results among the worst of a target.
-func (t *tally) keepWorst(m *MonteCarlo, k int, column []float64, first, corner int) {
+// keepWorst puts a corner's results among the worst of a target. Its statuses stand
+// from the given place.
+func (t *tally) keepWorst(m *MonteCarlo, k int, column []float64, first, corner, ends int) {
 	target, kept := &m.p.Targets[k], t.worst[k]
 	if t.most == 0 {
 		return
@@ -133,7 +140,7 @@ func (t *tally) keepWorst(m *MonteCarlo, k int, column []float64, first, corner 
 	i := 0
 	for at := target.Quantity; at < len(column); at += m.p.Quantities {
 		if s := sign * column[at]; s >= least && s == s {
-			t.worst[k] = keep(t.worst[k], WorstSample{column[at], first + i, corner, s}, t.most)
+			t.worst[k] = keep(t.worst[k], WorstSample{column[at], first + i, corner, t.status[ends+i], t.mode[ends+i], s}, t.most)
 			if len(t.worst[k]) == t.most {
 				least = t.worst[k][t.most-1].score
 			}

@@ -1,0 +1,113 @@
+package service
+
+import (
+	"fmt"
+	"math"
+
+	"railproof/calc/caution"
+	"railproof/calc/corners"
+	"railproof/calc/evaluate"
+	"railproof/calc/stage"
+)
+
+// concludeCorners judges and gathers what the answer rests on.
+func (s *Service) concludeCorners(a *CornersAnswer, model corners.Model) {
+	a.judge()
+	s.bands(a)
+	d := &a.Design
+	var seen caution.Seen
+	var warn warnings
+	warn.unused(d)
+	seen.AddConditions("/conditions", d.Stage, &a.Conditions)
+	point := a.Conditions.Typical()
+	e := s.evaluator(d.Stage)
+	defer s.release(e)
+	var r evaluate.Result
+	e.Eval(&point, &r)
+	demandFinite(&r)
+	seen.Add("/conditions", d.Stage, &point, &r)
+	warn.scale(d, &point, &r)
+	warn.typicalControl(d, "/conditions", &point.Control)
+	for i := range a.Extremes {
+		if a.Extremes[i].At != nil {
+			s.seeExtreme(a, &a.Extremes[i], &seen)
+		}
+	}
+	a.warn(&warn)
+	var base *basis
+	if r.Status.Figures() {
+		base = &basis{&point, &r}
+	}
+	a.Basis = Basis{s.assumptions(d, e, base), caution.Of(d.Stage, d.At, d.Variables, &seen), warn.list}
+}
+
+func (s *Service) seeExtreme(a *CornersAnswer, x *corners.Extreme, seen *caution.Seen) {
+	var r evaluate.Result
+	st, point, _ := a.Bound.At(x.At)
+	e := s.evaluator(st)
+	defer s.release(e)
+	e.Eval(&point, &r)
+	demandFinite(&r)
+	seen.Add("/conditions", st, &point, &r)
+}
+
+// warn says what the reader of an analysis must know.
+func (a *CornersAnswer) warn(w *warnings) {
+	if a.Conditions.Control.Kind == stage.RegulateTo {
+		w.add("tolerance-hidden", "/conditions/control/regulate_to_v", "the output is held at %s V exactly: the tolerances of reference and divider are left out; regulate by feedback to have them in", a.Conditions.Control.Voltage)
+	}
+	if len(a.Design.Variables) == 0 {
+		w.keep(Warning{"no-spreads", a.Design.At, "no number of the stage has a tolerance: only conditions are varied"})
+	}
+	for _, c := range []struct {
+		pointer string
+		r       stage.Range
+	}{{"/conditions/input_v", a.Conditions.Input}, {"/conditions/ambient_degc", a.Conditions.AmbientDegC}} {
+		if c.r.Min == c.r.Max {
+			w.add("no-width", c.pointer, "the range has no width: the condition is held at %s", c.r.Min)
+		}
+	}
+	a.warnLinear(w)
+	if a.Run != nil {
+		a.warnSamples(w)
+	}
+	if len(a.given) == 0 && len(a.Corners) == MostCorners {
+		w.add("condition-corners", "/limits", "the worst points have more than %s different conditions: units are evaluated at the first of them", MostCorners)
+	}
+}
+
+// warnLinear warns where the response was measured to be bent.
+func (a *CornersAnswer) warnLinear(w *warnings) {
+	for i := range a.Items {
+		item := &a.Items[i]
+		for _, t := range item.Targets() {
+			if a.Linear == nil || a.Linear[t].Trusted() || math.IsNaN(a.Linear[t].Typical) {
+				continue
+			}
+			pointer := "/quantities"
+			if item.Limit != nil {
+				pointer = item.Limit.At
+			}
+			bend := a.Linear[t].Curvature
+			if math.IsInf(bend, 1) {
+				w.keep(Warning{"not-linear", pointer, item.Quantity.Key() + ": an evaluation on the way has no value, so the root-sum-square means nothing here"})
+				continue
+			}
+			w.add("not-linear", pointer, item.Quantity.Key()+": the response leaves its straight line by %s of the tolerance term, more than %s: do not rely on the root-sum-square", bend, corners.StraightEnough)
+		}
+	}
+}
+
+func (a *CornersAnswer) warnSamples(w *warnings) {
+	if run, asked := a.Run.Units(), a.Sampling.Samples; run != asked {
+		w.keep(Warning{"samples", "/samples", fmt.Sprintf("%d samples asked, %d run: the sampling needs equal sets", asked, run)})
+	}
+	for i := range a.Items {
+		item := &a.Items[i]
+		for k := range a.Corners {
+			if st := a.Run.Statistics(k, item.Index); st.Far > 0 {
+				w.keep(Warning{"sketch", "/samples", fmt.Sprintf("%s: %d values lie far outside the grid of the sketch and stand in mean and deviation at its edge", item.Quantity.Key(), st.Far)})
+			}
+		}
+	}
+}
