@@ -8,6 +8,8 @@ import (
 	"sync"
 	"sync/atomic"
 	"time"
+
+	"railproof/service/results"
 )
 
 // Board takes, runs and remembers jobs. It is safe for concurrent use.
@@ -200,11 +202,11 @@ func (b *Board) Cancel(ctx context.Context, id string) (Job, error) {
 	return j, err
 }
 
-// Result returns the body of a finished job's answer.
-func (b *Board) Result(ctx context.Context, resultID string) ([]byte, error) {
-	var body []byte
-	err := b.db.row(ctx, `SELECT body FROM railproof_results WHERE id = $1`, resultID).Scan(&body)
-	return body, b.found(ctx, err)
+// Result returns the answer of a finished job.
+func (b *Board) Result(ctx context.Context, resultID string) (results.Answer, error) {
+	var a results.Answer
+	err := b.db.row(ctx, `SELECT media, body FROM railproof_results WHERE id = $1`, resultID).Scan(&a.Media, &a.Body)
+	return a, b.found(ctx, err)
 }
 
 // found turns the outcome of looking for one row into ours.

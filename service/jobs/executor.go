@@ -4,14 +4,16 @@ import (
 	"context"
 
 	"railproof/service"
+	"railproof/service/results"
 )
 
 // Outcome is how an execution ended: a result, a problem, or neither where the same
 // request has to be tried again.
 type Outcome struct {
 	ResultID string
-	Body     []byte
+	Answer   results.Answer
 	Problem  []byte // JSON, for the caller
+	Cause    error  // of a fault of ours, for the log
 	Busy     bool   // no slot was free; nothing was started
 }
 

@@ -64,9 +64,9 @@ func TestPostgreSQL(t *testing.T) {
 		w := work{Steps: 201, Step: 5 * time.Millisecond, Parts: 20, Name: "a"}
 		j := await(t, a, submit(t, a, w).ID, Done)
 		require.EqualValues(t, 201, j.Done)
-		body, err := b.Result(t.Context(), "res_a")
+		got, err := b.Result(t.Context(), "res_a")
 		require.NoError(t, err)
-		require.Equal(t, answerOf(w), body)
+		require.Equal(t, answerOf(w), got.Body)
 		require.Positive(t, g.parts.Load(), "the other process helped")
 		require.Positive(t, f.parts.Load())
 		require.EqualValues(t, 20, f.parts.Load()+g.parts.Load())

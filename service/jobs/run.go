@@ -202,10 +202,13 @@ func (b *Board) finish(r *run, o Outcome, took time.Duration) {
 	b.works()
 	done, _ := r.progress()
 	state := Done
-	if o.Body == nil {
+	if o.Answer.Body == nil {
 		state = Failed
 	}
 	b.counts.ended(state)
+	if o.Cause != nil {
+		b.o.Log.Error("job failed by a fault of ours", "job", r.id, "cause", o.Cause)
+	}
 	b.o.Log.Info("job ended", "job", r.id, "operation", r.operation, "state", state, "result_id", o.ResultID, "evaluations", done, "took", took)
 }
 
@@ -215,9 +218,9 @@ func (b *Board) store(r *run, o Outcome) error {
 	done, expected := r.progress()
 	return b.db.transaction(ctx, func(tx *sql.Tx) error {
 		state, resultID, problem := Failed, "", o.Problem
-		if o.Body != nil {
+		if o.Answer.Body != nil {
 			state, resultID, problem = Done, o.ResultID, nil
-			if _, err := tx.ExecContext(ctx, b.db.say(`INSERT INTO railproof_results (id, body, size, created) VALUES ($1, $2, $3, NOW()) ON CONFLICT DO NOTHING`), o.ResultID, o.Body, len(o.Body)); err != nil {
+			if _, err := tx.ExecContext(ctx, b.db.say(`INSERT INTO railproof_results (id, media, body, size, created) VALUES ($1, $2, $3, $4, NOW()) ON CONFLICT DO NOTHING`), o.ResultID, o.Answer.Media, o.Answer.Body, len(o.Answer.Body)); err != nil {
 				return err
 			}
 		}

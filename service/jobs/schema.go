@@ -34,6 +34,7 @@ var migrations = []string{
 	CREATE INDEX railproof_jobs_state ON railproof_jobs (state);
 	CREATE TABLE railproof_results (
 		id TEXT PRIMARY KEY,
+		media TEXT NOT NULL,
 		body BYTES NOT NULL,
 		size BIGINT NOT NULL,
 		created BIGINT NOT NULL

@@ -13,6 +13,7 @@ import (
 	"github.com/stretchr/testify/require"
 
 	"railproof/service"
+	"railproof/service/results"
 )
 
 // work is what the fake executor does: a number of steps of a length, then the
@@ -60,7 +61,7 @@ func (f *fakeExecutor) Execute(ctx context.Context, _ string, request []byte, m 
 	if w.Fail {
 		return Outcome{Problem: []byte(`{"title":"asked to fail"}`)}
 	}
-	return Outcome{ResultID: "res_" + w.Name, Body: answerOf(w)}
+	return Outcome{ResultID: "res_" + w.Name, Answer: results.Answer{Media: "application/json", Body: answerOf(w)}}
 }
 
 func (f *fakeExecutor) Parts(_ string, request []byte) (parts, evaluations int) {
@@ -87,7 +88,7 @@ func (f *fakeExecutor) Merge(_ context.Context, _ string, request []byte, parts 
 		sum += n
 	}
 	w.Steps = sum
-	return Outcome{ResultID: "res_" + w.Name, Body: answerOf(w)}
+	return Outcome{ResultID: "res_" + w.Name, Answer: results.Answer{Media: "application/json", Body: answerOf(w)}}
 }
 
 func read(request []byte) (w work) {
@@ -161,9 +162,9 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		require.Equal(t, 1.0, j.Fraction())
 		require.EqualValues(t, 3, j.Done)
 		require.False(t, j.Ended.Before(j.Created))
-		body, err := b.Result(t.Context(), j.ResultID)
+		got, err := b.Result(t.Context(), j.ResultID)
 		require.NoError(t, err)
-		require.Equal(t, answerOf(w), body)
+		require.Equal(t, answerOf(w), got.Body)
 		_, err = b.Result(t.Context(), "res_b")
 		require.ErrorIs(t, err, ErrUnknown)
 		_, err = b.Get(t.Context(), "job_b")
@@ -297,9 +298,9 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		t.Logf("closed after %v", time.Since(before))
 		b = p.open(t, new(fakeExecutor), nil)
 		await(t, b, j.ID, Done)
-		body, err := b.Result(t.Context(), "res_a")
+		got, err := b.Result(t.Context(), "res_a")
 		require.NoError(t, err)
-		require.Equal(t, answerOf(w), body)
+		require.Equal(t, answerOf(w), got.Body)
 	})
 	t.Run("without a free slot a job waits", func(t *testing.T) {
 		f := new(fakeExecutor)

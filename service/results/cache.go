@@ -18,9 +18,15 @@ type Cache struct {
 	recent  *list.List // of *entry, the last one asked for in front
 }
 
+// Answer is the bytes of an answer and their media type. Both never change.
+type Answer struct {
+	Media string
+	Body  []byte
+}
+
 type entry struct {
-	id   string
-	body []byte
+	id string
+	Answer
 }
 
 const (
@@ -35,22 +41,21 @@ func New(bytes int64) *Cache {
 	return &Cache{most: bytes, entries: map[string]*list.Element{}, recent: list.New()}
 }
 
-// Get returns the body of an answer. The caller must not change it.
-func (c *Cache) Get(id string) ([]byte, bool) {
+// Get returns an answer.
+func (c *Cache) Get(id string) (Answer, bool) {
 	c.mutex.Lock()
 	defer c.mutex.Unlock()
 	at := c.entries[id]
 	if at == nil {
-		return nil, false
+		return Answer{}, false
 	}
 	c.recent.MoveToFront(at)
-	return at.Value.(*entry).body, true
+	return at.Value.(*entry).Answer, true
 }
 
-// Put keeps the body of an answer, which must not change afterwards, and drops
-// those that were not asked for longest.
-func (c *Cache) Put(id string, body []byte) {
-	size := sizeOf(body)
+// Put keeps an answer and drops those that were not asked for longest.
+func (c *Cache) Put(id string, a Answer) {
+	size := sizeOf(a.Body)
 	if size > c.most/greatestShare {
 		return
 	}
@@ -60,13 +65,13 @@ func (c *Cache) Put(id string, body []byte) {
 		c.recent.MoveToFront(at)
 		return
 	}
-	c.entries[id] = c.recent.PushFront(&entry{id, body})
+	c.entries[id] = c.recent.PushFront(&entry{id, a})
 	c.held += size
 	for c.held > c.most {
 		last := c.recent.Back()
 		e := c.recent.Remove(last).(*entry)
 		delete(c.entries, e.id)
-		c.held -= sizeOf(e.body)
+		c.held -= sizeOf(e.Body)
 	}
 }
 

@@ -12,11 +12,11 @@ import (
 func TestKeepsWhatWasAskedForLast(t *testing.T) {
 	c := New(5 * sizeOf(make([]byte, 1000)))
 	for i := range 5 {
-		c.Put(fmt.Sprint(i), make([]byte, 1000))
+		c.Put(fmt.Sprint(i), Answer{Body: make([]byte, 1000)})
 	}
 	_, found := c.Get("0")
 	require.True(t, found)
-	c.Put("5", make([]byte, 1000))
+	c.Put("5", Answer{Body: make([]byte, 1000)})
 	_, found = c.Get("1")
 	require.False(t, found, "asked for longest ago")
 	for _, id := range []string{"0", "2", "3", "4", "5"} {
@@ -31,7 +31,7 @@ func TestNeverHoldsMoreThanItMay(t *testing.T) {
 	r := rand.New(rand.NewPCG(1, 2))
 	for i := range 5000 {
 		body := make([]byte, r.IntN(30_000))
-		c.Put(fmt.Sprint(i), body)
+		c.Put(fmt.Sprint(i), Answer{Body: body})
 		answers, bytes := c.Held()
 		require.LessOrEqual(t, bytes, int64(most))
 		require.Equal(t, answers, c.recent.Len())
@@ -42,7 +42,7 @@ func TestNeverHoldsMoreThanItMay(t *testing.T) {
 
 func TestWithoutRoomNothingIsKept(t *testing.T) {
 	c := New(0)
-	c.Put("a", []byte("x"))
+	c.Put("a", Answer{Body: []byte("x")})
 	_, found := c.Get("a")
 	require.False(t, found)
 }
@@ -54,8 +54,8 @@ func TestConcurrentUse(t *testing.T) {
 		all.Go(func() {
 			for i := range 2000 {
 				id := fmt.Sprint((i * (w + 1)) % 97)
-				c.Put(id, []byte(id))
-				if body, found := c.Get(id); found && string(body) != id {
+				c.Put(id, Answer{"text/plain", []byte(id)})
+				if a, found := c.Get(id); found && string(a.Body) != id {
 					t.Error("another answer's body")
 				}
 			}
