@@ -80,7 +80,7 @@ func (a *Averaged) At(frequency float64) Transfers {
 	t := Transfers{Duty: g.duty, Line: g.line, Impedance: g.impedance}
 	lag := cmplx.Exp(-s * complex(a.plant.Modulator.Delay, 0))
 	if a.plant.Modulator.Mode == parts.PeakCurrentMode {
-		a.mode.close(a, s, lag, &g, &t)
+		a.mode.close(s, lag, &g, &t)
 	} else {
 		slope := a.plant.RampSlope()
 		t.Control = g.duty * complex(1/(slope*a.plant.Circuit.Period), 0) * lag

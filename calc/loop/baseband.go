@@ -60,7 +60,7 @@ func (s *Sampled) At(frequency float64) Transfers {
 // prepare factors the matrices of one frequency. The states before Network move
 // independently of the compensator, so their systems are factored by themselves.
 func (s *Sampled) prepare(w float64, z complex128) {
-	j, ws := &s.joint, &s.complexs
+	j, ws := &s.joint, &s.response
 	m := j.Network
 	jw := complex(0, w)
 	at := 0.0
@@ -109,7 +109,7 @@ func shifted(c *statespace.Complex, m *statespace.Real, n int, z complex128) {
 
 // respond returns the component of the output at the excitation's frequency.
 func (s *Sampled) respond(w float64, e excitation) complex128 {
-	j, ws := &s.joint, &s.complexs
+	j, ws := &s.joint, &s.response
 	n, solver := j.Network, &ws.inner
 	late := e.drive
 	if e.closed {
@@ -158,7 +158,7 @@ func (s *Sampled) force(n, input int) {
 	if input == noInput {
 		return
 	}
-	j, ws := &s.joint, &s.complexs
+	j, ws := &s.joint, &s.response
 	m := j.Network
 	for k := range s.window.count {
 		if s.config[k] != k {
@@ -189,7 +189,7 @@ func (s *Sampled) force(n, input int) {
 // the turn-off late by late/Slope, and adds to component the integral of
 // e^{-jwt} times the output, the excitation's direct share left out.
 func (s *Sampled) travel(n int, x *statespace.ComplexPoint, late complex128, excited bool, component *complex128) {
-	j, ws := &s.joint, &s.complexs
+	j, ws := &s.joint, &s.response
 	width := j.N + Inputs
 	turn := complex128(1) // e^{jwt}
 	for k := range s.window.count {

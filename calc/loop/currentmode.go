@@ -46,7 +46,7 @@ func (m *currentMode) set(a *Averaged) {
 }
 
 // close fills t with the transfer functions of the stage with its current loop.
-func (m *currentMode) close(a *Averaged, s, lag complex128, g *open, t *Transfers) {
+func (m *currentMode) close(s, lag complex128, g *open, t *Transfers) {
 	fm := complex(m.fm, 0) * lag
 	ri := complex(0, 0)
 	if m.sampled {

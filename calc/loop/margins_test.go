@@ -17,7 +17,7 @@ func faultsOf(t *testing.T, err error) []string {
 	t.Helper()
 	var invalid *stage.InvalidError
 	require.ErrorAs(t, err, &invalid)
-	var fields []string
+	fields := make([]string, 0, len(invalid.Faults))
 	for _, f := range invalid.Faults {
 		fields = append(fields, f.Field)
 	}

@@ -53,6 +53,14 @@ func (p *Plant) sense() float64 {
 // Check reports what makes the loop meaningless. The error is a
 // *stage.InvalidError with field ids of the stage.
 func (p *Plant) Check() error {
+	if f := p.Faults(); len(f) > 0 {
+		return &stage.InvalidError{Faults: f}
+	}
+	return nil
+}
+
+// Faults lists what makes the loop meaningless.
+func (p *Plant) Faults() []stage.Fault {
 	var f []stage.Fault
 	below := func(field string, given, limit float64, detail string) {
 		if !(given > limit) {
@@ -110,11 +118,7 @@ func (p *Plant) Check() error {
 		below("feedback/upper_ohm", p.Feedback.Upper, 0, "the compensator's input resistor")
 		below("feedback/lower_ohm", p.Feedback.Lower, 0, "lower feedback resistor")
 	}
-	f = p.Source.check(f)
-	if len(f) > 0 {
-		return &stage.InvalidError{Faults: f}
-	}
-	return nil
+	return p.Source.check(f)
 }
 
 // average returns the mean of all legs, which stands for each of them in the

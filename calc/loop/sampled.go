@@ -46,7 +46,7 @@ type Sampled struct {
 	scratch  statespace.Map
 	whole    statespace.Map
 	matrix   statespace.Real
-	complexs workspace
+	response workspace
 	scan     scan
 	spare    statespace.Transfer
 }

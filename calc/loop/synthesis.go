@@ -76,15 +76,19 @@ func (s *Sampled) Synthesise(p *Plant, t Target) (Design, error) {
 		d.StageGain, d.StagePhase = cmplx.Abs(stageGain), phase
 		boost := t.PhaseMargin - phase - 90
 		if boost > greatest {
-			return d, &UnreachableError{"target/phase_margin_deg", t.PhaseMargin, phase + 90 + greatest,
-				fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds at most %.1f° above -90°", phase, t.Crossover, greatest)}
+			return d, &UnreachableError{
+				"target/phase_margin_deg", t.PhaseMargin, phase + 90 + greatest,
+				fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds at most %.1f° above -90°", phase, t.Crossover, greatest),
+			}
 		}
 		d.Boost = max(boost, least)
 		w := want{t.Crossover, 1 / d.StageGain, d.Boost}
 		plant.Compensator = w.network(plant.Compensator, &plant.Feedback)
 		if s.Set(&plant) != Analysed {
-			return d, &UnreachableError{"target/crossover_hz", t.Crossover, parts.Unknown,
-				"the ripple at the control voltage outruns the comparator's ramp"}
+			return d, &UnreachableError{
+				"target/crossover_hz", t.Crossover, parts.Unknown,
+				"the ripple at the control voltage outruns the comparator's ramp",
+			}
 		}
 		// What the ideal network does not explain belongs to the stage.
 		ideal := plant.Compensator
@@ -106,8 +110,10 @@ func (s *Sampled) Synthesise(p *Plant, t Target) (Design, error) {
 			break
 		}
 	}
-	return d, &UnreachableError{"target/crossover_hz", t.Crossover, parts.Unknown,
-		"no network of this type crosses there: amplifier limits or sampling take the gain away"}
+	return d, &UnreachableError{
+		"target/crossover_hz", t.Crossover, parts.Unknown,
+		"no network of this type crosses there: amplifier limits or sampling take the gain away",
+	}
 }
 
 // factor returns K of the network.
@@ -127,8 +133,10 @@ func (w want) factor(t parts.CompensatorType, f *stage.Feedback) float64 {
 func (t *Target) check(p *Plant) error {
 	var f []stage.Fault
 	if nyquist := p.Nyquist(); !(t.Crossover > 0 && t.Crossover < nyquist) {
-		f = append(f, stage.Fault{Field: "target/crossover_hz", Given: t.Crossover, Limit: nyquist,
-			Accepted: "above 0 and below " + number(nyquist) + " Hz", Detail: "half the rate at which the comparator decides"})
+		f = append(f, stage.Fault{
+			Field: "target/crossover_hz", Given: t.Crossover, Limit: nyquist,
+			Accepted: "above 0 and below " + number(nyquist) + " Hz", Detail: "half the rate at which the comparator decides",
+		})
 	}
 	if !(t.PhaseMargin > 0 && t.PhaseMargin < 180) {
 		f = append(f, stage.Fault{Field: "target/phase_margin_deg", Given: t.PhaseMargin, Limit: 180, Accepted: "above 0° and below 180°", Detail: "phase margin"})
@@ -137,9 +145,7 @@ func (t *Target) check(p *Plant) error {
 	probe := *p
 	c := &probe.Compensator
 	c.FeedbackF, c.FeedbackOhm, c.ShuntF, c.LeadOhm, c.LeadF = 1e-9, 1e3, 0, 1e3, 1e-9
-	if err := probe.Check(); err != nil {
-		f = append(f, err.(*stage.InvalidError).Faults...)
-	}
+	f = append(f, probe.Faults()...)
 	if len(f) > 0 {
 		return &stage.InvalidError{Faults: f}
 	}

@@ -189,7 +189,7 @@ func TestTransferAndEigenvaluesAgainstDenseSolve(t *testing.T) {
 		var e ComplexPoint
 		require.True(t, f.Eigenvalues(&e))
 		var oracle mat.Eigen
-		require.True(t, oracle.Factorize(plain, mat.EigenNone))
+		require.True(t, oracle.Factorize(plain, mat.EigenNone)) //nolint:misspell // gonum calls it so
 		for _, want := range oracle.Values(nil) {
 			nearest := math.Inf(1)
 			for _, got := range e[:n] {

@@ -7,7 +7,7 @@ import (
 )
 
 func BenchmarkRun(b *testing.B) {
-	p := designed(b, solved(b, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	p := designed(b, solved(b, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
 	setup := Setup{
 		Plant: p, Bounds: bounds(&p), Duration: 5e-3, Band: 0.025, Saturation: 12,
 		Events: []Event{{Kind: LoadStep, At: 1e-3, Change: 3, Slew: 1e6}, {Kind: LoadStep, At: 3e-3, Change: -3, Slew: 1e6}},
@@ -26,7 +26,7 @@ func BenchmarkRun(b *testing.B) {
 	two := buoy()
 	two.Banks = 2
 	two.Bank[1].C, two.Bank[1].ESR = 330e-6, 18e-3
-	setup.Plant = designed(b, solved(b, two, 5, voltageMode(), opAmp()), parts.OpAmpType3, 40e3, 55)
+	setup.Plant = designed(b, solved(b, two, voltageMode(), opAmp()), parts.OpAmpType3, 40e3, 55)
 	b.Run("5ms-500kHz/two-banks", func(b *testing.B) {
 		for b.Loop() {
 			e, _ := New(&setup)

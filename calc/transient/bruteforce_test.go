@@ -82,7 +82,6 @@ func (x *plain) run(s [5]float64, stepAt, to, until float64) (least, greatest, p
 	period := x.p.Circuit.Period
 	h := period / substeps
 	least, greatest = math.Inf(1), math.Inf(-1)
-	decided := false
 	for n := 0; float64(n)*h < until; n++ {
 		at := float64(n) * h
 		if at >= stepAt {
@@ -100,8 +99,7 @@ func (x *plain) run(s [5]float64, stepAt, to, until float64) (least, greatest, p
 		}
 		ramp := x.p.Modulator.Ramp * float64(phase) / substeps
 		if phase == 0 {
-			decided = ramp >= vc
-			x.on = !decided
+			x.on = ramp < vc
 		}
 		if x.on && (ramp >= vc || s[0] >= x.p.Modulator.CurrentLimit || float64(phase) >= x.b.MaxDuty*substeps) {
 			x.on = false
@@ -136,16 +134,18 @@ func TestLargeStepsAgainstPlainIntegration(t *testing.T) {
 				circuit = diode
 			}
 			circuit.Current = 6
-			design := designed(t, solved(t, circuit, 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+			design := designed(t, solved(t, circuit, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
 			circuit.Current = c.from
-			p := solved(t, circuit, 5, voltageMode(), design.Compensator)
+			p := solved(t, circuit, voltageMode(), design.Compensator)
 			p.Modulator.CurrentLimit = c.limit
 			b := bounds(&p)
 			b.MaxDuty = 0.9
 			period := p.Circuit.Period
 			at := 10.3 * period
-			setup := Setup{Plant: p, Bounds: b, Duration: 60 * period, Saturation: parts.Unknown,
-				Events: []Event{{Kind: LoadStep, At: at, Change: c.to - c.from}}, Record: Record{Points: 100}}
+			setup := Setup{
+				Plant: p, Bounds: b, Duration: 60 * period, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: at, Change: c.to - c.from}}, Record: Record{Points: 100},
+			}
 			e, err := New(&setup)
 			require.NoError(t, err)
 			var s [5]float64

@@ -17,7 +17,6 @@ type phase struct {
 	ramp    float64 // [V] comparator ramp at the present time
 	off     float64 // [s] when the high side turns off, +Inf while undecided
 	decided bool    // the comparator or the limit has tripped
-	limited bool    // it was the limit
 }
 
 // moment is the complete state of a run at one time; it is copied to try things.

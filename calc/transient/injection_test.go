@@ -32,8 +32,10 @@ func inject(t *testing.T, p loop.Plant, kind EventKind, amplitude float64, cycle
 	frequency := float64(cycles) / (float64(periods) * c.Period)
 	settle := periods * int(math.Ceil(600/float64(periods)))
 	total := settle + periods
-	s := Setup{Plant: p, Bounds: Bounds{MaxDuty: 1, ControlLow: -1e3, ControlHigh: 1e3}, Duration: float64(total+2) * c.Period,
-		Saturation: parts.Unknown, Events: []Event{{Kind: kind, Change: amplitude, Frequency: frequency}}}
+	s := Setup{
+		Plant: p, Bounds: Bounds{MaxDuty: 1, ControlLow: -1e3, ControlHigh: 1e3}, Duration: float64(total+2) * c.Period,
+		Saturation: parts.Unknown, Events: []Event{{Kind: kind, Change: amplitude, Frequency: frequency}},
+	}
 	e, err := New(&s)
 	require.NoError(t, err)
 	require.Equal(t, Running, e.status)
@@ -46,8 +48,8 @@ func inject(t *testing.T, p loop.Plant, kind EventKind, amplitude float64, cycle
 	decisions := periods * c.Phases
 	control := &e.control[loop.Linear]
 	meanOut, meanControl := 0.0, 0.0
-	var outputs, controls []float64
-	var tones []float64
+	outputs := make([]float64, 0, perPeriod*decisions)
+	controls, tones := make([]float64, 0, decisions), make([]float64, 0, decisions)
 	for n := range decisions {
 		controls = append(controls, control.At(&e.now.z, e.width))
 		tones = append(tones, e.now.z[e.joint.Tone])
@@ -107,15 +109,15 @@ func stages(t *testing.T) map[string]loop.Plant {
 	lateCurrent := currentMode()
 	lateCurrent.Delay = 40e-9
 	return map[string]loop.Plant{
-		"voltage/ccm":               designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55),
-		"voltage/ccm/two-banks":     designed(t, solved(t, two, 5, late, slow), parts.OpAmpType3, 40e3, 50),
-		"voltage/dcm":               designed(t, solved(t, diode, 5, voltageMode(), opAmp()), parts.OpAmpType2, 20e3, 60),
-		"voltage/three-phases":      designed(t, solved(t, triple, 5, voltageMode(), opAmp()), parts.OpAmpType3, 80e3, 50),
-		"current/ccm":               designed(t, solved(t, buoy(), 5, currentMode(), ota), parts.TransconductanceType2, 50e3, 60),
-		"current/ccm/delay":         designed(t, solved(t, two, 5, lateCurrent, ota), parts.TransconductanceType2, 40e3, 60),
-		"current/dcm":               designed(t, solved(t, diode, 5, currentMode(), ota), parts.TransconductanceType2, 15e3, 60),
-		"current/three-phases":      designed(t, solved(t, triple, 5, currentMode(), ota), parts.TransconductanceType2, 60e3, 60),
-		"current/type-three-op-amp": designed(t, solved(t, buoy(), 5, currentMode(), slow), parts.OpAmpType3, 60e3, 70),
+		"voltage/ccm":               designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55),
+		"voltage/ccm/two-banks":     designed(t, solved(t, two, late, slow), parts.OpAmpType3, 40e3, 50),
+		"voltage/dcm":               designed(t, solved(t, diode, voltageMode(), opAmp()), parts.OpAmpType2, 20e3, 60),
+		"voltage/three-phases":      designed(t, solved(t, triple, voltageMode(), opAmp()), parts.OpAmpType3, 80e3, 50),
+		"current/ccm":               designed(t, solved(t, buoy(), currentMode(), ota), parts.TransconductanceType2, 50e3, 60),
+		"current/ccm/delay":         designed(t, solved(t, two, lateCurrent, ota), parts.TransconductanceType2, 40e3, 60),
+		"current/dcm":               designed(t, solved(t, diode, currentMode(), ota), parts.TransconductanceType2, 15e3, 60),
+		"current/three-phases":      designed(t, solved(t, triple, currentMode(), ota), parts.TransconductanceType2, 60e3, 60),
+		"current/type-three-op-amp": designed(t, solved(t, buoy(), currentMode(), slow), parts.OpAmpType3, 60e3, 70),
 	}
 }
 

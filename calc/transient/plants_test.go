@@ -12,18 +12,21 @@ import (
 	"railproof/calc/switched"
 )
 
-func divider(vout float64) stage.Feedback {
+func divider() stage.Feedback {
 	const upper, reference = 56.2e3, 0.8
-	return stage.Feedback{Present: true, Reference: reference, Upper: upper, Lower: upper / (vout/reference - 1)}
+	return stage.Feedback{Present: true, Reference: reference, Upper: upper, Lower: upper / (output/reference - 1)}
 }
 
-func solved(t testing.TB, c switched.Circuit, vout float64, m parts.Modulator, k parts.Compensator) loop.Plant {
+const output = 5.0 // [V] of every stage here
+
+// solved regulates the circuit and returns it with the loop around it.
+func solved(t testing.TB, c switched.Circuit, m parts.Modulator, k parts.Compensator) loop.Plant {
 	t.Helper()
 	var solver switched.Solver
 	var s switched.Solution
-	solver.Regulated(&c, vout, 0, 1, &s)
+	solver.Regulated(&c, output, 0, 1, &s)
 	require.True(t, s.Status.OK(), "status %d", s.Status)
-	p := loop.Plant{Circuit: c, Modulator: m, Compensator: k, Feedback: divider(vout)}
+	p := loop.Plant{Circuit: c, Modulator: m, Compensator: k, Feedback: divider()}
 	p.Operate(&s)
 	return p
 }

@@ -133,8 +133,10 @@ func textbookLoadStep(t *testing.T, p *published) {
 	// at whatever place of the period.
 	for _, place := range []float64{0, 0.25, 0.5, 0.75} {
 		at := (100 + place) / p.in("fs")
-		setup := Setup{Plant: plant, Bounds: bounds(&plant), Duration: at + 1e-3, Band: 0.01, Saturation: parts.Unknown,
-			Events: []Event{{Kind: LoadStep, At: at, Change: p.in("delta_I")}}}
+		setup := Setup{
+			Plant: plant, Bounds: bounds(&plant), Duration: at + 1e-3, Band: 0.01, Saturation: parts.Unknown,
+			Events: []Event{{Kind: LoadStep, At: at, Change: p.in("delta_I")}},
+		}
 		_, result := run(t, &setup)
 		o := result.Outcomes[1]
 		ripple := result.Outcomes[0].Down

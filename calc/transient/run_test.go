@@ -16,15 +16,17 @@ import (
 func atLoad(t testing.TB, p loop.Plant, current float64) loop.Plant {
 	c := p.Circuit
 	c.Current = current
-	return solved(t, c, 5, p.Modulator, p.Compensator)
+	return solved(t, c, p.Modulator, p.Compensator)
 }
 
 func TestSettledStateIsTheSteadyState(t *testing.T) {
 	for name, p := range stages(t) {
 		t.Run(name, func(t *testing.T) {
 			period := p.Circuit.Period
-			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 6000 * period, Band: 0.02, Saturation: parts.Unknown,
-				Events: []Event{{Kind: LoadStep, At: 10.37 * period, Change: 0.5 * p.Circuit.Current, Slew: 1e6}}}
+			setup := Setup{
+				Plant: p, Bounds: bounds(&p), Duration: 6000 * period, Band: 0.02, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 10.37 * period, Change: 0.5 * p.Circuit.Current, Slew: 1e6}},
+			}
 			_, r := run(t, &setup)
 			require.Equal(t, Finished, r.Status)
 			require.True(t, r.Settled, "change %g", r.FinalChange)
@@ -65,7 +67,7 @@ func TestNothingMovesWithoutAnEvent(t *testing.T) {
 }
 
 func TestStartUpFromRestAndIntoAPrechargedOutput(t *testing.T) {
-	synchronous := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
+	synchronous := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
 	for name, c := range map[string]struct {
 		precharge, softStart, loadFrom, overshoot float64
 	}{
@@ -77,8 +79,10 @@ func TestStartUpFromRestAndIntoAPrechargedOutput(t *testing.T) {
 		"load-connects-last":    {0, 1e-3, 5, 0.03},
 	} {
 		t.Run(name, func(t *testing.T) {
-			setup := Setup{Plant: synchronous, Bounds: bounds(&synchronous), Duration: 4e-3, Band: 0.05, Saturation: parts.Unknown,
-				Start: Start{Kind: AtRest, Precharge: c.precharge, SoftStart: c.softStart, LoadFrom: c.loadFrom}, Record: Record{Points: 400}}
+			setup := Setup{
+				Plant: synchronous, Bounds: bounds(&synchronous), Duration: 4e-3, Band: 0.05, Saturation: parts.Unknown,
+				Start: Start{Kind: AtRest, Precharge: c.precharge, SoftStart: c.softStart, LoadFrom: c.loadFrom}, Record: Record{Points: 400},
+			}
 			e, r := run(t, &setup)
 			o := r.Outcomes[0]
 			require.Equal(t, Finished, r.Status)
@@ -102,12 +106,14 @@ func TestStartUpFromRestAndIntoAPrechargedOutput(t *testing.T) {
 }
 
 func TestInputAndReferenceSteps(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 60)
 	forward := p
 	forward.Modulator.FeedForward, forward.Modulator.FeedForwardAt = true, 24
 	deviation := func(p loop.Plant) float64 {
-		setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 1e-3, Band: 0.02, Saturation: parts.Unknown,
-			Events: []Event{{Kind: InputStep, At: 1e-4, Change: 6, Slew: 1e6}}}
+		setup := Setup{
+			Plant: p, Bounds: bounds(&p), Duration: 1e-3, Band: 0.02, Saturation: parts.Unknown,
+			Events: []Event{{Kind: InputStep, At: 1e-4, Change: 6, Slew: 1e6}},
+		}
 		_, r := run(t, &setup)
 		require.True(t, r.Settled)
 		require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
@@ -116,8 +122,10 @@ func TestInputAndReferenceSteps(t *testing.T) {
 	plain, fed := deviation(p), deviation(forward)
 	require.Greater(t, plain, 5*fed, "feed-forward keeps an input step from the output: %g against %g", plain, fed)
 
-	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 2e-3, Band: 0.02, Saturation: parts.Unknown,
-		Events: []Event{{Kind: ReferenceStep, At: 1e-4, Change: 0.08, Slew: 2e3}}}
+	setup := Setup{
+		Plant: p, Bounds: bounds(&p), Duration: 2e-3, Band: 0.02, Saturation: parts.Unknown,
+		Events: []Event{{Kind: ReferenceStep, At: 1e-4, Change: 0.08, Slew: 2e3}},
+	}
 	_, r := run(t, &setup)
 	require.InEpsilon(t, 5.5, r.Outcomes[1].Target, 1e-9)
 	require.InEpsilon(t, 5.5, r.Final.Mean, 1e-6)
@@ -168,10 +176,12 @@ func TestPhasesShareTheStep(t *testing.T) {
 	unequal.Legs[1].L *= 1.3
 	for name, c := range map[string]switched.Circuit{"equal": c, "unequal": unequal} {
 		t.Run(name, func(t *testing.T) {
-			p := solved(t, c, 5, voltageMode(), opAmp())
+			p := solved(t, c, voltageMode(), opAmp())
 			p = designed(t, p, parts.OpAmpType3, 60e3, 55)
-			setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 10e-3, Band: 0.02, Saturation: parts.Unknown,
-				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 100}}
+			setup := Setup{
+				Plant: p, Bounds: bounds(&p), Duration: 10e-3, Band: 0.02, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 100},
+			}
 			e, r := run(t, &setup)
 			require.Equal(t, Finished, r.Status)
 			require.True(t, r.Settled, "change %g", r.FinalChange)
@@ -184,9 +194,11 @@ func TestPhasesShareTheStep(t *testing.T) {
 }
 
 func TestChunksDoNotChangeTheRun(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
-	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.02, Saturation: 5,
-		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 50}}
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{
+		Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.02, Saturation: 5,
+		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 50},
+	}
 	whole, err := New(&setup)
 	require.NoError(t, err)
 	whole.Advance(math.MaxInt32)
@@ -202,9 +214,11 @@ func TestChunksDoNotChangeTheRun(t *testing.T) {
 }
 
 func TestRecordKeepsTheTrueExtremes(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
-	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 3e-4, Band: 0.02, Saturation: parts.Unknown,
-		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 20}}
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{
+		Plant: p, Bounds: bounds(&p), Duration: 3e-4, Band: 0.02, Saturation: parts.Unknown,
+		Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 3}}, Record: Record{Points: 20},
+	}
 	coarse, r := run(t, &setup)
 	setup.Record.Points = 5000
 	fine, _ := run(t, &setup)
@@ -228,7 +242,7 @@ func TestRecordKeepsTheTrueExtremes(t *testing.T) {
 }
 
 func TestMeaninglessSetupsAreRefusedWithTheirFields(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
 	good := Setup{Plant: p, Bounds: bounds(&p), Duration: 1e-4, Saturation: parts.Unknown}
 	for field, change := range map[string]func(s *Setup){
 		"duration_s":                func(s *Setup) { s.Duration = 0 },
@@ -263,11 +277,13 @@ func TestMeaninglessSetupsAreRefusedWithTheirFields(t *testing.T) {
 }
 
 func TestControllerLimitsAreKept(t *testing.T) {
-	p := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
 	p = atLoad(t, p, 1)
 	step := func(change float64, edit func(s *Setup)) (Setup, Outcome, Result) {
-		s := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
-			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: change}}, Record: Record{Points: 2000}}
+		s := Setup{
+			Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
+			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: change}}, Record: Record{Points: 2000},
+		}
 		edit(&s)
 		_, r := run(t, &s)
 		return s, r.Outcomes[1], r
@@ -284,8 +300,10 @@ func TestControllerLimitsAreKept(t *testing.T) {
 		require.Positive(t, bound.AtMaxDuty)
 	})
 	t.Run("least-on-time", func(t *testing.T) {
-		s := Setup{Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
-			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: -1}}, Record: Record{Points: 4000}}
+		s := Setup{
+			Plant: p, Bounds: bounds(&p), Duration: 4e-4, Band: 0.05, Saturation: parts.Unknown,
+			Events: []Event{{Kind: LoadStep, At: 1e-4, Change: -1}}, Record: Record{Points: 4000},
+		}
 		s.Bounds.MinOn = 200e-9
 		e, _ := run(t, &s)
 		for _, row := range e.Rows() {
@@ -317,9 +335,9 @@ func TestControllerLimitsAreKept(t *testing.T) {
 func TestLightLoadLeavesOutPulses(t *testing.T) {
 	c := buoy()
 	c.Leg.Rectifier.Blocks = true
-	design := designed(t, solved(t, buoy(), 5, voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	design := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
 	c.Current = 0.02
-	p := solved(t, c, 5, voltageMode(), design.Compensator)
+	p := solved(t, c, voltageMode(), design.Compensator)
 	s := Setup{Plant: p, Bounds: bounds(&p), Duration: 2e-3, Band: 0.1, Saturation: parts.Unknown}
 	s.Bounds.MinOn = 200e-9 // five times what this load takes
 	_, r := run(t, &s)

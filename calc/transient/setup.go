@@ -100,10 +100,7 @@ const headroom = 1.2 // [1]
 // Check reports what makes the run meaningless; the error is a
 // *stage.InvalidError.
 func (s *Setup) Check() error {
-	var f []stage.Fault
-	if err := s.Plant.Check(); err != nil {
-		f = append(f, err.(*stage.InvalidError).Faults...)
-	}
+	f := s.Plant.Faults()
 	within := func(field string, given, least, greatest float64, detail string) {
 		if !(given >= least && given <= greatest) {
 			limit := least

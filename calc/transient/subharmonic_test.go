@@ -28,14 +28,16 @@ func stageAt(t *testing.T, duty, compensation float64) loop.Plant {
 	c.Bank[0].C = 2e-3
 	m := currentMode()
 	m.Slope = compensation * m.Sense * 5 / c.Leg.L
-	return solved(t, c, 5, m, slowLoop())
+	return solved(t, c, m, slowLoop())
 }
 
 // alternates reports whether a disturbance of the inductor current grows from
 // period to period.
 func alternates(t *testing.T, p loop.Plant) bool {
-	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 400 * p.Circuit.Period, Saturation: parts.Unknown,
-		Events: []Event{{Kind: LoadStep, At: 2.3 * p.Circuit.Period, Change: 1e-3}}}
+	setup := Setup{
+		Plant: p, Bounds: bounds(&p), Duration: 400 * p.Circuit.Period, Saturation: parts.Unknown,
+		Events: []Event{{Kind: LoadStep, At: 2.3 * p.Circuit.Period, Change: 1e-3}},
+	}
 	e, err := New(&setup)
 	require.NoError(t, err)
 	require.Equal(t, Running, e.status)
