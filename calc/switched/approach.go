@@ -42,7 +42,7 @@ func (s *Solver) OutputRange(sol *Solution) {
 		s.fast.outputRange(sol)
 		return
 	}
-	if s.count > 0 && sol.Status != NotConverged {
+	if s.workspace != nil && s.count > 0 && sol.Status != NotConverged {
 		out := s.nodeRange()
 		sol.OutputMin, sol.OutputMax = s.ref.node+out.least, s.ref.node+out.most
 	}
@@ -70,7 +70,6 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 		sol.Iterations = 1
 		s.closed, s.feeds = true, 0
 	} else {
-		s.rounds = 0
 		s.prepare(c)
 		if s.settle(c, d, false) != Solved || s.conduct[0] < 1 {
 			return 0, false
@@ -89,7 +88,6 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 // approachResting takes one joint step of duty ratio and end of conduction and
 // solves there.
 func (s *Solver) approachResting(c *Circuit, vout, least, greatest float64, sol *Solution) (change float64, ok bool) {
-	s.rounds = 0
 	s.prepare(c)
 	change, ok = s.joint(c, vout, least, greatest, sol.Duty, sol.Duty+sol.Leg.Conduct, 2)
 	return change, ok && s.takeStock(c, sol)
@@ -98,7 +96,6 @@ func (s *Solver) approachResting(c *Circuit, vout, least, greatest float64, sol 
 // takeStock measures the state at hand but for the output's range, and reports
 // whether it is a solution.
 func (s *Solver) takeStock(c *Circuit, sol *Solution) bool {
-	s.closed = false
 	sol.clear(Solved, s.rounds, s.duty)
 	s.measure(c, sol, nil)
 	return sol.EnergyBalance <= solvedBalance && sol.OutputMean > 0

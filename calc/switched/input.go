@@ -172,13 +172,14 @@ func (s *Solver) ripple(b *Bank, mean float64) (pp float64, ok bool) {
 
 // shareInput solves the circuit together with its input banks.
 func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBanks]Bank, dst *InputSolution) bool {
-	nw := &s.nw
-	if s.closed || s.count == 0 {
+	if closed := s.closed; closed || s.workspace == nil || s.count == 0 {
 		s.prepare(c)
+		s.closed = closed // the closed form still holds its own
 		if s.settle(c, sol.Duty, false) != Solved {
 			return false
 		}
 	}
+	nw := &s.nw
 	nw.input.set(banks, bank, sol.InputMean)
 	nw.n = nw.phases + nw.banks + banks
 	if !s.periodic(c) {

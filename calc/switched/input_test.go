@@ -34,6 +34,14 @@ func TestInputBanksAgree(t *testing.T) {
 				t.Fatal("two")
 			}
 			calctest.Close(t, "ripple, two", two.RipplePP, one.RipplePP, 1e-10)
+			again := one
+			if !s.InputBanks(c, &sol, 1, &[MaxBanks]Bank{{20e-6, 5e-3}}, &again) || again != one {
+				t.Error("one after two", again, one)
+			}
+			ranged := sol
+			if s.OutputRange(&ranged); math.Abs(ranged.OutputMax-sol.OutputMax) > 1e-12 {
+				t.Error("output range after two", ranged.OutputMax, sol.OutputMax)
+			}
 			calctest.Close(t, "rms, two", 2*two.BankRMS[1], one.BankRMS[0], 1e-10)
 			if !(one.RMS > 0 && math.Abs(one.RMS-one.BankRMS[0]) < 1e-12) {
 				t.Error("total", one.RMS)

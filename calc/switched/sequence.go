@@ -4,7 +4,7 @@ import "math"
 
 const (
 	maxIntervals = 3*MaxPhases + 1
-	ladderCount  = 4
+	ladderCount  = 3 // as many intervals as equal phases have
 	sameInstant  = 1e-14 // [1] of a period; edges closer than this are one
 )
 
@@ -18,8 +18,19 @@ type interval struct {
 	stop  vec // as it ends
 }
 
-// Solver holds the workspace of one goroutine. The zero value is ready.
+// Solver holds the workspace of one goroutine. The zero value is ready. It
+// allocates once, when it first meets a circuit that is not a single phase with
+// a single bank.
 type Solver struct {
+	fast   oneBank
+	closed bool // the solution is the closed form's
+	feed   [maxIntervals]feed
+	feeds  int // how many of feed are filled
+	*workspace
+}
+
+// workspace is what the solution over intervals needs.
+type workspace struct {
 	nw      network
 	ref     reference
 	iv      [maxIntervals]interval
@@ -37,13 +48,9 @@ type Solver struct {
 	pivot   [maxStates]int
 	closure float64 // [1] relative closure of one more period
 	rounds  int
-	fast    oneBank
 	work    cell
 	moments moments
 	watches [MaxPhases + 1]watch
-	feed    [maxIntervals]feed
-	feeds   int  // how many of feed are filled
-	closed  bool // the solution is the closed form's
 }
 
 // prepare sets what depends on the circuit alone.
@@ -53,6 +60,10 @@ type Solver struct {
 // j + 1, that of the last to slot 0. Unequal phases are solved over the whole
 // period with slot p being phase p.
 func (s *Solver) prepare(c *Circuit) {
+	if s.workspace == nil {
+		s.workspace = new(workspace)
+	}
+	s.closed, s.rounds = false, 0
 	s.nw.set(c)
 	n := float64(c.Phases)
 	s.cyclic = c.Legs == nil && c.Phases > 1

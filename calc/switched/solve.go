@@ -17,7 +17,6 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 		s.fast.outputRange(sol)
 		return
 	}
-	s.closed, s.rounds = false, 0
 	s.prepare(c)
 	if c.idle() {
 		s.standStill(c, duty, Solved, sol)
@@ -34,7 +33,6 @@ func (s *Solver) Regulated(c *Circuit, vout, dutyLeast, dutyGreatest float64, so
 		s.fast.outputRange(sol)
 		return
 	}
-	s.closed, s.rounds = false, 0
 	s.prepare(c)
 	if c.idle() {
 		switch {

@@ -29,7 +29,6 @@ func (s *Solver) Waveform(c *Circuit, sol *Solution, points int) (*Waveform, boo
 // of the input current as in InputBanks.
 func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int, bank *[MaxBanks]Bank) (*Waveform, bool) {
 	s.prepare(c)
-	s.closed, s.rounds = false, 0
 	if c.idle() {
 		return c.idleWaveform(sol.Duty, banks), true
 	}
