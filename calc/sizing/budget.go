@@ -35,8 +35,8 @@ func (z *sizer) budget() {
 	allowed := r.Output * i * z.lossShare
 	duty := math.Min(0.9, math.Max(0.1, IdealDuty(vin, r.Output)))
 	d := z.draft
-	d.Board.InputPath = math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output*io/math.Pow(r.Output*io/r.Input.Min, 2))
-	d.Board.OutputPath = math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output/io)
+	d.Board.InputPath = neat(math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output*io/math.Pow(r.Output*io/r.Input.Min, 2)))
+	d.Board.OutputPath = neat(math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output/io))
 	z.source = r.SourceResistance + d.Board.InputPath
 
 	if !(z.junction > r.AmbientDegC.Max) {
@@ -85,10 +85,10 @@ func (z *sizer) switching(rating, vin, i float64) float64 {
 // [W], the conduction loss per ohm [A2] and the switching loss times ohm [W ohm].
 func (z *sizer) onResistance(allowed, conduction, switching float64) float64 {
 	r := math.Max(leastOnOhm, z.try.effort*switchLossShare*allowed/conduction)
-	if z.try.effort < dropEffort {
-		return r
+	if z.try.effort >= dropEffort {
+		r = math.Max(r, math.Sqrt(switching/conduction))
 	}
-	return math.Max(r, math.Sqrt(switching/conduction))
+	return neat(r)
 }
 
 // diode chooses the rectifier diode: its rated current from the greatest mean

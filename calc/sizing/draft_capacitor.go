@@ -95,7 +95,7 @@ func (m *capacitorMake) pieceOf(c, rating, fs float64) parts.Capacitor {
 	}
 	p := parts.Capacitor{
 		Kind: m.kind, Capacitance: c, Count: 1,
-		ESR:               m.fixed + m.dissipation/(2*math.Pi*fs*c) + m.time/c,
+		ESR:               neat(m.fixed + m.dissipation/(2*math.Pi*fs*c) + m.time/c),
 		ESL:               m.esl,
 		CapacitanceAtBias: relative(m.bias, rating),
 		CapacitanceTemp:   relative(m.temp, 1),

@@ -30,10 +30,10 @@ func (z *sizer) controller() {
 	z.draft.Controller = parts.Controller{
 		Drive: driveFor(rating), GateOn: gateOnOhm, GateOff: gateOffOhm,
 		// Slower switches of higher rating need more time to be safely off.
-		DeadTime:  1.5e-8 + 2.5e-10*rating,
+		DeadTime:  neat(1.5e-8 + 2.5e-10*rating),
 		MinOnTime: z.choice.MinOnTime, MinOffTime: z.choice.MinOffTime, MaxDutyRatio: z.choice.MaxDutyRatio,
 		// The controller takes a share of the allowed loss, between 0.2 and 2 mA.
-		QuiescentCurrent: math.Min(2e-3, math.Max(2e-4, 0.02*z.lossShare*z.req.Output*z.req.LoadCurrent.Max/z.req.Input.Typ)),
+		QuiescentCurrent: neat(math.Min(2e-3, math.Max(2e-4, 0.02*z.lossShare*z.req.Output*z.req.LoadCurrent.Max/z.req.Input.Typ))),
 		DriveSupply:      parts.DriveFromInput,
 		Rating:           parts.ControllerRating{Input: roundUp(voltageMargin * z.req.Input.Max), JunctionDegC: 150},
 		Thermal:          parts.Thermal{JunctionToAmbient: 50},
@@ -52,13 +52,13 @@ func (z *sizer) controller() {
 //
 // Source: R. B. Ridley's condition for the current loop, Se > (Sf − Sn)/2.
 func (z *sizer) modulator() {
-	limit := limitOverPeak * math.Max(z.peakMost, z.transientPeak())
+	limit := neat(limitOverPeak * math.Max(z.peakMost, z.transientPeak()))
 	m := &z.draft.Modulator
 	*m = parts.Modulator{
-		Present: true, Mode: parts.PeakCurrentMode, Sense: senseAtLimit / limit, CurrentLimit: limit,
+		Present: true, Mode: parts.PeakCurrentMode, Sense: neat(senseAtLimit / limit), CurrentLimit: limit,
 		Delay: math.Min(comparatorDelay, z.shortestOn/4), FeedForwardAt: parts.Unknown, Ramp: parts.Unknown,
 	}
-	m.Slope = slopeOverNeed * m.Sense * (z.voHigh + z.drops.Threshold) / (2 * z.leastL.IncrementalAt(z.peakMost))
+	m.Slope = neat(slopeOverNeed * m.Sense * (z.voHigh + z.drops.Threshold) / (2 * z.leastL.IncrementalAt(z.peakMost)))
 }
 
 // compensator designs a transconductance amplifier with one zero and one pole on the

@@ -29,8 +29,8 @@ const (
 // less resistance.
 func inductorPlaceholder(l, sat, rms, dcr, size, junction float64) parts.Inductor {
 	energy := size * l * sat * sat / 2
-	volume := energy / energyDensity
-	area := ringArea * math.Pow(volume, 2.0/3)
+	volume := neat(energy / energyDensity)
+	area := neat(ringArea * math.Pow(volume, 2.0/3))
 	turns := math.Max(1, math.Round(l*sat/(fluxAtRating*area)))
 	return parts.Inductor{
 		Inductance:          l,
@@ -44,7 +44,7 @@ func inductorPlaceholder(l, sat, rms, dcr, size, junction float64) parts.Inducto
 			BandLow: 0.7, BandHigh: 1.3,
 		},
 		Rating:  parts.InductorRating{Saturation: sat, Heating: roundUp(currentMargin * rms), WindingDegC: min(500, max(125, 5*math.Ceil(junction/5)))},
-		Thermal: parts.Thermal{JunctionToAmbient: surfaceRth * math.Sqrt(surfaceVolume/volume)},
+		Thermal: parts.Thermal{JunctionToAmbient: neat(surfaceRth * math.Sqrt(surfaceVolume/volume))},
 		Assumed: true,
 	}
 }
@@ -85,6 +85,7 @@ func (z *sizer) winding() bool {
 	if within {
 		dcr = math.Min(z.windingBudget, 2*dcr)
 	}
+	dcr = neat(dcr)
 	z.draft.Inductor = inductorPlaceholder(z.rated, z.saturationAt, z.inductorRMS, dcr, size, z.junction)
 	if !within {
 		z.windingBudget, z.drops.Winding = dcr, dcr*hot

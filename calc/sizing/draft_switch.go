@@ -45,15 +45,15 @@ func silicon(rating float64) float64 {
 //	Qg = k/Ron, and so on: a larger die has less resistance and more charge
 func switchPlaceholder(rating, onOhm, mean, junction float64) parts.MOSFET {
 	k := silicon(rating)
-	gate := gateProduct * k / onOhm
+	gate := neat(gateProduct * k / onOhm)
 	return parts.MOSFET{
 		OnResistance:     onOhm,
 		OnResistanceTemp: table(onResistanceTemp[:], 1),
 		GateCharge:       gate,
-		GateSwitchCharge: switchShare * gate, GateSwitchChargeAt: rating / 2,
+		GateSwitchCharge: neat(switchShare * gate), GateSwitchChargeAt: rating / 2,
 		Plateau: plateauFor(rating), InternalGate: 1.2,
-		OutputCharge: outputProduct * k / onOhm, OutputChargeAt: rating / 2,
-		RecoveryCharge: recoveryProduct * k / onOhm,
+		OutputCharge: neat(outputProduct * k / onOhm), OutputChargeAt: rating / 2,
+		RecoveryCharge: neat(recoveryProduct * k / onOhm),
 		BodyDiode:      0.85,
 		Rating: parts.MOSFETRating{
 			DrainSource: rating, GateSource: 4 * driveFor(rating), DrainCurrent: roundUp(max(4*mean, 1)), JunctionDegC: junctionRating(junction),
@@ -82,8 +82,8 @@ func plateauFor(rating float64) float64 {
 // Schottky diode up to 200 V, a fast junction diode above.
 func diodePlaceholder(rating, rated, junction float64) parts.Diode {
 	d := parts.Diode{
-		Threshold: 0.30 + 0.003*rating, Slope: 0.12 / rated, ThresholdTemp: -1.2e-3,
-		JunctionCharge: 1.1e-9 * rated * math.Sqrt(rating/productVoltage), JunctionAt: rating / 2,
+		Threshold: 0.30 + 0.003*rating, Slope: neat(0.12 / rated), ThresholdTemp: -1.2e-3,
+		JunctionCharge: neat(1.1e-9 * rated * math.Sqrt(rating/productVoltage)), JunctionAt: rating / 2,
 		Leakage: table([][2]float64{{25, 2.5e-6 * rated}, {75, 5e-5 * rated}, {125, 1e-3 * rated}}, 1),
 		Rating:  parts.DiodeRating{Reverse: rating, Forward: rated, JunctionDegC: junctionRating(junction)},
 		Assumed: true,
