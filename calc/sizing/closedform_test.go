@@ -3,6 +3,8 @@ package sizing_test
 import (
 	"fmt"
 	"math"
+	"slices"
+	"sync"
 	"testing"
 
 	"github.com/stretchr/testify/assert"
@@ -163,13 +165,22 @@ func TestTimeOptimalRecovery(t *testing.T) {
 	}
 }
 
-// drafts are the draft stages of the generated requirements, at typical values.
+// sized are the answers to the generated requirements, computed once for all tests.
+var sized = sync.OnceValue(func() []sizing.Answer {
+	answers := make([]sizing.Answer, requirements)
+	for k := range answers {
+		req := generate(k)
+		answers[k] = sizing.SizeAt(req, sizing.NewChoices(), req.SwitchingFrequency.Min)
+		answers[k].Notes = slices.Clip(answers[k].Notes)
+	}
+	return answers
+})
+
+// drafts visits copies of the first n answers that hold a draft stage.
 func drafts(t *testing.T, n int, visit func(k int, a *sizing.Answer)) {
 	t.Helper()
 	for k := range n {
-		req := generate(k)
-		a := sizing.SizeAt(req, sizing.NewChoices(), req.SwitchingFrequency.Min)
-		if a.Status.OK() {
+		if a := sized()[k]; a.Status.OK() {
 			visit(k, &a)
 		}
 	}
@@ -178,6 +189,7 @@ func drafts(t *testing.T, n int, visit func(k int, a *sizing.Answer)) {
 // What the windows' margin covers: closed forms against the exact engine, with the
 // engine's own duty ratio, inductance and capacitance.
 func TestClosedFormsAgainstTheEngine(t *testing.T) {
+	t.Parallel()
 	worst := map[string]float64{}
 	see := func(what string, got, want float64) { worst[what] = math.Max(worst[what], math.Abs(got/want-1)) }
 	drafts(t, 120, func(k int, a *sizing.Answer) {
@@ -226,6 +238,7 @@ func TestClosedFormsAgainstTheEngine(t *testing.T) {
 
 // In discontinuous conduction, the least on-time in closed form against the engine.
 func TestLeastRegularLoadAgainstTheEngine(t *testing.T) {
+	t.Parallel()
 	seen := 0
 	drafts(t, 120, func(k int, a *sizing.Answer) {
 		if a.Stage.Rectifier == stage.Synchronous {

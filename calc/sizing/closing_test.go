@@ -106,11 +106,12 @@ func (b *box) keeps(l *sizing.Limit) (bool, string) {
 }
 
 func TestClosingTheLoop(t *testing.T) {
+	t.Parallel()
 	feasible := 0
 	for k := range requirements {
 		req := generate(k)
 		require.NoError(t, req.Check(), k)
-		a := sizing.Size(req, sizing.NewChoices())
+		a := sized()[k]
 		if !a.Status.OK() {
 			require.NotEmpty(t, a.Conflicts)
 			for _, c := range a.Conflicts {
@@ -119,6 +120,7 @@ func TestClosingTheLoop(t *testing.T) {
 			continue
 		}
 		feasible++
+		a.Verify()
 		require.NoError(t, a.Stage.Check(), k)
 		assert.Empty(t, a.Stage.Clone().ApplyDefaults(), "draft %d leaves numbers to defaults", k)
 		assert.Equal(t, evaluate.OK, a.Worst)

@@ -103,6 +103,7 @@ func TestInputRMSHasItsWorstCaseInside(t *testing.T) {
 }
 
 func TestDraftLoopsAreStable(t *testing.T) {
+	t.Parallel()
 	var s loop.Sampled
 	var m loop.Margins
 	n, least := 0, math.Inf(1)

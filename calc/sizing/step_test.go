@@ -14,6 +14,7 @@ import (
 // peak keep the limits that the capacitors, the inductor and its saturation rating
 // were sized for.
 func TestLoadStepsOfTheDrafts(t *testing.T) {
+	t.Parallel()
 	followed, left, worst := 0, 0, 0.0
 	drafts(t, requirements, func(k int, a *sizing.Answer) {
 		req := generate(k)

@@ -53,6 +53,7 @@ func anything(r *rand.Rand) (*stage.Requirement, sizing.Choices) {
 // Whatever the contract lets pass gets an answer: a stage that passes its own checks,
 // or conflicts with finite figures. Nothing panics, nothing is NaN or infinite.
 func TestEveryRequirementHasAnAnswer(t *testing.T) {
+	t.Parallel()
 	r := rand.New(rand.NewPCG(11, 12))
 	count := map[string]int{}
 	for k := range 500 {
