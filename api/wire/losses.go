@@ -26,6 +26,9 @@ type LossesAnswer struct {
 	Items  []LossesItem `json:"items,omitzero"`
 	Grid   *LossesGrid  `json:"grid,omitzero"`
 	Basis
+	Explanation []Equation `json:"explanation,omitzero"`
+
+	explain func() []service.Equation // nil where there is nothing to explain
 }
 
 // LossesItem is the answer at one operating point.
@@ -108,7 +111,7 @@ func (w *LossesRequest) list() []*Point {
 
 // EncodeLosses shows the answer to a point or a list.
 func EncodeLosses(w *LossesRequest, r *service.LossesRequest, a *service.LossesAnswer, head Head) *LossesAnswer {
-	out := &LossesAnswer{Head: head, Status: a.Status.String(), Stage: w.Stage, Basis: encodeBasis(&a.Basis)}
+	out := &LossesAnswer{Head: head, Status: a.Status.String(), Stage: w.Stage, Basis: encodeBasis(&a.Basis), explain: explainFirst(r, a)}
 	banks := banksOf(r.Design.Stage)
 	for i, p := range w.list() {
 		o := a.Outcomes[i]
