@@ -1,0 +1,25 @@
+package transient
+
+import (
+	"railproof/calc/evaluate"
+	"railproof/calc/quantity"
+)
+
+// Bind sets plant, bounds and saturation current of a setup to an evaluated stage.
+// It reports whether the stage regulates there. Saturation is that of the data
+// sheet at the stage's values; parts.Unknown where there is none.
+func (s *Setup) Bind(e *evaluate.Evaluator, status evaluate.Status) bool {
+	ok := s.Plant.Bind(e, status)
+	stage := e.Stage()
+	s.Bounds = DefaultBounds(&stage.Controller, &s.Plant)
+	s.Saturation = stage.Inductor.Rating.Saturation
+	return ok
+}
+
+// Fill writes the quantities of a load step: the greater of both deviations, the
+// recovery time and the peak current. NaN stands where the output did not recover.
+func (o *Outcome) Fill(q *quantity.Vector) {
+	q[quantity.LoadStepDeviation] = max(o.Up, o.Down)
+	q[quantity.LoadStepRecovery] = o.Recovery
+	q[quantity.LoadStepPeak] = o.InductorPeak.Value
+}
