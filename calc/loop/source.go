@@ -9,8 +9,8 @@ import (
 )
 
 // MaxShunts is the greatest number of capacitor branches across the bridge's
-// input, damping branch included.
-const MaxShunts = 4 // [1]
+// input: the input banks, a filter's capacitor and its damping branch.
+const MaxShunts = switched.MaxBanks + 2 // [1]
 
 // Source is the impedance that feeds the bridge: a series inductor with its
 // damping, and capacitor branches across the bridge. Not Present: stiff.

@@ -8,7 +8,7 @@
 package statespace
 
 const (
-	MaxStates = 24                    // [1]
+	MaxStates = 32                    // [1]
 	MaxInputs = 4                     // [1]
 	Width     = MaxStates + MaxInputs // [1] length of the longest point
 )

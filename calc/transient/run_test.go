@@ -346,3 +346,29 @@ func TestLightLoadLeavesOutPulses(t *testing.T) {
 	require.Positive(t, r.Outcomes[0].Skipped)
 	require.InDelta(t, 5, r.StartMean, 0.05)
 }
+
+func TestStageBehindAnInputFilter(t *testing.T) {
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 40e3, 60)
+	const lf, cf = 22e-6, 10e-6
+	o := loop.OptimumDamping(loop.CapacitorBranch, lf, cf, 8)
+	for name, c := range map[string]struct {
+		banks   []switched.Bank
+		settles bool
+	}{
+		"undamped": {[]switched.Bank{{C: cf, ESR: 2e-3}}, false},
+		"damped":   {[]switched.Bank{{C: cf, ESR: 2e-3}, {C: 8 * cf, ESR: o.Resistance}}, true},
+	} {
+		t.Run(name, func(t *testing.T) {
+			q := p
+			q.Source = loop.FromBanks(lf, 1e-3, c.banks)
+			setup := Setup{Plant: q, Bounds: bounds(&q), Duration: 5e-3, Band: 0.05, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 1}, {Kind: InputStep, At: 2.5e-3, Change: 2, Slew: 1e5}}}
+			_, r := run(t, &setup)
+			require.Equal(t, Finished, r.Status)
+			require.Equal(t, c.settles, r.Settled, "change %g", r.FinalChange)
+			if c.settles {
+				require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
+			}
+		})
+	}
+}
