@@ -51,19 +51,15 @@ func (s *Solver) OutputRange(sol *Solution) {
 // approachContinuous takes the duty ratio from the volt-second balance with the
 // charge through the high side that sol has, as regulated does.
 func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, sol *Solution) (change float64, ok bool) {
-	leg := &c.Leg
-	vf := leg.Rectifier.Threshold
-	dr := leg.HighSide - leg.Rectifier.Slope
-	base := vout + vf + c.load(vout)*(leg.Winding+leg.Rectifier.Slope)
-	inv := 1 / (c.Vin + vf)
-	d := (base + dr*sol.Leg.HighSide.Mean) * inv
+	vs := c.voltSeconds(vout)
+	d := vs.next(sol.Duty, sol.Leg.HighSide.Mean)
 	if !(d > least && d < greatest && vout > 0) {
 		return 0, false
 	}
 	ob := &s.fast
 	if ob.takes(c) {
 		ob.set(c)
-		if !ob.continuous(c, d, vout) || leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
+		if !ob.continuous(c, d, vout) || c.Leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
 			return 0, false
 		}
 		ob.report(c, sol)
@@ -71,7 +67,7 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 		s.closed, s.feeds = true, 0
 	} else {
 		s.prepare(c)
-		if s.settle(c, d, false) != Solved || s.conduct[0] < 1 {
+		if s.settle(c, d) != Solved || s.conduct[0] < 1 {
 			return 0, false
 		}
 		if !s.takeStock(c, sol) {
@@ -81,8 +77,7 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 	if sol.Status != Solved {
 		return 0, false
 	}
-	next := (base + dr*sol.Leg.HighSide.Mean) * inv
-	return math.Abs(next-d) / d, true
+	return math.Abs(vs.next(d, sol.Leg.HighSide.Mean)-d) / d, true
 }
 
 // approachResting takes one joint step of duty ratio and end of conduction and

@@ -175,7 +175,7 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 	if closed := s.closed; closed || s.workspace == nil || s.count == 0 {
 		s.prepare(c)
 		s.closed = closed // the closed form still holds its own
-		if s.settle(c, sol.Duty, false) != Solved {
+		if s.settle(c, sol.Duty) != Solved {
 			return false
 		}
 	}
@@ -190,7 +190,7 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 	all := extent{math.Inf(1), math.Inf(-1)}
 	for k := range s.count {
 		v := &s.iv[k]
-		s.moments.set(s, k, false)
+		s.moments.rates(s, k)
 		for b := range banks {
 			i := at + b
 			square[b] += nw.input.capacitance[b] * nw.input.capacitance[b] * s.moments.y[i*n+i]

@@ -31,7 +31,11 @@ func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 	for k := range s.count {
 		v := &s.iv[k]
 		single := nw.phases == 1 && v.top.pos[0] != resting
-		m.set(s, k, !single)
+		if single {
+			m.rates(s, k)
+		} else {
+			m.set(s, k)
+		}
 		var lit tally
 		var current, node linear
 		if single {

@@ -23,46 +23,54 @@ type moments struct {
 // enters squared: what is left out is below 1e-16.
 const momentOrder = 5
 
-// set computes Y alone, or all three, over interval k.
-func (m *moments) set(s *Solver, k int, all bool) {
+// rates computes Y over interval k.
+func (m *moments) rates(s *Solver, k int) {
 	n := s.nw.n
-	v := &s.iv[k]
 	ld := s.rungs(k)
-	v.top.slope(&s.nw, &v.start, &m.y0)
 	ce := &s.work
-	ce.set(ld, ld.cell, &v.start, &m.y0, n)
+	s.iv[k].top.slope(&s.nw, &s.iv[k].start, &m.y0)
+	ce.set(ld, ld.cell, &s.iv[k].start, &m.y0, n)
 	m.project(ce, 1, 2/ce.h, n)
 	m.products(ce.h, &m.y, n)
-	if all {
-		m.project(ce, 0, 1, n)
-		m.products(ce.h, &m.x, n)
-		for i := range n {
-			m.q[i] = m.l[0][i] * ce.h
-		}
-	}
-	e, t := &m.scratch[0], &m.scratch[1]
 	for l := ld.cell; l < ld.levels; l++ {
-		copy(e[:n*n], ld.f[l][:n*n])
-		for i := range n {
-			e[i*n+i]++
-		}
-		congruent(e, &m.y, t, n)
-		if !all {
-			continue
-		}
+		congruent(m.exponential(ld, l, n), &m.y, &m.scratch[1], n)
+	}
+}
+
+// set computes all three.
+func (m *moments) set(s *Solver, k int) {
+	m.rates(s, k)
+	n := s.nw.n
+	ld := s.rungs(k)
+	ce := &s.work
+	m.project(ce, 0, 1, n)
+	m.products(ce.h, &m.x, n)
+	for i := range n {
+		m.q[i] = m.l[0][i] * ce.h
+	}
+	for l := ld.cell; l < ld.levels; l++ {
+		e := m.exponential(ld, l, n)
 		h, d := ld.h[l], &ld.d[l]
 		var eq vec
 		apply(e, &m.q, &eq, n)
-		congruent(e, &m.x, t, n)
+		congruent(e, &m.x, &m.scratch[1], n)
 		for i := range n {
 			for j := range n {
 				m.x[i*n+j] += eq[i]*d[j] + d[i]*eq[j] + h*d[i]*d[j]
 			}
-		}
-		for i := range n {
 			m.q[i] += eq[i] + h*d[i]
 		}
 	}
+}
+
+// exponential returns E = I + F of a rung.
+func (m *moments) exponential(ld *ladder, l, n int) *square {
+	e := &m.scratch[0]
+	copy(e[:n*n], ld.f[l][:n*n])
+	for i := range n {
+		e[i*n+i]++
+	}
+	return e
 }
 
 // project fills the Legendre coefficients of the series, or of its derivative

@@ -89,36 +89,57 @@ func (ob *oneBank) fixed(c *Circuit, duty float64, sol *Solution) bool {
 	return true
 }
 
-// regulated solves for the duty ratio that makes the mean output vout. The
-// volt-second balance of the inductor over a period is exact,
+// voltSeconds is the balance of the inductor's volt-seconds over a period in
+// continuous conduction, exact for one phase:
 //
 //	D (Vin + V_F) = V + V_F + I (R_w + R_r) + (R_hs − R_r) q/T,   I = I_0 + G V
 //
-// with q the charge through the high side; q from one exact solution gives the
-// next duty ratio, which is off by the product of two small numbers.
+// with q the charge through the high side.
+type voltSeconds struct {
+	base, excess, inv float64 // V + V_F + I (R_w + R_r), R_hs − R_r, 1/(Vin + V_F)
+	load, slope       float64 // I, and how much of a change of q/T a change of D brings
+}
+
+func (c *Circuit) voltSeconds(vout float64) voltSeconds {
+	leg := &c.Leg
+	i, vf, r := c.load(vout), leg.Rectifier.Threshold, leg.Winding+leg.Rectifier.Slope
+	return voltSeconds{
+		base: vout + vf + i*r, excess: leg.HighSide - leg.Rectifier.Slope, inv: 1 / (c.Vin + vf),
+		load: i, slope: c.Conductance * (c.Vin + vf) / (1 + c.Conductance*r),
+	}
+}
+
+// first returns the duty ratio at which the high side carries its share of the
+// mean current.
+func (vs *voltSeconds) first() float64 { return vs.base * vs.inv / (1 - vs.excess*vs.load*vs.inv) }
+
+// next returns the duty ratio after d, where the high side carried the mean
+// current q/T = high. The balance gives it but for the change of q with D, which
+// the slope accounts for; the step's error is the product of two small numbers.
+func (vs *voltSeconds) next(d, high float64) float64 {
+	return d + ((vs.base+vs.excess*high)*vs.inv-d)/(1-vs.excess*vs.inv*(vs.load+d*vs.slope))
+}
+
+// regulated solves for the duty ratio that makes the mean output vout.
 func (ob *oneBank) regulated(c *Circuit, vout, least, greatest float64, sol *Solution) bool {
 	ob.set(c)
-	leg := &c.Leg
-	vf := leg.Rectifier.Threshold
-	i := c.load(vout)
-	dr := leg.HighSide - leg.Rectifier.Slope
-	base := vout + vf + i*(leg.Winding+leg.Rectifier.Slope)
-	inv := 1 / (c.Vin + vf)
-	d := base / (c.Vin + vf - dr*i)
-	if leg.Rectifier.Blocks && vout < c.Vin && i > 0 {
+	vs := c.voltSeconds(vout)
+	blocks := c.Leg.Rectifier.Blocks
+	if blocks && vout < c.Vin && vs.load > 0 {
 		t1, t2 := c.firstRest(vout)
 		if t1+t2 < c.Period && ob.regulatedResting(c, vout, least, greatest, t1, t2, sol) {
 			return true
 		}
 	}
+	d := vs.first()
 	for n := range maxDuty {
-		if !(d > least && d < greatest) {
+		if !(d > least && d < greatest) || !ob.continuous(c, d, vout) {
 			return false
 		}
-		if !ob.continuous(c, d, vout) || leg.Rectifier.Blocks && i+ob.off.i1 < 0 {
-			return false
+		if peak, valley := vs.load+ob.off.i0, vs.load+ob.off.i1; blocks && valley < 0 {
+			return peak > 0 && ob.regulatedResting(c, vout, least, greatest, ob.t1, ob.t2*peak/(peak-valley), sol)
 		}
-		next := (base + dr*(i*d+ob.on.ci.mean(ob.on.order)*d)) * inv
+		next := vs.next(d, d*(vs.load+ob.on.ci.mean(ob.on.order)))
 		if math.Abs(next-d) <= dutyAccuracy*d {
 			ob.report(c, sol)
 			sol.Iterations = n + 1

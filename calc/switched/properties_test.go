@@ -214,7 +214,7 @@ func TestClosedFormAgainstGeneral(t *testing.T) {
 		}
 		s.fast.outputRange(&a)
 		s.prepare(c)
-		s.finish(c, s.settle(c, d, false), &b)
+		s.finish(c, s.settle(c, d), &b)
 		if b.Status != Solved {
 			t.Fatalf("general solver: %d for %+v duty %g", b.Status, c, d)
 		}

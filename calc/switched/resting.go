@@ -15,8 +15,8 @@ const (
 // to where the current is zero by Newton's step on the exact solution. A wrong
 // end drops or holds back a charge of second order only, so the steps of several
 // phases need no coupling and converge quadratically.
-func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
-	v := s.firstEnds(c, duty, warm)
+func (s *Solver) settleResting(c *Circuit, duty float64) Status {
+	v := s.firstEnds(c, duty)
 	var ends [MaxPhases]ending
 	for range maxRounds {
 		s.rounds++
@@ -60,17 +60,19 @@ func (s *Solver) settleResting(c *Circuit, duty float64, warm bool) Status {
 	return NotConverged
 }
 
-// firstEnds sets the ends of conduction to start with and returns the output
-// voltage to count from. The continuous solution, if it is not warm, is at hand.
-func (s *Solver) firstEnds(c *Circuit, duty float64, warm bool) float64 {
+// firstEnds sets the ends of conduction to start with, where none are known, and
+// returns the output voltage to count from: that of the solution at hand, or the
+// lossless circuit's.
+func (s *Solver) firstEnds(c *Circuit, duty float64) float64 {
 	v := s.ref.v
+	known := s.rests(c)
 	legs := c.Phases
 	if s.cyclic {
 		legs = 1
 	}
 	for p := range legs {
 		rect := &c.leg(p).Rectifier
-		if !rect.Blocks || warm && s.conduct[p] > duty {
+		if !rect.Blocks || known && s.conduct[p] > duty {
 			continue
 		}
 		v = c.restingOutput(p, duty)

@@ -4,7 +4,7 @@ import "math"
 
 const (
 	maxIntervals = 3*MaxPhases + 1
-	ladderCount  = 3 // as many intervals as equal phases have
+	ladderCount  = 3     // as many intervals as equal phases have
 	sameInstant  = 1e-14 // [1] of a period; edges closer than this are one
 )
 
@@ -80,8 +80,8 @@ func (s *Solver) prepare(c *Circuit) {
 		default:
 			s.lead[j] = 1 - float64(j)/n
 		}
-		s.conduct[j] = 1
 	}
+	s.forget()
 	for i := range s.ladders {
 		s.ladders[i].owner = -1
 	}

@@ -45,21 +45,10 @@ func (c *Circuit) restingDuty(p int, v float64) float64 {
 }
 
 // settle finds the periodic state at a duty ratio, in whatever conduction mode
-// it has. warm tells that conduct holds the ends of conduction at a duty ratio
-// nearby.
-func (s *Solver) settle(c *Circuit, duty float64, warm bool) Status {
-	blocks := false
-	resting := false
-	for p := range c.Phases {
-		if c.leg(p).Rectifier.Blocks {
-			blocks = true
-			resting = resting || warm && s.conduct[p] < 1
-		}
-	}
-	if !resting {
-		for p := range c.Phases {
-			s.conduct[p] = 1
-		}
+// it has. It starts from the ends of conduction in conduct: all 1 after prepare,
+// else those of a duty ratio nearby.
+func (s *Solver) settle(c *Circuit, duty float64) Status {
+	if !s.rests(c) {
 		v := c.averagedOutput(duty)
 		s.ref.set(&s.nw, v, c.load(v)/float64(c.Phases))
 		s.schedule(c, duty)
@@ -67,11 +56,28 @@ func (s *Solver) settle(c *Circuit, duty float64, warm bool) Status {
 		if !s.periodic(c) {
 			return NotConverged
 		}
-		if !blocks || !s.reverses(c) {
+		if !s.reverses(c) {
 			return Solved
 		}
 	}
-	return s.settleResting(c, duty, resting)
+	return s.settleResting(c, duty)
+}
+
+// rests tells whether conduct has a leg whose conduction ends.
+func (s *Solver) rests(c *Circuit) bool {
+	for p := range c.Phases {
+		if s.conduction(p) < 1 {
+			return true
+		}
+	}
+	return false
+}
+
+// forget lets every leg conduct all the time, the start of a search.
+func (s *Solver) forget() {
+	for p := range s.conduct {
+		s.conduct[p] = 1
+	}
 }
 
 // reverses tells whether a blocking rectifier is asked for reverse current.

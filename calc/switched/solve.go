@@ -22,7 +22,7 @@ func (s *Solver) FixedDuty(c *Circuit, duty float64, sol *Solution) {
 		s.standStill(c, duty, Solved, sol)
 		return
 	}
-	s.finish(c, s.settle(c, duty, false), sol)
+	s.finish(c, s.settle(c, duty), sol)
 }
 
 // Regulated solves the circuit at the duty ratio, between dutyLeast and
@@ -109,7 +109,7 @@ func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
 			if change, ok := s.joint(c, vout, least, greatest, t1/c.Period, (t1+t2)/c.Period, jointRounds); ok && change <= outputAccept {
 				return Solved
 			}
-			s.conduct[0] = 1
+			s.forget()
 		}
 	}
 	lo, hi := least, greatest
@@ -117,9 +117,8 @@ func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
 	d, slope := s.firstDuty(c, vout)
 	d = math.Min(math.Max(d, lo), hi)
 	var before, wasD float64
-	warm := false
 	for i := range maxSearch {
-		status := s.settle(c, d, warm)
+		status := s.settle(c, d)
 		e := -vout
 		switch status {
 		case Solved:
@@ -128,10 +127,10 @@ func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
 			if d >= greatest {
 				return status
 			}
+			s.forget()
 		default:
 			return status
 		}
-		warm = status == Solved
 		if math.Abs(e) <= outputReach*vout {
 			return Solved
 		}

@@ -32,7 +32,7 @@ func (s *Solver) WaveformWithInput(c *Circuit, sol *Solution, points, banks int,
 	if c.idle() {
 		return c.idleWaveform(sol.Duty, banks), true
 	}
-	if s.settle(c, sol.Duty, false) != Solved {
+	if s.settle(c, sol.Duty) != Solved {
 		return nil, false
 	}
 	if banks > 0 {
