@@ -273,21 +273,31 @@ func (e *Evaluator) followInductance() float64 {
 	if !l.Saturates() || !(one.Peak > one.Valley) {
 		return 0
 	}
-	e.valley, e.peak = swing(l, one, e.inductance[0])
+	e.valley, e.peak = e.swing(l, one, e.inductance[0])
 	next := l.InductanceOver(e.valley, e.peak)
 	change := math.Abs(next/e.inductance[0] - 1)
 	e.inductance[0] = next
 	return change
 }
 
+// valleyJoin is how many times the straight waveform's valley the flux curve's may
+// be where current cannot reverse: both reach zero together, at the border of
+// conduction. A current on a falling inductance has its valley higher, so the limit
+// acts within about that difference of the border.
+const valleyJoin = 3.0 // [1]
+
 // swing returns the currents between which the flux of the solved waveform moves
 // the inductor.
-func swing(l *parts.Inductor, leg *switched.LegSolution, inductance float64) (valley, peak float64) {
+func (e *Evaluator) swing(l *parts.Inductor, leg *switched.LegSolution, inductance float64) (valley, peak float64) {
 	flux := inductance * (leg.Peak - leg.Valley)
 	if leg.Mode == switched.Discontinuous {
 		return 0, l.CurrentAtFlux(flux)
 	}
-	return l.SwingAbout(leg.Inductor.Mean, flux)
+	valley, peak = l.SwingAbout(leg.Inductor.Mean, flux)
+	if join := valleyJoin * leg.Valley; e.circuit.Leg.Rectifier.Blocks && valley > join {
+		return join, l.CurrentAtFlux(l.FluxLinkage(join) + flux)
+	}
+	return valley, peak
 }
 
 func (e *Evaluator) followInductances() (change float64) {
@@ -300,7 +310,7 @@ func (e *Evaluator) followInductances() (change float64) {
 		leg := &e.solution.Legs[k]
 		valley, peak := leg.Valley, leg.Peak
 		if l.Saturates() && peak > valley {
-			valley, peak = swing(&l, leg, e.inductance[k])
+			valley, peak = e.swing(&l, leg, e.inductance[k])
 			next := l.InductanceOver(valley, peak)
 			change = math.Max(change, math.Abs(next/e.inductance[k]-1))
 			e.inductance[k] = next
