@@ -83,6 +83,12 @@ func (e *Evaluator) Circuit() *switched.Circuit { return &e.circuit }
 // Solution returns the periodic steady state of the last evaluation.
 func (e *Evaluator) Solution() *switched.Solution { return &e.solution }
 
+// InputBanks returns the input capacitor banks of the last evaluation, each at its
+// temperature, bias and age.
+func (e *Evaluator) InputBanks() []switched.Bank {
+	return e.inputBank[:len(e.stage.InputCapacitors)]
+}
+
 func (e *Evaluator) synchronous() bool { return e.stage.Rectifier != stage.DiodeRectified }
 
 // prepareNetwork lays out the thermal network: which parts there are and which
