@@ -66,8 +66,8 @@ func (c *taylor) ends(order int) (first, last float64) {
 }
 
 // extremes widens the range by the extreme inside the interval, if there is one:
-// the zero of the derivative, of which there is at most one within a radian of
-// the circuit's own oscillation. The chord of the derivative gives its place x;
+// the zero of the derivative, of which there is at most one, for the interval is
+// at most two radians of the circuit's own oscillation and zeros lie π apart. The chord of the derivative gives its place x;
 // the value is corrected for what is left of the derivative there, to third
 // order, or the place is improved where that is not enough.
 func (c *taylor) extremes(order int, e *extent) {
