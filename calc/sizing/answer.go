@@ -42,7 +42,7 @@ type Answer struct {
 	Point      stage.Point       // every condition at its typical value
 	Conditions stage.Conditions
 	Limits     []Limit
-	Assumed    []stage.Assumed // what stood in for what the requirement leaves open
+	Assumed    []stage.Assumed // fields of the requirement, and after "stage/" of the draft
 	Notes      []Note
 }
 

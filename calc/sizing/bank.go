@@ -102,13 +102,19 @@ func (b *bank) chargeBound(constraint string, charge string, q, current float64,
 	}
 }
 
-// bankShare returns the share of a ripple current of frequency fs that bank k
-// carries: its admittance over that of all, at rated values.
-func bankShare(banks []parts.Capacitor, k int, fs float64) float64 {
+// mostShare returns the greatest share of a ripple current of frequency fs that
+// output bank k carries: its admittance over that of all, its own capacitance and
+// resistance at the ends that draw more, the others' at those that draw less.
+func (z *sizer) mostShare(k int, fs float64) float64 {
 	var all, own complex128
-	for j := range banks {
-		c := &banks[j]
-		y := 1 / complex(c.ESR/c.Pieces(), -1/(2*math.Pi*fs*c.Capacitance*c.Pieces()))
+	for j := range z.draft.OutputCapacitors {
+		c := &z.draft.OutputCapacitors[j]
+		left, grown := z.worstOf(c, z.voHigh)
+		if j == k {
+			esr, _ := c.ESRAt(z.req.AmbientDegC.Max+selfHeating, 0)
+			left, grown = 1+capacitanceTol, (1-seriesTol)*math.Min(1, esr*c.Pieces()/c.ESR)
+		}
+		y := complex(c.Pieces(), 0) / complex(c.ESR*grown, -1/(2*math.Pi*fs*c.Capacitance*left))
 		all += y
 		if j == k {
 			own = y

@@ -114,7 +114,7 @@ func (z *sizer) capacitorRatings() {
 			s, _ := z.summed(c, p-v)
 			return s
 		})
-		share := bankShare(d.OutputCapacitors, k, fs)
+		share := z.mostShare(k, fs)
 		pieces := p.Pieces()
 		z.rating(part, "rms_a", "ripple_current_a", sum*share/(math.Sqrt(12)*pieces), 1, "A", c.Corner, "Irms = dI * s / (sqrt(12) * n)", trapezoid+"; banks share by impedance at the ripple frequency",
 			Input{"dI", sum, "A"}, Input{"s", share, "1"}, Input{"n", pieces, "1"})

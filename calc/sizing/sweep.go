@@ -7,7 +7,7 @@ import (
 )
 
 // Frequencies returns the switching frequencies [Hz] that a requirement asks to be
-// sized at: the fixed one, or a sweep in equal ratios from end to end.
+// sized at: the fixed one, or a sweep in equal ratios, to three digits, from end to end.
 func Frequencies(req *stage.Requirement, choice Choices) []float64 {
 	r := req.SwitchingFrequency
 	if !(r.Max > r.Min) {
@@ -16,9 +16,9 @@ func Frequencies(req *stage.Requirement, choice Choices) []float64 {
 	n := choice.withDefaults(req.Output).SweepCount
 	fs := make([]float64, n)
 	for k := range fs {
-		fs[k] = r.Min * math.Pow(r.Max/r.Min, float64(k)/float64(n-1))
+		fs[k] = neat(r.Min * math.Pow(r.Max/r.Min, float64(k)/float64(n-1)))
 	}
-	fs[n-1] = r.Max
+	fs[0], fs[n-1] = r.Min, r.Max
 	return fs
 }
 

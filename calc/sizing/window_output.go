@@ -45,7 +45,7 @@ func (z *sizer) output() {
 	}
 	slow = z.slowBounds(&second)
 	need, field = neediest(&Bound{}, slow)
-	d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum, ripple.Field), second.fill(z, need, 0, fsum, field)}
+	d.OutputCapacitors = []parts.Capacitor{first.fill(z, ripple.Part, rms, fsum, ripple.Field), second.fill(z, need, rms, fsum, field)}
 	z.describe(w, 0, &first, nil, &ripple, &steady)
 	w.Bounds = nil
 	w.add(slow)
