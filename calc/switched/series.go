@@ -66,10 +66,11 @@ func (c *taylor) ends(order int) (first, last float64) {
 }
 
 // extremes widens the range by the extreme inside the interval, if there is one:
-// the zero of the derivative, of which there is at most one, for the interval is
-// at most two radians of the circuit's own oscillation and zeros lie π apart. The chord of the derivative gives its place x;
-// the value is corrected for what is left of the derivative there, to third
-// order, or the place is improved where that is not enough.
+// the zero of the derivative. There is at most one, for the interval is at most
+// two radians of the circuit's own oscillation and zeros lie π apart. The chord
+// of the derivative gives its place x; the value is corrected for what is left of
+// the derivative there, to third order, or the place is improved where that is
+// not enough.
 func (c *taylor) extremes(order int, e *extent) {
 	odd := c[1] + 3*c[3] + 5*c[5] + 7*c[7]
 	even := 2*c[2] + 4*c[4] + 6*c[6] + 8*c[8]
