@@ -86,8 +86,9 @@ func (p *Plant) Faults() []stage.Fault {
 	}
 	if m.Present {
 		atLeast("modulator/delay_s", m.Delay, 0, "comparator and driver delay")
-		if on := p.Duty * p.Circuit.Period; !(m.Delay < on) {
-			f = append(f, stage.Fault{Field: "modulator/delay_s", Given: m.Delay, Limit: on, Accepted: "below the on-time of " + number(on) + " s", Detail: "the comparator could not end this pulse"})
+		most := min(p.Duty, 1/float64(max(1, p.Circuit.Phases))) * p.Circuit.Period
+		if !(m.Delay < most) {
+			f = append(f, stage.Fault{Field: "modulator/delay_s", Given: m.Delay, Limit: most, Accepted: "below " + number(most) + " s", Detail: "shorter than the on-time, which the comparator has to end, and than the time between two phases"})
 		}
 	}
 	if !c.Present {

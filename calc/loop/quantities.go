@@ -31,10 +31,9 @@ type Analyser struct {
 // came. A stage whose loop has no meaning is reported by the error of Check.
 func (a *Analyser) Fill(e *evaluate.Evaluator, s evaluate.Status, q *quantity.Vector) (Status, error) {
 	a.Margins = Margins{}
-	regulates := a.Plant.Bind(e, s)
-	if !regulates {
+	a.Margins.Fill(q)
+	if !a.Plant.Bind(e, s) {
 		a.Margins.Status = NotRegulating
-		a.Margins.Fill(q)
 		return NotRegulating, nil
 	}
 	if err := a.Plant.Check(); err != nil {
@@ -82,4 +81,15 @@ func (m *Margins) Fill(q *quantity.Vector) {
 // Present reports whether a stage has all that a loop needs.
 func Present(s *stage.Stage) bool {
 	return s.Modulator.Present && s.Compensator.Present && s.Feedback.Present
+}
+
+// Behind sets the plant's source: the stage's input banks, which a stiff source
+// leaves out, fed through the given source. Its own branches, such as a filter's
+// capacitor and damping, stand beside the banks.
+func (p *Plant) Behind(e *evaluate.Evaluator, source Source) {
+	source.Present = true
+	banks := e.InputBanks()
+	n := min(len(banks), MaxShunts-source.Shunts)
+	source.Shunts += copy(source.Shunt[source.Shunts:], banks[:n])
+	p.Source = source
 }

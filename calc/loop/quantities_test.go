@@ -84,3 +84,21 @@ func TestMarginsOfAnUnstableLoopCannotPassALimit(t *testing.T) {
 	m.Fill(&q)
 	require.Equal(t, GainMarginCeiling, q[quantity.GainMargin], "no phase crossing is no failure")
 }
+
+func TestSourceBringsTheInputBanksIn(t *testing.T) {
+	s, p := rail(t)
+	s.InputCapacitors = append(s.InputCapacitors, s.OutputCapacitors[0])
+	s.InputCapacitors[0].Count = 2
+	e := evaluate.Prepare(s)
+	var r evaluate.Result
+	e.Eval(&p, &r)
+	var plant Plant
+	require.True(t, plant.Bind(e, r.Status))
+	filter := Source{Inductance: 1e-6, Resistance: 20e-3, Shunts: 1}
+	filter.Shunt[0].C, filter.Shunt[0].ESR = 100e-6, 0.1
+	plant.Behind(e, filter)
+	require.NoError(t, plant.Check())
+	require.Equal(t, 2, plant.Source.Shunts)
+	require.InEpsilon(t, 44e-6, plant.Source.Shunt[1].C, 1e-9)
+	require.Equal(t, Stable, marginsOf(t, plant).Stability)
+}

@@ -361,8 +361,10 @@ func TestStageBehindAnInputFilter(t *testing.T) {
 		t.Run(name, func(t *testing.T) {
 			q := p
 			q.Source = loop.FromBanks(lf, 1e-3, c.banks)
-			setup := Setup{Plant: q, Bounds: bounds(&q), Duration: 5e-3, Band: 0.05, Saturation: parts.Unknown,
-				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 1}, {Kind: InputStep, At: 2.5e-3, Change: 2, Slew: 1e5}}}
+			setup := Setup{
+				Plant: q, Bounds: bounds(&q), Duration: 5e-3, Band: 0.05, Saturation: parts.Unknown,
+				Events: []Event{{Kind: LoadStep, At: 1e-4, Change: 1}, {Kind: InputStep, At: 2.5e-3, Change: 2, Slew: 1e5}},
+			}
 			_, r := run(t, &setup)
 			require.Equal(t, Finished, r.Status)
 			require.Equal(t, c.settles, r.Settled, "change %g", r.FinalChange)
