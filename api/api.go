@@ -1,6 +1,7 @@
 package api
 
 import (
+	"context"
 	"log/slog"
 	"net/http"
 	"sync/atomic"
@@ -11,6 +12,8 @@ import (
 	"railproof/api/exchange"
 	"railproof/openapi"
 	"railproof/service"
+	"railproof/service/jobs"
+	"railproof/service/results"
 )
 
 // Options sets up an API. A zero field means its default.
@@ -19,11 +22,14 @@ type Options struct {
 	Log      *slog.Logger     // default: none
 	MaxBody  int64            // [bytes] largest request body; default 1 MiB
 	Deadline time.Duration    // for one request; default 20 s
+	Jobs     *jobs.Board      // nil: there are no jobs, and nothing is deferred
+	Results  int64            // [bytes] of answers kept in memory; default 32 MiB, below 0 none
 }
 
 const (
 	defaultMaxBody  = 1 << 20
 	defaultDeadline = 20 * time.Second
+	defaultResults  = 32 << 20
 )
 
 // API answers HTTP requests. It is safe for concurrent use.
@@ -34,7 +40,11 @@ type API struct {
 	log      *slog.Logger
 	maxBody  int64
 	deadline time.Duration
-	draining atomic.Bool
+	jobs     *jobs.Board
+	results  *results.Cache
+	streams  atomic.Int64    // open event streams
+	ending   context.Context // ends when the server drains
+	drain    context.CancelFunc
 }
 
 // New returns the API of the contract.
@@ -42,8 +52,13 @@ func New(o Options) *API {
 	contract := openapi.Load()
 	a := &API{
 		echo: echo.New(), contract: contract, exchange: exchange.New(contract, o.Service),
-		log: o.Log, maxBody: o.MaxBody, deadline: o.Deadline,
+		log: o.Log, maxBody: o.MaxBody, deadline: o.Deadline, jobs: o.Jobs,
 	}
+	a.ending, a.drain = context.WithCancel(context.Background())
+	if o.Results == 0 {
+		o.Results = defaultResults
+	}
+	a.results = results.New(o.Results)
 	if a.log == nil {
 		a.log = slog.New(slog.DiscardHandler)
 	}
@@ -65,5 +80,6 @@ func New(o Options) *API {
 func (a *API) ServeHTTP(w http.ResponseWriter, r *http.Request) { a.echo.ServeHTTP(w, r) }
 
 // Drain makes /readyz say that no new work should be sent; requests that come
-// all the same are answered.
-func (a *API) Drain() { a.draining.Store(true) }
+// all the same are answered. Event streams end, and their clients come back
+// elsewhere.
+func (a *API) Drain() { a.drain() }

@@ -26,23 +26,43 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		if problem != nil {
 			return refusal{problem}
 		}
-		answer, problem := a.exchange.Do(c.Request().Context(), op.ID, body)
+		request, problem := a.exchange.Read(op.ID, body)
 		if problem != nil {
 			return refusal{problem}
 		}
+		if p := preferred(c.Request().Header.Values("Prefer")); p.async && a.jobs != nil && canDefer(op) {
+			return a.deferred(c, op, request, p)
+		}
 		form := c.Get(formKey).(string)
+		c.Set(resultKey, request.ResultID)
+		explained := c.QueryParam("explain") == "true" // more than the result that is kept
+		request.Explain = explained
+		if kept, found := a.results.Get(request.ResultID); found && kept.Media == form && !explained && c.QueryParam("timings") != "true" {
+			return sent(c, form, kept.Body, nil)
+		}
+		answer, problem := a.exchange.Answer(c.Request().Context(), request)
+		if problem != nil {
+			return refusal{problem}
+		}
 		text, problem := answer.Render(form)
 		if problem != nil {
 			return refusal{problem}
 		}
-		c.Set(resultKey, answer.ResultID)
-		h := c.Response().Header()
-		h.Set(echo.HeaderCacheControl, "no-store")
-		if c.QueryParam("timings") == "true" {
-			h.Set("Server-Timing", serverTiming(answer.Timings))
+		if kept, problem := answer.Kept(); problem == nil && !explained {
+			a.results.Put(answer.ResultID, kept)
 		}
-		return c.Blob(http.StatusOK, form, text)
+		return sent(c, form, text, answer.Timings)
 	}
+}
+
+// sent sends an answer.
+func sent(c echo.Context, form string, text []byte, timings []exchange.Timing) error {
+	h := c.Response().Header()
+	h.Set(echo.HeaderCacheControl, "no-store")
+	if c.QueryParam("timings") == "true" {
+		h.Set("Server-Timing", serverTiming(timings))
+	}
+	return c.Blob(http.StatusOK, form, text)
 }
 
 // body reads the request's body up to the limit.

@@ -40,6 +40,11 @@ func (a *API) handlers() map[string]echo.HandlerFunc {
 		"getExample":      example(),
 		"getHealth":       health,
 		"getReadiness":    a.readiness,
+		"listJobs":        a.listJobs,
+		"getJob":          a.getJob,
+		"cancelJob":       a.cancelJob,
+		"getJobEvents":    a.jobEvents,
+		"getResult":       a.getResult,
 	}
 	for id, answer := range a.exchange.Dictionaries() {
 		h[id] = document("application/json", answer.Body)

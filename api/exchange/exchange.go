@@ -43,35 +43,63 @@ type handler func(ctx context.Context, x *Exchange, tree any, head wire.Head) (a
 // Computes reports whether the exchange has the operation and it takes a body.
 func (x *Exchange) Computes(operation string) bool { return computations[operation] != nil }
 
-// Do answers an operation that takes a body.
-func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answer, *Problem) {
-	h := computations[operation]
-	if h == nil {
+// Request is a request that was read and that the contract accepts.
+type Request struct {
+	Operation string
+	ResultID  string // names the answer
+	Explain   bool   // tell how the figures follow, beside the answer
+	tree      any
+	watch     stopwatch
+}
+
+// Canonical returns the RFC 8785 form of the request.
+func (r *Request) Canonical() []byte { return service.AppendCanonical(nil, r.tree) }
+
+// Read reads the body of an operation that takes one.
+func (x *Exchange) Read(operation string, body []byte) (*Request, *Problem) {
+	if !x.Computes(operation) {
 		panic("exchange: no operation " + operation)
 	}
-	watch := stopwatch{last: time.Now()}
+	r := &Request{Operation: operation, watch: stopwatch{last: time.Now()}}
 	tree, problem := parse(body)
 	if problem != nil {
 		return nil, problem
 	}
-	watch.lap("parse")
+	r.watch.lap("parse")
 	if faults := x.contract.ValidateRequest(operation, tree); faults != nil {
 		return nil, Schema(SchemaFault, faults)
 	}
-	watch.lap("check-request")
-	id := service.ResultID(operation, x.service.Engine(), tree)
-	watch.lap("digest")
-	value, err := h(ctx, x, tree, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: id})
+	r.watch.lap("check-request")
+	r.tree, r.ResultID = tree, service.ResultID(operation, x.service.Engine(), tree)
+	r.watch.lap("digest")
+	return r, nil
+}
+
+// Answer computes the answer to a request.
+func (x *Exchange) Answer(ctx context.Context, r *Request) (*Answer, *Problem) {
+	value, err := computations[r.Operation](ctx, x, r.tree, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: r.ResultID})
 	if err != nil {
 		return nil, problemOf(err)
 	}
-	watch.lap("compute")
-	a, problem := x.finish(operation, value, &watch)
+	if e, can := value.(wire.Explainer); can && r.Explain {
+		e.Explain()
+	}
+	r.watch.lap("compute")
+	a, problem := x.finish(r.Operation, value, &r.watch)
 	if problem != nil {
 		return nil, problem
 	}
-	a.ResultID = id
+	a.ResultID = r.ResultID
 	return a, nil
+}
+
+// Do answers an operation that takes a body.
+func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answer, *Problem) {
+	r, problem := x.Read(operation, body)
+	if problem != nil {
+		return nil, problem
+	}
+	return x.Answer(ctx, r)
 }
 
 // finish checks an answer against the contract and encodes it.

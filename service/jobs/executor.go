@@ -21,6 +21,11 @@ type Outcome struct {
 type Executor interface {
 	// Execute runs a request to its end or to the context's.
 	Execute(ctx context.Context, operation string, request []byte, m *service.Meter) Outcome
+}
+
+// Splitter is an Executor that can split large requests, so that several processes
+// work on one job.
+type Splitter interface {
 	// Parts returns into how many parts a request can be split, and the evaluations
 	// of them all; below 2 it is not split.
 	Parts(operation string, request []byte) (parts, evaluations int)

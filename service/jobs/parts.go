@@ -17,7 +17,7 @@ const (
 
 // inParts lets every process that has a free worker take parts of the job, takes
 // parts itself until none is left, and merges them in their order.
-func (b *Board) inParts(ctx context.Context, r *run, parts int) Outcome {
+func (b *Board) inParts(ctx context.Context, s Splitter, r *run, parts int) Outcome {
 	if err := b.layOut(ctx, r.id, parts); err != nil {
 		_ = b.failed(ctx, "laying out parts", err)
 		return Outcome{Busy: true}
@@ -28,7 +28,7 @@ func (b *Board) inParts(ctx context.Context, r *run, parts int) Outcome {
 		}
 	}
 	for {
-		worked, err := b.onePart(ctx, r)
+		worked, err := b.onePart(ctx, s, r)
 		if err != nil {
 			return b.broken(ctx, r, err)
 		}
@@ -37,7 +37,7 @@ func (b *Board) inParts(ctx context.Context, r *run, parts int) Outcome {
 		}
 		bodies, err := b.finished(ctx, r, parts)
 		if err == nil && bodies != nil {
-			return b.o.Executor.Merge(ctx, r.operation, r.request, bodies)
+			return s.Merge(ctx, r.operation, r.request, bodies)
 		}
 		select {
 		case <-ctx.Done():
@@ -70,6 +70,10 @@ func (b *Board) layOut(ctx context.Context, job string, parts int) error {
 
 // help works on parts of another process's job until none is left.
 func (b *Board) help(job string) {
+	s, can := b.o.Executor.(Splitter)
+	if !can {
+		return
+	}
 	ctx, cancel := context.WithTimeout(b.ctx, b.o.Deadline)
 	defer cancel()
 	r := &run{id: job, meter: new(service.Meter)}
@@ -78,7 +82,7 @@ func (b *Board) help(job string) {
 		return // ended meanwhile
 	}
 	for {
-		if worked, err := b.onePart(ctx, r); err != nil || !worked {
+		if worked, err := b.onePart(ctx, s, r); err != nil || !worked {
 			if err != nil && ctx.Err() == nil {
 				b.o.Log.Warn("helping with a job failed", "job", job, "cause", err)
 			}
@@ -89,7 +93,7 @@ func (b *Board) help(job string) {
 
 // onePart takes a part that nobody has and runs it; worked is false if there was
 // none.
-func (b *Board) onePart(ctx context.Context, r *run) (worked bool, err error) {
+func (b *Board) onePart(ctx context.Context, s Splitter, r *run) (worked bool, err error) {
 	var part, parts int
 	err = b.db.row(ctx, `UPDATE railproof_parts SET owner = $2, beat = NOW(), done = 0 WHERE job = $1 AND part = (
 			SELECT part FROM railproof_parts WHERE job = $1 AND body IS NULL AND (owner = '' OR `+stale+`) ORDER BY part LIMIT 1 FOR UPDATE SKIP LOCKED)
@@ -104,7 +108,7 @@ func (b *Board) onePart(ctx context.Context, r *run) (worked bool, err error) {
 	defer stop(nil)
 	meter := new(service.Meter)
 	watched := b.watchPart(ctx, stop, r, part, meter)
-	body, err := b.o.Executor.Part(ctx, r.operation, r.request, part, parts, meter)
+	body, err := s.Part(ctx, r.operation, r.request, part, parts, meter)
 	stop(nil)
 	<-watched
 	if err != nil {

@@ -172,10 +172,10 @@ func (b *Board) execute(ctx context.Context, r *run) Outcome {
 }
 
 func (b *Board) whole(ctx context.Context, r *run) Outcome {
-	if b.db.shared {
-		if n, evaluations := b.o.Executor.Parts(r.operation, r.request); n > 1 {
+	if s, can := b.o.Executor.(Splitter); can && b.db.shared {
+		if n, evaluations := s.Parts(r.operation, r.request); n > 1 {
 			r.meter.Expect(evaluations)
-			return b.inParts(ctx, r, n)
+			return b.inParts(ctx, s, r, n)
 		}
 	}
 	return b.o.Executor.Execute(ctx, r.operation, r.request, r.meter)
