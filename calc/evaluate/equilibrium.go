@@ -26,6 +26,10 @@ const (
 	// dutyTolerance is the relative step of the duty ratio at which the output is
 	// regulated.
 	dutyTolerance = 1e-9
+	// shareTolerance and shareKelvin are the changes of the circuit and of a
+	// temperature below which the input banks' shares, once solved, stay: they
+	// change by less than that.
+	shareTolerance, shareKelvin = 1e-6, 1e-2
 	// maxPolish bounds the last steps to it, each of which gains three digits.
 	maxPolish = 6
 	// circuitTolerance is the relative change of inductance and bridge voltage at
@@ -115,19 +119,24 @@ func (e *Evaluator) iterate(o *operating) Status {
 			break
 		}
 	}
+	moved := true
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.output, o.copper)
 		e.limitDuty(o)
 		dutyChange := e.solve(o)
 		status := fromSwitched(e.solution.Status)
-		if status == NoOperatingPoint || status == NotConverged || !e.share() {
-			return failed(status)
+		if status == NoOperatingPoint || status == NotConverged {
+			return status
+		}
+		if moved && !e.share() {
+			return NotConverged
 		}
 		before := e.degC
 		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
+		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
 			if dutyChange > dutyTolerance {
@@ -157,7 +166,7 @@ func (e *Evaluator) polish(o *operating) Status {
 	for range maxPolish {
 		change := e.solve(o)
 		status := fromSwitched(e.solution.Status)
-		if status == NoOperatingPoint || status == NotConverged || !e.share() {
+		if status == NoOperatingPoint || status == NotConverged {
 			return NotConverged
 		}
 		if change <= dutyTolerance {
@@ -166,14 +175,6 @@ func (e *Evaluator) polish(o *operating) Status {
 			e.model.Freeze(&e.operation)
 			return status
 		}
-	}
-	return NotConverged
-}
-
-// failed is the status of a pass that has no solution to go on with.
-func failed(s Status) Status {
-	if s == NoOperatingPoint {
-		return s
 	}
 	return NotConverged
 }
