@@ -48,9 +48,9 @@ func list(t *testing.T, raw json.RawMessage) (v []int) {
 
 // hundredths returns the mantissas of a series as integers, 100 for 1.
 func hundredths(s preferred.Series) []int {
-	var v []int
-	for _, m := range s.Mantissas() {
-		v = append(v, int(math.Round(m*100)))
+	v := make([]int, len(s.Mantissas()))
+	for i, m := range s.Mantissas() {
+		v[i] = int(math.Round(m * 100))
 	}
 	return v
 }
@@ -59,10 +59,10 @@ func hundredths(s preferred.Series) []int {
 func TestSeriesUpToE24StandAsInTheStandard(t *testing.T) {
 	want := published(t, "ps-st-01")
 	for name, s := range map[string]preferred.Series{"e24": preferred.E24, "e12": preferred.E12, "e6": preferred.E6, "e3": preferred.E3} {
-		var tens []int
-		for _, m := range hundredths(s) {
+		tens := hundredths(s)
+		for i, m := range tens {
 			require.Zero(t, m%10, "%s holds %d", name, m)
-			tens = append(tens, m/10)
+			tens[i] = m / 10
 		}
 		assert.Equal(t, list(t, want[name]), tens, name)
 	}

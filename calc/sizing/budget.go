@@ -35,7 +35,7 @@ func (z *sizer) budget() {
 	allowed := r.Output * i * z.lossShare
 	duty := math.Min(0.9, math.Max(0.1, IdealDuty(vin, r.Output)))
 	d := z.draft
-	d.Board.InputPath = neat(math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output*io/math.Pow(r.Output*io/r.Input.Min, 2)))
+	d.Board.InputPath = neat(math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Input.Min*r.Input.Min/(r.Output*io)))
 	d.Board.OutputPath = neat(math.Min(mostPathOhm, pathShare*z.try.effort*z.lossShare*r.Output/io))
 	z.source = r.SourceResistance + d.Board.InputPath
 
@@ -55,7 +55,7 @@ func (z *sizer) budget() {
 	cold := temp.At(r.AmbientDegC.Min)
 	z.drops, z.leastDrops = Drops{HighSide: on * hot}, Drops{HighSide: on * cold}
 	if r.Rectifier == stage.DiodeRectified {
-		z.diode(i, duty)
+		z.diode(i)
 	} else {
 		on = z.onResistance(allowed, (1-duty)*i*i*hot, z.fs*(outputProduct*silicon(rating)*vin/2+(recoveryProduct*vin+gateProduct*driveFor(rating))*silicon(rating)))
 		d.LowSide = switchPlaceholder(rating, on, i, z.junction)
@@ -93,7 +93,7 @@ func (z *sizer) onResistance(allowed, conduction, switching float64) float64 {
 
 // diode chooses the rectifier diode: its rated current from the greatest mean
 // current, larger for less slope.
-func (z *sizer) diode(i, duty float64) {
+func (z *sizer) diode(i float64) {
 	r := z.req
 	rating := ratingAtLeast(diodeRatings[:], voltageMargin*r.Input.Max)
 	mean := i * (1 - IdealDuty(r.Input.Max, r.Output))

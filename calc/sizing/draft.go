@@ -105,8 +105,9 @@ func (z *sizer) conditions() {
 //	Io = N ton² fs (Vin − Vo)(Vin + Vth)/(2 L (Vo + Vth))
 func (z *sizer) leastRegularLoad() float64 {
 	ton, vin, vo, vth := z.choice.MinOnTime, z.req.Input.Max, z.voLow, z.leastDrops.Threshold
-	i := ton * ton * z.fsHigh * (vin - vo) * (vin + vth) / (2 * z.leastL.Inductance * (vo + vth))
-	return roundUp(regularMargin * z.phases * i)
+	atOneAmpere := DiscontinuousOnTime(vin, vo, 1, z.leastL.Inductance, z.fsHigh, vth)
+	root := ton / atOneAmpere // the on-time grows with the root of the current
+	return roundUp(regularMargin * z.phases * root * root)
 }
 
 // regularMargin covers what DiscontinuousOnTime leaves out.

@@ -50,8 +50,8 @@ type figures struct {
 }
 
 // ripple of one phase at an input, for the cases' usual names.
-func ripple(c *publishedCase, vin, vout, l string) float64 {
-	return sizing.RippleCurrent(c.in(vin), c.in(vout), c.in(l), c.in("f_sw_hz"))
+func ripple(c *publishedCase, vin, l string) float64 {
+	return sizing.RippleCurrent(c.in(vin), c.in("v_out_v"), c.in(l), c.in("f_sw_hz"))
 }
 
 // inputRMS is the RMS current of the input capacitor of one phase.
@@ -100,7 +100,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 		i, di := c.in("i_out_a"), c.in("i_l_pp_ratio")*c.in("i_out_a")
 		return figures{ours: map[string]float64{
 			"duty_ratio": sizing.IdealDuty(c.in("v_in_v"), c.in("v_out_v")), "l_h": sizing.InductanceForRipple(c.in("v_in_v"), c.in("v_out_v"), di, c.in("f_sw_hz")),
-			"i_l_rms_a": sizing.TriangleRMS(i, di), "i_l_peak_a": i + di/2, "i_l_pp_a": ripple(c, "v_in_v", "v_out_v", "l_chosen_h"),
+			"i_l_rms_a": sizing.TriangleRMS(i, di), "i_l_peak_a": i + di/2, "i_l_pp_a": ripple(c, "v_in_v", "l_chosen_h"),
 		}, absent: map[string]string{"p_dcr_w": lossElsewhere}}
 	},
 	"ps-sz-04": func(c *publishedCase) figures {
@@ -113,9 +113,9 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 		}, absent: map[string]string{"v_esl_on_v": edge, "v_esl_off_v": edge, "p_cin_w": lossElsewhere}}
 	},
 	"ps-sz-05": func(c *publishedCase) figures {
-		b := ripple(c, "v_in_max_v", "v_out_v", "l_b_h")
+		b := ripple(c, "v_in_max_v", "l_b_h")
 		return figures{ours: map[string]float64{
-			"ripple_a_ratio": ripple(c, "v_in_max_v", "v_out_v", "l_a_h") / c.in("i_out_a"), "ripple_b_ratio": b / c.in("i_out_a"), "i_l_peak_b_a": c.in("i_out_a") + b/2,
+			"ripple_a_ratio": ripple(c, "v_in_max_v", "l_a_h") / c.in("i_out_a"), "ripple_b_ratio": b / c.in("i_out_a"), "i_l_peak_b_a": c.in("i_out_a") + b/2,
 			"t_on_min_s": sizing.DropDuty(c.in("v_in_max_v"), c.in("v_out_v"), 0, sizing.Drops{}) / c.in("f_sw_hz"),
 		}}
 	},
@@ -129,7 +129,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 	},
 	"ps-sz-07": func(c *publishedCase) figures {
 		i, fs := c.in("i_out_a"), c.in("f_sw_hz")
-		di := ripple(c, "v_in_max_v", "v_out_v", "l_chosen_h")
+		di := ripple(c, "v_in_max_v", "l_chosen_h")
 		return figures{ours: map[string]float64{
 			"l_min_h":  sizing.InductanceForRipple(c.in("v_in_max_v"), c.in("v_out_v"), c.in("i_l_pp_ratio")*i, fs),
 			"i_l_pp_a": di, "i_l_rms_a": sizing.TriangleRMS(i, di), "i_l_peak_a": i + di/2,
@@ -142,19 +142,19 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 	},
 	"ps-sz-08": func(c *publishedCase) figures {
 		i, fs, vo := c.in("i_out_a"), c.in("f_sw_hz"), c.in("v_out_v")
-		di := ripple(c, "v_in_max_v", "v_out_v", "l_chosen_h")
+		di := ripple(c, "v_in_max_v", "l_chosen_h")
 		return figures{ours: map[string]float64{
 			"l_min_h":  sizing.InductanceForRipple(c.in("v_in_max_v"), vo, c.in("i_l_pp_ratio")*i, fs),
 			"i_l_pp_a": di, "i_l_rms_a": sizing.TriangleRMS(i, di), "i_l_peak_a": i + di/2,
 			"v_in_pp_v":               inputRipple(i, 0.5, fs, c.in("c_in_f"), 0),
 			"i_cin_rms_at_v_in_min_a": inputRMS(i, 0, sizing.IdealDuty(c.in("v_in_min_v"), vo)),
 			"i_cin_rms_worst_a":       inputRMS(i, 0, 0.5),
-			"i_out_boundary_at_12v_a": ripple(c, "v_in_nom_v", "v_out_v", "l_chosen_h") / 2,
+			"i_out_boundary_at_12v_a": ripple(c, "v_in_nom_v", "l_chosen_h") / 2,
 		}}
 	},
 	"ps-sz-09": func(c *publishedCase) figures {
 		i, fs, vo := c.in("i_out_a"), c.in("f_sw_hz"), c.in("v_out_v")
-		di := ripple(c, "v_in_max_v", "v_out_v", "l_chosen_h")
+		di := ripple(c, "v_in_max_v", "l_chosen_h")
 		low, high := sizing.IdealDuty(c.in("v_in_min_v"), vo), sizing.IdealDuty(c.in("v_in_max_v"), vo)
 		return figures{ours: map[string]float64{
 			"l_min_h":  sizing.InductanceForRipple(c.in("v_in_max_v"), vo, c.in("i_l_pp_ratio")*i, fs),
@@ -169,7 +169,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 	},
 	"ps-sz-10": func(c *publishedCase) figures {
 		i, fs, vo := c.in("i_out_a"), c.in("f_sw_hz"), c.in("v_out_v")
-		di := ripple(c, "v_in_max_v", "v_out_v", "l_chosen_h")
+		di := ripple(c, "v_in_max_v", "l_chosen_h")
 		co := doubledRelease(c.in("l_chosen_h"), c.in("i_step_a"), vo, c.in("v_over_v"))
 		return figures{ours: map[string]float64{
 			"l_min_h":  sizing.InductanceForRipple(c.in("v_in_max_v"), vo, c.in("i_l_pp_ratio")*i, fs),
@@ -180,7 +180,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 	},
 	"ps-sz-11": func(c *publishedCase) figures {
 		i, fs, vo := c.in("i_out_a"), c.in("f_sw_hz"), c.in("v_out_v")
-		di := ripple(c, "v_in_max_v", "v_out_v", "l_chosen_h")
+		di := ripple(c, "v_in_max_v", "l_chosen_h")
 		nominal := sizing.IdealDuty(c.in("v_in_nom_v"), vo)
 		return figures{ours: map[string]float64{
 			"l_min_h":  sizing.InductanceForRipple(c.in("v_in_max_v"), vo, c.in("i_l_pp_ratio")*i, fs),
@@ -215,7 +215,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 	"ps-sz-14": func(c *publishedCase) figures {
 		fs := c.in("f_sw_hz")
 		return figures{ours: map[string]float64{
-			"duty_ratio": sizing.IdealDuty(c.in("v_in_v"), c.in("v_out_v")), "i_l_pp_a": ripple(c, "v_in_v", "v_out_v", "l_h"),
+			"duty_ratio": sizing.IdealDuty(c.in("v_in_v"), c.in("v_out_v")), "i_l_pp_a": ripple(c, "v_in_v", "l_h"),
 			"c_in_min_f": inputRipple(c.in("i_out_a"), 0.5, fs, 1, 0) / c.in("v_in_pp_v"),
 			// Two periods of inaction, for the step of 0.46 A that the print's result needs.
 			"c_out_as_printed_f": sizing.CapacitanceForWaiting(0.46, 2/fs, c.in("v_dev_v")),
@@ -235,7 +235,7 @@ var publishedSizing = map[string]func(*publishedCase) figures{
 			"v_out_pp_ratio": sizing.OutputRipple(di, c.in("duty_ratio"), c.in("f_sw_hz"), c.in("c_f"), 0) / vo,
 		}}
 	},
-	"ps-sz-17": func(c *publishedCase) figures { return discontinuous(c) },
+	"ps-sz-17": discontinuous,
 	"ps-sz-18": func(c *publishedCase) figures {
 		vo := c.in("v_out_v")
 		i := c.in("p_out_min_w") / vo

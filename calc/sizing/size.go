@@ -11,8 +11,18 @@ import (
 // on: lower resistances, then larger inductors, which have less ripple and core loss.
 // The last one serves inputs that are hardly above the output.
 var trials = [...]trial{
-	{1, 1}, {0.7, 1}, {0.5, 1}, {0.35, 1}, {0.25, 1}, {0.17, 1}, {0.12, 1},
-	{0.25, 1.8}, {0.12, 1.8}, {0.25, 3.2}, {0.12, 3.2}, {0.12, 5.6},
+	{1, 1},
+	{0.7, 1},
+	{0.5, 1},
+	{0.35, 1},
+	{0.25, 1},
+	{0.17, 1},
+	{0.12, 1},
+	{0.25, 1.8},
+	{0.12, 1.8},
+	{0.25, 3.2},
+	{0.12, 3.2},
+	{0.12, 5.6},
 	{0.06, 1},
 }
 
