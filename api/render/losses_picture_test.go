@@ -56,3 +56,12 @@ func TestPictureOfASweep(t *testing.T) {
 	a := answer[*wire.SizingAnswer](t, "sizing", body)
 	show(t, "sweep", render.SweepPicture(a))
 }
+
+func TestPicturesOfCorners(t *testing.T) {
+	for _, rail := range rails {
+		a := answer[*wire.CornersAnswer](t, "corners", changed(t, rail+"/corners.json", map[string]string{"methods": `["extreme-value","root-sum-square","monte-carlo","attribution"]`, "attribution_samples": "256", "samples": "2000"}))
+		show(t, rail+"-corners", render.CornersPicture(a))
+		show(t, rail+"-tornado", render.Tornado(a, ""))
+		show(t, rail+"-histogram", render.HistogramPicture(a, "output_ripple_pp_v"))
+	}
+}

@@ -64,9 +64,8 @@ func (p *Picture) size(width int) (w, h vg.Length) {
 	return w, h
 }
 
-// draw paints the picture over the whole canvas.
+// draw paints the picture over the whole canvas, which has the background.
 func (p *Picture) draw(c draw.Canvas) {
-	fill(c, paper, c.Rectangle)
 	in := draw.Crop(c, pictureMargin, -pictureMargin, pictureMargin, -pictureMargin)
 	width := in.Max.X - in.Min.X
 	title, subtitle, note := p.lines(width)

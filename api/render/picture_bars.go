@@ -39,7 +39,7 @@ var (
 )
 
 func (b *bars) height(width vg.Length) vg.Length {
-	h := vg.Length(len(b.rows))*barStep + tickLength + 2*lineStep(smallInk)
+	h := b.rowsHeight(width) + tickLength + 2*lineStep(smallInk)
 	if lines := flow(b.legend, width); len(lines) > 0 {
 		h += vg.Length(len(lines))*legendStep + px(4)
 	}
@@ -58,16 +58,43 @@ func (b *bars) marked() bool {
 	return false
 }
 
-// columns returns the widths of names and figures: as wide as their texts, and
-// never so wide that the bars have no room.
-func (b *bars) columns(width vg.Length) (names, figures vg.Length) {
+// stacked tells that names leave no room for bars beside them: they stand above.
+func (b *bars) stacked(width vg.Length) bool {
+	names, figures := b.textWidths()
+	return names+figures > 0.62*width
+}
+
+func (b *bars) step(r *bar, width vg.Length) vg.Length {
+	if b.stacked(width) && !r.heading {
+		return 2*barStep - px(4)
+	}
+	return barStep
+}
+
+func (b *bars) rowsHeight(width vg.Length) (h vg.Length) {
+	for i := range b.rows {
+		h += b.step(&b.rows[i], width)
+	}
+	return h
+}
+
+func (b *bars) textWidths() (names, figures vg.Length) {
 	for _, r := range b.rows {
 		if !r.heading {
 			names = max(names, bodyInk.Width(plain(r.name)))
 		}
 		figures = max(figures, bodyInk.Width(r.figures))
 	}
-	return min(names+px(20), 0.42*width), min(figures+px(10), 0.34*width)
+	return names + px(20), figures + px(10)
+}
+
+// columns returns the widths beside the bars of names and figures.
+func (b *bars) columns(width vg.Length) (names, figures vg.Length) {
+	names, figures = b.textWidths()
+	if b.stacked(width) {
+		return px(8), min(figures, 0.5*width)
+	}
+	return names, figures
 }
 
 func (b *bars) draw(c draw.Canvas) {
@@ -82,20 +109,31 @@ func (b *bars) draw(c draw.Canvas) {
 	if b.marked() {
 		top -= lineStep(limitInk) + px(2)
 	}
-	field := vg.Rectangle{Min: vg.Point{X: c.Min.X + names, Y: top - vg.Length(len(b.rows))*barStep}, Max: vg.Point{X: c.Max.X - figures, Y: top}}
+	field := vg.Rectangle{Min: vg.Point{X: c.Min.X + names, Y: top - b.rowsHeight(width)}, Max: vg.Point{X: c.Max.X - figures, Y: top}}
 	x := b.scale.along(field.Min.X, field.Max.X)
 	b.grid(c, field, x)
 	at := x(b.base)
 	c.StrokeLine2(stroke(axisTone, 1.2), at, field.Min.Y, at, field.Max.Y)
-	for i, r := range b.rows {
-		y := top - (vg.Length(i)+0.5)*barStep
-		if r.heading {
-			b.heading(c, &r, y)
-			continue
+	y := top
+	for i := range b.rows {
+		r := &b.rows[i]
+		step := b.step(r, width)
+		middle := y - step + barStep/2
+		switch {
+		case r.heading:
+			b.heading(c, r, middle)
+		case step > barStep:
+			name := clip(bodyInk, r.name, width-px(8))
+			fill(c, paper, vg.Rectangle{Min: vg.Point{X: c.Min.X, Y: y - barStep + px(3)}, Max: vg.Point{X: c.Min.X + px(12) + bodyInk.Width(name), Y: y}})
+			write(c, bodyInk, c.Min.X+px(8), y-barStep/2, draw.XLeft, name)
+			b.row(c, r, middle+px(3), x)
+			write(c, bodyInk, c.Max.X, middle+px(3), draw.XRight, clip(bodyInk, r.figures, figures))
+		default:
+			write(c, bodyInk, c.Min.X+px(8), middle, draw.XLeft, r.name)
+			b.row(c, r, middle, x)
+			write(c, bodyInk, c.Max.X, middle, draw.XRight, r.figures)
 		}
-		write(c, bodyInk, c.Min.X+px(8), y, draw.XLeft, clip(bodyInk, r.name, names-px(14)))
-		write(c, bodyInk, c.Max.X, y, draw.XRight, clip(bodyInk, r.figures, figures))
-		b.row(c, &r, y, x)
+		y -= step
 	}
 	b.lines(c, field, markY, x)
 }
@@ -126,7 +164,7 @@ func (b *bars) row(c draw.Canvas, r *bar, y vg.Length, x func(float64) vg.Length
 }
 
 func (b *bars) grid(c draw.Canvas, field vg.Rectangle, x func(float64) vg.Length) {
-	for _, t := range spaced(b.scale.ticks(max(2, int((field.Max.X-field.Min.X)/px(70)))), x) {
+	for _, t := range spaced(b.scale.ticks(max(2, int((field.Max.X-field.Min.X)/px(50)))), x) {
 		at := x(t.at)
 		if t.label == "" {
 			continue

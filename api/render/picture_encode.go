@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/xml"
 	"fmt"
+	"image"
 	"image/color"
 	"image/png"
 
@@ -19,7 +20,9 @@ func (p *Picture) SVG(width int) []byte {
 	width = bound(width)
 	w, h := p.size(width)
 	canvas := vgsvg.New(w, h)
-	p.draw(draw.New(canvas))
+	whole := draw.New(canvas)
+	fill(whole, paper, whole.Rectangle)
+	p.draw(whole)
 	var raw, out bytes.Buffer
 	// a buffer takes every write; an error cannot come up
 	_, _ = canvas.WriteTo(&raw)
@@ -55,12 +58,42 @@ func (p *Picture) PNG(width int) []byte {
 	if width > 1200 {
 		dots = 96
 	}
-	canvas := vgimg.NewWith(vgimg.UseWH(w, h), vgimg.UseDPI(dots))
+	canvas := vgimg.NewWith(vgimg.UseWH(w, h), vgimg.UseDPI(dots), vgimg.UseBackgroundColor(paper))
 	p.draw(draw.New(canvas))
 	var out bytes.Buffer
 	encoder := png.Encoder{CompressionLevel: png.BestSpeed}
-	_ = encoder.Encode(&out, canvas.Image())
+	_ = encoder.Encode(&out, paletted(canvas.Image().(*image.RGBA)))
 	return out.Bytes()
+}
+
+// paletted makes an index image of an opaque one, of as many tones as a byte can
+// name. Tones that agree in the leading five bits of each channel become the first
+// of them; beyond 256 the nearest is taken. Lines and letters do not suffer, and
+// it is encoded several times faster.
+func paletted(m *image.RGBA) *image.Paletted {
+	const unseen = -1
+	var index [1 << 15]int16
+	for i := range index {
+		index[i] = unseen
+	}
+	out := image.NewPaletted(m.Rect, make(color.Palette, 0, 256))
+	for i, k := 0, 0; i+3 < len(m.Pix); i, k = i+4, k+1 {
+		r, g, b := m.Pix[i], m.Pix[i+1], m.Pix[i+2]
+		key := int(r>>3)<<10 | int(g>>3)<<5 | int(b>>3)
+		at := index[key]
+		if at == unseen {
+			tone := color.RGBA{r, g, b, 255}
+			at = int16(len(out.Palette))
+			if at < 256 {
+				out.Palette = append(out.Palette, tone)
+			} else {
+				at = int16(out.Palette.Index(tone))
+			}
+			index[key] = at
+		}
+		out.Pix[k] = uint8(at)
+	}
+	return out
 }
 
 func fill(c draw.Canvas, tone color.Color, r vg.Rectangle) {

@@ -11,14 +11,14 @@ import (
 // panel draws curves over a common horizontal scale: a head with the quantity and
 // the names of the curves, the curves, and the labels of the scale below.
 type panel struct {
-	x, y   scale
-	tall   vg.Length // of the field of curves
-	curves []curve
-	marks  []mark
-	areas  []area
-	inset  *panel
-	bareX  bool // the panel below has the labels
-	gutter vg.Length
+	x, y    scale
+	tall    vg.Length // of the field of curves
+	curves  []curve
+	marks   []mark
+	columns *columns
+	inset   *panel
+	bareX   bool // the panel below has the labels
+	gutter  vg.Length
 }
 
 // curve is a line through points; NaN interrupts it.
@@ -37,8 +37,16 @@ type mark struct {
 	limit bool
 }
 
-// area is a shaded band between two values of y.
-type area struct{ from, to float64 }
+// columns stand on the lower edge of the field, one between each pair of edges.
+type columns struct{ edges, tall []float64 }
+
+func (k *columns) draw(f draw.Canvas, x, y func(float64) vg.Length) {
+	for i, v := range k.tall {
+		if v > 0 {
+			fill(f, seriesTones[5], vg.Rectangle{Min: vg.Point{X: x(k.edges[i]), Y: y(0)}, Max: vg.Point{X: x(k.edges[i+1]) - px(0.6), Y: y(v)}})
+		}
+	}
+}
 
 var (
 	tickLength  = px(4)
@@ -101,11 +109,10 @@ func (p *panel) draw(c draw.Canvas) {
 	}
 	f := draw.Canvas{Canvas: c.Canvas, Rectangle: field}
 	x, y := p.x.along(field.Min.X, field.Max.X), p.y.along(field.Min.Y, field.Max.Y)
-	for _, a := range p.areas {
-		lo, hi := min(max(y(a.from), field.Min.Y), field.Max.Y), min(max(y(a.to), field.Min.Y), field.Max.Y)
-		fill(f, faintTone, vg.Rectangle{Min: vg.Point{X: field.Min.X, Y: lo}, Max: vg.Point{X: field.Max.X, Y: hi}})
-	}
 	p.grid(f, x, y)
+	if p.columns != nil {
+		p.columns.draw(f, x, y)
+	}
 	for i := range p.curves {
 		drawCurve(f, &p.curves[i], x, y, p)
 	}

@@ -103,7 +103,7 @@ func (s *scale) ticks(fit int) []tick {
 		}
 	}
 	factor, _ := s.prefix()
-	step := nice((s.greatest - s.least) / float64(max(fit, 1)))
+	step := s.step((s.greatest - s.least) / float64(max(fit, 1)))
 	decimals := max(0, -int(math.Floor(math.Log10(step*factor)+1e-9)))
 	var list []tick
 	for i := math.Ceil(s.least/step - 1e-9); i*step <= s.greatest+1e-9*step; i++ {
@@ -155,6 +155,18 @@ func trimmed(s string) string {
 		return number
 	}
 	return number + " " + unit
+}
+
+// step rounds a distance of labels up to one that reads well.
+func (s *scale) step(least float64) float64 {
+	if s.unit == "deg" && least > 5 {
+		for _, degrees := range []float64{15, 30, 45, 90, 180, 360} {
+			if least <= degrees {
+				return degrees
+			}
+		}
+	}
+	return nice(least)
 }
 
 // nice rounds a step up to 1, 2 or 5 times a power of ten.
