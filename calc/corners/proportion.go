@@ -69,7 +69,11 @@ func twoSidedScore(confidence float64) float64 {
 	return distuv.UnitNormal.Quantile((1 + confidence) / 2)
 }
 
-// studentHalfWidth returns the factor on a standard error from r replicates.
+// studentHalfWidth returns the factor on a standard error from r replicates, NaN
+// from one: it tells nothing of its own error.
 func studentHalfWidth(r int, confidence float64) float64 {
+	if r < 2 {
+		return math.NaN()
+	}
 	return distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(r - 1)}.Quantile((1 + confidence) / 2)
 }
