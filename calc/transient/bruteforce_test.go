@@ -78,9 +78,12 @@ func (x *plain) step(s *[5]float64, h float64) {
 // run integrates from the state with the load stepping to another value, and
 // returns the extremes of the output after the step and the greatest current.
 func (x *plain) run(s [5]float64, stepAt, to, until float64) (least, greatest, peak float64) {
-	const substeps = 4000
+	substeps := 4000
+	if testing.Short() {
+		substeps = 1000
+	}
 	period := x.p.Circuit.Period
-	h := period / substeps
+	h := period / float64(substeps)
 	least, greatest = math.Inf(1), math.Inf(-1)
 	for n := 0; float64(n)*h < until; n++ {
 		at := float64(n) * h
@@ -97,11 +100,11 @@ func (x *plain) run(s [5]float64, stepAt, to, until float64) (least, greatest, p
 		case x.held > 0 && push < 0, x.held < 0 && push > 0:
 			x.held = 0
 		}
-		ramp := x.p.Modulator.Ramp * float64(phase) / substeps
+		ramp := x.p.Modulator.Ramp * float64(phase) / float64(substeps)
 		if phase == 0 {
 			x.on = ramp < vc
 		}
-		if x.on && (ramp >= vc || s[0] >= x.p.Modulator.CurrentLimit || float64(phase) >= x.b.MaxDuty*substeps) {
+		if x.on && (ramp >= vc || s[0] >= x.p.Modulator.CurrentLimit || float64(phase) >= x.b.MaxDuty*float64(substeps)) {
 			x.on = false
 		}
 		if at >= stepAt {
@@ -156,10 +159,13 @@ func TestLargeStepsAgainstPlainIntegration(t *testing.T) {
 			x := plain{p: &p, b: b, load: c.from, vref: p.Feedback.Reference}
 			least, greatest, peak := x.run(s, at, c.to, setup.Duration)
 			// The plain integration sees edges on its own grid, 1/4000 of a period.
-			scale := greatest - least
-			require.InDelta(t, least, o.Lowest.Value, 5e-3*scale)
-			require.InDelta(t, greatest, o.Highest.Value, 5e-3*scale)
-			require.InDelta(t, peak, o.InductorPeak.Value, 5e-3*peak)
+			tolerance, scale := 5e-3, greatest-least
+			if testing.Short() {
+				tolerance = 0.02
+			}
+			require.InDelta(t, least, o.Lowest.Value, tolerance*scale)
+			require.InDelta(t, greatest, o.Highest.Value, tolerance*scale)
+			require.InDelta(t, peak, o.InductorPeak.Value, tolerance*peak)
 		})
 	}
 }
