@@ -9,6 +9,7 @@ import (
 	"net/http"
 	"net/http/httptest"
 	"testing"
+	"time"
 
 	"github.com/stretchr/testify/require"
 
@@ -22,9 +23,14 @@ var contract = openapi.Load()
 // server starts the real handler on a loopback port.
 func server(t testing.TB) string {
 	t.Helper()
-	s := httptest.NewServer(api.New(api.Options{Service: service.New(service.Options{ContractVersion: contract.Version()})}))
+	s := httptest.NewServer(handler())
 	t.Cleanup(s.Close)
 	return s.URL
+}
+
+// handler is the real thing, with time for machines that do much else at once.
+func handler() http.Handler {
+	return api.New(api.Options{Service: service.New(service.Options{ContractVersion: contract.Version()}), Deadline: 10 * time.Minute})
 }
 
 type reply struct {
