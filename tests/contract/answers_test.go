@@ -225,3 +225,29 @@ func TestCallersIdentifierIsKeptIfHarmless(t *testing.T) {
 	require.Equal(t, string(first.body), string(second.body), "the identifier is no part of the answer")
 	require.Regexp(t, "compute;dur=", send(t, "POST", at+"/v1/losses?timings=true", []byte(minimal)).header.Get("Server-Timing"))
 }
+
+func TestExplanationsOnRequest(t *testing.T) {
+	at := server(t)
+	for path, example := range map[string]string{"/v1/losses": "buoy-5v0/losses.json", "/v1/sizing": "buoy-5v0/sizing.json"} {
+		body := exampleRequest(t, example)
+		plain := send(t, "POST", at+path, body)
+		require.NotContains(t, string(plain.body), `"explanation"`)
+		r := send(t, "POST", at+path+"?explain=true", body)
+		require.Equal(t, 200, r.status, "%s", r.body)
+		op, _ := operationOf(path + ".json")
+		declared(t, op.ID, r)
+		var a struct {
+			Explanation []struct {
+				Quantity string  `json:"quantity"`
+				Inserted string  `json:"inserted"`
+				Value    float64 `json:"value"`
+			} `json:"explanation"`
+		}
+		require.NoError(t, json.Unmarshal(r.body, &a))
+		require.Greater(t, len(a.Explanation), 10, path)
+		for _, e := range a.Explanation {
+			require.NotEmpty(t, e.Inserted, e.Quantity)
+		}
+		require.Equal(t, string(plain.body), string(send(t, "POST", at+path, body).body), "an explanation is not kept")
+	}
+}
