@@ -4,154 +4,130 @@ import (
 	"fmt"
 	"math"
 	"regexp"
-	"strings"
+
+	"github.com/getkin/kin-openapi/openapi3"
 )
 
 // compiler turns the schemas of the contract into nodes, each component once.
 type compiler struct {
-	document   map[string]any
 	components map[string]*node
 }
 
 const componentPrefix = "#/components/schemas/"
 
-// schema compiles one schema. It panics on what the contract may not use: the
-// contract is part of the program and tests load it.
-func (k *compiler) schema(v any) *node {
-	s := v.(map[string]any)
-	if ref, ok := s["$ref"].(string); ok {
-		return k.component(ref)
-	}
-	n := new(node)
-	k.fill(n, s)
-	return n
-}
-
-// component compiles a component that a reference names. A component that
-// contains itself finds its own node here.
-func (k *compiler) component(ref string) *node {
-	if n := k.components[ref]; n != nil {
+// schema compiles one schema, a component by its reference. A component that
+// contains itself finds its own node here. It panics on what the contract may
+// not use: the contract is part of the program and tests load it.
+func (k *compiler) schema(ref *openapi3.SchemaRef) *node {
+	if ref.Ref == "" {
+		n := new(node)
+		k.fill(n, ref.Value)
 		return n
 	}
-	s, ok := resolve(k.document, ref).(map[string]any)
-	if !ok {
-		panic("openapi: nothing at " + ref)
+	if n := k.components[ref.Ref]; n != nil {
+		return n
 	}
 	n := new(node)
-	k.components[ref] = n
-	k.fill(n, s)
+	k.components[ref.Ref] = n
+	k.fill(n, ref.Value)
 	return n
 }
 
-// resolve follows a local reference such as #/components/schemas/Stage.
-func resolve(document map[string]any, ref string) any {
-	at := any(document)
-	for name := range strings.SplitSeq(strings.TrimPrefix(ref, "#/"), "/") {
-		o, _ := at.(map[string]any)
-		at = o[name]
-	}
-	return at
-}
-
-var keywords = map[string]bool{
-	"type": true, "format": true, "description": true, "enum": true, "pattern": true, "items": true, "properties": true, "required": true,
-	"additionalProperties": true, "oneOf": true, "minimum": true, "maximum": true, "minLength": true, "maxLength": true, "minItems": true,
-	"maxItems": true, "minProperties": true, "maxProperties": true, "x-unit": true, "x-unit-of": true, "x-spread": true, "x-expression": true,
-}
-
-func (k *compiler) fill(n *node, s map[string]any) {
-	for word := range s {
-		if !keywords[word] {
+// refuse panics on the keywords that the compiled check does not know.
+func refuse(s *openapi3.Schema) {
+	for word, used := range map[string]bool{
+		"allOf": len(s.AllOf) > 0, "anyOf": len(s.AnyOf) > 0, "not": s.Not != nil, "default": s.Default != nil,
+		"uniqueItems": s.UniqueItems, "exclusiveMinimum": s.ExclusiveMin.IsSet(), "exclusiveMaximum": s.ExclusiveMax.IsSet(),
+		"nullable": s.Nullable, "readOnly": s.ReadOnly, "writeOnly": s.WriteOnly, "multipleOf": s.MultipleOf != nil,
+		"discriminator": s.Discriminator != nil, "const": s.Const != nil,
+	} {
+		if used {
 			panic(fmt.Sprintf("openapi: the contract uses the schema keyword %q, which the compiled check does not know", word))
 		}
 	}
+}
+
+func (k *compiler) fill(n *node, s *openapi3.Schema) {
+	refuse(s)
 	n.min, n.max, n.maxSize = math.Inf(-1), math.Inf(1), -1
-	n.unit, _ = s["x-unit"].(string)
-	n.spread, _ = s["x-spread"].(bool)
-	if branches, ok := s["oneOf"].([]any); ok {
-		k.union(n, branches)
-		return
-	}
-	switch s["type"] {
-	case "object":
+	n.unit, _ = s.Extensions["x-unit"].(string)
+	n.spread, _ = s.Extensions["x-spread"].(bool)
+	switch {
+	case len(s.OneOf) > 0:
+		k.union(n, s.OneOf)
+	case s.Type == nil:
+	case s.Type.Is("object"):
 		n.kind = object
-		n.size(s, "Properties")
+		n.size(s.MinProps, s.MaxProps)
 		k.members(n, s)
-	case "array":
+	case s.Type.Is("array"):
 		n.kind = array
-		n.size(s, "Items")
-		if items, ok := s["items"]; ok {
-			n.items = k.schema(items)
+		n.size(s.MinItems, s.MaxItems)
+		if s.Items != nil {
+			n.items = k.schema(s.Items)
 		}
-	case "string":
+	case s.Type.Is("string"):
 		n.kind = text
-		n.size(s, "Length")
+		n.size(s.MinLength, s.MaxLength)
 		n.words(s)
-	case "number", "integer":
+	case s.Type.Is("number"), s.Type.Is("integer"):
 		n.kind = number
-		n.integer = s["type"] == "integer"
-		if v, ok := s["minimum"].(float64); ok {
-			n.min = v
+		n.integer = s.Type.Is("integer")
+		if s.Min != nil {
+			n.min = *s.Min
 		}
-		if v, ok := s["maximum"].(float64); ok {
-			n.max = v
+		if s.Max != nil {
+			n.max = *s.Max
 		}
-	case "boolean":
+	case s.Type.Is("boolean"):
 		n.kind = boolean
-	case nil:
 	default:
-		panic(fmt.Sprintf("openapi: the contract uses the type %v", s["type"]))
+		panic(fmt.Sprintf("openapi: the contract uses the type %v", s.Type.Slice()))
 	}
 }
 
-func (n *node) size(s map[string]any, keyword string) {
-	if v, ok := s["min"+keyword].(float64); ok {
-		n.minSize = int(v)
-	}
-	if v, ok := s["max"+keyword].(float64); ok {
-		n.maxSize = int(v)
+func (n *node) size(least uint64, most *uint64) {
+	n.minSize = int(least)
+	if most != nil {
+		n.maxSize = int(*most)
 	}
 }
 
-func (n *node) words(s map[string]any) {
-	if p, ok := s["pattern"].(string); ok {
-		n.pattern = regexp.MustCompile(p)
+func (n *node) words(s *openapi3.Schema) {
+	if s.Pattern != "" {
+		n.pattern = regexp.MustCompile(s.Pattern)
 	}
-	values, ok := s["enum"].([]any)
-	if !ok {
+	if len(s.Enum) == 0 {
 		return
 	}
-	n.enumSet = make(map[string]struct{}, len(values))
-	for _, v := range values {
+	n.enumSet = make(map[string]struct{}, len(s.Enum))
+	for _, v := range s.Enum {
 		n.enum = append(n.enum, v.(string))
 		n.enumSet[v.(string)] = struct{}{}
 	}
 }
 
-func (k *compiler) members(n *node, s map[string]any) {
-	switch extra := s["additionalProperties"].(type) {
-	case bool:
-		n.closed = !extra
-	case map[string]any:
-		n.extra = k.schema(extra)
+func (k *compiler) members(n *node, s *openapi3.Schema) {
+	if extra := s.AdditionalProperties; extra.Schema != nil {
+		n.extra = k.schema(extra.Schema)
+	} else if extra.Has != nil {
+		n.closed = !*extra.Has
 	}
-	properties, _ := s["properties"].(map[string]any)
-	n.properties = make(map[string]*node, len(properties))
-	n.order = sortedNames(properties)
-	for name, p := range properties {
+	n.properties = make(map[string]*node, len(s.Properties))
+	n.order = sortedNames(s.Properties)
+	for name, p := range s.Properties {
 		n.properties[name] = k.schema(p)
 	}
-	required, _ := s["required"].([]any)
-	for _, name := range required {
-		if n.properties[name.(string)] == nil {
+	for _, name := range s.Required {
+		if n.properties[name] == nil {
 			panic(fmt.Sprintf("openapi: the contract requires %q, which is no property", name))
 		}
-		n.required = append(n.required, name.(string))
+		n.required = append(n.required, name)
 	}
 }
 
 // union compiles alternatives that differ in their JSON type.
-func (k *compiler) union(n *node, branches []any) {
+func (k *compiler) union(n *node, branches openapi3.SchemaRefs) {
 	n.kind = union
 	accepts := make([]string, 0, len(branches))
 	for _, b := range branches {

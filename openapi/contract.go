@@ -3,12 +3,13 @@ package openapi
 import (
 	"cmp"
 	_ "embed"
-	"encoding/json"
 	"fmt"
 	"slices"
 	"strconv"
 	"strings"
 	"sync"
+
+	"github.com/getkin/kin-openapi/openapi3"
 )
 
 //go:embed openapi.yaml
@@ -63,9 +64,9 @@ type Contract struct {
 func Load() *Contract { return load() }
 
 var load = sync.OnceValue(func() *Contract {
-	var document map[string]any
-	if err := json.Unmarshal(jsonBytes, &document); err != nil {
-		panic(fmt.Sprintf("openapi: the contract is no JSON: %v", err))
+	document, err := openapi3.NewLoader().LoadFromData(jsonBytes)
+	if err != nil {
+		panic(fmt.Sprintf("openapi: the contract cannot be read: %v", err))
 	}
 	return compile(document)
 })
@@ -138,13 +139,12 @@ func (c *Contract) component(name string) *node {
 }
 
 // compile compiles every operation of the document.
-func compile(document map[string]any) *Contract {
-	k := compiler{document: document, components: map[string]*node{}}
-	c := &Contract{byID: map[string]*operation{}, components: k.components}
-	c.version, _ = document["info"].(map[string]any)["version"].(string)
-	for path, item := range document["paths"].(map[string]any) {
-		for method, o := range item.(map[string]any) {
-			op := k.operation(strings.ToUpper(method), path, o.(map[string]any))
+func compile(document *openapi3.T) *Contract {
+	k := compiler{components: map[string]*node{}}
+	c := &Contract{byID: map[string]*operation{}, components: k.components, version: document.Info.Version}
+	for path, item := range document.Paths.Map() {
+		for method, o := range item.Operations() {
+			op := k.operation(method, path, o)
 			c.byID[op.ID] = op
 			c.operations = append(c.operations, op.Operation)
 		}

@@ -90,10 +90,3 @@ func TestExamplesOfOneRailShareItsStage(t *testing.T) {
 		stages[rail] = stage
 	})
 }
-
-func contractTree(t testing.TB) map[string]any {
-	t.Helper()
-	var document map[string]any
-	require.NoError(t, json.Unmarshal(jsonBytes, &document))
-	return document
-}

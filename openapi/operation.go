@@ -4,6 +4,8 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+
+	"github.com/getkin/kin-openapi/openapi3"
 )
 
 const (
@@ -11,48 +13,44 @@ const (
 	mediaProblem = "application/problem+json"
 )
 
-func (k *compiler) operation(method, path string, o map[string]any) *operation {
+func (k *compiler) operation(method, path string, o *openapi3.Operation) *operation {
 	op := &operation{responses: map[int]*node{}}
-	op.ID, op.Method, op.Path = o["operationId"].(string), method, path
-	op.Summary, _ = o["summary"].(string)
-	for _, p := range list(o["parameters"]) {
-		k.parameter(op, k.deref(p))
+	op.ID, op.Method, op.Path, op.Summary = o.OperationID, method, path, o.Summary
+	for _, p := range o.Parameters {
+		k.parameter(op, p.Value)
 	}
-	if body, ok := o["requestBody"]; ok {
-		media := k.deref(body)["content"].(map[string]any)[mediaJSON].(map[string]any)
-		op.request = k.schema(media["schema"])
+	if o.RequestBody != nil {
+		media := o.RequestBody.Value.Content[mediaJSON]
+		op.request = k.schema(media.Schema)
 		op.Example = example(media)
 	}
-	for code, r := range o["responses"].(map[string]any) {
+	for code, r := range o.Responses.Map() {
 		status, err := strconv.Atoi(code)
 		if err != nil {
 			panic("openapi: the contract declares the status " + code)
 		}
 		op.Statuses = append(op.Statuses, status)
-		k.response(op, status, k.deref(r))
+		k.response(op, status, r.Value.Content)
 	}
 	slices.Sort(op.Statuses)
 	return op
 }
 
-func (k *compiler) parameter(op *operation, p map[string]any) {
-	required, _ := p["required"].(bool)
-	parameter := Parameter{Name: p["name"].(string), Required: required, schema: k.schema(p["schema"])}
-	switch p["in"] {
-	case "query":
+func (k *compiler) parameter(op *operation, p *openapi3.Parameter) {
+	parameter := Parameter{Name: p.Name, Required: p.Required, schema: k.schema(p.Schema)}
+	switch p.In {
+	case openapi3.ParameterInQuery:
 		op.Query = append(op.Query, parameter)
-	case "path":
+	case openapi3.ParameterInPath:
 		op.InPath = append(op.InPath, parameter)
 	}
 }
 
-func (k *compiler) response(op *operation, status int, r map[string]any) {
+func (k *compiler) response(op *operation, status int, content openapi3.Content) {
 	op.responses[status] = nil
-	content, _ := r["content"].(map[string]any)
 	for _, form := range [...]string{mediaJSON, mediaProblem} {
-		media, _ := content[form].(map[string]any)
-		if s, ok := media["schema"]; ok {
-			op.responses[status] = k.schema(s)
+		if media := content[form]; media != nil && media.Schema != nil {
+			op.responses[status] = k.schema(media.Schema)
 			break
 		}
 	}
@@ -72,25 +70,10 @@ func order(later bool) int {
 	return 0
 }
 
-// deref follows the reference of a parameter, body or response.
-func (k *compiler) deref(v any) map[string]any {
-	o := v.(map[string]any)
-	if ref, ok := o["$ref"].(string); ok {
-		return resolve(k.document, ref).(map[string]any)
-	}
-	return o
-}
-
-func list(v any) []any {
-	l, _ := v.([]any)
-	return l
-}
-
 // example returns the first named example of a body.
-func example(media map[string]any) map[string]any {
-	examples, _ := media["examples"].(map[string]any)
-	for _, name := range sortedNames(examples) {
-		value, _ := examples[name].(map[string]any)["value"].(map[string]any)
+func example(media *openapi3.MediaType) map[string]any {
+	for _, name := range sortedNames(media.Examples) {
+		value, _ := media.Examples[name].Value.Value.(map[string]any)
 		return value
 	}
 	return nil

@@ -178,7 +178,7 @@ func sharedWithRequests(t *testing.T) map[string]bool {
 				name := strings.TrimPrefix(ref, componentPrefix)
 				if !found[name] {
 					found[name] = true
-					follow(resolve(document, ref))
+					follow(document["components"].(map[string]any)["schemas"].(map[string]any)[name])
 				}
 			}
 			for _, child := range v {

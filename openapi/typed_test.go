@@ -138,7 +138,7 @@ func sorted(s []string) []string {
 
 // Plans are made once and shared by goroutines.
 func TestGoValuesCheckedInParallel(t *testing.T) {
-	c := compile(contractTree(t))
+	c := compile(loadGeneral(t))
 	a := newAnswer(3)
 	var wg sync.WaitGroup
 	for range 8 {
