@@ -8,6 +8,8 @@ import (
 	"net/http"
 	"net/http/httptest"
 	"slices"
+	"strconv"
+	"strings"
 	"testing"
 	"time"
 
@@ -40,14 +42,28 @@ func serve(b testing.TB, h http.Handler, path string, body []byte) *httptest.Res
 	return w
 }
 
+// fresh returns requests that differ in the load current, so that none is answered
+// from kept results.
+func fresh(b testing.TB) func() []byte {
+	b.Helper()
+	before, after, found := strings.Cut(string(example(b, "buoy-5v0/losses.json")), `"current_a": 6`)
+	require.True(b, found)
+	n := 0
+	return func() []byte {
+		n++
+		return []byte(before + `"current_a": ` + strconv.FormatFloat(6-1e-6*float64(n), 'g', -1, 64) + after)
+	}
+}
+
 // BenchmarkLossesOnePoint is the server time of one point, both validations
 // included; the median is reported beside the mean.
 func BenchmarkLossesOnePoint(b *testing.B) {
-	h, body := handler(), example(b, "buoy-5v0/losses.json")
-	serve(b, h, "/v1/losses", body)
+	h, next := handler(), fresh(b)
+	serve(b, h, "/v1/losses", next())
 	b.ReportAllocs()
 	took := make([]time.Duration, 0, 1<<16)
 	for b.Loop() {
+		body := next()
 		start := time.Now()
 		serve(b, h, "/v1/losses", body)
 		took = append(took, time.Since(start))
