@@ -37,6 +37,11 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		c.Set(resultKey, request.ResultID)
 		explained := c.QueryParam("explain") == "true" // more than the result that is kept
 		request.Explain = explained
+		drawn := exchange.Drawn(form)
+		if drawn {
+			request.Draw(view(c))
+			c.Response().Header().Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; style-src 'unsafe-inline'; frame-ancestors 'none'")
+		}
 		if kept, found := a.results.Get(request.ResultID); found && kept.Media == form && !explained && c.QueryParam("timings") != "true" {
 			return sent(c, form, kept.Body, nil)
 		}
@@ -48,7 +53,7 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		if problem != nil {
 			return refusal{problem}
 		}
-		if kept, problem := answer.Kept(); problem == nil && !explained {
+		if kept, problem := answer.Kept(); problem == nil && !explained && !drawn {
 			a.results.Put(answer.ResultID, kept)
 		}
 		return sent(c, form, text, answer.Timings)

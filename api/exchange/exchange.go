@@ -29,6 +29,7 @@ type Answer struct {
 	Body      []byte   // JSON, one line
 	ResultID  string   // empty for dictionaries
 	Timings   []Timing // outside the result
+	view      View
 }
 
 // Timing is the time one step took.
@@ -48,6 +49,7 @@ type Request struct {
 	Operation string
 	ResultID  string // names the answer
 	Explain   bool   // tell how the figures follow, beside the answer
+	view      View
 	tree      any
 	watch     stopwatch
 }
@@ -89,7 +91,7 @@ func (x *Exchange) Answer(ctx context.Context, r *Request) (*Answer, *Problem) {
 	if problem != nil {
 		return nil, problem
 	}
-	a.ResultID = r.ResultID
+	a.ResultID, a.view = r.ResultID, r.view
 	return a, nil
 }
 

@@ -10,9 +10,12 @@ import (
 	"railproof/api/wire"
 )
 
-// LossBreakdown draws the losses of an item by part and mechanism; nil if it has
-// none.
+// LossBreakdown draws the losses of an item by part and mechanism; nil if there is
+// no such item or it has none.
 func LossBreakdown(a *wire.LossesAnswer, item int) *Picture {
+	if item >= len(a.Items) {
+		return nil
+	}
 	it := &a.Items[item]
 	if it.Quantities == nil || len(it.Losses) == 0 {
 		return nil

@@ -10,7 +10,10 @@ import (
 )
 
 // strips draws one quantity below the other, each over a scale of its own.
-type strips struct{ rows []strip }
+type strips struct {
+	rows    []strip
+	windows bool // limits and a choice only
+}
 
 // strip is what is known of one quantity, in the unit of its scale; NaN: nothing.
 type strip struct {
@@ -42,6 +45,9 @@ var (
 )
 
 func (s *strips) legend() []legendItem {
+	if s.windows {
+		return []legendItem{{text: "chosen, as it is effective", swatch: true, style: stroke(inkColor, 2)}, {text: "end of the window", swatch: true, style: stroke(limitTone, 2)}}
+	}
 	return []legendItem{
 		{text: "distribution", swatch: true, block: color.RGBA{176, 217, 241, 255}},
 		{text: "root-sum-square", swatch: true, block: linearTone},
