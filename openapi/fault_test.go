@@ -135,7 +135,7 @@ func TestQueryAndPathParameters(t *testing.T) {
 	require.Empty(t, c.ValidateQuery("losses", map[string][]string{"explain": {"true"}}))
 	require.Equal(t, []Fault{{Keyword: "type", Detail: "query parameter explain: of the wrong type", Limit: "true or false", Received: `"yes"`}},
 		c.ValidateQuery("losses", map[string][]string{"explain": {"yes"}}))
-	require.Equal(t, []Fault{{Keyword: "additionalProperties", Detail: "unknown query parameter explian", Limit: "explain, timings", Received: "explian"}},
+	require.Equal(t, []Fault{{Keyword: "additionalProperties", Detail: "unknown query parameter explian", Limit: "explain, timings, picture, quantity, item, width_px", Received: "explian"}},
 		c.ValidateQuery("losses", map[string][]string{"explian": {"true"}}))
 	require.Equal(t, []Fault{{Keyword: "maxItems", Detail: "query parameter explain given more than once", Limit: "one value"}},
 		c.ValidateQuery("losses", map[string][]string{"explain": {"true", "true"}}))
