@@ -66,3 +66,19 @@ func BenchmarkAnalysis300Frequencies(b *testing.B) {
 		})
 	}
 }
+
+func BenchmarkFrequency(b *testing.B) {
+	for name, p := range benchPlants(b) {
+		b.Run(name, func(b *testing.B) {
+			var s Sampled
+			var a Averaged
+			s.Set(&p)
+			a.Set(&p)
+			b.ReportAllocs()
+			for b.Loop() {
+				s.At(20e3)
+				a.At(20e3)
+			}
+		})
+	}
+}

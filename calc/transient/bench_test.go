@@ -42,3 +42,18 @@ func BenchmarkRun(b *testing.B) {
 		}
 	})
 }
+
+func BenchmarkPeriod(b *testing.B) {
+	p := designed(b, solved(b, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{Plant: p, Bounds: bounds(&p), Duration: 1e6 * p.Circuit.Period, Band: 0.025, Saturation: 12, Record: Record{Points: 20000}}
+	e, err := New(&setup)
+	if err != nil {
+		b.Fatal(err)
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		if !e.Advance(1) {
+			b.Fatal("ended")
+		}
+	}
+}
