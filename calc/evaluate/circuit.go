@@ -18,9 +18,9 @@ func (e *Evaluator) setLoad(l stage.Load, copper float64) {
 	e.circuit.Current = l.Current * share
 }
 
-// setCircuit gives every element of the circuit its value at the parts' present
-// temperatures, the bias voltages and the present inductance.
-func (e *Evaluator) setCircuit(bridge, output, copper float64) {
+// setCircuit gives switches, rectifier and inductor their values at the parts'
+// present temperatures and the present inductance.
+func (e *Evaluator) setCircuit(bridge, copper float64) {
 	s, c := e.stage, &e.circuit
 	c.Vin = bridge
 	c.Period = 1 / s.SwitchingFrequency
@@ -43,6 +43,12 @@ func (e *Evaluator) setCircuit(bridge, output, copper float64) {
 	if len(s.Phases) > 0 {
 		e.setLegs()
 	}
+}
+
+// setBanks gives every capacitor bank its value at its present temperature and
+// bias.
+func (e *Evaluator) setBanks(bridge, output float64) {
+	s, c := e.stage, &e.circuit
 	c.Banks = len(s.OutputCapacitors)
 	for k := range s.OutputCapacitors {
 		c.Bank[k] = e.base.output[k].at(&s.OutputCapacitors[k], output, e.degC[int(losses.OutputCapacitor)+k])

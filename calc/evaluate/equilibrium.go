@@ -110,7 +110,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 func (e *Evaluator) iterate(o *operating) Status {
 	cold := e.degC
 	for range startPasses {
-		e.setCircuit(o.bridge, o.output, o.copper)
+		e.setCircuit(o.bridge, o.copper)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
 		e.shareStart()
@@ -121,7 +121,8 @@ func (e *Evaluator) iterate(o *operating) Status {
 	}
 	moved := true
 	for range maxPasses {
-		e.setCircuit(o.bridge, o.output, o.copper)
+		e.setCircuit(o.bridge, o.copper)
+		e.setBanks(o.bridge, o.output)
 		e.limitDuty(o)
 		dutyChange := e.solve(o)
 		status := fromSwitched(e.solution.Status)
@@ -330,10 +331,8 @@ func (e *Evaluator) followInductances() (change float64) {
 // everything delivered.
 func (e *Evaluator) followBridge(o *operating) float64 {
 	power := e.solution.OutputPower
-	for p, w := range e.weight {
-		if w > 0 {
-			power += w * e.power[p]
-		}
+	for _, p := range e.parts {
+		power += e.weight[p] * e.power[p]
 	}
 	rms := e.solution.Leg.Inductor.RMS
 	power += float64(e.stage.PhaseCount) * e.stage.Board.SwitchNodePath * o.copper * rms * rms

@@ -15,6 +15,7 @@ type Evaluator struct {
 	nominal float64 // [V] output voltage that the feedback's typical values set
 	model   losses.Model
 	network thermal.Network
+	parts   []losses.Part             // that the stage has, board apart
 	weight  [losses.PartCount]float64 // [1] how often a part's power counts
 
 	solver    *switched.Solver // by far the largest part; kept by Reset
@@ -100,6 +101,7 @@ func (e *Evaluator) prepareNetwork() {
 	e.network.Reset()
 	add := func(p losses.Part, weight float64) {
 		e.network.Add(int(p), 0)
+		e.parts = append(e.parts, p)
 		e.weight[p] = weight
 	}
 	add(losses.HighSide, phases)

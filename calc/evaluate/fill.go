@@ -56,10 +56,8 @@ func (e *Evaluator) fill(o *operating, status Status, r *Result) {
 		r.Mode = switched.NoMode
 		return
 	}
-	for p, w := range e.weight {
-		if w > 0 {
-			r.PartDegC[p] = e.hottest[p]
-		}
+	for _, p := range e.parts {
+		r.PartDegC[p] = e.hottest[p]
 	}
 	q := &r.Quantities
 	e.fillWaveforms(o, q)
@@ -184,8 +182,10 @@ func (e *Evaluator) fillPowers(o *operating, r *Result) {
 
 func (e *Evaluator) fillParts(o *operating, r *Result) {
 	q, s := &r.Quantities, e.stage
+	var lost [losses.PartCount]float64
+	r.Losses.ByPart(&lost)
 	set := func(power, temperature quantity.ID, p losses.Part) {
-		q[power], q[temperature] = r.Losses.Of(p), e.hottest[p]
+		q[power], q[temperature] = lost[p], e.hottest[p]
 	}
 	set(quantity.HighSideLoss, quantity.HighSideJunction, losses.HighSide)
 	if e.synchronous() {
@@ -195,7 +195,7 @@ func (e *Evaluator) fillParts(o *operating, r *Result) {
 	}
 	set(quantity.InductorLoss, quantity.InductorWinding, losses.Inductor)
 	set(quantity.ControllerLoss, quantity.ControllerJunction, losses.Controller)
-	q[quantity.BoardLoss] = r.Losses.Of(losses.Board)
+	q[quantity.BoardLoss] = lost[losses.Board]
 	if core := &s.Inductor.Core; core.Present {
 		density, swing := e.model.Core(e.degC[losses.Inductor])
 		q[quantity.CorePowerDensity], q[quantity.FluxSwing] = density, swing

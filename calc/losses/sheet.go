@@ -97,13 +97,18 @@ func (s *Sheet) Total() float64 {
 
 // Of returns the power lost in one phase's part [W].
 func (s *Sheet) Of(p Part) float64 {
-	sum := 0.0
+	var all [PartCount]float64
+	s.ByPart(&all)
+	return all[p]
+}
+
+// ByPart sums up the power lost in each part of one phase [W].
+func (s *Sheet) ByPart(dst *[PartCount]float64) {
+	*dst = [PartCount]float64{}
 	for i := range s.Items[:s.N] {
-		if s.Items[i].Part == p {
-			sum += s.Items[i].Power
-		}
+		item := &s.Items[i]
+		dst[item.Part] += item.Power
 	}
-	return sum
 }
 
 // PartByName returns the part with a role's name, as String writes it.
