@@ -24,6 +24,7 @@ type Options struct {
 	Deadline time.Duration    // for one request; default 20 s
 	Jobs     *jobs.Board      // nil: there are no jobs, and nothing is deferred
 	Results  int64            // [bytes] of answers kept in memory; default 32 MiB, below 0 none
+	Access   Access
 }
 
 const (
@@ -42,6 +43,8 @@ type API struct {
 	deadline time.Duration
 	jobs     *jobs.Board
 	results  *results.Cache
+	access   Access
+	metrics  *metrics
 	streams  atomic.Int64    // open event streams
 	ending   context.Context // ends when the server drains
 	drain    context.CancelFunc
@@ -52,7 +55,7 @@ func New(o Options) *API {
 	contract := openapi.Load()
 	a := &API{
 		echo: echo.New(), contract: contract, exchange: exchange.New(contract, o.Service),
-		log: o.Log, maxBody: o.MaxBody, deadline: o.Deadline, jobs: o.Jobs,
+		log: o.Log, maxBody: o.MaxBody, deadline: o.Deadline, jobs: o.Jobs, access: o.Access,
 	}
 	a.ending, a.drain = context.WithCancel(context.Background())
 	if o.Results == 0 {
@@ -68,8 +71,9 @@ func New(o Options) *API {
 	if a.deadline == 0 {
 		a.deadline = defaultDeadline
 	}
+	a.metrics = newMetrics(o.Service, o.Jobs, a.results, func() float64 { return float64(a.streams.Load()) })
 	a.echo.HideBanner, a.echo.HidePort = true, true
-	a.echo.IPExtractor = echo.ExtractIPDirect()
+	a.echo.IPExtractor = addressOf(o.Access.Proxies)
 	a.echo.HTTPErrorHandler = a.refuse
 	a.echo.Use(a.middleware()...)
 	a.routes()

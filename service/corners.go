@@ -43,6 +43,7 @@ func (s *Service) Corners(ctx context.Context, p *CornersPlan) (*CornersAnswer, 
 			}
 		}
 		s.concludeCorners(a, d.models[0])
+		s.done.corners(a)
 		return nil
 	})
 	if err != nil {

@@ -66,6 +66,7 @@ func (s *Service) LossesGrid(ctx context.Context, r *GridRequest) (*GridAnswer, 
 			return err
 		}
 		s.conclude(r, a, sketches)
+		s.done.count(a.Cells...)
 		return nil
 	})
 	if err != nil {

@@ -24,6 +24,7 @@ const (
 type lane struct {
 	slots   chan struct{}
 	waiting atomic.Int64
+	refused atomic.Int64
 	queue   int64
 	wait    time.Duration
 }
@@ -44,6 +45,7 @@ func (l *lane) enter(ctx context.Context) error {
 	}
 	if l.waiting.Add(1) > l.queue {
 		l.waiting.Add(-1)
+		l.refused.Add(1)
 		return ErrBusy
 	}
 	defer l.waiting.Add(-1)
@@ -53,6 +55,7 @@ func (l *lane) enter(ctx context.Context) error {
 	case l.slots <- struct{}{}:
 		return nil
 	case <-patience.C:
+		l.refused.Add(1)
 		return ErrBusy
 	case <-ctx.Done():
 		return context.Cause(ctx)

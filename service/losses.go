@@ -53,6 +53,7 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 		}
 		for _, o := range a.Outcomes {
 			a.Status = worse(a.Status, o.Status)
+			s.done.count(o.Status)
 		}
 		a.Basis = s.rests(&r.Design, e, r.Places, a.Outcomes)
 		return nil

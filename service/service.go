@@ -18,11 +18,12 @@ type Options struct {
 }
 
 // Service runs the use cases. It is safe for concurrent use and keeps nothing
-// between calls but the slots of its lanes.
+// between calls but the slots of its lanes and what it has counted.
 type Service struct {
 	engine  Engine
 	workers int
 	lanes   [laneCount]*lane
+	done    WorkDone
 	idle    sync.Pool // of *evaluate.Evaluator: each is large, and any serves any stage
 }
 

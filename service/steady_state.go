@@ -28,6 +28,7 @@ func (s *Service) SteadyState(ctx context.Context, r *SteadyStateRequest) (*Stea
 		e := s.evaluator(r.Design.Stage)
 		defer s.release(e)
 		a.Outcome = outcome(e, &r.Place.Point)
+		s.done.count(a.Outcome.Status)
 		if r.WaveformPoints > 0 && a.Outcome.Status.Figures() {
 			var again evaluate.Result
 			e.Eval(&r.Place.Point, &again)

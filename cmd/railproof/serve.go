@@ -6,7 +6,9 @@ import (
 	"fmt"
 	"log/slog"
 	"net"
-	"net/http"
+	"os"
+	"os/signal"
+	"syscall"
 	"time"
 
 	"railproof/api"
@@ -16,9 +18,10 @@ import (
 
 var serveCommand = &command{
 	name: "serve", summary: "serve the API over HTTP",
-	about: `Serves the API until it is interrupted, then answers what it has accepted and ends.
-Every flag can be set in the environment as RAILPROOF_ and its name in capitals, with _ for -;
-a flag wins over the environment.`,
+	about: `Serves the API until it is interrupted, then answers what it has accepted and ends; jobs that are not
+done are kept for the next start. Every flag can be set in the environment, or in a file of lines
+NAME=VALUE, as RAILPROOF_ and its name in capitals, with _ for -. A flag wins over the environment,
+the environment over the file.`,
 	example: "railproof serve --address 127.0.0.1:8080",
 	prepare: func(flags *flag.FlagSet) action {
 		var c serveConfig
@@ -28,7 +31,7 @@ a flag wins over the environment.`,
 				fmt.Fprintln(t.err, "railproof serve: takes no operands")
 				return exitBadInput
 			}
-			if err := fromEnvironment(flags, t.env); err != nil {
+			if err := configure(flags, &c.file, t.env); err != nil {
 				fmt.Fprintf(t.err, "railproof serve: %v\n", err)
 				return exitBadInput
 			}
@@ -39,32 +42,35 @@ a flag wins over the environment.`,
 
 type serveConfig struct {
 	address  string
+	admin    string
+	file     string
+	check    bool
 	logLevel string
 	maxBody  int64
 	deadline time.Duration
 	workers  int
 	queue    int
 	grace    time.Duration
+	results  int64
+	storage  storageConfig
+	access   accessConfig
 }
 
 func (c *serveConfig) declare(f *flag.FlagSet) {
 	f.StringVar(&c.address, "address", "127.0.0.1:8080", "`HOST:PORT` to listen on; port 0 takes a free one")
+	f.StringVar(&c.admin, "admin-address", "", "`HOST:PORT` on this machine for profiles of the running program; none without it")
+	f.StringVar(&c.file, "config", "", "`FILE` of lines NAME=VALUE")
+	f.BoolVar(&c.check, "check", false, "check the configuration and its files, and end")
 	f.StringVar(&c.logLevel, "log-level", "info", "least `LEVEL` that is logged: debug, info, warn or error")
 	f.Int64Var(&c.maxBody, "max-body-bytes", 1<<20, "largest request body, `BYTES`")
 	f.DurationVar(&c.deadline, "deadline", 20*time.Second, "`TIME` for one request")
 	f.IntVar(&c.workers, "workers", 0, "`SLOTS` of each lane; 0 means one per core")
 	f.IntVar(&c.queue, "queue", 64, "`CALLERS` that may wait for a slot of a lane")
-	f.DurationVar(&c.grace, "grace", 10*time.Second, "`TIME` for open requests when the server ends")
+	f.DurationVar(&c.grace, "grace", 10*time.Second, "`TIME` for open requests and running jobs when the server ends")
+	f.Int64Var(&c.results, "results-bytes", 32<<20, "`BYTES` of answers kept in memory")
+	c.storage.declare(f)
+	c.access.declare(f)
 }
-
-const (
-	readHeaderTimeout = 5 * time.Second
-	readTimeout       = 15 * time.Second
-	idleTimeout       = 60 * time.Second
-	writeMargin       = 30 * time.Second // beyond the deadline, so that a late answer is a problem body and no closed socket
-	maxHeaderBytes    = 32 << 10
-	drainDelay        = 200 * time.Millisecond // between saying not ready and closing the door
-)
 
 func (c *serveConfig) serve(ctx context.Context, t terminal) int {
 	var level slog.Level
@@ -73,49 +79,91 @@ func (c *serveConfig) serve(ctx context.Context, t terminal) int {
 		return exitBadInput
 	}
 	log := slog.New(slog.NewJSONHandler(t.err, &slog.HandlerOptions{Level: level}))
-	handler := api.New(api.Options{
-		Service: service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, QueueLength: c.queue}),
-		Log:     log, MaxBody: c.maxBody, Deadline: c.deadline,
-	})
+	door, err := c.access.check(c.address, log)
+	if err == nil {
+		err = c.storage.check(t.env)
+	}
+	if err == nil {
+		err = c.checkAdmin()
+	}
+	if err != nil {
+		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
+		return exitBadInput
+	}
+	if c.check {
+		fmt.Fprintf(t.out, "configuration is sound\n  address  %s\n  jobs in  %s\n", c.address, &c.storage)
+		return exitFine
+	}
+	if door.loud != "" {
+		log.Error(door.loud)
+	}
 	listener, err := (&net.ListenConfig{}).Listen(ctx, "tcp", c.address)
 	if err != nil {
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
 		return exitBadInput
 	}
-	server := &http.Server{
-		Handler: handler, ReadHeaderTimeout: readHeaderTimeout, ReadTimeout: readTimeout, IdleTimeout: idleTimeout,
-		WriteTimeout: c.deadline + writeMargin, MaxHeaderBytes: maxHeaderBytes, ErrorLog: slog.NewLogLogger(log.Handler(), slog.LevelWarn),
+	return c.run(ctx, t, log, door, listener)
+}
+
+// run builds the server and serves until the context ends.
+func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, door *door, listener net.Listener) int {
+	defer listener.Close()
+	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, QueueLength: c.queue})
+	board, err := c.storage.open(ctx, s, log)
+	if err != nil {
+		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
+		return exitBadInput
 	}
-	greet(t, listener.Addr().String())
-	failed := make(chan error, 1)
-	go func() { failed <- server.Serve(listener) }()
+	handler := api.New(api.Options{
+		Service: s, Log: log, MaxBody: c.maxBody, Deadline: c.deadline, Jobs: board, Results: c.results, Access: door.access,
+	})
+	wrapped, traceEnd, err := traced(ctx, handler, t.env)
+	if err != nil {
+		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
+		return exitBadInput
+	}
+	r := &running{c, log, handler, board, newServer(c, wrapped, door, log), traceEnd}
+	rotating(ctx, door, log)
+	failed := r.start(ctx, listener, door)
+	greet(t, listener.Addr().String(), door, &c.storage)
 	select {
 	case err := <-failed:
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
+		r.end()
 		return exitOurFault
 	case <-ctx.Done():
 	}
-	return c.end(log, handler, server)
+	return r.end()
 }
 
-// end says not ready first, so that a balancer sends no more, then lets open
-// requests finish.
-func (c *serveConfig) end(log *slog.Logger, handler *api.API, server *http.Server) int {
-	handler.Drain()
-	log.Info("draining")
-	time.Sleep(drainDelay)
-	ctx, cancel := context.WithTimeout(context.Background(), c.grace)
-	defer cancel()
-	if err := server.Shutdown(ctx); err != nil {
-		log.Error("requests were cut off", "cause", err)
-		return exitOurFault
+// rotating reads the keys again on SIGHUP.
+func rotating(ctx context.Context, door *door, log *slog.Logger) {
+	if door.keys == nil {
+		return
 	}
-	log.Info("ended")
-	return exitFine
+	hangUp := make(chan os.Signal, 1)
+	signal.Notify(hangUp, syscall.SIGHUP)
+	go func() {
+		defer signal.Stop(hangUp)
+		for {
+			select {
+			case <-ctx.Done():
+				return
+			case <-hangUp:
+				if err := door.keys.Reload(); err != nil {
+					log.Error("the key file cannot be read; the keys stay as they were", "cause", err)
+				}
+			}
+		}
+	}()
 }
 
 // greet prints where the server is and one request that can be pasted.
-func greet(t terminal, address string) {
-	base := "http://" + address
-	fmt.Fprintf(t.out, "railproof %s\n  serves     %s\n  documents  %s/docs\n  try        curl -s %s/v1/losses -H 'Content-Type: application/json' --data-binary @openapi/examples/buoy-5v0/losses.json\n", service.Version, base, base, base)
+func greet(t terminal, address string, door *door, storage *storageConfig) {
+	scheme := "http"
+	if door.tls != nil {
+		scheme = "https"
+	}
+	base := scheme + "://" + address
+	fmt.Fprintf(t.out, "railproof %s\n  serves     %s\n  documents  %s/docs\n  jobs in    %s\n  try        curl -s %s/v1/losses -H 'Content-Type: application/json' --data-binary @openapi/examples/buoy-5v0/losses.json\n", service.Version, base, base, storage, base)
 }

@@ -28,7 +28,7 @@ func start(t *testing.T, args []string, environment ...string) *served {
 	s := &served{log: new(bytes.Buffer)}
 	s.process = exec.CommandContext(t.Context(), program, append([]string{"serve"}, args...)...)
 	s.process.Dir = root
-	s.process.Env = append(s.process.Environ(), environment...)
+	s.process.Env = append(append(s.process.Environ(), "RAILPROOF_EPHEMERAL=true"), environment...)
 	s.process.Stderr = s.log
 	out, err := s.process.StdoutPipe()
 	require.NoError(t, err)
