@@ -196,8 +196,8 @@ func (p *page) cornerYield(a *wire.CornersAnswer) {
 		return
 	}
 	p.title("drawn units")
-	p.line(strconv.Itoa(y.Passes), " of ", strconv.Itoa(y.Samples), " units pass everything at ", strconv.Itoa(len(a.ConditionCorners)), " condition corners: yield ",
-		finePercent(y.Share), ", ", finePercent(y.Low), " to ", finePercent(y.High), " with ", percent(y.Confidence), " confidence (", y.Interval, ")")
+	p.wrapped(strconv.Itoa(y.Passes)+" of "+strconv.Itoa(y.Samples)+" units pass everything at "+strconv.Itoa(len(a.ConditionCorners))+" condition corners: yield "+
+		finePercent(y.Share)+", "+finePercent(y.Low)+" to "+finePercent(y.High)+" with "+percent(y.Confidence)+" confidence ("+y.Interval+")", "  ")
 	p.line("sampling ", a.Sampling, ", seed ", strconv.Itoa(int(a.Seed)), ", ", strconv.Itoa(int(a.Evaluations)), " evaluations in all")
 }
 
