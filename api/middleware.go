@@ -18,12 +18,9 @@ import (
 func (a *API) middleware() []echo.MiddlewareFunc {
 	return []echo.MiddlewareFunc{
 		identify,
-		a.metrics.measure,
 		a.accessLog,
 		a.recovery,
 		secureHeaders,
-		a.checkHost,
-		a.otherOrigins(),
 		middleware.GzipWithConfig(middleware.GzipConfig{Level: squeezeEffort, MinLength: worthSqueeze, Skipper: squeezesItself}),
 		a.limitTime,
 	}
@@ -34,9 +31,11 @@ const (
 	resultsPath = "/v1/results/:id"
 )
 
-// squeezesItself holds for answers that gzip must not touch: streams, and those whose
-// entity tag names their exact bytes.
-func squeezesItself(c echo.Context) bool { return c.Path() == eventsPath || c.Path() == resultsPath }
+// squeezesItself holds for answers that gzip must not touch: streams, those whose
+// entity tag names their exact bytes, and what is stored compressed.
+func squeezesItself(c echo.Context) bool {
+	return c.Path() == eventsPath || c.Path() == resultsPath || c.Path() == assetsPath
+}
 
 const requestIDKey = "request-id"
 
@@ -72,17 +71,15 @@ func (a *API) accessLog(next echo.HandlerFunc) echo.HandlerFunc {
 		if err != nil {
 			c.Error(err)
 		}
-		describeSpan(c)
 		if !a.log.Enabled(c.Request().Context(), slog.LevelInfo) {
 			return nil
 		}
 		result, _ := c.Get(resultKey).(string)
 		job, _ := c.Get(jobKey).(string)
-		caller, _ := c.Get(callerKey).(string)
 		a.log.LogAttrs(c.Request().Context(), slog.LevelInfo, "request",
 			slog.String("request_id", requestID(c)), slog.String("method", c.Request().Method), slog.String("route", c.Path()),
 			slog.Int("status", c.Response().Status), slog.Duration("took", time.Since(start)), slog.Int64("bytes", c.Response().Size),
-			slog.String("remote", c.RealIP()), slog.String("result_id", result), slog.String("job", job), slog.String("caller", caller))
+			slog.String("remote", c.RealIP()), slog.String("result_id", result), slog.String("job", job))
 		return nil
 	}
 }
@@ -110,7 +107,6 @@ func secureHeaders(next echo.HandlerFunc) echo.HandlerFunc {
 		h.Set(echo.HeaderReferrerPolicy, "no-referrer")
 		h.Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; frame-ancestors 'none'")
 		h.Set("Cross-Origin-Resource-Policy", "same-origin")
-		longLived(c)
 		return next(c)
 	}
 }

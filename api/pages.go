@@ -1,34 +1,65 @@
 package api
 
 import (
+	"encoding/json"
 	"fmt"
-	"html"
 	"io/fs"
+	"path"
 	"slices"
 	"strings"
+	"sync"
 
 	"github.com/labstack/echo/v4"
 
 	"railproof/api/docs"
 	"railproof/api/exchange"
+	"railproof/api/wire"
 	"railproof/openapi"
+	"railproof/service/packs"
 )
 
-// docsPages answers /docs/{page}.
-func docsPages() echo.HandlerFunc {
-	pages := map[string]echo.HandlerFunc{}
-	for _, p := range docs.Pages() {
-		pages[p.Name] = page(p.Title, docs.HTML(p.Text))
+// sheet serves a page for people under its own content policy.
+func sheet(s docs.Sheet) echo.HandlerFunc {
+	serve := document("text/html; charset=utf-8", s.HTML)
+	return func(c echo.Context) error {
+		c.Response().Header().Set(echo.HeaderContentSecurityPolicy, string(s.Policy))
+		return serve(c)
 	}
-	return oneOf(pages, "page")
+}
+
+// overview lists the operations and the pages. Which operations there are is known
+// when all routes are bound, so it is written on first use.
+func (a *API) overview() echo.HandlerFunc {
+	serve := sync.OnceValue(func() echo.HandlerFunc {
+		return sheet(docs.Overview(a.contract.Version(), a.shownOperations(), problems(a.contract)))
+	})
+	return func(c echo.Context) error { return serve()(c) }
+}
+
+// docsPages answers /docs/{page}.
+func (a *API) docsPages() echo.HandlerFunc {
+	pages := map[string]func() docs.Sheet{
+		"contract":   docs.Contract,
+		"console":    func() docs.Sheet { return docs.Console(a.shownOperations(), rails()) },
+		"quantities": func() docs.Sheet { return docs.Quantities(quantities()) },
+		"rule-packs": func() docs.Sheet { return docs.RulePacks(shownPacks(packs.Builtin().All())) },
+	}
+	for _, p := range docs.Pages() {
+		pages[p.Name] = func() docs.Sheet { return docs.Text(p) }
+	}
+	handlers := map[string]echo.HandlerFunc{}
+	for name, write := range pages {
+		serve := sync.OnceValue(func() echo.HandlerFunc { return sheet(write()) })
+		handlers[name] = func(c echo.Context) error { return serve()(c) }
+	}
+	return oneOf(handlers, "page")
 }
 
 // problemPages answers /docs/problems/{kind}.
-func problemPages() echo.HandlerFunc {
+func (a *API) problemPages() echo.HandlerFunc {
 	pages := map[string]echo.HandlerFunc{}
-	for _, k := range exchange.Kinds() {
-		text := fmt.Sprintf("<h1>%s</h1>\n<p>Status %d, type <code>%s</code>.</p>\n<p>%s</p>\n", html.EscapeString(k.Title), k.Status, k.Kind, html.EscapeString(k.Meaning))
-		pages[string(k.Kind)] = page(k.Title, text)
+	for _, p := range problems(a.contract) {
+		pages[p.Kind] = sheet(docs.ProblemSheet(p))
 	}
 	return oneOf(pages, "kind")
 }
@@ -66,43 +97,127 @@ func oneOf(handlers map[string]echo.HandlerFunc, parameters ...string) echo.Hand
 	}
 }
 
-// overview lists the operations and the pages.
-func (a *API) overview(c echo.Context) error { return page("railproof", a.index())(c) }
-
-func (a *API) index() string {
-	var b strings.Builder
-	b.WriteString("<h1>railproof</h1>\n<p>Worst-case proof of step-down supply rails. The contract: <a href=\"/openapi.yaml\">openapi.yaml</a>, <a href=\"/openapi.json\">openapi.json</a>.</p>\n")
-	b.WriteString("<h2>Operations</h2>\n<div class=\"table\"><table><tr><th>request</th><th>gives</th><th>forms</th></tr>\n")
-	missing := a.Missing()
-	for _, op := range a.contract.Operations() {
-		if !slices.Contains(missing, op.ID) {
-			fmt.Fprintf(&b, "<tr><td><code>%s %s</code></td><td>%s</td><td>%s</td></tr>\n", op.Method, html.EscapeString(op.Path), html.EscapeString(op.Summary), strings.Join(a.exchange.Forms(op), ", "))
+// rails are those that have examples.
+func rails() []string {
+	entries, err := fs.ReadDir(openapi.Examples(), ".")
+	if err != nil {
+		panic("api: the embedded examples cannot be listed")
+	}
+	var names []string
+	for _, e := range entries {
+		if e.IsDir() {
+			names = append(names, e.Name())
 		}
 	}
-	b.WriteString("</table></div>\n<h2>Pages</h2>\n<ul>\n")
-	for _, p := range docs.Pages() {
-		fmt.Fprintf(&b, "<li><a href=\"/docs/%s\">%s</a></li>\n", p.Name, html.EscapeString(p.Title))
-	}
-	b.WriteString("</ul>\n<h2>Problems</h2>\n<ul>\n")
-	for _, k := range exchange.Kinds() {
-		fmt.Fprintf(&b, "<li><a href=\"/docs/problems/%s\">%s</a>: %s</li>\n", k.Kind, k.Kind, html.EscapeString(k.Title))
-	}
-	fmt.Fprintf(&b, "</ul>\n<p>Contract %s.</p>\n", html.EscapeString(a.contract.Version()))
-	return b.String()
+	return names
 }
 
-const pageStyle = `body{font:16px/1.55 system-ui,sans-serif;color:#1c2430;background:#fbfbf9;max-width:62rem;margin:2.5rem auto;padding:0 1.5rem}
-h1,h2,h3{line-height:1.25;margin-top:2rem}a{color:#0b5c6b}code,pre{font:0.9em ui-monospace,monospace}
-pre{background:#eef0ec;padding:1rem;overflow-x:auto;border-radius:4px}.table{overflow-x:auto}
-table{border-collapse:collapse;width:100%}th,td{text-align:left;vertical-align:top;padding:.35rem .75rem .35rem 0;border-bottom:1px solid #d9ddd4}`
-
-// page wraps a body that is HTML already.
-func page(title, body string) echo.HandlerFunc {
-	text := "<!doctype html>\n<html lang=\"en\"><head><meta charset=\"utf-8\"><meta name=\"viewport\" content=\"width=device-width\"><title>" +
-		html.EscapeString(title) + "</title><style>" + pageStyle + "</style></head><body>\n" + body + "</body></html>\n"
-	serve := document("text/html; charset=utf-8", []byte(text))
-	return func(c echo.Context) error {
-		c.Response().Header().Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; style-src 'unsafe-inline'; frame-ancestors 'none'")
-		return serve(c)
+// shownOperations tells the pages what this server answers.
+func (a *API) shownOperations() []docs.Operation {
+	missing := a.Missing()
+	var shown []docs.Operation
+	for _, op := range a.contract.Operations() {
+		if slices.Contains(missing, op.ID) {
+			continue
+		}
+		o := docs.Operation{ID: op.ID, Method: op.Method, Path: op.Path, Summary: op.Summary, Forms: a.exchange.Forms(op), Query: parameters(op.Query), InPath: parameters(op.InPath)}
+		o.Body = op.Example != nil
+		o.Deferred = a.jobs != nil && canDefer(op)
+		_, o.Stage = op.Example["stage"]
+		name := path.Base(op.Path) + ".json"
+		if _, err := fs.Stat(openapi.Examples(), path.Join(rails()[0], name)); err == nil && o.Body {
+			o.Example = name
+		}
+		shown = append(shown, o)
 	}
+	return shown
+}
+
+func parameters(list []openapi.Parameter) []string {
+	names := []string{}
+	for _, p := range list {
+		names = append(names, p.Name)
+	}
+	return names
+}
+
+// problems tells the pages of every kind of problem.
+func problems(contract *openapi.Contract) []docs.Problem {
+	var all []docs.Problem
+	for _, k := range exchange.Kinds() {
+		body := exchange.NewProblem(k.Kind, "What went wrong with this request, in a sentence.")
+		body.Instance = "req_0123456789abcdef01234567"
+		text, err := json.MarshalIndent(body, "", "  ")
+		if err != nil {
+			panic("api: a problem cannot be encoded")
+		}
+		p := docs.Problem{Kind: string(k.Kind), Title: k.Title, Meaning: k.Meaning, Status: k.Status, Example: string(text)}
+		for _, op := range contract.Operations() {
+			if slices.Contains(op.Statuses, k.Status) {
+				p.From = append(p.From, op.Method+" "+op.Path)
+			}
+		}
+		all = append(all, p)
+	}
+	return all
+}
+
+func quantities() []docs.Quantity {
+	var rows []docs.Quantity
+	for _, q := range wire.EncodeQuantities(wire.Engine{}).Quantities {
+		key := q.Key
+		if q.Family != "single" {
+			key += "[]"
+		}
+		rows = append(rows, docs.Quantity{Key: key, Symbol: q.Symbol, Unit: q.Unit, Meaning: q.Meaning, Source: q.Source, Group: q.Group})
+	}
+	return rows
+}
+
+// shownPacks tells the pages of rule packs.
+func shownPacks(entries []packs.Entry) []docs.Pack {
+	var all []docs.Pack
+	for _, e := range entries {
+		d := e.Document
+		p := docs.Pack{ID: d.ID, Title: d.Title, Edition: d.Edition, Provenance: d.Provenance, Extends: d.Extends}
+		for name, v := range d.Parameters {
+			p.Parameters = append(p.Parameters, docs.Parameter{Name: name, Meaning: v.Meaning, Value: v.Value, Least: v.Least, Greatest: v.Most})
+		}
+		slices.SortFunc(p.Parameters, func(a, b docs.Parameter) int { return strings.Compare(a.Name, b.Name) })
+		for i := range d.Rules {
+			r := &d.Rules[i]
+			shown := docs.Rule{ID: r.ID, Title: r.Title, Severity: r.Severity, Scope: strings.Join(r.Scope, ", "), When: r.When, Value: string(r.Value), Relation: "at most", Limit: string(r.AtMost), Unit: r.Unit, Message: r.Message, Basis: r.Basis}
+			if r.AtLeast != "" {
+				shown.Relation, shown.Limit = "at least", string(r.AtLeast)
+			}
+			p.Rules = append(p.Rules, shown)
+		}
+		for i := range d.Overrides {
+			p.Overrides = append(p.Overrides, shownOverride(&d.Overrides[i]))
+		}
+		all = append(all, p)
+	}
+	return all
+}
+
+func shownOverride(o *packs.OverrideDocument) docs.Override {
+	shown := docs.Override{Target: o.Rule, Reason: o.Reason}
+	if o.Parameter != "" {
+		shown.Target = "parameter." + o.Parameter
+	}
+	var changes []string
+	if o.Limit != "" {
+		changes = append(changes, "limit "+string(o.Limit))
+	}
+	if o.Severity != "" {
+		changes = append(changes, "severity "+o.Severity)
+	}
+	if o.Enabled != nil && !*o.Enabled {
+		changes = append(changes, "off")
+	}
+	if o.Value != nil {
+		changes = append(changes, fmt.Sprintf("value %g", *o.Value))
+	}
+	shown.Change = strings.Join(changes, ", ")
+	return shown
 }
