@@ -18,9 +18,12 @@ import (
 func (a *API) middleware() []echo.MiddlewareFunc {
 	return []echo.MiddlewareFunc{
 		identify,
+		a.metrics.measure,
 		a.accessLog,
 		a.recovery,
 		secureHeaders,
+		a.checkHost,
+		a.otherOrigins(),
 		middleware.GzipWithConfig(middleware.GzipConfig{Level: squeezeEffort, MinLength: worthSqueeze, Skipper: squeezesItself}),
 		a.limitTime,
 	}
@@ -71,15 +74,17 @@ func (a *API) accessLog(next echo.HandlerFunc) echo.HandlerFunc {
 		if err != nil {
 			c.Error(err)
 		}
+		describeSpan(c)
 		if !a.log.Enabled(c.Request().Context(), slog.LevelInfo) {
 			return nil
 		}
 		result, _ := c.Get(resultKey).(string)
 		job, _ := c.Get(jobKey).(string)
+		caller, _ := c.Get(callerKey).(string)
 		a.log.LogAttrs(c.Request().Context(), slog.LevelInfo, "request",
 			slog.String("request_id", requestID(c)), slog.String("method", c.Request().Method), slog.String("route", c.Path()),
 			slog.Int("status", c.Response().Status), slog.Duration("took", time.Since(start)), slog.Int64("bytes", c.Response().Size),
-			slog.String("remote", c.RealIP()), slog.String("result_id", result), slog.String("job", job))
+			slog.String("remote", c.RealIP()), slog.String("result_id", result), slog.String("job", job), slog.String("caller", caller))
 		return nil
 	}
 }
@@ -107,6 +112,7 @@ func secureHeaders(next echo.HandlerFunc) echo.HandlerFunc {
 		h.Set(echo.HeaderReferrerPolicy, "no-referrer")
 		h.Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; frame-ancestors 'none'")
 		h.Set("Cross-Origin-Resource-Policy", "same-origin")
+		longLived(c)
 		return next(c)
 	}
 }

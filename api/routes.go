@@ -46,6 +46,7 @@ func (a *API) handlers() map[string]echo.HandlerFunc {
 		"cancelJob":       a.cancelJob,
 		"getJobEvents":    a.jobEvents,
 		"getResult":       a.getResult,
+		"getMetrics":      a.metrics.handler(),
 	}
 	for id, answer := range a.exchange.Dictionaries() {
 		h[id] = document("application/json", answer.Body)
@@ -57,7 +58,7 @@ func (a *API) handlers() map[string]echo.HandlerFunc {
 // refused before the handler runs; HEAD is answered wherever GET is.
 func (a *API) bind(op openapi.Operation, handler echo.HandlerFunc) {
 	path := strings.NewReplacer("{", ":", "}", "").Replace(op.Path)
-	checked := a.checkParameters(op, a.checkAccept(op, handler))
+	checked := a.guard(op, a.checkParameters(op, a.checkAccept(op, handler)))
 	a.echo.Add(op.Method, path, checked)
 	if op.Method == http.MethodGet {
 		a.echo.Add(http.MethodHead, path, checked)
