@@ -41,6 +41,8 @@ func (a *API) handlers() map[string]echo.HandlerFunc {
 		"getExample":      example(),
 		"getHealth":       health,
 		"getReadiness":    a.readiness,
+		"listRulePacks":   a.rulePacks(),
+		"getRulePack":     a.rulePack(),
 		"listJobs":        a.listJobs,
 		"getJob":          a.getJob,
 		"cancelJob":       a.cancelJob,

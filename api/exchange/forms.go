@@ -7,6 +7,7 @@ import (
 	"railproof/api/render"
 	"railproof/api/wire"
 	"railproof/openapi"
+	"railproof/service/sarif"
 )
 
 const jsonForm = "application/json"
@@ -29,11 +30,20 @@ var renderers = map[string]map[string]renderer{
 		"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.LossesText(v.(*wire.LossesAnswer))) },
 	},
+	"ruleChecks": {
+		"text/csv":      func(v any) []byte { return render.RuleChecksCSV(v.(*wire.RuleChecksAnswer)) },
+		sarif.MediaType: func(v any) []byte { return render.RuleChecksSARIF(v.(*wire.RuleChecksAnswer), "", nil) },
+		TextForm:        func(v any) []byte { return []byte(render.RuleChecksText(v.(*wire.RuleChecksAnswer))) },
+	},
 	"sizing": {
 		TextForm: func(v any) []byte { return []byte(render.SizingText(v.(*wire.SizingAnswer))) },
 	},
 	"steadyState": {
 		TextForm: func(v any) []byte { return []byte(render.SteadyStateText(v.(*wire.SteadyStateAnswer))) },
+	},
+	"substitutions": {
+		"text/csv": func(v any) []byte { return render.SubstitutionsCSV(v.(*wire.SubstitutionsAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.SubstitutionsText(v.(*wire.SubstitutionsAnswer))) },
 	},
 }
 
@@ -44,7 +54,7 @@ func (x *Exchange) Forms(op openapi.Operation) []string {
 		return op.MediaTypes
 	}
 	return slices.DeleteFunc(slices.Clone(op.MediaTypes), func(form string) bool {
-		return form != jsonForm && renderers[op.ID][form] == nil
+		return !x.Gives(op.ID, form)
 	})
 }
 
@@ -52,6 +62,9 @@ func (x *Exchange) Forms(op openapi.Operation) []string {
 func (a *Answer) Render(form string) ([]byte, *Problem) {
 	if form == jsonForm {
 		return a.Body, nil
+	}
+	if Drawn(form) && Drawable(a.Operation) {
+		return a.Draw(form, a.view)
 	}
 	render := renderers[a.Operation][form]
 	if render == nil {
@@ -62,5 +75,5 @@ func (a *Answer) Render(form string) ([]byte, *Problem) {
 
 // Gives reports whether the operation can be rendered in the form.
 func (x *Exchange) Gives(operation, form string) bool {
-	return x.Computes(operation) && (form == jsonForm || renderers[operation][form] != nil)
+	return x.Computes(operation) && (form == jsonForm || renderers[operation][form] != nil || Drawn(form) && Drawable(operation))
 }

@@ -3,8 +3,10 @@ package exchange
 // computations are the operations that take a body. A new one is a line here and
 // a file of its own beside it.
 var computations = map[string]handler{
-	"corners":     proof,
-	"losses":      losses,
-	"sizing":      size,
-	"steadyState": steadyState,
+	"corners":       proof,
+	"losses":        losses,
+	"ruleChecks":    ruleChecks,
+	"sizing":        size,
+	"steadyState":   steadyState,
+	"substitutions": substitutions,
 }

@@ -38,6 +38,12 @@ var schemas = map[string]reflect.Type{
 	"VarianceShare": reflect.TypeFor[VarianceShare](), "RootSumSquare": reflect.TypeFor[RootSumSquare](), "Statistics": reflect.TypeFor[Statistics](), "QuantileValue": reflect.TypeFor[QuantileValue](),
 	"Histogram": reflect.TypeFor[Histogram](), "Yield": reflect.TypeFor[Yield](), "FailureCount": reflect.TypeFor[FailureCount](), "WorstSample": reflect.TypeFor[WorstSample](),
 	"Fault": reflect.TypeFor[Fault](), "QuantityInfo": reflect.TypeFor[QuantityInfo](), "QuantitiesAnswer": reflect.TypeFor[QuantitiesAnswer](),
+	"Finding": reflect.TypeFor[Finding](), "FindingCounts": reflect.TypeFor[FindingCounts](), "Waiver": reflect.TypeFor[Waiver](), "PackChoice": reflect.TypeFor[PackChoice](),
+	"PackUsed": reflect.TypeFor[PackUsed](), "OverrideUsed": reflect.TypeFor[OverrideUsed](), "RulePackSummary": reflect.TypeFor[RulePackSummary](), "RulePacksAnswer": reflect.TypeFor[RulePacksAnswer](),
+	"RulePackAnswer": reflect.TypeFor[RulePackAnswer](), "RuleChecksRequest": reflect.TypeFor[RuleChecksRequest](), "RuleChecksAnswer": reflect.TypeFor[RuleChecksAnswer](),
+	"Replacement": reflect.TypeFor[Replacement](), "RankWeights": reflect.TypeFor[RankWeights](), "RankTerms": reflect.TypeFor[RankTerms](), "SubstitutionReason": reflect.TypeFor[SubstitutionReason](),
+	"SubstitutionsRequest": reflect.TypeFor[SubstitutionsRequest](), "SubstitutionsAnswer": reflect.TypeFor[SubstitutionsAnswer](), "SubstitutionItem": reflect.TypeFor[SubstitutionItem](),
+	"QuantityChange": reflect.TypeFor[QuantityChange](), "FindingChange": reflect.TypeFor[FindingChange](),
 	"PreferredSeries": reflect.TypeFor[PreferredSeries](), "PreferredValuesAnswer": reflect.TypeFor[PreferredValuesAnswer](),
 }
 

@@ -147,7 +147,7 @@ func (w *Stage) describe(s *stage.Stage, root string, faults *[]Fault) {
 		c.describe(&s.InputCapacitors[i], fmt.Sprintf("%s/input_capacitors/%d", root, i), faults)
 	}
 	if w.Controller != nil {
-		s.Controller.DriveSupply = driveSupplies[w.Controller.DriveSupply]
+		s.Controller.PartNumber, s.Controller.DriveSupply = w.Controller.PartNumber, driveSupplies[w.Controller.DriveSupply]
 	}
 	if m := w.Modulator; m != nil {
 		s.Modulator.Mode, s.Modulator.FeedForward = modulatorModes[m.Mode], isTrue(m.FeedForward)

@@ -58,7 +58,7 @@ func outline(s *stage.Stage) *Stage {
 	for i := range s.InputCapacitors {
 		w.InputCapacitors = append(w.InputCapacitors, outlineCapacitor(&s.InputCapacitors[i]))
 	}
-	w.Controller = &Controller{DriveSupply: nameOf(driveSupplies, s.Controller.DriveSupply)}
+	w.Controller = &Controller{PartNumber: s.Controller.PartNumber, DriveSupply: nameOf(driveSupplies, s.Controller.DriveSupply)}
 	if m := &s.Modulator; m.Present {
 		w.Modulator = &Modulator{Mode: nameOf(modulatorModes, m.Mode), FeedForward: mark(m.FeedForward)}
 	}

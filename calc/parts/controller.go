@@ -2,6 +2,7 @@ package parts
 
 // Controller drives the switches and sets timing limits.
 type Controller struct {
+	PartNumber       string
 	Drive            float64 // [V] gate drive voltage
 	GateOn           float64 // [ohm] driver plus external resistance, turn-on
 	GateOff          float64 // [ohm] turn-off

@@ -37,6 +37,7 @@ type Case struct {
 	Nominal       *quantity.Vector // at typical values and conditions
 	NominalUses   []string         // pointers of tables used beyond their ends there
 	Extremes      map[quantity.ID]Extreme
-	FullLoad      map[quantity.ID]Extreme // the same with the load at its greatest
-	Statuses      []PointStatus           // of every evaluation behind the extremes; one per distinct status is enough
+	FullLoad      map[quantity.ID]Extreme  // the same with the load at its greatest
+	Absent        map[quantity.ID][]string // of quantities without a value: what their computation lacks
+	Statuses      []PointStatus            // of every evaluation behind the extremes; one per distinct status is enough
 }

@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/quantity"
 )
 
 // RuleOperatingStatus is this package's own rule: the stage must work at every
@@ -176,7 +177,11 @@ func (p *prepared) unevaluated(f Finding, l *Look, part string) Finding {
 	f.Verdict = NotEvaluated
 	f.Beyond = l.beyond
 	for _, name := range l.missing {
-		f.Missing = append(f.Missing, p.place(name, part))
+		for _, at := range p.lacking(name, part) {
+			if !slices.Contains(f.Missing, at) {
+				f.Missing = append(f.Missing, at)
+			}
+		}
 	}
 	var why []string
 	if len(f.Missing) > 0 {
@@ -193,6 +198,20 @@ func (p *prepared) unevaluated(f Finding, l *Look, part string) Finding {
 	}
 	f.Detail = "Not evaluated; " + strings.Join(why, "; ") + "."
 	return f
+}
+
+// lacking returns what a missing fact needs: what the case knows that its
+// computation lacks, else the fact itself.
+func (p *prepared) lacking(name, part string) []string {
+	_, key, _ := strings.Cut(name, ".")
+	id, ok := quantity.ByKey(key)
+	if _, bank, inBank := strings.Cut(part, "/"); !ok && inBank {
+		id, ok = quantity.ByKey(key + "/" + bank)
+	}
+	if ok && len(p.c.Absent[id]) > 0 {
+		return p.c.Absent[id]
+	}
+	return []string{p.place(name, part)}
 }
 
 // place returns where a missing fact would be given: the pointer of a field, or

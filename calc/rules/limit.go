@@ -13,6 +13,7 @@ type Limit struct {
 	Quantity  quantity.ID
 	Min       float64 // [any] in the quantity's unit; NaN: none
 	Max       float64 // [any] in the quantity's unit; NaN: none
+	At        string  // pointer of the finding; "": by the place in the list
 	AtNominal bool    // must hold at typical values and conditions, not at the worst corner
 }
 
@@ -25,6 +26,10 @@ func LimitRules(at string, limits []Limit) *Pack {
 	pack := &Pack{ID: LimitPack, Title: "Limits of the request", Edition: "as given", Provenance: "stated in the request"}
 	for i, l := range limits {
 		info, _ := quantity.Of(l.Quantity)
+		pointer := l.At
+		if pointer == "" {
+			pointer = at + "/" + strconv.Itoa(i)
+		}
 		key := l.Quantity.Key()
 		one := func(r Relation, root, side string, bound float64) {
 			if !parts.Known(bound) {
@@ -36,7 +41,7 @@ func LimitRules(at string, limits []Limit) *Pack {
 			name := root + key
 			pack.Rules = append(pack.Rules, Rule{
 				ID: LimitPack + "/" + strings.ReplaceAll(key, "/", ".") + "." + side, Title: "Limit: " + info.Meaning,
-				Relation: r, Unit: info.Unit, Basis: "stated in the request", Message: limitMessage, Pointer: at + "/" + strconv.Itoa(i),
+				Relation: r, Unit: info.Unit, Basis: "stated in the request", Message: limitMessage, Pointer: pointer,
 				Bodies: []Body{{
 					Value: func(l *Look) float64 { return l.Number(name) },
 					Limit: func(*Look) float64 { return bound },

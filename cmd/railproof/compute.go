@@ -23,27 +23,44 @@ func computation(name, operation, file, summary, about string) *command {
 		prepare: func(flags *flag.FlagSet) action {
 			table := flags.Bool("table", false, "a table for reading instead of JSON")
 			csv := flags.Bool("csv", false, "comma-separated values instead of JSON, where the answer has them")
+			var drawn pictureFlags
+			drawn.declare(flags, operation)
 			return func(ctx context.Context, t terminal, operands []string) int {
-				form := "application/json"
-				switch {
-				case *table && *csv:
-					fmt.Fprintf(t.err, "railproof %s: --table and --csv exclude each other\n", name)
-					return exitBadInput
-				case *table:
-					form = exchange.TextForm
-				case *csv:
-					form = "text/csv"
+				form, code := formOf(t, name, *table, *csv)
+				if code != exitFine {
+					return code
 				}
-				return compute(ctx, t, name, operation, form, operands)
+				return compute(ctx, t, name, operation, form, operands, drawn.around(ctx, operation))
 			}
 		},
 	}
 }
 
+// formOf returns the media type that the flags ask for.
+func formOf(t terminal, name string, table, csv bool) (form string, code int) {
+	switch {
+	case table && csv:
+		fmt.Fprintf(t.err, "railproof %s: --table and --csv exclude each other\n", name)
+		return "", exitBadInput
+	case table:
+		return exchange.TextForm, exitFine
+	case csv:
+		return "text/csv", exitFine
+	}
+	return "application/json", exitFine
+}
+
 // longestFile bounds what is read of a request, as the server does by default.
 const longestFile = 1 << 20 // [bytes]
 
-func compute(ctx context.Context, t terminal, name, operation, form string, operands []string) int {
+// around is what a subcommand does beside answering: before with the request, after
+// with its answer; nil is nothing.
+type around struct {
+	before func(body []byte) ([]byte, error)
+	after  func(from string, body []byte, a *exchange.Answer) error
+}
+
+func compute(ctx context.Context, t terminal, name, operation, form string, operands []string, also ...around) int {
 	if len(operands) != 1 {
 		fmt.Fprintf(t.err, "railproof %s: give one FILE, or - for standard input\n", name)
 		return exitBadInput
@@ -52,6 +69,15 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 	if err != nil {
 		fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
 		return exitBadInput
+	}
+	for _, a := range also {
+		if a.before == nil {
+			continue
+		}
+		if body, err = a.before(body); err != nil {
+			fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
+			return exitBadInput
+		}
 	}
 	contract := openapi.Load()
 	x := exchange.New(contract, service.New(service.Options{ContractVersion: contract.Version()}))
@@ -66,6 +92,15 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 	text, problem := answer.Render(form)
 	if problem != nil {
 		return refuse(t, name, form, problem)
+	}
+	for _, a := range also {
+		if a.after == nil {
+			continue
+		}
+		if err := a.after(operands[0], body, answer); err != nil {
+			fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
+			return exitOurFault
+		}
 	}
 	if _, err := t.out.Write(text); err != nil {
 		return exitOurFault
@@ -141,9 +176,9 @@ func verdictCode(value any) int {
 		return exitFine
 	}
 	switch v.Verdict() {
-	case "ok":
+	case "ok", "pass", "accepted", "agrees":
 		return exitFine
-	case "not-converged", "not-run", "not-evaluated":
+	case "not-converged", "not-run", "not-evaluated", "incomplete", "needs-review":
 		return exitIncomplete
 	}
 	return exitFails

@@ -42,6 +42,7 @@ func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectati
 		e.PartNumber, e.Count = s.Diode.PartNumber, phases
 		return e, s.Rectifier == stage.DiodeRectified
 	case "controller":
+		e.PartNumber = s.Controller.PartNumber
 		return e, true
 	case "inductor":
 		e.PartNumber, e.Count, e.Kind = s.Inductor.PartNumber, phases, notation.Inductor

@@ -1,0 +1,215 @@
+package service
+
+import (
+	"math"
+	"slices"
+	"strings"
+
+	"railproof/calc/corners"
+	"railproof/calc/evaluate"
+)
+
+// pointList evaluates points, one a task: each takes a loop analysis or a load
+// step.
+type pointList struct {
+	z, out [][]float64
+	status []evaluate.Status
+}
+
+// Tasks implements corners.Work.
+func (l *pointList) Tasks() int { return len(l.z) }
+
+// Run implements corners.Work.
+func (l *pointList) Run(task, _ int, m corners.Model) {
+	l.status[task], _ = m.Eval(l.z[task], l.out[task])
+}
+
+// mostConditions is the number of conditions and drifts whose corners are all tried.
+const mostConditions = 6 // [1]
+
+// vertices looks for worst points where an evaluation is dear: all corners of the
+// conditions with typical tolerances; from the worst of them for each target every
+// tolerance alone at its ends; the vertex that these point to; and from the worst
+// point so far every condition alone. Where the worst case of a like design is
+// known it starts from its points and moves what the other part has changed.
+func (p *worstPass) vertices(d *driver, r *worstRequest) error {
+	problem := p.bound.Problem()
+	p.found = make([]corners.Extreme, len(problem.Targets))
+	for i, t := range problem.Targets {
+		p.found[i] = corners.Extreme{Target: t, Value: math.NaN()}
+	}
+	typical := make([]float64, len(problem.Coordinates))
+	if seeds := r.seeds(p); seeds != nil {
+		if err := p.try(d, append(seeds, typical)); err != nil {
+			return err
+		}
+		return p.try(d, p.around(p.places(), p.changed(r.role)))
+	}
+	if err := p.try(d, p.conditionCorners(typical)); err != nil {
+		return err
+	}
+	tolerances, conditions := p.split()
+	for range signRounds {
+		if err := p.signs(d, tolerances); err != nil {
+			return err
+		}
+	}
+	return p.try(d, p.around(p.places(), conditions))
+}
+
+// signRounds is how often the vertex is corrected by the signs found at it.
+const signRounds = 2 // [1]
+
+// split lists the coordinates that are tolerances and those that are not.
+func (p *worstPass) split() (tolerances, conditions []int) {
+	for i, c := range p.bound.Problem().Coordinates {
+		if c.Kind == corners.Random {
+			tolerances = append(tolerances, i)
+		} else {
+			conditions = append(conditions, i)
+		}
+	}
+	return tolerances, conditions
+}
+
+// changed lists the coordinates of a part.
+func (p *worstPass) changed(role string) (list []int) {
+	for i := range p.bound.Problem().Coordinates {
+		if slices.ContainsFunc(p.bound.Pointers(i), func(at string) bool { return strings.HasPrefix(at, role+"/") }) {
+			list = append(list, i)
+		}
+	}
+	return list
+}
+
+// conditionCorners lists the typical point and every corner of the conditions.
+func (p *worstPass) conditionCorners(typical []float64) [][]float64 {
+	_, of := p.split()
+	of = of[:min(len(of), mostConditions)]
+	points := [][]float64{typical}
+	for bits := range 1 << len(of) {
+		z := slices.Clone(typical)
+		for k, i := range of {
+			if z[i] = p.bound.Problem().Coordinates[i].Low; bits>>k&1 == 1 {
+				z[i] = p.bound.Problem().Coordinates[i].High
+			}
+		}
+		points = append(points, z)
+	}
+	return points
+}
+
+// places lists the distinct worst points so far.
+func (p *worstPass) places() [][]float64 {
+	var list [][]float64
+	for i := range p.found {
+		at := p.found[i].At
+		if at != nil && !slices.ContainsFunc(list, func(z []float64) bool { return slices.Equal(z, at) }) {
+			list = append(list, at)
+		}
+	}
+	return list
+}
+
+// around moves single coordinates of points to their ends.
+func (p *worstPass) around(places [][]float64, moved []int) [][]float64 {
+	var points [][]float64
+	for _, z := range places {
+		for _, i := range moved {
+			c := p.bound.Problem().Coordinates[i]
+			for _, end := range []float64{c.Low, c.High} {
+				if z[i] != end {
+					next := slices.Clone(z)
+					next[i] = end
+					points = append(points, next)
+				}
+			}
+		}
+	}
+	return points
+}
+
+// signs tries, from the worst points so far, every tolerance alone at its ends, and
+// for each target the vertex to which the changes point.
+func (p *worstPass) signs(d *driver, tolerances []int) error {
+	starts := make([][]float64, len(p.found))
+	for t := range p.found {
+		starts[t] = p.found[t].At
+	}
+	for _, z := range p.places() {
+		points := p.around([][]float64{z}, tolerances)
+		list, err := p.evaluate(d, append(points, z))
+		if err != nil {
+			return err
+		}
+		p.record(list)
+		var vertices [][]float64
+		for t := range p.found {
+			if slices.Equal(starts[t], z) {
+				vertices = append(vertices, p.vertex(&p.found[t].Target, list))
+			}
+		}
+		if err := p.try(d, vertices); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// vertex puts together the single moves that worsen a target; the last point of the
+// list is the one from which they were made.
+func (p *worstPass) vertex(t *corners.Target, list *pointList) []float64 {
+	last := len(list.z) - 1
+	z := list.z[last]
+	vertex, gain := slices.Clone(z), make([]float64, len(z))
+	for k := range list.z[:last] {
+		for i := range z {
+			if list.z[k][i] == z[i] {
+				continue
+			}
+			g := list.out[k][t.Quantity] - list.out[last][t.Quantity]
+			if t.Direction == corners.Least {
+				g = -g
+			}
+			if g > gain[i] {
+				gain[i], vertex[i] = g, list.z[k][i]
+			}
+		}
+	}
+	return vertex
+}
+
+// try evaluates points and remembers the worst.
+func (p *worstPass) try(d *driver, points [][]float64) error {
+	list, err := p.evaluate(d, points)
+	if err != nil {
+		return err
+	}
+	p.record(list)
+	return nil
+}
+
+func (p *worstPass) evaluate(d *driver, points [][]float64) (*pointList, error) {
+	l := &pointList{z: points, out: make([][]float64, len(points)), status: make([]evaluate.Status, len(points))}
+	for i := range l.out {
+		l.out[i] = make([]float64, len(p.ids))
+	}
+	return l, d.tasks(l, func() {})
+}
+
+func (p *worstPass) record(l *pointList) {
+	for i, status := range l.status {
+		works := status == evaluate.OK || status == evaluate.OverTemperature
+		for t := range p.found {
+			f := &p.found[t]
+			v := l.out[i][f.Quantity]
+			switch {
+			case math.IsNaN(v):
+				p.blind[t] = p.blind[t] || works
+			case !works:
+			case math.IsNaN(f.Value), f.Direction == corners.Least && v < f.Value, f.Direction == corners.Greatest && v > f.Value:
+				f.Value, f.At, f.Status = v, l.z[i], status
+			}
+		}
+	}
+}
