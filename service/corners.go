@@ -24,18 +24,23 @@ type CornersAnswer struct {
 	Nominal     []float64              // [any] results at typical values and conditions
 	NominalEnd  evaluate.Status
 	Basis       Basis
+
+	parts [][]byte // of the drawn units, counted elsewhere; nil: none were
 }
 
 // Corners runs an analysis: search for the worst points, then, at their
 // conditions, the linear estimate, the drawn units and the shares of the variance;
 // then the search again from the worst units.
 func (s *Service) Corners(ctx context.Context, p *CornersPlan) (*CornersAnswer, error) {
-	a := &CornersAnswer{CornersPlan: p}
+	return s.CornersJoined(ctx, p, nil)
+}
+
+// CornersJoined is Corners with the drawn units of all parts, as CornersPart counted
+// them; without parts it draws them itself. The answer is the same.
+func (s *Service) CornersJoined(ctx context.Context, p *CornersPlan, parts [][]byte) (*CornersAnswer, error) {
+	a := &CornersAnswer{CornersPlan: p, parts: parts}
 	err := s.run(ctx, bulk, func() error {
-		d := &driver{ctx: ctx, models: make([]corners.Model, s.workers), meter: MeterOf(ctx)}
-		for i := range d.models {
-			d.models[i] = p.Bound.Model()
-		}
+		d := s.driver(ctx, p)
 		steps := []func(*driver) error{a.searching, a.linear, a.sampling, a.attributing, a.resuming, a.sharing}
 		for _, step := range steps {
 			if err := step(d); err != nil {
@@ -58,7 +63,6 @@ const pointsPerTask = 32 // [1]
 
 func (a *CornersAnswer) searching(d *driver) error {
 	problem := a.Bound.Problem()
-	a.CornerOf = make([]int, len(problem.Targets))
 	if a.search {
 		d.meter.Expect(a.expected.Search)
 		a.Search = corners.NewSearch(problem)
@@ -73,20 +77,22 @@ func (a *CornersAnswer) searching(d *driver) error {
 		a.NominalEnd, _ = d.models[0].Eval(make([]float64, len(problem.Coordinates)), a.Nominal)
 		a.Evaluations++
 	}
-	a.chooseCorners(len(problem.Coordinates))
+	a.chooseCorners(d.models[0])
 	return nil
 }
 
 // chooseCorners takes the request's condition corners, else those of the worst
 // points, else the typical conditions.
-func (a *CornersAnswer) chooseCorners(dimensions int) {
+func (a *CornersAnswer) chooseCorners(model corners.Model) {
+	problem := a.Bound.Problem()
 	if len(a.given) > 0 {
 		a.Corners = a.given
+		a.CornerOf = a.worstGiven(model)
 		return
 	}
-	a.Corners, a.CornerOf = corners.ConditionCorners(a.Bound.Problem(), a.Extremes)
+	a.Corners, a.CornerOf = corners.ConditionCorners(problem, a.Extremes)
 	if len(a.Corners) == 0 {
-		a.Corners = zeros(1, dimensions)
+		a.Corners = zeros(1, len(problem.Coordinates))
 	}
 	a.Corners = a.Corners[:min(len(a.Corners), MostCorners)]
 	for t, k := range a.CornerOf {
@@ -94,6 +100,32 @@ func (a *CornersAnswer) chooseCorners(dimensions int) {
 			a.CornerOf[t] = -1
 		}
 	}
+}
+
+// worstGiven returns for each target the condition corner of the request at which
+// the typical unit is worst; -1 where none has a value.
+func (a *CornersAnswer) worstGiven(model corners.Model) []int {
+	problem := a.Bound.Problem()
+	of := make([]int, len(problem.Targets))
+	worst := make([]float64, len(of))
+	out := make([]float64, problem.Quantities)
+	for t := range of {
+		of[t] = -1
+	}
+	for k, z := range a.given {
+		model.Eval(z, out)
+		for t := range of {
+			v := out[problem.Targets[t].Quantity]
+			if problem.Targets[t].Direction == corners.Least {
+				v = -v
+			}
+			if v == v && (of[t] < 0 || v > worst[t]) {
+				of[t], worst[t] = k, v
+			}
+		}
+	}
+	a.Evaluations += len(a.given)
+	return of
 }
 
 // Corner returns the condition corner that is the worst of a target, the first
@@ -119,18 +151,30 @@ func (a *CornersAnswer) sampling(d *driver) error {
 	if !a.Methods.MonteCarlo {
 		return nil
 	}
-	var span func(q int) (least, greatest float64)
-	if a.Search != nil {
-		span = a.Search.Span
-	}
-	run, err := a.monteCarlo(a.Corners, len(d.models), span)
+	run, err := a.drawing(d)
 	if err != nil {
 		return err
 	}
 	d.meter.Expect(run.Evaluations())
 	a.Run = run
 	a.Evaluations += run.Evaluations()
-	return d.do(run, unitsTask, run.Evaluations())
+	if a.parts == nil {
+		return d.do(run, unitsTask, run.Evaluations())
+	}
+	join, err := run.Join(a.parts)
+	if err != nil {
+		return err
+	}
+	return d.do(join, unitsTask, run.Evaluations())
+}
+
+// drawing lays out the drawing of units at the condition corners.
+func (a *CornersAnswer) drawing(d *driver) (*corners.MonteCarlo, error) {
+	var span func(q int) (least, greatest float64)
+	if a.Search != nil {
+		span = a.Search.Span
+	}
+	return a.monteCarlo(a.Corners, len(d.models), span)
 }
 
 // unitsTask is the number of evaluations in a task of the drawn units, for the

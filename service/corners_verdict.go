@@ -62,7 +62,7 @@ func (a *CornersAnswer) judgeItem(item *CornersItem, blind bool) {
 		}
 		return
 	}
-	if blind {
+	if blind || a.missing(item) {
 		item.Verdict = Incomplete
 	}
 	for _, t := range item.Targets() {
@@ -77,6 +77,23 @@ func (a *CornersAnswer) judgeItem(item *CornersItem, blind bool) {
 			item.Verdict = Fail
 		}
 	}
+}
+
+// missing reports whether some evaluation gave a line's quantity no value although
+// the stage had figures.
+func (a *CornersAnswer) missing(item *CornersItem) bool {
+	if a.Search != nil && a.Search.Missing(item.Index) > 0 {
+		return true
+	}
+	if a.Run == nil {
+		return false
+	}
+	for k := range a.Corners {
+		if a.Run.Statistics(k, item.Index).Units < a.Run.Units() {
+			return true
+		}
+	}
+	return false
 }
 
 // worst returns the worst value of a target that any method has seen; the linear

@@ -45,7 +45,9 @@ func example(t testing.TB, name string) *rail {
 			At       string   `json:"at"`
 		} `json:"limits"`
 	}
-	require.NoError(t, json.Unmarshal(raw, &request))
+	var tree any
+	require.NoError(t, json.Unmarshal(raw, &tree))
+	require.NoError(t, wire.FromTree(tree, &request))
 	decoded, err := request.Stage.Decode("/stage")
 	require.NoError(t, err)
 	r := &rail{stage: decoded.Stage, variables: decoded.Variables}

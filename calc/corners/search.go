@@ -52,6 +52,7 @@ type Search struct {
 	ends       [2][]float64 // [end][coordinate*quantities + quantity]: one at a time
 	found      []incumbent
 	span       [][2]float64 // least and greatest value seen of each quantity
+	missing    []int        // points at which a quantity had no value although the stage had figures
 	failures   [evaluate.StatusCount]Failure
 	borders    []border
 	starts     [][]start
@@ -78,7 +79,7 @@ type phase interface {
 func NewSearch(p *Problem) *Search {
 	s := &Search{
 		p: p, found: make([]incumbent, len(p.Targets)), starts: make([][]start, len(p.Targets)),
-		span: make([][2]float64, p.Quantities), resting: make([]bool, len(p.Targets)),
+		span: make([][2]float64, p.Quantities), resting: make([]bool, len(p.Targets)), missing: make([]int, p.Quantities),
 	}
 	for i := range s.found {
 		t := p.Targets[i]
@@ -127,7 +128,11 @@ func (s *Search) record() {
 	s.evaluated += b.len()
 	for i := range b.len() {
 		s.recordFailure(i)
+		figures := b.status[i].Figures()
 		for q, v := range b.result(i) {
+			if v != v && figures {
+				s.missing[q]++
+			}
 			if v < s.span[q][0] {
 				s.span[q][0] = v
 			}
@@ -234,6 +239,10 @@ func (s *Search) width(q int) float64 {
 // Span returns the least and greatest value seen of a quantity; the least is above
 // the greatest if it never had one.
 func (s *Search) Span(q int) (least, greatest float64) { return s.span[q][0], s.span[q][1] }
+
+// Missing returns the number of points at which a quantity had no value although
+// the stage had figures, such as the margins of a loop that is not stable.
+func (s *Search) Missing(q int) int { return s.missing[q] }
 
 // Nominal returns every quantity at the typical point, and its status.
 func (s *Search) Nominal() ([]float64, evaluate.Status) { return s.nominal, s.nominalEnd }

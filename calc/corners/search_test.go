@@ -349,3 +349,18 @@ func BenchmarkSearch(b *testing.B) {
 		})
 	}
 }
+
+// A quantity without a value where the stage has figures is counted, so that no
+// limit passes on what was left out.
+func TestMissingValuesAreCounted(t *testing.T) {
+	p := box(2, 1, 2)
+	p.Targets = []Target{{Quantity: 0}, {Quantity: 1}}
+	_, s := search(p, function(func(z, out []float64) {
+		out[0], out[1] = z[0], z[1]
+		if z[0] > 0.5 {
+			out[0] = math.NaN()
+		}
+	}))
+	assert.Positive(t, s.Missing(0))
+	assert.Zero(t, s.Missing(1))
+}

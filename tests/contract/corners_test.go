@@ -262,6 +262,28 @@ func TestFailedEvaluationsAreNoPasses(t *testing.T) {
 	require.True(t, kinds["monte-carlo over-temperature"] || kinds["monte-carlo runaway"], "%v", kinds)
 }
 
+// Margins of the loop are evaluated in every unit when they are asked for; of a loop
+// that is unstable somewhere no limit passes.
+func TestLoopMarginsOverTheCorners(t *testing.T) {
+	at := server(t)
+	request := cornersOf(t, "buoy-5v0", object{
+		"samples": 100, "methods": []string{"extreme-value", "monte-carlo"},
+		"limits": []object{{"quantity": "phase_margin_deg", "min": 30}, {"quantity": "modulus_margin_ratio", "min": 0.3}},
+	})
+	a := proved(t, at, request)
+	require.Equal(t, "pass", a["verdict"])
+	margin := lineOf(t, a, "phase_margin_deg")
+	require.Less(t, within(margin, "least", "value"), margin["nominal"])
+	require.EqualValues(t, 100, within(margin, "statistics", 0, "samples"))
+
+	request["stage"].(object)["modulator"].(object)["ramp_v"] = object{"typ": 0.12, "tol": 0.5}
+	a = proved(t, at, request)
+	require.Contains(t, []any{"fail", "incomplete"}, a["verdict"])
+	require.Contains(t, []any{"fail", "incomplete"}, lineOf(t, a, "phase_margin_deg")["verdict"])
+	require.Equal(t, "fail", lineOf(t, a, "modulus_margin_ratio")["verdict"], "its sign tells an unstable loop")
+	require.Less(t, within(a, "yield", "passes"), within(a, "yield", "samples"))
+}
+
 func TestSamplingMethodsKeepTheirPromises(t *testing.T) {
 	at := server(t)
 	for sampling, run := range map[string]int{"sobol": 1024, "latin-hypercube": 1008} {
