@@ -77,9 +77,14 @@ func (x *Exchange) Read(operation string, body []byte) (*Request, *Problem) {
 	return r, nil
 }
 
+// head is what every answer begins with.
+func (x *Exchange) head(r *Request) wire.Head {
+	return wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: r.ResultID}
+}
+
 // Answer computes the answer to a request.
 func (x *Exchange) Answer(ctx context.Context, r *Request) (*Answer, *Problem) {
-	value, err := computations[r.Operation](ctx, x, r.tree, wire.Head{Engine: wire.EncodeEngine(x.service.Engine()), ResultID: r.ResultID})
+	value, err := computations[r.Operation](ctx, x, r.tree, x.head(r))
 	if err != nil {
 		return nil, problemOf(err)
 	}

@@ -3,8 +3,10 @@ package exchange
 import (
 	"context"
 	"encoding/json"
+	"errors"
 	"fmt"
 
+	"railproof/api/wire"
 	"railproof/service"
 	"railproof/service/jobs"
 	"railproof/service/results"
@@ -44,4 +46,64 @@ func outcome(answer *Answer, problem *Problem) jobs.Outcome {
 // Kept returns the form of the answer in which it is kept: JSON where it has that.
 func (a *Answer) Kept() (results.Answer, *Problem) {
 	return results.Answer{Media: jsonForm, Body: a.Body}, nil
+}
+
+// splittable is the operation of which large requests are worth splitting.
+const splittable = "corners"
+
+// plan reads the request of an analysis.
+func (e Executor) plan(operation string, request []byte) (*wire.CornersRequest, *service.CornersPlan, *Request, error) {
+	r, problem := e.x.Read(operation, request)
+	if problem != nil {
+		return nil, nil, nil, fmt.Errorf("exchange: a job's request is refused: %s", problem.Detail)
+	}
+	w, err := decode[wire.CornersRequest](r.tree)
+	if err != nil {
+		return nil, nil, nil, err
+	}
+	p, err := w.Decode()
+	return w, p, r, err
+}
+
+// Parts implements jobs.Splitter.
+func (e Executor) Parts(operation string, request []byte) (parts, evaluations int) {
+	if operation != splittable {
+		return 1, 0
+	}
+	_, p, _, err := e.plan(operation, request)
+	if err != nil {
+		return 1, 0 // Execute says what is wrong
+	}
+	return p.Parts()
+}
+
+// Part implements jobs.Splitter.
+func (e Executor) Part(ctx context.Context, operation string, request []byte, part, parts int, m *service.Meter) ([]byte, error) {
+	_, p, _, err := e.plan(operation, request)
+	if err != nil {
+		return nil, err
+	}
+	for {
+		counts, err := e.x.service.CornersPart(service.WithMeter(ctx, m), p, part, parts)
+		if !errors.Is(err, service.ErrBusy) {
+			return counts, err
+		}
+	}
+}
+
+// Merge implements jobs.Splitter.
+func (e Executor) Merge(ctx context.Context, operation string, request []byte, parts [][]byte) jobs.Outcome {
+	w, p, r, err := e.plan(operation, request)
+	if err != nil {
+		return outcome(nil, problemOf(err))
+	}
+	a, err := e.x.service.CornersJoined(ctx, p, parts)
+	if err != nil {
+		return outcome(nil, problemOf(err))
+	}
+	answer, problem := e.x.finish(operation, wire.EncodeCorners(w, a, e.x.head(r)), new(stopwatch))
+	if problem == nil {
+		answer.ResultID = r.ResultID
+	}
+	return outcome(answer, problem)
 }

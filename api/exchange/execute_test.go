@@ -1,0 +1,69 @@
+package exchange
+
+import (
+	"encoding/json"
+	"io/fs"
+	"testing"
+
+	"github.com/stretchr/testify/require"
+
+	"railproof/openapi"
+	"railproof/service"
+	"railproof/service/jobs"
+)
+
+var _ jobs.Splitter = Executor{}
+
+// A job that is split gives the bytes of one that is not, whatever the number of
+// parts and of workers.
+func TestPartsGiveTheBytesOfTheWhole(t *testing.T) {
+	text, err := fs.ReadFile(openapi.Examples(), "buoy-3v3/corners.json")
+	require.NoError(t, err)
+	var tree map[string]any
+	require.NoError(t, json.Unmarshal(text, &tree))
+	tree["samples"] = 3000
+	text, err = json.Marshal(tree)
+	require.NoError(t, err)
+	executor := func(workers int) Executor {
+		return New(openapi.Load(), service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: workers})).Executor()
+	}
+	whole := executor(1).Execute(t.Context(), "corners", text, new(service.Meter))
+	require.Nil(t, whole.Problem, "%s", whole.Problem)
+	for _, parts := range []int{2, 7} {
+		counts := make([][]byte, parts)
+		drawn := int64(0)
+		for i := range parts {
+			m := new(service.Meter)
+			counts[i], err = executor(1+i%2).Part(t.Context(), "corners", text, i, parts, m)
+			require.NoError(t, err)
+			done, _ := m.Progress()
+			drawn += done
+		}
+		merged := executor(2).Merge(t.Context(), "corners", text, counts)
+		require.Nil(t, merged.Problem, "%s", merged.Problem)
+		require.Equal(t, whole.ResultID, merged.ResultID)
+		require.Equal(t, string(whole.Answer.Body), string(merged.Answer.Body))
+		require.Positive(t, drawn)
+	}
+}
+
+func TestOnlyLargeRunsAreSplit(t *testing.T) {
+	e := New(openapi.Load(), service.New(service.Options{})).Executor()
+	text, err := fs.ReadFile(openapi.Examples(), "buoy-5v0/corners.json")
+	require.NoError(t, err)
+	n, evaluations := e.Parts("corners", text)
+	require.Less(t, n, 2)
+	require.Positive(t, evaluations)
+	var tree map[string]any
+	require.NoError(t, json.Unmarshal(text, &tree))
+	tree["samples"] = 1_000_000
+	text, err = json.Marshal(tree)
+	require.NoError(t, err)
+	n, evaluations = e.Parts("corners", text)
+	require.Greater(t, n, 2)
+	require.Greater(t, evaluations, 1_000_000)
+	n, _ = e.Parts("sizing", text)
+	require.Less(t, n, 2)
+	n, _ = e.Parts("corners", []byte(`{}`))
+	require.Less(t, n, 2)
+}
