@@ -35,16 +35,7 @@ func example(t testing.TB, name string) *rail {
 	t.Helper()
 	raw, err := os.ReadFile("../../openapi/examples/" + name + "/corners.json")
 	require.NoError(t, err)
-	var request struct {
-		Stage      *wire.Stage      `json:"stage"`
-		Conditions *wire.Conditions `json:"conditions"`
-		Limits     []struct {
-			Quantity string   `json:"quantity"`
-			Min      *float64 `json:"min"`
-			Max      *float64 `json:"max"`
-			At       string   `json:"at"`
-		} `json:"limits"`
-	}
+	var request wire.CornersRequest
 	var tree any
 	require.NoError(t, json.Unmarshal(raw, &tree))
 	require.NoError(t, wire.FromTree(tree, &request))
