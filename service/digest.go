@@ -6,6 +6,7 @@ import (
 	"math"
 	"slices"
 	"strconv"
+	"strings"
 	"unicode/utf16"
 	"unicode/utf8"
 )
@@ -54,27 +55,34 @@ func AppendCanonical(b []byte, v any) []byte {
 
 // appendObject writes the members in the order of their names' UTF-16 code units.
 func appendObject(b []byte, members map[string]any) []byte {
-	var room [32]string
-	names := room[:0]
+	var room [32]member
+	list := room[:0]
 	plain := true
-	for name := range members {
-		names = append(names, name)
+	for name, value := range members {
+		list = append(list, member{name, value})
 		plain = plain && isASCII(name)
 	}
 	if plain { // bytes and code units sort alike
-		slices.Sort(names)
+		slices.SortFunc(list, func(x, y member) int { return strings.Compare(x.name, y.name) })
 	} else {
-		slices.SortFunc(names, func(x, y string) int { return slices.Compare(utf16.Encode([]rune(x)), utf16.Encode([]rune(y))) })
+		slices.SortFunc(list, func(x, y member) int {
+			return slices.Compare(utf16.Encode([]rune(x.name)), utf16.Encode([]rune(y.name)))
+		})
 	}
 	b = append(b, '{')
-	for i, name := range names {
+	for i := range list {
 		if i > 0 {
 			b = append(b, ',')
 		}
-		b = append(appendString(b, name), ':')
-		b = AppendCanonical(b, members[name])
+		b = append(appendString(b, list[i].name), ':')
+		b = AppendCanonical(b, list[i].value)
 	}
 	return append(b, '}')
+}
+
+type member struct {
+	name  string
+	value any
 }
 
 func isASCII(s string) bool {
@@ -111,6 +119,9 @@ const hexadecimal = "0123456789abcdef"
 // appendString writes a string with the fewest escapes.
 func appendString(b []byte, s string) []byte {
 	b = append(b, '"')
+	if isPlain(s) {
+		return append(append(b, s...), '"')
+	}
 	for i := range len(s) {
 		switch c := s[i]; {
 		case c == '"' || c == '\\':
@@ -132,4 +143,14 @@ func appendString(b []byte, s string) []byte {
 		}
 	}
 	return append(b, '"')
+}
+
+// isPlain reports whether a string is written as it is.
+func isPlain(s string) bool {
+	for i := range len(s) {
+		if c := s[i]; c < ' ' || c == '"' || c == '\\' {
+			return false
+		}
+	}
+	return true
 }

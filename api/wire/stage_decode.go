@@ -38,37 +38,48 @@ func (w *Stage) Decode(root string) (*Decoded, error) {
 
 // numbers fills the stage's registered numbers and collects their spreads.
 func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[]Fault) {
-	given := make(map[string]slot, 96)
-	var order []string
+	given := make([]slot, len(fields))
+	next := 0 // the struct and the registry are in nearly the same order
 	walk(reflect.ValueOf(w).Elem(), "", false, func(id string, s slot) {
-		if s.given() {
-			given[id] = s
-			order = append(order, id)
+		if !s.given() {
+			return
 		}
+		i := fieldFrom(fields, next, id)
+		if i < 0 {
+			d.Unused = append(d.Unused, root+"/"+id)
+			return
+		}
+		given[i], next = s, i+1
 	})
 	members := groups{}
 	for i := range fields {
-		f := &fields[i]
-		s, found := given[f.ID]
-		if !found {
-			*f.Value = parts.Unknown
-			continue
-		}
-		delete(given, f.ID)
+		f, s := &fields[i], given[i]
 		switch {
 		case s.plain != nil:
 			*f.Value = **s.plain
 		case s.whole != nil:
 			*f.Value = float64(**s.whole)
-		default:
+		case s.number != nil:
 			d.number(f, *s.number, root+"/"+f.ID, members, faults)
+		default:
+			*f.Value = parts.Unknown
 		}
 	}
-	for _, id := range order {
-		if _, left := given[id]; left {
-			d.Unused = append(d.Unused, root+"/"+id)
+}
+
+// fieldFrom returns the place of an id, looked for from next on and around; -1 if
+// it is nowhere.
+func fieldFrom(fields []stage.Field, next int, id string) int {
+	for k := range fields {
+		i := next + k
+		if i >= len(fields) {
+			i -= len(fields)
+		}
+		if fields[i].ID == id {
+			return i
 		}
 	}
+	return -1
 }
 
 func (d *Decoded) number(f *stage.Field, n *Number, at string, members groups, faults *[]Fault) {

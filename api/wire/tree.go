@@ -13,7 +13,8 @@ import (
 // and a value of another type are errors; both are faults that the contract's
 // check of the tree has found before.
 func FromTree(tree, into any) error {
-	return fromTree(tree, reflect.ValueOf(into).Elem())
+	to := reflect.ValueOf(into).Elem()
+	return shapeOf(to.Type()).fill(to, tree)
 }
 
 // treeReader is a type that reads its own form.
@@ -21,47 +22,97 @@ type treeReader interface{ readTree(v any) error }
 
 var treeReaderType = reflect.TypeFor[treeReader]()
 
-func fromTree(v any, to reflect.Value) error {
-	if to.Kind() == reflect.Pointer {
-		to.Set(reflect.New(to.Type().Elem()))
-		to = to.Elem()
+// shape is what has to be known of a type to fill it, found out once.
+type shape struct {
+	pointedAt *shape // of a pointer
+	reads     bool   // the type reads its own form
+	kind      reflect.Kind
+	numbers   bool             // []float64
+	entry     *shape           // of a slice
+	fields    map[string]place // of a struct
+}
+
+type place struct {
+	index int
+	shape *shape
+}
+
+var shapes sync.Map // reflect.Type -> *shape
+
+func shapeOf(t reflect.Type) *shape {
+	if s, ok := shapes.Load(t); ok {
+		return s.(*shape)
 	}
-	if reflect.PointerTo(to.Type()).Implements(treeReaderType) {
+	s := newShape(t)
+	shapes.Store(t, s)
+	return s
+}
+
+func newShape(t reflect.Type) *shape {
+	if t.Kind() == reflect.Pointer {
+		return &shape{pointedAt: shapeOf(t.Elem())}
+	}
+	s := &shape{kind: t.Kind(), reads: reflect.PointerTo(t).Implements(treeReaderType)}
+	switch {
+	case s.reads:
+	case s.kind == reflect.Slice:
+		s.numbers = t == reflect.TypeFor[[]float64]()
+		s.entry = shapeOf(t.Elem())
+	case s.kind == reflect.Struct:
+		s.fields = make(map[string]place, t.NumField())
+		for i := range t.NumField() {
+			if f := t.Field(i); f.IsExported() {
+				name, _, _ := strings.Cut(f.Tag.Get("json"), ",")
+				s.fields[name] = place{i, shapeOf(f.Type)}
+			}
+		}
+	}
+	return s
+}
+
+func (s *shape) fill(to reflect.Value, v any) error {
+	if s.pointedAt != nil {
+		to.Set(reflect.New(to.Type().Elem()))
+		return s.pointedAt.fill(to.Elem(), v)
+	}
+	if s.reads {
 		return to.Addr().Interface().(treeReader).readTree(v)
 	}
 	switch v := v.(type) {
 	case float64:
-		if to.Kind() == reflect.Float64 {
+		if s.kind == reflect.Float64 {
 			to.SetFloat(v)
 			return nil
 		}
 	case string:
-		if to.Kind() == reflect.String {
+		if s.kind == reflect.String {
 			to.SetString(v)
 			return nil
 		}
 	case bool:
-		if to.Kind() == reflect.Bool {
+		if s.kind == reflect.Bool {
 			to.SetBool(v)
 			return nil
 		}
 	case []any:
-		if to.Kind() == reflect.Slice {
-			return listFromTree(v, to)
+		if s.kind == reflect.Slice {
+			return s.fillList(to, v)
 		}
 	case map[string]any:
-		if to.Kind() == reflect.Struct {
-			return structFromTree(v, to)
+		if s.kind == reflect.Struct {
+			return s.fillStruct(to, v)
 		}
 	}
 	return fmt.Errorf("wire: a %T does not fit", v)
 }
 
-func listFromTree(v []any, to reflect.Value) error {
-	if numbers, ok := to.Addr().Interface().(*[]float64); ok {
-		*numbers = make([]float64, len(v))
+func (s *shape) fillList(to reflect.Value, v []any) error {
+	if s.numbers {
+		numbers := make([]float64, len(v))
+		to.Set(reflect.ValueOf(numbers))
 		for i := range v {
-			if (*numbers)[i], ok = v[i].(float64); !ok {
+			var ok bool
+			if numbers[i], ok = v[i].(float64); !ok {
 				return fmt.Errorf("wire: a %T among numbers", v[i])
 			}
 		}
@@ -69,40 +120,24 @@ func listFromTree(v []any, to reflect.Value) error {
 	}
 	to.Set(reflect.MakeSlice(to.Type(), len(v), len(v)))
 	for i := range v {
-		if err := fromTree(v[i], to.Index(i)); err != nil {
+		if err := s.entry.fill(to.Index(i), v[i]); err != nil {
 			return err
 		}
 	}
 	return nil
 }
 
-func structFromTree(v map[string]any, to reflect.Value) error {
-	fields := fieldsOf(to.Type())
+func (s *shape) fillStruct(to reflect.Value, v map[string]any) error {
 	for name, member := range v {
-		i, known := fields[name]
+		at, known := s.fields[name]
 		if !known {
 			return fmt.Errorf("wire: no field %q", name)
 		}
-		if err := fromTree(member, to.Field(i)); err != nil {
+		if err := at.shape.fill(to.Field(at.index), member); err != nil {
 			return err
 		}
 	}
 	return nil
-}
-
-var structFields sync.Map // reflect.Type -> map[string]int
-
-func fieldsOf(t reflect.Type) map[string]int {
-	if m, ok := structFields.Load(t); ok {
-		return m.(map[string]int)
-	}
-	m := make(map[string]int, t.NumField())
-	for i := range t.NumField() {
-		name, _, _ := strings.Cut(t.Field(i).Tag.Get("json"), ",")
-		m[name] = i
-	}
-	structFields.Store(t, m)
-	return m
 }
 
 func (n *Number) readTree(v any) error {
@@ -112,7 +147,7 @@ func (n *Number) readTree(v any) error {
 		return nil
 	case map[string]any:
 		n.Spread = new(Spread)
-		return structFromTree(v, reflect.ValueOf(n.Spread).Elem())
+		return FromTree(v, n.Spread)
 	}
 	return fmt.Errorf("wire: a %T for a number or spread", v)
 }
@@ -133,7 +168,7 @@ func (f *Frequency) readTree(v any) error {
 		return nil
 	case map[string]any:
 		f.Sweep = new(FrequencyRange)
-		return structFromTree(v, reflect.ValueOf(f.Sweep).Elem())
+		return FromTree(v, f.Sweep)
 	}
 	return fmt.Errorf("wire: a %T for a frequency or range", v)
 }
