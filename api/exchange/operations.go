@@ -4,6 +4,7 @@ package exchange
 // a file of its own beside it.
 var computations = map[string]handler{
 	"corners":       proof,
+	"loopGain":      loopGain,
 	"losses":        losses,
 	"ruleChecks":    ruleChecks,
 	"sizing":        size,

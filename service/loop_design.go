@@ -1,0 +1,120 @@
+package service
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"strings"
+
+	"railproof/calc/evaluate"
+	"railproof/calc/loop"
+	"railproof/calc/parts"
+)
+
+// UnreachableTarget tells that no network of the wanted type does what is asked,
+// and what can be reached.
+type UnreachableTarget struct {
+	loop.UnreachableError
+	Crossover float64 // [Hz] highest at which the phase margin can be had; NaN: none was found
+}
+
+// NotRegulating tells that the first point has no loop to design for.
+type NotRegulating struct {
+	At     string
+	Status evaluate.Status
+	Detail string
+}
+
+// Error names the point and its status.
+func (e *NotRegulating) Error() string { return "service: " + e.At + ": " + e.Status.String() }
+
+// design designs the compensator at the first point and puts it into the stage.
+func (s *Service) design(ctx context.Context, r *LoopRequest, d *Design, a *LoopAnswer) error {
+	b := &loopBench{evaluator: s.evaluator(d.Stage)}
+	defer s.release(b.evaluator)
+	p := r.Places[0].Point
+	if r.Filter != nil {
+		p.SourceResistance += r.Filter.Resistance
+	}
+	var result evaluate.Result
+	b.evaluator.Eval(&p, &result)
+	if !b.plant.Bind(b.evaluator, result.Status) {
+		o := outcome(b.evaluator, &p)
+		return &NotRegulating{r.Places[0].At, o.Status, o.Detail}
+	}
+	t := *r.Target
+	design, err := b.sampled.Synthesise(&b.plant, t)
+	if unreachable, is := errors.AsType[*loop.UnreachableError](err); is {
+		reach, err := b.reach(ctx, t)
+		if err != nil {
+			return err
+		}
+		return &UnreachableTarget{*unreachable, reach}
+	}
+	if err != nil {
+		return err
+	}
+	a.Design = &design
+	st := d.Stage.Clone()
+	st.Compensator = design.Compensator
+	d.Stage = st
+	kept := d.Variables[:0:0]
+	for _, v := range d.Variables {
+		if !strings.HasPrefix(v.Field, "compensator/") {
+			kept = append(kept, v)
+		}
+	}
+	d.Variables = kept
+	return nil
+}
+
+const (
+	reachSteps = 24   // [1] crossovers tried below the one asked for
+	reachSpan  = 1e-3 // [1] lowest of them over the one asked for
+	reachFine  = 12   // [1] halvings between the last that fails and the first that works
+)
+
+// reach returns the highest crossover below that asked for at which the phase
+// margin can be had.
+func (b *loopBench) reach(ctx context.Context, t loop.Target) (float64, error) {
+	works := func(f float64) bool {
+		t.Crossover = f
+		_, err := b.sampled.Synthesise(&b.plant, t)
+		return err == nil
+	}
+	tried := make([]float64, reachSteps)
+	loop.Frequencies(tried, t.Crossover, t.Crossover*reachSpan)
+	for i := 1; i < len(tried); i++ {
+		if err := context.Cause(ctx); err != nil {
+			return parts.Unknown, err
+		}
+		if !works(tried[i]) {
+			continue
+		}
+		good, bad := tried[i], tried[i-1]
+		for range reachFine {
+			if middle := (good + bad) / 2; works(middle) {
+				good = middle
+			} else {
+				bad = middle
+			}
+		}
+		return good, nil
+	}
+	return parts.Unknown, nil
+}
+
+// Reachable says what can be reached instead.
+func (e *UnreachableTarget) Reachable() string {
+	var s []string
+	if parts.Known(e.Bound) {
+		s = append(s, fmt.Sprintf("a phase margin up to %.4g deg at this crossover", e.Bound))
+	}
+	if parts.Known(e.Crossover) {
+		s = append(s, fmt.Sprintf("a crossover up to %.4g Hz with this phase margin", e.Crossover))
+	}
+	if len(s) == 0 {
+		return "no lower crossover down to a thousandth gives this phase margin either"
+	}
+	return strings.Join(s, ", or ")
+}
