@@ -22,6 +22,10 @@ const TextForm = "text/plain"
 // renderers are the forms besides JSON, by operation and media type. A new one is
 // a line here; HTTP gives those that the contract lists.
 var renderers = map[string]map[string]renderer{
+	"bomChecks": {
+		"text/csv": func(v any) []byte { return render.BomChecksCSV(v.(*wire.BomChecksAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.BomChecksText(v.(*wire.BomChecksAnswer))) },
+	},
 	"corners": {
 		"text/csv": func(v any) []byte { return render.CornersCSV(v.(*wire.CornersAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.CornersText(v.(*wire.CornersAnswer))) },
@@ -58,9 +62,17 @@ func (x *Exchange) Forms(op openapi.Operation) []string {
 	})
 }
 
+// ownForm is the form that an operation's answers are kept in.
+func ownForm(operation string) string {
+	if operation == "reports" {
+		return "text/html"
+	}
+	return jsonForm
+}
+
 // Render writes an answer in a form that Forms lists.
 func (a *Answer) Render(form string) ([]byte, *Problem) {
-	if form == jsonForm {
+	if form == ownForm(a.Operation) {
 		return a.Body, nil
 	}
 	if Drawn(form) && Drawable(a.Operation) {
@@ -75,5 +87,5 @@ func (a *Answer) Render(form string) ([]byte, *Problem) {
 
 // Gives reports whether the operation can be rendered in the form.
 func (x *Exchange) Gives(operation, form string) bool {
-	return x.Computes(operation) && (form == jsonForm || renderers[operation][form] != nil || Drawn(form) && Drawable(operation))
+	return x.Computes(operation) && (form == ownForm(operation) || renderers[operation][form] != nil || Drawn(form) && Drawable(operation))
 }

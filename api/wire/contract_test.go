@@ -44,6 +44,10 @@ var schemas = map[string]reflect.Type{
 	"Replacement": reflect.TypeFor[Replacement](), "RankWeights": reflect.TypeFor[RankWeights](), "RankTerms": reflect.TypeFor[RankTerms](), "SubstitutionReason": reflect.TypeFor[SubstitutionReason](),
 	"SubstitutionsRequest": reflect.TypeFor[SubstitutionsRequest](), "SubstitutionsAnswer": reflect.TypeFor[SubstitutionsAnswer](), "SubstitutionItem": reflect.TypeFor[SubstitutionItem](),
 	"QuantityChange": reflect.TypeFor[QuantityChange](), "FindingChange": reflect.TypeFor[FindingChange](),
+	"BomChecksRequest": reflect.TypeFor[BomChecksRequest](), "Bom": reflect.TypeFor[Bom](), "BomLine": reflect.TypeFor[BomLine](), "BomCsv": reflect.TypeFor[BomCSV](), "BomColumns": reflect.TypeFor[BomColumns](),
+	"Rail": reflect.TypeFor[Rail](), "Binding": reflect.TypeFor[Binding](), "Alternate": reflect.TypeFor[Alternate](), "BomChecksAnswer": reflect.TypeFor[BomChecksAnswer](),
+	"BomRailResult": reflect.TypeFor[BomRailResult](), "BomRoleResult": reflect.TypeFor[BomRoleResult](), "BomAlternateResult": reflect.TypeFor[BomAlternateResult](),
+	"BomLineResult": reflect.TypeFor[BomLineResult](), "BomDifference": reflect.TypeFor[BomDifference](), "BomUnboundLine": reflect.TypeFor[BomUnboundLine](),
 	"PreferredSeries": reflect.TypeFor[PreferredSeries](), "PreferredValuesAnswer": reflect.TypeFor[PreferredValuesAnswer](),
 }
 

@@ -18,7 +18,7 @@ var checkCommand = &command{
 conditions and tolerances. What could not be evaluated is never a pass.
 The request is read from FILE, or from standard input with -. The answer is JSON, the same
 bytes that the server sends for the same request.`,
-	example: "railproof check --table --sarif findings.sarif openapi/examples/buoy-5v0/rule-checks.json",
+	example: "railproof check --table openapi/examples/buoy-5v0/rule-checks.json",
 	prepare: func(flags *flag.FlagSet) action {
 		table := flags.Bool("table", false, "a table for reading instead of JSON")
 		csv := flags.Bool("csv", false, "comma-separated values instead of JSON")

@@ -30,6 +30,7 @@ type FormatError struct {
 	Line   int // from 1
 	Column int // in bytes, from 1; 0 if the whole line is meant
 	Detail string
+	Mapped string // member of the mapping that is at fault: "value"; "": the text is
 }
 
 // Error names line, column and fault.
@@ -47,7 +48,7 @@ var byteOrderMark = []byte("\xef\xbb\xbf")
 // *FormatError.
 func ReadCSV(raw []byte, m Mapping) ([]Line, error) {
 	if len(raw) > MaxBytes {
-		return nil, &FormatError{1, 0, fmt.Sprintf("longer than %d bytes", MaxBytes)}
+		return nil, &FormatError{1, 0, fmt.Sprintf("longer than %d bytes", MaxBytes), ""}
 	}
 	raw = bytes.TrimPrefix(raw, byteOrderMark)
 	if !utf8.Valid(raw) {
@@ -72,7 +73,7 @@ func ReadCSV(raw []byte, m Mapping) ([]Line, error) {
 		}
 		if len(lines) == MaxLines {
 			at, _ := r.FieldPos(0)
-			return nil, &FormatError{at, 0, fmt.Sprintf("more than %d lines", MaxLines)}
+			return nil, &FormatError{at, 0, fmt.Sprintf("more than %d lines", MaxLines), ""}
 		}
 		line, err := columns.line(r, record)
 		if err != nil {
@@ -121,10 +122,10 @@ func separator(raw []byte, m Mapping) (rune, columns, error) {
 
 func locate(header []string, m Mapping) (columns, error) {
 	var fault error
-	find := func(name string, required bool) int {
+	find := func(member, name string, required bool) int {
 		if name == "" {
 			if required && fault == nil {
-				fault = &FormatError{1, 0, "the mapping names no column for the designators"}
+				fault = &FormatError{1, 0, "the mapping names no column for the designators", member}
 			}
 			return -1
 		}
@@ -132,17 +133,20 @@ func locate(header []string, m Mapping) (columns, error) {
 		for i, h := range header {
 			if strings.TrimSpace(h) == name {
 				if found >= 0 && fault == nil {
-					fault = &FormatError{1, 0, fmt.Sprintf("there are two columns %.60q", name)}
+					fault = &FormatError{1, 0, fmt.Sprintf("there are two columns %.60q", name), member}
 				}
 				found = i
 			}
 		}
 		if found < 0 && fault == nil {
-			fault = &FormatError{1, 0, fmt.Sprintf("there is no column %.60q; the columns are %s", name, list(header))}
+			fault = &FormatError{1, 0, fmt.Sprintf("there is no column %.60q; the columns are %s", name, list(header)), member}
 		}
 		return found
 	}
-	c := columns{find(m.Designators, true), find(m.Value, false), find(m.Tolerance, false), find(m.Rating, false), find(m.PartNumber, false), find(m.Count, false), find(m.NotFitted, false)}
+	c := columns{
+		find("designators", m.Designators, true), find("value", m.Value, false), find("tolerance", m.Tolerance, false), find("rating", m.Rating, false),
+		find("part_number", m.PartNumber, false), find("count", m.Count, false), find("not_fitted", m.NotFitted, false),
+	}
 	return c, fault
 }
 
@@ -163,7 +167,7 @@ func (c *columns) line(r *csv.Reader, record []string) (Line, error) {
 	row, _ := r.FieldPos(0)
 	fault := func(column int, format string, args ...any) error {
 		line, at := r.FieldPos(column)
-		return &FormatError{line, at, fmt.Sprintf(format, args...)}
+		return &FormatError{line, at, fmt.Sprintf(format, args...), ""}
 	}
 	cell := func(column int) string {
 		if column < 0 {
@@ -204,11 +208,11 @@ func formatError(err error) error {
 		if detail == "" {
 			detail = p.Err.Error()
 		}
-		return &FormatError{p.Line, p.Column, detail}
+		return &FormatError{p.Line, p.Column, detail, ""}
 	case errors.Is(err, io.EOF):
-		return &FormatError{1, 0, "there is no header line"}
+		return &FormatError{1, 0, "there is no header line", ""}
 	}
-	return &FormatError{1, 0, err.Error()}
+	return &FormatError{1, 0, err.Error(), ""}
 }
 
 func invalidText(raw []byte) error {
@@ -224,5 +228,5 @@ func invalidText(raw []byte) error {
 		}
 		raw = raw[size:]
 	}
-	return &FormatError{line, column, "not UTF-8"}
+	return &FormatError{line, column, "not UTF-8", ""}
 }

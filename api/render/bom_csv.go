@@ -1,0 +1,29 @@
+package render
+
+import (
+	"strconv"
+	"strings"
+
+	"railproof/api/wire"
+)
+
+// BomChecksCSV writes a line per bound line and difference, and one for a line that
+// agrees.
+func BomChecksCSV(a *wire.BomChecksAnswer) []byte {
+	s := newSheet("line", "rail", "role", "designators", "verdict", "field", "proven", "found", "detail")
+	for i := range a.Lines {
+		l := &a.Lines[i]
+		line := ""
+		if l.Line != nil {
+			line = strconv.Itoa(*l.Line)
+		}
+		head := []string{line, words(l.Rail), l.Role, words(strings.Join(l.Designators, " ")), l.Verdict}
+		if len(l.Differences) == 0 {
+			s.row(append(head, "", "", "", "")...)
+		}
+		for _, d := range l.Differences {
+			s.row(append(head[:5:5], d.Field, words(d.Proven), words(d.Found), words(d.Detail))...)
+		}
+	}
+	return s.bytes()
+}
