@@ -31,6 +31,17 @@ func (n Number) MarshalJSON() ([]byte, error) {
 	return appendFloat(nil, n.Value), nil
 }
 
+// appendText is MarshalJSON for AppendJSON.
+func (n *Number) appendText(b []byte) ([]byte, error) {
+	switch {
+	case n == nil:
+		return append(b, "null"...), nil
+	case n.Spread != nil:
+		return AppendJSON(b, n.Spread)
+	}
+	return appendFloat(b, n.Value), nil
+}
+
 // ContractValue returns what stands on the wire, for the check of answers.
 func (n *Number) ContractValue() any {
 	if n.Spread != nil {
