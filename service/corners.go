@@ -47,7 +47,7 @@ func (s *Service) CornersJoined(ctx context.Context, p *CornersPlan, parts [][]b
 				return err
 			}
 		}
-		s.concludeCorners(a, d.models[0])
+		s.concludeCorners(a)
 		s.done.corners(a)
 		return nil
 	})

@@ -11,7 +11,7 @@ import (
 )
 
 // concludeCorners judges and gathers what the answer rests on.
-func (s *Service) concludeCorners(a *CornersAnswer, model corners.Model) {
+func (s *Service) concludeCorners(a *CornersAnswer) {
 	a.judge()
 	s.bands(a)
 	d := &a.Design

@@ -2,6 +2,7 @@ package service
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"runtime"
 	"runtime/debug"
@@ -78,7 +79,7 @@ func (d *driver) tasks(work corners.Work, done func()) error {
 	}
 	all.Wait()
 	for _, err := range failed {
-		if c, ok := err.(*crash); ok {
+		if c, ok := errors.AsType[*crash](err); ok {
 			panic(c) // on the caller's goroutine, where the transport catches it
 		}
 	}

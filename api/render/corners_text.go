@@ -15,9 +15,9 @@ func CornersText(a *wire.CornersAnswer) string {
 	p.line("nominal at ", pointWords(a.NominalPoint), ": ", a.NominalStatus)
 	sides := cornerSides(a)
 	p.title("figures")
-	var rows [][]string
+	rows := make([][]string, len(sides))
 	for i := range sides {
-		rows = append(rows, sides[i].figures())
+		rows[i] = sides[i].figures()
 	}
 	p.table([]align{left, right, left, right, right, right, right}, []string{"quantity", "limit", "verdict", "nominal", "worst found", "root-sum-sq", "quantile"}, rows)
 	p.wrapped("Quantile: 99.865 % where a high value is bad, 0.135 % where a low one is, at the worst conditions. Root-sum-square in brackets: the response is too bent for it. A verdict with * rests on the models: the margin is smaller than their uncertainty.", "")

@@ -22,7 +22,7 @@ func EncodeCorners(w *CornersRequest, a *service.CornersAnswer, head Head) *Corn
 	e := &cornersEncoder{w, a}
 	nominal := a.Asked(a.Conditions.Typical())
 	out := &CornersAnswer{
-		Head: head, Status: "ok", Outcome: a.Verdict.String(), Seed: Integer(a.CornersRequest.Sampling.Seed), Evaluations: Integer(a.Evaluations),
+		Head: head, Status: "ok", Outcome: a.Verdict.String(), Seed: Integer(a.Sampling.Seed), Evaluations: Integer(a.Evaluations),
 		NominalPoint: EncodePoint(&nominal), NominalStatus: a.NominalEnd.String(), Variables: e.variables(), ConditionCorners: []CornerPoint{},
 		Failures: e.failures(), Stage: w.Stage, Conditions: w.Conditions, Limits: w.Limits, Basis: encodeBasis(&a.Basis),
 	}
@@ -39,8 +39,8 @@ func EncodeCorners(w *CornersRequest, a *service.CornersAnswer, head Head) *Corn
 		out.Quantities = append(out.Quantities, e.item(&a.Items[i]))
 	}
 	if a.Run != nil {
-		out.Sampling = nameOf(samplingMethods, a.CornersRequest.Sampling.Method)
-		out.SamplesAsked, out.SamplesRun = whole(a.CornersRequest.Sampling.Samples), whole(a.Run.Units())
+		out.Sampling = nameOf(samplingMethods, a.Sampling.Method)
+		out.SamplesAsked, out.SamplesRun = whole(a.Sampling.Samples), whole(a.Run.Units())
 		out.Yield, out.WorstSamples = e.yield(), e.worstSamples()
 	}
 	return out

@@ -41,8 +41,8 @@ func (b *batch) add(from Origin, z []float64) []float64 {
 }
 
 // moved appends the point with one coordinate changed.
-func (b *batch) moved(from Origin, z []float64, coordinate int, to float64) {
-	b.add(from, z)[coordinate] = to
+func (b *batch) moved(z []float64, coordinate int, to float64) {
+	b.add(FromSearch, z)[coordinate] = to
 }
 
 // ready makes room for the results.

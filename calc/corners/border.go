@@ -47,7 +47,7 @@ func (o *bordering) propose(s *Search, b *batch) {
 		r := &s.borders[i]
 		r.first = b.len()
 		for k := 1; k < borderSections; k++ {
-			b.moved(FromSearch, r.z, r.coordinate, r.place(k))
+			b.moved(r.z, r.coordinate, r.place(k))
 		}
 	}
 }

@@ -46,7 +46,7 @@ func (c *climbing) propose(s *Search, b *batch) {
 		b.add(FromSearch, w.at)
 		for k, ladder := range c.ladders {
 			for _, l := range ladder {
-				b.moved(FromSearch, w.at, k, l)
+				b.moved(w.at, k, l)
 			}
 		}
 	}

@@ -65,15 +65,15 @@ func (g *descending) begin(s *Search) {
 		if s.found[k].At == nil || s.resting[k] {
 			continue
 		}
-		g.add(s, k, s.found[k].At, s.found[k].score)
+		g.add(k, s.found[k].At, s.found[k].score)
 		for _, st := range s.starts[k] {
-			g.add(s, k, st.z, st.score)
+			g.add(k, st.z, st.score)
 		}
 		s.starts[k] = nil
 	}
 }
 
-func (g *descending) add(s *Search, target int, z []float64, score float64) {
+func (g *descending) add(target int, z []float64, score float64) {
 	n := len(z)
 	g.descents = append(g.descents, descent{
 		target: target, at: append([]float64(nil), z...), score: score, step: firstStep,
@@ -88,11 +88,11 @@ func (d *descent) proposeNeighbours(p *Problem, b *batch) {
 		d.up[i], d.down[i] = -1, -1
 		if d.at[i] < c.High {
 			d.up[i] = b.len()
-			b.moved(FromSearch, d.at, i, min(c.High, d.at[i]+d.step))
+			b.moved(d.at, i, min(c.High, d.at[i]+d.step))
 		}
 		if d.at[i] > c.Low {
 			d.down[i] = b.len()
-			b.moved(FromSearch, d.at, i, max(c.Low, d.at[i]-d.step))
+			b.moved(d.at, i, max(c.Low, d.at[i]-d.step))
 		}
 	}
 }

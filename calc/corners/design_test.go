@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"os"
+	"slices"
 	"sync"
 	"sync/atomic"
 	"testing"
@@ -179,7 +180,7 @@ func TestUnknownFieldIsNamed(t *testing.T) {
 	r := example(t, "buoy-5v0")
 	_, err := corners.NewDesign(r.stage, r.variables, &r.conditions, corners.DesignOptions{Scales: []corners.Scale{corners.Drift("/stage/diode/threshold_v", "diode/threshold_v", 0.1)}})
 	assert.ErrorContains(t, err, "/stage/diode/threshold_v")
-	bad := append(r.variables, spread.Variable{Pointer: "/stage/x", Field: "x", Min: 1, Typ: 2, Max: 3})
+	bad := append(slices.Clone(r.variables), spread.Variable{Pointer: "/stage/x", Field: "x", Min: 1, Typ: 2, Max: 3})
 	_, err = corners.NewDesign(r.stage, bad, &r.conditions, corners.DesignOptions{})
 	assert.ErrorContains(t, err, "/stage/x")
 }

@@ -17,8 +17,10 @@ type quasiNewton struct {
 }
 
 func newQuasiNewton(n int) quasiNewton {
-	return quasiNewton{n: n, inverse: make([]float64, n*n), at: make([]float64, n), slope: make([]float64, n),
-		s: make([]float64, n), y: make([]float64, n), hy: make([]float64, n), out: make([]float64, n)}
+	return quasiNewton{
+		n: n, inverse: make([]float64, n*n), at: make([]float64, n), slope: make([]float64, n),
+		s: make([]float64, n), y: make([]float64, n), hy: make([]float64, n), out: make([]float64, n),
+	}
 }
 
 func (q *quasiNewton) reset() { q.known, q.learned = false, false }

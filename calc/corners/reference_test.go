@@ -43,9 +43,10 @@ func (r *reference) in(t *testing.T, name string) float64 {
 
 func (r *reference) list(t *testing.T, name string) []float64 {
 	t.Helper()
-	var v []float64
-	for _, x := range r.Inputs[name].Value.([]any) {
-		v = append(v, x.(float64))
+	list := r.Inputs[name].Value.([]any)
+	v := make([]float64, len(list))
+	for i, x := range list {
+		v[i] = x.(float64)
 	}
 	require.NotEmpty(t, v)
 	return v

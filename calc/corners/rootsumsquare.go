@@ -139,12 +139,12 @@ func (j *LinearJob) proposeSlopes(s *base) {
 		switch c.Kind {
 		case Random:
 			for _, end := range []float64{c.Low, c.High} {
-				j.batch.moved(FromSearch, s.z, i, slopeStep*end)
-				j.batch.moved(FromSearch, s.z, i, 2*slopeStep*end)
+				j.batch.moved(s.z, i, slopeStep*end)
+				j.batch.moved(s.z, i, 2*slopeStep*end)
 			}
 		case Bias:
-			j.batch.moved(FromSearch, s.z, i, c.Low)
-			j.batch.moved(FromSearch, s.z, i, c.High)
+			j.batch.moved(s.z, i, c.Low)
+			j.batch.moved(s.z, i, c.High)
 		}
 	}
 }

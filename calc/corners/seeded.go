@@ -23,8 +23,8 @@ func (y *seeding) propose(s *Search, b *batch) {
 	typical := make([]float64, len(p.Coordinates))
 	b.add(FromNominal, typical)
 	for i := range p.Coordinates {
-		b.moved(FromSearch, typical, i, p.Coordinates[i].Low)
-		b.moved(FromSearch, typical, i, p.Coordinates[i].High)
+		b.moved(typical, i, p.Coordinates[i].Low)
+		b.moved(typical, i, p.Coordinates[i].High)
 	}
 	p.corners(b, FromConditionCorner, typical, p.conditions(), cornersUpTo)
 	for _, z := range y.points {

@@ -113,7 +113,8 @@ func (s *sketch) quantile(g *grid, p float64) (value, width float64) {
 	rank := p * float64(s.n)
 	below, w := 0.0, (g.hi-g.lo)/float64(bins)
 	for i := -1; i <= bins; i++ {
-		c, lo, hi := 0.0, g.lo+float64(i)*w, g.lo+float64(i+1)*w
+		var c float64
+		lo, hi := g.lo+float64(i)*w, g.lo+float64(i+1)*w
 		switch {
 		case i < 0:
 			c, lo, hi = float64(s.counts[bins]), s.min, g.lo

@@ -28,12 +28,12 @@ func (y *survey) propose(s *Search, b *batch) {
 	typical := make([]float64, len(p.Coordinates))
 	b.add(FromNominal, typical)
 	for i := range p.Coordinates {
-		b.moved(FromSearch, typical, i, p.Coordinates[i].Low)
-		b.moved(FromSearch, typical, i, p.Coordinates[i].High)
+		b.moved(typical, i, p.Coordinates[i].Low)
+		b.moved(typical, i, p.Coordinates[i].High)
 	}
 	for i := range p.Coordinates {
 		for _, l := range p.levels(i) {
-			b.moved(FromSearch, typical, i, l)
+			b.moved(typical, i, l)
 		}
 	}
 	p.corners(b, FromConditionCorner, typical, p.conditions(), cornersUpTo)
@@ -111,13 +111,13 @@ func (y *survey) absorb(s *Search, b *batch) bool {
 		}
 	}
 	for k := range s.p.Targets {
-		s.starts[k] = y.best(s.p, b, &s.p.Targets[k])
+		s.starts[k] = y.best(b, &s.p.Targets[k])
 	}
 	return true
 }
 
 // best returns the worst scattered points that lie well apart.
-func (y *survey) best(p *Problem, b *batch, t *Target) []start {
+func (y *survey) best(b *batch, t *Target) []start {
 	var kept []start
 	for i := y.scatter; i < b.len(); i++ {
 		score := b.score(i, t)

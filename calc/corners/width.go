@@ -40,7 +40,7 @@ func (j *WidthJob) Next() Work {
 			continue
 		}
 		for i := range j.p.Coordinates {
-			j.batch.moved(FromSearch, j.extremes[t].At, i, 0)
+			j.batch.moved(j.extremes[t].At, i, 0)
 		}
 	}
 	j.batch.ready()

@@ -44,7 +44,7 @@ type Sampler struct {
 // New lays out a design. The balanced methods round the number of samples up: to
 // a whole number per replicate, and for Sobol to a power of two.
 func New(d Design) (*Sampler, error) {
-	if !(d.Coordinates >= 0 && d.Samples >= 1 && d.Samples <= MaxSamples) {
+	if d.Coordinates < 0 || d.Samples < 1 || d.Samples > MaxSamples {
 		return nil, fmt.Errorf("sampling: %d samples of %d coordinates: between 1 and %d samples are possible", d.Samples, d.Coordinates, MaxSamples)
 	}
 	s := &Sampler{design: d, replicates: 1, perReplicate: uint64(d.Samples)}

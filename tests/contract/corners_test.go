@@ -424,14 +424,14 @@ func TestWorkStopsWhenTheClientLeaves(t *testing.T) {
 	defer s.Close()
 	body := encode(t, cornersOf(t, "buoy-5v0", object{"samples": 5000000, "methods": []string{"monte-carlo"}, "condition_corners": []object{{"input_v": 24, "load_current_a": 3, "ambient_degc": 25}}}))
 	ctx, leave := context.WithCancel(t.Context())
-	request, err := http.NewRequestWithContext(ctx, "POST", s.URL+"/v1/corners", bytes.NewReader(body))
+	request, err := http.NewRequestWithContext(ctx, http.MethodPost, s.URL+"/v1/corners", bytes.NewReader(body))
 	require.NoError(t, err)
 	request.Header.Set("Content-Type", "application/json")
 	gone := make(chan error, 1)
 	go func() {
 		r, err := http.DefaultClient.Do(request)
 		if err == nil {
-			r.Body.Close()
+			err = r.Body.Close()
 		}
 		gone <- err
 	}()
