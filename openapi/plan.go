@@ -59,6 +59,7 @@ type field struct {
 	index     []int
 	omitEmpty bool
 	omitZero  bool
+	ownZero   bool // its type says what zero is
 	required  bool
 	plan      *plan // nil: an unknown member of an open object
 }
@@ -238,7 +239,7 @@ func jsonFields(t reflect.Type, at []int) []field {
 			if name == "" {
 				name = f.Name
 			}
-			fields = append(fields, field{name: name, index: index, omitEmpty: hasOption(options, "omitempty"), omitZero: hasOption(options, "omitzero")})
+			fields = append(fields, field{name: name, index: index, omitEmpty: hasOption(options, "omitempty"), omitZero: hasOption(options, "omitzero"), ownZero: implements(f.Type, zeroerType)})
 		}
 	}
 	return fields

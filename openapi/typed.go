@@ -100,7 +100,7 @@ func (c *check) structure(p *plan, v reflect.Value) bool {
 }
 
 func (f *field) omitted(v reflect.Value) bool {
-	if f.omitZero && (v.IsZero() || implementsZero(v)) {
+	if f.omitZero && (v.IsZero() || f.ownZero && addressed(v, zeroerType).(interface{ IsZero() bool }).IsZero()) {
 		return true
 	}
 	if !f.omitEmpty {
@@ -113,13 +113,6 @@ func (f *field) omitted(v reflect.Value) bool {
 		return false
 	}
 	return v.IsZero()
-}
-
-func implementsZero(v reflect.Value) bool {
-	if !implements(v.Type(), zeroerType) {
-		return false
-	}
-	return addressed(v, zeroerType).(interface{ IsZero() bool }).IsZero()
 }
 
 func (c *check) field(p *plan, f *field, v reflect.Value) bool {

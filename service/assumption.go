@@ -56,19 +56,18 @@ type basis struct {
 // defaults lists every documented default that was used, with its effect.
 func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	list := make([]Assumption, 0, len(d.Assumed)+4)
-	places := make(map[string]*float64, len(d.Assumed))
-	if len(d.Assumed) > 0 {
-		for _, f := range e.Stage().Fields() {
-			places[f.ID] = f.Value
-		}
+	if len(d.Assumed) == 0 {
+		return list
 	}
+	places := registry{stage.Lookup{Fields: e.Stage().Fields()}}
 	var low, high evaluate.Result
 	for _, a := range d.Assumed {
-		if !bears(places, a.Field) {
+		place := places.of(a.Field)
+		if !places.bears(a.Field) {
 			continue
 		}
 		item := Assumption{Pointer: d.At + "/" + a.Field, Value: finite(a.Value), Low: finite(a.Low), High: finite(a.High), Why: a.Why}
-		if place := places[a.Field]; base != nil && place != nil && a.Low != a.High {
+		if base != nil && place != nil && a.Low != a.High {
 			was := *place
 			*place = a.Low
 			e.Eval(base.point, &low)
@@ -82,11 +81,23 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	return list
 }
 
+// registry finds the numbers of a stage.
+type registry struct{ stage.Lookup }
+
+// of returns the number with the id; nil if the stage has none.
+func (r *registry) of(id string) *float64 {
+	i := r.Find(id)
+	if i < 0 {
+		return nil
+	}
+	return r.Fields[i].Value
+}
+
 // bears reports whether the answer rests on a default: what a life is computed
 // from does not count where the data sheet states none.
-func bears(places map[string]*float64, field string) bool {
+func (r *registry) bears(field string) bool {
 	at, _, life := strings.Cut(field, "/life/")
-	return !life || parts.Known(*places[at+"/life/rated_s"])
+	return !life || parts.Known(*r.of(at + "/life/rated_s"))
 }
 
 // effect picks the quantity that moves most between the results.

@@ -12,7 +12,7 @@ import (
 //
 // The strings of the tree share one copy of the text.
 func quick(body []byte) (tree any, ok bool) {
-	r := reader{text: string(body)}
+	r := reader{text: string(body), members: make([]member, 0, 64), entries: make([]any, 0, 32)}
 	tree, ok = r.value(0)
 	r.space()
 	return tree, ok && r.at == len(r.text)

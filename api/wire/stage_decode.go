@@ -39,17 +39,17 @@ func (w *Stage) Decode(root string) (*Decoded, error) {
 // numbers fills the stage's registered numbers and collects their spreads.
 func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[]Fault) {
 	given := make([]slot, len(fields))
-	next := 0 // the struct and the registry are in nearly the same order
+	places := stage.Lookup{Fields: fields}
 	walk(reflect.ValueOf(w).Elem(), "", false, func(id string, s slot) {
 		if !s.given() {
 			return
 		}
-		i := fieldFrom(fields, next, id)
+		i := places.Find(id)
 		if i < 0 {
 			d.Unused = append(d.Unused, root+"/"+id)
 			return
 		}
-		given[i], next = s, i+1
+		given[i] = s
 	})
 	members := groups{}
 	for i := range fields {
@@ -65,21 +65,6 @@ func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[
 			*f.Value = parts.Unknown
 		}
 	}
-}
-
-// fieldFrom returns the place of an id, looked for from next on and around; -1 if
-// it is nowhere.
-func fieldFrom(fields []stage.Field, next int, id string) int {
-	for k := range fields {
-		i := next + k
-		if i >= len(fields) {
-			i -= len(fields)
-		}
-		if fields[i].ID == id {
-			return i
-		}
-	}
-	return -1
 }
 
 func (d *Decoded) number(f *stage.Field, n *Number, at string, members groups, faults *[]Fault) {

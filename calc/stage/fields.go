@@ -31,7 +31,7 @@ type Default struct {
 // Fields lists every number of the stage that its topology uses, in the order of
 // the contract. The pointers are into s.
 func (s *Stage) Fields() []Field {
-	f := make([]Field, 0, 96)
+	f := make([]Field, 0, 88+10*(len(s.OutputCapacitors)+len(s.InputCapacitors))+4*len(s.Phases))
 	f = append(f, required("switching_frequency_hz", &s.SwitchingFrequency, 1e3, 1e8))
 	f = mosfetFields(f, "high_side/", &s.HighSide)
 	if s.Rectifier == DiodeRectified {
@@ -72,6 +72,27 @@ func (s *Stage) Field(id string) *float64 {
 		}
 	}
 	return nil
+}
+
+// Lookup finds fields by their ids, at once where it is asked in their order.
+type Lookup struct {
+	Fields []Field
+	next   int
+}
+
+// Find returns the place of the field with the id; -1 if there is none.
+func (l *Lookup) Find(id string) int {
+	for k := range l.Fields {
+		i := l.next + k
+		if i >= len(l.Fields) {
+			i -= len(l.Fields)
+		}
+		if l.Fields[i].ID == id {
+			l.next = i + 1
+			return i
+		}
+	}
+	return -1
 }
 
 func required(id string, v *float64, least, greatest float64) Field {
