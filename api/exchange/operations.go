@@ -11,4 +11,5 @@ var computations = map[string]handler{
 	"sizing":        size,
 	"steadyState":   steadyState,
 	"substitutions": substitutions,
+	"transients":    transients,
 }

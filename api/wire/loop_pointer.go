@@ -16,6 +16,7 @@ var loopPlaces = []struct{ prefix, place string }{
 	{"/start/precharge_v", "/event/start_up/pre_bias_v"},
 	{"/start/load_from_v", "/event/start_up/load_from_v"},
 	{"/start/soft_start_s", "/event/start_up/soft_start_s"},
+	{"/events/load_step/", "/event/load_step/"},
 	{"/events", "/event"},
 	{"/control_high_v", "/stage/modulator"},
 }

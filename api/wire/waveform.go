@@ -63,11 +63,15 @@ const waveformDigits = 6
 
 // rounded returns the numbers nearest to the values that have six significant
 // digits.
-func rounded(values []float64) []float64 {
+func rounded(values []float64) []float64 { return roundedTo(values, waveformDigits) }
+
+// roundedTo returns the numbers nearest to the values that have so many significant
+// digits.
+func roundedTo(values []float64, digits int) []float64 {
 	out := make([]float64, len(values))
 	var text [32]byte
 	for i, v := range values {
-		short, err := strconv.ParseFloat(string(strconv.AppendFloat(text[:0], v, 'e', waveformDigits-1, 64)), 64)
+		short, err := strconv.ParseFloat(string(strconv.AppendFloat(text[:0], v, 'e', digits-1, 64)), 64)
 		if err != nil {
 			panic("wire: a number that cannot be read back")
 		}
