@@ -24,7 +24,7 @@ type loadStep struct {
 // Length of a followed step, in periods.
 const (
 	stepAfter    = 2.3   // [1] periods before it, between two clocks
-	leastFollow  = 120.0 // [1]
+	leastFollow  = 60.0  // [1] the deviation of any loop that is worth its name comes well before
 	mostFollow   = 800.0 // [1]
 	recoveryBand = 0.01  // [1] half width of the band of recovery, over the output voltage
 )

@@ -83,20 +83,29 @@ func (s *Service) place(r *worstRequest, w *worstCase, p *worstPass, z []float64
 	e.Eval(&point, &place.result)
 	demandFinite(&place.result)
 	w.seen.Add(r.at, st, &point, &place.result)
-	bands := bandsOf(st)
+	bands, own, typical := bandsOf(st), numbersOf(e.Stage()), numbersOf(st)
 	for _, end := range []struct {
 		result *evaluate.Result
 		of     func(*corners.Scale) float64
 	}{{&place.low, func(b *corners.Scale) float64 { return b.Low }}, {&place.high, func(b *corners.Scale) float64 { return b.High }}} {
 		for i := range bands {
 			for _, field := range bands[i].Fields {
-				*e.Stage().Field(field) = *st.Field(field) * end.of(&bands[i])
+				*own[field] = *typical[field] * end.of(&bands[i])
 			}
 		}
 		e.Eval(&point, end.result)
 		demandFinite(end.result)
 	}
 	return place
+}
+
+// numbersOf returns where a stage keeps each of its numbers.
+func numbersOf(s *stage.Stage) map[string]*float64 {
+	m := make(map[string]*float64, 96)
+	for _, f := range s.Fields() {
+		m[f.ID] = f.Value
+	}
+	return m
 }
 
 func appendFloats(b []byte, list []float64) []byte {
