@@ -144,6 +144,7 @@ func (a *CornersAnswer) linear(d *driver) error {
 	job := corners.NewLinear(a.Bound.Problem(), at)
 	err := d.do(job, pointsPerTask, a.expected.Linear)
 	a.Linear = job.Results()
+	a.Evaluations += job.Evaluations()
 	return err
 }
 
@@ -225,6 +226,7 @@ func (a *CornersAnswer) sharing(d *driver) error {
 	}
 	d.meter.Expect(a.expected.Width)
 	a.Width = corners.NewWidth(a.Bound.Problem(), a.Extremes)
-	a.Evaluations += a.expected.Width
-	return d.do(a.Width, pointsPerTask, a.expected.Width)
+	err := d.do(a.Width, pointsPerTask, a.expected.Width)
+	a.Evaluations += a.Width.Evaluations()
+	return err
 }

@@ -2,6 +2,7 @@ package render
 
 import (
 	"fmt"
+	"math"
 	"strconv"
 	"strings"
 
@@ -14,6 +15,7 @@ func CornersText(a *wire.CornersAnswer) string {
 	p.line(railName(a.Stage), ": worst case, ", a.Outcome)
 	p.line("nominal at ", pointWords(a.NominalPoint), ": ", a.NominalStatus)
 	sides := cornerSides(a)
+	p.firstToFail(sides)
 	p.title("figures")
 	rows := make([][]string, len(sides))
 	for i := range sides {
@@ -29,6 +31,33 @@ func CornersText(a *wire.CornersAnswer) string {
 	p.cornerFailures(a.Failures)
 	p.basis(&a.Basis)
 	return p.b.String()
+}
+
+// firstToFail names the limit at the worst that has the least margin.
+func (p *page) firstToFail(sides []cornerSide) {
+	var first *cornerSide
+	least := 0.0
+	for i := range sides {
+		s := &sides[i]
+		if s.limit == nil || *s.limit == 0 || s.q.Limit.At == "nominal" || s.value() == nil {
+			continue
+		}
+		margin := (*s.limit - *s.value()) / math.Abs(*s.limit)
+		if s.name == "least" {
+			margin = -margin
+		}
+		if first == nil || margin < least {
+			first, least = s, margin
+		}
+	}
+	if first == nil {
+		return
+	}
+	words := "nearest to its limit: "
+	if least < 0 {
+		words = "furthest beyond its limit: "
+	}
+	p.wrapped(words+first.q.Quantity+", "+figure(first.value(), first.q.Unit)+" of "+first.bound()+", margin "+percent(least), "  ")
 }
 
 // cornerSide is one quantity on the side on which it is bad.

@@ -55,6 +55,7 @@ type LinearJob struct {
 	bases   []base
 	results []RootSumSquare
 	stage   int
+	done    int // evaluations
 }
 
 // base is one corner of the conditions, shared by the targets whose worst point has
@@ -126,8 +127,12 @@ func (j *LinearJob) Next() Work {
 	}
 	j.stage++
 	j.batch.ready()
+	j.done += j.batch.len()
 	return &j.batch
 }
+
+// Evaluations returns the number of evaluations handed out.
+func (j *LinearJob) Evaluations() int { return j.done }
 
 // proposeSlopes adds the base, and per coordinate two near points and the end on
 // each side.

@@ -47,6 +47,9 @@ func (j *WidthJob) Next() Work {
 	return &j.batch
 }
 
+// Evaluations returns the number of evaluations handed out.
+func (j *WidthJob) Evaluations() int { return j.batch.len() }
+
 // Shares returns a target's shares, the greatest first; nil if it has no worst
 // point. A coordinate without which the quantity has no value stands first with a
 // NaN change.

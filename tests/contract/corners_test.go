@@ -181,7 +181,7 @@ func TestInteriorExtremesAreFound(t *testing.T) {
 // The answer holds together: the worst point is no better than nominal, than any
 // unit, and than the ends of the tornado; the shares are sorted.
 func TestAnalysisHoldsTogether(t *testing.T) {
-	a := proved(t, server(t), cornersOf(t, "buoy-5v0", object{"samples": 400, "attribution_samples": 64}))
+	a := proved(t, server(t), cornersOf(t, "buoy-5v0", object{"samples": 400, "attribution_samples": 64, "quantiles": []float64{0.05}}))
 	require.Equal(t, "ok", a["status"])
 	pointers := map[any]bool{}
 	for _, v := range a["variables"].([]any) {
@@ -200,6 +200,15 @@ func TestAnalysisHoldsTogether(t *testing.T) {
 			for _, s := range within(q, "statistics").([]any) {
 				require.GreaterOrEqual(t, worst, sign*within(s, side).(float64), key)
 				require.EqualValues(t, 400, within(s, "samples"))
+				last, probability := -1e300, []float64{0.00135, 0.01, 0.05, 0.5, 0.99, 0.99865}
+				require.Len(t, within(s, "quantiles"), len(probability))
+				for i, p := range probability {
+					require.Equal(t, p, within(s, "quantiles", i, "probability_ratio"))
+					v := within(s, "quantiles", i, "value").(float64)
+					require.GreaterOrEqual(t, v, last)
+					require.Positive(t, within(s, "quantiles", i, "error"))
+					last = v
+				}
 			}
 			for _, b := range within(q, "one_at_a_time").([]any) {
 				require.GreaterOrEqual(t, worst, sign*within(b, "at_min").(float64), key)
