@@ -30,6 +30,10 @@ var renderers = map[string]map[string]renderer{
 		"text/csv": func(v any) []byte { return render.CornersCSV(v.(*wire.CornersAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.CornersText(v.(*wire.CornersAnswer))) },
 	},
+	"loopGain": {
+		"text/csv": func(v any) []byte { return render.LoopCSV(v.(*wire.LoopGainAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.LoopText(v.(*wire.LoopGainAnswer))) },
+	},
 	"losses": {
 		"text/csv": func(v any) []byte { return render.LossesCSV(v.(*wire.LossesAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.LossesText(v.(*wire.LossesAnswer))) },
@@ -48,6 +52,10 @@ var renderers = map[string]map[string]renderer{
 	"substitutions": {
 		"text/csv": func(v any) []byte { return render.SubstitutionsCSV(v.(*wire.SubstitutionsAnswer)) },
 		TextForm:   func(v any) []byte { return []byte(render.SubstitutionsText(v.(*wire.SubstitutionsAnswer))) },
+	},
+	"transients": {
+		"text/csv": func(v any) []byte { return render.TransientsCSV(v.(*wire.TransientsAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.TransientsText(v.(*wire.TransientsAnswer))) },
 	},
 }
 
