@@ -40,6 +40,8 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		drawn := exchange.Drawn(form)
 		if drawn {
 			request.Draw(view(c))
+		}
+		if form != echo.MIMEApplicationJSON { // pictures and pages carry their style with them
 			c.Response().Header().Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; style-src 'unsafe-inline'; frame-ancestors 'none'")
 		}
 		if kept, found := a.results.Get(request.ResultID); found && kept.Media == form && !explained && c.QueryParam("timings") != "true" {

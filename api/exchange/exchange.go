@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"time"
 
+	"railproof/api/render"
 	"railproof/api/wire"
 	"railproof/openapi"
 	"railproof/service"
@@ -26,7 +27,7 @@ func New(contract *openapi.Contract, s *service.Service) *Exchange {
 type Answer struct {
 	Operation string
 	Value     any      // the wire value that Body encodes
-	Body      []byte   // JSON, one line
+	Body      []byte   // in the own form of the operation: JSON on one line, or a page
 	ResultID  string   // empty for dictionaries
 	Timings   []Timing // outside the result
 	view      View
@@ -115,6 +116,11 @@ func (x *Exchange) finish(operation string, value any, watch *stopwatch) (*Answe
 		return nil, problemOf(fmt.Errorf("exchange: answer of %s breaks the contract: %+v", operation, faults))
 	}
 	watch.lap("check-answer")
+	if report, is := value.(*render.Report); is {
+		body := report.HTML()
+		watch.lap("encode")
+		return &Answer{Operation: operation, Value: value, Body: body, Timings: watch.laps}, nil
+	}
 	body, err := json.Marshal(value)
 	if err != nil {
 		return nil, problemOf(fmt.Errorf("exchange: answer of %s cannot be encoded: %w", operation, err))

@@ -43,9 +43,9 @@ func outcome(answer *Answer, problem *Problem) jobs.Outcome {
 	return jobs.Outcome{Problem: text, Busy: problem.Kind == Busy, Cause: problem.Cause}
 }
 
-// Kept returns the form of the answer in which it is kept: JSON where it has that.
+// Kept returns the answer in its own form, in which it is kept.
 func (a *Answer) Kept() (results.Answer, *Problem) {
-	return results.Answer{Media: jsonForm, Body: a.Body}, nil
+	return results.Answer{Media: ownForm(a.Operation), Body: a.Body}, nil
 }
 
 // splittable is the operation of which large requests are worth splitting.

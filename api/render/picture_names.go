@@ -29,7 +29,7 @@ func quantityName(key string) string {
 		name = strings.TrimSuffix(name, endings[i])
 	}
 	name = spoken(name)
-	for _, r := range [][2]string{{" pp", ", peak to peak"}, {"rms", "RMS"}, {"esl", "ESL"}, {"junction", "junction temperature"}, {"winding", "winding temperature"}} {
+	for _, r := range [][2]string{{" pp", ", peak to peak"}, {"rms", "RMS"}, {"esl", "ESL"}, {"esr", "ESR"}, {"junction", "junction temperature"}, {"winding", "winding temperature"}} {
 		name = strings.ReplaceAll(name, r[0], r[1])
 	}
 	if found {

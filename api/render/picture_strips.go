@@ -72,7 +72,7 @@ func (s *strips) draw(c draw.Canvas) {
 
 func (s *strip) draw(c draw.Canvas, top vg.Length) {
 	width := c.Max.X - c.Min.X
-	verdict := clip(bodyInk, s.verdict, 0.55*width)
+	verdict := clip(bodyInk, s.verdict, max(0.55*width, width-headInk.Width(s.scale.titled())-px(16)))
 	write(c, headInk, c.Min.X, top-stripHead/2, draw.XLeft, clip(headInk, s.scale.titled(), width-bodyInk.Width(verdict)-px(12)))
 	write(c, bodyInk, c.Max.X, top-stripHead/2, draw.XRight, verdict)
 	side := px(16)

@@ -21,6 +21,9 @@ func WindowsPicture(a *wire.SizingAnswer) *Picture {
 			continue
 		}
 		s.scale = ranged(quantityName(w.Name), w.Unit, values).logarithmic(20)
+		if !s.scale.log {
+			s.scale.least = min(s.scale.least, 0)
+		}
 		s.scale = s.scale.padded(0.15)
 		s.verdict = windowWords(w)
 		list.rows = append(list.rows, s)

@@ -1,0 +1,191 @@
+package render
+
+import (
+	"bytes"
+	_ "embed"
+	"html/template"
+	"slices"
+
+	"railproof/api/wire"
+)
+
+// Report is the document that proves a rail: answers of several operations, and
+// the request that they came from. A nil answer was not computed.
+type Report struct {
+	Title    string
+	Date     string   // as given; empty: none
+	Sections []string // to be shown, by their names in the contract
+	Request  map[string]any
+	Engine   wire.Engine
+	ResultID string
+	Control  string // how the output is held in these answers
+
+	Sizing   *wire.SizingAnswer
+	Steady   *wire.SteadyStateAnswer
+	Losses   *wire.LossesAnswer
+	Grid     *wire.LossesAnswer
+	Corners  *wire.CornersAnswer
+	Rules    *wire.RuleChecksAnswer
+	Parts    []ReportPart
+	Excluded []string // why something that was asked for is missing
+}
+
+// ReportPart is one request that the report was made of.
+type ReportPart struct{ Method, Path, ResultID string }
+
+// article is the document as the template writes it.
+type article struct {
+	Title, Rail, Date string
+	Facts             []fact
+	Sections          []chapter
+	Notice            string
+	Engine            string
+	ResultID          string
+}
+
+// fact is one line of the summary.
+type fact struct{ Name, Text, Class string }
+
+// chapter is a section with its blocks.
+type chapter struct {
+	ID, Title string
+	Blocks    []part
+}
+
+// part is one block of a chapter: exactly one of its fields is set, apart from
+// Caption and Class.
+type part struct {
+	Head    string
+	Text    string
+	Items   []string
+	Table   *grille
+	Picture template.HTML // an SVG of ours, in which all text is escaped
+	Code    string
+	Caption string
+	Class   string
+}
+
+// grille is a table.
+type grille struct {
+	Head []entry
+	Rows [][]entry
+}
+
+// entry is a text with a class: n for numbers, pass, fail or mind for verdicts.
+type entry struct{ Text, Class string }
+
+//go:embed report.tmpl
+var reportText string
+
+var reportTemplate = template.Must(template.New("report").Parse(reportText))
+
+// chapters lists the sections that a report may have, in its order.
+var chapters = []struct {
+	name, title string
+	write       func(*Report) []part
+}{
+	{"requirement", "Requirement", (*Report).requirement},
+	{"stage", "Stage and parts", (*Report).stage},
+	{"sizing", "Sizing", (*Report).sizing},
+	{"operating-figures", "Operating figures", (*Report).figures},
+	{"losses", "Losses and temperatures", (*Report).losses},
+	{"worst-case", "Worst case", (*Report).worstCase},
+	{"findings", "Findings and waivers", (*Report).findings},
+	{"cautions", "Cautions", (*Report).cautions},
+	{"assumptions", "Assumptions", (*Report).assumptions},
+	{"reproduction", "How to reproduce this", (*Report).reproduction},
+}
+
+// HTML writes the report as one page that needs nothing else.
+func (r *Report) HTML() []byte {
+	a := article{
+		Title: r.Title, Rail: r.rail(), Date: r.Date, Facts: r.summary(), ResultID: r.ResultID,
+		Engine: r.Engine.Name + " " + r.Engine.Version + ", contract " + r.Engine.ContractVersion + ", " + r.Engine.Platform,
+	}
+	for _, b := range r.bases() {
+		a.Notice = b.Notice
+	}
+	for _, c := range chapters {
+		if !slices.Contains(r.Sections, c.name) {
+			continue
+		}
+		if blocks := c.write(r); len(blocks) > 0 {
+			a.Sections = append(a.Sections, chapter{c.name, c.title, blocks})
+		}
+	}
+	var out bytes.Buffer
+	// a buffer takes every write, and the template is held by a test
+	if err := reportTemplate.Execute(&out, &a); err != nil {
+		panic("render: report template: " + err.Error())
+	}
+	return out.Bytes()
+}
+
+func (r *Report) rail() string {
+	if s, is := r.Request["stage"].(map[string]any); is {
+		if name, is := s["name"].(string); is && name != "" {
+			return name
+		}
+	}
+	return "unnamed rail"
+}
+
+// bases returns what each answer rests on.
+func (r *Report) bases() (list []*wire.Basis) {
+	if r.Sizing != nil {
+		list = append(list, &r.Sizing.Basis)
+	}
+	if r.Steady != nil {
+		list = append(list, &r.Steady.Basis)
+	}
+	if r.Losses != nil {
+		list = append(list, &r.Losses.Basis)
+	}
+	if r.Corners != nil {
+		list = append(list, &r.Corners.Basis)
+	}
+	if r.Rules != nil {
+		list = append(list, &r.Rules.Basis)
+	}
+	return list
+}
+
+// drawing puts a picture into the page; nothing for nil.
+func drawing(p *Picture, caption string) []part {
+	if p == nil {
+		return nil
+	}
+	return []part{{Picture: template.HTML(p.SVG(DefaultWidth)), Caption: caption}} //nolint:gosec // every text in it is escaped when it is drawn
+}
+
+func plainCells(texts ...string) []entry {
+	row := make([]entry, len(texts))
+	for i, t := range texts {
+		row[i].Text = t
+	}
+	return row
+}
+
+// row makes cells; kinds has a letter for each: t for text, n for a number.
+func row(kinds string, texts ...string) []entry {
+	cells := plainCells(texts...)
+	for i := range cells {
+		if i < len(kinds) && kinds[i] == 'n' {
+			cells[i].Class = "n"
+		}
+	}
+	return cells
+}
+
+// judged is a cell with a verdict.
+func judged(verdict string) entry {
+	switch verdict {
+	case "pass", "met", "ok":
+		return entry{verdict, "pass"}
+	case "fail", "not met", "runaway", "over-temperature", "drop-out", "no-operating-point", "too-short-on-time", "infeasible":
+		return entry{verdict, "fail"}
+	case "no-limit":
+		return entry{"no limit", ""}
+	}
+	return entry{verdict, "mind"}
+}

@@ -1,0 +1,33 @@
+package wire
+
+// ReportsRequest asks for the document that proves a rail.
+type ReportsRequest struct {
+	Title       string       `json:"title,omitzero"`
+	Stage       *Stage       `json:"stage"`
+	Requirement *Requirement `json:"requirement"`
+	Conditions  *Conditions  `json:"conditions,omitzero"`
+	Limits      []Limit      `json:"limits,omitzero"`
+	Packs       []PackChoice `json:"packs,omitzero"`
+	Waivers     []Waiver     `json:"waivers,omitzero"`
+	Date        string       `json:"date,omitzero"`
+	Sections    []string     `json:"sections,omitzero"`
+	Samples     *Integer     `json:"samples,omitzero"`
+	Seed        *Integer     `json:"seed,omitzero"`
+}
+
+// Setting is what the parts of a report share: the conditions with all their
+// defaults, and what the stage can be asked for.
+type Setting struct {
+	Conditions *Conditions
+	HasLoop    bool // modulator, compensator and feedback
+}
+
+// Decode checks the request as a whole. The error is an *InvalidError.
+func (w *ReportsRequest) Decode() (*Setting, error) {
+	checks := RuleChecksRequest{Stage: w.Stage, Requirement: w.Requirement, Conditions: w.Conditions, Limits: w.Limits, Packs: w.Packs, Waivers: w.Waivers, Date: w.Date}
+	p, err := checks.Decode()
+	if err != nil {
+		return nil, err
+	}
+	return &Setting{Conditions: EncodeConditions(&p.Conditions), HasLoop: w.Stage.Modulator != nil && w.Stage.Compensator != nil && w.Stage.Feedback != nil}, nil
+}
