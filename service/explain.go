@@ -3,10 +3,12 @@ package service
 import (
 	"math"
 
+	"railproof/calc/evaluate"
 	"railproof/calc/losses"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
+	"railproof/calc/thermal"
 )
 
 // Equation is one figure and how it follows.
@@ -27,21 +29,26 @@ type Input struct {
 }
 
 // reproduces is how near the formula's value must come to the answer's to explain
-// it: the circuit was solved with temperatures that may differ by the tolerance of
-// the equilibrium.
-const reproduces = 1e-5 // [1]
+// it. Both are sums of the same products, but the last step of the equilibrium, at
+// most its tolerance, lies between the bridge voltage and the input current of one
+// and of the other.
+const reproduces = 1e-6 // [1]
 
-// ExplainLosses tells how loss items follow from the figures of a point. An item
-// that the formula does not reproduce, as those of unequal phases, has none.
+// ExplainLosses tells how every loss item and the totals follow at a point. It
+// evaluates the point again for the currents at the switching instants.
 func ExplainLosses(s *stage.Stage, p *stage.Point, o *Outcome) []Equation {
-	x := explainer{s: s, p: p, o: o, q: &o.Quantities}
+	e := evaluate.Prepare(s)
+	var again evaluate.Result
+	e.Eval(p, &again)
+	x := explainer{s: s, p: p, q: &o.Quantities, op: e.Operation(), at: e.CircuitDegC()}
+	x.phases = phasesOf(s, x.op)
 	var list []Equation
 	for i := range o.Losses.Items[:o.Losses.N] {
 		item := &o.Losses.Items[i]
-		e, value := x.item(item)
+		eq, value := x.item(item)
 		if math.Abs(value-item.Power) <= reproduces*math.Abs(item.Power) {
-			e.Quantity, e.Value, e.Unit = item.Part.String()+"/"+item.Mechanism.String(), item.Power, "W"
-			list = append(list, e)
+			eq.Quantity, eq.Value, eq.Unit = item.Part.String()+"/"+item.Mechanism.String(), item.Power, "W"
+			list = append(list, eq)
 		}
 	}
 	return append(list, x.totals()...)
@@ -49,17 +56,28 @@ func ExplainLosses(s *stage.Stage, p *stage.Point, o *Outcome) []Equation {
 
 // explainer puts the figures of one point into formulas.
 type explainer struct {
-	s *stage.Stage
-	p *stage.Point
-	o *Outcome
-	q *quantity.Vector
+	s      *stage.Stage
+	p      *stage.Point
+	q      *quantity.Vector
+	op     *losses.Operation
+	at     *thermal.Vector // [degC] of the parts as the circuit was solved
+	phases []phase         // one where all are equal
 }
 
-func (x *explainer) degC(p losses.Part) float64 { return x.o.PartDegC[p] }
+// rests reports whether the switches do not switch.
+func (x *explainer) rests() bool { return !(x.op.Solution.Duty > 0 && x.op.Solution.Duty < 1) }
+
+// switching lists the mechanisms that need edges.
+var switching = map[losses.Mechanism]bool{
+	losses.Overlap: true, losses.OutputCharge: true, losses.Recovery: true, losses.JunctionCharge: true, losses.DeadTime: true, losses.GateDrive: true,
+}
 
 // item returns the equation of a loss item and the value that it gives; NaN for a
 // mechanism that no formula here explains.
 func (x *explainer) item(i *losses.Item) (Equation, float64) {
+	if x.rests() && switching[i.Mechanism] {
+		return Equation{Formula: "P = 0, the switches rest", Inputs: []Input{{"D", x.op.Solution.Duty, "1"}}, Source: "no edges"}, 0
+	}
 	switch i.Part {
 	case losses.HighSide:
 		return x.highSide(i.Mechanism)
@@ -75,108 +93,15 @@ func (x *explainer) item(i *losses.Item) (Equation, float64) {
 	return x.capacitor(i.Part)
 }
 
-func (x *explainer) highSide(m losses.Mechanism) (Equation, float64) {
-	hs, c, q := &x.s.HighSide, &x.s.Controller, x.q
-	f, vin := x.s.SwitchingFrequency, q[quantity.BridgeVoltage]
-	switch m {
-	case losses.Conduction:
-		r, _ := hs.OnResistanceAt(x.degC(losses.HighSide), c.Drive)
-		i := q[quantity.HighSideRMS]
-		return Equation{Formula: "P = R Irms²", Inputs: []Input{{"R", r, "Ohm"}, {"Irms", i, "A"}}, Source: "Ohm's law at the junction temperature"}, losses.Resistive(r, i*i)
-	case losses.Overlap:
-		charge := hs.SwitchChargeAt(vin)
-		on := losses.Transition(charge, c.GateOn+hs.InternalGate, c.Drive-hs.Plateau)
-		off := losses.Transition(charge, c.GateOff+hs.InternalGate, hs.Plateau)
-		valley, peak := q[quantity.InductorValley], q[quantity.InductorPeak]
-		return Equation{
-			Formula: "P = Vin f (max(Ion, 0) ton + max(Ioff, 0) toff)/2, t = Qsw R/V",
-			Inputs:  []Input{{"Vin", vin, "V"}, {"f", f, "Hz"}, {"Ion", valley, "A"}, {"ton", on, "s"}, {"Ioff", peak, "A"}, {"toff", off, "s"}, {"Qsw", charge, "C"}},
-			Source:  "linear transitions of current and voltage, one after the other",
-		}, losses.OverlapLoss(vin, f, valley, peak, on, off)
-	case losses.OutputCharge:
-		_, own := hs.OutputAt(vin)
-		charge, energy := 0.0, 0.0
-		if x.s.Rectifier != stage.DiodeRectified {
-			charge, energy = x.s.LowSide.OutputAt(vin)
-		}
-		return Equation{
-			Formula: "P = f (Eown + Vin Qpartner − Epartner)",
-			Inputs:  []Input{{"f", f, "Hz"}, {"Eown", own, "J"}, {"Vin", vin, "V"}, {"Qpartner", charge, "C"}, {"Epartner", energy, "J"}},
-			Source:  "charge and energy of the non-linear output capacitances",
-		}, losses.OutputChargeLoss(vin, f, own, charge, energy)
-	case losses.Recovery:
-		charge := x.s.LowSide.RecoveryCharge
-		if x.s.Rectifier == stage.DiodeRectified {
-			charge = x.s.Diode.RecoveryCharge
-		}
-		return Equation{Formula: "P = Vin Qrr f", Inputs: []Input{{"Vin", vin, "V"}, {"Qrr", charge, "C"}, {"f", f, "Hz"}}, Source: "charge drawn through the switch"}, losses.RecoveryLoss(vin, charge, f)
-	case losses.JunctionCharge:
-		charge, energy := x.s.Diode.JunctionChargeAt(vin)
-		return Equation{Formula: "P = f (Vin Qj − Ej)", Inputs: []Input{{"f", f, "Hz"}, {"Vin", vin, "V"}, {"Qj", charge, "C"}, {"Ej", energy, "J"}}, Source: "charge and energy of the diode's junction"}, losses.OutputChargeLoss(vin, f, 0, charge, energy)
-	}
-	return Equation{}, math.NaN()
-}
-
-func (x *explainer) rectifier(m losses.Mechanism) (Equation, float64) {
-	ls, d, c, q := &x.s.LowSide, &x.s.Diode, &x.s.Controller, x.q
-	f, td := x.s.SwitchingFrequency, c.DeadTime
-	on, off, i := q[quantity.InductorValley], q[quantity.InductorPeak], q[quantity.RectifierRMS]
-	switch {
-	case m == losses.Conduction && x.s.Rectifier == stage.DiodeRectified:
-		vt, _ := d.ThresholdAt(x.degC(losses.Diode))
-		mean := q[quantity.RectifierMean]
-		return Equation{Formula: "P = Vt Imean + Rd Irms²", Inputs: []Input{{"Vt", vt, "V"}, {"Imean", mean, "A"}, {"Rd", d.Slope, "Ohm"}, {"Irms", i, "A"}}, Source: "threshold and slope of the diode"}, losses.DiodeConduction(vt, d.Slope, mean, i*i)
-	case m == losses.Conduction:
-		r, _ := ls.OnResistanceAt(x.degC(losses.LowSide), c.Drive)
-		return Equation{
-			Formula: "P = R (Irms² − f td (Ivl² + Ipk²))",
-			Inputs:  []Input{{"R", r, "Ohm"}, {"Irms", i, "A"}, {"f", f, "Hz"}, {"td", td, "s"}, {"Ivl", on, "A"}, {"Ipk", off, "A"}},
-			Source:  "Ohm's law at the junction temperature, without the dead times",
-		}, losses.Resistive(r, i*i-losses.DeadTimeShare(f, td, on, off))
-	case m == losses.DeadTime:
-		return Equation{
-			Formula: "P = f td Vsd (|Ivl| + |Ipk|)",
-			Inputs:  []Input{{"f", f, "Hz"}, {"td", td, "s"}, {"Vsd", ls.BodyDiode, "V"}, {"Ivl", on, "A"}, {"Ipk", off, "A"}},
-			Source:  "body diode at both edges",
-		}, losses.DeadTimeLoss(f, td, ls.BodyDiode, on) + losses.DeadTimeLoss(f, td, ls.BodyDiode, off)
-	case m == losses.Leakage:
-		leak, _ := d.LeakageAt(x.degC(losses.Diode))
-		duty, vin := q[quantity.DutyRatio], q[quantity.BridgeVoltage]
-		return Equation{Formula: "P = D Vin Ir", Inputs: []Input{{"D", duty, "1"}, {"Vin", vin, "V"}, {"Ir", leak, "A"}}, Source: "reverse current at the junction temperature"}, losses.LeakageLoss(duty, vin, leak)
-	}
-	return Equation{}, math.NaN()
-}
-
-func (x *explainer) inductor(m losses.Mechanism) (Equation, float64) {
-	l, q := &x.s.Inductor, x.q
-	r, _ := l.DCResistanceAt(x.degC(losses.Inductor))
-	mean, rms := q[quantity.InductorMean], q[quantity.InductorRMS]
-	switch m {
-	case losses.WindingDC:
-		return Equation{Formula: "P = Rdc Imean²", Inputs: []Input{{"Rdc", r, "Ohm"}, {"Imean", mean, "A"}}, Source: "copper at the winding temperature"}, losses.WindingDCLoss(r, mean)
-	case losses.WindingAC:
-		return Equation{Formula: "P = rac Rdc (Irms² − Imean²)", Inputs: []Input{{"rac", l.ACResistanceRatio, "1"}, {"Rdc", r, "Ohm"}, {"Irms", rms, "A"}, {"Imean", mean, "A"}}, Source: "copper at the winding temperature"}, losses.WindingACLoss(r, l.ACResistanceRatio, mean, rms*rms)
-	case losses.CoreHysteresis:
-		density, volume := q[quantity.CorePowerDensity], l.Core.Volume
-		return Equation{
-			Formula: "P = pv Ve, pv from the improved generalised Steinmetz equation",
-			Inputs:  []Input{{"pv", density, "W/m3"}, {"Ve", volume, "m3"}, {"k", l.Core.K, "1"}, {"alpha", l.Core.Alpha, "1"}, {"beta", l.Core.Beta, "1"}, {"ΔB", q[quantity.FluxSwing], "T"}, {"f", x.s.SwitchingFrequency, "Hz"}},
-			Source:  "improved generalised Steinmetz equation on the real flux",
-		}, density * volume
-	}
-	return Equation{}, math.NaN()
-}
-
 func (x *explainer) controller(m losses.Mechanism) (Equation, float64) {
-	c, q := &x.s.Controller, x.q
-	vin, f := q[quantity.BridgeVoltage], x.s.SwitchingFrequency
+	c, vin, f := &x.s.Controller, x.op.Bridge, x.s.SwitchingFrequency
 	switch m {
 	case losses.GateDrive:
 		charge := x.s.HighSide.GateCharge
 		if x.s.Rectifier != stage.DiodeRectified {
 			charge += x.s.LowSide.GateCharge
 		}
-		v := map[parts.DriveSupply]float64{parts.DriveFromInput: vin, parts.DriveFromOutput: q[quantity.OutputMean], parts.DriveFromExternal: c.Drive}[c.DriveSupply]
+		v := map[parts.DriveSupply]float64{parts.DriveFromInput: vin, parts.DriveFromOutput: x.op.Output, parts.DriveFromExternal: c.Drive}[c.DriveSupply]
 		n := float64(x.s.PhaseCount)
 		return Equation{Formula: "P = N Qg V f", Inputs: []Input{{"N", n, "1"}, {"Qg", charge, "C"}, {"V", v, "V"}, {"f", f, "Hz"}}, Source: "charge of the gates, from where the driver takes it"}, n * losses.GateDriveLoss(charge, v, f)
 	case losses.Quiescent:
@@ -187,38 +112,42 @@ func (x *explainer) controller(m losses.Mechanism) (Equation, float64) {
 	return Equation{}, math.NaN()
 }
 
-// board explains the copper paths. They are at ambient temperature, or at the
-// temperature that every part is held at.
+// board explains the copper paths and the source.
 func (x *explainer) board(m losses.Mechanism) (Equation, float64) {
-	b, q := &x.s.Board, x.q
-	copper := x.p.AmbientDegC
-	if parts.Known(x.p.PartTemperatureDegC) {
-		copper = x.p.PartTemperatureDegC
-	}
-	warm, _ := parts.CopperMultiplier(copper)
-	n := float64(x.s.PhaseCount)
-	path := func(r, i, count float64) (Equation, float64) {
-		return Equation{Formula: "P = N R k I²", Inputs: []Input{{"N", count, "1"}, {"R", r, "Ohm"}, {"k", warm, "1"}, {"I", i, "A"}}, Source: "copper at the board's temperature"}, count * losses.Resistive(r*warm, i*i)
+	b := &x.s.Board
+	warm, _ := parts.CopperMultiplier(x.op.BoardDegC)
+	path := func(r, i float64) (Equation, float64) {
+		return Equation{Formula: "P = R k I²", Inputs: []Input{{"R", r, "Ohm"}, {"k", warm, "1"}, {"I", i, "A"}}, Source: "copper at the board's temperature"}, losses.Resistive(r*warm, i*i)
 	}
 	switch m {
 	case losses.InputPath:
-		return path(b.InputPath, q[quantity.InputMean], 1)
+		return path(b.InputPath, x.op.PathMean)
+	case losses.OutputPath:
+		return path(b.OutputPath, x.op.LoadRMS)
 	case losses.SwitchNodePath:
-		return path(b.SwitchNodePath, q[quantity.InductorRMS], n)
+		n := float64(x.s.PhaseCount)
+		e, one := x.mean("P = N Rsw k IL,rms²", []Input{{"N", n, "1"}, {"Rsw", b.SwitchNodePath, "Ohm"}, {"k", warm, "1"}}, "copper at the board's temperature", func(p *phase) ([]Input, float64) {
+			i := p.leg.Inductor.RMS
+			return []Input{{"IL,rms", i, "A"}}, losses.Resistive(b.SwitchNodePath*warm, i*i)
+		})
+		return e, n * one
+	case losses.SourcePath:
+		r, i := x.p.SourceResistance, x.op.PathMean
+		return Equation{Formula: "P = Rs I²", Inputs: []Input{{"Rs", r, "Ohm"}, {"I", i, "A"}}, Source: "Ohm's law in the source"}, losses.Resistive(r, i*i)
 	}
 	return Equation{}, math.NaN()
 }
 
 func (x *explainer) capacitor(p losses.Part) (Equation, float64) {
-	bank, i := &x.s.InputCapacitors, x.q[quantity.InputCapacitorBankRMS:]
-	k := int(p - losses.InputCapacitor)
+	banks, current := x.s.InputCapacitors, &x.op.InputBank
+	k := int(p) - int(losses.InputCapacitor)
 	if p < losses.InputCapacitor {
-		bank, i = &x.s.OutputCapacitors, x.q[quantity.OutputCapacitorRMS:]
-		k = int(p - losses.OutputCapacitor)
+		banks, current = x.s.OutputCapacitors, &x.op.Solution.BankRMS
+		k = int(p) - int(losses.OutputCapacitor)
 	}
-	c := &(*bank)[k]
-	r, _ := c.ESRAt(x.degC(p), x.p.AgeRatio)
-	return Equation{Formula: "P = ESR Irms²", Inputs: []Input{{"ESR", r, "Ohm"}, {"Irms", i[k], "A"}}, Source: "Ohm's law, resistance and current of the whole bank"}, losses.Resistive(r, i[k]*i[k])
+	r, _ := banks[k].ESRAt(x.at[p], x.p.AgeRatio)
+	i := current[k]
+	return Equation{Formula: "P = ESR Irms²", Inputs: []Input{{"ESR", r, "Ohm"}, {"Irms", i, "A"}}, Source: "Ohm's law, resistance and current of the whole bank"}, losses.Resistive(r, i*i)
 }
 
 // totals explains the sums that the items lead to.

@@ -84,6 +84,14 @@ func (e *Evaluator) Circuit() *switched.Circuit { return &e.circuit }
 // Solution returns the periodic steady state of the last evaluation.
 func (e *Evaluator) Solution() *switched.Solution { return &e.solution }
 
+// Operation returns what the losses of the last evaluation follow from besides the
+// parts' temperatures.
+func (e *Evaluator) Operation() *losses.Operation { return &e.operation }
+
+// CircuitDegC returns the temperatures [degC] of the parts that the last circuit
+// was solved with, of unequal phases those of the mean.
+func (e *Evaluator) CircuitDegC() *thermal.Vector { return &e.degC }
+
 // InputBanks returns the input capacitor banks of the last evaluation, each at its
 // temperature, bias and age.
 func (e *Evaluator) InputBanks() []switched.Bank {

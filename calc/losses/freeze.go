@@ -117,7 +117,7 @@ func (m *Model) addLeg(leg *switched.LegSolution, inductance float64, o *stage.P
 	c.inductor += weight * rms2
 	c.overlap += weight * OverlapLoss(p.vin, p.f, leg.TurnOn, leg.TurnOff, p.ton, p.toff)
 	if leg.Mode == switched.Continuous {
-		c.recovery += weight * p.recovery * recoveryShare(leg.TurnOn, leg.Peak-leg.Valley)
+		c.recovery += weight * p.recovery * RecoveryShare(leg.TurnOn, leg.Peak-leg.Valley)
 	}
 	if s.Rectifier != stage.DiodeRectified {
 		c.channel += weight * ls * max(0, rectifier-DeadTimeShare(p.f, p.td, leg.TurnOn, leg.TurnOff))

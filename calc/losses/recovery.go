@@ -21,9 +21,9 @@ func RecoveryLoss(vin, charge, f float64) float64 { return vin * charge * f }
 // judgement; what it hides is a loss at loads within a hundredth of the border.
 const recoveryOnset = 0.01 // [1]
 
-// recoveryShare returns how much of the charge is there to be recovered at a
+// RecoveryShare returns how much of the charge is there to be recovered at a
 // turn-on current, in a waveform of the given peak-to-peak ripple [A].
-func recoveryShare(turnOn, ripple float64) float64 {
+func RecoveryShare(turnOn, ripple float64) float64 {
 	if !(turnOn > 0) {
 		return 0
 	}
