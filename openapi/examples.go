@@ -5,7 +5,7 @@ import (
 	"io/fs"
 )
 
-//go:embed examples
+//go:embed examples/*/*.json
 var exampleFiles embed.FS
 
 // Examples returns the example requests: RAIL/OPERATION.json, such as

@@ -90,7 +90,7 @@ func TestTablesFitTheTerminal(t *testing.T) {
 	ran := 0
 	for _, file := range files {
 		name := strings.TrimSuffix(filepath.Base(file), ".json")
-		command := map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size"}[name]
+		command := map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size", "rule-checks": "check", "substitutions": "substitute", "bom-checks": "bom"}[name]
 		if command == "" {
 			continue
 		}
@@ -98,7 +98,7 @@ func TestTablesFitTheTerminal(t *testing.T) {
 		text, err := os.ReadFile(file)
 		require.NoError(t, err)
 		r := railproof(t, string(text), command, "--table", "-")
-		require.Contains(t, []int{0, 1}, r.code, "%s: %s", file, r.err)
+		require.Contains(t, []int{0, 1, 4}, r.code, "%s: %s", file, r.err)
 		for line := range strings.Lines(r.out) {
 			require.LessOrEqual(t, utf8.RuneCountInString(strings.TrimRight(line, "\n")), 100, "%s: %s", file, line)
 		}
