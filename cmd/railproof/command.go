@@ -34,7 +34,7 @@ const (
 // commands lists the subcommands in the order of the help. A new one is a line
 // here and a file of its own.
 func commands() []*command {
-	return []*command{serveCommand, keyCommand, healthyCommand, sizeCommand, steadyStateCommand, lossesCommand, cornersCommand, loopCommand, transientCommand, checkCommand, substituteCommand, bomCommand, reportCommand, versionCommand}
+	return []*command{serveCommand, keyCommand, healthyCommand, sizeCommand, steadyStateCommand, lossesCommand, cornersCommand, loopCommand, transientCommand, checkCommand, substituteCommand, bomCommand, reportCommand, completionCommand(), versionCommand}
 }
 
 // run finds the subcommand and runs it.

@@ -85,7 +85,9 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 		fmt.Fprintf(t.err, "railproof %s: this answer has no such form\n", name)
 		return exitBadInput
 	}
-	answer, problem := x.Do(ctx, operation, body)
+	run, end := watched(ctx, t, name)
+	answer, problem := x.Do(run, operation, body)
+	end()
 	if problem != nil {
 		return refuse(t, name, form, problem)
 	}
@@ -101,6 +103,9 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 			fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
 			return exitOurFault
 		}
+	}
+	if form == exchange.TextForm && takesColour(t) {
+		text = coloured(text)
 	}
 	if _, err := t.out.Write(text); err != nil {
 		return exitOurFault
