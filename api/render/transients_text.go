@@ -10,7 +10,7 @@ import (
 // TransientsText writes an answer of transients for reading.
 func TransientsText(a *wire.TransientsAnswer) string {
 	p := new(page)
-	p.line(railName(a.Stage), ": ", eventWords(a), ", ", a.Status)
+	p.line(railName(a.Stage), ": ", eventName(a), ", ", a.Status)
 	p.title(pointWords(a.Point))
 	p.trouble(a.Detail, a.NearestOperable, nil)
 	if a.Recovered != nil {
@@ -22,7 +22,7 @@ func TransientsText(a *wire.TransientsAnswer) string {
 	return p.b.String()
 }
 
-func eventWords(a *wire.TransientsAnswer) string {
+func eventName(a *wire.TransientsAnswer) string {
 	switch e := a.Event; {
 	case e.LoadStep != nil:
 		return "load step to " + Figure3(e.LoadStep.To, "A")
