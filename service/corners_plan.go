@@ -14,8 +14,10 @@ import (
 const (
 	MostEvaluations = 100_000_000     // [1] of all methods together
 	MostDraws       = 100_000_000_000 // [1] samples × variables × quantities
-	MostVariables   = 256             // [1] spreads, drifts and model bands
+	MostVariables   = 250             // [1] spreads, drifts and model bands
 	MostCorners     = 64              // [1] condition corners
+	MostLines       = 128             // [1] limits and quantities, a line per capacitor bank
+	MostWorst       = 6400            // [1] worst samples told in all
 )
 
 // CornersPlan is an analysis that can be run.
@@ -62,6 +64,12 @@ func (r *CornersRequest) Plan() (*CornersPlan, []Refusal) {
 	targets := p.layOut(&options)
 	if n := len(r.Design.Variables) + len(options.Scales); n > MostVariables {
 		return nil, []Refusal{tooMuch("/stage", "spreads, drifts and model bands are too many", MostVariables, n)}
+	}
+	if n := len(p.Items); n > MostLines {
+		return nil, []Refusal{tooMuch("/limits", "limits and quantities are too many, each per-bank one counted once for every bank", MostLines, n)}
+	}
+	if n := p.worstTold(); n > MostWorst {
+		return nil, []Refusal{tooMuch("/worst_samples", "the worst samples of all limited sides are too many to tell", MostWorst, n)}
 	}
 	options.Extend = loopExtension(options.Quantities)
 	bound, err := corners.NewDesign(r.Design.Stage, r.Design.Variables, &r.Conditions, options)
@@ -132,6 +140,15 @@ func (p *CornersPlan) layOut(o *corners.DesignOptions) []corners.Target {
 		}
 	}
 	return targets
+}
+
+// worstTold returns how many worst samples an answer tells at most.
+func (p *CornersPlan) worstTold() int {
+	n := 0
+	for i := range p.Items {
+		n += len(p.Items[i].Targets()) * p.Worst
+	}
+	return n
 }
 
 func (p *CornersPlan) addItem(id quantity.ID, l *CornersLimit) {

@@ -15,7 +15,7 @@ func (e *cornersEncoder) item(i *service.CornersItem) QuantityCorners {
 	info, _ := quantity.Of(i.Quantity)
 	q := QuantityCorners{
 		Quantity: i.Quantity.Key(), Unit: info.Unit, Limit: limitOf(i), Verdict: i.Verdict.String(),
-		Margin: ordinary(i.Margin), ModelBand: ordinary(i.Band), Nominal: ordinary(e.a.Nominal[i.Index]),
+		Margin: capability(i.Margin), ModelBand: ordinary(i.Band), Nominal: ordinary(e.a.Nominal[i.Index]),
 	}
 	if q.ModelBand != nil {
 		within := i.WithinBand(e.a.Worst(i))

@@ -69,8 +69,8 @@ func (e *cornersEncoder) histogram(s *corners.Statistics) *Histogram {
 	return h
 }
 
-// capability returns an index that the contract can hold, nil for one that does
-// not exist: without a width every limit is infinitely far.
+// capability returns an index or a margin that the contract can hold, nil for one
+// that does not exist: without a width every limit is infinitely far.
 func capability(v float64) *float64 {
 	if math.Abs(v) > greatestRatio {
 		return nil

@@ -60,6 +60,6 @@ func TestAMillionSamplesAgainstAVectorisedScript(t *testing.T) {
 	for k := range 3 {
 		wall, processor := usage(t, own(k+1))
 		_, theirs := usage(t, script)
-		t.Logf("over HTTP %.2f s (processor %.2f s), script %.2f s (processor %.2f s with its start): %.2f times its speed, %.2f by processor time on two cores", wall, processor, told, theirs, told/wall, told/(processor/2))
+		t.Logf("over HTTP %.2f s (processor %.2f s), script %.2f s (processor %.2f s with its start): %.2f times its speed, %.2f by processor time on two cores", wall, processor, told, theirs, told/wall, theirs/(processor/2))
 	}
 }

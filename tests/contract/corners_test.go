@@ -360,6 +360,14 @@ func TestWiderSpreadsNeverNarrowAnExtreme(t *testing.T) {
 	}
 }
 
+// everyQuantity are more than thirty quantities that buoy-5v0 has.
+var everyQuantity = []string{
+	"output_mean_v", "output_ripple_with_esl_pp_v", "inductor_mean_a", "inductor_ripple_pp_a", "inductor_valley_a", "inductor_rms_a", "high_side_mean_a", "high_side_rms_a",
+	"rectifier_mean_a", "rectifier_rms_a", "output_capacitor_rms_a", "input_capacitor_rms_a", "input_capacitor_bank_rms_a", "circuit_input_mean_a", "duty_ratio", "dead_time_duty_ratio",
+	"inductance_effective_h", "output_capacitance_effective_f", "input_capacitance_effective_f", "bridge_v", "on_time_s", "off_time_s", "boundary_load_a", "load_v",
+	"input_mean_a", "input_power_w", "output_power_w", "loss_total_w", "high_side_loss_w", "low_side_loss_w", "inductor_loss_w", "core_loss_w",
+}
+
 func TestAnalysesThatAreRefused(t *testing.T) {
 	at := server(t) + "/v1/corners"
 	limits := func(l ...object) object { return object{"limits": l} }
@@ -403,6 +411,7 @@ func TestAnalysesThatAreRefused(t *testing.T) {
 		{"drift-of-nothing", object{"biases": []object{{"pointer": "/stage/inductor/colour", "drift_ratio": 0.1}}}, nil, "/biases/0/pointer", "bias", "no number"},
 		{"drift-twice", object{"biases": []object{{"pointer": "/stage/feedback/reference_v", "drift_ratio": 0.1}, {"pointer": "/stage/feedback/reference_v", "drift_ratio": -0.1}}}, nil, "/biases/1/pointer", "bias", "already"},
 		{"odd-base", object{"attribution_samples": 1000}, nil, "/attribution_samples", "budget", "power of two"},
+		{"too-many-worst-samples", object{"worst_samples": 100, "quantities": everyQuantity}, nil, "/worst_samples", "budget", "too many to tell"},
 		{"too-many-evaluations", object{"samples": 10000000, "attribution_samples": 1048576}, nil, "/samples", "budget", "too many evaluations"},
 	}
 	for _, c := range cases {
