@@ -3,6 +3,7 @@
 package browser
 
 import (
+	"context"
 	"net/http/httptest"
 	"os"
 	"path/filepath"
@@ -12,14 +13,25 @@ import (
 	"github.com/stretchr/testify/require"
 
 	"railproof/api"
+	"railproof/api/exchange"
 	"railproof/openapi"
 	"railproof/service"
+	"railproof/service/jobs"
 )
 
 func server(t *testing.T) string {
 	t.Helper()
-	s := httptest.NewServer(api.New(api.Options{Service: service.New(service.Options{ContractVersion: openapi.Load().Version()})}))
-	t.Cleanup(s.Close)
+	contract := openapi.Load()
+	computing := service.New(service.Options{ContractVersion: contract.Version()})
+	board, err := jobs.Open(t.Context(), jobs.Options{Executor: exchange.New(contract, computing).Executor(), Engine: computing.Engine().Platform})
+	require.NoError(t, err)
+	a := api.New(api.Options{Service: computing, Jobs: board})
+	s := httptest.NewServer(a)
+	t.Cleanup(func() {
+		a.Drain()
+		s.Close()
+		require.NoError(t, board.Close(context.WithoutCancel(t.Context())))
+	})
 	return s.URL
 }
 
@@ -128,6 +140,31 @@ func TestStageIsCarriedOn(t *testing.T) {
 	p.Until(`document.getElementById("note").textContent !== "" && document.getElementById("body").value.includes('"assumed": true')`)
 	p.Eval(`document.getElementById("send").click()`, nil)
 	p.Until(`document.getElementById("state").textContent.startsWith("200: ok")`)
+	clean(t, p, at)
+}
+
+func TestConsoleFollowsAJob(t *testing.T) {
+	at, p := server(t), Open(t)
+	p.Go(at + "/docs/console#corners")
+	p.Until(`document.getElementById("body").value.includes("inductance_h")`)
+	p.Eval(`document.getElementById("deferred").click(); document.getElementById("send").click()`, nil)
+	p.Until(`document.getElementById("state").textContent.startsWith("200: ok")`)
+	var progress float64
+	p.Eval(`document.getElementById("progress").value`, &progress)
+	require.InDelta(t, 1, progress, 0, "the job was followed to its end")
+	clean(t, p, at)
+}
+
+func TestConsoleShowsReportsWithoutTheirScripts(t *testing.T) {
+	at, p := server(t), Open(t)
+	p.Go(at + "/docs/console#reports")
+	p.Until(`document.getElementById("body").value.includes("inductance_h")`)
+	p.Eval(`document.getElementById("send").click()`, nil)
+	p.Until(`document.querySelector("#shown iframe")`)
+	var sandbox string
+	p.Eval(`document.querySelector("#shown iframe").getAttribute("sandbox")`, &sandbox)
+	require.Empty(t, sandbox, "nothing is allowed")
+	look(p, "console-report")
 	clean(t, p, at)
 }
 
