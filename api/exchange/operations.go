@@ -13,3 +13,10 @@ var computations = map[string]handler{
 	"substitutions": substitutions,
 	"transients":    transients,
 }
+
+// explained lists the operations whose answers tell on request how their figures
+// follow.
+var explained = map[string]bool{"losses": true, "sizing": true}
+
+// Explains reports whether an operation's answers can do that.
+func Explains(operation string) bool { return explained[operation] }

@@ -17,6 +17,7 @@ func LossesText(a *wire.LossesAnswer) string {
 	if a.Grid != nil {
 		p.lossesGrid(a.Grid)
 	}
+	p.explanation(a.Explanation)
 	p.basis(&a.Basis)
 	return p.b.String()
 }

@@ -30,6 +30,7 @@ func SizingText(a *wire.SizingAnswer) string {
 	}
 	p.checks(a.Checks)
 	p.sweep(a.Sweep)
+	p.explanation(a.Explanation)
 	p.basis(&a.Basis)
 	return p.b.String()
 }

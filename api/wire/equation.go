@@ -35,7 +35,8 @@ func (a *LossesAnswer) Explain() {
 	}
 }
 
-// Explain adds how the bounds of every window and the ratings follow.
+// Explain adds how the bounds of every window, the ratings and the divider's figures
+// follow.
 func (a *SizingAnswer) Explain() {
 	for i := range a.Windows {
 		w := &a.Windows[i]
@@ -52,6 +53,22 @@ func (a *SizingAnswer) Explain() {
 			a.Explanation = append(a.Explanation, Equation{Quantity: r.Part + "/" + r.Stress, Formula: r.Formula, Inserted: inserted(r.Inputs), Value: r.Applied, Unit: r.Unit, Source: r.Source})
 		}
 	}
+	a.explainDivider()
+}
+
+func (a *SizingAnswer) explainDivider() {
+	d := a.Divider
+	if d == nil {
+		return
+	}
+	const source = "no current into the error amplifier"
+	inputs := []FormulaInput{{"Vref", d.Reference, "V"}, {"Rupper", d.Upper, "Ohm"}, {"Rlower", d.Lower, "Ohm"}}
+	a.Explanation = append(a.Explanation,
+		Equation{Quantity: "divider/output_v", Formula: "Vo = Vref (1 + Rupper/Rlower)", Inserted: inserted(inputs), Value: d.Output, Unit: "V", Source: source},
+		Equation{
+			Quantity: "divider/error_ratio", Formula: "δ = Vo/Vset − 1", Value: d.Error, Unit: "1", Source: source,
+			Inserted: inserted([]FormulaInput{{"Vo", d.Output, "V"}, {"Vset", a.Requirement.Output.Voltage, "V"}}),
+		})
 }
 
 // inserted writes the symbols of a formula with their numbers.

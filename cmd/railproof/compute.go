@@ -25,12 +25,13 @@ func computation(name, operation, file, summary, about string) *command {
 			csv := flags.Bool("csv", false, "comma-separated values instead of JSON, where the answer has them")
 			var drawn pictureFlags
 			drawn.declare(flags, operation)
+			explain := explainFlag(flags, operation)
 			return func(ctx context.Context, t terminal, operands []string) int {
 				form, code := formOf(t, name, *table, *csv)
 				if code != exitFine {
 					return code
 				}
-				return compute(ctx, t, name, operation, form, operands, drawn.around(ctx, operation))
+				return compute(ctx, t, name, operation, form, operands, explain, drawn.around(ctx, operation))
 			}
 		},
 	}
@@ -50,13 +51,23 @@ func formOf(t terminal, name string, table, csv bool) (form string, code int) {
 	return "application/json", exitFine
 }
 
+// explainFlag adds the flag where answers tell on request how their figures follow.
+func explainFlag(flags *flag.FlagSet, operation string) around {
+	if !exchange.Explains(operation) {
+		return around{}
+	}
+	explain := flags.Bool("explain", false, "tell how each figure follows: formula, numbers put in, source")
+	return around{asking: func(r *exchange.Request) { r.Explain = *explain }}
+}
+
 // longestFile bounds what is read of a request, as the server does by default.
 const longestFile = 1 << 20 // [bytes]
 
-// around is what a subcommand does beside answering: before with the request, after
-// with its answer; nil is nothing.
+// around is what a subcommand does beside answering: before with the request's text,
+// asking with the request as it was read, after with its answer; nil is nothing.
 type around struct {
 	before func(body []byte) ([]byte, error)
+	asking func(r *exchange.Request)
 	after  func(from string, body []byte, a *exchange.Answer) error
 }
 
@@ -85,8 +96,17 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 		fmt.Fprintf(t.err, "railproof %s: this answer has no such form\n", name)
 		return exitBadInput
 	}
+	request, problem := x.Read(operation, body)
+	if problem != nil {
+		return refuse(t, name, form, problem)
+	}
+	for _, a := range also {
+		if a.asking != nil {
+			a.asking(request)
+		}
+	}
 	run, end := watched(ctx, t, name)
-	answer, problem := x.Do(run, operation, body)
+	answer, problem := x.Answer(run, request)
 	end()
 	if problem != nil {
 		return refuse(t, name, form, problem)
