@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 	"testing"
 	"time"
@@ -352,6 +353,22 @@ func FuzzReadCSV(f *testing.F) {
 			}
 		case !errors.As(err, &at) || at.Line < 1 || at.Column < 0 || at.Detail == "":
 			t.Fatalf("refused without a place: %v", err)
+		}
+	})
+}
+
+// Any text is read or refused; what is read is bounded and has no empty designator.
+func FuzzDesignators(f *testing.F) {
+	for _, text := range []string{"C1, C4-C7", "R1-9", "L1", "C9-C1", "-", "C1-C999999999", "\u00a0U1;U2"} {
+		f.Add(text)
+	}
+	f.Fuzz(func(t *testing.T, text string) {
+		list, err := Designators(text)
+		if err != nil {
+			return
+		}
+		if len(list) > maxDesignators || slices.Contains(list, "") {
+			t.Fatalf("%q: %d designators", text, len(list))
 		}
 	})
 }

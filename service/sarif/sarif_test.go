@@ -141,3 +141,22 @@ func TestPlaces(t *testing.T) {
 		require.Error(t, err, bad)
 	}
 }
+
+// Any text is located or refused; every place that is told lies in the text.
+func FuzzLocate(f *testing.F) {
+	for _, text := range []string{`{"a": [1, {"b": "\u00e9"}], "c~/": null}`, "[\n1,\n2]", "{", "", "\xff", `{"a":1,"a":2}`, "{}{}"} {
+		f.Add([]byte(text))
+	}
+	f.Fuzz(func(t *testing.T, raw []byte) {
+		places, err := Locate(raw)
+		if err != nil {
+			return
+		}
+		lines := bytes.Split(raw, []byte("\n"))
+		for pointer, at := range places {
+			if at.Line < 1 || at.Line > len(lines) || at.Column < 1 || at.Column > len(lines[at.Line-1])+1 {
+				t.Fatalf("%q at %+v", pointer, at)
+			}
+		}
+	})
+}

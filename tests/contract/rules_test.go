@@ -1,12 +1,15 @@
 package contract
 
 import (
+	"bytes"
 	"encoding/json"
 	"math/rand/v2"
 	"net/http/httptest"
+	"os"
 	"strings"
 	"testing"
 
+	"github.com/santhosh-tekuri/jsonschema/v6"
 	"github.com/stretchr/testify/require"
 
 	"railproof/api"
@@ -253,11 +256,26 @@ func TestFindingsInOtherForms(t *testing.T) {
 	require.Equal(t, 200, r.status)
 	require.Equal(t, "application/sarif+json", r.header.Get("Content-Type"))
 	log := r.tree(t).(object)
+	require.NoError(t, sarifSchema(t).Validate(log))
 	require.Equal(t, "2.1.0", log["version"])
 	require.Len(t, log["runs"].([]any)[0].(object)["results"], len(found))
 	r = send(t, "POST", server+"/v1/rule-checks", body, "Accept", "text/csv")
 	require.Equal(t, 200, r.status)
 	require.Len(t, strings.Split(strings.TrimSpace(string(r.body)), "\r\n"), len(found)+1)
+}
+
+// sarifSchema is the schema that the standard publishes.
+func sarifSchema(t *testing.T) *jsonschema.Schema {
+	t.Helper()
+	raw, err := os.ReadFile("../reference/sarif/sarif-2.1.0-rtm.5.json")
+	require.NoError(t, err)
+	document, err := jsonschema.UnmarshalJSON(bytes.NewReader(raw))
+	require.NoError(t, err)
+	c := jsonschema.NewCompiler()
+	require.NoError(t, c.AddResource("sarif.json", document))
+	s, err := c.Compile("sarif.json")
+	require.NoError(t, err)
+	return s
 }
 
 func TestRulePacksAreServed(t *testing.T) {
