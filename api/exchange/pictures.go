@@ -41,6 +41,15 @@ var pictures = map[string][]picture{
 			return render.HistogramPicture(a.(*wire.CornersAnswer), v.Quantity)
 		}},
 	},
+	"loopGain": {
+		{"bode", func(a any, v View) *render.Picture { return render.BodePicture(a.(*wire.LoopGainAnswer), v.Item) }},
+		{"output-impedance", func(a any, v View) *render.Picture {
+			return render.OutputImpedancePicture(a.(*wire.LoopGainAnswer), v.Item)
+		}},
+		{"source-impedance", func(a any, v View) *render.Picture {
+			return render.SourceImpedancePicture(a.(*wire.LoopGainAnswer), v.Item)
+		}},
+	},
 	"losses": {
 		{"breakdown", func(a any, v View) *render.Picture { return render.LossBreakdown(a.(*wire.LossesAnswer), v.Item) }},
 		{"curves", func(a any, v View) *render.Picture {
@@ -54,6 +63,7 @@ var pictures = map[string][]picture{
 		{"sweep", func(a any, _ View) *render.Picture { return render.SweepPicture(a.(*wire.SizingAnswer)) }},
 		{"windows", func(a any, _ View) *render.Picture { return render.WindowsPicture(a.(*wire.SizingAnswer)) }},
 	},
+	"transients":  {{"response", func(a any, _ View) *render.Picture { return render.TransientPicture(a.(*wire.TransientsAnswer)) }}},
 	"steadyState": {{"waveforms", func(a any, _ View) *render.Picture { return render.SteadyStatePicture(a.(*wire.SteadyStateAnswer)) }}},
 }
 

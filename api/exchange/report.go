@@ -5,6 +5,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 	"strconv"
@@ -101,10 +102,47 @@ func (b *binder) bind(w *wire.ReportsRequest) (err error) {
 			return err
 		}
 	}
+	if err := b.dynamics(typical, points); err != nil {
+		return err
+	}
 	if b.wants("findings") {
 		if r.Rules, err = part[*wire.RuleChecksAnswer](b, "ruleChecks", b.shared("stage", "requirement", "conditions", "limits", "packs", "waivers", "date")); err != nil {
 			return err
 		}
+	}
+	return nil
+}
+
+// dynamics answers how the loop behaves, where the stage has one, and how the output
+// answers the load step of the requirement.
+func (b *binder) dynamics(typical map[string]any, points []any) (err error) {
+	r, stage := b.report, b.request["stage"]
+	if !b.setting.HasLoop {
+		return nil
+	}
+	if b.wants("loop") {
+		if r.Loop, err = part[*wire.LoopGainAnswer](b, "loopGain", map[string]any{"stage": stage, "points": points}); err != nil {
+			return err
+		}
+	}
+	step := b.setting.LoadStep
+	if !b.wants("transient") || step == nil || !(step.Step > 0) {
+		return nil
+	}
+	most := b.setting.Conditions.Load.Current.Max
+	least := max(most-step.Step, 0)
+	for _, ends := range [2][2]float64{{least, most}, {most, least}} {
+		from := maps.Clone(typical)
+		from["load"] = map[string]any{"current_a": ends[0]}
+		change := map[string]any{"to_a": ends[1]}
+		if step.Slew != nil {
+			change["slew_a_per_s"] = *step.Slew
+		}
+		a, err := part[*wire.TransientsAnswer](b, "transients", map[string]any{"stage": stage, "point": from, "event": map[string]any{"load_step": change}})
+		if err != nil {
+			return err
+		}
+		r.Transients = append(r.Transients, a)
 	}
 	return nil
 }

@@ -4,6 +4,8 @@ import (
 	"math"
 
 	"gonum.org/v1/plot/vg/draw"
+
+	"railproof/api/wire"
 )
 
 // bode holds a loop gain over frequency and its margins; NaN where one does not
@@ -74,4 +76,61 @@ func impedances(title, subtitle, name string, frequency []float64, list []impeda
 		title: title, subtitle: subtitle, blocks: alignPanels(p),
 		description: name + " over frequency, from " + Figure3(values.least, "Ohm") + " to " + Figure3(values.greatest, "Ohm"),
 	}
+}
+
+// BodePicture draws the loop gain of an item; nil without curves.
+func BodePicture(a *wire.LoopGainAnswer, item int) *Picture {
+	it := loopItem(a, item)
+	if it == nil {
+		return nil
+	}
+	c := it.Curves
+	b := &bode{
+		title: railName(a.Stage) + ": loop gain", subtitle: pointWords(it.Point) + "; " + nameOr(it.Stability, it.Status),
+		frequency: c.Frequency, gain: c.LoopGain, phase: c.LoopPhase, averagedGain: c.AveragedLoopGain, averagedPhase: c.AveragedLoopPhase,
+		crossover: math.NaN(), phaseMargin: math.NaN(), phaseCrossing: math.NaN(), gainMargin: math.NaN(),
+	}
+	for _, x := range it.Crossovers {
+		if it.PhaseMargin != nil && x.PhaseMargin == *it.PhaseMargin {
+			b.crossover, b.phaseMargin = x.Frequency, x.PhaseMargin
+		}
+	}
+	for _, x := range it.PhaseCrossings {
+		if it.GainMargin != nil && x.GainMargin == *it.GainMargin {
+			b.phaseCrossing, b.gainMargin = x.Frequency, x.GainMargin
+		}
+	}
+	return b.picture()
+}
+
+func loopItem(a *wire.LoopGainAnswer, item int) *wire.LoopItem {
+	if item >= len(a.Items) || a.Items[item].Curves == nil || len(a.Items[item].Curves.Frequency) == 0 {
+		return nil
+	}
+	return &a.Items[item]
+}
+
+// OutputImpedancePicture draws what the load sees, with the loop open and closed.
+func OutputImpedancePicture(a *wire.LoopGainAnswer, item int) *Picture {
+	it := loopItem(a, item)
+	if it == nil {
+		return nil
+	}
+	var marks []mark
+	if it.ImpedancePeak != nil && it.ImpedancePeakAt != nil {
+		marks = []mark{{x: *it.ImpedancePeakAt, y: *it.ImpedancePeak, label: "peak " + Figure3(*it.ImpedancePeak, "Ohm") + " at " + Figure3(*it.ImpedancePeakAt, "Hz")}}
+	}
+	return impedances(railName(a.Stage)+": output impedance", pointWords(it.Point), "output impedance", it.Curves.Frequency,
+		[]impedanceCurve{{"closed loop", it.Curves.ClosedImpedance, trace(0)}, {"open loop", it.Curves.Impedance, trace(1)}}, marks...)
+}
+
+// SourceImpedancePicture draws the source against the stage's input; nil where
+// either is not known.
+func SourceImpedancePicture(a *wire.LoopGainAnswer, item int) *Picture {
+	it := loopItem(a, item)
+	if it == nil || len(it.Curves.SourceImpedance) == 0 {
+		return nil
+	}
+	return impedances(railName(a.Stage)+": source against input", pointWords(it.Point), "impedance", it.Curves.Frequency,
+		[]impedanceCurve{{"input of the stage, closed loop", it.Curves.InputImpedance, trace(0)}, {"source with its filter", it.Curves.SourceImpedance, trace(1)}})
 }

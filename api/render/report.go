@@ -20,14 +20,16 @@ type Report struct {
 	ResultID string
 	Control  string // how the output is held in these answers
 
-	Sizing   *wire.SizingAnswer
-	Steady   *wire.SteadyStateAnswer
-	Losses   *wire.LossesAnswer
-	Grid     *wire.LossesAnswer
-	Corners  *wire.CornersAnswer
-	Rules    *wire.RuleChecksAnswer
-	Parts    []ReportPart
-	Excluded []string // why something that was asked for is missing
+	Sizing     *wire.SizingAnswer
+	Steady     *wire.SteadyStateAnswer
+	Losses     *wire.LossesAnswer
+	Grid       *wire.LossesAnswer
+	Corners    *wire.CornersAnswer
+	Loop       *wire.LoopGainAnswer
+	Transients []*wire.TransientsAnswer
+	Rules      *wire.RuleChecksAnswer
+	Parts      []ReportPart
+	Excluded   []string // why something that was asked for is missing
 }
 
 // ReportPart is one request that the report was made of.
@@ -90,6 +92,8 @@ var chapters = []struct {
 	{"operating-figures", "Operating figures", (*Report).figures},
 	{"losses", "Losses and temperatures", (*Report).losses},
 	{"worst-case", "Worst case", (*Report).worstCase},
+	{"loop", "Control loop", (*Report).loop},
+	{"transient", "Load step", (*Report).transient},
 	{"findings", "Findings and waivers", (*Report).findings},
 	{"cautions", "Cautions", (*Report).cautions},
 	{"assumptions", "Assumptions", (*Report).assumptions},
@@ -143,6 +147,12 @@ func (r *Report) bases() (list []*wire.Basis) {
 	}
 	if r.Corners != nil {
 		list = append(list, &r.Corners.Basis)
+	}
+	if r.Loop != nil {
+		list = append(list, &r.Loop.Basis)
+	}
+	for _, a := range r.Transients {
+		list = append(list, &a.Basis)
 	}
 	if r.Rules != nil {
 		list = append(list, &r.Rules.Basis)

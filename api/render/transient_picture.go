@@ -1,6 +1,11 @@
 package render
 
-import "math"
+import (
+	"math"
+	"strings"
+
+	"railproof/api/wire"
+)
 
 // response holds what happens around an event at time 0.
 type response struct {
@@ -43,4 +48,55 @@ func (r *response) picture() *Picture {
 	}
 	list[len(list)-1].bareX = false
 	return &Picture{title: r.title, subtitle: r.subtitle, description: r.said, blocks: alignPanels(list...)}
+}
+
+// TransientPicture draws what follows an event; nil without waveforms.
+func TransientPicture(a *wire.TransientsAnswer) *Picture {
+	w := a.Waveforms
+	if w == nil || len(w.Time) == 0 {
+		return nil
+	}
+	r := &response{
+		title: railName(a.Stage) + ": " + eventTitle(a.Event), subtitle: pointWords(a.Point) + unlessOK(a.Status),
+		time: w.Time, output: w.Output, inductor: w.Inductor, load: w.Load, input: w.Input, duty: w.Duty, control: w.Control,
+	}
+	var said []string
+	for _, d := range []struct {
+		by, at *float64
+		sign   float64
+		name   string
+	}{{a.Down, a.DownAt, -1, "falls by "}, {a.Up, a.UpAt, 1, "rises by "}} {
+		if d.by == nil || d.at == nil || a.After == nil || *d.by <= 0 {
+			continue
+		}
+		text := d.name + Figure3(*d.by, "V")
+		said = append(said, text)
+		r.marks = append(r.marks, mark{x: *d.at, y: *a.After + d.sign**d.by, label: text})
+	}
+	if a.Recovery != nil {
+		said = append(said, "back within its band after "+Figure3(*a.Recovery, "s"))
+		r.marks = append(r.marks, mark{x: *a.Recovery, y: math.NaN(), label: "recovered, " + Figure3(*a.Recovery, "s")})
+	}
+	if len(said) > 0 {
+		r.said = "The output " + strings.Join(said, ", ")
+		r.subtitle += "; output " + strings.Join(said, ", ")
+	}
+	return r.picture()
+}
+
+// eventTitle says what happened.
+func eventTitle(e *wire.TransientEvent) string {
+	switch {
+	case e == nil:
+		return "response"
+	case e.LoadStep != nil:
+		return "load step to " + trimmed(Figure3(e.LoadStep.To, "A"))
+	case e.InputStep != nil:
+		return "input step to " + trimmed(Figure3(e.InputStep.To, "V"))
+	case e.ReferenceStep != nil:
+		return "reference step to " + trimmed(percent(e.ReferenceStep.To))
+	case e.StartUp != nil:
+		return "start-up in " + trimmed(Figure3(e.StartUp.SoftStart, "s"))
+	}
+	return "response"
 }

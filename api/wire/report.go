@@ -19,7 +19,8 @@ type ReportsRequest struct {
 // defaults, and what the stage can be asked for.
 type Setting struct {
 	Conditions *Conditions
-	HasLoop    bool // modulator, compensator and feedback
+	HasLoop    bool      // modulator, compensator and feedback
+	LoadStep   *LoadStep // of the requirement; nil: none
 }
 
 // Decode checks the request as a whole. The error is an *InvalidError.
@@ -29,5 +30,9 @@ func (w *ReportsRequest) Decode() (*Setting, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Setting{Conditions: EncodeConditions(&p.Conditions), HasLoop: w.Stage.Modulator != nil && w.Stage.Compensator != nil && w.Stage.Feedback != nil}, nil
+	s := &Setting{Conditions: EncodeConditions(&p.Conditions), HasLoop: w.Stage.Modulator != nil && w.Stage.Compensator != nil && w.Stage.Feedback != nil}
+	if t := w.Requirement.Targets; t != nil {
+		s.LoadStep = t.LoadStep
+	}
+	return s, nil
 }
