@@ -1,7 +1,6 @@
 package api
 
 import (
-	"encoding/json"
 	"fmt"
 	"io/fs"
 	"path"
@@ -12,7 +11,6 @@ import (
 	"github.com/labstack/echo/v4"
 
 	"railproof/api/docs"
-	"railproof/api/exchange"
 	"railproof/api/wire"
 	"railproof/openapi"
 	"railproof/service/packs"
@@ -31,7 +29,7 @@ func sheet(s docs.Sheet) echo.HandlerFunc {
 // when all routes are bound, so it is written on first use.
 func (a *API) overview() echo.HandlerFunc {
 	serve := sync.OnceValue(func() echo.HandlerFunc {
-		return sheet(docs.Overview(a.contract.Version(), a.shownOperations(), problems(a.contract)))
+		return sheet(docs.Overview(a.contract.Version(), a.shownOperations(), a.problems()))
 	})
 	return func(c echo.Context) error { return serve()(c) }
 }
@@ -55,13 +53,16 @@ func (a *API) docsPages() echo.HandlerFunc {
 	return oneOf(handlers, "page")
 }
 
-// problemPages answers /docs/problems/{kind}.
+// problemPages answers /docs/problems/{kind}. The pages are written on first use.
 func (a *API) problemPages() echo.HandlerFunc {
-	pages := map[string]echo.HandlerFunc{}
-	for _, p := range problems(a.contract) {
-		pages[p.Kind] = sheet(docs.ProblemSheet(p))
-	}
-	return oneOf(pages, "kind")
+	pages := sync.OnceValue(func() echo.HandlerFunc {
+		handlers := map[string]echo.HandlerFunc{}
+		for _, p := range a.problems() {
+			handlers[p.Kind] = sheet(docs.ProblemSheet(p))
+		}
+		return oneOf(handlers, "kind")
+	})
+	return func(c echo.Context) error { return pages()(c) }
 }
 
 // example answers /examples/{rail}/{name}.
@@ -130,7 +131,20 @@ func (a *API) shownOperations() []docs.Operation {
 		}
 		shown = append(shown, o)
 	}
+	slices.SortStableFunc(shown, func(a, b docs.Operation) int { return group(a) - group(b) })
 	return shown
+}
+
+// group puts computations first, then what else stands in the interface, then what
+// serves people and machinery.
+func group(o docs.Operation) int {
+	switch {
+	case o.Body:
+		return 0
+	case strings.HasPrefix(o.Path, "/v1/"):
+		return 1
+	}
+	return 2
 }
 
 func parameters(list []openapi.Parameter) []string {
@@ -139,27 +153,6 @@ func parameters(list []openapi.Parameter) []string {
 		names = append(names, p.Name)
 	}
 	return names
-}
-
-// problems tells the pages of every kind of problem.
-func problems(contract *openapi.Contract) []docs.Problem {
-	var all []docs.Problem
-	for _, k := range exchange.Kinds() {
-		body := exchange.NewProblem(k.Kind, "What went wrong with this request, in a sentence.")
-		body.Instance = "req_0123456789abcdef01234567"
-		text, err := json.MarshalIndent(body, "", "  ")
-		if err != nil {
-			panic("api: a problem cannot be encoded")
-		}
-		p := docs.Problem{Kind: string(k.Kind), Title: k.Title, Meaning: k.Meaning, Status: k.Status, Example: string(text)}
-		for _, op := range contract.Operations() {
-			if slices.Contains(op.Statuses, k.Status) {
-				p.From = append(p.From, op.Method+" "+op.Path)
-			}
-		}
-		all = append(all, p)
-	}
-	return all
 }
 
 func quantities() []docs.Quantity {

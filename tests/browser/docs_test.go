@@ -164,6 +164,7 @@ func TestConsoleShowsReportsWithoutTheirScripts(t *testing.T) {
 	var sandbox string
 	p.Eval(`document.querySelector("#shown iframe").getAttribute("sandbox")`, &sandbox)
 	require.Empty(t, sandbox, "nothing is allowed")
+	p.Until(`document.querySelector("#shown iframe").dataset.shown`)
 	look(p, "console-report")
 	clean(t, p, at)
 }

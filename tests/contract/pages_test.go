@@ -5,6 +5,7 @@ import (
 	"compress/gzip"
 	"io"
 	"regexp"
+	"slices"
 	"strings"
 	"testing"
 
@@ -21,6 +22,9 @@ func TestEveryProblemHasItsPage(t *testing.T) {
 		r := send(t, "GET", at+"/docs/problems/"+string(k.Kind), nil)
 		require.Equal(t, 200, r.status, k.Kind)
 		require.Contains(t, string(r.body), "<h1>"+k.Title+"</h1>")
+		if slices.Contains([]exchange.Kind{exchange.Malformed, exchange.SchemaFault, exchange.PhysicsFault}, k.Kind) {
+			require.Contains(t, string(r.body), "&#34;pointer&#34;", "%s: a real refusal is shown", k.Kind)
+		}
 	}
 }
 

@@ -138,6 +138,7 @@ document.addEventListener("DOMContentLoaded", () => {
     const frame = document.createElement("iframe");
     frame.title = "The answer as a page";
     frame.setAttribute("sandbox", "");
+    frame.addEventListener("load", () => { frame.dataset.shown = "yes"; });
     frame.srcdoc = text;
     return frame;
   }
