@@ -92,7 +92,7 @@ func (r *GridRequest) chunk(a *GridAnswer, e *evaluate.Evaluator, k *gridSketch,
 		p := r.Cell(i)
 		e.Eval(&p, &out)
 		demandFinite(&out)
-		a.Cells[i], a.Modes[i] = out.Status, out.Mode
+		a.Cells[i], a.Modes[i] = out.Status, out.Conduction()
 		for j, id := range r.Quantities {
 			a.Columns[j][i] = out.Quantities[id]
 		}

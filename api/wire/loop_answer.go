@@ -181,7 +181,7 @@ func (s *LoopSynthesis) network(own *Compensator, c *parts.Compensator) *Compens
 
 func encodeLoopItem(p *Point, r *service.LoopRequest, x *service.LoopItem, curves bool) LoopItem {
 	m := &x.Margins
-	w := LoopItem{Status: x.Status.String(), Point: p, ConductionMode: modeNames[x.Outcome.Mode], NearestOperable: encodeNearest(x.Outcome.Nearest), Detail: x.Detail}
+	w := LoopItem{Status: x.Status.String(), Point: p, ConductionMode: modeNames[x.Outcome.Conduction()], NearestOperable: encodeNearest(x.Outcome.Nearest), Detail: x.Detail}
 	if !x.Analysis.OK() {
 		return w
 	}

@@ -116,7 +116,7 @@ func EncodeLosses(w *LossesRequest, r *service.LossesRequest, a *service.LossesA
 	for i, p := range w.list() {
 		o := a.Outcomes[i]
 		out.Items = append(out.Items, LossesItem{
-			Status: o.Status.String(), Point: p, ConductionMode: modeNames[o.Mode],
+			Status: o.Status.String(), Point: p, ConductionMode: modeNames[o.Conduction()],
 			Quantities:       encodeQuantities(&o.Quantities, banks, everything),
 			PartTemperatures: encodeTemperatures(r.Design.Stage, o),
 			NearestOperable:  encodeNearest(o.Nearest), Runaway: encodeOnset(o.Onset), Detail: o.Detail,

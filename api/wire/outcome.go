@@ -66,7 +66,7 @@ func encodeOnset(o *service.Onset) *Runaway {
 }
 
 // modeNames are the conduction modes; one that is not known has none.
-var modeNames = map[switched.Mode]string{switched.Continuous: "continuous", switched.Discontinuous: "discontinuous"}
+var modeNames = map[switched.Mode]string{switched.Continuous: "continuous", switched.Discontinuous: "discontinuous", switched.Boundary: "boundary"}
 
 func banksOf(s *stage.Stage) bankCount {
 	return bankCount{output: len(s.OutputCapacitors), input: len(s.InputCapacitors)}

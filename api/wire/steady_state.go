@@ -46,7 +46,7 @@ func (w *SteadyStateRequest) Decode() (*service.SteadyStateRequest, error) {
 func EncodeSteadyState(w *SteadyStateRequest, r *service.SteadyStateRequest, a *service.SteadyStateAnswer, head Head) *SteadyStateAnswer {
 	o := a.Outcome
 	return &SteadyStateAnswer{
-		Head: head, Status: o.Status.String(), Stage: w.Stage, Point: w.Point, ConductionMode: modeNames[o.Mode],
+		Head: head, Status: o.Status.String(), Stage: w.Stage, Point: w.Point, ConductionMode: modeNames[o.Conduction()],
 		Quantities:       encodeQuantities(&o.Quantities, banksOf(r.Design.Stage), func(i quantity.Info) bool { return i.Group == quantity.SteadyState }),
 		PartTemperatures: encodeTemperatures(r.Design.Stage, o),
 		NearestOperable:  encodeNearest(o.Nearest), Runaway: encodeOnset(o.Onset), Detail: o.Detail,

@@ -41,6 +41,7 @@ func (s Status) Figures() bool {
 type Result struct {
 	Status     Status
 	Mode       switched.Mode
+	AtBorder   bool // Mode is that of the solution, and the other one is within BoundaryBand
 	Quantities quantity.Vector
 	Losses     losses.Sheet
 	PartDegC   [losses.PartCount]float64 // [degC] NaN where the stage has no such part

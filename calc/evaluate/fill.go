@@ -46,14 +46,14 @@ var blank = func() (v quantity.Vector) {
 
 // fill writes the result. Where no figures exist it holds the status alone.
 func (e *Evaluator) fill(o *operating, status Status, r *Result) {
-	r.Status, r.Mode = status, e.solution.Leg.Mode
+	r.Status, r.Mode, r.AtBorder = status, e.solution.Leg.Mode, e.atBorder()
 	r.Quantities = blank
 	r.Losses.N = 0
 	for p := range r.PartDegC {
 		r.PartDegC[p] = math.NaN()
 	}
 	if !status.Figures() {
-		r.Mode = switched.NoMode
+		r.Mode, r.AtBorder = switched.NoMode, false
 		return
 	}
 	for _, p := range e.parts {
@@ -64,6 +64,36 @@ func (e *Evaluator) fill(o *operating, status Status, r *Result) {
 	e.fillTimes(o, q)
 	e.fillPowers(o, r)
 	e.fillParts(o, r)
+}
+
+// BoundaryBand is how near to the border of conduction a point is called boundary: a
+// valley of at most this part of the current swing, or a rest at zero of at most
+// this part of the period.
+const BoundaryBand = 1e-3 // [1]
+
+// atBorder reports whether the rectifier blocks reverse current and the inductor
+// current hardly leaves zero, or hardly rests there.
+func (e *Evaluator) atBorder() bool {
+	if e.stage.Rectifier == stage.Synchronous {
+		return false
+	}
+	leg, duty := &e.solution.Leg, e.solution.Duty
+	if !(duty > 0 && duty < 1) {
+		return false
+	}
+	if leg.Mode == switched.Discontinuous {
+		return 1-duty-leg.Conduct <= BoundaryBand
+	}
+	return leg.Valley <= BoundaryBand*(leg.Peak-leg.Valley)
+}
+
+// Conduction returns the conduction mode as it is told: boundary at the border of
+// the two.
+func (r *Result) Conduction() switched.Mode {
+	if r.AtBorder {
+		return switched.Boundary
+	}
+	return r.Mode
 }
 
 func (e *Evaluator) fillWaveforms(o *operating, q *quantity.Vector) {

@@ -67,6 +67,7 @@ const (
 	NoMode        Mode = iota
 	Continuous         // the inductor current never rests at zero
 	Discontinuous      // it does
+	Boundary           // so near to the border of the two that a reader takes it for neither; no solution has it
 )
 
 // Status tells how a solution ended.
