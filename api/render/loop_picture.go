@@ -39,8 +39,8 @@ func (b *bode) picture() *Picture {
 	if !math.IsNaN(b.crossover) {
 		at := Figure3(b.crossover, "Hz")
 		gain.marks = append(gain.marks, mark{x: b.crossover, y: none}, mark{x: b.crossover, y: 0, label: "crossover " + at})
-		phase.marks = append(phase.marks, mark{x: b.crossover, y: none}, mark{x: b.crossover, y: b.phaseMargin - 180, label: "phase margin " + Figure3(b.phaseMargin, "deg")})
-		said = "Crossover " + at + ", phase margin " + Figure3(b.phaseMargin, "deg")
+		phase.marks = append(phase.marks, mark{x: b.crossover, y: none}, mark{x: b.crossover, y: b.phaseMargin - 180, label: "phase margin " + three(b.phaseMargin) + "°"})
+		said = "Crossover " + at + ", phase margin " + three(b.phaseMargin) + "°"
 	}
 	if !math.IsNaN(b.phaseCrossing) {
 		gain.marks = append(gain.marks, mark{x: b.phaseCrossing, y: none}, mark{x: b.phaseCrossing, y: -b.gainMargin, label: "gain margin " + Figure3(b.gainMargin, "dB")})

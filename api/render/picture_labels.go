@@ -36,27 +36,27 @@ func (l labels) draw(f draw.Canvas) {
 	}
 }
 
-// freePlace looks right, left, below and above a point, then lower and lower, for
+// freePlace looks right and left of a point, above it and below, then farther, for
 // a place inside the field that is not taken.
 func freePlace(field vg.Rectangle, at, size vg.Point, taken []vg.Rectangle) vg.Rectangle {
 	gap := px(7)
 	var first vg.Rectangle
 	for try := range 40 {
-		down := vg.Length(try/2) * size.Y
-		if try >= 20 {
-			down = -vg.Length(try/2-9) * size.Y
+		up := 0.8 * vg.Length(try/4+1) * size.Y
+		if try%4 >= 2 {
+			up = -up
 		}
 		x := at.X + gap
 		if try%2 == 1 {
 			x = at.X - gap - size.X
 		}
 		x = min(max(x, field.Min.X+px(2)), field.Max.X-size.X-px(2))
-		y := min(max(at.Y-down-size.Y/2, field.Min.Y), field.Max.Y-size.Y)
+		y := min(max(at.Y+up-size.Y/2, field.Min.Y), field.Max.Y-size.Y)
 		box := vg.Rectangle{Min: vg.Point{X: x, Y: y}, Max: vg.Point{X: x + size.X, Y: y + size.Y}}
 		if try == 0 {
 			first = box
 		}
-		over := x < at.X && at.X < x+size.X && y < at.Y && at.Y < y+size.Y
+		over := x < at.X && at.X < x+size.X && y < at.Y && at.Y < y+size.Y // the point itself
 		for _, t := range taken {
 			over = over || box.Min.X < t.Max.X && t.Min.X < box.Max.X && box.Min.Y < t.Max.Y-0.1 && t.Min.Y < box.Max.Y-0.1
 		}

@@ -73,7 +73,8 @@ type grille struct {
 	Rows [][]entry
 }
 
-// entry is a text with a class: n for numbers, pass, fail or mind for verdicts.
+// entry is a text with a class: n for numbers, w for what may be broken anywhere,
+// pass, fail or mind for verdicts.
 type entry struct{ Text, Class string }
 
 //go:embed report.tmpl
@@ -176,12 +177,13 @@ func plainCells(texts ...string) []entry {
 	return row
 }
 
-// row makes cells; kinds has a letter for each: t for text, n for a number.
+// row makes cells; kinds has a letter for each: t for text, n for a number, w for
+// text without spaces that may have to be broken anywhere.
 func row(kinds string, texts ...string) []entry {
 	cells := plainCells(texts...)
 	for i := range cells {
-		if i < len(kinds) && kinds[i] == 'n' {
-			cells[i].Class = "n"
+		if k := kinds[i : i+1]; k != "t" {
+			cells[i].Class = k
 		}
 	}
 	return cells

@@ -60,7 +60,7 @@ func (r *Report) assumptions() []part {
 				effect = quantityName(a.Effect.Quantity) + " by " + Figure3(a.Effect.Change, a.Effect.Unit)
 			}
 		}
-		t.Rows = append(t.Rows, row("tntt", a.Pointer, figure(a.Value, a.Unit), a.Why, effect))
+		t.Rows = append(t.Rows, row("wntt", a.Pointer, figure(a.Value, a.Unit), a.Why, effect))
 	}
 	return []part{{Table: t}}
 }
@@ -68,11 +68,11 @@ func (r *Report) assumptions() []part {
 // reproduction tells which requests gave these answers.
 func (r *Report) reproduction() []part {
 	t := &grille{Head: row("tt", "request", "result")}
-	t.Rows = append(t.Rows, row("tt", "POST /v1/reports, as below", r.ResultID))
+	t.Rows = append(t.Rows, row("tw", "POST /v1/reports, as below", r.ResultID))
 	for _, p := range r.Parts {
-		t.Rows = append(t.Rows, row("tt", p.Method+" "+p.Path, p.ResultID))
+		t.Rows = append(t.Rows, row("tw", p.Method+" "+p.Path, p.ResultID))
 	}
-	request, err := json.MarshalIndent(r.Request, "", " ")
+	request, err := json.Marshal(r.Request)
 	if err != nil {
 		panic("render: a request that was read cannot be written")
 	}

@@ -85,18 +85,18 @@ func listing(node any, at string) *grille {
 func list(t *grille, node any, at, name string) {
 	m, is := node.(map[string]any)
 	if !is {
-		t.Rows = append(t.Rows, row("ttt", strings.TrimPrefix(name, "/"), said(node, wire.UnitOf(at)), ""))
+		t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name, "/"), said(node, wire.UnitOf(at)), ""))
 		return
 	}
 	if isSpread(m) {
 		value, span := saidSpread(m, wire.UnitOf(at))
-		t.Rows = append(t.Rows, row("ttt", strings.TrimPrefix(name, "/"), value, span))
+		t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name, "/"), value, span))
 		return
 	}
 	m = foldRanges(t, m, at, name)
 	for _, key := range sortedKeys(m) {
 		if rows, is := m[key].([]any); is {
-			t.Rows = append(t.Rows, row("ttt", strings.TrimPrefix(name+"/"+key, "/"), saidTable(rows, at+"/"+key), ""))
+			t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name+"/"+key, "/"), saidTable(rows, at+"/"+key), ""))
 			continue
 		}
 		list(t, m[key], at+"/"+key, name+"/"+key)
@@ -116,7 +116,7 @@ func foldRanges(t *grille, m map[string]any, at, name string) map[string]any {
 			continue
 		}
 		value, span := saidSpread(map[string]any{"min": m["min_"+unit], "typ": m["typ_"+unit], "max": m[key]}, wire.UnitOf(at+"/"+key))
-		t.Rows = append(t.Rows, row("ttt", strings.TrimPrefix(name, "/"), value, span))
+		t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name, "/"), value, span))
 		for _, end := range []string{"min_", "typ_", "max_"} {
 			delete(rest, end+unit)
 		}

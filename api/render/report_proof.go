@@ -131,7 +131,7 @@ func worstPlaces(a *wire.CornersAnswer) *grille {
 			case s.at.Beyond:
 				by += ", inside the box"
 			}
-			t.Rows = append(t.Rows, row("ttnttt", name, s.side, figureOf(s.at.Value, unit, factor), pointWords(s.at.Point), by, contributors(s.at, unit, factor)))
+			t.Rows = append(t.Rows, row("ttnttw", name, s.side, figureOf(s.at.Value, unit, factor), pointWords(s.at.Point), by, contributors(s.at, unit, factor)))
 		}
 	}
 	return t
@@ -170,7 +170,7 @@ func (r *Report) findings() []part {
 	slices.SortStableFunc(list, func(x, y wire.Finding) int {
 		return cmp.Or(cmp.Compare(order[x.Verdict], order[y.Verdict]), cmp.Compare(x.Severity, y.Severity))
 	})
-	t := &grille{Head: row("ttttnnnt", "verdict", "severity", "rule", "place", "value", "limit", "margin", "detail")}
+	t := &grille{Head: row("tttwnnnt", "verdict", "severity", "rule", "place", "value", "limit", "margin", "detail")}
 	for i := range list {
 		f := &list[i]
 		detail := f.Detail
@@ -180,7 +180,7 @@ func (r *Report) findings() []part {
 		if len(f.Missing) > 0 {
 			detail += " Missing: " + strings.Join(f.Missing, ", ") + "."
 		}
-		cells := row("ttttnnnt", "", f.Severity, f.Title, strings.TrimPrefix(f.Pointer, "/stage/"), figure(f.Value, f.Unit), figure(f.Limit, f.Unit), optional(f.Margin, percent), detail)
+		cells := row("tttwnnnt", "", f.Severity, f.Title, strings.TrimPrefix(f.Pointer, "/stage/"), figure(f.Value, f.Unit), figure(f.Limit, f.Unit), optional(f.Margin, percent), detail)
 		cells[0] = judged(f.Verdict)
 		t.Rows = append(t.Rows, cells)
 	}
@@ -214,7 +214,7 @@ func waiverTable(list []wire.Finding) *grille {
 		if list[i].Verdict == "waived" {
 			applied = "yes, was " + list[i].WaivedFrom
 		}
-		t.Rows = append(t.Rows, row("tttttt", w.Rule, strings.TrimPrefix(list[i].Pointer, "/stage/"), w.Reason, w.Approver, w.Expires, applied))
+		t.Rows = append(t.Rows, row("wwtttt", w.Rule, strings.TrimPrefix(list[i].Pointer, "/stage/"), w.Reason, w.Approver, w.Expires, applied))
 	}
 	return t
 }
