@@ -32,12 +32,18 @@ func (a *API) problems() []docs.Problem {
 
 // faulty are requests for losses that are refused, by the kind of the refusal.
 var faulty = map[exchange.Kind]string{
-	exchange.Malformed:   `{"stage": {"name": "buoy-5v0", "name": "buoy-3v3"}}`,
-	exchange.SchemaFault: `{"stage": {"name": "buoy-5v0", "inductor": {"inductance_h": "6.8u"}}}`,
-	exchange.PhysicsFault: `{"stage": {"name": "buoy-5v0", "rectifier": "synchronous", "switching_frequency_hz": {"min": 6e5, "typ": 5e5, "max": 7e5},
-		"high_side": {"on_resistance_ohm": 0.009}, "low_side": {"on_resistance_ohm": 0.0045}, "inductor": {"inductance_h": 6.8e-6, "dc_resistance_ohm": 0.007},
-		"output_capacitors": [{"capacitance_f": 2.2e-5, "esr_ohm": 0.003}]},
-		"point": {"input_v": 24, "load": {"current_a": 3}, "ambient_degc": 25, "control": {"regulate_to_v": 5}}}`,
+	exchange.Malformed:    `{"stage": {"name": "buoy-5v0", "name": "buoy-3v3"}}`,
+	exchange.SchemaFault:  requestWith(`5e5`, `"6.8u"`),
+	exchange.PhysicsFault: requestWith(`{"min": 6e5, "typ": 5e5, "max": 7e5}`, `6.8e-6`),
+}
+
+// requestWith is a small request with these values of switching_frequency_hz and
+// inductance_h.
+func requestWith(frequency, inductance string) string {
+	return `{"stage": {"name": "buoy-5v0", "rectifier": "synchronous", "switching_frequency_hz": ` + frequency + `,
+		"high_side": {"on_resistance_ohm": 0.009}, "low_side": {"on_resistance_ohm": 0.0045},
+		"inductor": {"inductance_h": ` + inductance + `, "dc_resistance_ohm": 0.007}, "output_capacitors": [{"capacitance_f": 2.2e-5, "esr_ohm": 0.003}]},
+		"point": {"input_v": 24, "load": {"current_a": 3}, "ambient_degc": 25, "control": {"regulate_to_v": 5}}}`
 }
 
 // sample is a problem of the kind: a real refusal where a request alone brings it

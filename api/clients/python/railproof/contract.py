@@ -886,7 +886,7 @@ class SteadyStateAnswer(TypedDict):
     status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged']  # How the evaluation ended.
     stage: 'Stage'
     point: 'Point'
-    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode.
+    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
     quantities: NotRequired['Quantities']
     part_temperatures: NotRequired[List['PartTemperature']]
     nearest_operable: NotRequired['NearestOperable']
@@ -904,7 +904,7 @@ class LossesItem(TypedDict):
 
     status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged']  # How the evaluation ended.
     point: 'Point'
-    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode.
+    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
     quantities: NotRequired['Quantities']
     part_temperatures: List['PartTemperature']
     nearest_operable: NotRequired['NearestOperable']
@@ -1539,7 +1539,7 @@ class LoopItem(TypedDict):
 
     status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged', 'unstable', 'no-comparison']  # How the stage and its loop do; no-comparison: the control voltage's ripple outruns the comparator's ramp, so there is no loop to analyse.
     point: 'Point'
-    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode.
+    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
     nearest_operable: NotRequired['NearestOperable']
     stability: NotRequired[Literal['stable', 'unstable']]  # By the eigenvalues of the closed loop, not by margins.
     crossing: NotRequired[Literal['crosses', 'always-below', 'always-above', 'only-rises']]  # Whether the loop gain falls through 1.
@@ -1601,7 +1601,7 @@ class TransientWaveforms(TypedDict):
     output_v: List[float]
     inductor_a: List[List[float]]  # Of each phase.
     load_a: List[float]
-    input_v: NotRequired[List[float]]
+    input_v: NotRequired[List[float]]  # At the input capacitors.
     duty_ratio: List[float]  # Of the period that the instant lies in.
     control_v: List[float]  # Output of the error amplifier.
     reference_v: NotRequired[List[float]]
@@ -1612,7 +1612,7 @@ class TransientsAnswer(TypedDict):
 
     engine: 'Engine'
     result_id: str  # res_ and the SHA-256 of operation, engine and canonical request (RFC 8785).
-    status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged', 'unstable', 'collapsed']  # How the computation ended; unstable: the loop does not hold its operating point before or after the event; collapsed: the load drags the output below zero.
+    status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged', 'unstable', 'no-comparison', 'collapsed']  # How the computation ended; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
     stage: 'Stage'
     point: 'Point'
     event: 'TransientEvent'

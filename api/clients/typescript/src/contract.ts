@@ -2434,7 +2434,7 @@ export interface components {
             stage: components["schemas"]["Stage"];
             point: components["schemas"]["Point"];
             /**
-             * @description Conduction mode.
+             * @description Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
              * @enum {string}
              */
             conduction_mode?: "continuous" | "boundary" | "discontinuous";
@@ -2460,7 +2460,7 @@ export interface components {
             status: "ok" | "over-temperature" | "drop-out" | "too-short-on-time" | "no-operating-point" | "runaway" | "not-converged";
             point: components["schemas"]["Point"];
             /**
-             * @description Conduction mode.
+             * @description Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
              * @enum {string}
              */
             conduction_mode?: "continuous" | "boundary" | "discontinuous";
@@ -3582,7 +3582,7 @@ export interface components {
             status: "ok" | "over-temperature" | "drop-out" | "too-short-on-time" | "no-operating-point" | "runaway" | "not-converged" | "unstable" | "no-comparison";
             point: components["schemas"]["Point"];
             /**
-             * @description Conduction mode.
+             * @description Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
              * @enum {string}
              */
             conduction_mode?: "continuous" | "boundary" | "discontinuous";
@@ -3728,6 +3728,7 @@ export interface components {
             /** @description Of each phase. */
             inductor_a: number[][];
             load_a: number[];
+            /** @description At the input capacitors. */
             input_v?: number[];
             /** @description Of the period that the instant lies in. */
             duty_ratio: number[];
@@ -3741,10 +3742,10 @@ export interface components {
             /** @description res_ and the SHA-256 of operation, engine and canonical request (RFC 8785). */
             result_id: string;
             /**
-             * @description How the computation ended; unstable: the loop does not hold its operating point before or after the event; collapsed: the load drags the output below zero.
+             * @description How the computation ended; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
              * @enum {string}
              */
-            status: "ok" | "over-temperature" | "drop-out" | "too-short-on-time" | "no-operating-point" | "runaway" | "not-converged" | "unstable" | "collapsed";
+            status: "ok" | "over-temperature" | "drop-out" | "too-short-on-time" | "no-operating-point" | "runaway" | "not-converged" | "unstable" | "no-comparison" | "collapsed";
             stage: components["schemas"]["Stage"];
             point: components["schemas"]["Point"];
             event: components["schemas"]["TransientEvent"];
