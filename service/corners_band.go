@@ -14,11 +14,12 @@ import (
 // the stage.
 func bandsOf(s *stage.Stage) []corners.Scale {
 	var list []corners.Scale
+	fields := stage.Lookup{Fields: s.Fields()}
 	for _, band := range corners.ModelBands(s) {
 		bears := false
 		for _, field := range band.Fields {
-			v := s.Field(field)
-			bears = bears || v != nil && parts.Known(*v) && *v != 0
+			i := fields.Find(field)
+			bears = bears || i >= 0 && parts.Known(*fields.Fields[i].Value) && *fields.Fields[i].Value != 0
 		}
 		if bears && band.High > band.Low {
 			list = append(list, band)

@@ -40,7 +40,7 @@ func (p *worstPass) vertices(d *driver, r *worstRequest) error {
 	}
 	typical := make([]float64, len(problem.Coordinates))
 	if seeds := r.seeds(p); seeds != nil {
-		if err := p.try(d, append(seeds, typical)); err != nil {
+		if err := p.try(d, seeds); err != nil {
 			return err
 		}
 		return p.try(d, p.around(p.places(), p.changed(r.role)))
@@ -72,10 +72,13 @@ func (p *worstPass) split() (tolerances, conditions []int) {
 	return tolerances, conditions
 }
 
-// changed lists the coordinates of a part.
+// changed lists the coordinates of a part but its thermal path, which reaches loop
+// and load step through the drift of a resistance only.
 func (p *worstPass) changed(role string) (list []int) {
 	for i := range p.bound.Problem().Coordinates {
-		if slices.ContainsFunc(p.bound.Pointers(i), func(at string) bool { return strings.HasPrefix(at, role+"/") }) {
+		if slices.ContainsFunc(p.bound.Pointers(i), func(at string) bool {
+			return strings.HasPrefix(at, role+"/") && !strings.HasPrefix(at, role+"/thermal/")
+		}) {
 			list = append(list, i)
 		}
 	}

@@ -53,14 +53,15 @@ func NewDesign(s *stage.Stage, variables []spread.Variable, c *stage.Conditions,
 		return nil, err
 	}
 	d := &Design{stage: s.Clone(), set: set, scales: o.Scales, conditions: *c, quantities: o.Quantities, extend: o.Extend}
+	fields := stage.Lookup{Fields: d.stage.Fields()}
 	for i := range variables {
-		if d.stage.Field(variables[i].Field) == nil {
+		if fields.Find(variables[i].Field) < 0 {
 			return nil, fmt.Errorf("corners: %s: the stage has no number %q", variables[i].Pointer, variables[i].Field)
 		}
 	}
 	for i := range o.Scales {
 		for _, field := range o.Scales[i].Fields {
-			if d.stage.Field(field) == nil {
+			if fields.Find(field) < 0 {
 				return nil, fmt.Errorf("corners: %s: the stage has no number %q", o.Scales[i].Pointer, field)
 			}
 		}

@@ -27,12 +27,14 @@ type scaled struct {
 
 func (d *Design) newPlacement(s *stage.Stage) placement {
 	p := placement{design: d, stage: s, values: make([]float64, len(d.set.Variables())), scaled: make([][]scaled, len(d.scales)), typical: d.conditions.Typical()}
+	fields := stage.Lookup{Fields: s.Fields()}
+	value := func(field string) *float64 { return fields.Fields[fields.Find(field)].Value }
 	for i := range d.set.Variables() {
-		p.targets = append(p.targets, s.Field(d.set.Variables()[i].Field))
+		p.targets = append(p.targets, value(d.set.Variables()[i].Field))
 	}
 	for i := range d.scales {
 		for _, field := range d.scales[i].Fields {
-			f := s.Field(field)
+			f := value(field)
 			p.scaled[i] = append(p.scaled[i], scaled{f, *f})
 		}
 	}
