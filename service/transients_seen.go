@@ -107,7 +107,7 @@ func (r *TransientsRequest) rests(a *TransientsAnswer) {
 	if v.Kind == StartUpEvent && !parts.Known(v.LoadFrom) && r.Place.Point.Load.Current > 0 {
 		set := r.Design.Stage.Feedback.OutputVoltage()
 		a.Basis.Assumptions = append(a.Basis.Assumptions, Assumption{
-			Pointer: r.EventAt + "/load_from_v", Value: loadFromShare * set, Low: 0, High: set,
+			Pointer: r.EventAt + "/start_up/load_from_v", Value: loadFromShare * set, Low: 0, High: set,
 			Why: "output from which the constant-current load draws not given: taken as half of what the divider sets",
 		})
 	}

@@ -65,7 +65,9 @@ func (w *LoopGainRequest) Decode() (*service.LoopRequest, error) {
 		return nil, &InvalidError{[]Fault{{Pointer: "", Keyword: "form", Detail: "exactly one of point and points is given"}}}
 	}
 	st, target, faults := w.target()
-	faults = append(faults, demandLoop(st)...)
+	if len(faults) == 0 {
+		faults = demandLoop(st)
+	}
 	if len(faults) > 0 {
 		return nil, &InvalidError{faults}
 	}

@@ -11,9 +11,12 @@ import (
 	"railproof/openapi"
 )
 
+// badExample ends the name of an example whose stage does not do what it should.
+const badExample = "-unstable"
+
 // operations by the file names of the examples.
 func operationOf(file string) (openapi.Operation, bool) {
-	name := strings.TrimSuffix(path.Base(file), ".json")
+	name := strings.TrimSuffix(strings.TrimSuffix(path.Base(file), ".json"), badExample)
 	for _, op := range contract.Operations() {
 		if op.Path == "/v1/"+name {
 			return op, true
@@ -44,7 +47,11 @@ func TestEveryExampleIsAnsweredAsTheContractSays(t *testing.T) {
 			if r.header.Get("Content-Type") == "text/html" {
 				require.Contains(t, string(r.body), "</html>")
 			} else if answer := r.tree(t).(map[string]any); answer["grid"] == nil {
-				require.Equal(t, "ok", answer["status"], "%v", answer["detail"])
+				want := "ok"
+				if strings.HasSuffix(file, badExample+".json") {
+					want = "unstable"
+				}
+				require.Equal(t, want, answer["status"], "%v", answer["detail"])
 			}
 			again := send(t, op.Method, at+op.Path, body)
 			require.Equal(t, string(r.body), string(again.body), "same request, same bytes")
