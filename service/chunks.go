@@ -46,3 +46,15 @@ func inChunks[W any](ctx context.Context, n, size, workers int, prepare func() W
 	}
 	return nil
 }
+
+// polled goes through a computation that yields every few milliseconds. Between
+// its pieces it looks at the context and lets others run.
+func polled(ctx context.Context, pieces func(yield func() bool)) error {
+	for range pieces {
+		if err := context.Cause(ctx); err != nil {
+			return err
+		}
+		runtime.Gosched()
+	}
+	return nil
+}

@@ -38,8 +38,12 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 			return err
 		}
 		a.Answer = sizing.Select(&r.Requirement, answers)
-		a.Verify()
-		a.VerifyStep(&r.Requirement)
+		if err := polled(ctx, a.Verifying); err != nil {
+			return err
+		}
+		if err := polled(ctx, a.VerifyingStep(&r.Requirement)); err != nil {
+			return err
+		}
 		a.Basis.Assumptions, err = s.sizingAssumptions(ctx, r, &a.Answer)
 		s.sizingRests(r, a)
 		return err

@@ -5,6 +5,7 @@ import (
 	"strings"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/magnetics"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
@@ -22,7 +23,6 @@ const (
 	greatestDropShare    = 0.25 // [1] of the input voltage across one resistance: more is a slip of a decimal
 	leastRippleShare     = 5e-3 // [1] inductor ripple over its mean
 	greatestPeakShare    = 3.0  // [1] inductor peak over its saturation current
-	greatestCoreDensity  = 5e6  // [W/m3] no core stands more
 	greatestDeadShare    = 0.2  // [1] of the period spent in dead time
 	greatestWarningCount = 64   // [1] in one answer
 )
@@ -83,7 +83,7 @@ func (w *warnings) scale(d *Design, p *stage.Point, r *evaluate.Result) {
 	if peak, rated := q[quantity.InductorPeak], s.Inductor.Rating.Saturation; peak > greatestPeakShare*rated {
 		w.add("implausible-scale", d.At+"/inductor/inductance_h", "the inductor's peak current of %s A is far above its saturation current of %s A: is the value in henry?", peak, rated)
 	}
-	if density := q[quantity.CorePowerDensity]; parts.Known(density) && density > greatestCoreDensity {
+	if density := q[quantity.CorePowerDensity]; parts.Known(density) && density > magnetics.AbsurdDensity {
 		w.add("core-power-density", d.At+"/inductor/core/steinmetz/k", "the core loss of %s W/m3 is more than any core stands; coefficients are for a sine, amplitude of B, in Hz, T and W/m3", density)
 	}
 }

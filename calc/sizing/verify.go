@@ -18,6 +18,13 @@ import (
 // of a spread is worse is found from the quantity itself, by moving one spread at a
 // time from its typical value at each input and load.
 func (a *Answer) Verify() {
+	for range a.Verifying {
+	}
+}
+
+// Verifying is Verify for a caller that looks about in between: it yields after
+// every input and load. Left before its end it leaves no checks.
+func (a *Answer) Verifying(yield func() bool) {
 	a.Checks = nil
 	if !a.Status.OK() {
 		return
@@ -37,6 +44,9 @@ func (a *Answer) Verify() {
 				for _, v.point.AgeRatio = range ends(a.Conditions.AgeRatio) {
 					v.visit()
 				}
+			}
+			if !yield() {
+				return
 			}
 		}
 	}

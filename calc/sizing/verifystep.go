@@ -29,6 +29,17 @@ const (
 // Where no periodic operation is found to start from, the checks are left out and a
 // note says so: what was not followed is no pass.
 func (a *Answer) VerifyStep(req *stage.Requirement) {
+	for range a.VerifyingStep(req) {
+	}
+}
+
+// VerifyingStep is VerifyStep for a caller that looks about in between: it yields
+// after every step that was followed. Left before its end it adds no checks.
+func (a *Answer) VerifyingStep(req *stage.Requirement) func(yield func() bool) {
+	return func(yield func() bool) { a.verifyStep(req, yield) }
+}
+
+func (a *Answer) verifyStep(req *stage.Requirement, yield func() bool) {
 	s := req.Targets.LoadStep
 	if !a.Status.OK() || !known(s.Step) || !a.Stage.Compensator.Present {
 		return
@@ -52,6 +63,9 @@ func (a *Answer) VerifyStep(req *stage.Requirement) {
 					}
 					for k := range checks {
 						checks[k].take(figureOf(&o, checks[k].Quantity), v.point)
+					}
+					if !yield() {
+						return
 					}
 				}
 			}
