@@ -141,9 +141,8 @@ func (e *Evaluator) iterate(o *operating) Status {
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
 			if dutyChange > dutyTolerance {
-				if status = e.polish(o); status == NotConverged {
-					return status
-				}
+				e.polish(o)
+				status = fromSwitched(e.solution.Status)
 			}
 			return e.settled(o, status)
 		}
@@ -162,28 +161,24 @@ func (e *Evaluator) solve(o *operating) (dutyChange float64) {
 	return e.solver.Approach(&e.circuit, o.output, o.least, o.most, &e.solution)
 }
 
-// polish brings the output of the settled circuit to the regulated voltage.
-func (e *Evaluator) polish(o *operating) Status {
+// polish brings the output of the settled circuit to the regulated voltage. What
+// follows from the currents moves by less than the circuit's tolerance; the losses
+// take the last solution, so that their sum stays exact.
+func (e *Evaluator) polish(o *operating) {
 	for range maxPolish {
-		change := e.solve(o)
-		status := fromSwitched(e.solution.Status)
-		if status == NoOperatingPoint || status == NotConverged {
-			return NotConverged
-		}
-		if change <= dutyTolerance {
-			e.followInductance()
+		if e.solve(o) <= dutyTolerance {
 			e.operation.LoadRMS = e.loadRMS()
 			e.model.Freeze(&e.operation)
-			return status
+			return
 		}
 	}
-	return NotConverged
+	e.solution.Status = switched.NotConverged
 }
 
 // settled tells what the temperatures of a converged point mean.
 func (e *Evaluator) settled(o *operating, status Status) Status {
 	e.hottest = e.degC
-	if o.held {
+	if o.held || !status.Figures() {
 		return status
 	}
 	if e.operation.Inductances != nil && !e.settlePhases(o) {
@@ -249,6 +244,9 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 	for range steps {
 		e.model.Powers(&e.degC, &e.power, &e.slope)
 		if o.held {
+			break
+		}
+		if steps > 1 && e.network.Settled(o.point.AmbientDegC, &e.power, &e.slope, &e.degC, temperatureTolerance) {
 			break
 		}
 		change, state := e.network.Step(o.point.AmbientDegC, &e.power, &e.slope, &e.degC)

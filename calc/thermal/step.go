@@ -184,6 +184,31 @@ func (n *Network) climb(slope, degC *Vector) (change float64, state State) {
 	return change, state
 }
 
+// Settled reports whether every node lies within a distance [K] of the
+// equilibrium that the losses and their slopes at the present temperatures point
+// to.
+//
+//	|T − Teq| ≤ max |T(P) − T| / (1 − ‖R J‖∞)
+//
+// It costs less than a step and is false where the gain is too large to tell.
+func (n *Network) Settled(ambientDegC float64, power, slope, degC *Vector, within float64) bool {
+	n.Temperatures(ambientDegC, power, &n.lack)
+	for _, i := range n.node[:n.n] {
+		n.next[i] = n.self[i] * math.Abs(slope[i])
+	}
+	for k := range n.coupling[:n.couplings] {
+		c := &n.coupling[k]
+		n.next[c.A] += c.OntoA * math.Abs(slope[c.B])
+		n.next[c.B] += c.OntoB * math.Abs(slope[c.A])
+	}
+	lack, gain := 0.0, 0.0
+	for _, i := range n.node[:n.n] {
+		lack = max(lack, math.Abs(n.lack[i]-degC[i]))
+		gain = max(gain, n.next[i])
+	}
+	return lack <= within*(1-gain)
+}
+
 // Residual returns the largest |T(P) − T| [K] over the nodes.
 func (n *Network) Residual(ambientDegC float64, power, degC *Vector) float64 {
 	var target Vector
