@@ -148,7 +148,7 @@ func group(o docs.Operation) int {
 }
 
 func parameters(list []openapi.Parameter) []string {
-	names := []string{}
+	names := make([]string, 0, len(list))
 	for _, p := range list {
 		names = append(names, p.Name)
 	}
@@ -156,8 +156,9 @@ func parameters(list []openapi.Parameter) []string {
 }
 
 func quantities() []docs.Quantity {
-	var rows []docs.Quantity
-	for _, q := range wire.EncodeQuantities(wire.Engine{}).Quantities {
+	all := wire.EncodeQuantities(wire.Engine{}).Quantities
+	rows := make([]docs.Quantity, 0, len(all))
+	for _, q := range all {
 		key := q.Key
 		if q.Family != "single" {
 			key += "[]"
@@ -169,7 +170,7 @@ func quantities() []docs.Quantity {
 
 // shownPacks tells the pages of rule packs.
 func shownPacks(entries []packs.Entry) []docs.Pack {
-	var all []docs.Pack
+	all := make([]docs.Pack, 0, len(entries))
 	for _, e := range entries {
 		d := e.Document
 		p := docs.Pack{ID: d.ID, Title: d.Title, Edition: d.Edition, Provenance: d.Provenance, Extends: d.Extends}

@@ -11,8 +11,9 @@ import (
 
 // problems tells the pages of every kind of problem.
 func (a *API) problems() []docs.Problem {
-	var all []docs.Problem
-	for _, k := range exchange.Kinds() {
+	kinds := exchange.Kinds()
+	all := make([]docs.Problem, 0, len(kinds))
+	for _, k := range kinds {
 		body := a.sample(k.Kind)
 		body.Instance = "req_0123456789abcdef01234567"
 		text, err := json.MarshalIndent(body, "", "  ")

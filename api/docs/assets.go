@@ -36,11 +36,11 @@ var assetTypes = map[string]string{".js": "text/javascript; charset=utf-8", ".cs
 
 // Assets returns every asset. A large one is stored under gzip, as NAME.gz.
 func Assets() []Asset {
-	var all []Asset
 	entries, err := fs.ReadDir(assetFiles, "assets")
 	if err != nil {
 		panic("docs: embedded assets cannot be listed")
 	}
+	all := make([]Asset, 0, len(entries))
 	for _, e := range entries {
 		stored, err := assetFiles.ReadFile("assets/" + e.Name())
 		if err != nil {

@@ -21,10 +21,13 @@ var verdicts = []struct {
 	{regexp.MustCompile(`(^|\s)(fail|fails|error|rejected|disagrees|infeasible|runaway|over-temperature|drop-out|too-short-on-time|no-operating-point)(\s|[,.;:]|$)`), red},
 }
 
+// noColour is set, to anything, by those who want no colours.
+const noColour = "NO_COLOR" //nolint:misspell // its name everywhere
+
 // takesColour reports whether standard output shows colours and nobody has said that
-// there should be none (NO_COLOR, set to anything).
+// there should be none.
 func takesColour(t terminal) bool {
-	return isTerminal(t.out) && t.env("NO_COLOR") == "" && t.env("TERM") != "dumb"
+	return isTerminal(t.out) && t.env(noColour) == "" && t.env("TERM") != "dumb"
 }
 
 // coloured marks the verdicts of a table.

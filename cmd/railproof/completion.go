@@ -52,9 +52,10 @@ func (f completedFlag) dashed() string {
 
 // completed reads the subcommands and their flags from the table.
 func completed() []completedCommand {
-	var all []completedCommand
-	names := []string{"help"}
-	for _, c := range commands() {
+	table := commands()
+	all := make([]completedCommand, 0, len(table)+1)
+	names := make([]string, 0, len(table))
+	for _, c := range table {
 		names = append(names, c.name)
 		one := completedCommand{name: c.name, summary: c.summary}
 		if c.operand != "FILE|-" && !strings.ContainsAny(c.operand, " []") && c.operand != "" {
@@ -68,7 +69,7 @@ func completed() []completedCommand {
 		})
 		all = append(all, one)
 	}
-	return append(all, completedCommand{name: "help", summary: "tells about a subcommand", words: slices.DeleteFunc(names, func(n string) bool { return n == "help" })})
+	return append(all, completedCommand{name: "help", summary: "tells about a subcommand", words: names})
 }
 
 func completeBash(w io.Writer, all []completedCommand) {
