@@ -38,7 +38,7 @@ func (m *plane) Eval(z, out []float64) (evaluate.Status, switched.Mode) {
 func planePass(t *testing.T) (*worstPass, *driver, *plane) {
 	t.Helper()
 	s := plain().Stage
-	variables := []spread.Variable{}
+	variables := make([]spread.Variable, 0, 3)
 	for _, field := range []string{"inductor/inductance_h", "inductor/dc_resistance_ohm", "switching_frequency_hz"} {
 		v := *s.Field(field)
 		variables = append(variables, spread.Variable{Pointer: "/stage/" + field, Field: field, Min: 0.9 * v, Typ: v, Max: 1.1 * v})

@@ -89,7 +89,7 @@ func (p *worstPass) changed(role string) (list []int) {
 func (p *worstPass) conditionCorners(typical []float64) [][]float64 {
 	_, of := p.split()
 	of = of[:min(len(of), mostConditions)]
-	points := [][]float64{typical}
+	points := append(make([][]float64, 0, 1+1<<len(of)), typical)
 	for bits := range 1 << len(of) {
 		z := slices.Clone(typical)
 		for k, i := range of {

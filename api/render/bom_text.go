@@ -17,7 +17,7 @@ func BomChecksText(a *wire.BomChecksAnswer) string {
 	p := new(page)
 	p.line("bill of material: ", strings.ToUpper(a.Overall))
 	p.b.WriteByte('\n')
-	var rows [][]string
+	rows := make([][]string, 0, len(a.Rails))
 	for i := range a.Rails {
 		r := &a.Rails[i]
 		rows = append(rows, []string{r.Name, r.Verdict, strconv.Itoa(r.Lines), strconv.Itoa(r.Differences), strconv.Itoa(r.NotEvaluated), strconv.Itoa(len(r.Missing)), strconv.Itoa(len(r.Unbound)), strconv.Itoa(len(r.Alternates))})

@@ -20,7 +20,7 @@ func SubstitutionsText(a *wire.SubstitutionsAnswer) string {
 	}
 	slices.SortStableFunc(items, func(x, y *wire.SubstitutionItem) int { return cmp.Compare(x.Rank, y.Rank) })
 	p.b.WriteByte('\n')
-	var rows [][]string
+	rows := make([][]string, 0, len(items))
 	for _, i := range items {
 		t := i.Terms
 		rows = append(rows, []string{strconv.Itoa(i.Rank), itemName(i), i.Role, i.Verdict, optional(i.Score, three), optional(t.Loss, three), optional(t.Temperature, percent), optional(t.Cost, three), optional(t.Area, three), strconv.Itoa(len(i.Missing))})

@@ -29,7 +29,7 @@ sends for the same request.`,
 				return code
 			}
 			if *lines == "" && *columns != "" {
-				fmt.Fprintln(t.err, "railproof bom: --columns belongs to --lines")
+				fmt.Fprint(t.err, "railproof bom: --columns belongs to --lines\n") //nolint:errcheck // nowhere to tell it
 				return exitBadInput
 			}
 			return compute(ctx, t, "bom", "bomChecks", form, operands, around{before: func(body []byte) ([]byte, error) { return withLines(body, *lines, *columns) }})

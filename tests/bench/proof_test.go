@@ -41,7 +41,7 @@ func BenchmarkSubstitutions100(b *testing.B) {
 	first := encode(b, d["replacements"].([]any)[0])
 	for b.Loop() {
 		n++
-		var list []any
+		list := make([]any, 0, 100)
 		for k := range 100 {
 			var r map[string]any
 			require.NoError(b, json.Unmarshal(first, &r))
@@ -59,7 +59,7 @@ func BenchmarkSubstitutions100(b *testing.B) {
 func BenchmarkBom5000(b *testing.B) {
 	h, d := handler(), document(b, "buoy-3v3/bom-checks.json")
 	rail := encode(b, d["rails"].([]any)[0])
-	var rails []any
+	rails := make([]any, 0, 40)
 	var text strings.Builder
 	text.WriteString("Designator;Value;Part\n")
 	for k := range 40 {
