@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"maps"
 	"math"
+	"runtime/debug"
 	"slices"
 	"strconv"
 
@@ -59,6 +60,7 @@ type binder struct {
 	setting *wire.Setting
 	paths   map[string]string
 	report  *render.Report
+	parts   []render.ReportPart
 }
 
 func (b *binder) wants(section string) bool { return slices.Contains(b.report.Sections, section) }
@@ -71,13 +73,35 @@ func part[A any](b *binder, operation string, tree map[string]any) (answer A, er
 	if err != nil {
 		return answer, err
 	}
-	r.Parts = append(r.Parts, render.ReportPart{Method: "POST", Path: b.paths[operation], ResultID: id})
+	b.parts = append(b.parts, render.ReportPart{Method: "POST", Path: b.paths[operation], ResultID: id})
 	return value.(A), nil
 }
 
-func (b *binder) bind(w *wire.ReportsRequest) (err error) {
-	r := b.report
-	stage := b.request["stage"]
+// bind answers what is quick beside the proofs, which have all cores most of the
+// time; the parts are listed in a fixed order.
+func (b *binder) bind(w *wire.ReportsRequest) error {
+	proofs := *b
+	proofs.parts = nil
+	done := make(chan error, 1)
+	go func() {
+		defer func() {
+			if failed := recover(); failed != nil { // nobody above this goroutine would
+				done <- fmt.Errorf("exchange: panic in a report: %v\n%s", failed, debug.Stack())
+			}
+		}()
+		done <- proofs.proofs(w)
+	}()
+	err := b.singles()
+	if failed := <-done; err == nil {
+		err = failed
+	}
+	b.report.Parts = append(b.parts, proofs.parts...)
+	return err
+}
+
+// singles answers what needs one core for a moment.
+func (b *binder) singles() (err error) {
+	r, stage := b.report, b.request["stage"]
 	typical, heavy, points := b.points()
 	if b.wants("sizing") {
 		if r.Sizing, err = part[*wire.SizingAnswer](b, "sizing", map[string]any{"requirement": b.request["requirement"]}); err != nil {
@@ -97,13 +121,16 @@ func (b *binder) bind(w *wire.ReportsRequest) (err error) {
 			return err
 		}
 	}
+	return b.dynamics(typical, points)
+}
+
+// proofs answers worst case and rules.
+func (b *binder) proofs(w *wire.ReportsRequest) (err error) {
+	r := b.report
 	if b.wants("worst-case") {
 		if r.Corners, err = part[*wire.CornersAnswer](b, "corners", b.corners(w)); err != nil {
 			return err
 		}
-	}
-	if err := b.dynamics(typical, points); err != nil {
-		return err
 	}
 	if b.wants("findings") {
 		if r.Rules, err = part[*wire.RuleChecksAnswer](b, "ruleChecks", b.shared("stage", "requirement", "conditions", "limits", "packs", "waivers", "date")); err != nil {
