@@ -2,7 +2,6 @@ package exchange
 
 import (
 	"context"
-	"encoding/json"
 	"fmt"
 	"time"
 
@@ -110,6 +109,8 @@ func (x *Exchange) Do(ctx context.Context, operation string, body []byte) (*Answ
 	return x.Answer(ctx, r)
 }
 
+const usualAnswer = 16 << 10 // [bytes] room for the text of an answer at one point
+
 // finish checks an answer against the contract and encodes it.
 func (x *Exchange) finish(operation string, value any, watch *stopwatch) (*Answer, *Problem) {
 	if faults := x.contract.ValidateResponse(operation, 200, value); faults != nil {
@@ -121,7 +122,7 @@ func (x *Exchange) finish(operation string, value any, watch *stopwatch) (*Answe
 		watch.lap("encode")
 		return &Answer{Operation: operation, Value: value, Body: body, Timings: watch.laps}, nil
 	}
-	body, err := json.Marshal(value)
+	body, err := wire.AppendJSON(make([]byte, 0, usualAnswer), value)
 	if err != nil {
 		return nil, problemOf(fmt.Errorf("exchange: answer of %s cannot be encoded: %w", operation, err))
 	}
