@@ -30,6 +30,10 @@ func TestExitCodes(t *testing.T) {
 		{"syntax", "{", []string{"losses", "-"}, 2},
 		{"schema", `{"stage": {}}`, []string{"losses", "-"}, 2},
 		{"physics", changed(`"regulate_to_v": 5`, `"regulate_to_v": 50`), []string{"losses", "-"}, 2},
+		{"unstable", example(t, "buoy-5v0/loop-gain-unstable.json"), []string{"loop", "-"}, 1},
+		{"loop", example(t, "buoy-3v3/loop-gain.json"), []string{"loop", "-"}, 0},
+		{"transient", example(t, "mast-12v0/transients.json"), []string{"transient", "-"}, 0},
+		{"run-too-long", strings.Replace(example(t, "buoy-5v0/transients.json"), `"duration_s": 0.0005`, `"duration_s": 1`, 1), []string{"transient", "-"}, 2},
 		{"flag-after-the-file", losses, []string{"losses", "-", "--csv=false"}, 0},
 		{"no-such-file", "", []string{"losses", "nowhere.json"}, 2},
 		{"no-file", "", []string{"losses"}, 2},
@@ -90,7 +94,7 @@ func TestTablesFitTheTerminal(t *testing.T) {
 	ran := 0
 	for _, file := range files {
 		name := strings.TrimSuffix(filepath.Base(file), ".json")
-		command := map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size", "rule-checks": "check", "substitutions": "substitute", "bom-checks": "bom"}[name]
+		command := map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size", "rule-checks": "check", "substitutions": "substitute", "bom-checks": "bom", "loop-gain": "loop", "loop-gain-unstable": "loop", "transients": "transient"}[name]
 		if command == "" {
 			continue
 		}

@@ -78,7 +78,7 @@ func post(t *testing.T, url, body string) (int, string) {
 
 func TestCommandLineAndServerGiveTheSameBytes(t *testing.T) {
 	s := start(t, []string{"--address", "127.0.0.1:0"})
-	for path, command := range map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size"} {
+	for path, command := range map[string]string{"losses": "losses", "steady-state": "steady-state", "sizing": "size", "loop-gain": "loop", "transients": "transient"} {
 		body := example(t, "buoy-3v3/"+path+".json")
 		status, answer := post(t, s.base+"/v1/"+path, body)
 		require.Equal(t, 200, status, answer)
