@@ -1,0 +1,240 @@
+//go:build e2e
+
+package e2e
+
+import (
+	"encoding/json"
+	"fmt"
+	"net/http"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"strings"
+	"syscall"
+	"testing"
+	"time"
+
+	"github.com/stretchr/testify/require"
+
+	"railproof/tests/cluster"
+)
+
+// rail is a corner run of an example rail with so many samples and another seed.
+func rail(t *testing.T, name string, samples, seed int) string {
+	t.Helper()
+	var tree map[string]any
+	require.NoError(t, json.Unmarshal([]byte(example(t, name+"/corners.json")), &tree))
+	tree["samples"], tree["seed"] = samples, seed
+	tree["methods"] = []any{"extreme-value", "monte-carlo"}
+	body, err := json.Marshal(tree)
+	require.NoError(t, err)
+	return string(body)
+}
+
+func ask(t *testing.T, method, url, body string, headers ...string) (*http.Response, map[string]any) {
+	t.Helper()
+	response, tree, err := try(t, method, url, body, headers...)
+	require.NoError(t, err)
+	return response, tree
+}
+
+func try(t *testing.T, method, url, body string, headers ...string) (*http.Response, map[string]any, error) {
+	request, err := http.NewRequestWithContext(t.Context(), method, url, strings.NewReader(body))
+	require.NoError(t, err)
+	request.Header.Set("Content-Type", "application/json")
+	for i := 0; i < len(headers); i += 2 {
+		request.Header.Set(headers[i], headers[i+1])
+	}
+	response, err := http.DefaultClient.Do(request)
+	if err != nil {
+		return nil, nil, err
+	}
+	defer response.Body.Close()
+	var tree map[string]any
+	_ = json.NewDecoder(response.Body).Decode(&tree) // no body, or none of JSON: the caller looks at the status
+	return response, tree, nil
+}
+
+func begin(t *testing.T, base, operation, body string) string {
+	t.Helper()
+	response, tree := ask(t, http.MethodPost, base+"/v1/"+operation, body, "Prefer", "respond-async")
+	require.Equal(t, 202, response.StatusCode, "%v", tree)
+	return tree["id"].(string)
+}
+
+// ended waits for the end of a job at whichever server answers.
+func ended(t *testing.T, id string, most time.Duration, bases ...string) map[string]any {
+	t.Helper()
+	until := time.Now().Add(most)
+	var last map[string]any
+	for time.Now().Before(until) {
+		for _, base := range bases {
+			response, tree, err := try(t, http.MethodGet, base+"/v1/jobs/"+id, "")
+			if err != nil || response.StatusCode != 200 {
+				continue
+			}
+			last = tree
+			if s := tree["state"]; s != "waiting" && s != "running" {
+				return tree
+			}
+		}
+		time.Sleep(20 * time.Millisecond)
+	}
+	t.Fatalf("job %s did not end within %v: %v", id, most, last)
+	return nil
+}
+
+func untilRunning(t *testing.T, base, id string) {
+	t.Helper()
+	require.Eventually(t, func() bool {
+		_, tree := ask(t, http.MethodGet, base+"/v1/jobs/"+id, "")
+		return tree["state"] == "running"
+	}, 20*time.Second, 10*time.Millisecond)
+}
+
+func result(t *testing.T, base string, job map[string]any) string {
+	t.Helper()
+	require.Equal(t, "done", job["state"], "%v", job)
+	status, body := get(t, base+"/v1/results/"+job["result_id"].(string))
+	require.Equal(t, 200, status)
+	return body
+}
+
+// restart is what a user sees who starts the program again on the same data.
+func restart(t *testing.T, directory string) *served {
+	return start(t, []string{"--address", "127.0.0.1:0", "--data-directory", directory}, "RAILPROOF_EPHEMERAL=")
+}
+
+func TestKilledInTheMiddleOfAJob(t *testing.T) {
+	directory := t.TempDir()
+	body := rail(t, "buoy-3v3", 100_000, 1)
+	s := restart(t, directory)
+	id := begin(t, s.base, "corners", body)
+	untilRunning(t, s.base, id)
+	require.NoError(t, s.process.Process.Signal(syscall.SIGKILL))
+	_ = s.process.Wait() // killed, as asked
+	before := time.Now()
+	s = restart(t, directory)
+	job := ended(t, id, 60*time.Second, s.base)
+	t.Logf("done %v after the restart began", time.Since(before).Round(time.Millisecond))
+	require.Equal(t, railproof(t, body, "corners", "-").out, result(t, s.base, job))
+}
+
+func TestKilledAgainAndAgainAJobIsGivenUp(t *testing.T) {
+	directory := t.TempDir()
+	body := rail(t, "buoy-3v3", 1_000_000, 2)
+	s := restart(t, directory)
+	id := begin(t, s.base, "corners", body)
+	for range 3 {
+		untilRunning(t, s.base, id)
+		require.NoError(t, s.process.Process.Signal(syscall.SIGKILL))
+		_ = s.process.Wait()
+		s = restart(t, directory)
+	}
+	job := ended(t, id, 10*time.Second, s.base)
+	require.Equal(t, "failed", job["state"])
+	require.Contains(t, job["problem"].(map[string]any)["type"], "/docs/problems/internal")
+	status, _ := get(t, s.base+"/readyz")
+	require.Equal(t, 200, status)
+}
+
+func TestTerminatedInTheMiddleOfAJob(t *testing.T) {
+	directory := t.TempDir()
+	s := start(t, []string{"--address", "127.0.0.1:0", "--data-directory", directory, "--grace", "300ms"}, "RAILPROOF_EPHEMERAL=")
+	body := rail(t, "buoy-3v3", 100_000, 3)
+	id := begin(t, s.base, "corners", body)
+	untilRunning(t, s.base, id)
+	before := time.Now()
+	require.NoError(t, s.process.Process.Signal(syscall.SIGTERM))
+	_ = s.process.Wait()
+	require.Less(t, time.Since(before), 5*time.Second)
+	require.Contains(t, s.log.String(), `"msg":"job given back"`)
+	s = restart(t, directory)
+	require.Equal(t, railproof(t, body, "corners", "-").out, result(t, s.base, ended(t, id, 60*time.Second, s.base)))
+}
+
+func TestDiskFull(t *testing.T) {
+	if os.Getuid() != 0 {
+		t.Skip("mounting a small file system needs root")
+	}
+	directory := t.TempDir()
+	require.NoError(t, exec.Command("mount", "-t", "tmpfs", "-o", "size=3m", "railproof", directory).Run())
+	t.Cleanup(func() { _ = exec.Command("umount", "-l", directory).Run() })
+	data := filepath.Join(directory, "data")
+	s := restart(t, data)
+	first := begin(t, s.base, "sizing", example(t, "buoy-5v0/sizing.json"))
+	want := result(t, s.base, ended(t, first, 30*time.Second, s.base))
+
+	filler := filepath.Join(directory, "filler")
+	require.Error(t, exec.Command("dd", "if=/dev/zero", "of="+filler, "bs=4096", "count=1000").Run(), "until nothing fits any more")
+	refusals := 0
+	for i := range 40 { // what is free inside the file is used first
+		response, tree := ask(t, http.MethodPost, s.base+"/v1/corners", rail(t, "buoy-3v3", 100+i, i), "Prefer", "respond-async")
+		if response.StatusCode == 202 {
+			continue
+		}
+		require.Equal(t, 503, response.StatusCode, "%v", tree)
+		require.NotEmpty(t, response.Header.Get("Retry-After"))
+		require.NotContains(t, fmt.Sprint(tree), "disk", "nothing of the inside")
+		refusals++
+	}
+	require.Positive(t, refusals)
+	status, answer := post(t, s.base+"/v1/losses", example(t, "buoy-5v0/losses.json"))
+	require.Equal(t, 200, status, "what needs no disk is answered: %s", answer)
+	status, ready := get(t, s.base+"/readyz")
+	require.Equal(t, 503, status)
+	require.Contains(t, ready, "store of jobs")
+
+	require.NoError(t, os.Remove(filler))
+	require.Eventually(t, func() bool { status, _ := get(t, s.base+"/readyz"); return status == 200 }, 20*time.Second, 50*time.Millisecond)
+	id := begin(t, s.base, "sizing", example(t, "mast-12v0/sizing.json"))
+	ended(t, id, 60*time.Second, s.base)
+	_, list := ask(t, http.MethodGet, s.base+"/v1/jobs?limit=200", "")
+	for _, j := range list["jobs"].([]any) {
+		job := ended(t, j.(map[string]any)["id"].(string), 120*time.Second, s.base)
+		require.Equal(t, "done", job["state"], "what was accepted is done: %v", job)
+	}
+	_, again := ask(t, http.MethodGet, s.base+"/v1/jobs/"+first, "")
+	require.Equal(t, want, result(t, s.base, again))
+}
+
+func TestTwoReplicasOneKilled(t *testing.T) {
+	rails, samples := 6, 5_000
+	if os.Getenv("RAILPROOF_NIGHT") != "" {
+		rails, samples = 40, 100_000
+	}
+	c := cluster.Start(t)
+	replica := func() *served {
+		return start(t, []string{"--address", "127.0.0.1:0"}, "RAILPROOF_EPHEMERAL=", "RAILPROOF_POSTGRES="+c.DSN)
+	}
+	a, b := replica(), replica()
+	began := time.Now()
+	names := []string{"buoy-5v0", "buoy-3v3", "mast-12v0"}
+	bodies, ids := map[string]string{}, []string{}
+	for i := range rails {
+		body := rail(t, names[i%len(names)], samples, i)
+		id := begin(t, []string{a.base, b.base}[i%2], "corners", body)
+		bodies[id] = body
+		ids = append(ids, id)
+	}
+	split := rail(t, "buoy-3v3", 200_000, 99) // large enough to be split
+	id := begin(t, a.base, "corners", split)
+	bodies[id] = split
+	ids = append(ids, id)
+	ended(t, ids[len(ids)/2-1], 20*time.Minute, b.base)
+	require.NoError(t, a.process.Process.Signal(syscall.SIGKILL))
+	_ = a.process.Wait()
+	t.Logf("one replica killed after %v", time.Since(began).Round(time.Millisecond))
+	for _, id := range ids {
+		job := ended(t, id, 20*time.Minute, b.base)
+		body := result(t, b.base, job)
+		if id == ids[0] || id == ids[len(ids)-2] || id == ids[len(ids)-1] {
+			require.Equal(t, railproof(t, bodies[id], "corners", "-").out, body)
+		}
+		require.Contains(t, body, `"verdict":`)
+	}
+	t.Logf("%d rails of %d samples and one of 200,000, all done after %v", rails, samples, time.Since(began).Round(time.Millisecond))
+	_, list := ask(t, http.MethodGet, b.base+"/v1/jobs?limit=200", "")
+	require.Len(t, list["jobs"], len(ids), "nothing lost, nothing twice")
+	require.Contains(t, b.log.String(), "jobs whose process stopped beating are run again", "the log tells the story")
+}
