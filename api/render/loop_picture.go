@@ -16,7 +16,6 @@ type bode struct {
 	averagedGain, averagedPhase []float64 // empty: not drawn
 	crossover, phaseMargin      float64   // [Hz], [deg]
 	phaseCrossing, gainMargin   float64   // [Hz], [dB]
-	switching                   float64   // [Hz]
 }
 
 // picture draws gain above phase, with both margins where they are read.

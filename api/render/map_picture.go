@@ -23,7 +23,7 @@ func QuantityMap(a *wire.LossesAnswer, key string) *Picture {
 	}
 	g := a.Grid
 	m := &tiles{x: axisCells("load", "A", g.Load)}
-	held := ""
+	var held string
 	var at func(x, y int) float64
 	if len(g.Input) > 1 || len(g.Ambient) == 1 {
 		k := hottest(g.Ambient)

@@ -27,8 +27,8 @@ func (p *Picture) SVG(width int) []byte {
 	// a buffer takes every write; an error cannot come up
 	_, _ = canvas.WriteTo(&raw)
 	body := raw.Bytes()
-	body = body[bytes.Index(body, []byte("<svg")):]
-	body = body[bytes.IndexByte(body, '>')+1:]
+	_, body, _ = bytes.Cut(body, []byte("<svg"))
+	_, body, _ = bytes.Cut(body, []byte(">"))
 	fmt.Fprintf(&out, `<svg xmlns="http://www.w3.org/2000/svg" role="img" width="%d" height="%.0f" viewBox="0 0 %.6g %.6g" style="max-width:100%%;height:auto"><title>`, width, h/px(1), w, h)
 	escapeXML(&out, p.title)
 	out.WriteString("</title><desc>")

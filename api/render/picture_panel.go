@@ -114,7 +114,7 @@ func (p *panel) draw(c draw.Canvas) {
 		p.columns.draw(f, x, y)
 	}
 	for i := range p.curves {
-		drawCurve(f, &p.curves[i], x, y, p)
+		drawCurve(f, &p.curves[i], x, y)
 	}
 	var labels labels
 	for i := range p.marks {
@@ -175,7 +175,7 @@ func spaced(list []tick, at func(float64) vg.Length) []tick {
 	return list
 }
 
-func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length, p *panel) {
+func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length) {
 	for _, line := range decimate(c.x, c.y, x, y, px(0.5)) {
 		if c.style.Width == 0 {
 			break

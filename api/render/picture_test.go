@@ -3,6 +3,7 @@ package render
 import (
 	"bytes"
 	"encoding/xml"
+	"errors"
 	"fmt"
 	"image/png"
 	"io"
@@ -119,7 +120,7 @@ func TestPicturesAreWellFormedAndAlwaysTheSame(t *testing.T) {
 			var inside []string
 			for {
 				token, err := d.Token()
-				if err == io.EOF {
+				if errors.Is(err, io.EOF) {
 					break
 				}
 				require.NoError(t, err)

@@ -54,7 +54,7 @@ func (w *Conditions) Decode(at string, s *stage.Stage) (stage.Conditions, error)
 
 // EncodeConditions writes conditions of calc in the contract's shape.
 func EncodeConditions(c *stage.Conditions) *Conditions {
-	w := &Conditions{Input: encodeRange(&c.Input), Source: unless(c.SourceResistance, 0), Ambient: encodeRange(&c.AmbientDegC), Control: encodeControl(&c.Control)}
+	w := &Conditions{Input: encodeRange(&c.Input), Source: nonzero(c.SourceResistance), Ambient: encodeRange(&c.AmbientDegC), Control: encodeControl(&c.Control)}
 	current := encodeRange(&c.LoadCurrent)
 	w.Load = &LoadRange{Current: &current}
 	if c.LoadConductance.Max > 0 {

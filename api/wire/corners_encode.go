@@ -49,7 +49,7 @@ func EncodeCorners(w *CornersRequest, a *service.CornersAnswer, head Head) *Corn
 // corner shows the conditions at coordinates.
 func (e *cornersEncoder) corner(z []float64) CornerPoint {
 	_, p, _ := e.a.Bound.At(z)
-	c := CornerPoint{Input: p.Input, Load: &p.Load.Current, Ambient: p.AmbientDegC, Age: unless(p.AgeRatio, 0)}
+	c := CornerPoint{Input: p.Input, Load: &p.Load.Current, Ambient: p.AmbientDegC, Age: nonzero(p.AgeRatio)}
 	if p.Load.Conductance > 0 {
 		r := 1 / p.Load.Conductance
 		c.Resistance = &r
@@ -62,7 +62,7 @@ func (e *cornersEncoder) variables() []Variable {
 	list := []Variable{}
 	for i := range e.a.Design.Variables {
 		v := &e.a.Design.Variables[i]
-		list = append(list, Variable{v.Pointer, v.Min, v.Typ, v.Max, UnitOf(v.Pointer), nameOf(distributions, v.Distribution), v.Group, unless(v.MatchTol, 0)})
+		list = append(list, Variable{v.Pointer, v.Min, v.Typ, v.Max, UnitOf(v.Pointer), nameOf(distributions, v.Distribution), v.Group, nonzero(v.MatchTol)})
 	}
 	condition := func(pointer string, r stage.Range) {
 		if r.Max > r.Min {

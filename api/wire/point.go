@@ -51,7 +51,7 @@ func (w *Point) Decode(at string, s *stage.Stage) (stage.Point, error) {
 
 // EncodePoint writes a point of calc in the contract's shape.
 func EncodePoint(p *stage.Point) *Point {
-	w := &Point{Input: p.Input, Source: unless(p.SourceResistance, 0), Ambient: p.AmbientDegC, Age: unless(p.AgeRatio, 0), Asked: unless(p.Asked, 0), Control: encodeControl(&p.Control)}
+	w := &Point{Input: p.Input, Source: nonzero(p.SourceResistance), Ambient: p.AmbientDegC, Age: nonzero(p.AgeRatio), Asked: nonzero(p.Asked), Control: encodeControl(&p.Control)}
 	w.Load = &Load{Current: &p.Load.Current}
 	if p.Load.Conductance > 0 {
 		r := 1 / p.Load.Conductance
@@ -92,9 +92,9 @@ func or(v *float64, otherwise float64) float64 {
 	return *v
 }
 
-// unless returns the number, or nil for the value that absence means.
-func unless(v, absent float64) *float64 {
-	if v == absent {
+// nonzero returns the number, or nil for zero, which absence means.
+func nonzero(v float64) *float64 {
+	if v == 0 {
 		return nil
 	}
 	return &v

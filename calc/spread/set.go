@@ -111,9 +111,10 @@ func (s *Set) Apply(z, values []float64) {
 		b := &s.bindings[i]
 		x := z[b.coordinate]
 		y := b.typ + float64(x*b.side[math.Float64bits(x)>>63])
-		if x == 1 {
+		switch x {
+		case 1:
 			y = b.max
-		} else if x == -1 {
+		case -1:
 			y = b.min
 		}
 		values[i] = y

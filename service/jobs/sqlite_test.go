@@ -29,7 +29,7 @@ func TestANewerSchemaIsRefused(t *testing.T) {
 	b := p.open(t, new(fakeExecutor), nil)
 	_, err := b.db.exec(t.Context(), `INSERT INTO railproof_schema (version) VALUES (1000)`)
 	require.NoError(t, err)
-	shut(t, b)
+	shut(b)
 	_, err = Open(t.Context(), Options{Executor: new(fakeExecutor), Engine: "test", Directory: p.directory})
 	require.ErrorContains(t, err, "newer")
 }

@@ -84,7 +84,9 @@ func (f *fakeExecutor) Merge(_ context.Context, _ string, request []byte, parts 
 	sum := 0
 	for _, p := range parts {
 		var n int
-		fmt.Sscan(string(p), &n)
+		if _, err := fmt.Sscan(string(p), &n); err != nil {
+			panic(err)
+		}
 		sum += n
 	}
 	w.Steps = sum
@@ -118,11 +120,11 @@ func (p place) open(t *testing.T, f *fakeExecutor, change func(*Options)) *Board
 	b, err := Open(t.Context(), o)
 	require.NoError(t, err)
 	var once sync.Once
-	t.Cleanup(func() { once.Do(func() { shut(t, b) }) })
+	t.Cleanup(func() { once.Do(func() { shut(b) }) })
 	return b
 }
 
-func shut(t *testing.T, b *Board) {
+func shut(b *Board) {
 	ctx, cancel := context.WithTimeout(context.Background(), 50*time.Millisecond)
 	defer cancel()
 	_ = b.Close(ctx)
@@ -294,7 +296,7 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		j := submit(t, b, w)
 		awaitRunning(t, b, j.ID)
 		before := time.Now()
-		shut(t, b)
+		shut(b)
 		t.Logf("closed after %v", time.Since(before))
 		b = p.open(t, new(fakeExecutor), nil)
 		await(t, b, j.ID, Done)
@@ -349,7 +351,7 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		b := p.open(t, new(fakeExecutor), func(o *Options) { o.Workers = 1 })
 		awaitRunning(t, b, submit(t, b, work{Steps: 10_000, Step: 10 * time.Millisecond, Name: "long"}).ID)
 		j := submit(t, b, work{Steps: 1, Name: "a"})
-		shut(t, b)
+		shut(b)
 		b = p.open(t, new(fakeExecutor), func(o *Options) { o.Engine = "other" })
 		require.NoError(t, b.adopt(t.Context(), 0))
 		await(t, b, j.ID, Done)

@@ -170,7 +170,7 @@ type event struct {
 // events reads a stream to its end.
 func events(t testing.TB, url string, headers ...string) []event {
 	t.Helper()
-	request, err := http.NewRequestWithContext(t.Context(), "GET", url, nil)
+	request, err := http.NewRequestWithContext(t.Context(), http.MethodGet, url, nil)
 	require.NoError(t, err)
 	request.Header.Set("Accept", "text/event-stream")
 	for i := 0; i < len(headers); i += 2 {

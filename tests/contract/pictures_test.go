@@ -3,6 +3,7 @@ package contract
 import (
 	"bytes"
 	"encoding/xml"
+	"errors"
 	"image/png"
 	"io"
 	"io/fs"
@@ -106,7 +107,7 @@ func onlyText(t *testing.T, markup string) {
 	d := xml.NewDecoder(strings.NewReader(markup))
 	for {
 		token, err := d.Token()
-		if err == io.EOF {
+		if errors.Is(err, io.EOF) {
 			return
 		}
 		require.NoError(t, err, "every element is closed")
