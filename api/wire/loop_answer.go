@@ -157,9 +157,9 @@ func EncodeLoopGain(w *LoopGainRequest, r *service.LoopRequest, a *service.LoopA
 func encodeSynthesis(w *LoopGainRequest, d *loop.Design) *SynthesisAnswer {
 	s := &SynthesisAnswer{
 		Ideal: w.Synthesis.network(w.Stage.Compensator, &d.Exact), Preferred: w.Synthesis.network(w.Stage.Compensator, &d.Compensator),
-		IdealCrossover: given(&d.ExactMargins.Crossover), IdealPhaseMargin: given(&d.ExactMargins.PhaseMargin),
-		Crossover: given(&d.Margins.Crossover), PhaseMargin: given(&d.Margins.PhaseMargin),
-		PhaseBoost: given(&d.Boost), PlantPhase: given(&d.StagePhase),
+		IdealCrossover: known(&d.ExactMargins.Crossover), IdealPhaseMargin: known(&d.ExactMargins.PhaseMargin),
+		Crossover: known(&d.Margins.Crossover), PhaseMargin: known(&d.Margins.PhaseMargin),
+		PhaseBoost: known(&d.Boost), PlantPhase: known(&d.StagePhase),
 	}
 	gain := decibels(d.StageGain)
 	s.PlantGain = &gain
@@ -186,7 +186,7 @@ func encodeLoopItem(p *Point, r *service.LoopRequest, x *service.LoopItem, curve
 		return w
 	}
 	w.Stability, w.Crossing = stabilities[m.Stability], crossings[m.Crossed]
-	w.SpectralRadius, w.DominantAt = given(&m.SpectralRadius), oscillation(m)
+	w.SpectralRadius, w.DominantAt = known(&m.SpectralRadius), oscillation(m)
 	w.Crossovers = make([]Crossover, min(m.CrossoverCount, loop.MaxCrossovers))
 	for i := range w.Crossovers {
 		c := &m.Crossovers[i]
@@ -197,20 +197,20 @@ func encodeLoopItem(p *Point, r *service.LoopRequest, x *service.LoopItem, curve
 		c := &m.PhaseCrossings[i]
 		w.PhaseCrossings[i] = PhaseCrossing{c.Frequency, c.Margin}
 	}
-	w.Crossover, w.PhaseMargin, w.GainMargin, w.GainReduction = given(&m.Crossover), given(&m.PhaseMargin), given(&m.GainMargin), given(&m.GainReduction)
-	w.ModulusMargin, w.ModulusMarginAt, w.Bandwidth = given(&m.Modulus), given(&m.ModulusAt), given(&m.Bandwidth)
-	w.Conditional, w.DirectError = &m.Conditional, given(&x.DirectError)
-	w.ImpedancePeak, w.ImpedancePeakAt = given(&x.Impedance.Value), given(&x.Impedance.At)
+	w.Crossover, w.PhaseMargin, w.GainMargin, w.GainReduction = known(&m.Crossover), known(&m.PhaseMargin), known(&m.GainMargin), known(&m.GainReduction)
+	w.ModulusMargin, w.ModulusMarginAt, w.Bandwidth = known(&m.Modulus), known(&m.ModulusAt), known(&m.Bandwidth)
+	w.Conditional, w.DirectError = &m.Conditional, known(&x.DirectError)
+	w.ImpedancePeak, w.ImpedancePeakAt = known(&x.Impedance.Value), known(&x.Impedance.At)
 	if c := x.Current; c != nil {
 		w.CurrentLoop = &CurrentLoop{
-			Stable: !m.Subharmonic, Eigenvalue: real(m.CurrentLoop), IdealEigenvalue: given(&c.Eigenvalue), Quality: given(&c.Quality),
-			RiseSlope: given(&c.RiseSlope), FallSlope: given(&c.FallSlope), Slope: &x.Slope, SlopeNeeded: c.LeastSlope,
+			Stable: !m.Subharmonic, Eigenvalue: real(m.CurrentLoop), IdealEigenvalue: known(&c.Eigenvalue), Quality: known(&c.Quality),
+			RiseSlope: known(&c.RiseSlope), FallSlope: known(&c.FallSlope), Slope: &x.Slope, SlopeNeeded: c.LeastSlope,
 		}
 	}
 	w.Source = encodeSource(x.Source)
 	for i := range x.Remarks {
 		o := &x.Remarks[i]
-		w.Remarks = append(w.Remarks, LoopRemark{topics[o.Topic].name, "/stage/" + o.Field, o.Value, given(&o.Limit), topics[o.Topic].unit, o.Detail})
+		w.Remarks = append(w.Remarks, LoopRemark{topics[o.Topic].name, "/stage/" + o.Field, o.Value, known(&o.Limit), topics[o.Topic].unit, o.Detail})
 	}
 	for i := range x.Deviation {
 		w.ModelDeviation = append(w.ModelDeviation, deviationOf(&x.Deviation[i]))
@@ -234,20 +234,29 @@ func oscillation(m *loop.Margins) *float64 {
 	return &at
 }
 
+// known returns the number's place, or nil for one that is unknown or without bound:
+// a stage without load has no negative input resistance that a source could meet.
+func known(v *float64) *float64 {
+	if math.IsInf(*v, 0) {
+		return nil
+	}
+	return given(v)
+}
+
 func encodeSource(s *service.SourceItem) *SourceInteraction {
 	if s == nil {
 		return nil
 	}
 	m := &s.Separate
 	w := &SourceInteraction{
-		Stability: "unstable", Null: given(&m.Null), NullAt: given(&m.NullAt), Driving: given(&m.Driving), DrivingAt: given(&m.DrivingAt), Input: given(&m.Input), InputAt: given(&m.InputAt),
+		Stability: "unstable", Null: known(&m.Null), NullAt: known(&m.NullAt), Driving: known(&m.Driving), DrivingAt: known(&m.DrivingAt), Input: known(&m.Input), InputAt: known(&m.InputAt),
 		Detail: "the source impedance stays well below the input impedances: the loop does not notice it",
 	}
 	if !s.Analysis.OK() {
 		w.Detail = "the loop with this source has no periodic solution that could be analysed"
 		return w
 	}
-	w.Stability, w.PhaseMargin, w.ModulusMargin = stabilities[s.Loop.Stability], given(&s.Loop.PhaseMargin), given(&s.Loop.Modulus)
+	w.Stability, w.PhaseMargin, w.ModulusMargin = stabilities[s.Loop.Stability], known(&s.Loop.PhaseMargin), known(&s.Loop.Modulus)
 	switch close := math.Min(math.Min(m.Null, m.Driving), m.Input) < loop.Customary; {
 	case s.Loop.Stability != loop.Stable:
 		w.Detail = "the loop is unstable behind this source: lower its impedance where it comes close to the input impedance, by damping it"

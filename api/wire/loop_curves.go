@@ -70,8 +70,12 @@ func decibels(size float64) float64 { return 20 * math.Log10(size) }
 
 func plainSize(size float64) float64 { return size }
 
+// boundless is the magnitude from which an impedance is none: that of a stage which
+// draws no current, where rounding leaves something.
+const boundless = 1e12
+
 // response returns magnitudes on a scale and unwrapped phases [deg]; nothing for a
-// response that vanishes somewhere, which has neither there.
+// response that vanishes or has no bound somewhere, where it has neither.
 func response(gains []complex128, scale func(float64) float64) (size, phase []float64) {
 	size, phase = unwrapped(gains, scale)
 	if size == nil {
@@ -99,7 +103,7 @@ func unwrapped(gains []complex128, scale func(float64) float64) (size, phase []f
 	size, phase = make([]float64, len(gains)), make([]float64, len(gains))
 	for i, g := range gains {
 		size[i] = scale(cmplx.Abs(g))
-		if math.IsNaN(size[i]) || math.IsInf(size[i], 0) {
+		if !(math.Abs(size[i]) <= boundless) {
 			return nil, nil
 		}
 	}

@@ -286,6 +286,13 @@ func TestStatesThatHaveNoMargins(t *testing.T) {
 		require.NotContains(t, item, "curves")
 		require.Contains(t, within(item, "detail"), "ramp")
 	})
+	t.Run("no-load", func(t *testing.T) {
+		request := loopOf(t, "buoy-5v0", nil)
+		delete(within(request, "points", 1).(object), "load")
+		item := within(asked(t, at, "loopGain", request), "items", 1)
+		require.Equal(t, "stable", within(item, "source", "stability"))
+		require.NotContains(t, within(item, "curves"), "input_impedance_ohm", "it draws no current")
+	})
 	t.Run("drop-out", func(t *testing.T) {
 		request := loopOf(t, "buoy-5v0", nil)
 		within(request, "points", 1).(object)["input_v"] = 5.05
