@@ -48,7 +48,8 @@ func TestGridIsTheSameOnAnyNumberOfWorkers(t *testing.T) {
 	for _, workers := range []int{2, 7} {
 		more, err := New(Options{Workers: workers}).LossesGrid(t.Context(), r)
 		require.NoError(t, err)
-		require.Equal(t, fmt.Sprint(one.Columns, one.Cells), fmt.Sprint(more.Columns, more.Cells))
+		require.Equal(t, fmt.Sprint(one.Columns), fmt.Sprint(more.Columns), "by text, since a cell without figures is no number")
+		require.Equal(t, one.Cells, more.Cells)
 		require.Equal(t, one.Modes, more.Modes)
 		require.Equal(t, fmt.Sprint(one.Basis.Cautions), fmt.Sprint(more.Basis.Cautions))
 		require.Equal(t, one.Basis.Warnings, more.Basis.Warnings)

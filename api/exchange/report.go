@@ -95,7 +95,7 @@ func (b *binder) bind(w *wire.ReportsRequest) error {
 	if failed := <-done; err == nil {
 		err = failed
 	}
-	b.report.Parts = append(b.parts, proofs.parts...)
+	b.report.Parts = slices.Concat(b.parts, proofs.parts)
 	return err
 }
 
