@@ -30,6 +30,9 @@ func answer(t testing.TB, h http.Handler, op openapi.Operation, body []byte) *ht
 func sound(t testing.TB, op openapi.Operation, body []byte, w *httptest.ResponseRecorder) {
 	t.Helper()
 	require.Less(t, w.Code, 500, "body %.2000s\nanswer %.500s", body, w.Body)
+	if w.Code == http.StatusOK && strings.HasPrefix(w.Header().Get("Content-Type"), "text/html") {
+		return // a report, which has no schema
+	}
 	var tree any
 	require.NoError(t, json.Unmarshal(w.Body.Bytes(), &tree))
 	require.Empty(t, contract.ValidateResponse(op.ID, w.Code, tree), "body %.2000s", body)
@@ -142,7 +145,8 @@ func TestMutatedRequestsNeverBreakTheServer(t *testing.T) {
 		var tree any
 		require.NoError(t, json.Unmarshal([]byte(text), &tree))
 		n := rounds
-		if op.ID == "corners" { // each is hundreds of evaluations at every corner
+		switch op.ID {
+		case "corners", "reports", "substitutions", "ruleChecks", "bomChecks": // each is hundreds of evaluations at every corner
 			n = 1 + rounds/6
 		}
 		for range n {

@@ -148,7 +148,7 @@ func TestRequestsThatAreNotTaken(t *testing.T) {
 	require.NoError(t, err)
 	require.NoError(t, z.Close())
 	refused(t, send(t, "POST", at+"/v1/losses", zipped.Bytes(), "Content-Encoding", "gzip"), 415, exchange.UnsupportedMedia)
-	refused(t, send(t, "POST", at+"/v1/losses", body, "Accept", "image/png, text/html"), 406, exchange.NotAcceptable)
+	refused(t, send(t, "POST", at+"/v1/losses", body, "Accept", "audio/ogg, text/html"), 406, exchange.NotAcceptable)
 	refused(t, send(t, "POST", at+"/v1/losses", body, "Accept", "application/json;q=0"), 406, exchange.NotAcceptable)
 	refused(t, send(t, "POST", at+"/v1/losses", bytes.Repeat([]byte(" "), 1<<20+1)), 413, exchange.TooLarge)
 	refused(t, send(t, "POST", at+"/v1/losses?verbose=1", body), 400, exchange.UnknownParameter)

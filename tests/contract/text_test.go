@@ -21,7 +21,7 @@ func TestAnswersAreWrittenAsTheStandardLibraryDoes(t *testing.T) {
 			return err
 		}
 		op, _ := operationOf(file)
-		if !x.Computes(op.ID) {
+		if !x.Computes(op.ID) || op.ID == "reports" { // a report is a page, not JSON
 			return nil
 		}
 		ran++
