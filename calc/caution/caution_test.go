@@ -306,3 +306,23 @@ func TestEveryCodeIsExplained(t *testing.T) {
 		}
 	}
 }
+
+func TestSourceWithoutRealResistanceIsStiff(t *testing.T) {
+	for _, source := range []float64{0, 1e-300, 1e-9} {
+		var seen Seen
+		s := plainStage(stage.Synchronous)
+		seen.AddConditions("/conditions", s, &stage.Conditions{Input: stage.Range{Min: 18, Typ: 24, Max: 32}, SourceResistance: source})
+		found := false
+		for _, c := range Of(s, "/stage", nil, &seen) {
+			if c.Code == FaultCurrent {
+				found = true
+				if parts.Known(c.Value) {
+					t.Errorf("%g ohm: a current of %g A", source, c.Value)
+				}
+			}
+		}
+		if !found {
+			t.Errorf("%g ohm: no caution", source)
+		}
+	}
+}

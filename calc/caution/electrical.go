@@ -129,6 +129,10 @@ func (c *collector) hotPlug() {
 	}
 }
 
+// stiffSource is the resistance [ohm] below which a source is no limit at all: less
+// than any joint has.
+const stiffSource = 1e-6
+
 func (c *collector) source() {
 	resistance := c.seen.SourceResistance
 	if !parts.Known(resistance) {
@@ -136,7 +140,7 @@ func (c *collector) source() {
 	}
 	if power := c.seen.Input * c.seen.Input / (4 * resistance); power > powerPS1 {
 		current, unit, detail := parts.Unknown, "", "The source is taken as stiff, so nothing limits a short circuit"
-		if resistance > 0 {
+		if resistance > stiffSource {
 			current, unit, detail = c.seen.Input/resistance, "A", "The source alone limits a short circuit, to this current"
 		}
 		c.add(FaultCurrent, c.seen.InputPointer, current, parts.Unknown, unit,
