@@ -187,8 +187,13 @@ func (x *explainer) core() (Equation, float64) {
 	triangle.At(core.K, f)
 	k := -1
 	return x.mean("P = kT ki f^α ΔB^β (D^(1−α) + D'^(1−α)) Ve", []Input{
-		{"kT", warm, "1"}, {"ki", magnetics.Steinmetz{K: core.K, Alpha: core.Alpha, Beta: core.Beta}.KI(), "1"}, {"α", core.Alpha, "1"}, {"β", core.Beta, "1"},
-		{"f", f, "Hz"}, {"D", duty, "1"}, {"Ve", core.Volume, "m3"},
+		{"kT", warm, "1"},
+		{"ki", magnetics.Steinmetz{K: core.K, Alpha: core.Alpha, Beta: core.Beta}.KI(), "1"},
+		{"α", core.Alpha, "1"},
+		{"β", core.Beta, "1"},
+		{"f", f, "Hz"},
+		{"D", duty, "1"},
+		{"Ve", core.Volume, "m3"},
 	}, "improved generalised Steinmetz equation on the real flux, k and SI amplitudes turned into ki", func(p *phase) ([]Input, float64) {
 		k++
 		inductance, fall := x.op.Inductance, 1-duty

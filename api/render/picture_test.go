@@ -168,8 +168,12 @@ func TestDecimationKeepsTheExtremesOfEveryColumn(t *testing.T) {
 
 func TestTicksAreRoundAndInside(t *testing.T) {
 	for _, s := range []scale{
-		{unit: "V", least: 0, greatest: 1}, {unit: "A", least: -3e-6, greatest: 7e-6}, {unit: "Hz", least: 10, greatest: 1e7, log: true},
-		{unit: "Ohm", least: 0.0031, greatest: 0.0042, log: true}, {unit: "Cel", least: 99.9999, greatest: 100.0001}, {unit: "F", least: 3, greatest: 24, log: true},
+		{unit: "V", least: 0, greatest: 1},
+		{unit: "A", least: -3e-6, greatest: 7e-6},
+		{unit: "Hz", least: 10, greatest: 1e7, log: true},
+		{unit: "Ohm", least: 0.0031, greatest: 0.0042, log: true},
+		{unit: "Cel", least: 99.9999, greatest: 100.0001},
+		{unit: "F", least: 3, greatest: 24, log: true},
 	} {
 		seen := map[string]bool{}
 		for _, k := range s.ticks(6) {

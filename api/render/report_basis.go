@@ -78,6 +78,8 @@ func (r *Report) reproduction() []part {
 	}
 	return []part{
 		{Text: "The same request gives the same bytes on the engine named above. Each result's name is the SHA-256 of operation, engine and canonical request (RFC 8785); a part of this report can be had by itself from its operation, with the stage and conditions of the request below."},
-		{Table: t}, {Head: "Request"}, {Code: string(request)},
+		{Table: t},
+		{Head: "Request"},
+		{Code: string(request)},
 	}
 }

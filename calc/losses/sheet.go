@@ -57,8 +57,10 @@ const (
 
 // String returns the mechanism's name on the wire.
 func (m Mechanism) String() string {
-	return [...]string{"conduction", "overlap", "output_charge", "recovery", "dead_time", "gate_drive", "leakage", "junction_charge",
-		"winding_dc", "winding_ac", "core", "series_resistance", "quiescent", "auxiliary", "input_path", "output_path", "switch_node_path", "source"}[m]
+	return [...]string{
+		"conduction", "overlap", "output_charge", "recovery", "dead_time", "gate_drive", "leakage", "junction_charge",
+		"winding_dc", "winding_ac", "core", "series_resistance", "quiescent", "auxiliary", "input_path", "output_path", "switch_node_path", "source",
+	}[m]
 }
 
 // Item is one mechanism's loss in one part of one phase.

@@ -113,6 +113,7 @@ func (h atLeast) Enabled(ctx context.Context, l slog.Level) bool {
 func (h atLeast) WithAttrs(a []slog.Attr) slog.Handler {
 	return atLeast{h.level, h.Handler.WithAttrs(a)}
 }
+
 func (h atLeast) WithGroup(name string) slog.Handler {
 	return atLeast{h.level, h.Handler.WithGroup(name)}
 }
