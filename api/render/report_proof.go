@@ -13,7 +13,8 @@ import (
 func (r *Report) summary() (list []fact) {
 	if a := r.Rules; a != nil {
 		c := judged(a.Overall)
-		list = append(list, fact{"Rules", a.Overall + ": " + countOf(a.Counts.Fail, "finding fails", "findings fail") + ", " + strconv.Itoa(a.Counts.NotEvaluated) + " not evaluated, " + strconv.Itoa(a.Counts.Waived) + " waived, " + strconv.Itoa(a.Counts.Pass) + " pass", c.Class})
+		notes := failingNotes(a)
+		list = append(list, fact{"Rules", a.Overall + ": " + countOf(a.Counts.Fail-notes, "finding fails", "findings fail") + ", " + countOf(notes, "note", "notes") + ", " + strconv.Itoa(a.Counts.NotEvaluated) + " not evaluated, " + strconv.Itoa(a.Counts.Waived) + " waived, " + strconv.Itoa(a.Counts.Pass) + " pass", c.Class})
 	}
 	if a := r.Corners; a != nil {
 		c := judged(a.Outcome)
@@ -33,6 +34,16 @@ func (r *Report) summary() (list []fact) {
 		list = append(list, fact{"Not in this report", why, "mind"})
 	}
 	return list
+}
+
+// failingNotes counts the failing findings that decide nothing.
+func failingNotes(a *wire.RuleChecksAnswer) (n int) {
+	for i := range a.Findings {
+		if f := &a.Findings[i]; f.Verdict == "fail" && f.Severity == "note" {
+			n++
+		}
+	}
+	return n
 }
 
 // Verdict is the worst that the proofs in the report say.
