@@ -143,12 +143,12 @@ func textbookCompensator(p *published) (parts.Compensator, stage.Feedback) {
 	wz, wp, wl := 2*math.Pi*p.in("fz"), 2*math.Pi*p.in("fp"), 2*math.Pi*p.in("fL")
 	r2 := p.in("Gc0") * p.in("H") * r1
 	c3 := (1/wz - 1/wp) / r1
-	return parts.Compensator{
+	network := parts.Compensator{
 		Present: true, Type: parts.OpAmpType3, FeedbackOhm: r2, FeedbackF: 1 / (r2 * wl), LeadF: c3, LeadOhm: 1 / (wp * c3),
 		GainBandwidth: math.Inf(1), OpenLoopGain: math.Inf(1),
-	}, stage.Feedback{
-		Present: true, Reference: p.in("V") * p.in("H"), Upper: r1, Lower: r1 / (1/p.in("H") - 1),
 	}
+	divider := stage.Feedback{Present: true, Reference: p.in("V") * p.in("H"), Upper: r1, Lower: r1 / (1/p.in("H") - 1)}
+	return network, divider
 }
 
 func textbookLoop(t *testing.T, p *published) {
