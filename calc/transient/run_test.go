@@ -23,7 +23,7 @@ func TestSettledStateIsTheSteadyState(t *testing.T) {
 	for name, p := range stages(t) {
 		t.Run(name, func(t *testing.T) {
 			if testing.Short() && p.Circuit.Phases > 1 {
-				t.Skip("phases share their currents slowly")
+				t.Skip("takes thousands of periods: phases share their currents slowly; run without -short")
 			}
 			period := p.Circuit.Period
 			setup := Setup{
