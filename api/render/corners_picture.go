@@ -134,7 +134,7 @@ func Tornado(a *wire.CornersAnswer, quantity string) *Picture {
 	for len(shown) > 1 && width(&shown[len(shown)-1]) < leastShare*width(&shown[0]) {
 		shown = shown[:len(shown)-1]
 	}
-	list := &bars{base: nominal, marks: []mark{{x: nominal, label: "nominal " + Figure3(nominal, unit)}}}
+	list := &bars{base: nominal, marks: []mark{{x: nominal, label: "nominal " + signed(nominal, unit)}}}
 	values := []float64{nominal}
 	for i := range shown {
 		b := &shown[i]
@@ -182,7 +182,7 @@ func (b *bars) limits(q *wire.QuantityCorners, factor float64) {
 			continue
 		}
 		b.scale.least, b.scale.greatest = min(b.scale.least, at-0.03*span), max(b.scale.greatest, at+0.03*span)
-		b.marks = append(b.marks, mark{x: at, label: l.side + Figure3(at, b.scale.unit), limit: true})
+		b.marks = append(b.marks, mark{x: at, label: l.side + signed(at, b.scale.unit), limit: true})
 	}
 	slices.SortFunc(b.marks, func(x, y mark) int { return cmp.Compare(x.x, y.x) })
 }
@@ -202,12 +202,14 @@ func difference(v float64, unit string) string {
 	if unit == "Cel" {
 		unit = "K"
 	}
-	s := Figure3(v, unit)
 	if v > 0 {
-		return "+" + s
+		return "+" + Figure3(v, unit)
 	}
-	return strings.Replace(s, "-", "−", 1)
+	return signed(v, unit)
 }
+
+// signed writes a figure as pictures do, with a true minus.
+func signed(v float64, unit string) string { return strings.Replace(Figure3(v, unit), "-", "−", 1) }
 
 // variableName writes a pointer for reading, with those that move along.
 func variableName(n *wire.Named) string {

@@ -141,10 +141,13 @@ type tiles struct {
 
 const mapTall = 320 // [px]
 
-var keyWidth = px(118)
+var (
+	keyWidth = px(118)
+	mapHead  = legendStep + px(7)
+)
 
 func (m *tiles) height(vg.Length) vg.Length {
-	return px(mapTall) + legendStep + tickLength + 2*lineStep(smallInk)
+	return px(mapTall) + mapHead + tickLength + 2*lineStep(smallInk)
 }
 
 func (m *tiles) draw(c draw.Canvas) {
@@ -152,8 +155,8 @@ func (m *tiles) draw(c draw.Canvas) {
 	frame.gutter = frame.gutterWidth()
 	write(c, headInk, c.Min.X, c.Max.Y-legendStep/2, draw.XLeft, m.y.titled())
 	field := vg.Rectangle{
-		Min: vg.Point{X: c.Min.X + frame.gutter, Y: c.Max.Y - legendStep - frame.tall},
-		Max: vg.Point{X: c.Max.X - keyWidth, Y: c.Max.Y - legendStep},
+		Min: vg.Point{X: c.Min.X + frame.gutter, Y: c.Max.Y - mapHead - frame.tall},
+		Max: vg.Point{X: c.Max.X - keyWidth, Y: c.Max.Y - mapHead},
 	}
 	f := draw.Canvas{Canvas: c.Canvas, Rectangle: field}
 	x, y := m.x.along(field.Min.X, field.Max.X), m.y.along(field.Min.Y, field.Max.Y)

@@ -123,9 +123,6 @@ func (b *bars) draw(c draw.Canvas) {
 		case r.heading:
 			b.heading(c, r, middle)
 		case step > barStep:
-			name := clip(bodyInk, r.name, width-px(8))
-			fill(c, paper, vg.Rectangle{Min: vg.Point{X: c.Min.X, Y: y - barStep + px(3)}, Max: vg.Point{X: c.Min.X + px(12) + bodyInk.Width(name), Y: y}})
-			write(c, bodyInk, c.Min.X+px(8), y-barStep/2, draw.XLeft, name)
 			b.row(c, r, middle+px(3), x)
 			write(c, bodyInk, c.Max.X, middle+px(3), draw.XRight, clip(bodyInk, r.figures, figures))
 		default:
@@ -136,6 +133,21 @@ func (b *bars) draw(c draw.Canvas) {
 		y -= step
 	}
 	b.lines(c, field, markY, x)
+	if b.stacked(width) {
+		b.namesAbove(c, top, width)
+	}
+}
+
+// namesAbove writes the names over the lines of the field, each above its bar.
+func (b *bars) namesAbove(c draw.Canvas, y, width vg.Length) {
+	for i := range b.rows {
+		if r := &b.rows[i]; !r.heading {
+			name := clip(bodyInk, r.name, width-px(8))
+			fill(c, paper, vg.Rectangle{Min: vg.Point{X: c.Min.X, Y: y - barStep + px(3)}, Max: vg.Point{X: c.Min.X + px(12) + bodyInk.Width(name), Y: y}})
+			write(c, bodyInk, c.Min.X+px(8), y-barStep/2+px(2), draw.XLeft, name)
+		}
+		y -= b.step(&b.rows[i], width)
+	}
 }
 
 // heading writes the row's name over the lines of the field.
@@ -191,9 +203,10 @@ func (b *bars) lines(c draw.Canvas, field vg.Rectangle, markY vg.Length, x func(
 			text, line = limitInk, stroke(limitTone, 1.6)
 		}
 		c.StrokeLine2(line, at, field.Min.Y, at, field.Max.Y)
-		half := text.Width(m.label) / 2
+		label := clip(text, m.label, c.Max.X-end-px(8))
+		half := text.Width(label) / 2
 		middle := min(max(at, c.Min.X+half, end+px(8)+half), c.Max.X-half)
-		write(c, text, middle, markY, draw.XCenter, m.label)
+		write(c, text, middle, markY, draw.XCenter, label)
 		end = middle + half
 	}
 }

@@ -33,7 +33,7 @@ func decimate(xs, ys []float64, x, y func(float64) vg.Length, column vg.Length) 
 	finish := func() {
 		closeRun()
 		if len(line) > 0 {
-			lines, line = append(lines, line), nil
+			lines, line = append(lines, straightened(line)), nil
 		}
 	}
 	for i := range xs {
@@ -59,3 +59,49 @@ func decimate(xs, ys []float64, x, y func(float64) vg.Length, column vg.Length) 
 	finish()
 	return lines
 }
+
+// straight is the distance from a line within which a point does not bend it: a
+// fifth of a dot of the finest picture.
+const straight = vg.Length(0.075)
+
+// straightened leaves out points that lie on the line between those kept, to
+// within the distance above: from each kept point it looks along the directions
+// that pass all points since closely enough, and keeps the last one before they
+// would be missed or the line turns back.
+func straightened(line []vg.Point) []vg.Point {
+	if len(line) < 3 {
+		return line
+	}
+	out := line[:1:1]
+	var left, right vg.Point // bounds of the directions
+	far := vg.Length(0)
+	open := true // every direction passes
+	restart := func() { far, open = 0, true }
+	for i := 1; i < len(line); i++ {
+		from := out[len(out)-1]
+		d := line[i].Sub(from)
+		reach := vg.Length(math.Hypot(float64(d.X), float64(d.Y)))
+		if !open && (reach < far || cross(right, d) < 0 || cross(d, left) < 0) {
+			out = append(out, line[i-1])
+			restart()
+			d = line[i].Sub(line[i-1])
+			reach = vg.Length(math.Hypot(float64(d.X), float64(d.Y)))
+		}
+		far = reach
+		if reach <= straight {
+			continue
+		}
+		aside := vg.Point{X: -d.Y / reach * straight, Y: d.X / reach * straight}
+		l, r := d.Add(aside), d.Sub(aside)
+		if open || cross(l, left) > 0 {
+			left = l
+		}
+		if open || cross(right, r) > 0 {
+			right = r
+		}
+		open = false
+	}
+	return append(out, line[len(line)-1])
+}
+
+func cross(a, b vg.Point) vg.Length { return a.X*b.Y - a.Y*b.X }

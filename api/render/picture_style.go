@@ -61,7 +61,7 @@ var fonts = func() *font.Cache {
 // ink returns a text style; size in pixels.
 func ink(size float64, weight xfont.Weight, tone color.Color) text.Style {
 	return text.Style{
-		Color: tone, Handler: text.Plain{Fonts: fonts},
+		Color: tone, Handler: lettering{text.Plain{Fonts: fonts}},
 		Font: font.Font{Typeface: plot.DefaultFont.Typeface, Variant: "Sans", Weight: weight, Size: px(size)},
 	}
 }

@@ -10,10 +10,12 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
 	"github.com/stretchr/testify/require"
+	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 	"gonum.org/v1/plot/vg/recorder"
@@ -164,6 +166,53 @@ func TestDecimationKeepsTheExtremesOfEveryColumn(t *testing.T) {
 	}
 	require.Equal(t, vg.Length(40), most)
 	require.Equal(t, vg.Length(-30), least)
+}
+
+func TestStraightenedLinesStayWhereTheyWere(t *testing.T) {
+	for name, curve := range map[string]func(i int) vg.Point{
+		"sine":     func(i int) vg.Point { return vg.Point{X: vg.Length(i) / 4, Y: 40 * vg.Length(math.Sin(float64(i)/30))} },
+		"triangle": func(i int) vg.Point { return vg.Point{X: vg.Length(i) / 4, Y: vg.Length(math.Abs(float64(i%50 - 25)))} },
+		"spikes":   func(i int) vg.Point { return vg.Point{X: vg.Length(i / 3), Y: vg.Length(i%3) * 7} },
+		"still":    func(int) vg.Point { return vg.Point{X: 3, Y: 3} },
+		"steps":    func(i int) vg.Point { return vg.Point{X: vg.Length((i + 1) / 2), Y: vg.Length(i / 2 % 2)} },
+	} {
+		var line []vg.Point
+		for i := range 1000 {
+			line = append(line, curve(i))
+		}
+		given := slices.Clone(line)
+		kept := straightened(line)
+		require.Equal(t, given, line, name)
+		require.Equal(t, []vg.Point{given[0], given[999]}, []vg.Point{kept[0], kept[len(kept)-1]}, name)
+		at := 0
+		for _, p := range given { // every point is near the pieces about it, which follow in order
+			for distance(p, kept[at], kept[at+1]) > 1.01*straight {
+				at++
+				require.Less(t, at+1, len(kept), "%s: %v left out", name, p)
+			}
+		}
+		require.Less(t, len(kept), map[string]int{"sine": 200, "triangle": 90, "spikes": 1001, "still": 3, "steps": 1001}[name], name)
+	}
+}
+
+// distance of a point from a piece of a line.
+func distance(p, a, b vg.Point) vg.Length {
+	d, q := b.Sub(a), p.Sub(a)
+	along := vg.Length(0)
+	if square := d.X*d.X + d.Y*d.Y; square > 0 {
+		along = min(1, max(0, (d.X*q.X+d.Y*q.Y)/square))
+	}
+	return vg.Length(math.Hypot(float64(q.X-along*d.X), float64(q.Y-along*d.Y)))
+}
+
+// The library measures each text from the face; ours remembers.
+func TestLettersAreAsWideAsTheLibraryMeasures(t *testing.T) {
+	for _, ink := range []text.Style{bodyInk, titleInk} {
+		face := fonts.Lookup(ink.Font, ink.Font.Size)
+		for _, s := range []string{"", "A", "AVAST, Ty. 1.5 V", "Ω µF → λ−", "ж漢\u2028é", "nominal −0.0901 %"} {
+			require.InDelta(t, float64(face.Width(s)), float64(ink.Width(s)), 1e-9, s)
+		}
+	}
 }
 
 func TestTicksAreRoundAndInside(t *testing.T) {

@@ -51,7 +51,8 @@ func Figure3(v float64, unit string) string {
 	return three(v/math.Pow10(3*(i-basePrefix))) + " " + prefixes[i] + u.symbol
 }
 
-// three writes three significant digits without an exponent where that is short.
+// three writes three significant digits without an exponent where that is short,
+// and a whole number with all of its digits.
 func three(v float64) string {
 	a := math.Abs(v)
 	switch {
@@ -59,14 +60,13 @@ func three(v float64) string {
 		return "0"
 	case a >= 1e7 || a < 1e-4:
 		return strconv.FormatFloat(v, 'e', 2, 64)
-	case a >= 99.95:
-		return strconv.FormatFloat(v, 'f', 0, 64)
-	case a >= 9.995:
-		return strconv.FormatFloat(v, 'f', 1, 64)
-	case a >= 0.9995:
-		return strconv.FormatFloat(v, 'f', 2, 64)
 	}
-	return strconv.FormatFloat(v, 'g', 3, 64)
+	rounded := strconv.FormatFloat(a, 'e', 2, 64)
+	exponent, err := strconv.Atoi(rounded[strings.IndexByte(rounded, 'e')+1:])
+	if err != nil {
+		panic("render: a number without an exponent: " + rounded)
+	}
+	return strconv.FormatFloat(v, 'f', max(0, 2-exponent), 64)
 }
 
 // percent writes a ratio as people do.
