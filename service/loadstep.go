@@ -44,13 +44,14 @@ func newLoadStep(r *stage.Requirement) *loadStep {
 // leaves the recovery without.
 func (l *loadStep) extension() corners.Extension {
 	var result evaluate.Result
+	run := new(transient.Engine)
 	return func(e *evaluate.Evaluator, p *stage.Point, r *evaluate.Result) {
 		deviation, recovery, peak := 0.0, 0.0, 0.0
 		for _, ends := range [2][2]float64{{l.from, l.to}, {l.to, l.from}} {
 			at := *p
 			at.Load = stage.Load{Current: ends[0]}
 			e.Eval(&at, &result)
-			o, followed := l.follow(e, result.Status, ends[1]-ends[0])
+			o, followed := l.follow(run, e, result.Status, ends[1]-ends[0])
 			if !followed {
 				deviation, recovery, peak = parts.Unknown, parts.Unknown, parts.Unknown
 				break
@@ -64,7 +65,7 @@ func (l *loadStep) extension() corners.Extension {
 }
 
 // follow runs one step from the operating point just evaluated.
-func (l *loadStep) follow(e *evaluate.Evaluator, s evaluate.Status, change float64) (transient.Outcome, bool) {
+func (l *loadStep) follow(run *transient.Engine, e *evaluate.Evaluator, s evaluate.Status, change float64) (transient.Outcome, bool) {
 	var none transient.Outcome
 	var plant loop.Plant
 	if !plant.Bind(e, s) {
@@ -75,7 +76,7 @@ func (l *loadStep) follow(e *evaluate.Evaluator, s evaluate.Status, change float
 	if parts.Known(l.recovery) {
 		after = math.Min(mostFollow, math.Max(after, 1.5*l.recovery/period))
 	}
-	run, err := transient.New(&transient.Setup{
+	err := run.Reset(&transient.Setup{
 		Plant: plant, Bounds: transient.DefaultBounds(&e.Stage().Controller, &plant), Duration: (stepAfter + after) * period, Band: l.band, Saturation: parts.Unknown,
 		Events: []transient.Event{{Kind: transient.LoadStep, At: stepAfter * period, Change: change, Slew: l.slew}},
 	})

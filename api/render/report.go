@@ -5,6 +5,7 @@ import (
 	_ "embed"
 	"html/template"
 	"slices"
+	"sync"
 
 	"railproof/api/wire"
 )
@@ -110,20 +111,38 @@ func (r *Report) HTML() []byte {
 	for _, b := range r.bases() {
 		a.Notice = b.Notice
 	}
-	for _, c := range chapters {
-		if !slices.Contains(r.Sections, c.name) {
-			continue
-		}
-		if blocks := c.write(r); len(blocks) > 0 {
-			a.Sections = append(a.Sections, chapter{c.name, c.title, blocks})
-		}
-	}
+	a.Sections = r.written()
 	var out bytes.Buffer
 	// a buffer takes every write, and the template is held by a test
 	if err := reportTemplate.Execute(&out, &a); err != nil {
 		panic("render: report template: " + err.Error())
 	}
 	return out.Bytes()
+}
+
+// written writes the chapters that are wanted beside one another: most of the time
+// goes into their pictures.
+func (r *Report) written() (list []chapter) {
+	blocks, failed := make([][]part, len(chapters)), make([]any, len(chapters))
+	var writing sync.WaitGroup
+	for i, c := range chapters {
+		if slices.Contains(r.Sections, c.name) {
+			writing.Go(func() {
+				defer func() { failed[i] = recover() }()
+				blocks[i] = c.write(r)
+			})
+		}
+	}
+	writing.Wait()
+	for i, c := range chapters {
+		if failed[i] != nil { // nobody above those goroutines would hear of it
+			panic(failed[i])
+		}
+		if len(blocks[i]) > 0 {
+			list = append(list, chapter{c.name, c.title, blocks[i]})
+		}
+	}
+	return list
 }
 
 func (r *Report) rail() string {

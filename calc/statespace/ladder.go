@@ -1,6 +1,9 @@
 package statespace
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // Ladder advances one system by any time up to its Step, exactly: maps over
 // Step, Step/2, Step/4 and so on are kept, and the rest below the last of them
@@ -10,6 +13,7 @@ type Ladder struct {
 	System System
 	Step   float64 // [s]
 	rungs  []rung  // over Step / 2^i
+	room   []float64
 }
 
 // rung is a Map without the room it does not use.
@@ -36,22 +40,30 @@ const (
 // NewLadder returns the ladder of s for steps of the given length, and false for
 // a system too stiff for them.
 func NewLadder(s *System, step float64) (*Ladder, bool) {
-	l := &Ladder{System: *s, Step: step}
+	l := &Ladder{System: *s}
+	return l, l.Set(step)
+}
+
+// Set makes l the ladder of its System for steps of the given length, in the
+// memory that it has. It reports false for a system too stiff for them.
+func (l *Ladder) Set(step float64) bool {
+	s := &l.System
+	l.Step = step
 	last := halvingsFor(s, step, rungNorm)
 	if last > maxHalvings {
-		return nil, false
+		return false
 	}
 	used := s.N * (s.N + s.M)
-	l.rungs = make([]rung, last+1)
-	room := make([]float64, (last+1)*used)
+	l.rungs = slices.Grow(l.rungs[:0], last+1)[:last+1]
+	l.room = slices.Grow(l.room[:0], (last+1)*used)[:(last+1)*used]
 	var a, b Map
 	now, next := &a, &b
 	now.series(s, math.Ldexp(step, -last), taylorTerms, next)
 	for i := last; ; i-- {
-		l.rungs[i] = rung{math.Ldexp(step, -i), room[i*used : (i+1)*used]}
+		l.rungs[i] = rung{math.Ldexp(step, -i), l.room[i*used : (i+1)*used]}
 		copy(l.rungs[i].f, now.F[:used])
 		if i == 0 {
-			return l, true
+			return true
 		}
 		next.Compose(now, now)
 		now, next = next, now

@@ -34,7 +34,8 @@ type moment struct {
 	phases [switched.MaxPhases]phase
 }
 
-// Engine runs one setup. It is made by New and used by one goroutine.
+// Engine runs one setup. It is made by New and used by one goroutine; Reset gives
+// it another setup and keeps its memory.
 type Engine struct {
 	setup  Setup
 	joint  loop.Joint
@@ -60,6 +61,8 @@ type Engine struct {
 
 	rateList [][statespace.MaxInputs]float64
 	shelf    map[uint32]*interval
+	idle     []*interval   // of setups before
+	model    *loop.Sampled // workspace of the start
 
 	now    moment
 	status Status
@@ -77,8 +80,9 @@ type Engine struct {
 
 // interval is the exact motion in one state of switches, amplifier and inputs.
 type interval struct {
-	*statespace.Ladder
+	statespace.Ladder
 	slopes [maxSignals]statespace.Functional // of the recorded signals
+	read   []float64                         // row by row: the recorded signals, then their slopes
 }
 
 // Status tells how a run stands.
@@ -106,11 +110,27 @@ const (
 // New prepares a run. The error is a *stage.InvalidError. A start that cannot be
 // found is a status of the engine.
 func New(s *Setup) (*Engine, error) {
+	e := new(Engine)
+	return e, e.Reset(s)
+}
+
+// Reset prepares another run, as New does.
+func (e *Engine) Reset(s *Setup) error {
 	if err := s.Check(); err != nil {
-		return nil, err
+		return err
 	}
 	p := &s.Plant
-	e := &Engine{setup: *s, status: Running, delay: p.Modulator.Delay, sense: 0, limit: math.Inf(1), shelf: map[uint32]*interval{}}
+	for _, v := range e.shelf {
+		e.idle = append(e.idle, v)
+	}
+	clear(e.shelf)
+	*e = Engine{
+		setup: *s, status: Running, delay: p.Modulator.Delay, sense: 0, limit: math.Inf(1),
+		shelf: e.shelf, idle: e.idle, model: e.model, watched: e.watched[:0], points: e.points[:0], rateList: e.rateList[:0],
+	}
+	if e.shelf == nil {
+		e.shelf, e.model = map[uint32]*interval{}, new(loop.Sampled)
+	}
 	e.joint.Integrate = true
 	for _, ev := range s.Events {
 		if ev.Kind.tone() {
@@ -139,7 +159,7 @@ func New(s *Setup) (*Engine, error) {
 	e.schedule()
 	e.rec.set(e)
 	e.begin()
-	return e, nil
+	return nil
 }
 
 // functionals prepares the linear outputs that are watched.
@@ -190,19 +210,34 @@ func (e *Engine) motion() *interval {
 	}
 	v, ok := e.shelf[key]
 	if !ok {
-		var s statespace.System
-		e.joint.Assemble(&s, &m.legs, m.drive)
-		s.Rate = m.rate
-		ladder, ok := statespace.NewLadder(&s, e.setup.Plant.Circuit.Period/stepsPerPeriod)
-		if !ok {
+		if v = e.prepare(); v == nil {
 			e.status = TooStiff
 			return nil
 		}
-		v = &interval{Ladder: ladder}
-		for k := range e.rec.count {
-			v.slopes[k] = slopeOf(&e.shape[m.drive][k], &s)
-		}
 		e.shelf[key] = v
+	}
+	return v
+}
+
+// prepare makes the motion of the present state; nil for one too stiff.
+func (e *Engine) prepare() *interval {
+	v := new(interval)
+	if n := len(e.idle); n > 0 {
+		v, e.idle = e.idle[n-1], e.idle[:n-1]
+	}
+	m := &e.now
+	e.joint.Assemble(&v.System, &m.legs, m.drive)
+	v.System.Rate = m.rate
+	if !v.Set(e.setup.Plant.Circuit.Period / stepsPerPeriod) {
+		return nil
+	}
+	v.read = v.read[:0]
+	for k := range e.rec.count {
+		v.read = append(v.read, e.shape[m.drive][k][:e.width]...)
+	}
+	for k := range e.rec.count {
+		v.slopes[k] = slopeOf(&e.shape[m.drive][k], &v.System)
+		v.read = append(v.read, v.slopes[k][:e.width]...)
 	}
 	return v
 }

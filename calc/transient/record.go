@@ -115,10 +115,17 @@ func (e *Engine) look(v *interval) {
 	}
 	m := &e.now
 	i := e.rec.index(m.at)
+	read := e.read(v, &m.z)
 	for k := range e.rec.count {
-		e.head[k] = reading{e.shape[m.drive][k].At(&m.z, e.width), v.slopes[k].At(&m.z, e.width)}
+		e.head[k] = reading{read[k], read[e.rec.count+k]}
 		e.keep(k, i, e.head[k].value, &m.z, m.at)
 	}
+}
+
+// read returns the signals' values, then their slopes, at a point.
+func (e *Engine) read(v *interval, z *statespace.Point) (read [2 * maxSignals]float64) {
+	statespace.Times(read[:2*e.rec.count], v.read, z, e.width)
+	return read
 }
 
 // observe takes the signals' values and extremes over the step from the present
@@ -136,9 +143,10 @@ func (e *Engine) observe(v *interval, z *statespace.Point, h float64) {
 	}
 	to := m.at + h
 	i := e.rec.index(to)
+	read := e.read(v, z)
 	for k := range e.rec.count {
 		f := &e.shape[m.drive][k]
-		was, is := e.head[k], reading{f.At(z, e.width), v.slopes[k].At(z, e.width)}
+		was, is := e.head[k], reading{read[k], read[e.rec.count+k]}
 		e.head[k] = is
 		e.keep(k, i, is.value, z, to)
 		if !(was.slope*is.slope < 0) {

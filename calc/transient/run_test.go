@@ -1,6 +1,7 @@
 package transient
 
 import (
+	"fmt"
 	"math"
 	"testing"
 
@@ -375,5 +376,36 @@ func TestStageBehindAnInputFilter(t *testing.T) {
 				require.InEpsilon(t, 5, r.Final.Mean, 1e-6)
 			}
 		})
+	}
+}
+
+// An engine that ran something else gives the same run, to the bit, as a new one.
+func TestResetGivesTheRunOfANewEngine(t *testing.T) {
+	p := designed(t, solved(t, buoy(), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55)
+	setup := Setup{
+		Plant: p, Bounds: bounds(&p), Duration: 2e-4, Band: 0.025, Saturation: 12,
+		Events: []Event{{Kind: LoadStep, At: 2e-5, Change: 3, Slew: 1e6}}, Record: Record{Points: 200},
+	}
+	run := func(e *Engine) (Result, []Row) {
+		for e.Advance(7) {
+		}
+		return e.Result(), e.Rows()
+	}
+	fresh, err := New(&setup)
+	require.NoError(t, err)
+	want, rows := run(fresh)
+	require.True(t, want.Status.OK())
+
+	used := new(Engine)
+	other := setup
+	other.Start, other.Record = Start{Kind: AtRest, SoftStart: 1e-4}, Record{}
+	require.NoError(t, used.Reset(&other))
+	run(used)
+	require.Error(t, used.Reset(&Setup{}))
+	for range 2 {
+		require.NoError(t, used.Reset(&setup))
+		got, gotRows := run(used)
+		require.Equal(t, fmt.Sprint(want), fmt.Sprint(got))
+		require.Equal(t, fmt.Sprint(rows), fmt.Sprint(gotRows))
 	}
 }

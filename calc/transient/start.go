@@ -70,8 +70,7 @@ func (e *Engine) fromRest() {
 // fromPeriodic starts in the periodic closed-loop solution, found by Newton's
 // method on the map over one period from the solution of the linearised model.
 func (e *Engine) fromPeriodic() bool {
-	var model loop.Sampled
-	if !model.Set(&e.setup.Plant).OK() {
+	if !e.model.Set(&e.setup.Plant).OK() {
 		return false
 	}
 	e.trial = true
@@ -80,7 +79,7 @@ func (e *Engine) fromPeriodic() bool {
 	e.points = nil // none of them during the search
 	defer func() { e.points = events }()
 
-	d := model.Decision()
+	d := e.model.Decision()
 	e.placeAt(&d)
 	e.advance(e.setup.Plant.Circuit.Period) // to the clock of phase 0
 	e.rewind(1)
@@ -169,14 +168,17 @@ const (
 	shootingStep      = 1e-6  // [1] relative step of the difference quotients
 	shootingTolerance = 1e-11 // [1] relative closure of one period at which the search ends
 	shootingEnough    = 1e-8  // [1] at which its result is accepted if rounding stops it
+	shootingGain      = 0.01  // [1] of the closure before: what a round with the derivatives at hand is to leave
 )
 
 // shoot solves for the moment that one period carries into itself, by Newton's
-// method with difference quotients. The present moment, at the clock of phase 0
-// and time 0, is its start and its result.
+// method with difference quotients, which are formed anew only where those before
+// no longer lead on. The present moment, at the clock of phase 0 and time 0, is its
+// start and its result.
 func (e *Engine) shoot() bool {
 	n := e.joint.Integral
 	best := math.Inf(1)
+	var derivative statespace.Real
 	for range shootingRounds {
 		base := e.now
 		if !e.period() {
@@ -190,26 +192,17 @@ func (e *Engine) shoot() bool {
 		if closure <= shootingTolerance || closure >= best && closure <= shootingEnough {
 			return true
 		}
-		best = min(best, closure)
-		var m statespace.Real
-		m.N = n
-		var right statespace.Point
-		for k := range n {
-			h := shootingStep * scaleOf(base.z[k])
-			e.now = base
-			e.now.z[k] += h
-			if !e.period() {
+		if derivative.N == 0 || !(closure <= shootingGain*best) {
+			if derivative.N = n; !e.differentiate(&derivative, &base, &image) {
 				return false
 			}
-			for i := range n {
-				x := -(e.now.z[i] - image.z[i]) / h
-				if i == k {
-					x++
-				}
-				m.Set(i, k, x)
-			}
+		}
+		best = min(best, closure)
+		var right statespace.Point
+		for k := range n {
 			right[k] = image.z[k] - base.z[k]
 		}
+		m := derivative
 		if !m.Solve(&right) {
 			return false
 		}
@@ -223,6 +216,27 @@ func (e *Engine) shoot() bool {
 		}
 	}
 	return best <= shootingEnough
+}
+
+// differentiate sets m to one less the derivative of the map over one period, which
+// takes base to image.
+func (e *Engine) differentiate(m *statespace.Real, base, image *moment) bool {
+	for k := range m.N {
+		h := shootingStep * scaleOf(base.z[k])
+		e.now = *base
+		e.now.z[k] += h
+		if !e.period() {
+			return false
+		}
+		for i := range m.N {
+			x := -(e.now.z[i] - image.z[i]) / h
+			if i == k {
+				x++
+			}
+			m.Set(i, k, x)
+		}
+	}
+	return true
 }
 
 // scaleOf returns the size against which a state's change is measured.
