@@ -36,6 +36,6 @@ func TestLoadStepsOfTheDrafts(t *testing.T) {
 		}
 	})
 	t.Logf("%d load steps followed, %d not; greatest deviation %.2f of its limit", followed, left, worst)
-	assert.Greater(t, followed, 4*left)
+	assert.Zero(t, left)
 	assert.Greater(t, worst, 0.5, "the windows waste capacitance")
 }

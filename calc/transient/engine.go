@@ -30,6 +30,7 @@ type moment struct {
 	next   int     // next breakpoint
 	soft   bool    // the reference is still being ramped up: reverse current is blocked
 	began  float64 // [s] start of the present period
+	edges  int     // in it
 	waits  bool    // the constant-current load is not yet connected
 	phases [switched.MaxPhases]phase
 }
@@ -61,12 +62,11 @@ type Engine struct {
 
 	rateList [][statespace.MaxInputs]float64
 	shelf    map[uint32]*interval
-	idle     []*interval   // of setups before
-	model    *loop.Sampled // workspace of the start
+	idle     []*interval // of setups before
+	*starter
 
 	now    moment
 	status Status
-	edges  int  // in the present period
 	trial  bool // a period is only tried out: nothing is recorded
 	shape  [loop.DriveStates][maxSignals]statespace.Functional
 	head   [maxSignals]reading // as the present step begins
@@ -126,10 +126,10 @@ func (e *Engine) Reset(s *Setup) error {
 	clear(e.shelf)
 	*e = Engine{
 		setup: *s, status: Running, delay: p.Modulator.Delay, sense: 0, limit: math.Inf(1),
-		shelf: e.shelf, idle: e.idle, model: e.model, watched: e.watched[:0], points: e.points[:0], rateList: e.rateList[:0],
+		shelf: e.shelf, idle: e.idle, starter: e.starter, watched: e.watched[:0], points: e.points[:0], rateList: e.rateList[:0],
 	}
 	if e.shelf == nil {
-		e.shelf, e.model = map[uint32]*interval{}, new(loop.Sampled)
+		e.shelf, e.starter = map[uint32]*interval{}, new(starter)
 	}
 	e.joint.Integrate = true
 	for _, ev := range s.Events {

@@ -145,7 +145,7 @@ func (r *tally) keep(k int, s Sample) {
 // closePeriod takes the figures of the period that ends at the clock of phase 0.
 func (e *Engine) closePeriod() {
 	m := &e.now
-	e.edges = 0
+	m.edges = 0
 	length := m.at - m.began
 	if length > e.grain() {
 		e.lastMean = m.z[e.joint.Integral] / length

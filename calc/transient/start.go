@@ -5,7 +5,14 @@ import (
 
 	"railproof/calc/loop"
 	"railproof/calc/statespace"
+	"railproof/calc/switched"
 )
+
+// starter is the workspace of the search for a start.
+type starter struct {
+	model  loop.Sampled
+	solver switched.Solver
+}
 
 // begin puts the engine into the start of its run.
 func (e *Engine) begin() {
@@ -67,10 +74,15 @@ func (e *Engine) fromRest() {
 	}
 }
 
-// fromPeriodic starts in the periodic closed-loop solution, found by Newton's
-// method on the map over one period from the solution of the linearised model.
+// fromPeriodic starts in the periodic closed-loop solution: that of the linearised
+// model, closed on the engine's own map over one period by Newton's method. The
+// present moment ends at the clock of phase 0 and time 0.
+//
+// The map is taken from half-way between a turn-off and the next decision of a
+// comparator. There no decision waits for its delay, so that the moment that closes
+// is one of the states alone.
 func (e *Engine) fromPeriodic() bool {
-	if !e.model.Set(&e.setup.Plant).OK() {
+	if !e.linearise() {
 		return false
 	}
 	e.trial = true
@@ -79,10 +91,10 @@ func (e *Engine) fromPeriodic() bool {
 	e.points = nil // none of them during the search
 	defer func() { e.points = events }()
 
+	c := &e.joint.Circuit
 	d := e.model.Decision()
 	e.placeAt(&d)
-	e.advance(e.setup.Plant.Circuit.Period) // to the clock of phase 0
-	e.rewind(1)
+	e.advance(d.At + (e.delay+c.Period/float64(c.Phases))/2)
 	if e.status != Running {
 		return false
 	}
@@ -93,10 +105,42 @@ func (e *Engine) fromPeriodic() bool {
 			return false
 		}
 	}
-	e.startMean = e.lastMean
-	e.run.target = e.lastMean
+	settled := e.lastMean
+	e.advance(e.now.phases[0].clock)
+	e.rewind(int(math.Round(e.now.at / c.Period)))
+	if !e.restless {
+		settled = e.lastMean
+	}
+	e.startMean, e.run.target = settled, settled
 	if e.joint.ToneRate != 0 {
 		e.now.z[e.joint.Tone], e.now.z[e.joint.Tone+1] = 0, e.toneAmplitude()
+	}
+	return e.status == Running
+}
+
+const (
+	referenceRounds = 8     // [1] two or three are usual
+	referenceWithin = 1e-13 // [1] of the reference
+)
+
+// linearise sets the model to the periodic solution for the reference that there is.
+// That of the operating point needs a little more where the amplifier's direct gain
+// is finite; the output that is off by as much needs it no longer.
+func (e *Engine) linearise() bool {
+	p := e.setup.Plant
+	var s switched.Solution
+	for range referenceRounds {
+		if !e.model.Set(&p).OK() {
+			return false
+		}
+		if p.Source.Present || math.Abs(e.model.Error) <= referenceWithin {
+			break // behind a source the circuit alone does not tell the duty ratio
+		}
+		e.solver.Regulated(&p.Circuit, p.Output/(1+e.model.Error), 0, 1, &s)
+		if !s.Status.OK() {
+			break
+		}
+		p.Operate(&s)
 	}
 	return true
 }
@@ -155,7 +199,7 @@ func (e *Engine) rewind(periods int) {
 	if math.Abs(m.at) <= e.grain() {
 		m.at = 0
 	}
-	m.began = m.at
+	m.began -= back
 	for i := range e.joint.Circuit.Phases {
 		p := &m.phases[i]
 		p.count -= periods
@@ -165,7 +209,7 @@ func (e *Engine) rewind(periods int) {
 
 const (
 	shootingRounds    = 16
-	shootingStep      = 1e-6  // [1] relative step of the difference quotients
+	shootingStep      = 1e-8  // [1] relative step of the difference quotients
 	shootingTolerance = 1e-11 // [1] relative closure of one period at which the search ends
 	shootingEnough    = 1e-8  // [1] at which its result is accepted if rounding stops it
 	shootingGain      = 0.01  // [1] of the closure before: what a round with the derivatives at hand is to leave
@@ -173,8 +217,8 @@ const (
 
 // shoot solves for the moment that one period carries into itself, by Newton's
 // method with difference quotients, which are formed anew only where those before
-// no longer lead on. The present moment, at the clock of phase 0 and time 0, is its
-// start and its result.
+// no longer lead on. The present moment, at which no decision waits for its delay, is
+// its start and its result.
 func (e *Engine) shoot() bool {
 	n := e.joint.Integral
 	best := math.Inf(1)
@@ -210,7 +254,7 @@ func (e *Engine) shoot() bool {
 		for k := range n {
 			e.now.z[k] += right[k]
 		}
-		// One period refreshes what the controller holds besides the states.
+		// One period refreshes which phases rest.
 		if !e.period() {
 			return false
 		}
@@ -244,8 +288,10 @@ func scaleOf(x float64) float64 { return max(math.Abs(x), 1e-2) }
 
 // period runs one period and takes the time back.
 func (e *Engine) period() bool {
-	e.advance(e.joint.Circuit.Period)
+	at := e.now.at
+	e.advance(at + e.joint.Circuit.Period)
 	e.rewind(1)
+	e.now.at = at
 	return e.status == Running
 }
 

@@ -264,8 +264,8 @@ func (e *Engine) commit(v *interval, z *statespace.Point, h float64) {
 // fire carries out what an event asks for.
 func (e *Engine) fire(w *watcher) {
 	m := &e.now
-	e.edges++
-	if e.edges > maxEdges {
+	m.edges++
+	if m.edges > maxEdges {
 		e.status = Stalled
 		return
 	}
