@@ -13,6 +13,7 @@ import (
 	"railproof/calc/quantity"
 	"railproof/calc/rules"
 	"railproof/calc/stage"
+	"railproof/calc/transient"
 )
 
 // passKind tells by what means a pass looks for worst points.
@@ -131,7 +132,7 @@ func (w *worstCase) absences(r *worstRequest) {
 }
 
 // nominal evaluates the typical point.
-func (s *Service) nominal(r *worstRequest, w *worstCase, step *loadStep) {
+func (s *Service) nominal(r *worstRequest, w *worstCase, step *transient.Demand) {
 	point := r.conditions.Typical()
 	e := s.evaluator(r.design.Stage)
 	defer s.release(e)
@@ -159,7 +160,7 @@ func (s *Service) nominal(r *worstRequest, w *worstCase, step *loadStep) {
 }
 
 // layOut makes the passes that the demand needs.
-func (r *worstRequest) layOut(absent map[quantity.ID][]string, step *loadStep) []*worstPass {
+func (r *worstRequest) layOut(absent map[quantity.ID][]string, step *transient.Demand) []*worstPass {
 	var passes []*worstPass
 	for _, part := range []struct {
 		full            bool
@@ -200,7 +201,7 @@ func (p *worstPass) index(id quantity.ID) int {
 	return len(p.ids) - 1
 }
 
-func (p *worstPass) bind(r *worstRequest, targets []corners.Target, step *loadStep) {
+func (p *worstPass) bind(r *worstRequest, targets []corners.Target, step *transient.Demand) {
 	c := r.conditions
 	if p.full || p.kind == ofStep { // a load step has a load of its own
 		c.LoadCurrent = held(c.LoadCurrent.Max)
@@ -224,7 +225,7 @@ func held(v float64) stage.Range { return stage.Range{Min: v, Typ: v, Max: v} }
 
 // extensionFor returns what computes the loop and load-step quantities of a list;
 // nil where it has none.
-func extensionFor(ids []quantity.ID, absent map[quantity.ID][]string, step *loadStep) corners.Extension {
+func extensionFor(ids []quantity.ID, absent map[quantity.ID][]string, step *transient.Demand) corners.Extension {
 	var list []corners.Extension
 	var wanted [ofStep + 1]bool
 	for _, id := range ids {
@@ -236,7 +237,7 @@ func extensionFor(ids []quantity.ID, absent map[quantity.ID][]string, step *load
 		list = append(list, loopExtension(ids)())
 	}
 	if wanted[ofStep] && step != nil {
-		list = append(list, step.extension())
+		list = append(list, stepExtension(step))
 	}
 	if len(list) == 0 {
 		return nil

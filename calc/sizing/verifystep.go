@@ -4,20 +4,9 @@ import (
 	"math"
 	"strings"
 
-	"railproof/calc/loop"
-	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
 	"railproof/calc/transient"
-)
-
-const (
-	stepAt       = 2.3   // [1] periods before the load step, between two clocks
-	leastPeriods = 120.0 // [1] followed after it
-	mostPeriods  = 800.0 // [1]
-	// recoveryBand is the half width of the band that counts as recovered, over the
-	// output voltage.
-	recoveryBand = 0.01 // [1]
 )
 
 // VerifyStep follows the load step of a requirement on the draft stage in closed
@@ -40,8 +29,8 @@ func (a *Answer) VerifyingStep(req *stage.Requirement) func(yield func() bool) {
 }
 
 func (a *Answer) verifyStep(req *stage.Requirement, yield func() bool) {
-	s := req.Targets.LoadStep
-	if !a.Status.OK() || !known(s.Step) || !a.Stage.Compensator.Present {
+	step, asked := transient.DemandOf(req)
+	if !a.Status.OK() || !asked || !a.Stage.Compensator.Present {
 		return
 	}
 	var checks []Check
@@ -50,13 +39,14 @@ func (a *Answer) verifyStep(req *stage.Requirement, yield func() bool) {
 			checks = append(checks, Check{Limit: l, Worst: math.NaN(), Met: true})
 		}
 	}
-	v := newVerifier(a)
+	v, follower := newVerifier(a), transient.Follower{Demand: step}
 	for _, v.point.Input = range ends(a.Conditions.Input) {
 		for _, v.point.AmbientDegC = range ends(a.Conditions.AmbientDegC) {
 			for _, large := range [2]bool{true, false} {
 				for _, applied := range [2]bool{true, false} {
 					v.stepVertex(large)
-					o, ok := v.followStep(req, applied)
+					v.point.Load.Current = follower.Start(applied)
+					o, ok := follower.Follow(v.eval, &v.point, applied)
 					if !ok {
 						a.Notes = append(a.Notes, Note{Code: "load-step-not-followed", Field: "targets/load_step", Detail: "the load step could not be followed cycle by cycle on the draft stage; post it to /v1/transients"})
 						return
@@ -112,41 +102,4 @@ func (v *verifier) stepVertex(large bool) {
 		*v.value[i] = at
 	}
 	v.point.AgeRatio = v.answer.Conditions.AgeRatio.Max
-}
-
-// followStep runs one load step between the greatest load and that less the step.
-func (v *verifier) followStep(req *stage.Requirement, applied bool) (transient.Outcome, bool) {
-	s := req.Targets.LoadStep
-	v.point.Load.Current = math.Max(req.LoadCurrent.Min, req.LoadCurrent.Max-s.Step)
-	change := req.LoadCurrent.Max - v.point.Load.Current
-	if !applied {
-		v.point.Load.Current, change = req.LoadCurrent.Max, -change
-	}
-	v.eval.Eval(&v.point, &v.result)
-	if !v.result.Status.OK() {
-		return transient.Outcome{}, false
-	}
-	d := v.eval.Stage()
-	plant := loop.Plant{Circuit: *v.eval.Circuit(), Modulator: d.Modulator, Compensator: d.Compensator, Feedback: d.Feedback}
-	plant.Operate(v.eval.Solution())
-	period := plant.Circuit.Period
-	after := leastPeriods
-	if known(s.Recovery) {
-		after = math.Min(mostPeriods, math.Max(after, 1.5*s.Recovery/period))
-	}
-	e, err := transient.New(&transient.Setup{
-		Plant: plant, Bounds: transient.DefaultBounds(&d.Controller, &plant), Duration: (stepAt + after) * period,
-		Band: recoveryBand * req.Output, Saturation: parts.Unknown,
-		Events: []transient.Event{{Kind: transient.LoadStep, At: stepAt * period, Change: change, Slew: s.Slew}},
-	})
-	if err != nil {
-		return transient.Outcome{}, false
-	}
-	for e.Advance(100) {
-	}
-	r := e.Result()
-	if !r.Status.OK() {
-		return transient.Outcome{}, false
-	}
-	return r.Outcomes[len(r.Outcomes)-1], true
 }

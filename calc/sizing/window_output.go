@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"railproof/calc/parts"
+	"railproof/calc/transient"
 )
 
 // output sets the windows of the output capacitance and its series resistance and
@@ -197,7 +198,7 @@ func (z *sizer) stepAllowance() allowance {
 	if !known(s.Recovery) {
 		return a
 	}
-	band, fc := recoveryBand*z.req.Output, crossoverRatio*z.fs
+	band, fc := transient.RecoveryBand*z.req.Output, crossoverRatio*z.fs
 	settling := math.Max(0, s.Recovery-settlePeriods/z.fs)
 	if v := band * math.Exp(2*math.Pi*fc*settling/settleRate); v < a.within {
 		a = allowance{

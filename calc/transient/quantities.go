@@ -1,9 +1,6 @@
 package transient
 
-import (
-	"railproof/calc/evaluate"
-	"railproof/calc/quantity"
-)
+import "railproof/calc/evaluate"
 
 // Bind sets plant, bounds and saturation current of a setup to an evaluated stage.
 // It reports whether the stage regulates there. Saturation is that of the data
@@ -14,12 +11,4 @@ func (s *Setup) Bind(e *evaluate.Evaluator, status evaluate.Status) bool {
 	s.Bounds = DefaultBounds(&stage.Controller, &s.Plant)
 	s.Saturation = stage.Inductor.Rating.Saturation
 	return ok
-}
-
-// Fill writes the quantities of a load step: the greater of both deviations, the
-// recovery time and the peak current. NaN stands where the output did not recover.
-func (o *Outcome) Fill(q *quantity.Vector) {
-	q[quantity.LoadStepDeviation] = max(o.Up, o.Down)
-	q[quantity.LoadStepRecovery] = o.Recovery
-	q[quantity.LoadStepPeak] = o.InductorPeak.Value
 }
