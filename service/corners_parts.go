@@ -61,7 +61,7 @@ func (s *Service) CornersPart(ctx context.Context, p *CornersPlan, part, parts i
 
 // driver makes a driver with a model for each worker.
 func (s *Service) driver(ctx context.Context, p *CornersPlan) *driver {
-	d := &driver{ctx: ctx, models: make([]corners.Model, s.workers), meter: MeterOf(ctx)}
+	d := &driver{ctx: ctx, turns: s.cores, models: make([]corners.Model, s.workers), meter: MeterOf(ctx)}
 	for i := range d.models {
 		d.models[i] = p.Bound.Model()
 	}

@@ -2,11 +2,6 @@ package service
 
 import (
 	"context"
-	"errors"
-	"fmt"
-	"runtime"
-	"runtime/debug"
-	"sync"
 	"sync/atomic"
 
 	"railproof/calc/corners"
@@ -15,6 +10,7 @@ import (
 // driver does the jobs of one analysis on its models, one goroutine for each.
 type driver struct {
 	ctx    context.Context
+	turns  *cores // nil: every worker computes whenever it can
 	models []corners.Model
 	meter  *Meter
 }
@@ -41,12 +37,15 @@ func (d *driver) do(job corners.Job, perTask, budget int) error {
 	return nil
 }
 
-// tasks runs every task of a work. Between tasks, each below a millisecond, it
-// looks at the context and lets others run.
+// tasks runs every task of a work. Each, below a millisecond, is a turn; between them
+// it looks at the context.
 func (d *driver) tasks(work corners.Work, done func()) error {
 	var next atomic.Int64
 	n := work.Tasks()
-	loop := func(worker int) error {
+	return onWorkers(min(len(d.models), n), func(worker int) error {
+		defer next.Add(int64(n)) // whoever leaves before the end, by an error or a panic, ends it for all
+		d.turns.take()
+		defer d.turns.give()
 		for {
 			if err := context.Cause(d.ctx); err != nil {
 				return err
@@ -57,44 +56,7 @@ func (d *driver) tasks(work corners.Work, done func()) error {
 			}
 			work.Run(task, worker, d.models[worker])
 			done()
-			runtime.Gosched()
+			d.turns.next()
 		}
-	}
-	workers := min(len(d.models), n)
-	if workers <= 1 {
-		return loop(0)
-	}
-	failed := make([]error, workers)
-	var all sync.WaitGroup
-	for i := range workers {
-		all.Go(func() {
-			defer func() {
-				if r := recover(); r != nil {
-					next.Add(int64(n))
-					failed[i] = &crash{r, debug.Stack()}
-				}
-			}()
-			failed[i] = loop(i)
-		})
-	}
-	all.Wait()
-	for _, err := range failed {
-		if c, ok := errors.AsType[*crash](err); ok {
-			panic(c) // on the caller's goroutine, where the transport catches it
-		}
-	}
-	for _, err := range failed {
-		if err != nil {
-			return err
-		}
-	}
-	return nil
+	})
 }
-
-// crash carries a panic from a worker to its caller.
-type crash struct {
-	cause any
-	stack []byte
-}
-
-func (c *crash) Error() string { return fmt.Sprintf("%v\n%s", c.cause, c.stack) }

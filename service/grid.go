@@ -57,7 +57,7 @@ func (s *Service) LossesGrid(ctx context.Context, r *GridRequest) (*GridAnswer, 
 	}
 	err := s.run(ctx, bulk, func() error {
 		sketches := make([]gridSketch, (n+gridChunk-1)/gridChunk)
-		err := inChunks(ctx, n, gridChunk, s.workers,
+		err := inChunks(ctx, s.cores, n, gridChunk, s.workers,
 			func() *evaluate.Evaluator { return s.evaluator(r.Design.Stage) }, s.release,
 			func(e *evaluate.Evaluator, from, to int) {
 				r.chunk(a, e, &sketches[from/gridChunk], from, to)

@@ -71,5 +71,17 @@ func (s *Service) run(ctx context.Context, kind laneKind, work func() error) err
 		return err
 	}
 	defer l.leave()
+	if kind == interactive {
+		defer s.cores.hasten()()
+	}
 	return work()
+}
+
+// turns returns what the workers of a lane take turns on: nothing for those of short
+// work.
+func (s *Service) turns(kind laneKind) *cores {
+	if kind == bulk {
+		return s.cores
+	}
+	return nil
 }

@@ -57,7 +57,7 @@ func TestChunksCoverTheRangeOnceForAnyNumberOfWorkers(t *testing.T) {
 	for _, workers := range []int{1, 2, 7} {
 		for _, n := range []int{0, 1, 63, 64, 65, 1000} {
 			counts := make([]int, n)
-			err := inChunks(t.Context(), n, 64, workers, noWorkspace, keepNothing,
+			err := inChunks(t.Context(), nil, n, 64, workers, noWorkspace, keepNothing,
 				func(_ struct{}, from, to int) {
 					for i := from; i < to; i++ {
 						counts[i]++
@@ -74,7 +74,7 @@ func TestChunksCoverTheRangeOnceForAnyNumberOfWorkers(t *testing.T) {
 func TestChunksStopWhenCancelled(t *testing.T) {
 	ctx, cancel := context.WithCancel(t.Context())
 	done := 0
-	err := inChunks(ctx, 1000, 10, 1, noWorkspace, keepNothing, func(struct{}, int, int) {
+	err := inChunks(ctx, nil, 1000, 10, 1, noWorkspace, keepNothing, func(struct{}, int, int) {
 		done++
 		cancel()
 	})

@@ -116,7 +116,7 @@ func (s *Service) Loop(ctx context.Context, r *LoopRequest) (*LoopAnswer, error)
 			}
 		}
 		failed := make([]error, len(r.Places))
-		err := inChunks(ctx, len(r.Places), 1, s.workers,
+		err := inChunks(ctx, s.turns(kind), len(r.Places), 1, s.workers,
 			func() *loopBench { return &loopBench{evaluator: s.evaluator(d.Stage)} }, func(b *loopBench) { s.release(b.evaluator) },
 			func(b *loopBench, i, _ int) { a.Items[i], failed[i] = b.item(r, &r.Places[i].Point) })
 		for _, e := range failed {

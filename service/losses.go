@@ -42,7 +42,7 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 	err := s.run(ctx, kind, func() error {
 		e := s.evaluator(r.Design.Stage)
 		defer s.release(e)
-		err := inChunks(ctx, len(r.Places), pointChunk, 1, func() *evaluate.Evaluator { return e }, func(*evaluate.Evaluator) {},
+		err := inChunks(ctx, s.turns(kind), len(r.Places), pointChunk, 1, func() *evaluate.Evaluator { return e }, func(*evaluate.Evaluator) {},
 			func(e *evaluate.Evaluator, from, to int) {
 				for i := from; i < to; i++ {
 					a.Outcomes[i] = outcome(e, &r.Places[i].Point)

@@ -23,6 +23,7 @@ type Service struct {
 	engine  Engine
 	workers int
 	lanes   [laneCount]*lane
+	cores   *cores
 	done    WorkDone
 	idle    sync.Pool // of *evaluate.Evaluator: each is large, and any serves any stage
 }
@@ -38,7 +39,7 @@ func New(o Options) *Service {
 	if o.QueueWait == 0 {
 		o.QueueWait = 2 * time.Second
 	}
-	s := &Service{engine: NewEngine(o.ContractVersion), workers: o.Workers}
+	s := &Service{engine: NewEngine(o.ContractVersion), workers: o.Workers, cores: newCores(o.Workers)}
 	for i := range s.lanes {
 		s.lanes[i] = newLane(o.Workers, o.QueueLength, o.QueueWait)
 	}

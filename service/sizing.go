@@ -31,17 +31,17 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 	err := s.run(ctx, bulk, func() error {
 		frequencies := sizing.Frequencies(&r.Requirement, r.Choices)
 		answers := make([]sizing.Answer, len(frequencies))
-		err := inChunks(ctx, len(answers), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, from, _ int) {
+		err := inChunks(ctx, s.cores, len(answers), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, from, _ int) {
 			answers[from] = sizing.SizeAt(&r.Requirement, r.Choices, frequencies[from])
 		})
 		if err != nil {
 			return err
 		}
 		a.Answer = sizing.Select(&r.Requirement, answers)
-		if err := polled(ctx, a.Verifying); err != nil {
+		if err := polled(ctx, s.cores, a.Verifying); err != nil {
 			return err
 		}
-		if err := polled(ctx, a.VerifyingStep(&r.Requirement)); err != nil {
+		if err := polled(ctx, s.cores, a.VerifyingStep(&r.Requirement)); err != nil {
 			return err
 		}
 		a.Basis.Assumptions, err = s.sizingAssumptions(ctx, r, &a.Answer)

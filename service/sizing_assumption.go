@@ -18,7 +18,7 @@ import (
 func (s *Service) sizingAssumptions(ctx context.Context, r *SizingRequest, a *sizing.Answer) ([]Assumption, error) {
 	assumed := append(append([]stage.Assumed(nil), r.Assumed...), a.Assumed...)
 	list := make([]Assumption, len(assumed))
-	err := inChunks(ctx, len(assumed), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, i, _ int) {
+	err := inChunks(ctx, s.cores, len(assumed), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, i, _ int) {
 		f := &assumed[i]
 		list[i] = Assumption{Pointer: fieldPointer(r.At, f.Field), Value: finite(f.Value), Low: finite(f.Low), High: finite(f.High), Why: f.Why}
 		if _, ofDraft := strings.CutPrefix(f.Field, "stage/"); ofDraft {

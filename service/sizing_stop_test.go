@@ -35,7 +35,7 @@ func TestSizingIsLeftBetweenAnyTwoPieces(t *testing.T) {
 		a.Checks = nil
 		ctx, cancel := context.WithCancel(t.Context())
 		pieces := 0
-		err := polled(ctx, func(yield func() bool) {
+		err := polled(ctx, nil, func(yield func() bool) {
 			run(func() bool {
 				if pieces++; pieces == 3 {
 					cancel()
@@ -46,7 +46,7 @@ func TestSizingIsLeftBetweenAnyTwoPieces(t *testing.T) {
 		require.ErrorIs(t, err, context.Canceled, name)
 		require.Equal(t, 3, pieces, "%s: nothing is done after the end", name)
 		require.Empty(t, a.Checks, name)
-		require.NoError(t, polled(t.Context(), run))
+		require.NoError(t, polled(t.Context(), nil, run))
 		require.NotEmpty(t, a.Checks, name)
 	}
 }

@@ -73,7 +73,8 @@ func (s *Service) substitute(ctx context.Context, r *SubstitutionsRequest) (*Sub
 	after := make([]*worstCase, len(r.Replacements))
 	candidates := make([]substitution.Candidate, len(r.Replacements))
 	failed := make([]error, len(r.Replacements))
-	err = inChunks(ctx, len(after), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, i, _ int) {
+	// the search of each takes its own turns
+	err = inChunks(ctx, nil, len(after), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, i, _ int) {
 		c := &r.Replacements[i]
 		q := p.request(&c.Design)
 		q.like, q.role = before, c.Role

@@ -4,7 +4,6 @@ import (
 	"context"
 	"fmt"
 	"math"
-	"runtime"
 
 	"railproof/calc/evaluate"
 	"railproof/calc/loop"
@@ -109,7 +108,7 @@ func (s *Service) Transients(ctx context.Context, r *TransientsRequest) (*Transi
 		a.Outcome = outcome(e, &r.Place.Point)
 		s.done.count(a.Outcome.Status)
 		a.Status, a.Detail = a.Outcome.Status.String(), a.Outcome.Detail
-		if err := s.follow(ctx, r, a, e, periods*period); err != nil {
+		if err := s.follow(ctx, s.turns(kind), r, a, e, periods*period); err != nil {
 			return err
 		}
 		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
@@ -143,7 +142,7 @@ func (r *TransientsRequest) span(period float64) (lead, duration float64) {
 }
 
 // follow runs the loop from the starting point.
-func (s *Service) follow(ctx context.Context, r *TransientsRequest, a *TransientsAnswer, e *evaluate.Evaluator, length float64) error {
+func (s *Service) follow(ctx context.Context, turns *cores, r *TransientsRequest, a *TransientsAnswer, e *evaluate.Evaluator, length float64) error {
 	var result evaluate.Result
 	e.Eval(&r.Place.Point, &result)
 	setup := transient.Setup{Duration: length, Band: a.Band}
@@ -164,12 +163,14 @@ func (s *Service) follow(ctx context.Context, r *TransientsRequest, a *Transient
 	chunks := int(math.Ceil(length / setup.Plant.Circuit.Period / periodChunk))
 	meter := MeterOf(ctx)
 	meter.Expect(chunks)
+	turns.take()
+	defer turns.give()
 	for run.Advance(periodChunk) {
 		if err := context.Cause(ctx); err != nil {
 			return err
 		}
 		meter.Add(1)
-		runtime.Gosched()
+		turns.next()
 	}
 	meter.Add(1)
 	end := run.Result()

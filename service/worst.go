@@ -85,7 +85,7 @@ func (s *Service) worst(ctx context.Context, r *worstRequest, workers int) (*wor
 		for i := range models {
 			models[i] = p.bound.Model()
 		}
-		drive := &driver{ctx: ctx, models: models, meter: new(Meter)}
+		drive := &driver{ctx: ctx, turns: s.cores, models: models, meter: new(Meter)}
 		var err error
 		if p.kind == electrical {
 			err = p.search(drive, r, w.passes)

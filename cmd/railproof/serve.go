@@ -8,6 +8,7 @@ import (
 	"net"
 	"os"
 	"os/signal"
+	"runtime"
 	"syscall"
 	"time"
 
@@ -109,6 +110,7 @@ func (c *serveConfig) serve(ctx context.Context, t terminal) int {
 func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, door *door, listener net.Listener) int {
 	defer listener.Close()
 	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, QueueLength: c.queue})
+	oneThreadMore(t.env)
 	board, err := c.storage.open(ctx, s, log)
 	if err != nil {
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
@@ -134,6 +136,15 @@ func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, doo
 	case <-ctx.Done():
 	}
 	return r.end()
+}
+
+// oneThreadMore lets the runtime use one thread more than there are cores. The workers
+// of long runs, as many as cores, then never hold all of them: one is left to see that
+// a request has arrived and to answer it, and the system shares the cores among them.
+func oneThreadMore(env func(string) string) {
+	if env("GOMAXPROCS") == "" {
+		runtime.GOMAXPROCS(runtime.GOMAXPROCS(0) + 1)
+	}
 }
 
 // rotating reads the keys again on SIGHUP.
