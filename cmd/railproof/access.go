@@ -9,8 +9,6 @@ import (
 	"net"
 	"os"
 	"strings"
-	"sync"
-	"time"
 
 	"railproof/api"
 	"railproof/service/access"
@@ -51,8 +49,22 @@ const defaultRate = 50 // [Hz] beyond this machine
 type door struct {
 	access api.Access
 	tls    *tls.Config // nil: none
+	pair   *keyPair    // of tls; nil: none
 	keys   *access.Keys
 	loud   string // what must be said loudly; "" is nothing
+}
+
+// reload reads the files again. Those that cannot be read change nothing.
+func (d *door) reload(log *slog.Logger) {
+	if d.pair != nil {
+		d.pair.reload()
+	}
+	if d.keys == nil {
+		return
+	}
+	if err := d.keys.Reload(); err != nil {
+		log.Error("the key file cannot be read; the keys stay as they were", "cause", err)
+	}
 }
 
 // check reads the files and refuses what would let in strangers.
@@ -118,6 +130,7 @@ func (c *accessConfig) checkTLS(d *door, log *slog.Logger) error {
 	if err := pair.read(); err != nil {
 		return err
 	}
+	d.pair = pair
 	d.tls = &tls.Config{MinVersion: tls.VersionTLS12, GetCertificate: pair.get, NextProtos: []string{"h2", "http/1.1"}}
 	if c.clients == "" {
 		return nil
@@ -156,44 +169,4 @@ func list(text string) []string {
 		}
 	}
 	return entries
-}
-
-// keyPair is the server's certificate, read again when its file changes.
-type keyPair struct {
-	certificate, key string
-	log              *slog.Logger
-	mutex            sync.Mutex
-	pair             *tls.Certificate
-	stamp, look      time.Time
-}
-
-func (p *keyPair) read() error {
-	pair, err := tls.LoadX509KeyPair(p.certificate, p.key)
-	if err != nil {
-		return fmt.Errorf("--tls-certificate: %w", err)
-	}
-	if info, err := os.Stat(p.certificate); err == nil {
-		p.stamp = info.ModTime()
-	}
-	p.pair, p.look = &pair, time.Now()
-	return nil
-}
-
-// certificateLook bounds how long a renewed certificate goes unseen.
-const certificateLook = 10 * time.Second
-
-func (p *keyPair) get(*tls.ClientHelloInfo) (*tls.Certificate, error) {
-	p.mutex.Lock()
-	defer p.mutex.Unlock()
-	if time.Since(p.look) > certificateLook {
-		p.look = time.Now()
-		if info, err := os.Stat(p.certificate); err != nil || !info.ModTime().Equal(p.stamp) {
-			if err := p.read(); err != nil {
-				p.log.Error("the certificate cannot be read; the old one stays", "cause", err)
-			} else {
-				p.log.Info("certificate read")
-			}
-		}
-	}
-	return p.pair, nil
 }

@@ -31,12 +31,12 @@ func newServer(c *serveConfig, handler http.Handler, door *door, log *slog.Logge
 
 // running is a server that serves.
 type running struct {
-	c        *serveConfig
-	log      *slog.Logger
-	handler  *api.API
-	board    *jobs.Board
-	server   *http.Server
-	traceEnd func(context.Context) error
+	c       *serveConfig
+	log     *slog.Logger
+	handler *api.API
+	board   *jobs.Board
+	server  *http.Server
+	traces  *tracing
 }
 
 // start serves the listener, and profiles where they were asked for. The channel
@@ -77,7 +77,7 @@ func (r *running) end() int {
 		r.log.Error("jobs did not end in order; they are taken up at the next start", "cause", err)
 		code = exitOurFault
 	}
-	if err := r.traceEnd(ctx); err != nil {
+	if err := r.traces.end(ctx); err != nil {
 		r.log.Warn("traces were not sent", "cause", err)
 	}
 	r.log.Info("ended")

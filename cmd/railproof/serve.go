@@ -111,7 +111,12 @@ func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, doo
 	defer listener.Close()
 	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, QueueLength: c.queue})
 	oneThreadMore(t.env)
-	board, err := c.storage.open(ctx, s, log)
+	traces, err := newTracing(ctx, t.env)
+	if err != nil {
+		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
+		return exitBadInput
+	}
+	board, err := c.storage.open(ctx, s, traces, log)
 	if err != nil {
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
 		return exitBadInput
@@ -119,12 +124,8 @@ func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, doo
 	handler := api.New(api.Options{
 		Service: s, Log: log, MaxBody: c.maxBody, Deadline: c.deadline, Jobs: board, Results: c.results, Access: door.access,
 	})
-	wrapped, traceEnd, err := traced(ctx, handler, t.env)
-	if err != nil {
-		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
-		return exitBadInput
-	}
-	r := &running{c, log, handler, board, newServer(c, wrapped, door, log), traceEnd}
+	r := &running{c, log, handler, board, newServer(c, traces.requests(handler), door, log), traces}
+	go tidy(ctx)
 	rotating(ctx, door, log)
 	failed := r.start(ctx, listener, door)
 	greet(t, listener.Addr().String(), door, &c.storage)
@@ -147,11 +148,8 @@ func oneThreadMore(env func(string) string) {
 	}
 }
 
-// rotating reads the keys again on SIGHUP.
+// rotating reads keys and certificate again on SIGHUP.
 func rotating(ctx context.Context, door *door, log *slog.Logger) {
-	if door.keys == nil {
-		return
-	}
 	hangUp := make(chan os.Signal, 1)
 	signal.Notify(hangUp, syscall.SIGHUP)
 	go func() {
@@ -161,9 +159,7 @@ func rotating(ctx context.Context, door *door, log *slog.Logger) {
 			case <-ctx.Done():
 				return
 			case <-hangUp:
-				if err := door.keys.Reload(); err != nil {
-					log.Error("the key file cannot be read; the keys stay as they were", "cause", err)
-				}
+				door.reload(log)
 			}
 		}
 	}()

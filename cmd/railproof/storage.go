@@ -75,10 +75,10 @@ func (c *storageConfig) String() string {
 	return c.directory
 }
 
-func (c *storageConfig) open(ctx context.Context, s *service.Service, log *slog.Logger) (*jobs.Board, error) {
+func (c *storageConfig) open(ctx context.Context, s *service.Service, traces *tracing, log *slog.Logger) (*jobs.Board, error) {
 	e := s.Engine()
 	return jobs.Open(ctx, jobs.Options{
-		Executor: exchange.New(openapi.Load(), s).Executor(),
+		Executor: traces.jobs(exchange.New(openapi.Load(), s).Executor()),
 		Engine:   e.Name + " " + e.Version + " " + e.ContractVersion + " " + e.Platform,
 		DSN:      c.dsn, Directory: c.directory, Workers: c.workers, Waiting: c.waiting,
 		Deadline: c.deadline, KeepFor: c.keepFor, KeepBytes: c.keepBytes, Log: log,
