@@ -35,13 +35,24 @@ type check struct {
 	collect bool
 	plans   *plans // of Go values among the tree; nil: there are none
 	failed  bool
-	at      []segment
+	at      []segment // the place that is being looked at, kept with collect on
 	faults  []Fault
 }
 
-func (c *check) enter(name string) { c.at = append(c.at, segment{name, -1}) }
-func (c *check) enterIndex(i int)  { c.at = append(c.at, segment{index: i}) }
-func (c *check) leave()            { c.at = c.at[:len(c.at)-1] }
+func (c *check) enter(name string) { c.step(segment{name, -1}) }
+func (c *check) enterIndex(i int)  { c.step(segment{index: i}) }
+
+func (c *check) step(s segment) {
+	if c.collect {
+		c.at = append(c.at, s)
+	}
+}
+
+func (c *check) leave() {
+	if c.collect {
+		c.at = c.at[:len(c.at)-1]
+	}
+}
 
 // pointer writes the place that is being looked at.
 func (c *check) pointer() string {

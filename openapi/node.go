@@ -176,7 +176,13 @@ func (c *check) missing(n *node, name string) bool {
 
 func (c *check) member(n *node, name string, v any) bool {
 	c.enter(name)
-	defer c.leave()
+	goOn := c.named(n, name, v)
+	c.leave()
+	return goOn
+}
+
+// named checks the value of a member by the schema of its name.
+func (c *check) named(n *node, name string, v any) bool {
 	if p := n.properties[name]; p != nil {
 		return c.tree(p, v)
 	}

@@ -79,7 +79,10 @@ func (c *check) structure(p *plan, v reflect.Value) bool {
 	members := 0
 	for i := range p.fields {
 		f := &p.fields[i]
-		fv := v.FieldByIndex(f.index)
+		fv := v.Field(f.index[0])
+		for _, below := range f.index[1:] {
+			fv = fv.Field(below)
+		}
 		if f.omitted(fv) {
 			if f.required && !c.missing(p.node, f.name) {
 				return false
@@ -100,6 +103,9 @@ func (c *check) structure(p *plan, v reflect.Value) bool {
 }
 
 func (f *field) omitted(v reflect.Value) bool {
+	if v.Kind() == reflect.Pointer {
+		return (f.omitZero || f.omitEmpty) && v.IsNil()
+	}
 	if f.omitZero && (v.IsZero() || f.ownZero && addressed(v, zeroerType).(interface{ IsZero() bool }).IsZero()) {
 		return true
 	}
@@ -117,7 +123,13 @@ func (f *field) omitted(v reflect.Value) bool {
 
 func (c *check) field(p *plan, f *field, v reflect.Value) bool {
 	c.enter(f.name)
-	defer c.leave()
+	goOn := c.planned(p, f, v)
+	c.leave()
+	return goOn
+}
+
+// planned checks the value of a field by the field's plan.
+func (c *check) planned(p *plan, f *field, v reflect.Value) bool {
 	if f.plan == nil {
 		return !p.node.closed || c.add("additionalProperties", "unknown field", p.node.nearest(f.name), "", "")
 	}

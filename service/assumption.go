@@ -2,7 +2,6 @@ package service
 
 import (
 	"math"
-	"strings"
 
 	"railproof/calc/evaluate"
 	"railproof/calc/parts"
@@ -59,15 +58,12 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	if len(d.Assumed) == 0 {
 		return list
 	}
-	places := registry{stage.Lookup{Fields: e.Stage().Fields()}}
+	places := registry{stage: e.Stage()}
 	var low, high evaluate.Result
 	for _, a := range d.Assumed {
-		place := places.of(a.Field)
-		if !places.bears(a.Field) {
-			continue
-		}
 		item := Assumption{Pointer: d.At + "/" + a.Field, Value: finite(a.Value), Low: finite(a.Low), High: finite(a.High), Why: a.Why}
-		if base != nil && place != nil && a.Low != a.High {
+		if base != nil && a.Low != a.High {
+			place := places.of(a.Field)
 			was := *place
 			*place = a.Low
 			e.Eval(base.point, &low)
@@ -81,23 +77,18 @@ func defaults(d *Design, e *evaluate.Evaluator, base *basis) []Assumption {
 	return list
 }
 
-// registry finds the numbers of a stage.
-type registry struct{ stage.Lookup }
-
-// of returns the number with the id; nil if the stage has none.
-func (r *registry) of(id string) *float64 {
-	i := r.Find(id)
-	if i < 0 {
-		return nil
-	}
-	return r.Fields[i].Value
+// registry finds the numbers of a stage; it lists them when it is first asked.
+type registry struct {
+	stage *stage.Stage
+	stage.Lookup
 }
 
-// bears reports whether the answer rests on a default: what a life is computed
-// from does not count where the data sheet states none.
-func (r *registry) bears(field string) bool {
-	at, _, life := strings.Cut(field, "/life/")
-	return !life || parts.Known(*r.of(at + "/life/rated_s"))
+// of returns the number with the id, which the stage has.
+func (r *registry) of(id string) *float64 {
+	if r.Fields == nil {
+		r.Fields = r.stage.Fields()
+	}
+	return r.Fields[r.Find(id)].Value
 }
 
 // effect picks the quantity that moves most between the results.

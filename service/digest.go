@@ -29,39 +29,56 @@ func ResultID(operation string, e Engine, request any) string {
 // float64, string, bool and nil. Strings are valid UTF-8 and numbers finite, as
 // every parsed document has them; anything else is the caller's bug.
 func AppendCanonical(b []byte, v any) []byte {
-	switch v := v.(type) {
-	case nil:
-		return append(b, "null"...)
-	case bool:
-		return strconv.AppendBool(b, v)
-	case float64:
-		return appendNumber(b, v)
-	case string:
-		return appendString(b, v)
-	case []any:
-		b = append(b, '[')
-		for i, entry := range v {
-			if i > 0 {
-				b = append(b, ',')
-			}
-			b = AppendCanonical(b, entry)
-		}
-		return append(b, ']')
-	case map[string]any:
-		return appendObject(b, v)
-	}
-	panic("service: no JSON value")
+	c := canonical{b, make([]member, 0, 64)}
+	c.value(v)
+	return c.text
 }
 
-// appendObject writes the members in the order of their names' UTF-16 code units.
-func appendObject(b []byte, members map[string]any) []byte {
-	var room [32]member
-	list := room[:0]
-	plain := true
+// canonical writes the RFC 8785 form.
+type canonical struct {
+	text []byte
+	open []member // of all objects that are being written
+}
+
+type member struct {
+	name  string
+	value any
+}
+
+func (c *canonical) value(v any) {
+	switch v := v.(type) {
+	case nil:
+		c.text = append(c.text, "null"...)
+	case bool:
+		c.text = strconv.AppendBool(c.text, v)
+	case float64:
+		c.text = appendNumber(c.text, v)
+	case string:
+		c.text = appendString(c.text, v)
+	case []any:
+		c.text = append(c.text, '[')
+		for i, entry := range v {
+			if i > 0 {
+				c.text = append(c.text, ',')
+			}
+			c.value(entry)
+		}
+		c.text = append(c.text, ']')
+	case map[string]any:
+		c.object(v)
+	default:
+		panic("service: no JSON value")
+	}
+}
+
+// object writes the members in the order of their names' UTF-16 code units.
+func (c *canonical) object(members map[string]any) {
+	from, plain := len(c.open), true
 	for name, value := range members {
-		list = append(list, member{name, value})
+		c.open = append(c.open, member{name, value})
 		plain = plain && isASCII(name)
 	}
+	list := c.open[from:]
 	if plain { // bytes and code units sort alike
 		slices.SortFunc(list, func(x, y member) int { return strings.Compare(x.name, y.name) })
 	} else {
@@ -69,20 +86,16 @@ func appendObject(b []byte, members map[string]any) []byte {
 			return slices.Compare(utf16.Encode([]rune(x.name)), utf16.Encode([]rune(y.name)))
 		})
 	}
-	b = append(b, '{')
+	c.text = append(c.text, '{')
 	for i := range list {
 		if i > 0 {
-			b = append(b, ',')
+			c.text = append(c.text, ',')
 		}
-		b = append(appendString(b, list[i].name), ':')
-		b = AppendCanonical(b, list[i].value)
+		c.text = append(appendString(c.text, list[i].name), ':')
+		c.value(list[i].value)
 	}
-	return append(b, '}')
-}
-
-type member struct {
-	name  string
-	value any
+	c.text = append(c.text, '}')
+	c.open = c.open[:from]
 }
 
 func isASCII(s string) bool {

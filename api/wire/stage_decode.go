@@ -59,15 +59,18 @@ func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[
 			*f.Value = **s.plain
 		case s.whole != nil:
 			*f.Value = float64(**s.whole)
+		case s.number != nil && (*s.number).Spread == nil:
+			*f.Value = (*s.number).Value
 		case s.number != nil:
-			d.number(f, *s.number, root+"/"+f.ID, members, faults)
+			d.spread(f, *s.number, root+"/"+f.ID, members, faults)
 		default:
 			*f.Value = parts.Unknown
 		}
 	}
 }
 
-func (d *Decoded) number(f *stage.Field, n *Number, at string, members groups, faults *[]Fault) {
+// spread takes the typical value of a spread and collects it as a variable.
+func (d *Decoded) spread(f *stage.Field, n *Number, at string, members groups, faults *[]Fault) {
 	*f.Value = n.typical()
 	if wrong := n.faults(at); wrong != nil {
 		*faults = append(*faults, wrong...)

@@ -183,7 +183,10 @@ func writtenFields(t reflect.Type, index []int) []writtenField {
 }
 
 func (f *writtenField) isZero(v reflect.Value) bool {
-	if f.asksItself && v.Kind() != reflect.Pointer {
+	switch {
+	case v.Kind() == reflect.Pointer:
+		return v.IsNil()
+	case f.asksItself:
 		return v.Interface().(interface{ IsZero() bool }).IsZero()
 	}
 	return v.IsZero()

@@ -11,7 +11,7 @@ type Assumed struct {
 }
 
 // ApplyDefaults puts the documented default in the place of every Unknown number
-// that has one, and returns what it assumed, in the order of Fields.
+// that has one and needs it, and returns what it assumed, in the order of Fields.
 func (s *Stage) ApplyDefaults() []Assumed { return applyDefaults(s.Fields()) }
 
 // Complete applies the defaults and checks, as ApplyDefaults and Check do, over
@@ -25,7 +25,7 @@ func applyDefaults(fields []Field) []Assumed {
 	var a []Assumed
 	for i := range fields {
 		f := &fields[i]
-		if f.Default != nil && !parts.Known(*f.Value) {
+		if f.Default != nil && !parts.Known(*f.Value) && (f.Beside == nil || parts.Known(*f.Beside)) {
 			*f.Value = f.Default.Value
 			a = append(a, Assumed{f.ID, f.Default.Value, f.Default.Low, f.Default.High, f.Default.Why})
 		}

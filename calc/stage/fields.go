@@ -18,6 +18,7 @@ type Field struct {
 	Least    float64  // [any] smallest value with a meaning
 	Greatest float64  // [any] largest
 	Default  *Default // nil: required, or a rating that stays Unknown
+	Beside   *float64 // the default says something only beside this number; nil: by itself
 	Required bool
 }
 
@@ -109,6 +110,13 @@ func plain(id string, v *float64, least, greatest float64, d *Default) Field {
 	return Field{ID: id, Value: v, Least: least, Greatest: greatest, Default: d}
 }
 
+// beside is a field whose default says something only beside a number that is
+// known: what a life is computed from, where the data sheet states one.
+func beside(known *float64, f Field) Field {
+	f.Beside = known
+	return f
+}
+
 func mosfetFields(f []Field, at string, m *parts.MOSFET) []Field {
 	return append(f,
 		required(at+"on_resistance_ohm", &m.OnResistance, 1e-6, 1e3),
@@ -174,8 +182,8 @@ func capacitorFields(f []Field, at string, c *parts.Capacitor) []Field {
 		plain(at+"rating/ripple_current_a", &c.Rating.RippleCurrent, 1e-4, 1e4, nil),
 		plain(at+"rating/temperature_degc", &c.Rating.TemperatureDegC, 0, 500, nil),
 		plain(at+"life/rated_s", &c.Life.Rated, 1, 1e12, nil),
-		plain(at+"life/rated_rise_k", &c.Life.RatedRise, 0.1, 39, &Default{5, 3, 10, "core rise at rated ripple not given: the usual 5 K assumed"}),
-		plain(at+"life/frequency_factor_ratio", &c.Life.FrequencyFactor, 0.1, 10, &Default{1, 0.7, 1.4, "ripple frequency factor not given"}),
+		beside(&c.Life.Rated, plain(at+"life/rated_rise_k", &c.Life.RatedRise, 0.1, 39, &Default{5, 3, 10, "core rise at rated ripple not given: the usual 5 K assumed"})),
+		beside(&c.Life.Rated, plain(at+"life/frequency_factor_ratio", &c.Life.FrequencyFactor, 0.1, 10, &Default{1, 0.7, 1.4, "ripple frequency factor not given"})),
 		optional(at+"thermal/junction_to_ambient_k_per_w", &c.Thermal.JunctionToAmbient, 0, 1e4, Default{40, 0, 100, "core-to-ambient resistance not given"}))
 }
 
