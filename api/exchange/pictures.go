@@ -74,16 +74,17 @@ func (v View) quantity(otherwise string) string {
 	return v.Quantity
 }
 
-// drawnPoints are the instants of a waveform that only its picture asks for.
-const drawnPoints = 600.0
+// drawnPoints are the instants of waveforms that only a picture asks for: enough
+// for the least and the greatest of every curve in each of its columns.
+var drawnPoints = map[string]float64{"steadyState": 600, "transients": 3000}
 
 // Draw asks for a picture of the answer. It is more, or less, than the result that
 // the request names, so the answer is not to be kept.
 func (r *Request) Draw(v View) {
 	r.view = v
-	if tree, is := r.tree.(map[string]any); is && r.Operation == "steadyState" && tree["waveform_points"] == nil {
+	if tree, is := r.tree.(map[string]any); is && drawnPoints[r.Operation] > 0 && tree["waveform_points"] == nil {
 		tree = maps.Clone(tree)
-		tree["waveform_points"] = drawnPoints
+		tree["waveform_points"] = drawnPoints[r.Operation]
 		r.tree = tree
 	}
 }

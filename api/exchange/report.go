@@ -109,7 +109,7 @@ func (b *binder) singles() (err error) {
 		}
 	}
 	if b.wants("operating-figures") {
-		if r.Steady, err = part[*wire.SteadyStateAnswer](b, "steadyState", map[string]any{"stage": stage, "point": typical, "waveform_points": drawnPoints}); err != nil {
+		if r.Steady, err = part[*wire.SteadyStateAnswer](b, "steadyState", map[string]any{"stage": stage, "point": typical, "waveform_points": drawnPoints["steadyState"]}); err != nil {
 			return err
 		}
 	}
@@ -165,13 +165,43 @@ func (b *binder) dynamics(typical map[string]any, points []any) (err error) {
 		if step.Slew != nil {
 			change["slew_a_per_s"] = *step.Slew
 		}
-		a, err := part[*wire.TransientsAnswer](b, "transients", map[string]any{"stage": stage, "point": from, "event": map[string]any{"load_step": change}})
+		tree := map[string]any{"stage": stage, "point": from, "event": map[string]any{"load_step": change}, "waveform_points": drawnPoints["transients"]}
+		if shown := b.shown(step); shown > 0 {
+			tree["duration_s"] = shown
+		}
+		a, err := part[*wire.TransientsAnswer](b, "transients", tree)
 		if err != nil {
 			return err
 		}
 		r.Transients = append(r.Transients, a)
 	}
 	return nil
+}
+
+// shownRecoveries is how much of the time after a load step is shown, over the time
+// in which the output is to recover.
+const shownRecoveries = 2.5 // [1]
+
+// shown returns the time after a load step that the report follows, rounded; 0: the
+// default, where no time of recovery is asked for or it is no time of a loop.
+func (b *binder) shown(step *wire.LoadStep) float64 {
+	if step.Recovery == nil {
+		return 0
+	}
+	periods := shownRecoveries * *step.Recovery / b.setting.Period
+	if !(periods >= 20 && periods <= 2000) {
+		return 0
+	}
+	return short(shownRecoveries * *step.Recovery)
+}
+
+// short returns the nearest number with three digits.
+func short(v float64) float64 {
+	rounded, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 3, 64), 64)
+	if err != nil {
+		panic("exchange: a number that cannot be read back")
+	}
+	return rounded
 }
 
 // shared takes members of the report's request over.
@@ -233,12 +263,7 @@ func (b *binder) grid(heavy map[string]any) map[string]any {
 	least, most := max(c.Load.Current.Min, c.Load.Current.Max/100), c.Load.Current.Max
 	var loads []any
 	for i := range gridLoads {
-		v := least * math.Pow(most/least, float64(i)/(gridLoads-1))
-		short, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 3, 64), 64)
-		if err != nil {
-			panic("exchange: a number that cannot be read back")
-		}
-		loads = append(loads, short)
+		loads = append(loads, short(least*math.Pow(most/least, float64(i)/(gridLoads-1))))
 	}
 	inputs := []any{c.Input.Min}
 	for _, v := range []float64{*c.Input.Typ, c.Input.Max} {

@@ -3,21 +3,21 @@ package render
 import (
 	"cmp"
 	"encoding/json"
+	"math"
 	"slices"
+	"strings"
 
 	"railproof/api/wire"
 )
 
-// cautions lists what can hurt, of all answers, each once.
+// cautions lists what can hurt, of all answers: each once, with every place of the
+// stage that it holds for and the severest of the points that show it there.
 func (r *Report) cautions() []part {
 	var items []string
+	for _, h := range r.hazards() {
+		items = append(items, h.words())
+	}
 	for _, b := range r.bases() {
-		for i := range b.Cautions {
-			c := &b.Cautions[i]
-			if s := c.Detail + figures(c) + place(c.Pointer); !slices.Contains(items, s) {
-				items = append(items, s)
-			}
-		}
 		for _, w := range b.Warnings {
 			if s := w.Detail + place(w.Pointer); !slices.Contains(items, s) {
 				items = append(items, s)
@@ -28,6 +28,73 @@ func (r *Report) cautions() []part {
 		return nil
 	}
 	return []part{{Items: items}}
+}
+
+// hazard is a caution with the places that it holds for.
+type hazard struct {
+	detail string
+	places []*wire.Caution
+}
+
+func (r *Report) hazards() (list []*hazard) {
+	for _, b := range r.bases() {
+		for i := range b.Cautions {
+			c := &b.Cautions[i]
+			k := slices.IndexFunc(list, func(h *hazard) bool { return h.detail == c.Detail })
+			if k < 0 {
+				k, list = len(list), append(list, &hazard{detail: c.Detail})
+			}
+			list[k].add(c)
+		}
+	}
+	return list
+}
+
+// add takes a caution in, unless a severer one is known for the same place. Points
+// and conditions are one place: where the stage works.
+func (h *hazard) add(c *wire.Caution) {
+	ofStage := func(c *wire.Caution) string {
+		if strings.HasPrefix(c.Pointer, "/stage/") {
+			return c.Pointer
+		}
+		return ""
+	}
+	for i, known := range h.places {
+		if ofStage(known) == ofStage(c) {
+			if math.Abs(orZero(c.Value)) > math.Abs(orZero(known.Value)) {
+				h.places[i] = c
+			}
+			return
+		}
+	}
+	h.places = append(h.places, c)
+}
+
+func (h *hazard) words() string {
+	var parts []string
+	common := true
+	for _, c := range h.places {
+		common = common && orZero(c.Limit) == orZero(h.places[0].Limit)
+	}
+	for _, c := range h.places {
+		s := ""
+		if c.Value != nil {
+			s = Figure3(*c.Value, c.Unit)
+		}
+		if c.Limit != nil && !common {
+			s += ", limit " + Figure3(*c.Limit, c.Unit)
+		}
+		parts = append(parts, strings.TrimSpace(s+place(c.Pointer)))
+	}
+	text := h.detail
+	if said := strings.Join(parts, "; "); said != "" {
+		text += " Here: " + said
+		if c := h.places[0]; c.Limit != nil && common {
+			text += "; limit " + Figure3(*c.Limit, c.Unit)
+		}
+		text += "."
+	}
+	return text
 }
 
 // assumptions lists what was not given, by the size of its effect.

@@ -21,6 +21,7 @@ type Setting struct {
 	Conditions *Conditions
 	HasLoop    bool      // modulator, compensator and feedback
 	LoadStep   *LoadStep // of the requirement; nil: none
+	Period     float64   // [s] of switching
 }
 
 // Decode checks the request as a whole. The error is an *InvalidError.
@@ -31,6 +32,7 @@ func (w *ReportsRequest) Decode() (*Setting, error) {
 		return nil, err
 	}
 	s := &Setting{Conditions: EncodeConditions(&p.Conditions), HasLoop: w.Stage.Modulator != nil && w.Stage.Compensator != nil && w.Stage.Feedback != nil}
+	s.Period = 1 / p.Design.Stage.SwitchingFrequency
 	if t := w.Requirement.Targets; t != nil {
 		s.LoadStep = t.LoadStep
 	}

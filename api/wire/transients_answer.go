@@ -120,20 +120,20 @@ func encodeRows(a *service.TransientsAnswer) *TransientWaveforms {
 	duty := 0.0
 	w := &TransientWaveforms{
 		Time:   roundedTo(column(func(r *transient.Row) float64 { return r.At - a.Lead }), timeDigits),
-		Output: rounded(column(func(r *transient.Row) float64 { return r.Output })),
-		Load:   rounded(column(func(r *transient.Row) float64 { return r.Load + a.Resistive*r.Output })),
-		Input:  rounded(column(func(r *transient.Row) float64 { return r.Input })),
-		Duty: rounded(column(func(r *transient.Row) float64 {
+		Output: waveform(column(func(r *transient.Row) float64 { return r.Output })),
+		Load:   waveform(column(func(r *transient.Row) float64 { return r.Load + a.Resistive*r.Output })),
+		Input:  waveform(column(func(r *transient.Row) float64 { return r.Input })),
+		Duty: waveform(column(func(r *transient.Row) float64 {
 			if !math.IsNaN(r.Duty) {
 				duty = r.Duty
 			}
 			return duty
 		})),
-		Control:   rounded(column(func(r *transient.Row) float64 { return r.Control })),
-		Reference: rounded(column(func(r *transient.Row) float64 { return r.Reference })),
+		Control:   waveform(column(func(r *transient.Row) float64 { return r.Control })),
+		Reference: waveform(column(func(r *transient.Row) float64 { return r.Reference })),
 	}
 	for i := range a.Phases {
-		w.Inductor = append(w.Inductor, rounded(column(func(r *transient.Row) float64 { return r.Inductor[i] })))
+		w.Inductor = append(w.Inductor, waveform(column(func(r *transient.Row) float64 { return r.Inductor[i] })))
 	}
 	return w
 }

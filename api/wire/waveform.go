@@ -1,6 +1,7 @@
 package wire
 
 import (
+	"math"
 	"strconv"
 
 	"railproof/calc/switched"
@@ -19,18 +20,18 @@ type Waveforms struct {
 	InputCapacitor  [][]float64 `json:"input_capacitor_a"`
 }
 
-// encodeWaveform shows a waveform with six significant digits. bridge is the mean
+// encodeWaveform shows a waveform with few significant digits. bridge is the mean
 // voltage at the input capacitors [V].
 func encodeWaveform(w *switched.Waveform, bridge float64) *Waveforms {
 	if w == nil {
 		return nil
 	}
 	out := &Waveforms{
-		Time: rounded(w.Time), Inductor: roundedAll(w.Inductor), SwitchNode: roundedAll(w.SwitchNode), Output: rounded(w.Output),
-		Input: rounded(w.Input), OutputCapacitor: roundedAll(w.BankCurrent), InputCapacitor: roundedAll(w.InputCurrent),
+		Time: rounded(w.Time), Inductor: waveforms(w.Inductor), SwitchNode: waveforms(w.SwitchNode), Output: waveform(w.Output),
+		Input: waveform(w.Input), OutputCapacitor: waveforms(w.BankCurrent), InputCapacitor: waveforms(w.InputCurrent),
 	}
 	if w.InputNode != nil {
-		out.InputVoltage = rounded(raised(w.Time, w.InputNode, bridge))
+		out.InputVoltage = waveform(raised(w.Time, w.InputNode, bridge))
 	}
 	return out
 }
@@ -49,21 +50,40 @@ func raised(time, curve []float64, mean float64) []float64 {
 	return up
 }
 
-func roundedAll(curves [][]float64) [][]float64 {
+func waveforms(curves [][]float64) [][]float64 {
 	out := make([][]float64, len(curves))
 	for i, c := range curves {
-		out[i] = rounded(c)
+		out[i] = waveform(c)
 	}
 	return out
 }
 
-// waveformDigits is what a picture or a comparison needs, at two thirds of the
+// Digits of a curve: what a picture or a comparison needs, at two thirds of the
 // bytes of full precision.
-const waveformDigits = 6
+const (
+	curveDigits = 6  // [1] of the values
+	swingDigits = 4  // [1] of the difference between the least and the greatest
+	mostDigits  = 12 // [1] beyond them there is rounding only
+)
 
 // rounded returns the numbers nearest to the values that have six significant
 // digits.
-func rounded(values []float64) []float64 { return roundedTo(values, waveformDigits) }
+func rounded(values []float64) []float64 { return roundedTo(values, curveDigits) }
+
+// waveform returns the values of a waveform with six significant digits, or as many
+// more as its swing needs: ripple of millivolts on volts is a curve, not a
+// staircase.
+func waveform(values []float64) []float64 {
+	size, least, most := 0.0, math.Inf(1), math.Inf(-1)
+	for _, v := range values {
+		size, least, most = max(size, math.Abs(v)), min(least, v), max(most, v)
+	}
+	digits := curveDigits
+	if most > least {
+		digits = min(mostDigits, max(digits, swingDigits+int(math.Ceil(math.Log10(size/(most-least))))))
+	}
+	return roundedTo(values, digits)
+}
 
 // roundedTo returns the numbers nearest to the values that have so many significant
 // digits.

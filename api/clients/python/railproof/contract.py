@@ -866,7 +866,7 @@ class LossItem(TypedDict):
 
 
 class Waveforms(TypedDict):
-    """Columnar, six significant digits. Where a curve jumps, the same instant stands twice: the value before and after."""
+    """Columnar; six significant digits, more where a curve swings by little, so that its swing has four. Where a curve jumps, the same instant stands twice: the value before and after."""
 
     time_s: List[float]  # Instants within the period, corners included.
     inductor_a: List[List[float]]  # Current of each phase.

@@ -2402,7 +2402,7 @@ export interface components {
              */
             high_w: number;
         };
-        /** @description Columnar, six significant digits. Where a curve jumps, the same instant stands twice: the value before and after. */
+        /** @description Columnar; six significant digits, more where a curve swings by little, so that its swing has four. Where a curve jumps, the same instant stands twice: the value before and after. */
         Waveforms: {
             /** @description Instants within the period, corners included. */
             time_s: number[];

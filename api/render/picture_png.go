@@ -3,8 +3,6 @@ package render
 import (
 	"bytes"
 	"encoding/binary"
-	"encoding/xml"
-	"fmt"
 	"image"
 	"image/color"
 	"image/png"
@@ -12,43 +10,7 @@ import (
 
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
-	"gonum.org/v1/plot/vg/vgsvg"
 )
-
-// SVG writes the picture, width in pixels. The text stays text: it names a face
-// and those that take its place where it is missing.
-func (p *Picture) SVG(width int) []byte {
-	width = bound(width)
-	w, h := p.size(width)
-	canvas := vgsvg.New(w, h)
-	whole := draw.New(canvas)
-	fill(whole, paper, whole.Rectangle)
-	p.draw(whole)
-	var raw, out bytes.Buffer
-	// a buffer takes every write; an error cannot come up
-	_, _ = canvas.WriteTo(&raw)
-	body := raw.Bytes()
-	_, body, _ = bytes.Cut(body, []byte("<svg"))
-	_, body, _ = bytes.Cut(body, []byte(">"))
-	fmt.Fprintf(&out, `<svg xmlns="http://www.w3.org/2000/svg" role="img" width="%d" height="%.0f" viewBox="0 0 %.6g %.6g" style="max-width:100%%;height:auto"><title>`, width, h/px(1), w, h)
-	escapeXML(&out, p.title)
-	out.WriteString("</title><desc>")
-	escapeXML(&out, describe(p.subtitle, p.description, p.note))
-	out.WriteString("</desc>")
-	out.Write(shortened(body))
-	return out.Bytes()
-}
-
-func escapeXML(to *bytes.Buffer, s string) { _ = xml.EscapeText(to, []byte(plain(s))) }
-
-// shortened names the faces as pages do, and leaves out what is the default.
-func shortened(svg []byte) []byte {
-	svg = bytes.ReplaceAll(svg, []byte("font-family:Liberation Sans;font-variant:none;"), []byte("font-family:'Liberation Sans',Arimo,Arial,Helvetica,sans-serif;"))
-	svg = bytes.ReplaceAll(svg, []byte("font-family:Liberation Sans;font-variant:normal;"), []byte("font-family:'Liberation Sans',Arimo,Arial,Helvetica,sans-serif;"))
-	svg = bytes.ReplaceAll(svg, []byte("font-weight:normal;font-style:normal;"), nil)
-	svg = bytes.ReplaceAll(svg, []byte("font-style:normal;"), nil)
-	return bytes.ReplaceAll(svg, []byte("\n\tstyle"), []byte(" style"))
-}
 
 // PNG writes the picture with two dots for a pixel, as fine screens and paper
 // want it.
