@@ -4,14 +4,12 @@ package e2e
 
 import (
 	"bufio"
-	"context"
 	"errors"
 	"fmt"
 	"io"
 	"net"
 	"net/http"
 	"os"
-	"strconv"
 	"strings"
 	"sync"
 	"testing"
@@ -133,81 +131,4 @@ func TestHalfClosed(t *testing.T) {
 	_ = response.Body.Close()
 	status, _ := get(t, s.base+"/healthz")
 	require.Equal(t, 200, status)
-}
-
-// TestSoak sends requests of many kinds for a while and looks whether memory or
-// goroutines grow. RAILPROOF_SOAK sets how long, such as 10m.
-func TestSoak(t *testing.T) {
-	long := 6 * time.Second
-	if given := os.Getenv("RAILPROOF_SOAK"); given != "" {
-		var err error
-		long, err = time.ParseDuration(given)
-		require.NoError(t, err)
-	}
-	s := start(t, []string{"--address", "127.0.0.1:0", "--results-bytes", "1000000", "--log-level", "warn"})
-	bodies := map[string]string{"/v1/losses": example(t, "buoy-5v0/losses.json"), "/v1/steady-state": example(t, "mast-12v0/steady-state.json"), "/v1/sizing": example(t, "buoy-3v3/sizing.json")}
-	count := 0
-	round := func() {
-		for path, body := range bodies {
-			count++
-			changed := strings.Replace(body, `"name": "`, fmt.Sprintf(`"name": "n%d-`, count), 1)
-			status, answer := post(t, s.base+path, changed)
-			require.Equal(t, 200, status, answer)
-		}
-		status, _ := post(t, s.base+"/v1/losses", `{"stage": 1}`)
-		require.Equal(t, 422, status)
-		ctx, cancel := context.WithTimeout(t.Context(), 2*time.Millisecond)
-		request, err := http.NewRequestWithContext(ctx, http.MethodPost, s.base+"/v1/losses", strings.NewReader(bodies["/v1/losses"]))
-		require.NoError(t, err)
-		if response, err := http.DefaultClient.Do(request); err == nil { // most are gone before the answer
-			_ = response.Body.Close()
-		}
-		cancel()
-	}
-	for range 20 {
-		round()
-	}
-	before := memory(t, s)
-	for until := time.Now().Add(long); time.Now().Before(until); {
-		round()
-	}
-	after := memory(t, s)
-	t.Logf("%d requests: heap %.1f -> %.1f MiB, goroutines %.0f -> %.0f, resident %d MiB", count, before.heap, after.heap, before.goroutines, after.goroutines, resident(t, s))
-	require.Less(t, after.goroutines, before.goroutines+20)
-	require.Less(t, after.heap, before.heap+32)
-}
-
-type usage struct{ heap, goroutines float64 }
-
-func memory(t *testing.T, s *served) (u usage) {
-	t.Helper()
-	_, text := get(t, s.base+"/metrics")
-	for line := range strings.Lines(text) {
-		name, value, _ := strings.Cut(strings.TrimSpace(line), " ")
-		number, _ := strconv.ParseFloat(value, 64)
-		switch name {
-		case "go_memstats_heap_inuse_bytes":
-			u.heap = number / (1 << 20)
-		case "go_goroutines":
-			u.goroutines = number
-		}
-	}
-	require.Positive(t, u.goroutines)
-	return u
-}
-
-// resident is the server's memory in MiB.
-func resident(t *testing.T, s *served) int {
-	t.Helper()
-	text, err := os.ReadFile(fmt.Sprintf("/proc/%d/status", s.process.Process.Pid))
-	require.NoError(t, err)
-	for line := range strings.Lines(string(text)) {
-		if fields := strings.Fields(line); len(fields) > 1 && fields[0] == "VmRSS:" {
-			kib, err := strconv.Atoi(fields[1])
-			require.NoError(t, err)
-			return kib >> 10
-		}
-	}
-	t.Fatal("no memory in the status")
-	return 0
 }

@@ -15,8 +15,6 @@ import (
 	"time"
 
 	"github.com/stretchr/testify/require"
-
-	"railproof/tests/cluster"
 )
 
 // rail is a corner run of an example rail with so many samples and another seed.
@@ -196,45 +194,4 @@ func TestDiskFull(t *testing.T) {
 	}
 	_, again := ask(t, http.MethodGet, s.base+"/v1/jobs/"+first, "")
 	require.Equal(t, want, result(t, s.base, again))
-}
-
-func TestTwoReplicasOneKilled(t *testing.T) {
-	rails, samples := 6, 5_000
-	if os.Getenv("RAILPROOF_NIGHT") != "" {
-		rails, samples = 40, 100_000
-	}
-	c := cluster.Start(t)
-	replica := func() *served {
-		return start(t, []string{"--address", "127.0.0.1:0"}, "RAILPROOF_EPHEMERAL=", "RAILPROOF_POSTGRES="+c.DSN)
-	}
-	a, b := replica(), replica()
-	began := time.Now()
-	names := []string{"buoy-5v0", "buoy-3v3", "mast-12v0"}
-	bodies, ids := map[string]string{}, []string{}
-	for i := range rails {
-		body := rail(t, names[i%len(names)], samples, i)
-		id := begin(t, []string{a.base, b.base}[i%2], "corners", body)
-		bodies[id] = body
-		ids = append(ids, id)
-	}
-	split := rail(t, "buoy-3v3", 200_000, 99) // large enough to be split
-	id := begin(t, a.base, "corners", split)
-	bodies[id] = split
-	ids = append(ids, id)
-	ended(t, ids[len(ids)/2-1], 20*time.Minute, b.base)
-	require.NoError(t, a.process.Process.Signal(syscall.SIGKILL))
-	_ = a.process.Wait()
-	t.Logf("one replica killed after %v", time.Since(began).Round(time.Millisecond))
-	for _, id := range ids {
-		job := ended(t, id, 20*time.Minute, b.base)
-		body := result(t, b.base, job)
-		if id == ids[0] || id == ids[len(ids)-2] || id == ids[len(ids)-1] {
-			require.Equal(t, railproof(t, bodies[id], "corners", "-").out, body)
-		}
-		require.Contains(t, body, `"verdict":`)
-	}
-	t.Logf("%d rails of %d samples and one of 200,000, all done after %v", rails, samples, time.Since(began).Round(time.Millisecond))
-	_, list := ask(t, http.MethodGet, b.base+"/v1/jobs?limit=200", "")
-	require.Len(t, list["jobs"], len(ids), "nothing lost, nothing twice")
-	require.Contains(t, b.log.String(), "jobs whose process stopped beating are run again", "the log tells the story")
 }

@@ -7,6 +7,7 @@ import (
 	"net/http"
 	"os/exec"
 	"strings"
+	"sync"
 	"syscall"
 	"testing"
 	"time"
@@ -19,13 +20,31 @@ type served struct {
 	base    string
 	request string // the command line that it offers
 	process *exec.Cmd
-	log     *bytes.Buffer
+	log     *journal
+}
+
+// journal is what a running server has logged so far.
+type journal struct {
+	mutex sync.Mutex
+	text  bytes.Buffer
+}
+
+func (j *journal) Write(p []byte) (int, error) {
+	j.mutex.Lock()
+	defer j.mutex.Unlock()
+	return j.text.Write(p)
+}
+
+func (j *journal) String() string {
+	j.mutex.Lock()
+	defer j.mutex.Unlock()
+	return j.text.String()
 }
 
 // start runs the server on a free port and reads its greeting.
 func start(t *testing.T, args []string, environment ...string) *served {
 	t.Helper()
-	s := &served{log: new(bytes.Buffer)}
+	s := &served{log: new(journal)}
 	s.process = exec.CommandContext(t.Context(), program, append([]string{"serve"}, args...)...)
 	s.process.Dir = root
 	s.process.Env = append(append(s.process.Environ(), "RAILPROOF_EPHEMERAL=true"), environment...)
