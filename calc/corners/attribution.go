@@ -148,6 +148,7 @@ func (a *Attribution) Tasks() int { return min(waveTasks, a.base/a.rows-a.wave*w
 
 // rowWorker is one worker's storage.
 type rowWorker struct {
+	near      Model
 	cursor    *sampling.Cursor
 	u, za, zb []float64
 	fa, fb    []float64
@@ -157,7 +158,7 @@ type rowWorker struct {
 func (a *Attribution) worker(w int) *rowWorker {
 	if a.workers[w] == nil {
 		k, q, d := a.place.Len(), a.p.Quantities, len(a.p.Coordinates)
-		a.workers[w] = &rowWorker{a.sampler.Cursor(), make([]float64, 2*k), make([]float64, d), make([]float64, d), make([]float64, q), make([]float64, q), make([]float64, k*q)}
+		a.workers[w] = &rowWorker{nil, a.sampler.Cursor(), make([]float64, 2*k), make([]float64, d), make([]float64, d), make([]float64, q), make([]float64, q), make([]float64, k*q)}
 	}
 	return a.workers[w]
 }
@@ -165,10 +166,13 @@ func (a *Attribution) worker(w int) *rowWorker {
 // Run implements Work.
 func (a *Attribution) Run(task, worker int, m Model) {
 	w, s := a.worker(worker), &a.tasks[task]
+	if w.near == nil {
+		w.near = modelsNear(m, [][]float64{a.at})[0]
+	}
 	s.clear()
 	first := (a.wave*waveTasks + task) * a.rows
 	for row := first; row < first+a.rows; row++ {
-		w.evaluate(a, row, m)
+		w.evaluate(a, row, w.near)
 		w.addTo(a, s)
 	}
 }

@@ -88,8 +88,13 @@ type stageModel struct {
 // Eval implements Model.
 func (m *stageModel) Eval(z, out []float64) (evaluate.Status, switched.Mode) {
 	m.place(z)
+	m.evaluator.Eval(&m.point, &m.result)
+	return m.take(out)
+}
+
+// take sets out to the quantities of the result.
+func (m *stageModel) take(out []float64) (evaluate.Status, switched.Mode) {
 	r := &m.result
-	m.evaluator.Eval(&m.point, r)
 	if !r.Status.Figures() {
 		for i := range out {
 			out[i] = math.NaN()

@@ -21,6 +21,7 @@ type tally struct {
 	worst    [][]WorstSample // per target
 	most     int             // worst samples kept
 
+	near   []Model // per corner
 	cursor *sampling.Cursor
 	u, z   []float64
 	out    []float64         // [corner][unit][quantity]
@@ -60,6 +61,9 @@ func (t *tally) run(m *MonteCarlo, model Model, first, last int) {
 	corners, q := len(m.plan.Corners), m.p.Quantities
 	n := last - first
 	replicate := first / m.sampler.PerReplicate()
+	if t.near == nil {
+		t.near = modelsNear(model, m.plan.Corners)
+	}
 	for i := range n {
 		k := m.plan.First + first + i
 		t.cursor.Point(k, t.u)
@@ -69,7 +73,7 @@ func (t *tally) run(m *MonteCarlo, model Model, first, last int) {
 			copy(t.z[len(t.u):], at[len(t.u):])
 			m.place.Place(t.u, t.z)
 			out := t.out[(c*n+i)*q:][:q]
-			status, mode := model.Eval(t.z, out)
+			status, mode := t.near[c].Eval(t.z, out)
 			t.status[c*n+i], t.mode[c*n+i] = status, mode
 			if !status.OK() {
 				passed = false

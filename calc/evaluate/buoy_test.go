@@ -2,6 +2,7 @@ package evaluate_test
 
 import (
 	"encoding/json"
+	"math/rand/v2"
 	"os"
 	"testing"
 
@@ -67,10 +68,61 @@ func BenchmarkEval(b *testing.B) {
 			if r.Status != evaluate.OK {
 				b.Fatal(r.Status)
 			}
-			b.ReportAllocs()
-			for b.Loop() {
-				e.Eval(&p, &r)
-			}
+			b.Run("cold", func(b *testing.B) {
+				b.ReportAllocs()
+				for b.Loop() {
+					e.Eval(&p, &r)
+				}
+			})
+			b.Run("near", func(b *testing.B) {
+				anchor, ok := e.AnchorAt(&p, &r)
+				require.True(b, ok)
+				units := drawUnits(e.Stage())
+				b.ReportAllocs()
+				k := 0
+				for b.Loop() {
+					units[k%len(units)].build()
+					k++
+					e.EvalNear(&anchor, &p, &r)
+				}
+			})
 		})
 	}
+}
+
+// unit is one built specimen of a stage: numbers of its own in the stage's fields.
+type unit []struct {
+	field *float64
+	value float64
+}
+
+func (u unit) build() {
+	for i := range u {
+		*u[i].field = u[i].value
+	}
+}
+
+// drawUnits draws specimens with 20 spreads, uniform within the tolerances of
+// ordinary parts.
+func drawUnits(s *stage.Stage) []unit {
+	r := rand.New(rand.NewPCG(1, 1))
+	c, in, hs, ls, l, k := &s.OutputCapacitors[0], &s.InputCapacitors[0], &s.HighSide, &s.LowSide, &s.Inductor, &s.Controller
+	spreads := []struct {
+		field *float64
+		ratio float64
+	}{
+		{&l.Inductance, 0.2}, {&l.DCResistance, 0.1}, {&l.Core.K, 0.2}, {&l.Thermal.JunctionToAmbient, 0.15},
+		{&c.Capacitance, 0.2}, {&c.ESR, 0.5}, {&in.Capacitance, 0.2}, {&in.ESR, 0.5},
+		{&hs.OnResistance, 0.25}, {&hs.GateSwitchCharge, 0.3}, {&hs.OutputCharge, 0.2}, {&hs.Thermal.JunctionToAmbient, 0.15},
+		{&ls.OnResistance, 0.25}, {&ls.RecoveryCharge, 0.4}, {&ls.BodyDiode, 0.1}, {&ls.Thermal.JunctionToAmbient, 0.15},
+		{&k.GateOn, 0.3}, {&k.DeadTime, 0.3}, {&k.QuiescentCurrent, 0.3}, {&s.SwitchingFrequency, 0.08},
+	}
+	units := make([]unit, 256)
+	for i := range units {
+		units[i] = make(unit, len(spreads))
+		for j, f := range spreads {
+			units[i][j].field, units[i][j].value = f.field, *f.field*(1+f.ratio*(2*r.Float64()-1))
+		}
+	}
+	return units
 }

@@ -102,10 +102,7 @@ func (b *baseBank) at(c *parts.Capacitor, bias, degC float64) switched.Bank {
 
 func (e *Evaluator) setBase(ageRatio float64) {
 	s, b := e.stage, &e.base
-	b.highSide = s.HighSide.OnResistanceDriven(s.Controller.Drive)
-	if e.synchronous() {
-		b.lowSide = s.LowSide.OnResistanceDriven(s.Controller.Drive)
-	}
+	b.highSide, b.lowSide = e.model.OnResistances()
 	for k := range s.OutputCapacitors {
 		c := &s.OutputCapacitors[k]
 		b.output[k] = baseBank{c.CapacitanceAged(ageRatio), c.ESRAged(ageRatio)}

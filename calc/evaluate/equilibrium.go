@@ -14,12 +14,16 @@ const (
 	// maxPasses bounds the joint iteration. Three passes are usual; a stage just
 	// below runaway or on a kink of its saturation curve takes more.
 	maxPasses = 80
-	// startPasses is how often the closed form is followed before the circuit is
-	// solved: the first time bridge voltage and temperatures are far off.
-	startPasses = 2
+	// coldPasses is how often the closed form is followed before the circuit is
+	// solved: the first time bridge voltage and temperatures are far off. From an
+	// anchor they are not, and nearPasses do.
+	coldPasses, nearPasses = 2, 1
 	// thermalSteps is how many Newton steps temperatures take on one circuit
-	// solution before the circuit is solved again; one suffices on the closed form.
+	// solution before the circuit is solved again: a second one where the first
+	// crossed a point of a table.
 	thermalSteps = 2
+	// refineKelvin is the length of a step after which the slopes are still good.
+	refineKelvin = 10 // [K]
 	// temperatureTolerance is the change [K] of the last Newton step, half of the
 	// thousandth of a kelvin that is promised.
 	temperatureTolerance = 5e-4
@@ -45,11 +49,13 @@ type operating struct {
 	output       float64 // [V] regulated voltage, or the present mean
 	duty         float64 // [1] fixed duty ratio; negative: regulated
 	bridge       float64 // [V]
-	begun        float64 // [V] bridge voltage for which charges and rates are computed
+	charged      float64 // [V] bridge voltage for which charges and rates are computed
 	path         float64 // [ohm] source and input path
 	input        float64 // [A] mean current through them
 	least, most  float64 // [1] duty ratios that the controller can make
 	deadTimeDuty float64 // [1]
+	closedPasses int     // on the closed form
+	refine       bool    // the last thermal step was short
 }
 
 // Eval computes the stage at a point, into r. It allocates nothing, and the
@@ -62,14 +68,24 @@ type operating struct {
 // is the one that its own currents and temperatures ask for.
 func (e *Evaluator) Eval(p *stage.Point, r *Result) {
 	var o operating
-	e.begin(p, &o)
-	status := e.iterate(&o)
-	e.fill(&o, status, r)
+	e.run(nil, p, &o, r)
+}
+
+// run evaluates from an anchor; nil: from cold.
+func (e *Evaluator) run(a *Anchor, p *stage.Point, o *operating, r *Result) Status {
+	e.begin(p, o)
+	if a != nil && !o.held {
+		e.beginNear(a, o)
+	}
+	status := e.iterate(o)
+	e.operation.PathMean, e.operation.LoadRMS = o.input, e.loadRMS()
+	e.fill(o, status, r)
+	return status
 }
 
 func (e *Evaluator) begin(p *stage.Point, o *operating) {
 	s := e.stage
-	*o = operating{point: p, duty: -1, bridge: p.Input}
+	*o = operating{point: p, duty: -1, bridge: p.Input, closedPasses: coldPasses}
 	board := p.AmbientDegC
 	start := p.AmbientDegC
 	if parts.Known(p.PartTemperatureDegC) {
@@ -83,6 +99,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		e.degC[i] = start
 	}
 	e.setLoad(p.Load, o.copper)
+	e.model.Begin()
 	e.setBase(p.AgeRatio)
 	o.path = p.SourceResistance + s.Board.InputPath*o.copper
 	switch p.Control.Kind {
@@ -95,10 +112,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		o.output = o.duty * p.Input
 	}
 	for k := range e.inductance[:s.PhaseCount] {
-		e.inductance[k] = s.Inductor.Inductance
-		if len(s.Phases) > 0 && parts.Known(s.Phases[k].Inductance) {
-			e.inductance[k] = s.Phases[k].Inductance
-		}
+		e.inductance[k] = e.nominalInductance(k)
 	}
 	e.operation = losses.Operation{AgeRatio: p.AgeRatio, BoardDegC: board, Solution: &e.solution}
 	if len(s.Phases) > 0 {
@@ -106,16 +120,35 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 	}
 }
 
+// beginNear replaces the cold start by the anchor's.
+func (e *Evaluator) beginNear(a *Anchor, o *operating) {
+	o.closedPasses = nearPasses
+	o.bridge = o.point.Input * (1 - a.drop)
+	e.network.Temperatures(o.point.AmbientDegC, &a.power, &e.degC)
+	for k := range e.inductance[:e.stage.PhaseCount] {
+		e.inductance[k] *= a.inductance[k]
+	}
+}
+
+// nominalInductance is that of phase k without current [H].
+func (e *Evaluator) nominalInductance(k int) float64 {
+	if s := e.stage; len(s.Phases) > 0 && parts.Known(s.Phases[k].Inductance) {
+		return s.Phases[k].Inductance
+	}
+	return e.stage.Inductor.Inductance
+}
+
 // iterate runs the joint iteration and returns its status.
 func (e *Evaluator) iterate(o *operating) Status {
-	cold := e.degC
-	for range startPasses {
+	first := e.degC
+	for range o.closedPasses {
 		e.setCircuit(o.bridge, o.copper)
+		e.setBanks(o.bridge, o.output)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
 		e.shareStart()
-		if _, _, runaway := e.follow(o, 1); runaway {
-			e.degC = cold // the closed form's currents decide nothing
+		if _, _, runaway := e.follow(o); runaway {
+			e.degC = first // the closed form's currents decide nothing
 			break
 		}
 	}
@@ -133,7 +166,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 			return NotConverged
 		}
 		before := e.degC
-		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
+		circuitChange, temperatureChange, runaway := e.follow(o)
 		if runaway {
 			return Runaway
 		}
@@ -167,7 +200,6 @@ func (e *Evaluator) solve(o *operating) (dutyChange float64) {
 func (e *Evaluator) polish(o *operating) {
 	for range maxPolish {
 		if e.solve(o) <= dutyTolerance {
-			e.operation.LoadRMS = e.loadRMS()
 			e.model.Freeze(&e.operation)
 			return
 		}
@@ -223,10 +255,9 @@ func (e *Evaluator) limitDuty(o *operating) {
 }
 
 // follow takes the present circuit solution to the inductance, bridge voltage and
-// temperatures that it asks for, those by at most the given number of Newton
-// steps. It returns the largest relative change of the first two, and the largest
+// temperatures that it asks for. It returns the largest relative change of the first two, and the largest
 // change [K] of a temperature.
-func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureChange float64, runaway bool) {
+func (e *Evaluator) follow(o *operating) (circuitChange, temperatureChange float64, runaway bool) {
 	circuitChange = e.followInductance()
 	if o.duty >= 0 {
 		circuitChange = math.Max(circuitChange, math.Abs(e.solution.OutputMean/o.output-1))
@@ -234,22 +265,18 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 	}
 	op := &e.operation
 	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
-	op.PathMean = o.input
-	op.LoadRMS = e.loadRMS()
-	if !(math.Abs(o.bridge-o.begun) <= circuitTolerance*o.bridge) || o.duty >= 0 {
-		e.model.Begin(op.Bridge, op.Output)
-		o.begun = o.bridge
+	if !(math.Abs(o.bridge-o.charged) <= circuitTolerance*o.bridge) || o.duty >= 0 {
+		e.model.Charge(op.Bridge, op.Output)
+		o.charged = o.bridge
 	}
 	e.model.Freeze(op)
-	for range steps {
+	for range thermalSteps {
+		e.powerDegC = e.degC
 		e.model.Powers(&e.degC, &e.power, &e.slope)
 		if o.held {
 			break
 		}
-		if steps > 1 && e.network.Settled(o.point.AmbientDegC, &e.power, &e.slope, &e.degC, temperatureTolerance) {
-			break
-		}
-		change, state := e.network.Step(o.point.AmbientDegC, &e.power, &e.slope, &e.degC)
+		change, state := e.warm(o)
 		if state == thermal.Runaway {
 			return circuitChange, change, true
 		}
@@ -259,6 +286,18 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 		}
 	}
 	return math.Max(circuitChange, e.followBridge(o)), temperatureChange, false
+}
+
+// warm moves the temperatures by one Newton step, after a short one with the slopes
+// at hand.
+func (e *Evaluator) warm(o *operating) (change float64, state thermal.State) {
+	if o.refine {
+		change, state = e.network.Refine(o.point.AmbientDegC, &e.power, &e.degC)
+	} else {
+		change, state = e.network.Step(o.point.AmbientDegC, &e.power, &e.slope, &e.degC)
+	}
+	o.refine = state == thermal.Stepped && change < refineKelvin
+	return change, state
 }
 
 // followInductance reads valley and peak from the flux curve and returns the
@@ -274,7 +313,7 @@ func (e *Evaluator) followInductance() float64 {
 		return 0
 	}
 	e.valley, e.peak = e.swing(l, one, e.inductance[0])
-	next := l.InductanceOver(e.valley, e.peak)
+	next := e.inductance[0] * (one.Peak - one.Valley) / (e.peak - e.valley)
 	change := math.Abs(next/e.inductance[0] - 1)
 	e.inductance[0] = next
 	return change
@@ -287,7 +326,7 @@ func (e *Evaluator) followInductance() float64 {
 const valleyJoin = 3.0 // [1]
 
 // swing returns the currents between which the flux of the solved waveform moves
-// the inductor.
+// the inductor: that flux over their difference is the inductance over the swing.
 func (e *Evaluator) swing(l *parts.Inductor, leg *switched.LegSolution, inductance float64) (valley, peak float64) {
 	flux := inductance * (leg.Peak - leg.Valley)
 	if leg.Mode == switched.Discontinuous {
@@ -311,7 +350,7 @@ func (e *Evaluator) followInductances() (change float64) {
 		valley, peak := leg.Valley, leg.Peak
 		if l.Saturates() && peak > valley {
 			valley, peak = e.swing(&l, leg, e.inductance[k])
-			next := l.InductanceOver(valley, peak)
+			next := e.inductance[k] * (leg.Peak - leg.Valley) / (peak - valley)
 			change = math.Max(change, math.Abs(next/e.inductance[k]-1))
 			e.inductance[k] = next
 		}
@@ -325,12 +364,12 @@ func (e *Evaluator) followInductances() (change float64) {
 //
 //	Vb = Vin − R I,  I = P/Vb
 //
-// P is what the stage takes at the bridge: everything lost in its parts and
-// everything delivered.
+// P is what the stage takes at the bridge: everything lost in its parts, at the
+// temperatures that they have just been moved to, and everything delivered.
 func (e *Evaluator) followBridge(o *operating) float64 {
 	power := e.solution.OutputPower
 	for _, p := range e.parts {
-		power += e.weight[p] * e.power[p]
+		power += e.weight[p] * (e.power[p] + e.slope[p]*(e.degC[p]-e.powerDegC[p]))
 	}
 	rms := e.solution.Leg.Inductor.RMS
 	power += float64(e.stage.PhaseCount) * e.stage.Board.SwitchNodePath * o.copper * rms * rms

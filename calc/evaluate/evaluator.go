@@ -27,6 +27,7 @@ type Evaluator struct {
 	base      base
 
 	degC, power, slope thermal.Vector
+	powerDegC          thermal.Vector              // [degC] at which power holds
 	hottest            thermal.Vector              // [degC] of the hottest phase's parts; degC where phases are equal
 	feedback           float64                     // [1] gain of the loop from temperature to loss and back
 	inductance         [switched.MaxPhases]float64 // [H] over the present swing

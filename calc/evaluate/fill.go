@@ -196,7 +196,7 @@ func (e *Evaluator) fillTimes(o *operating, q *quantity.Vector) {
 
 func (e *Evaluator) fillPowers(o *operating, r *Result) {
 	q, sol := &r.Quantities, &e.solution
-	inside := e.model.Fill(&e.degC, &r.Losses)
+	inside := e.model.Fill(&e.operation, &e.degC, &r.Losses)
 	path := e.operation.PathMean * e.operation.PathMean
 	if o.point.SourceResistance > 0 {
 		r.Losses.Add(losses.Item{Part: losses.Board, Mechanism: losses.SourcePath, Power: o.point.SourceResistance * path, Count: 1, BandLow: 1, BandHigh: 1})

@@ -6,12 +6,18 @@ import (
 	"railproof/calc/switched"
 )
 
-// start fills the solution with the triangular currents of a stage whose output
-// voltage is constant: where the joint iteration begins, never a result.
+// start fills the solution with the nearly triangular currents of a stage whose
+// output voltage is nearly constant: where the joint iteration begins, never a
+// result.
 //
 //	D = [Vo + VF + I (Rw + Rr)] / [Vin + VF − I (Rhs − Rr)]
-//	ΔI = [Vin − Vo − I (Rhs + Rw)] D/(L f)
+//	ΔI = [Vin − Vo − I (Rhs + Rw)] t1/L · [1 + t1 t2/(12 L C)]
+//	I1 = I + (1 − D) ΔI [(R1 + r) t1 + (R2 + r) t2]/(12 L)
 //
+// t1, t2 are on- and off-time, R1, R2 the resistances of their paths, C, r the
+// output capacitor, and I1 is the mean current of the on-time: the first terms of
+// what the capacitor's ripple and the resistances bend, by integrating the triangle
+// once more. With several phases those of the capacitor are left out.
 // and, where a rectifier that blocks would see its current reverse, the
 // discontinuous D = sqrt(2 L f I (Vo + VF)/[(Vin − Vo)(Vin + VF)]).
 //
@@ -19,7 +25,11 @@ import (
 // Power Electronics, chapter 5 and appendix A (remembered, unverified).
 func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) {
 	leg, sol := &c.Leg, &e.solution
-	*sol = switched.Solution{OutputMean: output, OutputPower: output * load}
+	sol.OutputMean, sol.OutputPower = output, output*load
+	sol.Leg, sol.BankRMS = switched.LegSolution{}, [switched.MaxBanks]float64{}
+	if c.Legs != nil {
+		sol.Legs = [switched.MaxPhases]switched.LegSolution{}
+	}
 	one := &sol.Leg
 	n := float64(c.Phases)
 	i := load / n
@@ -28,20 +38,34 @@ func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) 
 	if d < 0 {
 		d = math.Min(1, (output+vf+i*(leg.Winding+rr))/(c.Vin+vf-i*(leg.HighSide-rr)))
 	}
-	ripple := math.Max(0, c.Vin-output-i*(leg.HighSide+leg.Winding)) * d * c.Period / leg.L
-	one.Mode, one.Conduct = switched.Continuous, 1-d
-	one.Valley, one.Peak = i-ripple/2, i+ripple/2
+	off := 1 - d
+	t1, t2, inverse := d*c.Period, off*c.Period, 1/leg.L
+	ripple := math.Max(0, c.Vin-output-i*(leg.HighSide+leg.Winding)) * t1 * inverse
+	bend := (leg.Winding+leg.HighSide)*t1 + (leg.Winding+rr)*t2
+	if c.Phases == 1 {
+		capacitance, r := together(c)
+		ripple *= 1 + t1*t2*inverse/(12*capacitance)
+		bend += r * c.Period
+	}
+	on := i + off*ripple*bend*inverse/12
+	fall := i
+	if off > 0 {
+		fall = (i - d*on) / off
+	}
+	one.Mode, one.Conduct = switched.Continuous, off
+	one.Valley, one.Peak = (on+fall-ripple)/2, (on+fall+ripple)/2
 	if leg.Rectifier.Blocks && one.Valley < 0 && c.Vin > output {
 		e.startDiscontinuous(c, output, i, fixedDuty)
 		return
 	}
-	square := i*i + ripple*ripple/12
-	one.Inductor = switched.Branch{Mean: i, RMS: math.Sqrt(square)}
-	one.HighSide = switched.Branch{Mean: d * i, RMS: math.Sqrt(d * square)}
-	one.Rectifier = switched.Branch{Mean: (1 - d) * i, RMS: math.Sqrt((1 - d) * square)}
+	triangle := ripple * ripple / 12
+	high, low := d*(on*on+triangle), off*(fall*fall+triangle)
+	one.Inductor = switched.Branch{Mean: i, RMS: math.Sqrt(high + low)}
+	one.HighSide = switched.Branch{Mean: d * on, RMS: math.Sqrt(high)}
+	one.Rectifier = switched.Branch{Mean: off * fall, RMS: math.Sqrt(low)}
 	one.TurnOn, one.TurnOff = one.Valley, one.Peak
 	sol.Duty = d
-	sol.BankRMS[0] = n * math.Sqrt(ripple*ripple/12)
+	sol.BankRMS[0] = n * math.Sqrt(triangle)
 	sol.InputMean = n * one.HighSide.Mean
 	sol.InputRMS = n * one.HighSide.RMS
 }
@@ -66,4 +90,15 @@ func (e *Evaluator) startDiscontinuous(c *switched.Circuit, output, i, fixedDuty
 	sol.InputMean = float64(c.Phases) * one.HighSide.Mean
 	sol.InputRMS = float64(c.Phases) * one.HighSide.RMS
 	sol.BankRMS[0] = float64(c.Phases) * math.Sqrt(math.Max(0, (d+one.Conduct)*third-i*i))
+}
+
+// together returns the output banks' capacitances in parallel [F] and the series
+// resistance that their parallel connection has where resistances decide [ohm].
+func together(c *switched.Circuit) (capacitance, r float64) {
+	g := 0.0
+	for k := range c.Banks {
+		capacitance += c.Bank[k].C
+		g += 1 / c.Bank[k].ESR
+	}
+	return capacitance, 1 / g
 }

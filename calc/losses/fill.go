@@ -5,7 +5,8 @@ import (
 	"railproof/calc/thermal"
 )
 
-// Fill writes every item at the parts' temperatures, which must be those whose
+// Fill writes every item, of the operation that was frozen last, at the parts'
+// temperatures, which must be those whose
 // resistances the circuit was solved with: then the sum of the items is input
 // minus output power exactly.
 //
@@ -16,7 +17,7 @@ import (
 // It returns the part of the sum that the circuit solution or the load already
 // contains [W]: power from the source is the circuit's own input plus Total minus
 // this.
-func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
+func (m *Model) Fill(op *Operation, degC *thermal.Vector, sheet *Sheet) (inside float64) {
 	s, c := m.st, &m.currents
 	n := max(s.PhaseCount, 1)
 	sheet.N = 0
@@ -56,8 +57,8 @@ func (m *Model) Fill(degC *thermal.Vector, sheet *Sheet) (inside float64) {
 	sheet.add(Controller, Auxiliary, s.Controller.AuxiliaryPower, 1)
 
 	switchNode := m.phases * Resistive(s.Board.SwitchNodePath*c.board, c.inductor)
-	outputPath := Resistive(s.Board.OutputPath*c.board, c.load)
-	sheet.add(Board, InputPath, Resistive(s.Board.InputPath*c.board, c.path), 1)
+	outputPath := Resistive(s.Board.OutputPath*c.board, op.LoadRMS*op.LoadRMS)
+	sheet.add(Board, InputPath, Resistive(s.Board.InputPath*c.board, op.PathMean*op.PathMean), 1)
 	sheet.add(Board, SwitchNodePath, switchNode, 1)
 	sheet.add(Board, OutputPath, outputPath, 1)
 

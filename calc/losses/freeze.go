@@ -34,7 +34,6 @@ type currents struct {
 	density       float64                    // [W/m3] same
 	swing         float64                    // [T] peak to peak
 	board         float64                    // [1] copper multiplier
-	path, load    float64                    // [A2]
 	output, input [switched.MaxBanks]float64 // [W] of each bank at 25 degC
 }
 
@@ -47,7 +46,7 @@ func (c *currents) reset(duty float64) {
 	c.core, c.density, c.swing = 0, 0, 0
 }
 
-// Freeze takes a circuit solution; call Begin before. Afterwards the losses
+// Freeze takes a circuit solution; call Charge before. Afterwards the losses
 // depend on the parts' temperatures only. Those of unequal phases are the mean.
 func (m *Model) Freeze(op *Operation) {
 	m.currents.reset(op.Solution.Duty)
@@ -81,7 +80,6 @@ func (m *Model) addPhase(op *Operation, k int, weight float64) {
 // freezeShared completes what all phases share.
 func (m *Model) freezeShared(op *Operation) {
 	s, sol, p, c := m.st, op.Solution, &m.point, &m.currents
-	c.path, c.load = op.PathMean*op.PathMean, op.LoadRMS*op.LoadRMS
 	if sol.Duty > 0 && sol.Duty < 1 {
 		c.charge, c.junction, c.gateDrive = p.outputCharge, p.junction, p.gateDrive
 	} else { // the switches rest

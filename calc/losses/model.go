@@ -8,11 +8,12 @@ import (
 	"railproof/calc/thermal"
 )
 
-// Model computes every loss of one stage. It is used in four steps, each as
+// Model computes every loss of one stage. It is used in five steps, each as
 // seldom as it may be:
 //
 //	Prepare  once per stage   what only exponents and topology decide
-//	Begin    once per point   charges and rates at frequency and bridge voltage
+//	Begin    once per point   what the stage's numbers decide
+//	Charge   once per bridge voltage   charges that the switches block
 //	Freeze   once per circuit solution   currents; after it temperature is the only variable
 //	Powers   once per thermal step   power and slope of every part
 //	Fill     once at the end   the table of items
@@ -63,17 +64,34 @@ type pointRates struct {
 	rhs, rls     float64 // [ohm] at 25 degC and the drive voltage
 }
 
-// Begin computes charges and rates at the bridge voltage and output voltage [V].
-// It must be called again when a number of the stage or a voltage has changed.
-func (m *Model) Begin(bridge, output float64) {
+// Begin computes what does not depend on a voltage. It must be called again when a
+// number of the stage has changed.
+func (m *Model) Begin() {
+	s, p := m.st, &m.point
+	p.f, p.td = s.SwitchingFrequency, s.Controller.DeadTime
+	p.rhs = s.HighSide.OnResistanceDriven(s.Controller.Drive)
+	if s.Rectifier != stage.DiodeRectified {
+		p.rls = s.LowSide.OnResistanceDriven(s.Controller.Drive)
+	}
+	if core := &s.Inductor.Core; core.Present {
+		m.triangle.At(core.K, p.f)
+	}
+}
+
+// OnResistances returns the switches' resistances at 25 °C and the drive voltage
+// [ohm], after Begin; that of an absent low side is without meaning.
+func (m *Model) OnResistances() (high, low float64) { return m.point.rhs, m.point.rls }
+
+// Charge computes charges and rates at the bridge voltage and output voltage [V]. It
+// must be called again when one of them has changed, and after Begin.
+func (m *Model) Charge(bridge, output float64) {
 	s, p := m.st, &m.point
 	hs, c := &s.HighSide, &s.Controller
-	p.f, p.vin, p.td = s.SwitchingFrequency, bridge, c.DeadTime
+	p.vin = bridge
 	charge := hs.SwitchChargeAt(bridge)
 	p.ton = Transition(charge, c.GateOn+hs.InternalGate, c.Drive-hs.Plateau)
 	p.toff = Transition(charge, c.GateOff+hs.InternalGate, hs.Plateau)
 
-	p.rhs = hs.OnResistanceDriven(c.Drive)
 	_, own := hs.OutputAt(bridge)
 	gates := hs.GateCharge
 	if s.Rectifier == stage.DiodeRectified {
@@ -87,13 +105,9 @@ func (m *Model) Begin(bridge, output float64) {
 		p.junction = 0
 		p.recovery = RecoveryLoss(bridge, s.LowSide.RecoveryCharge, p.f)
 		gates += s.LowSide.GateCharge
-		p.rls = s.LowSide.OnResistanceDriven(c.Drive)
 	}
 	p.gateDrive = m.phases * GateDriveLoss(gates, driveSource(c, bridge, output), p.f)
 	p.quiescent = QuiescentLoss(bridge, c.QuiescentCurrent)
-	if core := &s.Inductor.Core; core.Present {
-		m.triangle.At(core.K, p.f)
-	}
 }
 
 // driveSource is the voltage [V] that the gate charge is drawn from.

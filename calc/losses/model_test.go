@@ -85,7 +85,8 @@ func operation(sol *switched.Solution) *Operation {
 func frozen(s *stage.Stage, op *Operation) (*Model, *thermal.Vector) {
 	m := &Model{}
 	m.Prepare(s)
-	m.Begin(op.Bridge, op.Output)
+	m.Begin()
+	m.Charge(op.Bridge, op.Output)
 	m.Freeze(op)
 	degC := &thermal.Vector{}
 	for i := range degC {
@@ -94,10 +95,12 @@ func frozen(s *stage.Stage, op *Operation) (*Model, *thermal.Vector) {
 	return m, degC
 }
 
-func fill(m *Model, degC *thermal.Vector) (*Sheet, float64) {
+func fill(m *Model, degC *thermal.Vector) (*Sheet, float64) { return fillAt(m, operation(nil), degC) }
+
+func fillAt(m *Model, op *Operation, degC *thermal.Vector) (*Sheet, float64) {
 	s := &Sheet{}
 	calctest.Poison(s)
-	inside := m.Fill(degC, s)
+	inside := m.Fill(op, degC, s)
 	return s, inside
 }
 
@@ -332,7 +335,7 @@ func TestScaling(t *testing.T) {
 		op := operation(straight(d, load/k, ripple/k))
 		op.PathMean, op.LoadRMS, op.InputBank[0] = op.PathMean/k, op.LoadRMS/k, op.InputBank[0]/k
 		m, _ := frozen(scaled(buoy(), k, 1), op)
-		got, _ := fill(m, degC)
+		got, _ := fillAt(m, op, degC)
 		compare(t, "impedance", got, want, 1/k)
 
 		m, _ = frozen(scaled(buoy(), 1, k), operation(straight(d, load, ripple)))
@@ -385,12 +388,13 @@ func TestLossesAreNeverNegative(t *testing.T) {
 		if s.Rectifier == stage.DiodeRectified {
 			sol = interrupted(0.3, rapid.Float64Range(0, 0.7).Draw(t, "fall"), rapid.Float64Range(0, 20).Draw(t, "peak"))
 		}
-		m, degC := frozen(s, operation(sol))
+		op := operation(sol)
+		m, degC := frozen(s, op)
 		for i := range degC {
 			degC[i] = rapid.Float64Range(-273, 1000).Draw(t, "degC")
 		}
 		sheet := &Sheet{}
-		m.Fill(degC, sheet)
+		m.Fill(op, degC, sheet)
 		for _, it := range sheet.Items[:sheet.N] {
 			if !(it.Power >= 0) || math.IsInf(it.Power, 0) {
 				t.Fatalf("%s %s: %g W", it.Part, it.Mechanism, it.Power)
@@ -405,10 +409,11 @@ func TestModelDoesNotAllocate(t *testing.T) {
 	var power, slope thermal.Vector
 	var sheet Sheet
 	n := testing.AllocsPerRun(100, func() {
-		m.Begin(24, 5)
+		m.Begin()
+		m.Charge(24, 5)
 		m.Freeze(op)
 		m.Powers(degC, &power, &slope)
-		m.Fill(degC, &sheet)
+		m.Fill(op, degC, &sheet)
 	})
 	if n != 0 {
 		t.Errorf("%v allocations", n)
@@ -422,7 +427,8 @@ func BenchmarkModel(b *testing.B) {
 	var sheet Sheet
 	b.Run("begin", func(b *testing.B) {
 		for b.Loop() {
-			m.Begin(24, 5)
+			m.Begin()
+			m.Charge(24, 5)
 		}
 	})
 	b.Run("freeze", func(b *testing.B) {
@@ -437,7 +443,7 @@ func BenchmarkModel(b *testing.B) {
 	})
 	b.Run("fill", func(b *testing.B) {
 		for b.Loop() {
-			m.Fill(degC, &sheet)
+			m.Fill(op, degC, &sheet)
 		}
 	})
 }

@@ -38,23 +38,23 @@ func (t *Table) At(x float64) float64 {
 
 // AtSlope returns the value at x and the slope dy/dx of the segment used.
 func (t *Table) AtSlope(x float64) (y, slope float64) {
-	n := len(t.X)
-	switch n {
+	at := t.X
+	switch len(at) {
 	case 0:
 		return 1, 0
 	case 1:
 		return t.Y[0], 0
 	}
-	i := 1
-	for i < n-1 && x > t.X[i] {
+	i := 0
+	for i < len(at)-2 && x > at[i+1] {
 		i++
 	}
-	if t.slopes != nil {
-		slope = t.slopes[i-1]
+	if i < len(t.slopes) {
+		slope = t.slopes[i]
 	} else {
-		slope = t.slope(i)
+		slope = t.slope(i + 1)
 	}
-	return t.Y[i-1] + float64(slope*(x-t.X[i-1])), slope
+	return t.Y[i] + float64(slope*(x-at[i])), slope
 }
 
 // Covers reports whether x lies within the table's ends. An empty table covers

@@ -12,9 +12,13 @@ const MultiplierFloor = 0.1 // [1]
 // overTemperature reads a multiplier table over temperature: linear in between,
 // on with the slope of the end segment beyond the ends, not below the floor.
 func overTemperature(t *numeric.Table, degC float64) (y, slope float64) {
-	if t.Empty() {
+	if t.Empty() { // small enough to be inlined
 		return 1, 0
 	}
+	return multiplier(t, degC)
+}
+
+func multiplier(t *numeric.Table, degC float64) (y, slope float64) {
 	y, slope = t.AtSlope(degC)
 	if y >= MultiplierFloor || t.Covers(degC) {
 		return y, slope

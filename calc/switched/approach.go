@@ -48,6 +48,12 @@ func (s *Solver) OutputRange(sol *Solution) {
 	}
 }
 
+// In the closed form a second step costs less than being called again.
+const (
+	approachSteps  = 2
+	approachEnough = 1e-9 // [1] relative change of the duty ratio
+)
+
 // approachContinuous takes the duty ratio from the volt-second balance with the
 // charge through the high side that sol has, as regulated does.
 func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, sol *Solution) (change float64, ok bool) {
@@ -59,11 +65,17 @@ func (s *Solver) approachContinuous(c *Circuit, vout, least, greatest float64, s
 	ob := &s.fast
 	if ob.takes(c) {
 		ob.set(c)
-		if !ob.continuous(c, d, vout) || c.Leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
-			return 0, false
+		for sol.Iterations = 1; ; sol.Iterations++ {
+			if !ob.continuous(c, d, vout) || c.Leg.Rectifier.Blocks && ob.i+ob.off.i1 < 0 {
+				return 0, false
+			}
+			next := vs.next(d, d*(vs.load+ob.on.ci.mean(ob.on.order)))
+			if sol.Iterations == approachSteps || math.Abs(next-d) <= approachEnough*d {
+				break
+			}
+			d = next
 		}
 		ob.report(c, sol)
-		sol.Iterations = 1
 		s.closed, s.feeds = true, 0
 	} else {
 		s.prepare(c)

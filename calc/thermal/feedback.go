@@ -10,11 +10,9 @@ const (
 
 // gains is the matrix R J over the nodes that heat one another.
 type gains struct {
-	m    int
-	node [MaxNodes]uint8
-	at   [MaxNodes]int8 // place of a node in the matrix, -1 for none
-	rj   [MaxNodes][MaxNodes]float64
-	x    Vector
+	m     int
+	place [MaxNodes]int // of each of its nodes among the joined ones
+	rj    matrix
 }
 
 // Feedback returns the largest gain of the loop from temperature over losses back
@@ -41,11 +39,11 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 			ratio, node = r, int(i)
 		}
 	}
-	if n.couplings == 0 || node < 0 {
+	if n.joined == 0 || node < 0 {
 		return ratio, node
 	}
-	g := &n.coupled
-	g.gather(n, slope, true)
+	g := &n.gains
+	g.gather(n, slope)
 	if g.m < 2 {
 		return ratio, node
 	}
@@ -61,31 +59,23 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	return max(ratio, coupled), node
 }
 
-// gather fills the matrix from the coupled nodes whose loss depends on their
-// temperature, or only those whose loss rises with it.
-func (g *gains) gather(n *Network, slope *Vector, rising bool) {
+// gather fills the matrix from the coupled nodes whose loss rises with their
+// temperature.
+func (g *gains) gather(n *Network, slope *Vector) {
 	g.m = 0
-	for _, i := range n.join[:n.joined] {
-		g.at[i] = -1
-		if slope[i] > 0 || slope[i] < 0 && !rising {
-			g.at[i] = int8(g.m)
-			g.node[g.m] = i
+	for k, i := range n.node[:n.joined] {
+		if slope[i] > 0 {
+			g.place[g.m] = k
 			g.m++
 		}
 	}
-	for a, i := range g.node[:g.m] {
-		row := g.rj[a][:g.m]
-		for b := range row {
-			row[b] = 0
+	for a, k := range g.place[:g.m] {
+		row, mutual := &g.rj[a], &n.mutual[k]
+		for b, l := range g.place[:g.m] {
+			row[b] = mutual[l] * slope[n.node[l]]
 		}
+		i := n.node[k]
 		row[a] = n.self[i] * slope[i]
-	}
-	for k := range n.coupling[:n.couplings] {
-		c := &n.coupling[k]
-		if a, b := g.at[c.A], g.at[c.B]; a >= 0 && b >= 0 {
-			g.rj[a][b] += c.OntoA * slope[c.B]
-			g.rj[b][a] += c.OntoB * slope[c.A]
-		}
 	}
 }
 
@@ -155,7 +145,7 @@ func (g *gains) largestNoda() float64 {
 // pivoting. It reports false when the shift is not above.
 func (g *gains) solveShifted(shift float64, x *[MaxNodes]float64) bool {
 	m := g.m
-	var a [MaxNodes][MaxNodes]float64
+	var a matrix
 	for i := range m {
 		for j := range m {
 			a[i][j] = -g.rj[i][j]

@@ -9,19 +9,10 @@ package thermal
 
 import "slices"
 
-const (
-	MaxNodes     = 18 // [1]
-	MaxCouplings = 64 // [1] as the contract takes
-)
+const MaxNodes = 18 // [1]
 
 // Vector holds one number per node.
 type Vector [MaxNodes]float64
-
-// Coupling is the mutual resistance of two nodes.
-type Coupling struct {
-	A, B         uint8
-	OntoA, OntoB float64 // [K/W] rise of one per watt in the other
-}
 
 // Network is a set of nodes with resistances to ambient and couplings. The zero
 // value is empty.
@@ -30,20 +21,23 @@ type Coupling struct {
 //
 // It owns the workspace of Step and Feedback, so each goroutine needs its own.
 type Network struct {
-	n         int
-	node      [MaxNodes]uint8
-	self      Vector // [K/W]
-	couplings int
-	coupling  [MaxCouplings]Coupling
-	joined    int // nodes that take part in a coupling
-	join      [MaxNodes]uint8
+	n      int
+	node   [MaxNodes]uint8 // those that take part in a coupling first
+	self   Vector          // [K/W]
+	joined int             // how many do
+	mutual matrix          // [K/W] between them, by their places in node
 
-	lack, delta, next, inverse Vector // workspace of Step
-	coupled                    gains  // workspace of Step and Feedback
+	lack    Vector // [K] by place, as what follows
+	power   Vector // [W]
+	inverse Vector // [1] of 1 − Rii Ji
+	coupled matrix // factors of 1 − R J of the joined nodes
+	gains   gains  // workspace of Feedback
 }
 
+type matrix [MaxNodes][MaxNodes]float64
+
 // Reset empties the network.
-func (n *Network) Reset() { n.n, n.couplings, n.joined = 0, 0, 0 }
+func (n *Network) Reset() { n.n, n.joined, n.mutual = 0, 0, matrix{} }
 
 // Add puts node i in the network with its resistance to ambient [K/W].
 func (n *Network) Add(i int, resistance float64) {
@@ -56,17 +50,24 @@ func (n *Network) Add(i int, resistance float64) {
 func (n *Network) SetSelf(i int, resistance float64) { n.self[i] = resistance }
 
 // Couple adds mutual resistances [K/W] between two nodes: the rise of a per watt
-// in b, and of b per watt in a. They are equal by reciprocity unless a node
+// in b, and of b per watt in a; both are in the network. They are equal by reciprocity unless a node
 // stands for several equal parts.
 func (n *Network) Couple(a, b int, ontoA, ontoB float64) {
-	n.coupling[n.couplings] = Coupling{uint8(a), uint8(b), ontoA, ontoB}
-	n.couplings++
-	for _, i := range [...]uint8{uint8(a), uint8(b)} {
-		if !slices.Contains(n.join[:n.joined], i) {
-			n.join[n.joined] = i
-			n.joined++
-		}
+	k, l := n.join(uint8(a)), n.join(uint8(b))
+	n.mutual[k][l] += ontoA
+	n.mutual[l][k] += ontoB
+}
+
+// join returns the node's place among the joined ones, where it is moved to if it is
+// not there.
+func (n *Network) join(i uint8) int {
+	k := slices.Index(n.node[:n.n], i)
+	if k >= n.joined {
+		n.node[k], n.node[n.joined] = n.node[n.joined], n.node[k]
+		k = n.joined
+		n.joined++
 	}
+	return k
 }
 
 // Temperatures computes every node's temperature [degC] from the powers [W].
@@ -74,10 +75,10 @@ func (n *Network) Temperatures(ambientDegC float64, power, dst *Vector) {
 	for _, i := range n.node[:n.n] {
 		dst[i] = ambientDegC + n.self[i]*power[i]
 	}
-	for k := range n.coupling[:n.couplings] {
-		c := &n.coupling[k]
-		dst[c.A] += c.OntoA * power[c.B]
-		dst[c.B] += c.OntoB * power[c.A]
+	for k, i := range n.node[:n.joined] {
+		for l, j := range n.node[:n.joined] {
+			dst[i] += n.mutual[k][l] * power[j]
+		}
 	}
 }
 
@@ -85,13 +86,9 @@ func (n *Network) Temperatures(ambientDegC float64, power, dst *Vector) {
 // others [K].
 func (n *Network) Rise(i int, power *Vector) (own, others float64) {
 	own = n.self[i] * power[i]
-	for k := range n.coupling[:n.couplings] {
-		c := &n.coupling[k]
-		if int(c.A) == i {
-			others += c.OntoA * power[c.B]
-		}
-		if int(c.B) == i {
-			others += c.OntoB * power[c.A]
+	if k := slices.Index(n.node[:n.joined], uint8(i)); k >= 0 {
+		for l, j := range n.node[:n.joined] {
+			others += n.mutual[k][l] * power[j]
 		}
 	}
 	return own, others

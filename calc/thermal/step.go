@@ -22,11 +22,6 @@ const (
 	// Reach is the longest step [K] of a node: beyond it the slope at hand says
 	// nothing, and a loss curve that flattens must not be passed by.
 	Reach = 100.0 // [K]
-	// Mutual heating is a small share of own heating as a rule: few sweeps solve
-	// the coupled equation to a thousandth of the step, and the next step, smaller
-	// by far, corrects what is left. Where they do not, elimination does.
-	sweepLimit     = 5
-	sweepTolerance = 1e-3 // [1] of the largest change
 )
 
 // Step moves temperatures towards the equilibrium by one Newton step, given the
@@ -44,63 +39,39 @@ const (
 //
 // A converged answer is checked by the caller with Residual.
 func (n *Network) Step(ambientDegC float64, power, slope, degC *Vector) (change float64, state State) {
-	n.Temperatures(ambientDegC, power, &n.lack)
-	stable := true
-	for _, i := range n.node[:n.n] {
-		n.lack[i] -= degC[i]
-		n.inverse[i] = 1
-		if slope[i] != 0 {
-			d := 1 - n.self[i]*slope[i]
-			stable = stable && d > 0
-			n.inverse[i] = 1 / d
-		}
-		n.delta[i] = n.lack[i] * n.inverse[i]
-	}
-	if stable && n.couplings > 0 && !n.sweep(slope) {
-		stable = n.eliminate(slope)
-	}
-	if !stable {
+	n.shortfall(ambientDegC, power, degC)
+	if !n.factor(slope) {
 		return n.climb(slope, degC)
 	}
-	for _, i := range n.node[:n.n] {
-		d := min(max(n.delta[i], -Reach), Reach)
-		degC[i] += d
-		change = max(change, math.Abs(d))
-		if !(degC[i] <= CeilingDegC) {
-			state = Runaway
-		}
-	}
-	return change, state
+	return n.move(degC)
 }
 
-// sweep refines delta of the coupled nodes by Jacobi's iteration and reports
-// whether it has converged.
-func (n *Network) sweep(slope *Vector) bool {
-	for range sweepLimit {
-		for _, i := range n.join[:n.joined] {
-			n.next[i] = n.lack[i]
-		}
-		for k := range n.coupling[:n.couplings] {
-			c := &n.coupling[k]
-			n.next[c.A] += c.OntoA * slope[c.B] * n.delta[c.B]
-			n.next[c.B] += c.OntoB * slope[c.A] * n.delta[c.A]
-		}
-		moved, largest := 0.0, 0.0
-		for _, i := range n.join[:n.joined] {
-			d := n.next[i] * n.inverse[i]
-			moved = max(moved, math.Abs(d-n.delta[i]))
-			largest = max(largest, math.Abs(d))
-			n.delta[i] = d
-		}
-		if moved <= sweepTolerance*largest {
-			return true
-		}
-	}
-	return false
+// Refine is Step with the slopes of the last one, for temperatures that have moved
+// little since: a step of a fifth of the effort, which leaves of the distance what the
+// gains have changed. The last Step must not have climbed.
+func (n *Network) Refine(ambientDegC float64, power, degC *Vector) (change float64, state State) {
+	n.shortfall(ambientDegC, power, degC)
+	return n.move(degC)
 }
 
-// eliminate replaces delta of the coupled nodes by the solution of the whole
-// equation, and reports whether the gain of the coupled nodes is below one.
+// shortfall writes by how much each node is below what the powers heat it to [K].
+func (n *Network) shortfall(ambientDegC float64, power, degC *Vector) {
+	nodes, lack, p := n.node[:n.n], n.lack[:n.n], n.power[:n.n]
+	for k, i := range nodes {
+		p[k] = power[i]
+		lack[k] = ambientDegC + n.self[i]*p[k] - degC[i]
+	}
+	p = p[:n.joined]
+	for k := range p {
+		sum, mutual := lack[k], n.mutual[k][:len(p)]
+		for l, w := range p {
+			sum += mutual[l] * w
+		}
+		lack[k] = sum
+	}
+}
+
+// factor eliminates 1 − R J and reports whether its gains are below one.
 //
 // Elimination without exchange of rows does both. The leading minors of 1 − R J
 // are those of the network as its nodes get their slopes one after the other. Each
@@ -108,70 +79,91 @@ func (n *Network) sweep(slope *Vector) bool {
 // as long as every pivot is positive all gains are below one, and with rising
 // losses only, one that is not means a gain of one or more. A falling loss that
 // just holds a part whose own gain reaches one is not given credit.
-func (n *Network) eliminate(slope *Vector) bool {
-	a := &n.coupled
-	a.gather(n, slope, false)
-	m := a.m
-	for k, i := range a.node[:m] {
-		a.x[k] = n.lack[i]
+func (n *Network) factor(slope *Vector) bool {
+	for k, i := range n.node[:n.n] {
+		n.inverse[k] = 1
+		if j := slope[i]; j != 0 {
+			d := 1 - n.self[i]*j
+			if !(d > 0) {
+				return false
+			}
+			n.inverse[k] = 1 / d
+		}
+	}
+	m := n.joined
+	for k, i := range n.node[:m] {
+		row, mutual := &n.coupled[k], &n.mutual[k]
+		for l, j := range n.node[:m] {
+			row[l] = mutual[l] * slope[j] // of −R J, both signs left out
+		}
+		row[k] = n.self[i] * slope[i]
 	}
 	for k := range m {
-		row := &a.rj[k]
+		row := &n.coupled[k]
 		pivot := 1 - row[k]
 		if !(pivot > 0) {
 			return false
 		}
-		inverse := 1 / pivot
+		row[k] = 1 / pivot
 		for j := k + 1; j < m; j++ {
-			below := &a.rj[j]
-			f := below[k] * inverse // both carry the sign of −R J
+			below := &n.coupled[j]
+			f := below[k] * row[k]
+			below[k] = f
 			if f == 0 {
 				continue
 			}
 			for l := k + 1; l < m; l++ {
 				below[l] += f * row[l]
 			}
-			a.x[j] += f * a.x[k]
 		}
-		row[k] = inverse
 	}
-	for k := m - 1; k >= 0; k-- {
-		row := &a.rj[k]
-		sum := a.x[k]
-		for j := k + 1; j < m; j++ {
-			sum += row[j] * a.x[j]
-		}
-		a.x[k] = sum * row[k]
-		n.delta[a.node[k]] = a.x[k]
-	}
-	n.heatOthers(slope)
 	return true
 }
 
-// heatOthers finds delta of the coupled nodes whose own loss is constant.
-func (n *Network) heatOthers(slope *Vector) {
-	for _, i := range n.join[:n.joined] {
-		if slope[i] == 0 {
-			n.delta[i] = n.lack[i]
+// move changes every temperature by the solution of the factored equation.
+func (n *Network) move(degC *Vector) (change float64, state State) {
+	x := n.lack[:n.n]
+	for k := n.joined; k < len(x); k++ {
+		x[k] *= n.inverse[k]
+	}
+	joined := x[:n.joined]
+	for k := range joined {
+		sum, row := joined[k], &n.coupled[k]
+		for l, y := range joined[:k] {
+			sum += row[l] * y
+		}
+		joined[k] = sum
+	}
+	for k := len(joined) - 1; k >= 0; k-- {
+		sum, row := joined[k], n.coupled[k][:len(joined)]
+		for l := k + 1; l < len(joined); l++ {
+			sum += row[l] * joined[l]
+		}
+		joined[k] = sum * row[k]
+	}
+	for k, i := range n.node[:n.n] {
+		d := x[k]
+		size := math.Abs(d)
+		if size > Reach {
+			d, size = math.Copysign(Reach, d), Reach
+		}
+		degC[i] += d
+		if size > change {
+			change = size
+		}
+		if !(degC[i] <= CeilingDegC) {
+			state = Runaway
 		}
 	}
-	for k := range n.coupling[:n.couplings] {
-		c := &n.coupling[k]
-		if slope[c.A] == 0 {
-			n.delta[c.A] += c.OntoA * slope[c.B] * n.delta[c.B]
-		}
-		if slope[c.B] == 0 {
-			n.delta[c.B] += c.OntoB * slope[c.A] * n.delta[c.A]
-		}
-	}
+	return change, state
 }
 
 // climb moves every part by what it is short of, and at least by Climb where the
 // loss rises.
 func (n *Network) climb(slope, degC *Vector) (change float64, state State) {
 	state = Climbed
-	for _, i := range n.node[:n.n] {
-		up := n.lack[i]
+	for k, i := range n.node[:n.n] {
+		up := n.lack[k]
 		if up > 0 && slope[i] > 0 {
 			up = max(up, Climb)
 		}
@@ -182,31 +174,6 @@ func (n *Network) climb(slope, degC *Vector) (change float64, state State) {
 		}
 	}
 	return change, state
-}
-
-// Settled reports whether every node lies within a distance [K] of the
-// equilibrium that the losses and their slopes at the present temperatures point
-// to.
-//
-//	|T − Teq| ≤ max |T(P) − T| / (1 − ‖R J‖∞)
-//
-// It costs less than a step and is false where the gain is too large to tell.
-func (n *Network) Settled(ambientDegC float64, power, slope, degC *Vector, within float64) bool {
-	n.Temperatures(ambientDegC, power, &n.lack)
-	for _, i := range n.node[:n.n] {
-		n.next[i] = n.self[i] * math.Abs(slope[i])
-	}
-	for k := range n.coupling[:n.couplings] {
-		c := &n.coupling[k]
-		n.next[c.A] += c.OntoA * math.Abs(slope[c.B])
-		n.next[c.B] += c.OntoB * math.Abs(slope[c.A])
-	}
-	lack, gain := 0.0, 0.0
-	for _, i := range n.node[:n.n] {
-		lack = max(lack, math.Abs(n.lack[i]-degC[i]))
-		gain = max(gain, n.next[i])
-	}
-	return lack <= within*(1-gain)
 }
 
 // Residual returns the largest |T(P) − T| [K] over the nodes.

@@ -201,9 +201,12 @@ func dense(n *Network, nodes []int) *mat.Dense {
 		place[uint8(i)] = k
 		r.Set(k, k, n.self[i])
 	}
-	for _, c := range n.coupling[:n.couplings] {
-		r.Set(place[c.A], place[c.B], c.OntoA)
-		r.Set(place[c.B], place[c.A], c.OntoB)
+	for a, i := range n.node[:n.joined] {
+		for b, j := range n.node[:n.joined] {
+			if a != b {
+				r.Set(place[i], place[j], n.mutual[a][b])
+			}
+		}
 	}
 	return r
 }
@@ -338,6 +341,11 @@ func BenchmarkThermal(b *testing.B) {
 			n.Step(25, &p, &s, &degC)
 		}
 	})
+	b.Run("refine", func(b *testing.B) {
+		for b.Loop() {
+			n.Refine(25, &p, &degC)
+		}
+	})
 	b.Run("feedback", func(b *testing.B) {
 		for b.Loop() {
 			n.Feedback(&s)
@@ -351,19 +359,19 @@ func BenchmarkThermal(b *testing.B) {
 func TestElimination(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		n, nodes, slope := draw(t, rapid.SampledFrom([]float64{-0.02, 0}).Draw(t, "least slope"))
-		if n.couplings == 0 {
+		if n.joined == 0 {
 			return
 		}
 		degC, power := Vector{}, Vector{}
 		for _, i := range nodes {
 			power[i] = rapid.Float64Range(0, 2).Draw(t, "power")
 		}
-		n.Step(25, &power, &slope, &degC) // leaves lack and inverse
-		verdict := n.eliminate(&slope)
+		n.shortfall(25, &power, &degC)
+		verdict := n.factor(&slope)
 		size := n.joined
 		rj, r := mat.NewDense(size, size, nil), dense(n, nodes)
-		for k, i := range n.join[:size] {
-			for row, j := range n.join[:size] {
+		for k, i := range n.node[:size] {
+			for row, j := range n.node[:size] {
 				rj.Set(row, k, r.At(slices.Index(nodes, int(j)), slices.Index(nodes, int(i)))*slope[i])
 			}
 		}
@@ -380,18 +388,16 @@ func TestElimination(t *testing.T) {
 		if !verdict {
 			return
 		}
-		for _, i := range n.join[:n.joined] {
-			sum := n.lack[i] + n.self[i]*slope[i]*n.delta[i]
-			for _, c := range n.coupling[:n.couplings] {
-				if c.A == i {
-					sum += c.OntoA * slope[c.B] * n.delta[c.B]
-				}
-				if c.B == i {
-					sum += c.OntoB * slope[c.A] * n.delta[c.A]
-				}
+		lack := n.lack
+		n.move(&degC)
+		delta := &n.lack
+		for k, i := range n.node[:n.joined] {
+			sum := lack[k] + n.self[i]*slope[i]*delta[k]
+			for l, j := range n.node[:n.joined] {
+				sum += n.mutual[k][l] * slope[j] * delta[l]
 			}
-			if math.Abs(sum-n.delta[i]) > 1e-8*(1+math.Abs(n.delta[i])) {
-				t.Fatalf("node %d: %.12g does not solve its equation, %.12g", i, n.delta[i], sum)
+			if math.Abs(sum-delta[k]) > 1e-8*(1+math.Abs(delta[k])) {
+				t.Fatalf("node %d: %.12g does not solve its equation, %.12g", i, delta[k], sum)
 			}
 		}
 	})
