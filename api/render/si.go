@@ -37,6 +37,9 @@ func Figure3(v float64, unit string) string {
 	if !known {
 		u.symbol = unit
 	}
+	if unit == "deg" { // the one unit that stands close
+		return three(v) + u.symbol
+	}
 	if !u.prefixed {
 		return strings.TrimSpace(three(v) + " " + u.symbol)
 	}

@@ -31,7 +31,7 @@ func TestFigure3(t *testing.T) {
 		{1e-17, "F", "0.0100 fF"},
 		{5e15, "W", "5000 TW"},
 		{math.NaN(), "V", "-"},
-		{120, "deg", "120 °"},
+		{120, "deg", "120°"},
 	}
 	for _, c := range cases {
 		require.Equal(t, c.want, Figure3(c.v, c.unit))

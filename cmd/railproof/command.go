@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"strings"
+	"unicode/utf8"
 )
 
 // command is one subcommand. Its flags are declared when it is asked for.
@@ -103,7 +104,7 @@ const exitHelp = `exit codes: 0 fine; 1 a limit fails, or the stage does not wor
 `
 
 func (c *command) help(w io.Writer, flags *flag.FlagSet) {
-	fmt.Fprintf(w, "usage: railproof %s [flags] %s\n\n%s\n", c.name, c.operand, c.about)
+	fmt.Fprintf(w, "usage: railproof %s [flags] %s\n\n%s\n", c.name, c.operand, wrapped(c.about, 0))
 	any := false
 	flags.VisitAll(func(*flag.Flag) { any = true })
 	if any {
@@ -111,10 +112,42 @@ func (c *command) help(w io.Writer, flags *flag.FlagSet) {
 	}
 	flags.VisitAll(func(f *flag.Flag) {
 		value, text := flag.UnquoteUsage(f)
-		if f.DefValue != "" && f.DefValue != "false" {
+		if f.DefValue != "" && f.DefValue != "false" && !strings.Contains(text, "(default") {
 			text += " (default " + f.DefValue + ")"
 		}
-		fmt.Fprintf(w, "  %-26s %s\n", strings.TrimSpace("--"+f.Name+" "+value), text)
+		fmt.Fprintf(w, "  %-*s %s\n", flagColumn-3, strings.TrimSpace("--"+f.Name+" "+value), wrapped(text, flagColumn))
 	})
 	fmt.Fprintf(w, "\nexample:\n  %s\n\n%s", c.example, exitHelp)
+}
+
+const (
+	helpWidth  = 100 // [characters] of a line
+	flagColumn = 29  // at which a flag's text begins
+)
+
+// wrapped breaks a text into lines, the first of which begins at a column and the
+// others are indented by as much. Empty lines stay.
+func wrapped(text string, column int) string {
+	var out strings.Builder
+	for i, paragraph := range strings.Split(text, "\n\n") {
+		if i > 0 {
+			out.WriteString("\n\n" + strings.Repeat(" ", column))
+		}
+		at := column
+		for k, word := range strings.Fields(paragraph) {
+			n := utf8.RuneCountInString(word)
+			switch {
+			case k == 0:
+			case at+1+n > helpWidth:
+				out.WriteString("\n" + strings.Repeat(" ", column))
+				at = column
+			default:
+				out.WriteByte(' ')
+				at++
+			}
+			out.WriteString(word)
+			at += n
+		}
+	}
+	return out.String()
 }
