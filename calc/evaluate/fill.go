@@ -196,7 +196,7 @@ func (e *Evaluator) fillTimes(o *operating, q *quantity.Vector) {
 
 func (e *Evaluator) fillPowers(o *operating, r *Result) {
 	q, sol := &r.Quantities, &e.solution
-	inside := e.model.Fill(&e.operation, &e.degC, &r.Losses)
+	inside := e.model.Fill(&e.operation, &r.Losses)
 	path := e.operation.PathMean * e.operation.PathMean
 	if o.point.SourceResistance > 0 {
 		r.Losses.Add(losses.Item{Part: losses.Board, Mechanism: losses.SourcePath, Power: o.point.SourceResistance * path, Count: 1, BandLow: 1, BandHigh: 1})
@@ -227,7 +227,7 @@ func (e *Evaluator) fillParts(o *operating, r *Result) {
 	set(quantity.ControllerLoss, quantity.ControllerJunction, losses.Controller)
 	q[quantity.BoardLoss] = lost[losses.Board]
 	if core := &s.Inductor.Core; core.Present {
-		density, swing := e.model.Core(e.degC[losses.Inductor])
+		density, swing := e.model.Core()
 		q[quantity.CorePowerDensity], q[quantity.FluxSwing] = density, swing
 		q[quantity.CoreLoss] = density * core.Volume
 	}

@@ -17,10 +17,11 @@ const phaseSteps = 40
 // phase's own temperature would shift between the phases is of second order and
 // towards equal sharing, as the hotter path is the more resistive.
 func (e *Evaluator) settlePhases(o *operating) bool {
-	mean, power, slope := e.degC, e.power, e.slope
+	mean := e.degC
 	defer func() {
-		e.degC, e.power, e.slope = mean, power, slope
+		e.degC = mean
 		e.model.Freeze(&e.operation)
+		e.model.Powers(&e.degC, &e.power, &e.slope)
 	}()
 	for k := range e.stage.Phases {
 		e.degC = mean

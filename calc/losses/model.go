@@ -16,7 +16,7 @@ import (
 //	Charge   once per bridge voltage   charges that the switches block
 //	Freeze   once per circuit solution   currents; after it temperature is the only variable
 //	Powers   once per thermal step   power and slope of every part
-//	Fill     once at the end   the table of items
+//	Fill     once at the end   the table of items, at the temperatures of the last Powers
 //
 // The stage is read at every step, so a caller may change its numbers between
 // points. Nothing allocates.
@@ -26,6 +26,7 @@ type Model struct {
 	phases   float64
 	point    pointRates
 	currents currents
+	warm     elements
 }
 
 // Operation is what losses depend on besides the parts' temperatures.
@@ -121,28 +122,41 @@ func driveSource(c *parts.Controller, bridge, output float64) float64 {
 	return c.Drive
 }
 
+// elements are the resistances and multipliers of the parts at their temperatures.
+type elements struct {
+	highSide, lowSide  float64                    // [ohm]
+	threshold, leakage float64                    // [V], [A] of the diode
+	winding            float64                    // [ohm]
+	core               float64                    // [1]
+	output, input      [switched.MaxBanks]float64 // [1] of the series resistances
+}
+
 // Powers computes the power [W] lost in every part and its slope [W/K] over the
 // part's own temperature, at the frozen currents. Entries of absent parts are
 // left alone; Part is the index. A capacitor's entry is that of its whole bank.
 func (m *Model) Powers(degC, power, slope *thermal.Vector) {
-	s, c := m.st, &m.currents
+	s, c, w := m.st, &m.currents, &m.warm
 	y, dy := s.HighSide.OnMultiplierAt(degC[HighSide])
-	power[HighSide] = Resistive(m.point.rhs*y, c.highSide) + c.highSideFixed
+	w.highSide = m.point.rhs * y
+	power[HighSide] = Resistive(w.highSide, c.highSide) + c.highSideFixed
 	slope[HighSide] = m.point.rhs * dy * c.highSide
 
 	if s.Rectifier == stage.DiodeRectified {
 		m.diodePower(degC[Diode], power, slope)
 	} else {
 		y, dy = s.LowSide.OnMultiplierAt(degC[LowSide])
-		power[LowSide] = Resistive(m.point.rls*y, c.channel) + c.deadLow
+		w.lowSide = m.point.rls * y
+		power[LowSide] = Resistive(w.lowSide, c.channel) + c.deadLow
 		slope[LowSide] = m.point.rls * dy * c.channel
 	}
 
 	r, dr := s.Inductor.DCResistanceAt(degC[Inductor])
+	w.winding = r
 	power[Inductor] = Resistive(r, c.winding)
 	slope[Inductor] = dr * c.winding
-	if c.core > 0 {
+	if s.Inductor.Core.Present {
 		k, dk := s.Inductor.Core.CoreMultiplierAt(degC[Inductor])
+		w.core = k
 		power[Inductor] += k * c.core
 		slope[Inductor] += dk * c.core
 	}
@@ -151,19 +165,22 @@ func (m *Model) Powers(degC, power, slope *thermal.Vector) {
 	for k := range s.OutputCapacitors {
 		i := OutputCapacitor + Part(k)
 		y, dy = s.OutputCapacitors[k].ESRMultiplierAt(degC[i])
+		w.output[k] = y
 		power[i], slope[i] = c.output[k]*y, c.output[k]*dy
 	}
 	for k := range s.InputCapacitors {
 		i := InputCapacitor + Part(k)
 		y, dy = s.InputCapacitors[k].ESRMultiplierAt(degC[i])
+		w.input[k] = y
 		power[i], slope[i] = c.input[k]*y, c.input[k]*dy
 	}
 }
 
 func (m *Model) diodePower(degC float64, power, slope *thermal.Vector) {
-	d, c := &m.st.Diode, &m.currents
+	d, c, w := &m.st.Diode, &m.currents, &m.warm
 	vt, dvt := d.ThresholdAt(degC)
 	ir, dir := d.LeakageAt(degC)
+	w.threshold, w.leakage = vt, ir
 	blocked := c.duty * m.point.vin
 	power[Diode] = DiodeConduction(vt, d.Slope, c.rectifierMean, c.rectifier) + ir*blocked
 	slope[Diode] = dvt*c.rectifierMean + dir*blocked
