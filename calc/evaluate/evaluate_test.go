@@ -145,7 +145,7 @@ func TestFeedbackSetsTheOutput(t *testing.T) {
 	var r evaluate.Result
 	e.Eval(&p, &r)
 	want := s.Feedback.Reference * (1 + s.Feedback.Upper/s.Feedback.Lower)
-	assert.InEpsilon(t, want, r.Quantities[quantity.OutputMean], 1e-9)
+	assert.InEpsilon(t, want, r.Quantities[quantity.OutputMean], 1e-10)
 	// A drifted reference shows as an output error against the typical values.
 	*e.Stage().Field("feedback/reference_v") *= 1.01
 	e.Eval(&p, &r)
