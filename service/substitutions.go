@@ -78,9 +78,15 @@ func (s *Service) substitute(ctx context.Context, r *SubstitutionsRequest) (*Sub
 		c := &r.Replacements[i]
 		q := p.request(&c.Design)
 		q.like, q.role = before, c.Role
-		if after[i], failed[i] = s.worst(ctx, q, 1); failed[i] == nil {
-			candidates[i] = substitution.Candidate{ID: c.ID, Role: c.Role, Cost: c.Cost, Area: c.Area, After: assess(p, after[i])}
-			candidates[i].After.Assumed = c.gaps(candidates[i].After.Assumed)
+		judge := func() {
+			if after[i], failed[i] = s.worst(ctx, q, 1); failed[i] == nil {
+				candidates[i] = substitution.Candidate{ID: c.ID, Role: c.Role, Cost: c.Cost, Area: c.Area, After: assess(p, after[i])}
+				candidates[i].After.Assumed = c.gaps(candidates[i].After.Assumed)
+			}
+		}
+		if judge(); failed[i] == nil && len(after) <= mostSearchedFully && substitution.NeedsSearch(proven, candidates[i].After) {
+			q.like = nil
+			judge()
 		}
 		meter.Add(1)
 	})
@@ -100,6 +106,10 @@ func (s *Service) substitute(ctx context.Context, r *SubstitutionsRequest) (*Sub
 	}
 	return a, nil
 }
+
+// mostSearchedFully is the number of replacements up to which those near a limit get
+// the search of a check; among more, they are left to review.
+const mostSearchedFully = 10 // [1]
 
 // assess judges a worst case by the proof's rules.
 func assess(p *Proof, w *worstCase) *substitution.Assessment {

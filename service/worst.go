@@ -39,10 +39,12 @@ func kindOf(id quantity.ID) passKind {
 type worstPass struct {
 	kind     passKind
 	full     bool // the load stays at its greatest
+	by       rules.Search
 	bound    *corners.Design
 	ids      []quantity.ID // results of the model
 	found    []corners.Extreme
 	blind    []bool // per target: a working point had no value
+	bears    []bool // per coordinate, of a search by vertices: it moves a target
 	failures []corners.Failure
 }
 
@@ -78,6 +80,8 @@ func (s *Service) worst(ctx context.Context, r *worstRequest, workers int) (*wor
 	w.RequirementAt, w.Requirement = r.requirementAt, r.requirement
 	w.Extremes, w.FullLoad, w.Absent = map[quantity.ID]rules.Extreme{}, map[quantity.ID]rules.Extreme{}, map[quantity.ID][]string{}
 	w.absences(r)
+	w.heldOutput(r)
+	w.Uncovered = uncovered(r)
 	step := newLoadStep(r.requirement)
 	s.nominal(r, w, step)
 	for _, p := range r.layOut(w.Absent, step) {
@@ -218,7 +222,7 @@ func (p *worstPass) bind(r *worstRequest, targets []corners.Target, step *transi
 	}
 	bound.Problem().Targets = targets
 	p.bound = bound
-	p.blind = make([]bool, len(targets))
+	p.blind, p.bears = make([]bool, len(targets)), make([]bool, len(bound.Problem().Coordinates))
 }
 
 func held(v float64) stage.Range { return stage.Range{Min: v, Typ: v, Max: v} }
@@ -258,8 +262,8 @@ func (p *worstPass) search(d *driver, r *worstRequest, before []*worstPass) erro
 		seeds = p.translated(before, func(other *worstPass) bool { return other.kind == electrical && !other.full })
 	}
 	search := corners.NewSearch(problem)
-	if seeds != nil {
-		search = corners.NewSeeded(problem, seeds)
+	if p.by = rules.InBox; seeds != nil {
+		search, p.by = corners.NewSeeded(problem, seeds), rules.InBoxSeeded
 	}
 	if err := d.do(search, pointsPerTask, 0); err != nil {
 		return err

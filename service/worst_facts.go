@@ -36,7 +36,7 @@ func (s *Service) gather(r *worstRequest, w *worstCase, p *worstPass) {
 			w.Absent[id] = []string{blindness}
 		} else if f.At != nil {
 			place := s.place(r, w, p, f.At, places)
-			one := rules.Worst{Value: f.Value, Corner: place.corner, Beyond: s.tablesBehind(place.design, &place.point, &place.result, id)}
+			one := rules.Worst{Value: f.Value, By: p.by, Corner: place.corner, Beyond: s.tablesBehind(place.design, &place.point, &place.result, id)}
 			if p.kind == electrical {
 				one.Low, one.High, one.Banded = place.band(id, f.Value)
 			}

@@ -20,6 +20,7 @@ import (
 type plane struct {
 	slope []float64
 	blind bool
+	fails bool // beyond the same corner it does not work
 }
 
 func (m *plane) Eval(z, out []float64) (evaluate.Status, switched.Mode) {
@@ -30,6 +31,9 @@ func (m *plane) Eval(z, out []float64) (evaluate.Status, switched.Mode) {
 	out[0] = v
 	if m.blind && z[0] > 0.5 {
 		out[0] = math.NaN()
+	}
+	if m.fails && z[0] > 0.5 {
+		return evaluate.DropOut, switched.Continuous
 	}
 	return evaluate.OK, switched.Continuous
 }
@@ -47,7 +51,7 @@ func planePass(t *testing.T) (*worstPass, *driver, *plane) {
 	bound, err := corners.NewDesign(s, variables, &c, corners.DesignOptions{})
 	require.NoError(t, err)
 	bound.Problem().Targets = []corners.Target{{Direction: corners.Greatest}, {Direction: corners.Least}}
-	p := &worstPass{kind: ofLoop, bound: bound, ids: make([]quantity.ID, 1), blind: make([]bool, 2)}
+	p := &worstPass{kind: ofLoop, bound: bound, ids: make([]quantity.ID, 1), blind: make([]bool, 2), bears: make([]bool, len(bound.Problem().Coordinates))}
 	m := &plane{slope: []float64{1, -2, 3, -4, 5, -6}}
 	return p, &driver{ctx: context.Background(), models: []corners.Model{m}, meter: new(Meter)}, m
 }
@@ -69,6 +73,16 @@ func TestAWorkingPointWithoutAValueIsTold(t *testing.T) {
 	m.blind = true
 	require.NoError(t, p.vertices(d, &worstRequest{}))
 	require.Equal(t, []bool{true, true}, p.blind, "an unstable corner hides no margin")
+}
+
+func TestVerticesTellOfCornersAtWhichTheStageDoesNotWork(t *testing.T) {
+	p, d, m := planePass(t)
+	m.fails = true
+	require.NoError(t, p.vertices(d, &worstRequest{}))
+	require.Len(t, p.failures, 1, "one point of the status is enough")
+	require.Equal(t, evaluate.DropOut, p.failures[0].Status)
+	require.Greater(t, p.failures[0].At[0], 0.5)
+	require.Equal(t, []bool{false, false}, p.blind)
 }
 
 func TestVerticesGoOnFromALikeDesign(t *testing.T) {

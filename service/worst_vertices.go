@@ -7,6 +7,7 @@ import (
 
 	"railproof/calc/corners"
 	"railproof/calc/evaluate"
+	"railproof/calc/rules"
 )
 
 // pointList evaluates points, one a task: each takes a loop analysis or a load
@@ -30,21 +31,19 @@ const mostConditions = 6 // [1]
 // vertices looks for worst points where an evaluation is dear: all corners of the
 // conditions with typical tolerances; from the worst of them for each target every
 // tolerance alone at its ends; the vertex that these point to; and from the worst
-// point so far every condition alone. Where the worst case of a like design is
-// known it starts from its points and moves what the other part has changed.
+// point so far every condition alone.
 func (p *worstPass) vertices(d *driver, r *worstRequest) error {
 	problem := p.bound.Problem()
 	p.found = make([]corners.Extreme, len(problem.Targets))
 	for i, t := range problem.Targets {
 		p.found[i] = corners.Extreme{Target: t, Value: math.NaN()}
 	}
-	typical := make([]float64, len(problem.Coordinates))
+	p.by = rules.Vertices
 	if seeds := r.seeds(p); seeds != nil {
-		if err := p.try(d, seeds); err != nil {
-			return err
-		}
-		return p.try(d, p.around(p.places(), p.changed(r.role)))
+		p.by = rules.VerticesSeeded
+		return p.seeded(d, r, seeds)
 	}
+	typical := make([]float64, len(problem.Coordinates))
 	if err := p.try(d, p.conditionCorners(typical)); err != nil {
 		return err
 	}
@@ -55,6 +54,47 @@ func (p *worstPass) vertices(d *driver, r *worstRequest) error {
 		}
 	}
 	return p.try(d, p.around(p.places(), conditions))
+}
+
+// seeded goes on from the worst points of a like design: it moves what the other
+// part has changed. A loop analysis is cheap enough to try all corners of the
+// conditions at these points too, and to correct the vertex once by the tolerances
+// that bore on the like design or are the part's own.
+func (p *worstPass) seeded(d *driver, r *worstRequest, seeds [][]float64) error {
+	if err := p.try(d, seeds); err != nil {
+		return err
+	}
+	changed, found := p.changed(r.role), p.places()
+	if p.kind == ofStep {
+		return p.try(d, p.around(found, changed))
+	}
+	var points [][]float64
+	for _, z := range found {
+		points = append(points, p.conditionCorners(z)...)
+	}
+	if err := p.try(d, append(points, p.around(found, changed)...)); err != nil {
+		return err
+	}
+	return p.signs(d, p.weighty(r, changed))
+}
+
+// weighty lists the tolerances that bore on the like design's worst values and those
+// given beside them.
+func (p *worstPass) weighty(r *worstRequest, besides []int) []int {
+	list := slices.Clone(besides)
+	i := slices.IndexFunc(r.like.passes, func(other *worstPass) bool { return other.kind == p.kind && other.full == p.full })
+	from := r.like.passes[i]
+	at := from.coordinates()
+	tolerances, _ := p.split()
+	for _, own := range tolerances {
+		if !slices.Contains(list, own) && slices.ContainsFunc(p.bound.Pointers(own), func(pointer string) bool {
+			k, known := at[pointer]
+			return known && from.bears[k]
+		}) {
+			list = append(list, own)
+		}
+	}
+	return list
 }
 
 // signRounds is how often the vertex is corrected by the signs found at it.
@@ -170,7 +210,9 @@ func (p *worstPass) vertex(t *corners.Target, list *pointList) []float64 {
 			if list.z[k][i] == z[i] {
 				continue
 			}
-			g := list.out[k][t.Quantity] - list.out[last][t.Quantity]
+			base := list.out[last][t.Quantity]
+			g := list.out[k][t.Quantity] - base
+			p.bears[i] = p.bears[i] || math.Abs(g) > bearsShare*math.Abs(base)
 			if t.Direction == corners.Least {
 				g = -g
 			}
@@ -200,16 +242,26 @@ func (p *worstPass) evaluate(d *driver, points [][]float64) (*pointList, error) 
 	return l, d.tasks(l, func() {})
 }
 
+// fails remembers one point of every status at which the stage does not work as
+// asked: such a corner must not drop out of the search in silence.
+func (p *worstPass) fails(status evaluate.Status, z []float64) {
+	if status.OK() || slices.ContainsFunc(p.failures, func(f corners.Failure) bool { return f.Status == status }) {
+		return
+	}
+	p.failures = append(p.failures, corners.Failure{Status: status, At: z})
+}
+
 func (p *worstPass) record(l *pointList) {
 	for i, status := range l.status {
 		works := status == evaluate.OK || status == evaluate.OverTemperature
+		p.fails(status, l.z[i])
 		for t := range p.found {
 			f := &p.found[t]
 			v := l.out[i][f.Quantity]
 			switch {
-			case math.IsNaN(v):
-				p.blind[t] = p.blind[t] || works
 			case !works:
+			case math.IsNaN(v):
+				p.blind[t] = true
 			case math.IsNaN(f.Value), f.Direction == corners.Least && v < f.Value, f.Direction == corners.Greatest && v > f.Value:
 				f.Value, f.At, f.Status = v, l.z[i], status
 			}

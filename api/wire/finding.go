@@ -22,6 +22,7 @@ type Finding struct {
 	ValueHigh  *float64 `json:"value_high,omitzero"`
 	WithinBand *bool    `json:"within_band,omitzero"`
 	Corners    []Corner `json:"corners,omitzero"`
+	WorstBy    string   `json:"worst_by,omitzero"`
 	Missing    []string `json:"missing,omitzero"`
 	Beyond     []string `json:"beyond,omitzero"`
 	Detail     string   `json:"detail"`
@@ -52,7 +53,7 @@ func encodeFinding(f *rules.Finding, corners []service.WorstCorner) Finding {
 	w := Finding{
 		Rule: f.Rule, Title: f.Title, Severity: f.Severity.String(), Verdict: f.Verdict.String(), Pointer: f.Pointer,
 		Value: given(&f.Value), Limit: given(&f.Limit), Unit: f.Unit, Margin: given(&f.Margin), ValueLow: given(&f.ValueLow), ValueHigh: given(&f.ValueHigh),
-		WithinBand: mark(f.WithinBand), Missing: atMost(f.Missing, mostMissing), Beyond: atMost(f.Beyond, mostMissing), Detail: clipped(f.Detail, longDetail),
+		WithinBand: mark(f.WithinBand), Missing: atMost(f.Missing, mostMissing), Beyond: atMost(f.Beyond, mostMissing), WorstBy: f.WorstBy.String(), Detail: clipped(f.Detail, longDetail),
 		Basis: clipped(f.Basis, 512), Pack: f.Pack, Edition: f.Edition, Provenance: f.Provenance, Origin: f.Origin,
 	}
 	if f.Unit != "" {

@@ -7,12 +7,29 @@ import (
 	"railproof/calc/stage"
 )
 
+// Search tells how a worst value was looked for.
+type Search uint8
+
+const (
+	NotSearched    Search = iota // not a worst value
+	InBox                        // at vertices, then inside the box
+	InBoxSeeded                  // the same, shortened, from the worst points of a like stage
+	Vertices                     // at vertices that sensitivities point to, no further
+	VerticesSeeded               // the same, shortened, from the worst points of a like stage
+)
+
+// String returns the search as it stands on the wire; "" for none.
+func (s Search) String() string {
+	return [...]string{"", "search", "seeded-search", "vertices", "seeded-vertices"}[s]
+}
+
 // Worst is the extreme value of one quantity and where it was found.
 type Worst struct {
 	Value  float64  // [any] in the quantity's unit
 	Banded bool     // Low and High are given
 	Low    float64  // [any] with the loss models at the lower end of their bands
 	High   float64  // [any] with the loss models at the upper end of their bands
+	By     Search   // how it was found
 	Corner int      // the caller's number of the corner
 	Beyond []string // pointers of tables used beyond their ends there
 }
@@ -25,6 +42,9 @@ type PointStatus struct {
 	Status evaluate.Status
 	Corner int
 }
+
+// Gap is something that the requirement asks for and the case was not made for.
+type Gap struct{ Pointer, Detail string }
 
 // Case is all that rules may look at.
 type Case struct {
@@ -39,5 +59,6 @@ type Case struct {
 	Extremes      map[quantity.ID]Extreme
 	FullLoad      map[quantity.ID]Extreme  // the same with the load at its greatest
 	Absent        map[quantity.ID][]string // of quantities without a value: what their computation lacks
-	Statuses      []PointStatus            // of every evaluation behind the extremes; one per distinct status is enough
+	Uncovered     []Gap
+	Statuses      []PointStatus // of every evaluation behind the extremes; one per distinct status is enough
 }

@@ -2,17 +2,27 @@ package rules
 
 import (
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 	"strings"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/parts"
 	"railproof/calc/quantity"
 )
 
 // RuleOperatingStatus is this package's own rule: the stage must work at every
 // point that the worst values were taken from.
 const RuleOperatingStatus = "engine/operating-status"
+
+// RuleConditions is this package's own rule: what the requirement asks for must have
+// been looked at.
+const RuleConditions = "engine/conditions"
+
+// RuleCoverage is this package's own rule: a pack that tells parts in a role apart by
+// their kind must have a rule for each kind that is there.
+const RuleCoverage = "engine/pack-coverage"
 
 // Report is the outcome of a check.
 type Report struct {
@@ -30,18 +40,31 @@ type Report struct {
 // passes.
 func Check(c *Case, packs []*Pack, waivers []Waiver, today Date) Report {
 	p := prepare(c)
-	r := Report{Findings: p.statuses()}
+	r := Report{Findings: append(p.statuses(), p.uncovered()...)}
+	judged := map[string]bool{} // parts
+	var bare []Finding
 	for _, pack := range packs {
 		r.Overrides = append(r.Overrides, pack.Overrides...)
+		by := map[string]bool{}
 		for i := range pack.Rules {
 			rule := &pack.Rules[i]
-			found := p.apply(pack, rule)
+			found := p.apply(pack, rule, by)
 			if len(found) == 0 {
 				r.NotApplicable = append(r.NotApplicable, rule.ID)
 			}
 			r.Findings = append(r.Findings, found...)
 		}
+		bare = append(bare, p.bare(pack, by)...)
+		for part := range by {
+			judged[part] = judged[part] || by[part]
+		}
 	}
+	for i := range bare { // a part that some other pack has judged is no gap of the whole
+		if judged[strings.TrimPrefix(bare[i].Pointer, p.c.StageAt+"/")] {
+			bare[i].Severity = Warning
+		}
+	}
+	r.Findings = append(r.Findings, bare...)
 	r.Findings = waive(r.Findings, waivers, today)
 	r.Verdict = verdict(r.Findings)
 	return r
@@ -94,14 +117,53 @@ func (p *prepared) statuses() []Finding {
 	return out
 }
 
-// apply returns one finding for every place that a rule covers.
-func (p *prepared) apply(pack *Pack, rule *Rule) []Finding {
+// uncovered returns the findings about what the requirement asks for beyond the case.
+func (p *prepared) uncovered() []Finding {
+	var out []Finding
+	for _, g := range p.c.Uncovered {
+		f := blank()
+		f.Rule, f.Title, f.Pointer = RuleConditions, "What the requirement asks for was looked at", g.Pointer
+		f.Basis = "this service's own rule: what was not looked at is no pass"
+		f.Missing = []string{g.Pointer}
+		f.Detail = "Not evaluated; " + strings.ToLower(g.Detail[:1]) + g.Detail[1:]
+		out = append(out, f)
+	}
+	return out
+}
+
+// bare returns a finding for every part whose kind no rule of a pack covers although
+// the pack has rules for other kinds in its role; by tells of each part whether a rule
+// applies.
+func (p *prepared) bare(pack *Pack, by map[string]bool) []Finding {
+	var out []Finding
+	for _, part := range slices.Sorted(maps.Keys(by)) {
+		if by[part] {
+			continue
+		}
+		f := blank()
+		f.Rule, f.Title, f.Pointer = RuleCoverage, "The pack covers the kind of part", join(p.c.StageAt, part)
+		f.Pack, f.Edition, f.Provenance = pack.ID, pack.Edition, pack.Provenance
+		f.Basis = "this service's own rule: a part that no rule judges is no pass"
+		f.Missing = []string{"a rule of " + pack.ID + " for parts of this kind"}
+		f.Detail = "Not evaluated; no rule of " + pack.ID + " is for the kind of " + part + "."
+		out = append(out, f)
+	}
+	return out
+}
+
+// apply returns one finding for every place that a rule covers, and notes in by
+// whether it applied to the parts that it tells apart by kind.
+func (p *prepared) apply(pack *Pack, rule *Rule, by map[string]bool) []Finding {
 	var out []Finding
 	for i := range rule.Bodies {
 		body := &rule.Bodies[i]
 		for place := range body.Scope.places(p.c.Stage) {
-			if f, applies := p.judge(pack, rule, body, place); applies {
+			f, applies := p.judge(pack, rule, body, place)
+			if applies {
 				out = append(out, f)
+			}
+			if part := body.Scope.part(place); body.ByKind || applies {
+				by[part] = by[part] || applies
 			}
 		}
 	}
@@ -114,6 +176,7 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 	f := blank()
 	f.Rule, f.Title, f.Severity, f.Relation, f.Unit = rule.ID, rule.Title, rule.Severity, rule.Relation, rule.Unit
 	f.Basis, f.Pack, f.Edition, f.Provenance, f.Origin = rule.Basis, pack.ID, pack.Edition, pack.Provenance, rule.Origin
+	f.ByKind = body.ByKind
 	if f.Pointer = rule.Pointer; f.Pointer == "" {
 		f.Pointer = join(p.c.StageAt, part, rule.At)
 	}
@@ -135,9 +198,10 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 		}
 	}
 	f.Value = body.Value(look)
-	f.Corners = slices.Clone(look.corners)
+	f.Corners, f.WorstBy = slices.Clone(look.corners), look.by
 	f.Limit = body.Limit(look)
-	if len(look.missing) > 0 || look.problem != "" || math.IsNaN(f.Value) || math.IsNaN(f.Limit) {
+	if len(look.missing) > 0 || look.problem != "" || !finite(f.Value) || !finite(f.Limit) {
+		f.Value, f.Limit = known(f.Value), known(f.Limit)
 		return p.unevaluated(f, look, part), true
 	}
 	f.Margin = margin(rule.Relation, f.Value, f.Limit, rule.Unit)
@@ -160,6 +224,18 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 		f.Detail += fmt.Sprintf(" The loss models leave it between %s and %s %s, on both sides of the limit.", figure(f.ValueLow), figure(f.ValueHigh), printed(f.Unit))
 	}
 	return f, true
+}
+
+// finite reports whether a figure can be compared: what a division by zero yields
+// lies on the good side of every limit, or of none.
+func finite(x float64) bool { return !math.IsNaN(x) && !math.IsInf(x, 0) }
+
+// known returns a figure, or that it is unknown where it is none.
+func known(x float64) float64 {
+	if !finite(x) {
+		return parts.Unknown
+	}
+	return x
 }
 
 // band computes the value at both ends of the model bands.
@@ -219,6 +295,9 @@ func (p *prepared) lacking(name, part string) []string {
 func (p *prepared) place(name, part string) string {
 	root, rest, _ := strings.Cut(name, ".")
 	path := strings.ReplaceAll(rest, ".", "/")
+	if rest == biasEnd {
+		path = biasTable
+	}
 	switch root + "." {
 	case rootPart, rootPartLeast, rootPartGreatest:
 		return join(p.c.StageAt, part, path)

@@ -16,6 +16,7 @@ type fact struct {
 	banded  bool
 	corner  int
 	corners bool // corner is given
+	by      Search
 	beyond  []string
 }
 
@@ -119,7 +120,7 @@ func (p *prepared) addQuantity(to map[string]fact, key string, id quantity.ID) {
 	}
 	put := func(name string, w Worst) {
 		if parts.Known(w.Value) {
-			to[name] = fact{value: w.Value, low: w.Low, high: w.High, banded: w.Banded, corner: w.Corner, corners: true, beyond: w.Beyond}
+			to[name] = fact{value: w.Value, low: w.Low, high: w.High, banded: w.Banded, corner: w.Corner, corners: true, by: w.By, beyond: w.Beyond}
 		}
 	}
 	if e, ok := p.c.Extremes[id]; ok {
@@ -167,6 +168,9 @@ func (p *prepared) at(scope Scope, place int, pack map[string]float64) *facts {
 
 func (p *prepared) bank(f *facts, c *parts.Capacitor, family quantity.Family, place int) {
 	f.own[rootPart+"count"] = fact{value: math.Max(1, float64(c.Count))}
+	if table := c.CapacitanceAtBias.X; len(table) > 0 {
+		f.own[rootPart+biasEnd] = p.biasEnd(table[len(table)-1], family, place)
+	}
 	f.words[rootPart+"kind"] = kindNames[c.Kind]
 	f.flags[rootPart+"assumed"] = c.Assumed
 	for _, q := range quantity.All() {
@@ -174,6 +178,19 @@ func (p *prepared) bank(f *facts, c *parts.Capacitor, family quantity.Family, pl
 			p.addQuantity(f.own, q.Key, q.ID+quantity.ID(place))
 		}
 	}
+}
+
+// biasEnd returns the last voltage of a bank's bias table; it is beyond its own end
+// where the bank sees more.
+func (p *prepared) biasEnd(end float64, family quantity.Family, place int) fact {
+	seen, bank := p.c.Extremes[quantity.OutputMean].Greatest.Value, OverOutputCapacitors
+	if family == quantity.PerInputBank {
+		seen, bank = p.c.Extremes[quantity.BridgeVoltage].Greatest.Value, OverInputCapacitors
+	}
+	if seen > end {
+		return fact{value: end, beyond: []string{join(p.c.StageAt, bank.part(place), biasTable)}}
+	}
+	return fact{value: end}
 }
 
 // rectifierNames and kindNames are the words of the wire, by value; the kind that

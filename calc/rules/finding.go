@@ -47,6 +47,8 @@ type Finding struct {
 	ValueHigh  float64 // [any] greatest value within the model bands; NaN without bands
 	WithinBand bool    // the margin is smaller than the model band: the verdict could turn
 	Corners    []int   // the caller's numbers of the corners at which the values are worst
+	WorstBy    Search  // how these were looked for
+	ByKind     bool    // the rule applies to some kinds of part only
 	Verdict    Verdict
 	WaivedFrom Verdict // what the verdict was before a waiver
 	Waiver     *Waiver

@@ -23,6 +23,7 @@ type Look struct {
 	beyond  []string
 	corners []int
 	banded  bool
+	by      Search // the least thorough of what was read
 	problem string
 }
 
@@ -43,6 +44,7 @@ func (l *Look) Number(name string) float64 {
 	if f.corners && !slices.Contains(l.corners, f.corner) {
 		l.corners = append(l.corners, f.corner)
 	}
+	l.by = max(l.by, f.by)
 	if f.banded {
 		l.banded = true
 		switch l.side {

@@ -44,6 +44,8 @@ type Body struct {
 	Value Number
 	Limit Number
 	Reads []string // names of the facts that value and limit may look up
+
+	ByKind bool // whether it applies depends on the kind of part
 }
 
 // Rule compares a value with a limit.

@@ -438,3 +438,42 @@ func TestLimitsOfARequestAreRules(t *testing.T) {
 	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.PhaseMargin}, d.Least)
 	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.InductorRMS, quantity.OutputCapacitorRMS + 1}, d.Greatest)
 }
+
+// What a division by zero yields lies on the good side of every limit, or of none.
+func TestInfiniteFiguresAreNotEvaluated(t *testing.T) {
+	constant := func(v float64) Number { return func(*Look) float64 { return v } }
+	for name, c := range map[string]Rule{
+		"value": rule("a", OverStage, constant(math.Inf(-1)), constant(1)),
+		"limit": rule("b", OverStage, constant(1), constant(math.Inf(1))),
+	} {
+		t.Run(name, func(t *testing.T) {
+			r := check(testCase(), nil, c)
+			f := only(t, r)
+			require.Equal(t, NotEvaluated, f.Verdict)
+			require.False(t, math.IsInf(f.Value, 0) || math.IsInf(f.Limit, 0), "nothing infinite leaves")
+			require.Equal(t, Incomplete, r.Verdict)
+		})
+	}
+}
+
+// A stage that passes where it was looked at does not pass where it was not.
+func TestWhatWasNotLookedAtLeavesTheCheckIncomplete(t *testing.T) {
+	c := testCase()
+	c.Uncovered = []Gap{{"/conditions/load", "The requirement asks for 0 to 6 A; the conditions reach from 1 to 2 A."}}
+	r := check(c, nil, heating(1))
+	require.Len(t, r.Findings, 2)
+	require.Equal(t, RuleConditions, r.Findings[0].Rule)
+	require.Equal(t, NotEvaluated, r.Findings[0].Verdict)
+	require.Equal(t, "/conditions/load", r.Findings[0].Pointer)
+	require.Equal(t, Incomplete, r.Verdict)
+}
+
+// A finding tells how its worst value was looked for: the least thorough of what it
+// read.
+func TestFindingTellsHowTheWorstWasFound(t *testing.T) {
+	c := testCase()
+	x := c.Extremes[quantity.InductorRMS]
+	x.Greatest.By = VerticesSeeded
+	c.Extremes[quantity.InductorRMS] = x
+	require.Equal(t, VerticesSeeded, only(t, check(c, nil, heating(1))).WorstBy)
+}

@@ -44,6 +44,13 @@ const (
 	rootParameter        = "parameter."
 )
 
+// biasEnd is the fact of a capacitor bank that tells up to which voltage its table
+// capacitance_at_bias goes; without the table it is missing.
+const (
+	biasTable = "capacitance_at_bias"
+	biasEnd   = biasTable + "_to_v"
+)
+
 // ParameterRoot is what the names of a pack's parameters begin with.
 const ParameterRoot = rootParameter
 
@@ -98,6 +105,7 @@ func Vocabulary(scope Scope) []Name {
 		Name{Key: rootStage + "has_feedback", Kind: FlagFact})
 	if scope == OverOutputCapacitors || scope == OverInputCapacitors {
 		number(rootPart+"count", "1")
+		number(rootPart+biasEnd, "V")
 		names = append(names, Name{Key: rootPart + "kind", Kind: WordFact, Words: kindNames[1:]})
 	}
 	if scope != OverStage && scope != OverController {

@@ -6,6 +6,7 @@ import (
 	"strings"
 	"testing"
 
+	"railproof/calc/numeric"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/rules"
@@ -37,6 +38,65 @@ func TestGeneralPracticePassesASoundRail(t *testing.T) {
 		}
 		require.Equal(t, rules.Passed, r.Verdict)
 	})
+}
+
+// A class-2 ceramic part whose capacitance under direct voltage nobody told is not
+// proven, nor one that sees more than its table tells.
+func TestClass2CeramicNeedsItsBiasTable(t *testing.T) {
+	for name, c := range map[string]struct {
+		change          func(*parts.Capacitor)
+		missing, beyond []string
+	}{
+		"absent": {func(c *parts.Capacitor) { c.CapacitanceAtBias = numeric.Table{} }, []string{"/stage/output_capacitors/0/capacitance_at_bias"}, nil},
+		"short":  {func(c *parts.Capacitor) { c.CapacitanceAtBias.X[1] = 4 }, nil, []string{"/stage/output_capacitors/0/capacitance_at_bias"}},
+	} {
+		t.Run(name, func(t *testing.T) {
+			k := fullCase(stage.Synchronous)
+			k.Stage.OutputCapacitors[0].Kind = parts.CeramicClass2
+			c.change(&k.Stage.OutputCapacitors[0])
+			r := builtinReport(k, "general-practice")
+			f := verdictOf(t, r, "general-practice/output-ceramic-bias")
+			require.Equal(t, rules.NotEvaluated, f.Verdict, f.Detail)
+			require.Equal(t, c.missing, f.Missing)
+			require.Equal(t, c.beyond, f.Beyond)
+			require.Equal(t, rules.Incomplete, r.Verdict)
+		})
+	}
+}
+
+// Without a thermal resistance the rise of a capacitor is counted at the upper end of
+// the resistance that is assumed for it.
+func TestCapacitorRiseWithoutThermalResistance(t *testing.T) {
+	s := stage.NewStage(stage.Synchronous, 1, 1, 0, false, false, false, false)
+	for _, f := range s.Fields() {
+		if f.ID == "output_capacitors/0/thermal/junction_to_ambient_k_per_w" {
+			require.InDelta(t, 2.5, f.Default.High/f.Default.Value, 1e-12, "the factor of the rules")
+		}
+	}
+	c := fullCase(stage.Synchronous)
+	setGreatest(c, quantity.OutputCapacitorTemperature, 80)
+	require.Equal(t, rules.Passed, builtinReport(c, "general-practice").Verdict)
+	c.Stage.OutputCapacitors[0].Thermal.JunctionToAmbient = unknown
+	f := verdictOf(t, builtinReport(c, "general-practice"), "general-practice/output-capacitor-temperature")
+	require.Equal(t, rules.Fail, f.Verdict)
+	require.InDelta(t, 110, f.Value, 1e-9, "60 degC and 2.5 times 20 K")
+}
+
+// A pack that tells capacitors apart by kind says so where it has nothing for one.
+func TestKindsThatAPackDoesNotCoverAreNamed(t *testing.T) {
+	c := fullCase(stage.Synchronous)
+	c.Stage.InputCapacitors[0].Kind, c.Requirement.Input.Max = parts.CeramicClass1, 28
+	alone := builtinReport(c, "eee-inst-002-capacitors")
+	f := verdictOf(t, alone, rules.RuleCoverage)
+	require.Equal(t, "/stage/output_capacitors/0", f.Pointer, "a polymer capacitor")
+	require.Equal(t, rules.NotEvaluated, f.Verdict)
+	require.Equal(t, "eee-inst-002-capacitors", f.Pack)
+	require.Equal(t, rules.Incomplete, alone.Verdict)
+	e, _ := Builtin().Pack("eee-inst-002-capacitors")
+	g, _ := Builtin().Pack("general-practice")
+	both := rules.Check(c, []*rules.Pack{e.Pack, g.Pack}, nil, rules.Date{})
+	require.Equal(t, rules.Warning, verdictOf(t, both, rules.RuleCoverage).Severity, "the other pack judges it")
+	require.Equal(t, rules.Passed, both.Verdict)
 }
 
 // Every stress that general practice covers must be able to fail, at its place.
@@ -89,6 +149,13 @@ func TestGeneralPracticeCoverage(t *testing.T) {
 		{"output-ceramic-ripple-current", "/stage/output_capacitors/0/rating/ripple_current_a", stage.Synchronous, kinds(parts.CeramicClass2, greatest(quantity.OutputCapacitorRMS, 6.1))},
 		{"input-capacitor-ripple-current", "/stage/input_capacitors/0/rating/ripple_current_a", stage.Synchronous, greatest(quantity.InputCapacitorBankRMS, 6.1)},
 		{"input-ceramic-ripple-current", "/stage/input_capacitors/0/rating/ripple_current_a", stage.Synchronous, kinds(parts.CeramicClass1, greatest(quantity.InputCapacitorBankRMS, 6.1))},
+		{"output-ceramic-bias", "/stage/output_capacitors/0/capacitance_at_bias", stage.Synchronous, kinds(parts.CeramicClass2, func(c *rules.Case) {
+			c.Stage.OutputCapacitors[0].CapacitanceAtBias.X[1] = 4.95
+			setGreatest(c, quantity.OutputMean, 4.9)
+		})},
+		{"input-ceramic-bias", "/stage/input_capacitors/0/capacitance_at_bias", stage.Synchronous, kinds(parts.CeramicClass2, func(c *rules.Case) {
+			c.Stage.InputCapacitors[0].CapacitanceAtBias.X[1] = 29
+		})},
 		{"output-capacitor-temperature", "/stage/output_capacitors/0/rating/temperature_degc", stage.Synchronous, greatest(quantity.OutputCapacitorTemperature, 106)},
 		{"input-capacitor-temperature", "/stage/input_capacitors/0/rating/temperature_degc", stage.Synchronous, greatest(quantity.InputCapacitorTemperature, 106)},
 		{"output-capacitor-life", "/stage/output_capacitors/0/life/rated_s", stage.Synchronous, least(quantity.OutputCapacitorLife, 0.9e7)},

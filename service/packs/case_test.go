@@ -5,6 +5,7 @@ import (
 	"math/rand/v2"
 	"testing"
 
+	"railproof/calc/numeric"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/rules"
@@ -33,6 +34,7 @@ func fullCase(r stage.Rectifier) *rules.Case {
 		c.Kind, c.Count = parts.AluminiumPolymer, 2
 		c.Rating = parts.CapacitorRating{Voltage: 50, RippleCurrent: 3, TemperatureDegC: 105}
 		c.Life.Rated = 1e8
+		c.CapacitanceAtBias = numeric.Table{X: []float64{0, 40}, Y: []float64{1, 0.5}}
 	}
 	s.Controller.Drive, s.Controller.MinOnTime, s.Controller.MinOffTime, s.Controller.MaxDutyRatio = 5, 80e-9, 120e-9, 0.95
 	s.Controller.Rating = parts.ControllerRating{Input: 40, JunctionDegC: 125}

@@ -131,7 +131,7 @@ func (c *compiler) rule(pack string, d *RuleDocument, at string) rules.Rule {
 		body := rules.Body{Scope: scope}
 		if d.When != "" {
 			if e := c.expression(at+"/when", d.When, scope, dimension{truth: true}); e != nil {
-				body.When = e.holds
+				body.When, body.ByKind = e.holds, slices.Contains(e.reads, "part.kind")
 			}
 		}
 		value, bound := c.expression(at+"/value", string(d.Value), scope, unit), c.expression(limitAt, string(limit), scope, unit)

@@ -26,6 +26,7 @@
 //	stage_greatest.F
 //	part.F, part_least.F, part_greatest.F    the same of the part in scope
 //	part.kind, part.count, part.assumed      of a capacitor bank, of any part
+//	part.capacitance_at_bias_to_v            last voltage of a bank's bias table
 //	stage.rectifier, stage.phase_count, stage.has_loop, stage.has_feedback
 //	requirement.F          a number of the requirement
 //	parameter.P            a constant of the pack

@@ -58,6 +58,16 @@ func TestVerdicts(t *testing.T) {
 	danger.Cautions = []caution.Caution{{Code: caution.BeyondAbsoluteMaximum, Pointer: "/stage/high_side/rating/drain_source_v", Value: 50, Detail: "voltage"}}
 	assumed := assessed(finding("a", rules.Pass, 0.1))
 	assumed.Assumed = []string{"/stage/inductor/dc_resistance_ohm", "/stage/board/input_path_ohm"}
+	worse, cured := elsewhere, elsewhere
+	worse.Margin, cured.Verdict = 0.05, rules.Pass
+	kept, ofKind := finding("kept", rules.Pass, 0.1), finding("for-one-kind", rules.Pass, 0.1)
+	ofKind.ByKind = true
+	bare := warning
+	bare.Rule = rules.RuleCoverage
+	narrow := finding("a", rules.Pass, 0.04)
+	narrow.WorstBy = rules.VerticesSeeded
+	searched := narrow
+	searched.WorstBy = rules.Vertices
 	cases := []struct {
 		name          string
 		before, after *Assessment
@@ -81,6 +91,13 @@ func TestVerdicts(t *testing.T) {
 		{"review/never-evaluated", assessed(finding("a", rules.NotEvaluated, math.NaN())), assessed(finding("a", rules.NotEvaluated, math.NaN())), NeedsReview, ReasonUnevaluated},
 		{"review/warning-data-lost", assessed(finding("a", rules.Pass, 1), warningPassed), assessed(finding("a", rules.Pass, 1), warning), NeedsReview, ReasonUnevaluated},
 		{"review/stand-in-value", assessed(finding("a", rules.Pass, 0.1)), assumed, NeedsReview, ReasonMissing},
+		{"review/waived-elsewhere-and-worse", assessed(finding("a", rules.Pass, 1), elsewhere), assessed(finding("a", rules.Pass, 1), worse), NeedsReview, ReasonWaiver},
+		{"review/new-failure-under-a-waiver", assessed(finding("a", rules.Pass, 1), cured), assessed(finding("a", rules.Pass, 1), elsewhere), NeedsReview, ReasonWaiver},
+		{"review/no-rule-judges-it-any-more", assessed(finding("a", rules.Pass, 1), kept), assessed(finding("a", rules.Pass, 1)), NeedsReview, ReasonUnevaluated},
+		{"accepted/a-rule-for-another-kind", assessed(finding("a", rules.Pass, 1), ofKind), assessed(finding("a", rules.Pass, 1)), Accepted, ""},
+		{"review/a-pack-without-rules-for-its-kind", assessed(finding("a", rules.Pass, 1), ofKind), assessed(finding("a", rules.Pass, 1), bare), NeedsReview, ReasonUnevaluated},
+		{"review/narrow-pass-of-a-shortened-search", assessed(finding("a", rules.Pass, 0.2)), assessed(narrow), NeedsReview, ReasonUnevaluated},
+		{"accepted/narrow-pass-of-a-whole-search", assessed(finding("a", rules.Pass, 0.2)), assessed(searched), Accepted, ""},
 		{"review/waiver", assessed(finding("a", rules.Waived, -0.1)), assessed(finding("a", rules.Waived, -0.1)), NeedsReview, ReasonWaiver},
 	}
 	for _, c := range cases {
