@@ -21,6 +21,7 @@ type BomRail struct {
 	At         string // pointer of the rail: "/rails/0"
 	Proof      Proof
 	Bindings   []bom.Binding
+	Lineless   []string // roles that no line stands for
 	Ranges     []bom.Range
 	Alternates []BomAlternate
 }
@@ -50,7 +51,7 @@ func (s *Service) BomChecks(ctx context.Context, r *BomChecksRequest) (*BomCheck
 		for i := range r.Rails {
 			rail := &r.Rails[i]
 			d := &rail.Proof.Design
-			rails[i] = bom.Rail{Name: rail.Name, Stage: d.Stage, Spreads: d.Variables, Bindings: rail.Bindings, Ranges: rail.Ranges}
+			rails[i] = bom.Rail{Name: rail.Name, Stage: d.Stage, Spreads: d.Variables, Bindings: rail.Bindings, Lineless: rail.Lineless, Ranges: rail.Ranges}
 			if err := s.alternates(ctx, rail, a, i); err != nil {
 				return err
 			}

@@ -7,8 +7,9 @@ import (
 	"railproof/api/wire"
 )
 
-// BomChecksCSV writes a line per bound line and difference, and one for a line that
-// agrees.
+// BomChecksCSV writes a line per bound line and difference, one for a line that
+// agrees, and one without a line of the document per difference about a role as a
+// whole.
 func BomChecksCSV(a *wire.BomChecksAnswer) []byte {
 	s := newSheet("line", "rail", "role", "designators", "verdict", "field", "proven", "found", "detail")
 	for i := range a.Lines {
@@ -23,6 +24,18 @@ func BomChecksCSV(a *wire.BomChecksAnswer) []byte {
 		}
 		for _, d := range l.Differences {
 			s.row(append(head[:5:5], d.Field, words(d.Proven), words(d.Found), words(d.Detail))...)
+		}
+	}
+	for i := range a.Rails {
+		r := &a.Rails[i]
+		for _, role := range r.Roles {
+			for _, d := range role.Differences {
+				verdict := "needs-review"
+				if d.Verdict == "fail" {
+					verdict = "differs"
+				}
+				s.row("", words(r.Name), role.Role, "", verdict, d.Field, words(d.Proven), words(d.Found), words(d.Detail))
+			}
 		}
 	}
 	return s.bytes()

@@ -38,6 +38,7 @@ var (
 	overall    = map[string]rules.Overall{"pass": rules.Passed, "fail": rules.Failed, "incomplete": rules.Incomplete}
 	verdicts   = map[string]rules.Verdict{"pass": rules.Pass, "fail": rules.Fail, "waived": rules.Waived, "not-evaluated": rules.NotEvaluated}
 	severities = map[string]rules.Severity{"error": rules.Error, "warning": rules.Warning, "note": rules.Note}
+	searches   = map[string]rules.Search{"search": rules.InBox, "seeded-search": rules.InBoxSeeded, "vertices": rules.Vertices, "seeded-vertices": rules.VerticesSeeded}
 	relations  = map[string]rules.Relation{"at-most": rules.AtMost, "at-least": rules.AtLeast}
 )
 
@@ -46,7 +47,7 @@ func findingOf(w *wire.Finding) rules.Finding {
 	f := rules.Finding{
 		Rule: w.Rule, Title: w.Title, Severity: severities[w.Severity], Pointer: w.Pointer, Relation: relations[w.Relation],
 		Value: unknownOr(w.Value), Limit: unknownOr(w.Limit), Unit: w.Unit, Margin: unknownOr(w.Margin), ValueLow: unknownOr(w.ValueLow), ValueHigh: unknownOr(w.ValueHigh),
-		WithinBand: w.WithinBand != nil && *w.WithinBand, Verdict: verdicts[w.Verdict], WaivedFrom: verdicts[w.WaivedFrom],
+		WorstBy: searches[w.WorstBy], WithinBand: w.WithinBand != nil && *w.WithinBand, Verdict: verdicts[w.Verdict], WaivedFrom: verdicts[w.WaivedFrom],
 		Missing: w.Missing, Beyond: w.Beyond, Detail: w.Detail, Basis: w.Basis, Pack: w.Pack, Edition: w.Edition, Provenance: w.Provenance, Origin: w.Origin,
 	}
 	if v := w.Waiver; v != nil {

@@ -115,6 +115,21 @@ func (p *page) passed(list []wire.Finding) {
 			break
 		}
 	}
+	if vertices := searchedAtVertices(passes); vertices != "" {
+		p.wrapped("The worst values of "+vertices+" are the worst at vertices of tolerances and conditions, not searched for inside.", "")
+	}
+}
+
+// searchedAtVertices names the rules whose worst values were looked for at vertices
+// only.
+func searchedAtVertices(list []*wire.Finding) string {
+	var names []string
+	for _, f := range list {
+		if name := bareRule(f.Rule); strings.HasSuffix(f.WorstBy, "vertices") && !slices.Contains(names, name) {
+			names = append(names, name)
+		}
+	}
+	return strings.Join(names, ", ")
 }
 
 func shortPercent(ratio float64) string {

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 
 	"railproof/calc/parts"
@@ -61,6 +62,7 @@ type Rail struct {
 	Requirement *Requirement `json:"requirement"`
 	Conditions  *Conditions  `json:"conditions,omitzero"`
 	Bindings    []Binding    `json:"bindings"`
+	Lineless    []string     `json:"roles_without_line,omitzero"`
 	Ranges      []BomRange   `json:"designator_ranges,omitzero"`
 	Alternates  []Alternate  `json:"alternates,omitzero"`
 }
@@ -151,6 +153,12 @@ func (w *Rail) decode(at string) (*service.BomRail, []Fault) {
 	r := &service.BomRail{Name: w.Name, At: at, Proof: *p}
 	faults := w.alternates(at, r)
 	faults = append(faults, w.bindings(at, r)...)
+	for i, role := range w.Lineless {
+		if slices.ContainsFunc(w.Bindings, func(b Binding) bool { return b.Role == role }) {
+			faults = append(faults, Fault{Pointer: fmt.Sprintf("%s/roles_without_line/%d", at, i), Keyword: "role", Detail: "the role is bound to designators", Received: role})
+		}
+	}
+	r.Lineless = w.Lineless
 	for i, g := range w.Ranges {
 		one, err := bom.ParseRange(g.From, g.To)
 		if err != nil {

@@ -3,6 +3,7 @@ package main
 import (
 	"context"
 	"flag"
+	"net/url"
 	"os"
 	"path/filepath"
 
@@ -41,7 +42,7 @@ func writeSARIF(to string) around {
 	return around{after: func(from string, body []byte, a *exchange.Answer) error {
 		uri := ""
 		if from != "-" {
-			uri = filepath.ToSlash(from)
+			uri = (&url.URL{Path: filepath.ToSlash(from)}).String()
 		}
 		places, err := sarif.Locate(body)
 		if err != nil {

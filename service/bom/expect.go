@@ -19,9 +19,37 @@ type Expectation struct {
 	Value      float64 // SI unit of the kind
 	Min, Max   float64 // ends of the proven spread
 	Voltage    float64 // V, proven rating; NaN if none was given
-	Class      string  // "class-1" or "class-2" of a ceramic capacitor, else ""
+	Saturation float64 // A, proven rating of an inductor; NaN if none was given
+	Heating    float64 // A, the same
+	Class      string  // of a capacitor: "class-1" or "class-2" ceramic, or noCeramic; "" if the proof does not tell
 	Count      int     // pieces on the board
 	PartNumber string
+}
+
+// noCeramic is the class of a capacitor of another kind than ceramic.
+const noCeramic = "no ceramic"
+
+// Roles lists the parts of a proven stage that stand on a board: those for which
+// Expect knows something to compare.
+func Roles(s *stage.Stage, spreads []spread.Variable) (list []string) {
+	roles := []string{"high_side", "low_side", "diode", "inductor"}
+	if s.Controller.PartNumber != "" {
+		roles = append(roles, "controller")
+	}
+	for i := range s.OutputCapacitors {
+		roles = append(roles, "output_capacitors/"+strconv.Itoa(i))
+	}
+	for i := range s.InputCapacitors {
+		roles = append(roles, "input_capacitors/"+strconv.Itoa(i))
+	}
+	roles = append(roles, "feedback/upper_ohm", "feedback/lower_ohm", "compensator/feedback_ohm", "compensator/lead_ohm",
+		"compensator/feedback_f", "compensator/shunt_f", "compensator/lead_f")
+	for _, role := range roles {
+		if e, ok := Expect(s, spreads, role); ok && (!e.HasValue || e.Value > 0) {
+			list = append(list, role)
+		}
+	}
+	return list
 }
 
 // Expect returns what a proven stage says about a role: high_side, low_side,
@@ -29,7 +57,7 @@ type Expectation struct {
 // compensator such as feedback/upper_ohm. ok is false if the stage has no such
 // part.
 func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectation, ok bool) {
-	e = Expectation{Role: role, Count: 1, Voltage: math.NaN(), Value: math.NaN(), Min: math.NaN(), Max: math.NaN()}
+	e = Expectation{Role: role, Count: 1, Voltage: math.NaN(), Saturation: math.NaN(), Heating: math.NaN(), Value: math.NaN(), Min: math.NaN(), Max: math.NaN()}
 	phases := max(1, s.PhaseCount)
 	switch role {
 	case "high_side":
@@ -46,6 +74,7 @@ func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectati
 		return e, true
 	case "inductor":
 		e.PartNumber, e.Count, e.Kind = s.Inductor.PartNumber, phases, notation.Inductor
+		e.Saturation, e.Heating = s.Inductor.Rating.Saturation, s.Inductor.Rating.Heating
 		return e, e.value("inductor/inductance_h", s, spreads)
 	}
 	for _, side := range []struct {
@@ -60,6 +89,9 @@ func Expect(s *stage.Stage, spreads []spread.Variable, role string) (e Expectati
 					e.Class = "class-1"
 				case parts.CeramicClass2:
 					e.Class = "class-2"
+				case parts.CapacitorUnspecified:
+				default:
+					e.Class = noCeramic
 				}
 				return e, e.value(role+"/capacitance_f", s, spreads)
 			}

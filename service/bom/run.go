@@ -24,6 +24,7 @@ type Rail struct {
 	Stage    *stage.Stage
 	Spreads  []spread.Variable
 	Bindings []Binding
+	Lineless []string // roles that no line stands for, such as a compensator inside the controller
 	Ranges   []Range
 }
 
@@ -150,6 +151,11 @@ func (x *index) rail(ctx context.Context, number int, substitute Substitute) (Ra
 		out.Alternates = append(out.Alternates, alternates...)
 		out.Findings = append(out.Findings, x.binding(r, b, &e, alternates)...)
 	}
+	for _, role := range Roles(r.Stage, r.Spreads) {
+		if !slices.Contains(r.Lineless, role) && !slices.ContainsFunc(r.Bindings, func(b Binding) bool { return b.Role == role }) {
+			out.Findings = append(out.Findings, Finding{Rail: r.Name, Role: role, Aspect: AspectPresent, Detail: "no designator is bound to this part of the proof: nothing was compared with it"})
+		}
+	}
 	out.Unbound = x.unbound(r)
 	out.Verdict = overall(out.Findings)
 	return out, nil
@@ -199,6 +205,10 @@ func (x *index) binding(r *Rail, b *Binding, e *Expectation, alternates []Altern
 				order = append(order, lines[0])
 			}
 			perLine[lines[0]] = append(perLine[lines[0]], d)
+			if x.absent[d] {
+				base.Verdict, base.Row, base.Detail = rules.NotEvaluated, x.lines[lines[0]].Row, "stands on a line that is not fitted too: which holds?"
+				found = append(found, base)
+			}
 		}
 	}
 	v, detail := rules.Pass, "as many pieces as were proven"

@@ -134,6 +134,7 @@ type resultBag struct {
 	ValueHigh  *float64 `json:"value_high,omitempty"`
 	WithinBand bool     `json:"within_model_band,omitempty"`
 	Corners    []string `json:"corners,omitempty"`
+	WorstBy    string   `json:"worst_by,omitempty"`
 	Missing    []string `json:"missing,omitempty"`
 	Beyond     []string `json:"beyond_tables,omitempty"`
 	WaivedBy   string   `json:"waived_by,omitempty"`

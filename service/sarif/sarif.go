@@ -97,7 +97,7 @@ func (w *writer) result(f *rules.Finding) result {
 	r.Fingerprints = fingerprints{f.Rule + " " + f.Pointer}
 	r.Properties = resultBag{
 		Verdict: f.Verdict.String(), Relation: f.Relation.String(), Value: number(f.Value), Limit: number(f.Limit), Unit: f.Unit, Margin: number(f.Margin),
-		ValueLow: number(f.ValueLow), ValueHigh: number(f.ValueHigh), WithinBand: f.WithinBand, Missing: f.Missing, Beyond: f.Beyond,
+		ValueLow: number(f.ValueLow), ValueHigh: number(f.ValueHigh), WithinBand: f.WithinBand, WorstBy: f.WorstBy.String(), Missing: f.Missing, Beyond: f.Beyond,
 	}
 	if w.options.Corner != nil {
 		for _, c := range f.Corners {

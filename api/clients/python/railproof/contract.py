@@ -191,7 +191,7 @@ class Modulator(TypedDict):
     sense_ohm: NotRequired[Union[float, 'Spread']]  # [Ohm] Current sense gain, volts at the comparator per ampere. Required for peak current mode.
     slope_v_per_s: NotRequired[Union[float, 'Spread']]  # [V/s] Slope compensation at the comparator. Default 0.
     delay_s: NotRequired[Union[float, 'Spread']]  # [s] Comparator and driver delay. Default 0, reported.
-    current_limit_a: NotRequired[float]  # [A] Peak inductor current of one phase, cycle by cycle.
+    current_limit_a: NotRequired[float]  # [A] Peak inductor current of one phase, cycle by cycle: the greatest that the limit lets pass, its own tolerance included.
 
 
 class Compensator(TypedDict):
@@ -677,12 +677,16 @@ class Rail(TypedDict):
     requirement: 'Requirement'
     conditions: NotRequired['Conditions']
     bindings: List['Binding']
+    roles_without_line: NotRequired[List['BomRole']]  # Roles that no line stands for, such as a compensator or the switches inside the controller. Every other part of the proof that is bound to no designator leaves the rail incomplete.
     designator_ranges: NotRequired[List[Dict[str, Any]]]  # Designators that belong to the rail; unbound lines in them are listed.
     alternates: NotRequired[List['Alternate']]
 
 
+BomRole = str
+
+
 class Binding(TypedDict):
-    role: str  # Role of a part, or a resistor or capacitor of feedback and compensator.
+    role: 'BomRole'
     designators: List[str]
 
 
@@ -1667,6 +1671,7 @@ class Finding(TypedDict):
     value_high: NotRequired[float]  # Greatest.
     within_band: NotRequired[bool]  # The margin is smaller than the band: the verdict could turn.
     corners: NotRequired[List['Corner']]  # Where the values are worst.
+    worst_by: NotRequired[Literal['search', 'seeded-search', 'vertices', 'seeded-vertices']]  # How the worst of the values was looked for; absent where none is a worst value. search: at vertices of the box of tolerances and conditions, then inside it. seeded-search: the same from known worst points, with every coordinate moved in turn, not inside the box. vertices: at the vertices that sensitivities point to and no further, as for every quantity of loop and load step. It is the worst found, not proven. seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 5 % of a load step's and 10 % of a recovery time.
     missing: NotRequired[List[str]]  # Data that a verdict would need.
     beyond: NotRequired[List[str]]
     detail: str

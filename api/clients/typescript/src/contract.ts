@@ -900,7 +900,7 @@ export interface components {
             delay_s?: number | components["schemas"]["Spread"];
             /**
              * Format: double
-             * @description Peak inductor current of one phase, cycle by cycle.
+             * @description Peak inductor current of one phase, cycle by cycle: the greatest that the limit lets pass, its own tolerance included.
              */
             current_limit_a?: number;
         };
@@ -1897,6 +1897,11 @@ export interface components {
             requirement: components["schemas"]["Requirement"];
             conditions?: components["schemas"]["Conditions"];
             bindings: components["schemas"]["Binding"][];
+            /**
+             * @description Roles that no line stands for, such as a compensator or the switches inside the controller.
+             *     Every other part of the proof that is bound to no designator leaves the rail incomplete.
+             */
+            roles_without_line?: components["schemas"]["BomRole"][];
             /** @description Designators that belong to the rail; unbound lines in them are listed. */
             designator_ranges?: {
                 from: string;
@@ -1904,9 +1909,10 @@ export interface components {
             }[];
             alternates?: components["schemas"]["Alternate"][];
         };
+        /** @description Role of a part, or a resistor or capacitor of feedback and compensator. */
+        BomRole: string;
         Binding: {
-            /** @description Role of a part, or a resistor or capacitor of feedback and compensator. */
-            role: string;
+            role: components["schemas"]["BomRole"];
             designators: string[];
         };
         BomChecksRequest: {
@@ -3894,6 +3900,15 @@ export interface components {
             within_band?: boolean;
             /** @description Where the values are worst. */
             corners?: components["schemas"]["Corner"][];
+            /**
+             * @description How the worst of the values was looked for; absent where none is a worst value.
+             *     search: at vertices of the box of tolerances and conditions, then inside it.
+             *     seeded-search: the same from known worst points, with every coordinate moved in turn, not inside the box.
+             *     vertices: at the vertices that sensitivities point to and no further, as for every quantity of loop and load step. It is the worst found, not proven.
+             *     seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 5 % of a load step's and 10 % of a recovery time.
+             * @enum {string}
+             */
+            worst_by?: "search" | "seeded-search" | "vertices" | "seeded-vertices";
             /** @description Data that a verdict would need. */
             missing?: string[];
             beyond?: string[];
