@@ -1,7 +1,6 @@
 package service
 
 import (
-	"fmt"
 	"math"
 
 	"railproof/calc/loop"
@@ -34,6 +33,12 @@ func (r *TransientsRequest) seen(a *TransientsAnswer) Seen {
 	if r.Event.Kind != StartUpEvent {
 		list = list[min(1, len(list)):]
 	}
+	if len(list) == 0 { // the run ended before the event
+		unknown := transient.Sample{At: parts.Unknown, Value: parts.Unknown}
+		x.Least, x.Greatest, x.Recovery = unknown, unknown, parts.Unknown
+		x.Down, x.Up, x.Peak, x.Valley = parts.Unknown, parts.Unknown, parts.Unknown, parts.Unknown
+		return x
+	}
 	x.Least.Value, x.Greatest.Value = math.Inf(1), math.Inf(-1)
 	for i := range list {
 		o := &list[i]
@@ -53,9 +58,7 @@ func (r *TransientsRequest) seen(a *TransientsAnswer) Seen {
 	if a.Run.Final.At > 0 {
 		x.After = a.Run.Final.Mean
 	}
-	if len(list) > 0 {
-		r.excursions(&x, list[len(list)-1].Target)
-	}
+	r.excursions(&x, list[len(list)-1].Target)
 	return x
 }
 
@@ -84,11 +87,11 @@ func (r *TransientsRequest) judge(a *TransientsAnswer, before, after loop.Stabil
 		a.Status, a.Detail = "no-comparison", "the loop has no periodic operation at the starting point that the run could begin with"
 		a.Ran = false
 	case run.Status == transient.Collapsed:
-		a.Status, a.Detail = "collapsed", fmt.Sprintf("the load drags the output below zero %s s after the event", short(run.At-a.Lead))
+		a.Status, a.Detail = "collapsed", "the load drags the output below zero "+sinceEvent(run.At-a.Lead)
 	case run.Status == transient.TooStiff:
 		a.Status, a.Detail = "not-converged", "a time constant is too short against the switching period to be followed"
 	case run.Status == transient.Stalled:
-		a.Status, a.Detail = "not-converged", fmt.Sprintf("more edges within one period than a controller can make, %s s after the event", short(run.At-a.Lead))
+		a.Status, a.Detail = "not-converged", "more edges within one period than a controller can make, "+sinceEvent(run.At-a.Lead)
 	case before == loop.Unstable:
 		a.Status, a.Detail = "unstable", "the loop does not hold its operating point before the event: what is shown is the oscillation that it settles to"
 	case run.Alternates:
@@ -96,6 +99,14 @@ func (r *TransientsRequest) judge(a *TransientsAnswer, before, after loop.Stabil
 	case after == loop.Unstable:
 		a.Status, a.Detail = "unstable", "the loop does not hold the operating point that follows the event"
 	}
+}
+
+// sinceEvent tells an instant [s], counted from the event.
+func sinceEvent(at float64) string {
+	if at < 0 {
+		return short(-at) + " s before the event"
+	}
+	return short(at) + " s after the event"
 }
 
 // rests adds what a run rests on besides.

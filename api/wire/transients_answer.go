@@ -74,16 +74,16 @@ func EncodeTransients(w *TransientsRequest, a *service.TransientsAnswer, head He
 	recovered, known := parts.Known(x.Recovery), parts.Known(a.Rating)
 	out.Cycles, out.Duration, out.Band = Integer(a.Run.Periods), &a.Duration, &a.Band
 	out.Before, out.After, out.Expected = given(&x.Before), given(&x.After), given(&a.Expected)
-	out.Down, out.Up, out.Overshoot = &x.Down, &x.Up, given(&x.Overshoot)
+	out.Down, out.Up, out.Overshoot = given(&x.Down), given(&x.Up), given(&x.Overshoot)
 	if x.Down > 0 {
 		out.DownAt = &x.Least.At
 	}
 	if x.Up > 0 {
 		out.UpAt = &x.Greatest.At
 	}
-	out.Least, out.Greatest = &x.Least.Value, &x.Greatest.Value
+	out.Least, out.Greatest = given(&x.Least.Value), given(&x.Greatest.Value)
 	out.Recovered, out.Recovery = &recovered, given(&x.Recovery)
-	out.InductorPeak, out.InductorValley = &x.Peak, &x.Valley
+	out.InductorPeak, out.InductorValley = given(&x.Peak), given(&x.Valley)
 	if known {
 		out.Saturation, out.Saturated = &a.Rating, &x.Saturates
 	}

@@ -6,6 +6,7 @@ import (
 	"math/rand/v2"
 	"net/http"
 	"net/http/httptest"
+	"os"
 	"sort"
 	"strings"
 	"testing"
@@ -20,6 +21,7 @@ func answer(t testing.TB, h http.Handler, op openapi.Operation, body []byte) *ht
 	t.Helper()
 	r := httptest.NewRequestWithContext(t.Context(), op.Method, op.Path, strings.NewReader(string(body)))
 	r.Header.Set("Content-Type", "application/json")
+	r.Header.Set("X-Request-Id", "derived") // else a problem's instance differs
 	w := httptest.NewRecorder()
 	h.ServeHTTP(w, r)
 	return w
@@ -29,6 +31,9 @@ func answer(t testing.TB, h http.Handler, op openapi.Operation, body []byte) *ht
 // declares, below 500, with a body that it describes.
 func sound(t testing.TB, op openapi.Operation, body []byte, w *httptest.ResponseRecorder) {
 	t.Helper()
+	if w.Code >= 500 {
+		keep(t, op, body)
+	}
 	require.Less(t, w.Code, 500, "body %.2000s\nanswer %.500s", body, w.Body)
 	if w.Code == http.StatusOK && strings.HasPrefix(w.Header().Get("Content-Type"), "text/html") {
 		return // a report, which has no schema
@@ -36,6 +41,17 @@ func sound(t testing.TB, op openapi.Operation, body []byte, w *httptest.Response
 	var tree any
 	require.NoError(t, json.Unmarshal(w.Body.Bytes(), &tree))
 	require.Empty(t, contract.ValidateResponse(op.ID, w.Code, tree), "body %.2000s", body)
+}
+
+// keep writes a request that must be looked at to a file, and tells where.
+func keep(t testing.TB, op openapi.Operation, body []byte) {
+	t.Helper()
+	f, err := os.CreateTemp("", op.ID+"-*.json")
+	require.NoError(t, err)
+	_, err = f.Write(body)
+	require.NoError(t, err)
+	require.NoError(t, f.Close())
+	t.Logf("%s %s: %s", op.Method, op.Path, f.Name())
 }
 
 // requests are the example requests of the operations that this version has.
@@ -130,9 +146,9 @@ func TestMutatedRequestsNeverBreakTheServer(t *testing.T) {
 	h := handler()
 	random := rand.New(rand.NewPCG(20, 26))
 	counts := map[int]int{}
-	rounds := 60
+	rounds := 20
 	if testing.Short() {
-		rounds = 10
+		rounds = 4
 	}
 	examples := requests(t)
 	texts := make([]string, 0, len(examples))
@@ -147,7 +163,7 @@ func TestMutatedRequestsNeverBreakTheServer(t *testing.T) {
 		n := rounds
 		switch op.ID {
 		case "corners", "reports", "substitutions", "ruleChecks", "bomChecks": // each is hundreds of evaluations at every corner
-			n = 1 + rounds/30
+			n = 1
 		}
 		for range n {
 			changed := tree
