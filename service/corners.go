@@ -23,6 +23,7 @@ type CornersAnswer struct {
 	Shares      []*corners.Attribution // per condition corner; nil where none was asked
 	Nominal     []float64              // [any] results at typical values and conditions
 	NominalEnd  evaluate.Status
+	FullLoad    *CornersAnswer // of the limits that hold at full load; nil: there are none
 	Basis       Basis
 
 	parts [][]byte // of the drawn units, counted elsewhere; nil: none were
@@ -40,12 +41,15 @@ func (s *Service) Corners(ctx context.Context, p *CornersPlan) (*CornersAnswer, 
 func (s *Service) CornersJoined(ctx context.Context, p *CornersPlan, parts [][]byte) (*CornersAnswer, error) {
 	a := &CornersAnswer{CornersPlan: p, parts: parts}
 	err := s.run(ctx, bulk, func() error {
-		d := s.driver(ctx, p)
-		steps := []func(*driver) error{a.searching, a.linear, a.sampling, a.attributing, a.resuming, a.sharing}
-		for _, step := range steps {
-			if err := step(d); err != nil {
+		if err := a.analyse(s.driver(ctx, p)); err != nil {
+			return err
+		}
+		if p.fullLoad != nil {
+			a.FullLoad = &CornersAnswer{CornersPlan: p.fullLoad}
+			if err := a.FullLoad.analyse(s.driver(ctx, p.fullLoad)); err != nil {
 				return err
 			}
+			a.Evaluations += a.FullLoad.Evaluations
 		}
 		s.concludeCorners(a)
 		s.done.corners(a)
@@ -55,6 +59,15 @@ func (s *Service) CornersJoined(ctx context.Context, p *CornersPlan, parts [][]b
 		return nil, err
 	}
 	return a, nil
+}
+
+func (a *CornersAnswer) analyse(d *driver) error {
+	for _, step := range []func(*driver) error{a.searching, a.linear, a.sampling, a.attributing, a.resuming, a.sharing} {
+		if err := step(d); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // pointsPerTask is the number of evaluations in a task of the search, for the

@@ -23,6 +23,10 @@ func (p *CornersPlan) Parts() (parts, evaluations int) {
 	if p.Methods.Attribution {
 		evaluations += at * p.perCorner
 	}
+	if p.fullLoad != nil {
+		_, more := p.fullLoad.Parts()
+		evaluations += more
+	}
 	if !p.Methods.MonteCarlo {
 		return 1, evaluations
 	}

@@ -2,11 +2,13 @@ package service
 
 import (
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
 	"railproof/calc/corners"
 	"railproof/calc/quantity"
+	"railproof/calc/rules"
 	"railproof/calc/stage"
 )
 
@@ -28,6 +30,7 @@ type CornersPlan struct {
 
 	limits    []corners.Limit // those at the worst, for the yield
 	given     [][]float64     // condition corners of the request
+	fullLoad  *CornersPlan    // of the limits that hold at full load; nil: there are none
 	search    bool
 	expected  corners.Cost
 	perCorner int // evaluations of the attribution
@@ -59,6 +62,34 @@ func (i *CornersItem) Targets() []int {
 
 // Plan binds the request and checks what it would cost.
 func (r *CornersRequest) Plan() (*CornersPlan, []Refusal) {
+	rest, full := r.split()
+	p, refused := rest.plan()
+	if full != nil && refused == nil {
+		p.fullLoad, refused = full.plan()
+	}
+	return p, refused
+}
+
+// split takes the limits that hold at full load into an analysis of their own,
+// with the load held at its greatest and by extreme value: the units that are
+// drawn meet the conditions of the others. Where the load has no width, full load
+// is everywhere.
+func (r *CornersRequest) split() (rest, full *CornersRequest) {
+	current, conductance := r.Conditions.LoadCurrent, r.Conditions.LoadConductance
+	atFullLoad := func(l CornersLimit) bool { return l.Where == rules.AtFullLoad }
+	if current.Max == current.Min && conductance.Max == conductance.Min || !slices.ContainsFunc(r.Limits, atFullLoad) {
+		return r, nil
+	}
+	rest, full = new(*r), new(*r)
+	rest.Limits = slices.DeleteFunc(slices.Clone(r.Limits), atFullLoad)
+	full.Limits = slices.DeleteFunc(slices.Clone(r.Limits), func(l CornersLimit) bool { return !atFullLoad(l) })
+	full.Conditions.LoadCurrent, full.Conditions.LoadConductance = held(current.Max), held(conductance.Max)
+	full.Methods = CornersMethods{ExtremeValue: true, RootSumSquare: r.Methods.RootSumSquare}
+	full.Further, full.At = nil, nil
+	return rest, full
+}
+
+func (r *CornersRequest) plan() (*CornersPlan, []Refusal) {
 	p := &CornersPlan{CornersRequest: r}
 	options := corners.DesignOptions{Scales: r.scales(), Seed: r.Sampling.Seed}
 	targets := p.layOut(&options)
@@ -134,7 +165,7 @@ func (p *CornersPlan) layOut(o *corners.DesignOptions) []corners.Target {
 		if l == nil || !math.IsNaN(l.Max) {
 			item.Greatest = seek(corners.Greatest)
 		}
-		if l != nil && !l.Nominal {
+		if l != nil && l.Where != rules.AtNominal {
 			item.YieldLimit = len(p.limits)
 			p.limits = append(p.limits, corners.Limit{Quantity: at, Min: l.Min, Max: l.Max})
 		}

@@ -4,6 +4,7 @@ import (
 	"railproof/calc/loop"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
+	"railproof/calc/rules"
 	"railproof/calc/stage"
 )
 
@@ -70,7 +71,7 @@ func (l *CornersLimit) Impossible(c *stage.Conditions) string {
 		return "the quantity is always above zero"
 	}
 	hottest := c.AmbientDegC.Max
-	if l.Nominal {
+	if l.Where == rules.AtNominal {
 		hottest = c.AmbientDegC.Typ
 	}
 	if info.Unit == "Cel" && l.Max < hottest {

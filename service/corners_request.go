@@ -5,6 +5,7 @@ import (
 
 	"railproof/calc/corners"
 	"railproof/calc/quantity"
+	"railproof/calc/rules"
 	"railproof/calc/sampling"
 	"railproof/calc/stage"
 )
@@ -36,8 +37,8 @@ type CornersMethods struct{ ExtremeValue, RootSumSquare, MonteCarlo, Attribution
 type CornersLimit struct {
 	Quantity quantity.ID
 	Min, Max float64 // [any] NaN: none
-	Nominal  bool    // holds at typical values and conditions, not at the worst
-	At       string  // pointer in the request: "/limits/0"
+	Where    rules.Where
+	At       string // pointer in the request: "/limits/0"
 }
 
 // Broken reports whether the value breaks the limit.

@@ -13,7 +13,10 @@ import (
 // concludeCorners judges and gathers what the answer rests on.
 func (s *Service) concludeCorners(a *CornersAnswer) {
 	a.judge()
-	s.bands(a)
+	parts := []*CornersAnswer{a}
+	if a.FullLoad != nil {
+		parts = append(parts, a.FullLoad)
+	}
 	d := &a.Design
 	var seen caution.Seen
 	var warn warnings
@@ -28,10 +31,14 @@ func (s *Service) concludeCorners(a *CornersAnswer) {
 	seen.Add("/conditions", d.Stage, &point, &r)
 	warn.scale(d, &point, &r)
 	warn.typicalControl(d, "/conditions", &point.Control)
-	for i := range a.Extremes {
-		if a.Extremes[i].At != nil {
-			s.seeExtreme(a, &a.Extremes[i], &seen)
+	for _, part := range parts {
+		s.bands(part)
+		for i := range part.Extremes {
+			if part.Extremes[i].At != nil {
+				s.seeExtreme(part, &part.Extremes[i], &seen)
+			}
 		}
+		part.warnLinear(&warn)
 	}
 	a.warn(&warn)
 	var base *basis
@@ -67,8 +74,10 @@ func (a *CornersAnswer) warn(w *warnings) {
 			w.add("no-width", c.pointer, "the range has no width: the condition is held at %s", c.r.Min)
 		}
 	}
-	a.warnLinear(w)
 	if a.Run != nil {
+		if a.FullLoad != nil {
+			w.keep(Warning{"full-load", "/limits", "limits that hold at full load are looked at by extreme value: the drawn units and their yield leave them out"})
+		}
 		a.warnSamples(w)
 	}
 	if len(a.given) == 0 && len(a.Corners) == MostCorners {

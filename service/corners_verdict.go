@@ -5,6 +5,7 @@ import (
 
 	"railproof/calc/corners"
 	"railproof/calc/evaluate"
+	"railproof/calc/rules"
 )
 
 // CornersVerdict is what an analysis says of a limit, or of all.
@@ -39,6 +40,10 @@ func (a *CornersAnswer) judge() {
 		}
 		a.Verdict = max(a.Verdict, item.Verdict)
 	}
+	if full := a.FullLoad; full != nil {
+		full.judge()
+		a.Verdict, a.Status = max(a.Verdict, full.Verdict), worse(a.Status, full.Status)
+	}
 	switch {
 	case a.Verdict == Fail || a.Verdict == NoLimit && !anyEnd(ends):
 	case anyMisbehaviour(ends):
@@ -51,7 +56,7 @@ func (a *CornersAnswer) judge() {
 func (a *CornersAnswer) judgeItem(item *CornersItem, blind bool) {
 	l := item.Limit
 	item.Verdict = Pass
-	if l.Nominal {
+	if l.Where == rules.AtNominal {
 		v := a.Nominal[item.Index]
 		item.Margin = l.margin(v)
 		switch {

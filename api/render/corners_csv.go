@@ -22,10 +22,7 @@ func CornersCSV(a *wire.CornersAnswer) []byte {
 func (s *cornerSide) cells() []string {
 	at := ""
 	if s.q.Limit != nil {
-		at = "worst"
-		if s.q.Limit.At != "" {
-			at = s.q.Limit.At
-		}
+		at = limitPlace(s.q.Limit)
 	}
 	cells := []string{s.q.Quantity, s.q.Unit, s.name, numberOf(s.limit), at, s.q.Verdict, numberOf(s.q.Margin), numberOf(s.q.ModelBand), numberOf(s.q.Nominal)}
 	cells = append(cells, s.worstCells()...)

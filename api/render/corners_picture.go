@@ -107,8 +107,10 @@ func verdictWords(q *wire.QuantityCorners) string {
 	if q.Margin != nil {
 		s += ", margin " + percent(*q.Margin)
 	}
-	if q.Limit != nil && q.Limit.At == "nominal" {
-		s += " at nominal"
+	if q.Limit != nil {
+		if at := limitPlace(q.Limit); at != worstPlace {
+			s += " at " + at
+		}
 	}
 	if q.WithinBand != nil && *q.WithinBand {
 		s += ", within the model's band"

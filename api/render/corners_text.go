@@ -169,8 +169,8 @@ func (s *cornerSide) bound() string {
 		return s.name
 	}
 	sign := map[string]string{"least": "≥ ", "greatest": "≤ "}[s.name]
-	if s.q.Limit.At == "nominal" {
-		sign = "nominal " + sign
+	if at := limitPlace(s.q.Limit); at != worstPlace {
+		sign = at + " " + sign
 	}
 	return sign + Figure3(*s.limit, s.q.Unit)
 }

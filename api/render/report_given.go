@@ -27,8 +27,11 @@ func (r *Report) requirement() []part {
 				}
 				return Figure3(v, unitOfKey(key))
 			}
-			at, _ := m["at"].(string)
-			t.Rows = append(t.Rows, row("tnnt", key, end("min"), end("max"), nameOr(at, "worst")))
+			var holds wire.Limit
+			holds.At, _ = m["at"].(string)
+			full, _ := m["full_load"].(bool)
+			holds.FullLoad = &full
+			t.Rows = append(t.Rows, row("tnnt", key, end("min"), end("max"), limitPlace(&holds)))
 		}
 		blocks = append(blocks, part{Head: "Limits"}, part{Table: t})
 	}

@@ -89,6 +89,9 @@ func (r *Report) worstCase() []part {
 		low, high := "", ""
 		if q.Limit != nil {
 			low, high = figureOf(q.Limit.Min, unit, factor), figureOf(q.Limit.Max, unit, factor)
+			if at := limitPlace(q.Limit); at != worstPlace {
+				name += ", " + at
+			}
 		}
 		cells := row("tnnnnnnt", name, figureOf(q.Nominal, unit, factor), found(q.Least, unit, factor), found(q.Greatest, unit, factor), low, high, optional(q.Margin, percent), "")
 		cells[7] = judged(q.Verdict)

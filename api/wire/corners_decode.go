@@ -107,8 +107,8 @@ func (w *CornersRequest) widthless() (faults []Fault) {
 func (w *CornersRequest) limits(r *service.CornersRequest) (faults []Fault) {
 	for i := range w.Limits {
 		l, at := &w.Limits[i], "/limits/"+strconv.Itoa(i)
-		if l.Min == nil && l.Max == nil {
-			faults = append(faults, Fault{Pointer: at, Keyword: "limit", Detail: "a limit needs min, max or both"})
+		if wrong := l.faults(at); wrong != nil {
+			faults = append(faults, wrong...)
 			continue
 		}
 		ids, fault := proofIDs(l.Quantity, r)
@@ -117,7 +117,7 @@ func (w *CornersRequest) limits(r *service.CornersRequest) (faults []Fault) {
 			continue
 		}
 		for _, id := range ids {
-			one := service.CornersLimit{Quantity: id, Min: or(l.Min, math.NaN()), Max: or(l.Max, math.NaN()), Nominal: l.At == "nominal", At: at}
+			one := service.CornersLimit{Quantity: id, Min: or(l.Min, math.NaN()), Max: or(l.Max, math.NaN()), Where: l.where(), At: at}
 			if why := one.Impossible(&r.Conditions); why != "" {
 				faults = append(faults, impossible(at, l, id, why))
 				break
@@ -148,7 +148,7 @@ func impossible(at string, l *Limit, id quantity.ID, why string) Fault {
 func contradicts(earlier []service.CornersLimit, l *service.CornersLimit) []Fault {
 	for i := range earlier {
 		e := &earlier[i]
-		if e.Quantity == l.Quantity && e.Nominal == l.Nominal && (e.Min > l.Max || l.Min > e.Max) {
+		if e.Quantity == l.Quantity && e.Where == l.Where && (e.Min > l.Max || l.Min > e.Max) {
 			return []Fault{{Pointer: l.At, Keyword: "limit", Detail: "no value meets this limit and the one at " + e.At}}
 		}
 	}

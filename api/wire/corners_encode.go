@@ -35,8 +35,10 @@ func EncodeCorners(w *CornersRequest, a *service.CornersAnswer, head Head) *Corn
 	for _, z := range a.Corners {
 		out.ConditionCorners = append(out.ConditionCorners, e.corner(z))
 	}
-	for i := range a.Items {
-		out.Quantities = append(out.Quantities, e.item(&a.Items[i]))
+	out.Quantities = e.items()
+	if a.FullLoad != nil {
+		full := &cornersEncoder{w, a.FullLoad}
+		out.Quantities, out.Failures = append(out.Quantities, full.items()...), append(out.Failures, full.failures()...)
 	}
 	if a.Run != nil {
 		out.Sampling = nameOf(samplingMethods, a.Sampling.Method)
@@ -44,6 +46,14 @@ func EncodeCorners(w *CornersRequest, a *service.CornersAnswer, head Head) *Corn
 		out.Yield, out.WorstSamples = e.yield(), e.worstSamples()
 	}
 	return out
+}
+
+func (e *cornersEncoder) items() []QuantityCorners {
+	list := make([]QuantityCorners, len(e.a.Items))
+	for i := range list {
+		list[i] = e.item(&e.a.Items[i])
+	}
+	return list
 }
 
 // corner shows the conditions at coordinates.

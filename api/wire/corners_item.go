@@ -48,9 +48,7 @@ func limitOf(i *service.CornersItem) *Limit {
 		return nil
 	}
 	l := &Limit{Quantity: i.Quantity.Key(), Min: given(&i.Limit.Min), Max: given(&i.Limit.Max)}
-	if i.Limit.Nominal {
-		l.At = "nominal"
-	}
+	l.holds(i.Limit.Where)
 	return l
 }
 

@@ -82,9 +82,9 @@ func (w *RuleChecksRequest) decode(root string) (*service.Proof, error) {
 func decodeProofLimits(at string, list []Limit, s *stage.Stage, c *stage.Conditions) (limits []rules.Limit, faults []Fault) {
 	for i := range list {
 		l, here := &list[i], at+"/"+strconv.Itoa(i)
-		one := rules.Limit{At: here, Min: or(l.Min, math.NaN()), Max: or(l.Max, math.NaN()), AtNominal: l.At == "nominal"}
-		if l.Min == nil && l.Max == nil {
-			faults = append(faults, Fault{Pointer: here, Keyword: "limit", Detail: "a limit needs min, max or both"})
+		one := rules.Limit{At: here, Min: or(l.Min, math.NaN()), Max: or(l.Max, math.NaN()), Where: l.where()}
+		if wrong := l.faults(here); wrong != nil {
+			faults = append(faults, wrong...)
 			continue
 		}
 		if one.Min > one.Max {

@@ -192,11 +192,7 @@ func (a *SizingAnswer) draft(from *service.SizingAnswer, at string) {
 	a.Divider = &Divider{Reference: d.Reference, Upper: d.Upper, Lower: d.Lower, Output: d.Output, Error: d.Error, WorstError: bounded(&d.WorstError), Series: d.Series.String()}
 	for i := range from.Limits {
 		l := &from.Limits[i]
-		limit := Limit{Quantity: l.Quantity.Key(), Min: bounded(&l.Least), Max: bounded(&l.Most)}
-		if l.FullLoad {
-			limit.At = "nominal"
-		}
-		a.Limits = append(a.Limits, limit)
+		a.Limits = append(a.Limits, Limit{Quantity: l.Quantity.Key(), Min: bounded(&l.Least), Max: bounded(&l.Most), FullLoad: mark(l.FullLoad)})
 	}
 	for i := range from.Checks {
 		a.Checks = append(a.Checks, encodeCheck(&from.Checks[i], at))

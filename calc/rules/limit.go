@@ -10,12 +10,22 @@ import (
 
 // Limit bounds one quantity.
 type Limit struct {
-	Quantity  quantity.ID
-	Min       float64 // [any] in the quantity's unit; NaN: none
-	Max       float64 // [any] in the quantity's unit; NaN: none
-	At        string  // pointer of the finding; "": by the place in the list
-	AtNominal bool    // must hold at typical values and conditions, not at the worst corner
+	Quantity quantity.ID
+	Min      float64 // [any] in the quantity's unit; NaN: none
+	Max      float64 // [any] in the quantity's unit; NaN: none
+	At       string  // pointer of the finding; "": by the place in the list
+	Where    Where
 }
+
+// Where tells where a limit must hold.
+type Where uint8
+
+// A limit holds at the worst corner, or where it says.
+const (
+	AtWorst    Where = iota
+	AtNominal        // at typical values and conditions
+	AtFullLoad       // at the worst corner with the load at its greatest
+)
 
 // LimitPack is the identifier of the pack that LimitRules makes.
 const LimitPack = "limits"
@@ -31,14 +41,11 @@ func LimitRules(at string, limits []Limit) *Pack {
 			pointer = at + "/" + strconv.Itoa(i)
 		}
 		key := l.Quantity.Key()
-		one := func(r Relation, root, side string, bound float64) {
+		one := func(r Relation, roots [AtFullLoad + 1]string, side string, bound float64) {
 			if !parts.Known(bound) {
 				return
 			}
-			if l.AtNominal {
-				root = rootNominal
-			}
-			name := root + key
+			name := roots[l.Where] + key
 			pack.Rules = append(pack.Rules, Rule{
 				ID: LimitPack + "/" + strings.ReplaceAll(key, "/", ".") + "." + side, Title: "Limit: " + info.Meaning,
 				Relation: r, Unit: info.Unit, Basis: "stated in the request", Message: limitMessage, Pointer: pointer,
@@ -49,8 +56,8 @@ func LimitRules(at string, limits []Limit) *Pack {
 				}},
 			})
 		}
-		one(AtLeast, rootLeast, "min", l.Min)
-		one(AtMost, rootGreatest, "max", l.Max)
+		one(AtLeast, [...]string{rootLeast, rootNominal, rootFullLoadLeast}, "min", l.Min)
+		one(AtMost, [...]string{rootGreatest, rootNominal, rootFullLoadGreatest}, "max", l.Max)
 	}
 	return pack
 }

@@ -404,10 +404,12 @@ func TestChangesHaveADirection(t *testing.T) {
 func TestLimitsOfARequestAreRules(t *testing.T) {
 	c := testCase()
 	c.Extremes[quantity.OutputCapacitorRMS+1] = Extreme{Greatest: Worst{Value: 0.7, Corner: 9}}
+	c.FullLoad = map[quantity.ID]Extreme{quantity.InductorRMS: {Least: Worst{Value: 6, Corner: 7}}}
 	nan := math.NaN()
 	limits := []Limit{
 		{Quantity: quantity.InductorRMS, Min: nan, Max: 7.5},
-		{Quantity: quantity.InductorRMS, Min: nan, Max: 7.5, AtNominal: true},
+		{Quantity: quantity.InductorRMS, Min: nan, Max: 7.5, Where: AtNominal},
+		{Quantity: quantity.InductorRMS, Min: 2, Max: nan, Where: AtFullLoad},
 		{Quantity: quantity.OutputMean, Min: 4.8, Max: 5.05},
 		{Quantity: quantity.OutputCapacitorRMS + 1, Min: nan, Max: 1},
 		{Quantity: quantity.PhaseMargin, Min: 40, Max: nan},
@@ -425,16 +427,18 @@ func TestLimitsOfARequestAreRules(t *testing.T) {
 	require.Equal(t, []row{
 		{"limits/inductor_rms_a.max", "/limits/0", Fail},
 		{"limits/inductor_rms_a.max", "/limits/1", Pass},
-		{"limits/output_mean_v.min", "/limits/2", Pass},
-		{"limits/output_mean_v.max", "/limits/2", Fail},
-		{"limits/output_capacitor_rms_a.1.max", "/limits/3", Pass},
-		{"limits/phase_margin_deg.min", "/limits/4", NotEvaluated},
+		{"limits/inductor_rms_a.min", "/limits/2", Pass},
+		{"limits/output_mean_v.min", "/limits/3", Pass},
+		{"limits/output_mean_v.max", "/limits/3", Fail},
+		{"limits/output_capacitor_rms_a.1.max", "/limits/4", Pass},
+		{"limits/phase_margin_deg.min", "/limits/5", NotEvaluated},
 	}, got)
 	require.Equal(t, "It is 8 A; the limit is 7.5 A.", r.Findings[0].Detail)
-	require.Equal(t, []int{9}, r.Findings[4].Corners)
-	require.Equal(t, []string{"phase_margin_deg"}, r.Findings[5].Missing)
+	require.Equal(t, []int{9}, r.Findings[5].Corners)
+	require.Equal(t, []string{"phase_margin_deg"}, r.Findings[6].Missing)
 	d := Needs(c, []*Pack{pack})
 	require.Equal(t, []quantity.ID{quantity.InductorRMS}, d.Nominal)
+	require.Equal(t, []quantity.ID{quantity.InductorRMS}, d.FullLoadLeast)
 	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.PhaseMargin}, d.Least)
 	require.Equal(t, []quantity.ID{quantity.OutputMean, quantity.InductorRMS, quantity.OutputCapacitorRMS + 1}, d.Greatest)
 }

@@ -135,7 +135,7 @@ func moves(before, after *Assessment, limits []rules.Limit) []Move {
 			continue
 		}
 		for _, l := range limits {
-			if l.Quantity == id && !l.AtNominal {
+			if l.Quantity == id && l.Where == rules.AtWorst {
 				m.Min, m.Max = l.Min, l.Max
 			}
 		}

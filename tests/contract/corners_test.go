@@ -252,6 +252,45 @@ func TestLimitsThatFailSayByHowMuch(t *testing.T) {
 	require.Equal(t, "fail", lineOf(t, a, "efficiency_ratio")["verdict"])
 }
 
+// A limit at full load is held by the worst value with the load at its greatest: the
+// one that sizing finds on its draft, and that the same limit as a rule finds.
+func TestLimitsAtFullLoad(t *testing.T) {
+	at := server(t)
+	request := exampleWith(t, "buoy-5v0/sizing.json", nil)
+	sized := asked(t, at, "sizing", request)
+	limit := of(sized["limits"], "quantity", "efficiency_ratio")
+	require.Equal(t, true, limit["full_load"])
+	worst := of(sized["checks"], "quantity", "efficiency_ratio")["worst"]
+
+	posted := object{"stage": sized["stage"], "conditions": sized["conditions"], "samples": 50, "limits": []any{limit, object{"quantity": "efficiency_ratio", "min": 0.5}}}
+	a := proved(t, at, posted)
+	require.Equal(t, "pass", a["verdict"])
+	require.Contains(t, string(encode(t, a["warnings"])), "full-load")
+	anywhere, full := within(a, "quantities", 0), within(a, "quantities", 1)
+	require.Equal(t, limit, within(full, "limit"))
+	require.InEpsilon(t, worst, within(full, "least", "value"), 1e-9)
+	require.Equal(t, within(sized, "conditions", "load", "current_a", "max"), within(full, "least", "point", "load", "current_a"))
+	require.Less(t, within(anywhere, "least", "value"), within(full, "least", "value"), "light load is worse")
+
+	limit["min"] = 0.95
+	require.Equal(t, "fail", proved(t, at, posted)["verdict"])
+
+	judged := asked(t, at, "ruleChecks", object{"stage": sized["stage"], "conditions": sized["conditions"], "requirement": request["requirement"], "limits": []any{limit}})
+	finding := of(judged["findings"], "rule", "limits/efficiency_ratio.min")
+	require.Equal(t, "fail", finding["verdict"])
+	require.InEpsilon(t, worst, finding["value"], 1e-9)
+}
+
+// of returns the entry of a list that has the value under the name.
+func of(list any, name string, value any) object {
+	for _, entry := range list.([]any) {
+		if entry.(object)[name] == value {
+			return entry.(object)
+		}
+	}
+	return nil
+}
+
 // A stage that runs away somewhere in its conditions fails, whatever its other
 // figures, and the point is told.
 func TestFailedEvaluationsAreNoPasses(t *testing.T) {
@@ -399,6 +438,7 @@ func TestAnalysesThatAreRefused(t *testing.T) {
 		{"limit-beyond-physics", limits(object{"quantity": "efficiency_ratio", "min": 1.01}), nil, "/limits/0/min", "limit", "below 1"},
 		{"limit-below-zero", limits(object{"quantity": "output_ripple_pp_v", "max": 0}), nil, "/limits/0/max", "limit", "above zero"},
 		{"limit-below-ambient", limits(object{"quantity": "high_side_junction_degc", "max": 50}), nil, "/limits/0/max", "limit", "ambient"},
+		{"full-load-and-nominal", limits(object{"quantity": "efficiency_ratio", "min": 0.8, "at": "nominal", "full_load": true}), nil, "/limits/0/full_load", "limit", "not nominal"},
 		{"limits-that-contradict", limits(object{"quantity": "inductor_peak_a", "max": 5}, object{"quantity": "inductor_peak_a", "min": 6}), nil, "/limits/1", "limit", "/limits/0"},
 		{"group-without-width", nil, stage([]string{"feedback", "upper_ohm"}, object{"typ": 56200, "tol": 0, "group": "reel"}), "/stage/feedback/upper_ohm/group", "group", "width"},
 		{"group-of-two-distributions", nil, func(o object) {

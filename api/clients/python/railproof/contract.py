@@ -314,6 +314,7 @@ class Limit(TypedDict):
     min: NotRequired[float]  # Least value allowed.
     max: NotRequired[float]  # Greatest value allowed.
     at: NotRequired[Literal['worst', 'nominal']]  # Where it must hold. Default worst.
+    full_load: NotRequired[bool]  # It must hold at the greatest load only, in the worst of the other conditions. In corners such a limit is looked at by extreme value; drawn units and their yield leave it out.
 
 
 class Requirement(TypedDict):
@@ -1376,7 +1377,7 @@ class QuantityCorners(TypedDict):
     model_band: NotRequired[float]  # How far the uncertainty of the loss models could move the worst value for the worse, every band at its worse end.
     within_band: NotRequired[bool]  # The margin is smaller than model_band: the verdict rests on the models.
     failing_units: NotRequired[int]  # Drawn units beyond the limit at any condition corner.
-    nominal: NotRequired[float]  # At typical values and conditions. Absent where the stage gives none.
+    nominal: NotRequired[float]  # At typical values and conditions, the load at its greatest for a limit at full load. Absent where the stage gives none.
     least: NotRequired['WorstPoint']
     greatest: NotRequired['WorstPoint']
     root_sum_square: NotRequired[List['RootSumSquare']]

@@ -1160,6 +1160,8 @@ export interface components {
              * @enum {string}
              */
             at?: "worst" | "nominal";
+            /** @description It must hold at the greatest load only, in the worst of the other conditions. In corners such a limit is looked at by extreme value; drawn units and their yield leave it out. */
+            full_load?: boolean;
         };
         /** @description What a rail must do. */
         Requirement: {
@@ -3286,7 +3288,7 @@ export interface components {
             failing_units?: number;
             /**
              * Format: double
-             * @description At typical values and conditions. Absent where the stage gives none.
+             * @description At typical values and conditions, the load at its greatest for a limit at full load. Absent where the stage gives none.
              */
             nominal?: number;
             least?: components["schemas"]["WorstPoint"];
