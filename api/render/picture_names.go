@@ -39,9 +39,12 @@ func quantityName(key string) string {
 }
 
 // quantityForPeople returns a quantity's name for reading, the unit to show and
-// the factor to it: efficiencies are shown in per cent.
+// the factor to it: efficiencies are shown in per cent, lives in hours.
 func quantityForPeople(key string) (name, unit string, factor float64) {
 	unit = unitOfKey(key)
+	if bank, _, _ := strings.Cut(key, "/"); strings.HasSuffix(bank, "_life_s") {
+		return quantityName(key), "h", 1.0 / 3600
+	}
 	if id, found := quantity.ByKey(key); found && (id == quantity.Efficiency || id == quantity.OutputError) {
 		return quantityName(key), "%", 100
 	}

@@ -150,7 +150,7 @@ func saidSpread(m map[string]any, unit string) (value, span string) {
 	hi, hasHi := number("max")
 	switch tol, hasTol := number("tol"); {
 	case hasTol:
-		span = "± " + trimmed(percent(tol))
+		span = strings.ReplaceAll("± "+trimmed(percent(tol)), " ", "\u00a0")
 	case hasLo && hasHi:
 		span = Figure3(lo, unit) + " to " + Figure3(hi, unit)
 	case hasLo:

@@ -73,7 +73,11 @@ func TransientPicture(a *wire.TransientsAnswer) *Picture {
 		said = append(said, text)
 		r.marks = append(r.marks, mark{x: *d.at, y: *a.After + d.sign**d.by, label: text})
 	}
-	if a.Recovery != nil {
+	switch {
+	case a.Recovery == nil:
+	case *a.Recovery == 0:
+		said = append(said, "its mean never leaves the band")
+	default:
 		said = append(said, "back within its band after "+Figure3(*a.Recovery, "s"))
 		r.marks = append(r.marks, mark{x: *a.Recovery, y: math.NaN(), label: "recovered, " + Figure3(*a.Recovery, "s")})
 	}
