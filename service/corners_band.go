@@ -35,12 +35,19 @@ func (s *Service) bandAt(st *stage.Stage, p *stage.Point, id quantity.ID, d corn
 	e := s.evaluator(st)
 	defer s.release(e)
 	e.Eval(p, &base)
+	fields := stage.Lookup{Fields: e.Stage().Fields()}
 	sum := 0.0
 	for _, band := range bandsOf(st) {
 		harm := 0.0
+		var numbers []*float64
+		var typical []float64
+		for _, id := range band.Fields {
+			v := fields.Fields[fields.Find(id)].Value
+			numbers, typical = append(numbers, v), append(typical, *v)
+		}
 		for _, factor := range []float64{band.Low, band.High} {
-			for _, field := range band.Fields {
-				*e.Stage().Field(field) = *st.Field(field) * factor
+			for i, v := range numbers {
+				*v = typical[i] * factor
 			}
 			e.Eval(p, &moved)
 			change := moved.Quantities[id] - base.Quantities[id]
@@ -52,8 +59,8 @@ func (s *Service) bandAt(st *stage.Stage, p *stage.Point, id quantity.ID, d corn
 			}
 			harm = max(harm, change)
 		}
-		for _, field := range band.Fields {
-			*e.Stage().Field(field) = *st.Field(field)
+		for i, v := range numbers {
+			*v = typical[i]
 		}
 		sum += harm
 	}
