@@ -7,6 +7,7 @@ import (
 
 	"railproof/calc/evaluate"
 	"railproof/calc/losses"
+	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
 )
@@ -73,6 +74,18 @@ func describe(s *stage.Stage, p *stage.Point, o *Outcome) string {
 
 // short writes a number for a sentence.
 func short(v float64) string { return strconv.FormatFloat(v, 'g', 4, 64) }
+
+// Life returns the expected life of a capacitor bank [s]; parts.Unknown where it
+// has none, as every other part.
+func (o *Outcome) Life(p losses.Part) float64 {
+	switch {
+	case p >= losses.InputCapacitor:
+		return o.Quantities[quantity.InputCapacitorLife+quantity.ID(p-losses.InputCapacitor)]
+	case p >= losses.OutputCapacitor:
+		return o.Quantities[quantity.OutputCapacitorLife+quantity.ID(p-losses.OutputCapacitor)]
+	}
+	return parts.Unknown
+}
 
 // RatedDegC returns the greatest temperature the data sheet allows for a part
 // [degC]; parts.Unknown where it does not say.

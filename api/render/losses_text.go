@@ -63,9 +63,9 @@ func (p *page) lossesItem(item *wire.LossesItem, numbered bool, i int) {
 func (p *page) temperatures(list []wire.PartTemperature) {
 	var rows [][]string
 	for _, t := range list {
-		rows = append(rows, []string{t.Part, Figure3(t.Temperature, "Cel"), figure(t.Rating, "Cel"), figure(t.Margin, "K")})
+		rows = append(rows, []string{t.Part, Figure3(t.Temperature, "Cel"), figure(t.Rating, "Cel"), figure(t.Margin, "K"), figure(t.Life, "s")})
 	}
-	p.table([]align{left, right, right, right}, []string{"part", "temperature", "rating", "margin"}, rows)
+	p.table([]align{left, right, right, right, right}, []string{"part", "temperature", "rating", "margin", "life"}, rows)
 }
 
 // trouble writes why a stage does not work and where it would.

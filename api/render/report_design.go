@@ -128,10 +128,10 @@ func hottestItem(a *wire.LossesAnswer) int {
 }
 
 func temperatureTable(list []wire.PartTemperature) *grille {
-	t := &grille{Head: row("tnnn", "part", "temperature", "rating", "margin")}
+	t := &grille{Head: row("tnnnn", "part", "temperature", "rating", "margin", "life")}
 	for i := range list {
 		p := &list[i]
-		cells := row("tnnn", spoken(p.Part), Figure3(p.Temperature, "Cel"), figure(p.Rating, "Cel"), figure(p.Margin, "K"))
+		cells := row("tnnnn", spoken(p.Part), Figure3(p.Temperature, "Cel"), figure(p.Rating, "Cel"), figure(p.Margin, "K"), figure(p.Life, "s"))
 		if p.Margin != nil && *p.Margin < 0 {
 			cells[3].Class = "fail"
 		}

@@ -143,12 +143,20 @@ func EncodeLossesGrid(w *LossesRequest, r *service.GridRequest, a *service.GridA
 		rows.Input, rows.Load, rows.Ambient = append(rows.Input, p.Input), append(rows.Load, p.Load.Current), append(rows.Ambient, p.AmbientDegC)
 		rows.Status, rows.Mode = append(rows.Status, a.Cells[i].String()), append(rows.Mode, modeNames[a.Modes[i]])
 	}
-	rows.Quantities = encodeColumns(a, rows.Cell)
+	rows.Quantities = encodeColumns(a, rows.Cell, banksOf(r.Design.Stage))
 	return &LossesAnswer{Head: head, Status: a.Status.String(), Stage: w.Stage, Grid: grid, Basis: encodeBasis(&a.Basis)}
 }
 
+func emptyColumns(n int) [][]float64 {
+	list := make([][]float64, n)
+	for i := range list {
+		list[i] = []float64{}
+	}
+	return list
+}
+
 // encodeColumns keeps the entries of the given cells.
-func encodeColumns(a *service.GridAnswer, cells []int) Columns {
+func encodeColumns(a *service.GridAnswer, cells []int, banks bankCount) Columns {
 	var c Columns
 	to := reflect.ValueOf(&c).Elem()
 	for j, id := range a.Quantities {
@@ -156,13 +164,16 @@ func encodeColumns(a *service.GridAnswer, cells []int) Columns {
 		for k, i := range cells {
 			column[k] = a.Columns[j][i]
 		}
-		info, _ := quantity.Of(id)
+		info, bank := quantity.Of(id)
 		field := to.Field(places[info.ID])
 		if info.Family == quantity.Single {
 			field.Set(reflect.ValueOf(column))
 			continue
 		}
-		field.Set(reflect.Append(field, reflect.ValueOf(column)))
+		if field.IsNil() {
+			field.Set(reflect.ValueOf(emptyColumns(banks.of(info.Family))))
+		}
+		field.Index(bank).Set(reflect.ValueOf(column))
 	}
 	return c
 }

@@ -8,12 +8,14 @@ import (
 	"railproof/service"
 )
 
-// PartTemperature is a part's temperature beside its rating.
+// PartTemperature is a part's temperature beside its rating, and the life that a
+// capacitor has at it.
 type PartTemperature struct {
 	Part        string   `json:"part"`
 	Temperature float64  `json:"temperature_degc"`
 	Rating      *float64 `json:"rating_degc,omitzero"`
 	Margin      *float64 `json:"margin_k,omitzero"`
+	Life        *float64 `json:"life_s,omitzero"`
 }
 
 // NearestOperable is a condition under which the stage would work.
@@ -44,6 +46,9 @@ func encodeTemperatures(s *stage.Stage, o *service.Outcome) []PartTemperature {
 			if rated := service.RatedDegC(s, losses.Part(i)); parts.Known(rated) {
 				margin := rated - degC
 				t.Rating, t.Margin = &rated, &margin
+			}
+			if life := o.Life(losses.Part(i)); parts.Known(life) {
+				t.Life = &life
 			}
 			list = append(list, t)
 		}

@@ -68,7 +68,7 @@ type Quantities struct {
 }
 
 // Columns holds one array per quantity, an entry per row; for per-bank
-// quantities one such array per bank.
+// quantities one such array per bank, empty for a bank that has no such quantity.
 type Columns struct {
 	OutputMean                 []float64   `json:"output_mean_v,omitzero"`
 	OutputRipplePP             []float64   `json:"output_ripple_pp_v,omitzero"`

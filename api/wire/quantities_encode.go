@@ -87,7 +87,9 @@ func (c *Columns) List() []Column {
 			}
 		case [][]float64:
 			for bank, values := range f {
-				list = append(list, Column{(info.ID + quantity.ID(bank)).Key(), values})
+				if len(values) > 0 {
+					list = append(list, Column{(info.ID + quantity.ID(bank)).Key(), values})
+				}
 			}
 		}
 	}

@@ -59,6 +59,27 @@ func TestDraftStageIsPostedOnUnchanged(t *testing.T) {
 	}
 }
 
+// A life that only some banks have is told of these, at a point and over a grid.
+func TestLivesOfSomeBanks(t *testing.T) {
+	at := server(t)
+	request := exampleWith(t, "mast-12v0/losses.json", nil)
+	point := within(request, "points", 0).(object)
+	one := asked(t, at, "losses", object{"stage": request["stage"], "point": point})
+	temperatures := within(one, "items", 0, "part_temperatures")
+	require.NotContains(t, of(temperatures, "part", "input_capacitors/0"), "life_s", "ceramic")
+	life := of(temperatures, "part", "input_capacitors/1")["life_s"]
+	require.Positive(t, life)
+
+	grid := asked(t, at, "losses", object{
+		"stage": request["stage"], "quantities": []string{"input_capacitor_life_s", "output_capacitor_life_s"},
+		"grid": object{
+			"input_v": []any{point["input_v"]}, "load_current_a": []any{within(point, "load", "current_a")}, "ambient_degc": []any{point["ambient_degc"]},
+			"source_ohm": point["source_ohm"], "control": point["control"],
+		},
+	})
+	require.Equal(t, object{"input_capacitor_life_s": []any{[]any{}, []any{life}}}, within(grid, "grid", "rows", "quantities"), "in the place of its bank")
+}
+
 // The losses of every point add up to input minus output, on the wire.
 func TestLossesAddUpOnTheWire(t *testing.T) {
 	at := server(t) + "/v1/losses"

@@ -818,8 +818,8 @@ class Quantities(TypedDict):
     controller_junction_degc: NotRequired[float]  # [Cel] Controller junction temperature.
     output_capacitor_degc: NotRequired[List[float]]  # Core temperature of each output bank's pieces.
     input_capacitor_degc: NotRequired[List[float]]  # Core temperature of each input bank's pieces.
-    output_capacitor_life_s: NotRequired[List[float]]  # Expected life of each output bank.
-    input_capacitor_life_s: NotRequired[List[float]]  # Expected life of each input bank.
+    output_capacitor_life_s: NotRequired[List[float]]  # Expected life of each output bank, where every one has a known life; part_temperatures tells each that is known.
+    input_capacitor_life_s: NotRequired[List[float]]  # Expected life of each input bank, where every one has a known life; part_temperatures tells each that is known.
     thermal_feedback_ratio: NotRequired[float]  # [1] Spectral radius of thermal resistance times power sensitivity; 1 is runaway.
     crossover_hz: NotRequired[float]  # [Hz] Highest frequency at which the loop gain falls through 1.
     phase_margin_deg: NotRequired[float]  # [deg] Least phase margin over all crossovers.
@@ -857,6 +857,7 @@ class PartTemperature(TypedDict):
     temperature_degc: float  # [Cel]
     rating_degc: NotRequired[float]  # [Cel] Absent if unknown.
     margin_k: NotRequired[float]  # [K] Rating minus temperature.
+    life_s: NotRequired[float]  # [s] Expected life of a capacitor at its temperature. Absent if unknown.
 
 
 class LossItem(TypedDict):

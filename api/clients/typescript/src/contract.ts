@@ -2273,9 +2273,9 @@ export interface components {
             output_capacitor_degc?: number[];
             /** @description Core temperature of each input bank's pieces. */
             input_capacitor_degc?: number[];
-            /** @description Expected life of each output bank. */
+            /** @description Expected life of each output bank, where every one has a known life; part_temperatures tells each that is known. */
             output_capacitor_life_s?: number[];
-            /** @description Expected life of each input bank. */
+            /** @description Expected life of each input bank, where every one has a known life; part_temperatures tells each that is known. */
             input_capacitor_life_s?: number[];
             /**
              * Format: double
@@ -2383,6 +2383,11 @@ export interface components {
              * @description Rating minus temperature.
              */
             margin_k?: number;
+            /**
+             * Format: double
+             * @description Expected life of a capacitor at its temperature. Absent if unknown.
+             */
+            life_s?: number;
         };
         /** @description One mechanism in one part; nothing is counted twice. */
         LossItem: {
