@@ -87,27 +87,34 @@ func (m *Map) series(s *System, t float64, terms int, term *Map) {
 			m.F[i*w+j] += x
 		}
 	}
-	var column, image [Width]float64
+	var spare [MaxStates * Width]float64
+	last, next := term.F[:n*w], spare[:n*w]
 	for p := 2; p <= terms; p++ {
 		f := t / float64(p)
-		for j := 0; j < w; j++ {
-			for i := 0; i < n; i++ {
-				column[i] = term.F[i*w+j]
-			}
-			times(image[:n], s.A[:], column[:n], w)
-			for i := 0; i < n; i++ {
-				x := image[i]
-				if p == 2 && j == w-1 {
-					// The ramps enter through [A B] [0; S] in the second term only.
-					for r := 0; r < k; r++ {
-						x += s.A[i*w+n+r] * s.Rate[r] * t
-					}
+		for i := 0; i < n; i++ {
+			row := next[i*w : i*w+w]
+			clear(row)
+			for j, a := range s.A[i*w : i*w+n] { // a circuit couples each state to few others
+				if a == 0 {
+					continue
 				}
-				x *= f
-				term.F[i*w+j] = x
-				m.F[i*w+j] += x
+				for c, x := range last[j*w : j*w+w] {
+					row[c] += float64(a * x)
+				}
+			}
+			if p == 2 {
+				// The ramps enter through [A B] [0; S] in the second term only.
+				for r := 0; r < k; r++ {
+					row[w-1] += s.A[i*w+n+r] * s.Rate[r] * t
+				}
+			}
+			sum := m.F[i*w : i*w+w]
+			for c := range row {
+				row[c] *= f
+				sum[c] += row[c]
 			}
 		}
+		last, next = next, last
 	}
 }
 
