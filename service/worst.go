@@ -158,7 +158,15 @@ func (s *Service) nominal(r *worstRequest, w *worstCase, step *transient.Demand)
 	if !w.Nominal.Status.Figures() {
 		return
 	}
+	under := underAssumed(e, &point, r.design.Assumed, func(field string) corners.Extension {
+		if !shapesLoop(field) {
+			return nil
+		}
+		return extend
+	})
+	w.NominalUnder = map[quantity.ID]rules.Under{}
 	for _, id := range r.demand.Nominal {
+		w.NominalUnder[id] = underOf(under, r.design.At, id, q[id])
 		w.NominalUses = union(w.NominalUses, s.tablesBehind(r.design, &point, &w.Nominal, id))
 	}
 }

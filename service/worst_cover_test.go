@@ -5,6 +5,8 @@ import (
 
 	"github.com/stretchr/testify/require"
 
+	"railproof/calc/corners"
+	"railproof/calc/evaluate"
 	"railproof/calc/numeric"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
@@ -62,5 +64,28 @@ func TestAHeldOutputHasNoAccuracy(t *testing.T) {
 		w.Absent = map[quantity.ID][]string{}
 		w.heldOutput(r)
 		require.Equal(t, absent, w.Absent[quantity.LoadVoltage] != nil, kind)
+	}
+}
+
+// A capacitor's temperature without its thermal resistance rests on what is assumed.
+func TestWhatAnAssumedNumberBearsOn(t *testing.T) {
+	d := plain()
+	d.Stage.OutputCapacitors[0].ESR = 0.3
+	e := evaluate.Prepare(d.Stage)
+	point := typical()
+	var r evaluate.Result
+	e.Eval(&point, &r)
+	list := underAssumed(e, &point, d.Assumed, func(string) corners.Extension { return nil })
+	const field = "output_capacitors/0/thermal/junction_to_ambient_k_per_w"
+	id := quantity.OutputCapacitorTemperature
+	under := underOf(list, "/stage", id, r.Quantities[id])
+	ends, rests := under["/stage/"+field]
+	require.True(t, rests, "%v", under)
+	require.InDelta(t, point.AmbientDegC, ends[0], 1e-9, "without resistance no rise")
+	require.Greater(t, ends[1], r.Quantities[id])
+	var again evaluate.Result
+	e.Eval(&point, &again)
+	for _, q := range []quantity.ID{id, quantity.LossTotal, quantity.OutputRipplePP} {
+		require.Equal(t, r.Quantities[q], again.Quantities[q], "the evaluator is left as it was")
 	}
 }

@@ -37,6 +37,7 @@ func (s *Service) gather(r *worstRequest, w *worstCase, p *worstPass) {
 		} else if f.At != nil {
 			place := s.place(r, w, p, f.At, places)
 			one := rules.Worst{Value: f.Value, By: p.by, Corner: place.corner, Beyond: s.tablesBehind(place.design, &place.point, &place.result, id)}
+			one.Under = underOf(place.under, r.design.At, id, f.Value)
 			if p.kind == electrical {
 				one.Low, one.High, one.Banded = place.band(id, f.Value)
 			}
@@ -68,6 +69,7 @@ type worstPlace struct {
 	corner    int
 	result    evaluate.Result
 	low, high evaluate.Result // with the loss models at either end of their bands
+	under     []assumedEnds
 }
 
 func (s *Service) place(r *worstRequest, w *worstCase, p *worstPass, z []float64, known map[string]*worstPlace) *worstPlace {
@@ -96,7 +98,78 @@ func (s *Service) place(r *worstRequest, w *worstCase, p *worstPass, z []float64
 		e.Eval(&point, end.result)
 		demandFinite(end.result)
 	}
+	for i := range bands {
+		for _, field := range bands[i].Fields {
+			*own[field] = *typical[field]
+		}
+	}
+	place.under = underAssumed(e, &point, r.design.Assumed, func(field string) corners.Extension {
+		if p.kind == electrical || !shapesLoop(field) {
+			return nil
+		}
+		return extensionFor(p.ids, nil, newLoadStep(r.requirement))
+	})
 	return place
+}
+
+// assumedEnds is what comes of a point with a number that nobody gave at either end of
+// its stated range.
+type assumedEnds struct {
+	field string
+	ends  [2]quantity.Vector
+}
+
+// underAssumed evaluates a point with every assumed number at both ends of its range.
+// extend returns what computes more than the evaluator for a field; nil for none.
+func underAssumed(e *evaluate.Evaluator, point *stage.Point, assumed []stage.Assumed, extend func(field string) corners.Extension) []assumedEnds {
+	var list []assumedEnds
+	own := numbersOf(e.Stage())
+	var result evaluate.Result
+	for _, a := range assumed {
+		at := own[a.Field]
+		if at == nil || !parts.Known(finite(a.Low)) || !parts.Known(finite(a.High)) || !(a.Low < a.High) {
+			continue
+		}
+		one, kept, more := assumedEnds{field: a.Field}, *at, extend(a.Field)
+		for k, v := range [2]float64{a.Low, a.High} {
+			*at = v
+			e.Eval(point, &result)
+			demandFinite(&result)
+			if more != nil && result.Status.Figures() {
+				more(e, point, &result)
+			}
+			one.ends[k] = result.Quantities
+		}
+		*at = kept
+		list = append(list, one)
+	}
+	return list
+}
+
+// shapesLoop reports whether a number of the stage is one that loop and load step are
+// made of.
+func shapesLoop(field string) bool {
+	return strings.HasPrefix(field, "output_capacitors/") && !strings.Contains(field, "/thermal/") && !strings.Contains(field, "/life/") ||
+		strings.HasPrefix(field, "modulator/") || strings.HasPrefix(field, "compensator/") || strings.HasPrefix(field, "feedback/")
+}
+
+// underOf returns what a quantity is at the ends of those assumed numbers that bear on
+// it; nil where none does.
+func underOf(list []assumedEnds, at string, id quantity.ID, value float64) rules.Under {
+	var under rules.Under
+	for i := range list {
+		a := &list[i]
+		low, high := a.ends[0][id], a.ends[1][id]
+		bears := func(end float64) bool { return math.IsNaN(end) || bearsOn(id, value, end-value) }
+		if kindOf(id) != electrical && !shapesLoop(a.field) || math.IsNaN(value) || !bears(low) && !bears(high) {
+			continue
+		}
+		if under == nil {
+			under = rules.Under{}
+		}
+		under[at+"/"+a.field] = [2]float64{low, high}
+	}
+	return under
 }
 
 // numbersOf returns where a stage keeps each of its numbers.

@@ -23,6 +23,10 @@ func (s Search) String() string {
 	return [...]string{"", "search", "seeded-search", "vertices", "seeded-vertices"}[s]
 }
 
+// Under holds what a value is at both ends of the range of each number that nobody
+// gave and on which it rests, by the number's pointer.
+type Under map[string][2]float64
+
 // Worst is the extreme value of one quantity and where it was found.
 type Worst struct {
 	Value  float64  // [any] in the quantity's unit
@@ -32,6 +36,7 @@ type Worst struct {
 	By     Search   // how it was found
 	Corner int      // the caller's number of the corner
 	Beyond []string // pointers of tables used beyond their ends there
+	Under  Under
 }
 
 // Extreme is the least and the greatest value of one quantity.
@@ -56,6 +61,7 @@ type Case struct {
 	Requirement   *stage.Requirement
 	Nominal       *quantity.Vector // at typical values and conditions
 	NominalUses   []string         // pointers of tables used beyond their ends there
+	NominalUnder  map[quantity.ID]Under
 	Extremes      map[quantity.ID]Extreme
 	FullLoad      map[quantity.ID]Extreme  // the same with the load at its greatest
 	Absent        map[quantity.ID][]string // of quantities without a value: what their computation lacks

@@ -212,6 +212,13 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 	if len(look.beyond) > 0 {
 		return p.unevaluated(f, look, part), true
 	}
+	if pass {
+		if rests := restsOn(rule.Relation, body, look); len(rests) > 0 {
+			f.Verdict, f.Missing = NotEvaluated, rests
+			f.Detail = "Not evaluated; it passes with what is assumed for " + strings.Join(rests, ", ") + ", but not over the whole range in which that may lie."
+			return f, true
+		}
+	}
 	f.Verdict = Fail
 	if pass {
 		f.Verdict = Pass
@@ -236,6 +243,24 @@ func known(x float64) float64 {
 		return parts.Unknown
 	}
 	return x
+}
+
+// restsOn lists the numbers that nobody gave at one end of whose range a rule that
+// passes would not.
+func restsOn(r Relation, body *Body, look *Look) []string {
+	var list []string
+	slices.Sort(look.under)
+	for _, at := range look.under {
+		for end := range 2 {
+			l := &Look{facts: look.facts, assume: at, end: end}
+			value, limit := body.Value(l), body.Limit(l)
+			if !(finite(value) && finite(limit) && meets(r, value, limit)) {
+				list = append(list, at)
+				break
+			}
+		}
+	}
+	return list
 }
 
 // band computes the value at both ends of the model bands.

@@ -18,6 +18,7 @@ type fact struct {
 	corners bool // corner is given
 	by      Search
 	beyond  []string
+	under   Under
 }
 
 // facts are the named values of one place of a case. Values of the whole case
@@ -116,11 +117,11 @@ func (p *prepared) addBanks(q quantity.Info, banks int) {
 
 func (p *prepared) addQuantity(to map[string]fact, key string, id quantity.ID) {
 	if n := p.c.Nominal; n != nil && parts.Known(n[id]) {
-		to[rootNominal+key] = fact{value: n[id], beyond: p.c.NominalUses}
+		to[rootNominal+key] = fact{value: n[id], beyond: p.c.NominalUses, under: p.c.NominalUnder[id]}
 	}
 	put := func(name string, w Worst) {
 		if parts.Known(w.Value) {
-			to[name] = fact{value: w.Value, low: w.Low, high: w.High, banded: w.Banded, corner: w.Corner, corners: true, by: w.By, beyond: w.Beyond}
+			to[name] = fact{value: w.Value, low: w.Low, high: w.High, banded: w.Banded, corner: w.Corner, corners: true, by: w.By, beyond: w.Beyond, under: w.Under}
 		}
 	}
 	if e, ok := p.c.Extremes[id]; ok {

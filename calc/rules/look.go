@@ -23,7 +23,10 @@ type Look struct {
 	beyond  []string
 	corners []int
 	banded  bool
-	by      Search // the least thorough of what was read
+	by      Search   // the least thorough of what was read
+	under   []string // pointers of assumed numbers on which something rests
+	assume  string   // the one that lies at an end of its range; "" for none
+	end     int      // 0 the low end, 1 the high end
 	problem string
 }
 
@@ -45,6 +48,14 @@ func (l *Look) Number(name string) float64 {
 		l.corners = append(l.corners, f.corner)
 	}
 	l.by = max(l.by, f.by)
+	for at := range f.under {
+		if !slices.Contains(l.under, at) {
+			l.under = append(l.under, at)
+		}
+	}
+	if ends, rests := f.under[l.assume]; rests {
+		return ends[l.end]
+	}
 	if f.banded {
 		l.banded = true
 		switch l.side {

@@ -481,3 +481,28 @@ func TestFindingTellsHowTheWorstWasFound(t *testing.T) {
 	c.Extremes[quantity.InductorRMS] = x
 	require.Equal(t, VerticesSeeded, only(t, check(c, nil, heating(1))).WorstBy)
 }
+
+// A pass must hold over the whole range of every number that nobody gave.
+func TestAPassThatRestsOnAnAssumptionIsNone(t *testing.T) {
+	const at = "/stage/inductor/dc_resistance_ohm"
+	for name, k := range map[string]struct {
+		value   float64
+		under   Under
+		want    Verdict
+		missing []string
+	}{
+		"holds":       {8, Under{at: {7, 9.9}}, Pass, nil},
+		"turns":       {8, Under{at: {7, 10.1}}, NotEvaluated, []string{at}},
+		"turns-below": {8, Under{at: {10.1, 7}}, NotEvaluated, []string{at}},
+		"no-value":    {8, Under{at: {math.NaN(), 7}}, NotEvaluated, []string{at}},
+		"fails":       {11, Under{at: {7, 12}}, Fail, nil},
+	} {
+		t.Run(name, func(t *testing.T) {
+			c := testCase()
+			c.Extremes[quantity.InductorRMS] = Extreme{Greatest: Worst{Value: k.value, Under: k.under}}
+			f := only(t, check(c, nil, heating(1)))
+			require.Equal(t, k.want, f.Verdict, f.Detail)
+			require.Equal(t, k.missing, f.Missing)
+		})
+	}
+}

@@ -64,22 +64,16 @@ func TestClass2CeramicNeedsItsBiasTable(t *testing.T) {
 	}
 }
 
-// Without a thermal resistance the rise of a capacitor is counted at the upper end of
-// the resistance that is assumed for it.
-func TestCapacitorRiseWithoutThermalResistance(t *testing.T) {
-	s := stage.NewStage(stage.Synchronous, 1, 1, 0, false, false, false, false)
-	for _, f := range s.Fields() {
-		if f.ID == "output_capacitors/0/thermal/junction_to_ambient_k_per_w" {
-			require.InDelta(t, 2.5, f.Default.High/f.Default.Value, 1e-12, "the factor of the rules")
-		}
-	}
+// The currents of banks that are no ceramic rest on their series resistance, for which
+// a ceramic value is assumed.
+func TestRippleCurrentNeedsTheSeriesResistance(t *testing.T) {
 	c := fullCase(stage.Synchronous)
-	setGreatest(c, quantity.OutputCapacitorTemperature, 80)
-	require.Equal(t, rules.Passed, builtinReport(c, "general-practice").Verdict)
-	c.Stage.OutputCapacitors[0].Thermal.JunctionToAmbient = unknown
-	f := verdictOf(t, builtinReport(c, "general-practice"), "general-practice/output-capacitor-temperature")
-	require.Equal(t, rules.Fail, f.Verdict)
-	require.InDelta(t, 110, f.Value, 1e-9, "60 degC and 2.5 times 20 K")
+	c.Assumed = []stage.Assumed{{Field: "input_capacitors/0/esr_ohm", Value: 3e-3}}
+	r := builtinReport(c, "general-practice")
+	f := verdictOf(t, r, "general-practice/input-capacitor-ripple-current")
+	require.Equal(t, rules.NotEvaluated, f.Verdict)
+	require.Equal(t, []string{"/stage/input_capacitors/0/esr_ohm"}, f.Missing)
+	require.Equal(t, rules.Incomplete, r.Verdict)
 }
 
 // A pack that tells capacitors apart by kind says so where it has nothing for one.
