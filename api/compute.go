@@ -41,9 +41,7 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 		if drawn {
 			request.Draw(view(c))
 		}
-		if form != echo.MIMEApplicationJSON { // pictures and pages carry their style with them
-			c.Response().Header().Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; style-src 'unsafe-inline'; frame-ancestors 'none'")
-		}
+		styled(c, form)
 		if kept, found := a.results.Get(request.ResultID); found && kept.Media == form && !explained && c.QueryParam("timings") != "true" {
 			return sent(c, form, kept.Body, nil)
 		}
@@ -59,6 +57,14 @@ func (a *API) compute(op openapi.Operation) echo.HandlerFunc {
 			a.results.Put(answer.ResultID, kept)
 		}
 		return sent(c, form, text, answer.Timings)
+	}
+}
+
+// styled lets pictures and pages, which carry their style with them, be shown as they
+// are.
+func styled(c echo.Context, form string) {
+	if form != echo.MIMEApplicationJSON {
+		c.Response().Header().Set(echo.HeaderContentSecurityPolicy, "default-src 'none'; style-src 'unsafe-inline'; frame-ancestors 'none'")
 	}
 }
 

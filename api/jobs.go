@@ -45,8 +45,14 @@ func (a *API) deferred(c echo.Context, op openapi.Operation, r *exchange.Request
 		case jobs.Done:
 			if answer, err := a.jobs.Result(ctx, j.ResultID); err == nil {
 				c.Set(resultKey, j.ResultID)
+				form := c.Get(formKey).(string)
+				body, problem := exchange.Show(answer, form, view(c))
+				if problem != nil {
+					return refusal{problem}
+				}
+				styled(c, form)
 				h.Set(echo.HeaderCacheControl, "no-store")
-				return c.Blob(http.StatusOK, answer.Media, answer.Body)
+				return c.Blob(http.StatusOK, form, body)
 			}
 		case jobs.Failed:
 			return refusal{exchange.StoredProblem(&j)}

@@ -10,7 +10,6 @@ import (
 	"github.com/labstack/echo/v4"
 
 	"railproof/api/exchange"
-	"railproof/service/results"
 )
 
 const (
@@ -19,7 +18,8 @@ const (
 	squeezeEffort = gzip.BestSpeed
 )
 
-// getResult gives the bytes that were answered once. Entity tags are strong: each
+// getResult gives the bytes that were answered once, or the same answer in another form
+// that its operation has. Entity tags are strong: each
 // representation, squeezed or not, has its own.
 func (a *API) getResult(c echo.Context) error {
 	id := c.Param("id")
@@ -36,16 +36,23 @@ func (a *API) getResult(c echo.Context) error {
 	if !found {
 		return resultRefusal(nil)
 	}
-	if choose(c.Request().Header.Values(echo.HeaderAccept), []string{answer.Media}) == "" {
-		return refusal{exchange.NewProblem(exchange.NotAcceptable, "this result is "+answer.Media)}
+	forms := a.exchange.KeptForms(answer)
+	form := choose(c.Request().Header.Values(echo.HeaderAccept), forms)
+	if form == "" {
+		return refusal{exchange.NewProblem(exchange.NotAcceptable, "this result can be had as "+strings.Join(forms, ", "))}
 	}
-	return serveResult(c, id, answer)
+	body, problem := exchange.Show(answer, form, view(c))
+	if problem != nil {
+		return refusal{problem}
+	}
+	styled(c, form)
+	return serveResult(c, id, form, body)
 }
 
-func serveResult(c echo.Context, id string, answer results.Answer) error {
+func serveResult(c echo.Context, id, form string, body []byte) error {
 	h := c.Response().Header()
-	_, representation, _ := strings.Cut(answer.Media, "/")
-	squeezed := len(answer.Body) >= worthSqueeze && takesGzip(c.Request().Header.Values(echo.HeaderAcceptEncoding))
+	_, representation, _ := strings.Cut(form, "/")
+	squeezed := len(body) >= worthSqueeze && form != "image/png" && takesGzip(c.Request().Header.Values(echo.HeaderAcceptEncoding))
 	if squeezed {
 		representation += "-gzip"
 	}
@@ -56,12 +63,11 @@ func serveResult(c echo.Context, id string, answer results.Answer) error {
 	if holdsStrongly(c.Request().Header.Values("If-None-Match"), tag) {
 		return c.NoContent(http.StatusNotModified)
 	}
-	body := answer.Body
 	if squeezed {
 		h.Set(echo.HeaderContentEncoding, "gzip")
 		body = squeeze(body)
 	}
-	return c.Blob(http.StatusOK, answer.Media, body)
+	return c.Blob(http.StatusOK, form, body)
 }
 
 // holdsStrongly reports whether an If-None-Match header names the tag. A result never

@@ -45,7 +45,7 @@ func outcome(answer *Answer, problem *Problem) jobs.Outcome {
 
 // Kept returns the answer in its own form, in which it is kept.
 func (a *Answer) Kept() (results.Answer, *Problem) {
-	return results.Answer{Media: ownForm(a.Operation), Body: a.Body}, nil
+	return results.Answer{Operation: a.Operation, Media: ownForm(a.Operation), Body: a.Body}, nil
 }
 
 // splittable is the operation of which large requests are worth splitting.

@@ -31,6 +31,15 @@ func (n Number) MarshalJSON() ([]byte, error) {
 	return appendFloat(nil, n.Value), nil
 }
 
+// UnmarshalJSON reads what was written.
+func (n *Number) UnmarshalJSON(text []byte) error {
+	if len(text) > 0 && text[0] == '{' {
+		n.Spread = new(Spread)
+		return json.Unmarshal(text, n.Spread)
+	}
+	return json.Unmarshal(text, &n.Value)
+}
+
 // appendText is MarshalJSON for AppendJSON.
 func (n *Number) appendText(b []byte) ([]byte, error) {
 	switch {

@@ -95,6 +95,15 @@ func (f Frequency) MarshalJSON() ([]byte, error) {
 	return json.Marshal(f.Fixed)
 }
 
+// UnmarshalJSON reads what was written.
+func (f *Frequency) UnmarshalJSON(text []byte) error {
+	if len(text) > 0 && text[0] == '{' {
+		f.Sweep = new(FrequencyRange)
+		return json.Unmarshal(text, f.Sweep)
+	}
+	return json.Unmarshal(text, &f.Fixed)
+}
+
 // ContractValue returns what stands on the wire, for the check of answers.
 func (f *Frequency) ContractValue() any {
 	if f.Sweep != nil {

@@ -205,7 +205,7 @@ func (b *Board) Cancel(ctx context.Context, id string) (Job, error) {
 // Result returns the answer of a finished job.
 func (b *Board) Result(ctx context.Context, resultID string) (results.Answer, error) {
 	var a results.Answer
-	err := b.db.row(ctx, `SELECT media, body FROM railproof_results WHERE id = $1`, resultID).Scan(&a.Media, &a.Body)
+	err := b.db.row(ctx, `SELECT operation, media, body FROM railproof_results WHERE id = $1`, resultID).Scan(&a.Operation, &a.Media, &a.Body)
 	return a, b.found(ctx, err)
 }
 

@@ -220,7 +220,7 @@ func (b *Board) store(r *run, o Outcome) error {
 		state, resultID, problem := Failed, "", o.Problem
 		if o.Answer.Body != nil {
 			state, resultID, problem = Done, o.ResultID, nil
-			if _, err := tx.ExecContext(ctx, b.db.say(`INSERT INTO railproof_results (id, media, body, size, created) VALUES ($1, $2, $3, $4, NOW()) ON CONFLICT DO NOTHING`), o.ResultID, o.Answer.Media, o.Answer.Body, len(o.Answer.Body)); err != nil {
+			if _, err := tx.ExecContext(ctx, b.db.say(`INSERT INTO railproof_results (id, operation, media, body, size, created) VALUES ($1, $2, $3, $4, $5, NOW()) ON CONFLICT DO NOTHING`), o.ResultID, r.operation, o.Answer.Media, o.Answer.Body, len(o.Answer.Body)); err != nil {
 				return err
 			}
 		}

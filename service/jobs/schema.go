@@ -54,6 +54,7 @@ var migrations = []string{
 		engine TEXT NOT NULL,
 		beat BIGINT NOT NULL
 	)`,
+	`ALTER TABLE railproof_results ADD COLUMN operation TEXT NOT NULL DEFAULT ''`,
 }
 
 // migrate brings the schema up to date. The caller holds the lock that keeps other

@@ -18,10 +18,12 @@ type Cache struct {
 	recent  *list.List // of *entry, the last one asked for in front
 }
 
-// Answer is the bytes of an answer and their media type. Both never change.
+// Answer is the bytes of an answer, their media type and what was answered. None of
+// them ever changes.
 type Answer struct {
-	Media string
-	Body  []byte
+	Operation string // empty where that was not noted
+	Media     string
+	Body      []byte
 }
 
 type entry struct {

@@ -54,7 +54,7 @@ func TestConcurrentUse(t *testing.T) {
 		all.Go(func() {
 			for i := range 2000 {
 				id := fmt.Sprint((i * (w + 1)) % 97)
-				c.Put(id, Answer{"text/plain", []byte(id)})
+				c.Put(id, Answer{Media: "text/plain", Body: []byte(id)})
 				if a, found := c.Get(id); found && string(a.Body) != id {
 					t.Error("another answer's body")
 				}

@@ -304,3 +304,56 @@ func operation(t testing.TB, id string) openapi.Operation {
 	t.Fatal("no operation " + id)
 	return openapi.Operation{}
 }
+
+// A finished job's result can be had in every form that a direct answer has, the same
+// bytes.
+func TestAKeptResultInOtherForms(t *testing.T) {
+	at, _ := jobServer(t)
+	forms := 0
+	for _, text := range sortedRequests(t) {
+		if text.op.ID == "reports" || !bytes.Contains(text.body, []byte("buoy-3v3")) { // one rail will do
+			continue
+		}
+		id := send(t, "POST", at+text.op.Path, text.body, "Prefer", "respond-async, wait=60").tree(t).(map[string]any)["result_id"].(string)
+		for _, form := range text.op.MediaTypes {
+			direct := send(t, "POST", at+text.op.Path, text.body, "Accept", form)
+			if direct.status == 406 {
+				continue
+			}
+			kept := send(t, "GET", at+"/v1/results/"+id+"?width_px=800", nil, "Accept", form)
+			if text.op.ID == "steadyState" && strings.HasPrefix(form, "image/") { // its picture needs the waveforms, which a request must ask for
+				continue
+			}
+			require.Equal(t, 200, kept.status, "%s as %s: %.300s", text.op.ID, form, kept.body)
+			require.Equal(t, form, strings.Split(kept.header.Get("Content-Type"), ";")[0])
+			require.True(t, string(direct.body) == string(kept.body), "%s as %s", text.op.ID, form)
+			forms++
+		}
+		refused(t, send(t, "GET", at+"/v1/results/"+id, nil, "Accept", "text/html"), 406, exchange.NotAcceptable)
+	}
+	require.Greater(t, forms, 20)
+
+	body := exampleRequest(t, "buoy-3v3/corners.json")
+	waited := send(t, "POST", at+"/v1/corners", fewer(t, body), "Prefer", "respond-async, wait=60", "Accept", "text/csv")
+	require.Equal(t, 200, waited.status)
+	require.Equal(t, "text/csv", waited.header.Get("Content-Type"))
+}
+
+// A report that was made by a job looks as one that was answered directly: its own
+// style is not held back.
+func TestAKeptReportMayShowItsStyle(t *testing.T) {
+	at, _ := jobServer(t)
+	request := exampleRequest(t, "buoy-3v3/reports.json")
+	var tree map[string]any
+	require.NoError(t, json.Unmarshal(request, &tree))
+	tree["sections"] = []string{"requirement", "stage"}
+	r := send(t, "POST", at+"/v1/reports", encode(t, tree), "Prefer", "respond-async")
+	require.Equal(t, 202, r.status, "%s", r.body)
+	job := settled(t, at+r.header.Get("Location"))
+	kept := send(t, "GET", at+"/v1/results/"+job["result_id"].(string), nil)
+	require.Equal(t, 200, kept.status)
+	require.Contains(t, kept.header.Get("Content-Security-Policy"), "style-src 'unsafe-inline'")
+	direct := send(t, "POST", at+"/v1/reports", encode(t, tree))
+	require.Equal(t, direct.header.Get("Content-Security-Policy"), kept.header.Get("Content-Security-Policy"))
+	require.Equal(t, string(direct.body), string(kept.body))
+}
