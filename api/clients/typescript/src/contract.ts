@@ -322,7 +322,10 @@ export interface paths {
             path?: never;
             cookie?: never;
         };
-        /** A stored result, the bytes that were answered */
+        /**
+         * A stored result, the bytes that were answered
+         * @description Accept asks for another form that its operation has: a table, a picture, a findings log. The bytes that were answered stay the default.
+         */
         get: operations["getResult"];
         put?: never;
         post?: never;
@@ -4349,6 +4352,8 @@ export interface components {
         CornersPicture: "strips" | "tornado" | "histogram";
         /** @description Of image/svg+xml and image/png. Default bode. */
         LoopPicture: "bode" | "output-impedance" | "source-impedance";
+        /** @description Of image/svg+xml and image/png: one of the pictures of the operation that was answered. */
+        ResultPicture: "sweep" | "windows" | "breakdown" | "curves" | "map" | "strips" | "tornado" | "histogram" | "bode" | "output-impedance" | "source-impedance";
         /** @description Key of the quantity that the picture shows. Default: efficiency of a grid, the least margin of corners. */
         PictureQuantity: string;
         /** @description Number of the point that the picture shows, from 0. Default 0. */
@@ -5322,7 +5327,16 @@ export interface operations {
     };
     getResult: {
         parameters: {
-            query?: never;
+            query?: {
+                /** @description Of image/svg+xml and image/png: one of the pictures of the operation that was answered. */
+                picture?: components["parameters"]["ResultPicture"];
+                /** @description Key of the quantity that the picture shows. Default: efficiency of a grid, the least margin of corners. */
+                quantity?: components["parameters"]["PictureQuantity"];
+                /** @description Number of the point that the picture shows, from 0. Default 0. */
+                item?: components["parameters"]["PictureItem"];
+                /** @description Width of a picture at 96 pixels per inch; its height follows. PNG has twice as many dots up to 1200. Default 800. */
+                width_px?: components["parameters"]["PictureWidth"];
+            };
             header?: {
                 /** @description Entity tags that the caller has. */
                 "If-None-Match"?: components["parameters"]["IfNoneMatch"];
@@ -5343,6 +5357,10 @@ export interface operations {
                 content: {
                     "application/json": unknown;
                     "text/html": unknown;
+                    "image/svg+xml": unknown;
+                    "image/png": unknown;
+                    "text/csv": unknown;
+                    "application/sarif+json": unknown;
                 };
             };
             /** @description The caller has it already. */
