@@ -113,6 +113,13 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 	for k := range e.inductance[:s.PhaseCount] {
 		e.inductance[k] = e.nominalInductance(k)
 	}
+	if s.Inductor.Saturates() {
+		i := (e.circuit.Current + e.circuit.Conductance*o.output) / float64(s.PhaseCount)
+		bent := s.Inductor.IncrementalAt(i) / s.Inductor.Inductance
+		for k := range e.inductance[:s.PhaseCount] {
+			e.inductance[k] *= bent
+		}
+	}
 	e.operation = losses.Operation{AgeRatio: p.AgeRatio, BoardDegC: board, Solution: &e.solution}
 	if len(s.Phases) > 0 {
 		e.operation.Inductances = &e.inductance
@@ -125,7 +132,7 @@ func (e *Evaluator) beginNear(a *Anchor, o *operating) {
 	o.bridge = o.point.Input * (1 - a.drop)
 	e.network.Temperatures(o.point.AmbientDegC, &a.power, &e.degC)
 	for k := range e.inductance[:e.stage.PhaseCount] {
-		e.inductance[k] *= a.inductance[k]
+		e.inductance[k] = e.nominalInductance(k) * a.inductance[k]
 	}
 }
 
@@ -139,22 +146,7 @@ func (e *Evaluator) nominalInductance(k int) float64 {
 
 // iterate runs the joint iteration and returns its status.
 func (e *Evaluator) iterate(o *operating) Status {
-	first := e.degC
-	for left := o.closedPasses; left > 0; left-- {
-		e.setCircuit(o.bridge, o.copper)
-		e.setBanks(o.bridge, o.output)
-		load := e.circuit.Current + e.circuit.Conductance*o.output
-		e.start(&e.circuit, o.output, load, o.duty)
-		e.shareStart()
-		steps := thermalSteps
-		if left > 1 {
-			steps = 1
-		}
-		if _, _, runaway := e.follow(o, steps); runaway {
-			e.degC = first // the closed form's currents decide nothing
-			break
-		}
-	}
+	e.followClosedForm(o)
 	moved := true
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.copper)
@@ -169,10 +161,12 @@ func (e *Evaluator) iterate(o *operating) Status {
 			return NotConverged
 		}
 		before := e.degC
-		circuitChange, temperatureChange, runaway := e.follow(o, thermalSteps)
+		circuitChange := math.Max(e.followInductance(), e.followOutput(o))
+		temperatureChange, runaway := e.followLosses(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
+		circuitChange = math.Max(circuitChange, e.followBridge(o))
 		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.degC = before
@@ -184,6 +178,30 @@ func (e *Evaluator) iterate(o *operating) Status {
 		}
 	}
 	return NotConverged
+}
+
+// followClosedForm brings everything near to its place on the closed form of the
+// currents.
+func (e *Evaluator) followClosedForm(o *operating) {
+	first := e.degC
+	for left := o.closedPasses; left > 0; left-- {
+		e.setCircuit(o.bridge, o.copper)
+		e.setBanks(o.bridge, o.output)
+		load := e.circuit.Current + e.circuit.Conductance*o.output
+		e.start(&e.circuit, o.output, load, o.duty)
+		e.shareStart()
+		steps := 1
+		if left == 1 {
+			e.followInductance()
+			steps = thermalSteps
+		}
+		e.followOutput(o)
+		if _, runaway := e.followLosses(o, steps); runaway {
+			e.degC = first // the closed form's currents decide nothing
+			return
+		}
+		e.followBridge(o)
+	}
 }
 
 // solve solves the circuit at the given duty ratio, or makes one step towards the

@@ -8,16 +8,20 @@ import (
 	"railproof/calc/thermal"
 )
 
-// follow takes the present circuit solution to the inductance, bridge voltage and
-// temperatures that it asks for, those by at most the given number of Newton steps.
-// It returns the largest relative change of the first two, and the largest change
-// [K] of a temperature.
-func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureChange float64, runaway bool) {
-	circuitChange = e.followInductance()
-	if o.duty >= 0 {
-		circuitChange = math.Max(circuitChange, math.Abs(e.solution.OutputMean/o.output-1))
-		o.output = e.solution.OutputMean
+// followOutput takes the output voltage of a fixed duty ratio from the present
+// solution and returns its relative change.
+func (e *Evaluator) followOutput(o *operating) float64 {
+	if o.duty < 0 {
+		return 0
 	}
+	change := math.Abs(e.solution.OutputMean/o.output - 1)
+	o.output = e.solution.OutputMean
+	return change
+}
+
+// followLosses takes the present circuit solution to the temperatures that it asks
+// for, by at most the given number of Newton steps, and returns the largest change [K].
+func (e *Evaluator) followLosses(o *operating, steps int) (temperatureChange float64, runaway bool) {
 	op := &e.operation
 	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
 	if !(math.Abs(o.bridge-o.charged) <= circuitTolerance*o.bridge) || o.duty >= 0 {
@@ -33,14 +37,14 @@ func (e *Evaluator) follow(o *operating, steps int) (circuitChange, temperatureC
 		}
 		change, state := e.warm(o)
 		if state == thermal.Runaway {
-			return circuitChange, change, true
+			return change, true
 		}
 		temperatureChange += change
 		if state == thermal.Stepped && change <= temperatureTolerance {
 			break
 		}
 	}
-	return math.Max(circuitChange, e.followBridge(o)), temperatureChange, false
+	return temperatureChange, false
 }
 
 // warm moves the temperatures by one Newton step, after a short one with the slopes
