@@ -19,9 +19,10 @@ type CornersAnswer struct {
 	Corners     [][]float64       // condition corners
 	CornerOf    []int             // of each target; -1: none
 	Linear      []corners.RootSumSquare
-	Run         *corners.MonteCarlo    // nil: none ran
-	Shares      []*corners.Attribution // per condition corner; nil where none was asked
-	Nominal     []float64              // [any] results at typical values and conditions
+	Run         *corners.MonteCarlo     // nil: none ran
+	Samples     [][]corners.WorstSample // per target, the worst units that are told
+	Shares      []*corners.Attribution  // per condition corner; nil where none was asked
+	Nominal     []float64               // [any] results at typical values and conditions
 	NominalEnd  evaluate.Status
 	FullLoad    *CornersAnswer // of the limits that hold at full load; nil: there are none
 	Basis       Basis

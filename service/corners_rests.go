@@ -3,6 +3,7 @@ package service
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"railproof/calc/caution"
 	"railproof/calc/corners"
@@ -40,6 +41,7 @@ func (s *Service) concludeCorners(a *CornersAnswer) {
 		}
 		part.warnLinear(&warn)
 	}
+	s.seeSamples(a)
 	a.warn(&warn)
 	var base *basis
 	if r.Status.Figures() {
@@ -48,6 +50,8 @@ func (s *Service) concludeCorners(a *CornersAnswer) {
 	a.Basis = Basis{s.assumptions(d, e, base), caution.Of(d.Stage, d.At, d.Variables, &seen), warn.list}
 }
 
+// seeExtreme looks at a worst point for cautions, and for the conduction mode as it
+// is told: the search knows the circuit's own.
 func (s *Service) seeExtreme(a *CornersAnswer, x *corners.Extreme, seen *caution.Seen) {
 	var r evaluate.Result
 	st, point, _ := a.Bound.At(x.At)
@@ -55,7 +59,30 @@ func (s *Service) seeExtreme(a *CornersAnswer, x *corners.Extreme, seen *caution
 	defer s.release(e)
 	e.Eval(&point, &r)
 	demandFinite(&r)
+	x.Mode = r.Conduction()
 	seen.Add("/conditions", st, &point, &r)
+}
+
+// seeSamples takes the worst drawn units that are told, each with its conduction
+// mode as it is told.
+func (s *Service) seeSamples(a *CornersAnswer) {
+	if a.Run == nil {
+		return
+	}
+	var r evaluate.Result
+	a.Samples = make([][]corners.WorstSample, len(a.Bound.Problem().Targets))
+	for t := range a.Samples {
+		worst := a.Run.Worst(t)
+		a.Samples[t] = slices.Clone(worst[:min(len(worst), a.CornersRequest.Worst)])
+		for i := range a.Samples[t] {
+			x := &a.Samples[t][i]
+			st, point, _ := a.Bound.At(a.Run.Sample(x.Sample, x.Corner))
+			e := s.evaluator(st)
+			e.Eval(&point, &r)
+			s.release(e)
+			x.Mode = r.Conduction()
+		}
+	}
 }
 
 // warn says what the reader of an analysis must know.

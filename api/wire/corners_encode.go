@@ -166,10 +166,7 @@ func (e *cornersEncoder) worstSamples() []WorstSample {
 		info, _ := quantity.Of(item.Quantity)
 		for _, t := range item.Targets() {
 			d := e.a.Bound.Problem().Targets[t].Direction
-			for k, s := range e.a.Run.Worst(t) {
-				if k == e.a.CornersRequest.Worst {
-					break
-				}
+			for _, s := range e.a.Samples[t] {
 				list = append(list, WorstSample{item.Quantity.Key(), targetSides[d], s.Sample, s.Corner, e.sample(&s, info.Unit)})
 			}
 		}

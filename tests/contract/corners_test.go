@@ -283,6 +283,50 @@ func TestLimitsAtFullLoad(t *testing.T) {
 	require.InEpsilon(t, worst, finding["value"], 1e-9)
 }
 
+// At the border of the conduction modes an analysis tells the mode that losses tell.
+func TestWorstPointsAtTheBorder(t *testing.T) {
+	at := server(t)
+	request := exampleWith(t, "mast-12v0/losses.json", nil)
+	stage, point := typical(request["stage"]), within(request, "points", 1).(object)
+	delete(point, "id")
+	load := point["load"].(object)
+	for range 6 { // losses shift the border a little
+		load["current_a"] = within(asked(t, at, "losses", object{"stage": stage, "point": point}), "items", 0, "quantities", "boundary_load_a")
+	}
+	item := within(asked(t, at, "losses", object{"stage": stage, "point": point}), "items", 0).(object)
+	require.Equal(t, "boundary", item["conduction_mode"])
+
+	within(stage, "controller").(object)["quiescent_current_a"] = object{"typ": 3e-3, "tol": 0.1} // moves no current of the circuit
+	held := func(v any) object { return object{"min": v, "max": v} }
+	a := proved(t, at, object{
+		"stage": stage, "samples": 2, "quantities": []string{"inductor_peak_a"},
+		"conditions": object{
+			"input_v": held(point["input_v"]), "load": object{"current_a": held(load["current_a"])}, "ambient_degc": held(point["ambient_degc"]),
+			"source_ohm": point["source_ohm"], "control": point["control"],
+		},
+	})
+	require.Equal(t, "boundary", within(a, "quantities", 0, "greatest", "conduction_mode"))
+	require.Equal(t, "boundary", within(a, "worst_samples", 0, "worst", "conduction_mode"))
+}
+
+// typical replaces every spread in a tree by its typical value.
+func typical(v any) any {
+	switch v := v.(type) {
+	case []any:
+		for i := range v {
+			v[i] = typical(v[i])
+		}
+	case object:
+		if typ, spread := v["typ"]; spread {
+			return typ
+		}
+		for name := range v {
+			v[name] = typical(v[name])
+		}
+	}
+	return v
+}
+
 // of returns the entry of a list that has the value under the name.
 func of(list any, name string, value any) object {
 	for _, entry := range list.([]any) {

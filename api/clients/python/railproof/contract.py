@@ -1266,7 +1266,7 @@ class WorstPoint(TypedDict):
     beyond_vertices: bool  # It lies inside the box and is worse than every vertex tried.
     proven: bool  # Monotonic over the box, shown; otherwise it is the worst point found.
     sample: NotRequired[int]  # Number of the sample, where one found it.
-    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode.
+    conduction_mode: NotRequired[Literal['continuous', 'boundary', 'discontinuous']]  # Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
     point: 'Point'
     variables: List['VariableValue']  # The value of every spread; of a drift or a model band, its factor.
     contributions: NotRequired[List['Contribution']]  # What each variable contributes to the distance from nominal, the greatest first.

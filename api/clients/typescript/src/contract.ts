@@ -3036,7 +3036,7 @@ export interface components {
              */
             sample?: number;
             /**
-             * @description Conduction mode.
+             * @description Conduction mode; boundary where the rectifier blocks reverse current and the valley is within 0.1 % of the current swing, or the rest within 0.1 % of the period, of the border.
              * @enum {string}
              */
             conduction_mode?: "continuous" | "boundary" | "discontinuous";
