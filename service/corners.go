@@ -172,7 +172,7 @@ func (a *CornersAnswer) sampling(d *driver) error {
 	}
 	d.meter.Expect(run.Evaluations())
 	a.Run = run
-	a.Evaluations += run.Evaluations()
+	defer func() { a.Evaluations += run.Evaluations() }()
 	if a.parts == nil {
 		return d.do(run, unitsTask, run.Evaluations())
 	}

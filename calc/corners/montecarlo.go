@@ -61,6 +61,7 @@ type MonteCarlo struct {
 	grids   []grid // [corner*quantities + quantity]
 	workers []*tally
 	pilot   batch
+	again   batch // the worst samples
 	stage   int
 	total   *tally
 }
@@ -114,9 +115,12 @@ func NewMonteCarlo(p *Problem, place Placer, plan Plan) (*MonteCarlo, error) {
 func (m *MonteCarlo) Units() int { return m.sampler.Samples() - m.plan.First }
 
 // Evaluations returns the number of evaluations of the run, the pilot's included.
-func (m *MonteCarlo) Evaluations() int { return (m.Units() + pilotSamples) * len(m.plan.Corners) }
+func (m *MonteCarlo) Evaluations() int {
+	return (m.Units()+pilotSamples)*len(m.plan.Corners) + m.again.len()
+}
 
-// Next implements Job: a pilot that sets the grids, then the run.
+// Next implements Job: a pilot that sets the grids, the run, and the worst samples once
+// more.
 func (m *MonteCarlo) Next() Work {
 	m.stage++
 	switch m.stage {
@@ -130,15 +134,46 @@ func (m *MonteCarlo) Next() Work {
 		m.pilot = batch{}
 		return m
 	case 3:
-		m.total = m.newTally()
-		for _, w := range m.workers {
-			if w != nil {
-				m.total.merge(w)
-			}
-		}
+		m.collect(m.workers)
 		m.workers = nil
+		return m.worstAgain()
+	case 4:
+		m.settleWorst()
 	}
 	return nil
+}
+
+func (m *MonteCarlo) collect(tallies []*tally) {
+	m.total = m.newTally()
+	for _, t := range tallies {
+		if t != nil {
+			m.total.merge(t)
+		}
+	}
+}
+
+// worstAgain evaluates the worst samples by the Model itself, so that each has the
+// figures that its point alone gives.
+func (m *MonteCarlo) worstAgain() Work {
+	m.again.reset(m.p)
+	for _, list := range m.total.worst {
+		for _, w := range list {
+			m.again.add(FromSample, m.Sample(w.Sample, w.Corner))
+		}
+	}
+	m.again.ready()
+	return &m.again
+}
+
+func (m *MonteCarlo) settleWorst() {
+	i := 0
+	for k, list := range m.total.worst {
+		for j := range list {
+			w := &list[j]
+			w.Value, w.Status, w.Mode = m.again.result(i)[m.p.Targets[k].Quantity], m.again.status[i], m.again.mode[i]
+			i++
+		}
+	}
 }
 
 // pilotSeed keeps the pilot's units apart from the run's.

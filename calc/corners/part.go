@@ -26,8 +26,11 @@ func (m *MonteCarlo) Part(part, parts int) *PartJob {
 // Next implements Job.
 func (j *PartJob) Next() Work {
 	w := j.m.Next()
-	if w == Work(j.m) {
+	switch w {
+	case Work(j.m):
 		return j
+	case Work(&j.m.again): // for Join, which knows the worst of all parts
+		return nil
 	}
 	return w
 }
@@ -81,11 +84,8 @@ func (j *JoinJob) Next() Work {
 	if w != Work(j.m) {
 		return w
 	}
-	j.m.Next()
-	for _, t := range j.parts {
-		j.m.total.merge(t)
-	}
-	return nil
+	j.m.workers = j.parts
+	return j.m.Next()
 }
 
 // append writes the tally: numbers as variable-length integers, since most counts
