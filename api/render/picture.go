@@ -1,10 +1,12 @@
 package render
 
 import (
+	"image/color"
 	"strings"
 
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
+	"gonum.org/v1/plot/vg/recorder"
 )
 
 // Picture is a composition of blocks under a title, ready to be written at any
@@ -64,6 +66,13 @@ func (p *Picture) size(width int) (w, h vg.Length) {
 	return w, h
 }
 
+// record lists what is drawn over the paper.
+func (p *Picture) record(w, h vg.Length) []recorder.Action {
+	var c recorder.Canvas
+	p.draw(draw.NewCanvas(&c, w, h))
+	return c.Actions
+}
+
 // draw paints the picture over the whole canvas, which has the background.
 func (p *Picture) draw(c draw.Canvas) {
 	in := draw.Crop(c, pictureMargin, -pictureMargin, pictureMargin, -pictureMargin)
@@ -94,4 +103,9 @@ func describe(sentences ...string) string {
 		b.WriteByte('.')
 	}
 	return b.String()
+}
+
+func fill(c draw.Canvas, tone color.Color, r vg.Rectangle) {
+	c.SetColor(tone)
+	c.Fill(r.Path())
 }

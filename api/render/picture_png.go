@@ -7,27 +7,26 @@ import (
 	"image/color"
 	"image/png"
 	"sync"
-
-	"gonum.org/v1/plot/vg"
-	"gonum.org/v1/plot/vg/draw"
 )
 
 // PNG writes the picture with two dots for a pixel, as fine screens and paper
 // want it.
 func (p *Picture) PNG(width int) []byte {
 	width = bound(width)
-	w, h := p.size(width)
 	dots := 192
 	if width > 1200 {
 		dots = 96
 	}
-	s := newRaster(w, h, dots)
-	p.draw(draw.New(s))
-	m := s.paletted()
+	w, h := p.size(width)
+	r := newRaster(w, h, dots)
+	for _, a := range p.record(w, h) {
+		r.write(a)
+	}
+	m := r.paletted()
 	var out bytes.Buffer
 	// a buffer takes every write; an error cannot come up
 	_ = pngEncoder.Encode(&out, m)
-	s.release(m)
+	r.release(m)
 	return out.Bytes()
 }
 
@@ -47,13 +46,13 @@ func (b *pngBuffers) Put(e *png.EncoderBuffer) { b.Pool.Put(e) }
 // can name. Tones that agree in the leading five bits of each channel become the
 // first of them, which is the one that was drawn with; beyond 256 the nearest is
 // taken. Lines and letters do not suffer, and it is encoded several times faster.
-func (s *raster) paletted() *image.Paletted {
+func (r *raster) paletted() *image.Paletted {
 	const unseen = -1
 	var index [1 << 15]int16
 	for i := range index {
 		index[i] = unseen
 	}
-	m := s.dots
+	m := r.dots
 	wide := m.Rect.Dx()
 	out := &image.Paletted{Pix: bytesOf(len(m.Pix) / 4), Stride: wide, Rect: m.Rect, Palette: make(color.Palette, 0, 256)}
 	name := func(dot uint32) uint8 {
@@ -68,7 +67,7 @@ func (s *raster) paletted() *image.Paletted {
 		}
 		return uint8(*at)
 	}
-	for _, tone := range s.tones { // what was asked for stays exact
+	for _, tone := range r.tones { // what was asked for stays exact
 		name(uint32(tone.R) | uint32(tone.G)<<8 | uint32(tone.B)<<16)
 	}
 	var before []byte // the row above: most rows are like it
@@ -89,9 +88,4 @@ func (s *raster) paletted() *image.Paletted {
 		before = from
 	}
 	return out
-}
-
-func fill(c draw.Canvas, tone color.Color, r vg.Rectangle) {
-	c.SetColor(tone)
-	c.Fill(r.Path())
 }

@@ -36,7 +36,15 @@ func hatch(f draw.Canvas, r vg.Rectangle) {
 	fill(f, faintTone, r)
 	clipped := draw.Canvas{Canvas: f.Canvas, Rectangle: r}
 	tall := r.Max.Y - r.Min.Y
+	var path vg.Path
 	for x := r.Min.X - tall; x < r.Max.X; x += px(8) {
-		clipped.StrokeLines(stroke(axisTone, 0.8), clipped.ClipLinesXY([]vg.Point{{X: x, Y: r.Min.Y}, {X: x + tall, Y: r.Max.Y}})...)
+		for _, line := range clipped.ClipLinesXY([]vg.Point{{X: x, Y: r.Min.Y}, {X: x + tall, Y: r.Max.Y}}) {
+			path.Move(line[0])
+			path.Line(line[1])
+		}
+	}
+	if len(path) > 0 {
+		f.SetLineStyle(stroke(axisTone, 0.8))
+		f.Stroke(path)
 	}
 }

@@ -9,7 +9,6 @@ import (
 	"strconv"
 
 	"gonum.org/v1/plot/vg"
-	"gonum.org/v1/plot/vg/draw"
 	"gonum.org/v1/plot/vg/recorder"
 
 	xfont "golang.org/x/image/font"
@@ -21,17 +20,17 @@ import (
 func (p *Picture) SVG(width int) []byte {
 	width = bound(width)
 	w, h := p.size(width)
-	var record recorder.Canvas
-	whole := draw.NewCanvas(&record, w, h)
-	fill(whole, paper, whole.Rectangle)
-	p.draw(whole)
 	s := &scribe{tall: h}
 	fmt.Fprintf(&s.out, `<svg xmlns="http://www.w3.org/2000/svg" role="img" width="%d" height="%.0f" viewBox="0 0 %.6g %.6g" font-family="'Liberation Sans',Arimo,Arial,Helvetica,sans-serif" style="max-width:100%%;height:auto"><title>`, width, h/px(1), w, h)
 	s.escape(p.title)
 	s.out.WriteString("</title><desc>")
 	s.escape(describe(p.subtitle, p.description, p.note))
 	s.out.WriteString("</desc>\n")
-	for _, a := range record.Actions {
+	s.tone = paper
+	s.path((vg.Rectangle{Max: vg.Point{X: w, Y: h}}).Path())
+	s.paint("fill")
+	s.out.WriteString("/>\n")
+	for _, a := range p.record(w, h) {
 		s.write(a)
 	}
 	s.out.WriteString("</svg>\n")
