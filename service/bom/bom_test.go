@@ -82,6 +82,7 @@ func TestMalformedCSVNamesLineAndColumn(t *testing.T) {
 		"column-missing":   {"Ref,Val,PN,Qty\n", 1, 0, "no column \"Value\"; the columns are \"Ref\", \"Val\""},
 		"column-twice":     {"Ref,Value,PN,Qty,Value\n", 1, 0, "two columns"},
 		"no-header":        {"", 1, 0, "no header"},
+		"line-ends":        {"Ref,Value,PN,Qty\rR1,1k,a,1\r", 1, 17, "carriage return"},
 		"not-utf8":         {head + "R1,1\xffk,a,1\n", 2, 5, "UTF-8"},
 		"cell-too-long":    {head + "R1," + strings.Repeat("k", maxCell+1) + ",a,1\n", 2, 4, "more than"},
 		"text-too-long":    {strings.Repeat("x", MaxBytes+1), 1, 0, "longer than"},

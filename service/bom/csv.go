@@ -54,6 +54,9 @@ func ReadCSV(raw []byte, m Mapping) ([]Line, error) {
 	if !utf8.Valid(raw) {
 		return nil, invalidText(raw)
 	}
+	if at := bytes.IndexByte(raw, '\r'); at >= 0 && !bytes.Contains(raw, []byte("\n")) {
+		return nil, &FormatError{1, at + 1, "lines end with a carriage return alone; RFC 4180 ends them with a line feed after it", ""}
+	}
 	comma, columns, err := separator(raw, m)
 	if err != nil {
 		return nil, err

@@ -145,6 +145,8 @@ func TestAmbiguousTextIsPointedAt(t *testing.T) {
 		{Resistor, "470", "470", 0},
 		{Resistor, "RES 4E7", "4E7", 4},
 		{Resistor, "10,000 Ω", "10,000", 0},
+		{Resistor, "10 200 Ω 1%", "10 200", 0},
+		{Resistor, "RES 1\u00a0200 Ω", "1\u00a0200", 4},
 		{Resistor, "4K7 10R", "10R", 4},
 		{Resistor, "1K 5% 10%", " 10%", 5},
 		{Capacitor, "2M2", "2M2", 0},

@@ -30,6 +30,7 @@ var (
 	fraction = regexp.MustCompile(`(\d+) ?/ ?(\d+) ?W\b`)
 	comma    = regexp.MustCompile(`\d+,\d+`)
 	groups   = regexp.MustCompile(`^[1-9]\d{0,2},\d{3}$`)
+	spaced   = regexp.MustCompile(`(?:^|[ ,;/|(])([1-9]\d{0,2} {1,3}\d{3})(?:[^\d.,]|$)`)
 	bare     = regexp.MustCompile(`^[+-]?(?:\d+\.?\d*|\.\d+)$`)
 	class    = regexp.MustCompile(`^(?:[XYZ][2-9][A-Z]|[CUPRSTM][0-9][GHJK]|NP0|NPO|COG)$`)
 )
@@ -46,6 +47,9 @@ func (r *reader) read() *Problem {
 	}
 	if p := r.commas(); p != nil {
 		return p
+	}
+	if at := spaced.FindStringSubmatchIndex(r.plain); at != nil {
+		return r.problem(word{at[2], r.plain[at[2]:at[3]]}, "does the space separate thousands, or two numbers?")
 	}
 	var first *Problem // a bare number that may have been meant as the value
 	valueAt := -1

@@ -99,6 +99,8 @@ func same(a, b dimension) (dimension, error) {
 // sum returns the dimension of a + b, or a - b.
 func sum(a, b dimension, minus bool) (dimension, error) {
 	switch {
+	case !a.number() || !b.number():
+		return a, fmt.Errorf("%s and %s cannot be added", a, b)
 	case a.celsius && b.celsius && minus:
 		return dimensions["K"], nil
 	case a.celsius && b.celsius:

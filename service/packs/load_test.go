@@ -69,6 +69,8 @@ func TestLoadingRefuses(t *testing.T) {
 		"type/value-is-a-condition":  {document("value: greatest.inductor_rms_a > 1"), "/rules/0/value", "yes or no"},
 		"type/condition-is-a-number": {document("when: greatest.inductor_rms_a"), "/rules/0/when", "where yes or no is wanted"},
 		"type/word-and-number":       {document("when: stage.rectifier > 1"), "/rules/0/when", ""},
+		"word/sum":                   {document(`when: stage.rectifier + stage.rectifier == "x"`), "/rules/0/when", "cannot be added"},
+		"word/order":                 {document(`when: stage.rectifier > "a"`), "/rules/0/when", "has no order"},
 		"word/never":                 {document(`when: stage.rectifier == "dioed"`), "/rules/0/when", "never \"dioed\""},
 		"syntax":                     {document("value: greatest.inductor_rms_a +"), "/rules/0/value", "Syntax error"},
 		"function/of-strings":        {document(`when: stage.rectifier.matches("d.*")`), "/rules/0/when", "not a function of rules"},

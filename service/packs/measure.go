@@ -81,8 +81,12 @@ func (m meter) call(c ast.CallExpr) (dimension, error) {
 		if err := m.words(c.Args()[0], c.Args()[1]); err != nil {
 			return truth, err
 		}
-		fallthrough
+		_, err := same(args[0], args[1])
+		return truth, err
 	case operators.Less, operators.LessEquals, operators.Greater, operators.GreaterEquals:
+		if !args[0].number() {
+			return truth, fmt.Errorf("%s has no order", args[0])
+		}
 		_, err := same(args[0], args[1])
 		return truth, err
 	case operators.Conditional:

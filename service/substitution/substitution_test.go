@@ -64,7 +64,7 @@ func TestVerdicts(t *testing.T) {
 	ofKind.ByKind = true
 	bare := warning
 	bare.Rule = rules.RuleCoverage
-	narrow := finding("a", rules.Pass, 0.04)
+	narrow := finding("a", rules.Pass, 0.05)
 	narrow.WorstBy = rules.VerticesSeeded
 	searched := narrow
 	searched.WorstBy = rules.Vertices

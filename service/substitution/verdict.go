@@ -85,9 +85,10 @@ func NeedsSearch(before, after *Assessment) bool {
 }
 
 // near reports whether a finding passes with a margin that has shrunk below what a
-// search from the vertices of the proven stage may miss. Found on some hundred parts
-// with all their figures up to half as large again, against the search by vertices
-// that a check makes: 0.9 % for a loop, 4.2 % for a load step, 7 % for its recovery.
+// search from the vertices of the proven stage may miss. Found on 96 parts of two rails
+// with every figure between 0.6 and 1.5 times the present one, against the search by
+// vertices that a check makes: at most 0.9 % of a loop's quantities, 5.0 % of a load
+// step's and 7.1 % of its recovery.
 func near(c rules.Change) bool {
 	f := c.After
 	if f == nil || f.Verdict != rules.Pass || f.WorstBy != rules.VerticesSeeded || c.Kind == rules.Unchanged || c.Kind == rules.Better {
@@ -95,7 +96,7 @@ func near(c rules.Change) bool {
 	}
 	missed := map[string]float64{"deg": 0.02, "dB": 0.02, "Hz": 0.02, "s": 0.1}[f.Unit]
 	if missed == 0 {
-		missed = 0.05
+		missed = 0.06
 	}
 	return f.Margin < missed
 }
