@@ -2,17 +2,11 @@ package wire
 
 // ReportsRequest asks for the document that proves a rail.
 type ReportsRequest struct {
-	Title       string       `json:"title,omitzero"`
-	Stage       *Stage       `json:"stage"`
-	Requirement *Requirement `json:"requirement"`
-	Conditions  *Conditions  `json:"conditions,omitzero"`
-	Limits      []Limit      `json:"limits,omitzero"`
-	Packs       []PackChoice `json:"packs,omitzero"`
-	Waivers     []Waiver     `json:"waivers,omitzero"`
-	Date        string       `json:"date,omitzero"`
-	Sections    []string     `json:"sections,omitzero"`
-	Samples     *Integer     `json:"samples,omitzero"`
-	Seed        *Integer     `json:"seed,omitzero"`
+	RuleChecksRequest
+	Title    string   `json:"title,omitzero"`
+	Sections []string `json:"sections,omitzero"`
+	Samples  *Integer `json:"samples,omitzero"`
+	Seed     *Integer `json:"seed,omitzero"`
 }
 
 // Setting is what the parts of a report share: the conditions with all their
@@ -26,8 +20,7 @@ type Setting struct {
 
 // Decode checks the request as a whole. The error is an *InvalidError.
 func (w *ReportsRequest) Decode() (*Setting, error) {
-	checks := RuleChecksRequest{Stage: w.Stage, Requirement: w.Requirement, Conditions: w.Conditions, Limits: w.Limits, Packs: w.Packs, Waivers: w.Waivers, Date: w.Date}
-	p, err := checks.Decode()
+	p, err := w.RuleChecksRequest.Decode()
 	if err != nil {
 		return nil, err
 	}

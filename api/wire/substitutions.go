@@ -8,15 +8,10 @@ import (
 	"railproof/service/substitution"
 )
 
-// SubstitutionsRequest asks which parts may replace those of a stage.
+// SubstitutionsRequest asks which parts may replace those of a stage that a rule check
+// describes.
 type SubstitutionsRequest struct {
-	Stage        *Stage        `json:"stage"`
-	Requirement  *Requirement  `json:"requirement"`
-	Conditions   *Conditions   `json:"conditions,omitzero"`
-	Limits       []Limit       `json:"limits,omitzero"`
-	Packs        []PackChoice  `json:"packs,omitzero"`
-	Waivers      []Waiver      `json:"waivers,omitzero"`
-	Date         string        `json:"date,omitzero"`
+	RuleChecksRequest
 	Replacements []Replacement `json:"replacements"`
 	Weights      *RankWeights  `json:"weights,omitzero"`
 	Quantities   []string      `json:"quantities,omitzero"`
@@ -107,7 +102,7 @@ type FindingChange struct {
 
 // Decode turns the request into the use case's. The error is an *InvalidError.
 func (w *SubstitutionsRequest) Decode() (*service.SubstitutionsRequest, error) {
-	p, err := w.proof().Decode()
+	p, err := w.RuleChecksRequest.Decode()
 	if err != nil {
 		return nil, err
 	}
@@ -131,11 +126,6 @@ func (w *SubstitutionsRequest) Decode() (*service.SubstitutionsRequest, error) {
 		return nil, &InvalidError{faults}
 	}
 	return r, nil
-}
-
-// proof is the part of the request that a rule check has too.
-func (w *SubstitutionsRequest) proof() *RuleChecksRequest {
-	return &RuleChecksRequest{w.Stage, w.Requirement, w.Conditions, w.Limits, w.Packs, w.Waivers, w.Date}
 }
 
 // EncodeSubstitutions writes the answer.

@@ -4,7 +4,6 @@ import "strings"
 
 // suffixes of field names and the UCUM code each stands for, longest first.
 var suffixes = []struct{ tail, unit string }{
-	{"transconductance_s", "S"},
 	{"_k_per_w", "K/W"},
 	{"_v_per_k", "V/K"},
 	{"_a_per_s", "A/s"},
@@ -28,16 +27,26 @@ var suffixes = []struct{ tail, unit string }{
 	{"_j", "J"},
 	{"_t", "T"},
 	{"_k", "K"},
-	{"turns", "1"},
-	{"count", "1"},
 }
 
-// UnitOf returns the UCUM code that a field's name ends in.
+// UnitOf returns the UCUM code that a number's name ends in. The siemens of a
+// transconductance share their letter with seconds.
 func UnitOf(name string) (string, bool) {
+	if strings.HasSuffix(name, "transconductance_s") {
+		return "S", true
+	}
 	for _, s := range suffixes {
 		if strings.HasSuffix(name, s.tail) {
 			return s.unit, true
 		}
 	}
 	return "", false
+}
+
+// unitOfField is UnitOf for the numbers of a stage, with plain counts.
+func unitOfField(id string) (string, bool) {
+	if strings.HasSuffix(id, "turns") || strings.HasSuffix(id, "count") {
+		return "1", true
+	}
+	return UnitOf(id)
 }

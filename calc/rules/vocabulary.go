@@ -74,12 +74,12 @@ func Vocabulary(scope Scope) []Name {
 		}
 	}
 	for _, r := range requirementNumbers(&stage.Requirement{}) {
-		unit, _ := UnitOf(r.key)
+		unit, _ := unitOfField(r.key)
 		number(rootRequirement+r.key, unit)
 	}
 	tail := strings.TrimSuffix(scope.String(), "*")
 	for id, spreads := range allFields() {
-		unit, ok := UnitOf(id)
+		unit, ok := unitOfField(id)
 		if !ok {
 			continue
 		}
