@@ -33,7 +33,7 @@ type shape struct {
 }
 
 type place struct {
-	index int
+	index []int // of the field, or of the one embedded in it
 	shape *shape
 }
 
@@ -60,10 +60,10 @@ func newShape(t reflect.Type) *shape {
 		s.entry = shapeOf(t.Elem())
 	case s.kind == reflect.Struct:
 		s.fields = make(map[string]place, t.NumField())
-		for i := range t.NumField() {
-			if f := t.Field(i); f.IsExported() {
+		for _, f := range reflect.VisibleFields(t) {
+			if f.IsExported() && !f.Anonymous {
 				name, _, _ := strings.Cut(f.Tag.Get("json"), ",")
-				s.fields[name] = place{i, shapeOf(f.Type)}
+				s.fields[name] = place{f.Index, shapeOf(f.Type)}
 			}
 		}
 	}
@@ -133,7 +133,7 @@ func (s *shape) fillStruct(to reflect.Value, v map[string]any) error {
 		if !known {
 			return fmt.Errorf("wire: no field %q", name)
 		}
-		if err := at.shape.fill(to.Field(at.index), member); err != nil {
+		if err := at.shape.fill(to.FieldByIndex(at.index), member); err != nil {
 			return err
 		}
 	}

@@ -117,10 +117,12 @@ func TestReplacementFaultsPointAtFields(t *testing.T) {
 func board(t *testing.T, bill object) object {
 	t.Helper()
 	d := small(t)
+	at(d["stage"], "output_capacitors/0").(object)["kind"] = "ceramic-class-1"
 	return object{"bom": bill, "rails": []any{object{
 		"name": "small", "stage": d["stage"], "requirement": d["requirement"],
-		"bindings":          []any{object{"role": "inductor", "designators": []any{"L1"}}, object{"role": "output_capacitors/0", "designators": []any{"C1", "C2", "C3", "C4"}}},
-		"designator_ranges": []any{object{"from": "C1", "to": "C9"}},
+		"bindings":           []any{object{"role": "inductor", "designators": []any{"L1"}}, object{"role": "output_capacitors/0", "designators": []any{"C1", "C2", "C3", "C4"}}},
+		"roles_without_line": []any{"high_side", "low_side", "input_capacitors/0", "feedback/upper_ohm", "feedback/lower_ohm"},
+		"designator_ranges":  []any{object{"from": "C1", "to": "C9"}},
 	}}}
 }
 
@@ -135,14 +137,14 @@ func TestBomAgreesOrSaysWhere(t *testing.T) {
 	for name, c := range map[string]struct {
 		text, verdict, line string
 	}{
-		"agrees":      {"\ufeffReference;Value\r\nL1;6u8 20%\r\nC1-C4;22u 0% 16V\r\n", "agrees", ""},
-		"tab":         {"Value\tReference\n6u8 20%\tL1\n22u 0% 16V\tC1 C2 C3 C4\n", "agrees", ""},
-		"value":       {"Reference,Value\nL1,4u7 20%\nC1-C4,22u 0% 16V\n", "differs", "differs"},
-		"tolerance":   {"Reference,Value\nL1,6u8 30%\nC1-C4,22u 0% 16V\n", "differs", "differs"},
-		"rating":      {"Reference,Value\nL1,6u8 20%\nC1-C4,22u 0% 10V\n", "differs", "differs"},
-		"unreadable":  {"Reference,Value\nL1,six eight\nC1-C4,22u 0% 16V\n", "incomplete", "unreadable"},
-		"unsaid":      {"Reference,Value\nL1,6u8\nC1-C4,22u 0% 16V\n", "incomplete", "needs-review"},
-		"missing":     {"Reference,Value\nL1,6u8 20%\nC1-C3,22u 0% 16V\n", "differs", "missing"},
+		"agrees":      {"\ufeffReference;Value\r\nL1;6u8 20% 12A\r\nC1-C4;22u 0% 16V C0G\r\n", "agrees", ""},
+		"tab":         {"Value\tReference\n6u8 20% 12A\tL1\n22u 0% 16V C0G\tC1 C2 C3 C4\n", "agrees", ""},
+		"value":       {"Reference,Value\nL1,4u7 20%\nC1-C4,22u 0% 16V C0G\n", "differs", "differs"},
+		"tolerance":   {"Reference,Value\nL1,6u8 30%\nC1-C4,22u 0% 16V C0G\n", "differs", "differs"},
+		"rating":      {"Reference,Value\nL1,6u8 20% 12A\nC1-C4,22u 0% 10V C0G\n", "differs", "differs"},
+		"unreadable":  {"Reference,Value\nL1,six eight\nC1-C4,22u 0% 16V C0G\n", "incomplete", "unreadable"},
+		"unsaid":      {"Reference,Value\nL1,6u8\nC1-C4,22u 0% 16V C0G\n", "incomplete", "needs-review"},
+		"missing":     {"Reference,Value\nL1,6u8 20% 12A\nC1-C3,22u 0% 16V C0G\n", "differs", "missing"},
 		"on-no-board": {"Reference,Value\nL2,6u8 20%\n", "differs", "missing"},
 	} {
 		t.Run(name, func(t *testing.T) {
@@ -156,7 +158,7 @@ func TestBomAgreesOrSaysWhere(t *testing.T) {
 			}
 		})
 	}
-	r := send(t, "POST", server+"/v1/bom-checks", encode(t, board(t, csvBill("Reference,Value\nL1,6u8 20%\nC1-C4,22u 0% 16V\nC7,1u\n", columns))))
+	r := send(t, "POST", server+"/v1/bom-checks", encode(t, board(t, csvBill("Reference,Value\nL1,6u8 20% 12A\nC1-C4,22u 0% 16V C0G\nC7,1u\n", columns))))
 	unbound := r.tree(t).(object)["unbound_lines"].([]any)
 	require.Equal(t, object{"rail": "small", "line": 4.0, "designators": []any{"C7"}, "value": "1u"}, unbound[0])
 }
@@ -184,7 +186,7 @@ func TestBomFaultsPointAtTextAndMapping(t *testing.T) {
 
 func TestBomRunsApprovedAlternates(t *testing.T) {
 	server := server(t)
-	d := board(t, csvBill("Reference,Value,Part\nL1,6u8 20%,ALT\nC1-C4,22u 0% 16V,\n", object{"designators": "Reference", "value": "Value", "part_number": "Part"}))
+	d := board(t, csvBill("Reference,Value,Part\nL1,6u8 20%,ALT\nC1-C4,22u 0% 16V C0G,\n", object{"designators": "Reference", "value": "Value", "part_number": "Part"}))
 	rail := d["rails"].([]any)[0].(object)
 	rail["stage"].(object)["inductor"].(object)["part_number"] = "PROVEN"
 	part := at(small(t)["stage"], "inductor").(object)
