@@ -11,6 +11,7 @@ import (
 	"railproof/calc/preferred"
 	"railproof/calc/spread"
 	"railproof/calc/stage"
+	"railproof/calc/transient"
 )
 
 const amplifierOhm = 1e7 // [ohm] output resistance of the draft's error amplifier
@@ -28,7 +29,7 @@ const (
 // loopTargets are the crossover, over the switching frequency, and phase margin [deg]
 // that the compensator is designed for, the best first.
 var loopTargets = [...]struct{ crossover, margin float64 }{
-	{crossoverRatio, 60}, {crossoverRatio, 50}, {0.085, 60}, {0.07, 60}, {0.06, 55}, {0.05, 60}, {0.05, 50},
+	{crossoverRatio, 60}, {0.085, 60}, {0.07, 60}, {0.07, 50}, {0.05, 60}, {0.05, 50},
 	{0.04, 55}, {0.03, 60}, {0.03, 50}, {0.02, 55}, {0.02, 45}, {0.01, 55}, {5e-3, 50}, {2e-3, 45}, {1e-3, 45},
 }
 
@@ -42,9 +43,10 @@ const (
 )
 
 // compensator designs a transconductance amplifier with one zero and one pole on the
-// exact loop at typical input and the greatest load. The first target whose design
-// keeps its margins over the corners is taken; where none does, the one that comes
-// nearest, with a note. False if there is no stable design at all.
+// exact loop at typical input and the greatest load. The first target is taken whose
+// design keeps its margins over the corners and settles after the load step; where
+// none settles, the first that keeps its margins; where none does that, the one that
+// comes nearest, with a note. False if there is no stable design at all.
 func (z *sizer) compensator() bool {
 	e := evaluate.Prepare(z.draft)
 	var r evaluate.Result
@@ -67,11 +69,12 @@ func (z *sizer) compensator() bool {
 		}
 		d.Compensator = design.Compensator
 		m := z.loopReserve(&design.Margins, reserve)
-		if m > reserve {
+		z.settles = m >= 0 && z.stepSettles()
+		if z.settles || m > reserve && reserve < 0 {
 			best, reserve = d.Compensator, m
 			z.crossover, z.phaseMargin = design.Margins.Crossover, design.Margins.PhaseMargin
 		}
-		if m >= 0 {
+		if z.settles {
 			break
 		}
 	}
@@ -155,6 +158,50 @@ func (z *sizer) loopReserve(typical *loop.Margins, beat float64) float64 {
 		}
 	}
 	return reserve
+}
+
+const (
+	settledBand  = 0.8   // [1] of the band of recovery, as a reserve
+	settledAfter = 100.0 // [1] periods, where no recovery is asked for
+)
+
+// stepSettles reports whether the draft keeps the load step of the requirement at
+// the corners where duty ratio and inductor current follow it worst. A loop that
+// asks for more than they give can ring between its limits, however good its margins.
+func (z *sizer) stepSettles() bool {
+	demand, asked := transient.DemandOf(z.req)
+	if !asked {
+		return true
+	}
+	demand.Band *= settledBand
+	e := evaluate.Prepare(z.draft)
+	values := numbers(e.Stage())
+	follower := transient.Follower{Demand: demand}
+	p := stage.Point{SourceResistance: z.req.SourceResistance, AmbientDegC: z.req.AmbientDegC.Min, AgeRatio: 1, PartTemperatureDegC: parts.Unknown, Control: stage.Control{Kind: stage.ByFeedback}}
+	for _, at := range [...]loopCorner{{small: true, large: true}, {small: true, lossy: true, large: true}} {
+		for _, v := range z.ans.Spreads {
+			*values[v.Field] = at.end(&v)
+		}
+		for _, fs := range [2]float64{z.fsHigh, z.fsLow} {
+			e.Stage().SwitchingFrequency = fs
+			for _, p.Input = range [2]float64{z.req.Input.Min, z.req.Input.Max} {
+				for _, applied := range [2]bool{true, false} {
+					if o, ok := follower.Follow(e, &p, applied); !ok || !(o.Recovery <= z.settled(fs)) {
+						return false
+					}
+				}
+			}
+		}
+	}
+	return true
+}
+
+// settled returns the time allowed to come back from a load step [s].
+func (z *sizer) settled(fs float64) float64 {
+	if s := z.req.Targets.LoadStep; known(s.Recovery) {
+		return s.Recovery
+	}
+	return settledAfter / fs
 }
 
 // loopCorner says where the spreads stand at a corner of the loop.

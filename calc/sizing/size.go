@@ -78,6 +78,7 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 	}
 	if !best.failed() {
 		best.conclude()
+		best = best.calmer()
 	}
 	best.ans.Status = OK
 	if best.failed() {
@@ -85,6 +86,28 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 		best.ans.Stage, best.ans.Spreads, best.ans.Limits = nil, nil, nil
 	}
 	return best.ans
+}
+
+// calmer returns the draft, or where its loop does not settle after the load step one
+// whose output bank leaves a slower loop enough.
+func (z *sizer) calmer() *sizer {
+	for _, share := range [...]float64{0.05, 0.025} {
+		if z.settles || z.failed() {
+			break
+		}
+		n := newSizer(z.req, z.choice, z.fs, z.try)
+		n.share = share
+		if n.run(); n.failed() {
+			continue
+		}
+		if n.judged = n.judge(); z.judged.meets(z) && !n.judged.meets(n) {
+			continue
+		}
+		if n.conclude(); n.settles && !n.failed() {
+			return n
+		}
+	}
+	return z
 }
 
 // run goes through the steps up to a complete draft; it stops at the first step

@@ -16,6 +16,7 @@ type sizer struct {
 	want   stage.Targets // with the defaults of what was left open
 	phases float64       // [1]
 	try    trial
+	share  float64 // [1] crossover that the output bank is sized for, over the switching frequency
 
 	fs, fsLow, fsHigh float64        // [Hz]
 	ripple            float64        // [V] output ripple that the draft keeps
@@ -40,6 +41,7 @@ type sizer struct {
 	inputRMS      float64 // [A] greatest
 	crossover     float64 // [Hz] of the draft's loop
 	phaseMargin   float64 // [deg]
+	settles       bool    // the draft's loop settles after the load step, with its margins kept
 	inputCorner   corner  // where
 
 	draft  *stage.Stage
@@ -56,7 +58,7 @@ type trial struct {
 // newSizer fills in the targets' defaults and what follows from the requirement
 // alone.
 func newSizer(req *stage.Requirement, choice Choices, fs float64, try trial) *sizer {
-	z := &sizer{req: req, choice: choice.withDefaults(req.Output), want: req.Targets, phases: float64(req.PhaseCount), try: try, fs: fs}
+	z := &sizer{req: req, choice: choice.withDefaults(req.Output), want: req.Targets, phases: float64(req.PhaseCount), try: try, share: crossoverRatio, fs: fs}
 	z.fsLow, z.fsHigh = fs*(1-frequencyTol), fs*(1+frequencyTol)
 	z.ans.Frequency = fs
 	z.defaults()

@@ -198,7 +198,7 @@ func (z *sizer) stepAllowance() allowance {
 	if !known(s.Recovery) {
 		return a
 	}
-	band, fc := transient.RecoveryBand*z.req.Output, crossoverRatio*z.fs
+	band, fc := transient.RecoveryBand*z.req.Output, z.share*z.fs
 	settling := math.Max(0, s.Recovery-settlePeriods/z.fs)
 	if v := band * math.Exp(2*math.Pi*fc*settling/settleRate); v < a.within {
 		a = allowance{
@@ -247,7 +247,7 @@ func (z *sizer) stepBounds(b *bank) []chargeBound {
 		"longest time without energy; Texas Instruments TPS40200 data sheet SLUS659F", Input{"tw", t, "s"}))
 	fc := crossoverRatio * z.fs
 	return append(bounds, b.chargeBound("step-bandwidth", "dI / (2 * pi * fc)", s.Step/(2*math.Pi*fc), s.Step, a,
-		CapacitanceForBandwidth(s.Step, crossoverRatio*z.fs, s.Deviation), Corner{Frequency: z.fsLow, Input: math.NaN(), Output: math.NaN(), Load: z.req.LoadCurrent.Max, Duty: math.NaN()},
+		CapacitanceForBandwidth(s.Step, z.share*z.fs, s.Deviation), Corner{Frequency: z.fsLow, Input: math.NaN(), Output: math.NaN(), Load: z.req.LoadCurrent.Max, Duty: math.NaN()},
 		"output impedance of a closed loop at its crossover, estimate", Input{"fc", fc, "Hz"}))
 }
 
