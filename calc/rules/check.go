@@ -24,6 +24,9 @@ const RuleConditions = "engine/conditions"
 // their kind must have a rule for each kind that is there.
 const RuleCoverage = "engine/pack-coverage"
 
+// RulePlaceholder is this package's own rule: a proof is of parts that exist.
+const RulePlaceholder = "engine/placeholder-part"
+
 // Report is the outcome of a check.
 type Report struct {
 	Verdict       Overall
@@ -40,7 +43,7 @@ type Report struct {
 // passes.
 func Check(c *Case, packs []*Pack, waivers []Waiver, today Date) Report {
 	p := prepare(c)
-	r := Report{Findings: append(p.statuses(), p.uncovered()...)}
+	r := Report{Findings: slices.Concat(p.statuses(), p.uncovered(), p.placeholders())}
 	judged := map[string]bool{} // parts
 	var bare []Finding
 	for _, pack := range packs {
@@ -127,6 +130,27 @@ func (p *prepared) uncovered() []Finding {
 		f.Missing = []string{g.Pointer}
 		f.Detail = "Not evaluated; " + strings.ToLower(g.Detail[:1]) + g.Detail[1:]
 		out = append(out, f)
+	}
+	return out
+}
+
+// placeholders returns a finding for every part that only stands for one yet to be
+// chosen.
+func (p *prepared) placeholders() []Finding {
+	var out []Finding
+	for scope := range ScopeCount {
+		for place := range scope.places(p.c.Stage) {
+			part := scope.part(place)
+			if !p.at(scope, place, nil).flags[rootPart+"assumed"] {
+				continue
+			}
+			f := blank()
+			f.Rule, f.Title, f.Pointer = RulePlaceholder, "The part is a real one", join(p.c.StageAt, part)
+			f.Basis = "this service's own rule: figures of a part that nobody has chosen prove nothing"
+			f.Missing = []string{"the data of a real part"}
+			f.Detail = "Not evaluated; " + part + " is a placeholder: its figures and ratings are what a part would need."
+			out = append(out, f)
+		}
 	}
 	return out
 }

@@ -506,3 +506,15 @@ func TestAPassThatRestsOnAnAssumptionIsNone(t *testing.T) {
 		})
 	}
 }
+
+// The draft stage of a sizing has parts that nobody makes.
+func TestAPlaceholderPartProvesNothing(t *testing.T) {
+	c := testCase()
+	c.Stage.Inductor.Assumed = true
+	r := check(c, nil, heating(1))
+	require.Len(t, r.Findings, 2)
+	require.Equal(t, RulePlaceholder, r.Findings[0].Rule)
+	require.Equal(t, "/stage/inductor", r.Findings[0].Pointer)
+	require.Equal(t, Pass, r.Findings[1].Verdict, "what can be computed is")
+	require.Equal(t, Incomplete, r.Verdict)
+}
