@@ -121,7 +121,7 @@ func compute(ctx context.Context, t terminal, name, operation, form string, oper
 		}
 		if err := a.after(operands[0], body, answer); err != nil {
 			fmt.Fprintf(t.err, "railproof %s: %v\n", name, err)
-			return exitOurFault
+			return exitBadInput // a picture that the answer does not have, a file that cannot be written
 		}
 	}
 	if form == exchange.TextForm && takesColour(t) {

@@ -4,9 +4,13 @@ import (
 	"context"
 	"errors"
 	"flag"
+	"fmt"
 	"os"
+	"slices"
+	"strings"
 
 	"railproof/api/exchange"
+	"railproof/api/render"
 	"railproof/openapi"
 	"railproof/service"
 )
@@ -30,9 +34,21 @@ func (p *pictureFlags) declare(flags *flag.FlagSet, operation string) {
 	flags.IntVar(&p.view.Width, "width-px", 0, "`WIDTH` of the picture in pixels (default 800)")
 }
 
+// check refuses before anything is computed what no answer could be drawn by.
+func (p *pictureFlags) check(operation string) error {
+	names := exchange.PictureNames(operation)
+	if p.view.Picture != "" && !slices.Contains(strings.Split(names, ", "), p.view.Picture) {
+		return fmt.Errorf("no picture %q; there are: %s", p.view.Picture, names)
+	}
+	if w := p.view.Width; w != 0 && (w < render.LeastWidth || w > render.MostWidth) {
+		return fmt.Errorf("a picture %d pixels wide; accepted: %d to %d", w, render.LeastWidth, render.MostWidth)
+	}
+	return nil
+}
+
 // around writes the pictures after the answer was computed.
 func (p *pictureFlags) around(ctx context.Context, operation string) around {
-	return around{after: func(_ string, body []byte, a *exchange.Answer) error {
+	return around{before: func(body []byte) ([]byte, error) { return body, p.check(operation) }, after: func(_ string, body []byte, a *exchange.Answer) error {
 		for _, f := range []struct{ file, form string }{{p.svg, "image/svg+xml"}, {p.png, "image/png"}} {
 			if f.file == "" {
 				continue
