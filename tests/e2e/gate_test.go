@@ -19,8 +19,10 @@ const small = `{
     "high_side": {"on_resistance_ohm": 0.009, "rating": {"drain_source_v": 40, "drain_current_a": 45, "junction_degc": 150}, "thermal": {"junction_to_ambient_k_per_w": 32}},
     "low_side": {"on_resistance_ohm": 0.0045, "rating": {"drain_source_v": 40, "drain_current_a": 45, "junction_degc": 150}, "thermal": {"junction_to_ambient_k_per_w": 32}},
     "inductor": {"inductance_h": {"typ": 6.8e-6, "tol": 0.2}, "dc_resistance_ohm": 0.007, "rating": {"saturation_a": 12, "heating_a": 9, "winding_degc": 125}, "thermal": {"junction_to_ambient_k_per_w": 22}},
-    "output_capacitors": [{"capacitance_f": 2.2e-5, "count": 4, "esr_ohm": 0.003, "kind": "ceramic-class-2", "rating": {"voltage_v": 16, "ripple_current_a": 4, "temperature_degc": 125}}],
-    "input_capacitors": [{"capacitance_f": 1e-5, "count": 3, "esr_ohm": 0.003, "kind": "ceramic-class-2", "rating": {"voltage_v": 50, "ripple_current_a": 4, "temperature_degc": 125}}],
+    "output_capacitors": [{"capacitance_f": 2.2e-5, "count": 4, "esr_ohm": 0.003, "kind": "ceramic-class-2",
+      "capacitance_at_bias": [{"bias_v": 0, "multiplier_ratio": 1}, {"bias_v": 6, "multiplier_ratio": 0.8}], "rating": {"voltage_v": 16, "ripple_current_a": 4, "temperature_degc": 125}}],
+    "input_capacitors": [{"capacitance_f": 1e-5, "count": 3, "esr_ohm": 0.003, "kind": "ceramic-class-2",
+      "capacitance_at_bias": [{"bias_v": 0, "multiplier_ratio": 1}, {"bias_v": 36, "multiplier_ratio": 0.5}], "rating": {"voltage_v": 50, "ripple_current_a": 4, "temperature_degc": 125}}],
     "feedback": {"reference_v": {"typ": 0.8, "tol": 0.01}, "upper_ohm": 56200, "lower_ohm": 10700},
     "controller": {"drive_v": 5, "min_on_time_s": 8e-8, "min_off_time_s": 1.2e-7, "max_duty_ratio": 0.98}
   },
@@ -134,10 +136,11 @@ func TestGateOfTheExamples(t *testing.T) {
 func TestBomFromACSVFile(t *testing.T) {
 	dir := t.TempDir()
 	file := filepath.Join(dir, "parts.csv")
-	require.NoError(t, os.WriteFile(file, []byte("Reference;Value\nL1;6u8 20%\n"), 0o600))
+	require.NoError(t, os.WriteFile(file, []byte("Reference;Value\nL1;6u8 20% 12A\n"), 0o600))
 	rail := `{"rails": [{"name": "small", "stage": ` + small[strings.Index(small, `"stage": `)+9:strings.Index(small, `,
   "requirement"`)] + `, "requirement": ` + small[strings.Index(small, `"requirement": `)+15:strings.Index(small, `,
-  "packs"`)] + `, "bindings": [{"role": "inductor", "designators": ["L1"]}]}]}`
+  "packs"`)] + `, "bindings": [{"role": "inductor", "designators": ["L1"]}],
+  "roles_without_line": ["high_side", "low_side", "output_capacitors/0", "input_capacitors/0", "feedback/upper_ohm", "feedback/lower_ohm"]}]}`
 	r := railproof(t, rail, "bom", "--lines", file, "--columns", "designators=Reference,value=Value", "-")
 	require.Equal(t, 0, r.code, "%s%s", r.out, r.err)
 	r = railproof(t, rail, "bom", "--table", "--lines", file, "--columns", "designators=Ref,value=Value", "-")
