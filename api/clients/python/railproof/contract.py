@@ -1673,7 +1673,7 @@ class Finding(TypedDict):
     value_high: NotRequired[float]  # Greatest.
     within_band: NotRequired[bool]  # The margin is smaller than the band: the verdict could turn.
     corners: NotRequired[List['Corner']]  # Where the values are worst.
-    worst_by: NotRequired[Literal['search', 'seeded-search', 'vertices', 'seeded-vertices']]  # How the worst of the values was looked for; absent where none is a worst value. search: at vertices of the box of tolerances and conditions, then inside it. seeded-search: the same from known worst points, with every coordinate moved in turn, not inside the box. vertices: at the vertices that sensitivities point to and no further, as for every quantity of loop and load step. It is the worst found, not proven. seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 5 % of a load step's and 10 % of a recovery time.
+    worst_by: NotRequired[Literal['search', 'seeded-search', 'vertices', 'seeded-vertices']]  # How the worst of the values was looked for; absent where none is a worst value. search: at vertices of the box of tolerances and conditions, then inside it. seeded-search: the same from known worst points, with every coordinate moved in turn, not inside the box. vertices: at the vertices that sensitivities point to and no further, as for every quantity of loop and load step. It is the worst found, not proven. seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 6 % of a load step's and 10 % of a recovery time.
     missing: NotRequired[List[str]]  # Data that a verdict would need.
     beyond: NotRequired[List[str]]
     detail: str

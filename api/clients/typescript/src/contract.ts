@@ -3915,7 +3915,7 @@ export interface components {
              *     search: at vertices of the box of tolerances and conditions, then inside it.
              *     seeded-search: the same from known worst points, with every coordinate moved in turn, not inside the box.
              *     vertices: at the vertices that sensitivities point to and no further, as for every quantity of loop and load step. It is the worst found, not proven.
-             *     seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 5 % of a load step's and 10 % of a recovery time.
+             *     seeded-vertices: from the vertices of the proven stage, moved by what a replacement part changes. It may miss about 2 % of a loop's quantity, 6 % of a load step's and 10 % of a recovery time.
              * @enum {string}
              */
             worst_by?: "search" | "seeded-search" | "vertices" | "seeded-vertices";
