@@ -26,6 +26,7 @@ type watcher struct {
 	phase int
 	event *statespace.Event
 	start float64 // value as the step begins
+	end   float64 // and as it ends
 }
 
 // advance moves the run to the time given, edge by edge.
@@ -150,7 +151,7 @@ func (e *Engine) watch() {
 	m := &e.now
 	e.watched = e.watched[:0]
 	add := func(k watchKind, i int, v *statespace.Event) {
-		e.watched = append(e.watched, watcher{k, i, v, v.At(&m.z, e.width, 0)})
+		e.watched = append(e.watched, watcher{kind: k, phase: i, event: v, start: v.At(&m.z, e.width, 0)})
 	}
 	for i := range e.joint.Circuit.Phases {
 		p := &m.phases[i]
@@ -211,10 +212,11 @@ func (e *Engine) glide(t float64) {
 		}
 		for k := range e.watched {
 			w := &e.watched[k]
-			if w.kind == comparatorTrips {
+			w.start = w.end
+			if w.kind == comparatorTrips { // its ramp has moved on
 				e.comparator(w.phase)
+				w.start = w.event.At(&m.z, e.width, 0)
 			}
-			w.start = w.event.At(&m.z, e.width, 0)
 		}
 	}
 	if math.Abs(m.at-t) <= e.grain() {
@@ -228,9 +230,9 @@ func (e *Engine) earliest(v *interval, z *statespace.Point, h float64) (first *w
 	at = h
 	for k := range e.watched {
 		w := &e.watched[k]
-		end := w.event.At(z, e.width, at)
+		w.end = w.event.At(z, e.width, at)
 		latches := w.kind == comparatorTrips || w.kind == limitTrips
-		if !(end >= 0) && !(latches && w.start >= 0) {
+		if !(w.end >= 0) && !(latches && w.start >= 0) {
 			continue
 		}
 		if w.start >= 0 {
