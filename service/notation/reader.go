@@ -89,7 +89,7 @@ func (r *reader) read() *Problem {
 		if first != nil {
 			return first
 		}
-		return &Problem{0, r.text, "no value of a " + r.kind.String() + " in it"}
+		return &Problem{0, r.text, "no " + r.kind.String() + " value in it"}
 	}
 	if absoluteTolerance != nil {
 		return r.absolute(*absoluteTolerance)
