@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"math"
 	"strings"
 
 	"railproof/calc/evaluate"
@@ -49,6 +50,7 @@ func (s *Service) design(ctx context.Context, r *LoopRequest, d *Design, a *Loop
 		if err != nil {
 			return err
 		}
+		unreachable.Bound = b.bound(t, unreachable.Bound)
 		return &UnreachableTarget{*unreachable, reach}
 	}
 	if err != nil {
@@ -73,6 +75,48 @@ const (
 	reachSpan  = 1e-3 // [1] lowest of them over the one asked for
 	reachFine  = 12   // [1] halvings between the last that fails and the first that works
 )
+
+// bound returns the greatest phase margin [deg] that can be had at the crossover, to
+// four digits downwards and tried out; parts.Unknown where none is found. Its search
+// begins from what the synthesis takes for the bound, if it knows one.
+func (b *loopBench) bound(t loop.Target, supposed float64) float64 {
+	works := func(margin float64) bool {
+		t.PhaseMargin = margin
+		_, err := b.sampled.Synthesise(&b.plant, t)
+		return err == nil
+	}
+	bad := t.PhaseMargin
+	if parts.Known(supposed) {
+		bad = math.Min(bad, supposed)
+	}
+	good := downward(bad)
+	for range reachFine {
+		if !(good > 0) {
+			return parts.Unknown
+		}
+		if works(good) {
+			break
+		}
+		bad, good = good, 0.8*good
+	}
+	for range reachFine {
+		if middle := (good + bad) / 2; works(middle) {
+			good = middle
+		} else {
+			bad = middle
+		}
+	}
+	if good = downward(good); !works(good) {
+		return parts.Unknown
+	}
+	return good
+}
+
+// downward returns x rounded down to four digits.
+func downward(x float64) float64 {
+	unit := math.Pow(10, math.Floor(math.Log10(x))-3)
+	return math.Floor(x/unit) * unit
+}
 
 // reach returns the highest crossover below that asked for at which the phase
 // margin can be had.
@@ -99,7 +143,7 @@ func (b *loopBench) reach(ctx context.Context, t loop.Target) (float64, error) {
 				bad = middle
 			}
 		}
-		return good, nil
+		return downward(good), nil
 	}
 	return parts.Unknown, nil
 }

@@ -69,8 +69,12 @@ type SourceMargin struct {
 // [dB]; 6 to 10 dB are usual (remembered, unverified).
 const Customary = 6.0
 
+// farthest is the separation beyond which rounding alone is seen [dB]: without a load
+// the stage has no input admittance.
+const farthest = 240.0
+
 // SourceMargins returns the least separation of source and input impedances on a
-// logarithmic grid up to half the decision rate.
+// logarithmic grid up to half the decision rate; +Inf where there is none.
 func (a *Averaged) SourceMargins(s *Source) SourceMargin {
 	m := SourceMargin{Null: math.Inf(1), Driving: math.Inf(1), Input: math.Inf(1)}
 	nyquist := a.plant.Nyquist()
@@ -80,7 +84,7 @@ func (a *Averaged) SourceMargins(s *Source) SourceMargin {
 	for range points {
 		x := a.InteractionAt(s, f)
 		least := func(z complex128, db, at *float64) {
-			if d := 20 * math.Log10(cmplx.Abs(z)/cmplx.Abs(x.Source)); d < *db {
+			if d := 20 * math.Log10(cmplx.Abs(z)/cmplx.Abs(x.Source)); d < min(*db, farthest) {
 				*db, *at = d, f
 			}
 		}

@@ -8,14 +8,15 @@ import (
 )
 
 const (
-	searchSpan   = 3e5 // [1] half the decision rate over the lowest frequency searched
-	perDecade    = 32  // [1] points of the plain grid
-	plainPoints  = 176 // [1] perDecade log10(searchSpan), rounded up
-	perMode      = 11  // [1] points set around each oscillating eigenvalue
-	maxGrid      = plainPoints + 2*perMode*statespace.MaxStates/2 + 2
-	refinements  = 60    // [1] bound on the steps of one refinement
-	resolution   = 1e-10 // [1] relative, of a refined frequency
-	cornerOffset = 8     // [1] half-widths of a resonance covered on each side
+	searchSpan    = 3e5 // [1] half the decision rate over the lowest frequency searched
+	perDecade     = 32  // [1] points of the plain grid
+	plainPoints   = 176 // [1] perDecade log10(searchSpan), rounded up
+	perMode       = 11  // [1] points set around each oscillating eigenvalue
+	maxGrid       = plainPoints + 2*perMode*statespace.MaxStates/2 + 3
+	refinements   = 60    // [1] bound on the steps of one refinement
+	resolution    = 1e-10 // [1] relative, of a refined frequency
+	besideNyquist = 1e-6  // [1] last point before half the decision rate, at which a sampled gain is real whatever its phase before
+	cornerOffset  = 8     // [1] half-widths of a resonance covered on each side
 )
 
 // scan is the grid on which a loop gain is searched: logarithmic, with further
@@ -37,6 +38,7 @@ func (g *scan) reset(nyquist float64) {
 		f *= step
 	}
 	g.frequency[plainPoints-1] = nyquist
+	g.insert(nyquist * (1 - besideNyquist))
 }
 
 // around adds points about the frequencies of the eigenvalues of a map over the

@@ -75,13 +75,7 @@ func (s *Sampled) Synthesise(p *Plant, t Target) (Design, error) {
 		}
 		d.StageGain, d.StagePhase = cmplx.Abs(stageGain), phase
 		boost := t.PhaseMargin - phase - 90
-		if boost > greatest {
-			return d, &UnreachableError{
-				"target/phase_margin_deg", t.PhaseMargin, phase + 90 + greatest,
-				fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds at most %.1f° above -90°", phase, t.Crossover, greatest),
-			}
-		}
-		d.Boost = max(boost, least)
+		d.Boost = min(max(boost, least), greatest)
 		w := want{t.Crossover, 1 / d.StageGain, d.Boost}
 		plant.Compensator = w.network(plant.Compensator, &plant.Feedback)
 		if s.Set(&plant) != Analysed {
@@ -97,6 +91,13 @@ func (s *Sampled) Synthesise(p *Plant, t Target) (Design, error) {
 		change := cmplx.Abs(next/stageGain - 1)
 		stageGain = next
 		if change <= targetGain {
+			if boost > greatest {
+				// The network with all its boost is the one just analysed.
+				return d, &UnreachableError{
+					"target/phase_margin_deg", t.PhaseMargin, phase + 90 + greatest,
+					fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds at most %.1f° above -90°", phase, t.Crossover, greatest),
+				}
+			}
 			d.K = w.factor(t.Type, &plant.Feedback)
 			d.Exact = plant.Compensator
 			s.Margins(&d.ExactMargins)
