@@ -138,6 +138,9 @@ func (s *Service) Loop(ctx context.Context, r *LoopRequest) (*LoopAnswer, error)
 		e := s.evaluator(d.Stage)
 		defer s.release(e)
 		a.Basis = s.rests(&d, e, r.Places, outcomes)
+		warn := warnings{a.Basis.Warnings}
+		warn.averagedPhases(&d)
+		a.Basis.Warnings = warn.list
 		return nil
 	})
 	if err != nil {

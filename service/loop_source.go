@@ -37,6 +37,10 @@ func (b *loopBench) source(r *LoopRequest, p *stage.Point, x *LoopItem) error {
 		s.Analysis = s.Loop.Status
 	}
 	x.Source = s
+	x.Status.Unanalysed = !s.Analysis.OK()
+	if x.Status.Unanalysed {
+		x.Detail = "the loop behind its source could not be analysed"
+	}
 	x.Status.Unstable = x.Status.Unstable || s.Analysis.OK() && s.Loop.Stability != loop.Stable
 	if x.Detail == "" && x.Status.Unstable {
 		x.Detail = "stable from a stiff source, but not behind this one"

@@ -182,7 +182,7 @@ func (s *Service) follow(ctx context.Context, turns *cores, r *TransientsRequest
 	}
 	after := b.find(r)
 	a.Expected = b.mean
-	r.judge(a, before, after)
+	r.judge(a, before, after, b.status)
 	return nil
 }
 

@@ -17,6 +17,7 @@ type aftermath struct {
 	sampled   loop.Sampled
 	margins   loop.Margins
 	mean      float64 // [V] output there; NaN: there is none
+	status    evaluate.Status
 }
 
 // at evaluates the stage as it is after the event, with its mean output held at the
@@ -56,6 +57,7 @@ const (
 func (b *aftermath) find(r *TransientsRequest) loop.Stability {
 	b.mean = parts.Unknown
 	result := b.at(r, parts.Unknown)
+	b.status = result.Status
 	for range errorRounds {
 		if result.Status != evaluate.OK && result.Status != evaluate.OverTemperature || !b.sampled.Set(&b.plant).OK() {
 			return loop.Undecided

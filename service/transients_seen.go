@@ -3,6 +3,7 @@ package service
 import (
 	"math"
 
+	"railproof/calc/evaluate"
 	"railproof/calc/loop"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
@@ -81,12 +82,13 @@ func (r *TransientsRequest) excursions(x *Seen, target float64) {
 }
 
 // judge sets the status of a run that was made.
-func (r *TransientsRequest) judge(a *TransientsAnswer, before, after loop.Stability) {
+func (r *TransientsRequest) judge(a *TransientsAnswer, before, after loop.Stability, follows evaluate.Status) {
 	switch run := a.Run; {
 	case run.Status == transient.NoStart:
 		a.Status, a.Detail = "no-comparison", "the loop has no periodic operation at the starting point that the run could begin with"
 		a.Ran = false
 	case run.Status == transient.Collapsed:
+		a.Expected = parts.Unknown
 		a.Status, a.Detail = "collapsed", "the load drags the output below zero "+sinceEvent(run.At-a.Lead)
 	case run.Status == transient.TooStiff:
 		a.Status, a.Detail = "not-converged", "a time constant is too short against the switching period to be followed"
@@ -96,6 +98,8 @@ func (r *TransientsRequest) judge(a *TransientsAnswer, before, after loop.Stabil
 		a.Status, a.Detail = "unstable", "the loop does not hold its operating point before the event: what is shown is the oscillation that it settles to"
 	case run.Alternates:
 		a.Status, a.Detail = "unstable", "every second period repeats, not every one: the loop oscillates at half the switching frequency"
+	case !follows.OK() && follows != evaluate.OverTemperature:
+		a.Status, a.Detail = follows.String(), "the stage does not regulate at the operating point that follows the event: "+follows.String()
 	case after == loop.Unstable:
 		a.Status, a.Detail = "unstable", "the loop does not hold the operating point that follows the event"
 	}
@@ -128,6 +132,9 @@ func (r *TransientsRequest) rests(a *TransientsAnswer) {
 	}
 	if a.Run.Restless {
 		warn.add("no-periodic-start", r.Place.At, "no periodic operation was found at the starting point: the run begins with what the loop settled to, such as leaving out pulses at a light load")
+	}
+	if st := r.Design.Stage; len(st.Phases) > 0 && st.Modulator.Mode == parts.PeakCurrentMode {
+		warn.keep(Warning{"phases-share-peaks", r.Design.At + "/phases", "in peak current mode unequal phases share the current by their peaks and have duty ratios of their own; /v1/steady-state gives all phases one duty ratio, so that their currents differ from those here"})
 	}
 	if table := &r.Design.Stage.Inductor.InductanceAtCurrent; len(table.X) > 0 && a.Seen.Peak > 0 {
 		start := table.At(a.Outcome.Quantities[quantity.InductorMean])

@@ -197,8 +197,12 @@ func encodeLoopItem(p *Point, r *service.LoopRequest, x *service.LoopItem, curve
 		c := &m.PhaseCrossings[i]
 		w.PhaseCrossings[i] = PhaseCrossing{c.Frequency, c.Margin}
 	}
-	w.Crossover, w.PhaseMargin, w.GainMargin, w.GainReduction = known(&m.Crossover), known(&m.PhaseMargin), known(&m.GainMargin), known(&m.GainReduction)
-	w.ModulusMargin, w.ModulusMarginAt, w.Bandwidth = known(&m.Modulus), known(&m.ModulusAt), known(&m.Bandwidth)
+	phase, gain, modulus := m.Reliable()
+	w.Crossover, w.PhaseMargin, w.GainMargin = known(&m.Crossover), known(&phase), known(&gain)
+	w.ModulusMargin, w.ModulusMarginAt = known(&modulus), known(&m.ModulusAt)
+	if m.Stability == loop.Stable {
+		w.GainReduction, w.Bandwidth = known(&m.GainReduction), known(&m.Bandwidth)
+	}
 	w.Conditional, w.DirectError = &m.Conditional, known(&x.DirectError)
 	w.ImpedancePeak, w.ImpedancePeakAt = known(&x.Impedance.Value), known(&x.Impedance.At)
 	if c := x.Current; c != nil {
@@ -207,7 +211,7 @@ func encodeLoopItem(p *Point, r *service.LoopRequest, x *service.LoopItem, curve
 			RiseSlope: known(&c.RiseSlope), FallSlope: known(&c.FallSlope), Slope: &x.Slope, SlopeNeeded: c.LeastSlope,
 		}
 	}
-	w.Source = encodeSource(x.Source)
+	w.Source = encodeSource(x)
 	for i := range x.Remarks {
 		o := &x.Remarks[i]
 		w.Remarks = append(w.Remarks, LoopRemark{topics[o.Topic].name, "/stage/" + o.Field, o.Value, known(&o.Limit), topics[o.Topic].unit, o.Detail})
@@ -243,21 +247,25 @@ func known(v *float64) *float64 {
 	return given(v)
 }
 
-func encodeSource(s *service.SourceItem) *SourceInteraction {
+func encodeSource(x *service.LoopItem) *SourceInteraction {
+	s := x.Source
 	if s == nil {
 		return nil
 	}
 	m := &s.Separate
 	w := &SourceInteraction{
-		Stability: "unstable", Null: known(&m.Null), NullAt: known(&m.NullAt), Driving: known(&m.Driving), DrivingAt: known(&m.DrivingAt), Input: known(&m.Input), InputAt: known(&m.InputAt),
-		Detail: "the source impedance stays well below the input impedances: the loop does not notice it",
+		Null: known(&m.Null), NullAt: known(&m.NullAt), Driving: known(&m.Driving), DrivingAt: known(&m.DrivingAt), Input: known(&m.Input), InputAt: known(&m.InputAt),
+		Detail: "the source impedance stays 6 dB or more below the input impedances, the customary separation",
 	}
 	if !s.Analysis.OK() {
-		w.Detail = "the loop with this source has no periodic solution that could be analysed"
+		w.Stability, w.Detail = "undecided", "the loop with this source has no periodic solution that could be analysed"
 		return w
 	}
-	w.Stability, w.PhaseMargin, w.ModulusMargin = stabilities[s.Loop.Stability], known(&s.Loop.PhaseMargin), known(&s.Loop.Modulus)
+	phase, _, modulus := s.Loop.Reliable()
+	w.Stability, w.PhaseMargin, w.ModulusMargin = stabilities[s.Loop.Stability], known(&phase), known(&modulus)
 	switch close := math.Min(math.Min(m.Null, m.Driving), m.Input) < loop.Customary; {
+	case x.Margins.Stability != loop.Stable:
+		w.Detail = "the loop is unstable from a stiff source already"
 	case s.Loop.Stability != loop.Stable:
 		w.Detail = "the loop is unstable behind this source: lower its impedance where it comes close to the input impedance, by damping it"
 	case close:

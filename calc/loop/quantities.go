@@ -50,10 +50,27 @@ func (a *Analyser) Fill(e *evaluate.Evaluator, s evaluate.Status, q *quantity.Ve
 // limit it has enough.
 const GainMarginCeiling = 60.0
 
-// Fill writes the loop quantities. NaN stands where there is none: no analysis, no
-// crossover. Of an unstable loop the modulus margin is the distance to -1 with a
-// negative sign, phase and gain margin are given where they are negative too, and
-// are NaN otherwise: no margin of an unstable loop can pass a limit.
+// Reliable returns phase margin [deg], gain margin [dB] and modulus margin [1] as they
+// may be judged, NaN where there is none. Of an unstable loop the modulus margin is the
+// distance to -1 with a negative sign, phase and gain margin are given where they are
+// negative too: no margin of an unstable loop can pass a limit.
+func (m *Margins) Reliable() (phase, gain, modulus float64) {
+	if m.Stability == Stable {
+		return m.PhaseMargin, m.GainMargin, m.Modulus
+	}
+	phase, gain = math.NaN(), math.NaN()
+	if m.PhaseMargin < 0 {
+		phase = m.PhaseMargin
+	}
+	if m.GainReduction > 0 {
+		gain = -m.GainReduction
+	}
+	return phase, gain, -m.Modulus
+}
+
+// Fill writes the loop quantities, as Reliable has them. NaN stands where there is
+// none: no analysis, no crossover. A stable loop without a phase crossing has the
+// ceiling for its gain margin.
 func (m *Margins) Fill(q *quantity.Vector) {
 	nan := math.NaN()
 	q[quantity.Crossover], q[quantity.PhaseMargin], q[quantity.GainMargin], q[quantity.ModulusMargin] = nan, nan, nan, nan
@@ -61,20 +78,9 @@ func (m *Margins) Fill(q *quantity.Vector) {
 		return
 	}
 	q[quantity.Crossover] = m.Crossover
-	if m.Stability == Stable {
-		q[quantity.PhaseMargin], q[quantity.ModulusMargin] = m.PhaseMargin, m.Modulus
+	q[quantity.PhaseMargin], q[quantity.GainMargin], q[quantity.ModulusMargin] = m.Reliable()
+	if m.Stability == Stable && !(m.GainMargin < GainMarginCeiling) {
 		q[quantity.GainMargin] = GainMarginCeiling
-		if m.GainMargin < GainMarginCeiling {
-			q[quantity.GainMargin] = m.GainMargin
-		}
-		return
-	}
-	q[quantity.ModulusMargin] = -m.Modulus
-	if m.PhaseMargin < 0 {
-		q[quantity.PhaseMargin] = m.PhaseMargin
-	}
-	if m.GainReduction > 0 {
-		q[quantity.GainMargin] = -m.GainReduction
 	}
 }
 

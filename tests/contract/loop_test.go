@@ -121,6 +121,10 @@ func TestABadCompensatorIsExplained(t *testing.T) {
 	require.Equal(t, "unstable", within(item, "stability"))
 	require.Greater(t, within(item, "spectral_radius_ratio"), 1.0)
 	require.Contains(t, within(item, "detail"), "oscillates at")
+	for _, margin := range []string{"phase_margin_deg", "gain_margin_db", "modulus_margin_ratio"} {
+		require.Negative(t, within(item, margin), "no margin of an unstable loop can be taken for one")
+	}
+	require.NotContains(t, item, "bandwidth_hz")
 	require.NotContains(t, item, "output_impedance_peak_ohm", "an unstable loop has no closed-loop impedance")
 	require.NotContains(t, within(item, "curves"), "closed_loop_output_impedance_ohm")
 	said := map[any]any{}
@@ -354,4 +358,23 @@ func TestLoopAsTable(t *testing.T) {
 		require.Contains(t, rows[0], "phase_margin_deg [deg]")
 		require.Equal(t, "stable", rows[1][5])
 	}
+}
+
+// The loop is that of the phases' mean; the answer says so wherever margins are told.
+func TestUnequalPhasesAreSaidToBeAveraged(t *testing.T) {
+	at := server(t)
+	request := loopOf(t, "buoy-5v0", object{"curves": false})
+	st := request["stage"].(object)
+	st["phase_count"], st["phases"] = 2, []any{object{}, object{"inductance_h": 8e-6}}
+	warned := func(a object) (list []any) {
+		for _, w := range a["warnings"].([]any) {
+			list = append(list, within(w, "code").(string)+" "+within(w, "pointer").(string))
+		}
+		return list
+	}
+	require.Contains(t, warned(asked(t, at, "loopGain", request)), "phases-averaged /stage/phases")
+	corners := exampleWith(t, "buoy-5v0/corners.json", object{"stage": st, "methods": []any{"extreme-value"}, "limits": []any{object{"quantity": "phase_margin_deg", "min": 30}}})
+	r := send(t, "POST", at+"/v1/corners", encode(t, corners))
+	require.Equal(t, 200, r.status, "%s", r.body)
+	require.Contains(t, warned(r.tree(t).(object)), "phases-averaged /stage/phases")
 }

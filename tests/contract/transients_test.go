@@ -252,3 +252,13 @@ func TestRunsEndWithTheirClient(t *testing.T) {
 	require.Less(t, took, time.Second, "100 ms and what a busy machine adds")
 	t.Logf("ended %v after its client had left", took)
 }
+
+func TestAnEventThatEndsInDropOutIsNoSuccess(t *testing.T) {
+	at := server(t)
+	request := exampleWith(t, "buoy-5v0/transients.json", object{"event": object{"input_step": object{"to_v": 5.1}}, "waveform_points": 0})
+	a := asked(t, at, "transients", request)
+	require.Equal(t, "drop-out", a["status"])
+	require.Contains(t, a["detail"], "follows the event")
+	require.NotContains(t, a, "expected_after_v")
+	require.Equal(t, false, a["recovered"])
+}
