@@ -11,12 +11,13 @@ import (
 // move in time. The same call can succeed later.
 var ErrBusy = errors.New("service: busy")
 
-// laneKind keeps long work from short work: each has slots of its own.
+// laneKind keeps kinds of work from each other: each has slots of its own.
 type laneKind uint8
 
 const (
-	interactive laneKind = iota
-	bulk
+	interactive laneKind = iota // short work
+	bulk                        // long work that a caller waits for
+	deferred                    // that of jobs
 	laneCount
 )
 
@@ -64,8 +65,12 @@ func (l *lane) enter(ctx context.Context) error {
 
 func (l *lane) leave() { <-l.slots }
 
-// run calls work in a slot of the lane.
+// run calls work in a slot of the lane; long work of a job in that of jobs, so that a
+// night's jobs leave the slots to callers that wait.
 func (s *Service) run(ctx context.Context, kind laneKind, work func() error) error {
+	if kind == bulk && metered(ctx) {
+		kind = deferred
+	}
 	l := s.lanes[kind]
 	if err := l.enter(ctx); err != nil {
 		return err

@@ -11,7 +11,7 @@ type LaneState struct {
 
 // Lanes returns the state of each lane.
 func (s *Service) Lanes() []LaneState {
-	names := [laneCount]string{interactive: "interactive", bulk: "bulk"}
+	names := [laneCount]string{interactive: "interactive", bulk: "bulk", deferred: "jobs"}
 	states := make([]LaneState, laneCount)
 	for i, l := range s.lanes {
 		states[i] = LaneState{names[i], cap(l.slots), len(l.slots), int(l.waiting.Load()), l.refused.Load()}

@@ -18,6 +18,19 @@ func TestInteractiveNeverWaitsForBulk(t *testing.T) {
 	require.NoError(t, err)
 }
 
+// Jobs have slots of their own: however many run, a caller that waits gets one.
+func TestJobsLeaveTheSlotsToCallers(t *testing.T) {
+	s := New(Options{Workers: 1, Jobs: 1, QueueLength: 1, QueueWait: time.Millisecond})
+	of := WithMeter(t.Context(), new(Meter))
+	err := s.run(of, bulk, func() error {
+		require.Empty(t, s.lanes[bulk].slots)
+		return s.run(of, bulk, func() error {
+			return s.run(t.Context(), bulk, func() error { return nil })
+		})
+	})
+	require.NoError(t, err)
+}
+
 func TestFullQueueIsRefusedAtOnce(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
 		l := newLane(1, 1, time.Second)

@@ -26,6 +26,12 @@ func WithMeter(ctx context.Context, m *Meter) context.Context {
 	return context.WithValue(ctx, meterKey{}, m)
 }
 
+// metered reports whether somebody watches the context's meter.
+func metered(ctx context.Context) bool {
+	_, is := ctx.Value(meterKey{}).(*Meter)
+	return is
+}
+
 // MeterOf returns the context's meter, or one that nobody watches.
 func MeterOf(ctx context.Context) *Meter {
 	if m, ok := ctx.Value(meterKey{}).(*Meter); ok {

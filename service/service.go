@@ -13,9 +13,14 @@ import (
 type Options struct {
 	ContractVersion string        // version of the contract that requests were checked against
 	Workers         int           // slots of each lane; default: GOMAXPROCS at the time of New, at most the cores
+	Jobs            int           // jobs that run at once, for which there are slots; default: as Workers
 	QueueLength     int           // callers that may wait for a slot of a lane; default 64
 	QueueWait       time.Duration // how long one waits before it is turned away; default 2 s
 }
+
+// slotsOfAJob is enough for the analyses that one job has going at the same time: a
+// report has two.
+const slotsOfAJob = 4
 
 // Service runs the use cases. It is safe for concurrent use and keeps nothing
 // between calls but the slots of its lanes and what it has counted.
@@ -40,8 +45,12 @@ func New(o Options) *Service {
 		o.QueueWait = 2 * time.Second
 	}
 	s := &Service{engine: NewEngine(o.ContractVersion), workers: o.Workers, cores: newCores(o.Workers)}
-	for i := range s.lanes {
-		s.lanes[i] = newLane(o.Workers, o.QueueLength, o.QueueWait)
+	if o.Jobs == 0 {
+		o.Jobs = o.Workers
+	}
+	slots := [laneCount]int{interactive: o.Workers, bulk: o.Workers, deferred: slotsOfAJob * o.Jobs}
+	for i, n := range slots {
+		s.lanes[i] = newLane(n, o.QueueLength, o.QueueWait)
 	}
 	return s
 }

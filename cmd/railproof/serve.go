@@ -109,7 +109,7 @@ func (c *serveConfig) serve(ctx context.Context, t terminal) int {
 // run builds the server and serves until the context ends.
 func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, door *door, listener net.Listener) int {
 	defer listener.Close()
-	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, QueueLength: c.queue})
+	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, Jobs: c.storage.workers, QueueLength: c.queue})
 	oneThreadMore(t.env)
 	traces, err := newTracing(ctx, t.env)
 	if err != nil {
