@@ -179,6 +179,11 @@ func (b *loopBench) item(r *LoopRequest, p *stage.Point) (*LoopItem, error) {
 		return nil, err
 	}
 	x.Analysis = b.sampled.Set(&b.plant)
+	if !b.sampled.Holds() {
+		x.Analysis, x.Status.Stage = loop.NotRegulating, evaluate.NoOperatingPoint
+		x.Detail = "for want of the amplifier's direct gain the loop leaves the output " + short(100*math.Abs(b.sampled.Error)) + " % off what the divider sets: it has no margins at this point; give it more open_loop_gain_ratio, or more transconductance_s and output_ohm"
+		return x, nil
+	}
 	if x.Analysis.OK() {
 		b.sampled.Margins(&x.Margins)
 		x.Analysis = x.Margins.Status

@@ -19,6 +19,15 @@ func (p *Plant) Bind(e *evaluate.Evaluator, s evaluate.Status) bool {
 	return s == evaluate.OK || s == evaluate.OverTemperature
 }
 
+// mostDirectError is how far the want of direct gain may leave the output off [1]
+// before the operating point is another one.
+const mostDirectError = 0.05
+
+// Holds reports whether the loop holds the operating point that it was linearised
+// about, or at least was not found to leave it: an amplifier without direct gain
+// brings about another output, to which the margins here do not belong.
+func (s *Sampled) Holds() bool { return !s.Status.OK() || math.Abs(s.Error) <= mostDirectError }
+
 // Analyser fills the loop quantities of evaluated stages. It keeps its workspace;
 // one per goroutine.
 type Analyser struct {
@@ -40,6 +49,10 @@ func (a *Analyser) Fill(e *evaluate.Evaluator, s evaluate.Status, q *quantity.Ve
 		return NotRun, err
 	}
 	a.Sampled.Set(&a.Plant)
+	if !a.Sampled.Holds() {
+		a.Margins.Status = NotRegulating
+		return NotRegulating, nil
+	}
 	a.Sampled.Margins(&a.Margins)
 	a.Margins.Fill(q)
 	return a.Margins.Status, nil

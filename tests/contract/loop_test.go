@@ -378,3 +378,20 @@ func TestUnequalPhasesAreSaidToBeAveraged(t *testing.T) {
 	require.Equal(t, 200, r.status, "%s", r.body)
 	require.Contains(t, warned(r.tree(t).(object)), "phases-averaged /stage/phases")
 }
+
+// An amplifier without direct gain brings about another output: margins at the point
+// asked for would be those of a state that the loop never takes.
+func TestALoopWithoutDirectGainHasNoMargins(t *testing.T) {
+	at := server(t)
+	request := loopOf(t, "buoy-5v0", object{"curves": false})
+	st := request["stage"].(object)
+	st["compensator"].(object)["open_loop_gain_ratio"] = 10
+	st["modulator"].(object)["ramp_v"] = 4
+	a := asked(t, at, "loopGain", request)
+	require.Equal(t, "no-operating-point", a["status"])
+	item := within(a, "items", 0)
+	require.Contains(t, within(item, "detail"), "open_loop_gain_ratio")
+	for _, margin := range []string{"phase_margin_deg", "gain_margin_db", "modulus_margin_ratio", "crossover_hz"} {
+		require.NotContains(t, item, margin)
+	}
+}
