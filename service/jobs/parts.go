@@ -135,7 +135,8 @@ func (b *Board) waited(ctx context.Context, doing string, err error) error {
 	}
 }
 
-// watchPart beats for a part and stops it when its job is no longer running.
+// watchPart beats for a part and stops it when its job is no longer running. A beat that
+// arrives late, after the part was stored, changes nothing of its count.
 func (b *Board) watchPart(ctx context.Context, stop context.CancelCauseFunc, r *run, part int, m *service.Meter) <-chan struct{} {
 	ended := make(chan struct{})
 	b.idle.Go(func() {
@@ -151,7 +152,7 @@ func (b *Board) watchPart(ctx context.Context, stop context.CancelCauseFunc, r *
 			done, _ := m.Progress()
 			var state State
 			var all int64
-			err := b.db.row(ctx, `UPDATE railproof_parts SET beat = NOW(), done = $3 WHERE job = $1 AND part = $2
+			err := b.db.row(ctx, `UPDATE railproof_parts SET beat = NOW(), done = CASE WHEN body IS NULL THEN $3 ELSE done END WHERE job = $1 AND part = $2
 				RETURNING (SELECT state FROM railproof_jobs WHERE id = $1), (SELECT COALESCE(SUM(done), 0) FROM railproof_parts WHERE job = $1)`, r.id, part, done).Scan(&state, &all)
 			if ctx.Err() == nil && (errors.Is(err, sql.ErrNoRows) || err == nil && state != Running) {
 				stop(errCancelled)
