@@ -133,8 +133,8 @@ func (r *TransientsRequest) rests(a *TransientsAnswer) {
 	if a.Run.Restless {
 		warn.add("no-periodic-start", r.Place.At, "no periodic operation was found at the starting point: the run begins with what the loop settled to, such as leaving out pulses at a light load")
 	}
-	if st := r.Design.Stage; len(st.Phases) > 0 && st.Modulator.Mode == parts.PeakCurrentMode {
-		warn.keep(Warning{"phases-share-peaks", r.Design.At + "/phases", "in peak current mode unequal phases share the current by their peaks and have duty ratios of their own; /v1/steady-state gives all phases one duty ratio, so that their currents differ from those here"})
+	if len(r.Design.Stage.Phases) > 0 {
+		warn.keep(Warning{"phase-sharing", r.Design.At + "/phases", "the comparators give unequal phases duty ratios of their own, and the phases share the current accordingly, in voltage mode unevenly; /v1/steady-state gives all phases one duty ratio, so that their currents differ from those here"})
 	}
 	if table := &r.Design.Stage.Inductor.InductanceAtCurrent; len(table.X) > 0 && a.Seen.Peak > 0 {
 		start := table.At(a.Outcome.Quantities[quantity.InductorMean])

@@ -262,3 +262,11 @@ func TestAnEventThatEndsInDropOutIsNoSuccess(t *testing.T) {
 	require.NotContains(t, a, "expected_after_v")
 	require.Equal(t, false, a["recovered"])
 }
+
+func TestUnequalPhasesShareTheirOwnWay(t *testing.T) {
+	at := server(t)
+	request := exampleWith(t, "buoy-3v3/transients.json", object{"waveform_points": 0})
+	st := request["stage"].(object)
+	st["phase_count"], st["phases"] = 2, []any{object{}, object{"inductance_h": 9e-6}}
+	require.Equal(t, "phase-sharing", within(asked(t, at, "transients", request), "warnings", 0, "code"))
+}
