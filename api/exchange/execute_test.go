@@ -21,7 +21,11 @@ func TestPartsGiveTheBytesOfTheWhole(t *testing.T) {
 	require.NoError(t, err)
 	var tree map[string]any
 	require.NoError(t, json.Unmarshal(text, &tree))
-	tree["samples"] = 3000
+	samples, splits := 3000, []int{2, 7}
+	if testing.Short() {
+		samples, splits = 300, []int{2}
+	}
+	tree["samples"] = samples
 	text, err = json.Marshal(tree)
 	require.NoError(t, err)
 	executor := func(workers int) Executor {
@@ -29,7 +33,7 @@ func TestPartsGiveTheBytesOfTheWhole(t *testing.T) {
 	}
 	whole := executor(1).Execute(t.Context(), "corners", text, new(service.Meter))
 	require.Nil(t, whole.Problem, "%s", whole.Problem)
-	for _, parts := range []int{2, 7} {
+	for _, parts := range splits {
 		counts := make([][]byte, parts)
 		drawn := int64(0)
 		for i := range parts {

@@ -58,8 +58,12 @@ func TestPictureOfASweep(t *testing.T) {
 }
 
 func TestPicturesOfCorners(t *testing.T) {
-	for _, rail := range rails {
-		a := answer[*wire.CornersAnswer](t, "corners", changed(t, rail+"/corners.json", map[string]string{"methods": `["extreme-value","root-sum-square","monte-carlo","attribution"]`, "attribution_samples": "256", "samples": "2000"}))
+	drawn, base, of := "2000", "256", rails
+	if testing.Short() {
+		drawn, base, of = "200", "64", rails[:1]
+	}
+	for _, rail := range of {
+		a := answer[*wire.CornersAnswer](t, "corners", changed(t, rail+"/corners.json", map[string]string{"methods": `["extreme-value","root-sum-square","monte-carlo","attribution"]`, "attribution_samples": base, "samples": drawn}))
 		show(t, rail+"-corners", render.CornersPicture(a))
 		show(t, rail+"-tornado", render.Tornado(a, ""))
 		show(t, rail+"-histogram", render.HistogramPicture(a, "output_ripple_pp_v"))
