@@ -78,7 +78,16 @@ func (a *authority) client(pair ...string) *http.Client {
 	return &http.Client{Transport: transport}
 }
 
-func call(t *testing.T, c *http.Client, method, url, body, key string) (*http.Response, string, error) {
+// heard is an answer, read to its end.
+type heard struct {
+	status int
+	proto  string
+	header http.Header
+	serial int64 // of the server's certificate; 0 without TLS
+	text   string
+}
+
+func call(t *testing.T, c *http.Client, method, url, body, key string) (heard, error) {
 	t.Helper()
 	request, err := http.NewRequestWithContext(t.Context(), method, url, strings.NewReader(body))
 	require.NoError(t, err)
@@ -88,12 +97,16 @@ func call(t *testing.T, c *http.Client, method, url, body, key string) (*http.Re
 	}
 	response, err := c.Do(request)
 	if err != nil {
-		return nil, "", err
+		return heard{}, err
 	}
 	defer response.Body.Close()
 	text, err := io.ReadAll(response.Body)
 	require.NoError(t, err)
-	return response, string(text), nil
+	h := heard{status: response.StatusCode, proto: response.Proto, header: response.Header, text: string(text)}
+	if response.TLS != nil {
+		h.serial = response.TLS.PeerCertificates[0].SerialNumber.Int64()
+	}
+	return h, nil
 }
 
 // beyond starts a server on every address of the machine; where it is from here.
@@ -116,29 +129,29 @@ func TestTLSAndKeys(t *testing.T) {
 	s, address := beyond(t, "--tls-certificate", certificate, "--tls-key", key, "--keys", keys)
 	c, base, body := a.client(), "https://"+address, example(t, "buoy-5v0/losses.json")
 
-	response, text, err := call(t, c, http.MethodPost, base+"/v1/losses", body, secret)
+	r, err := call(t, c, http.MethodPost, base+"/v1/losses", body, secret)
 	require.NoError(t, err)
-	require.Equal(t, 200, response.StatusCode, text)
-	require.Equal(t, "HTTP/2.0", response.Proto)
-	require.NotEmpty(t, response.Header.Get("Strict-Transport-Security"))
-	require.NotEmpty(t, response.Header.Get("RateLimit"), "beyond this machine there is a quota")
-	require.EqualValues(t, 10, response.TLS.PeerCertificates[0].SerialNumber.Int64())
+	require.Equal(t, 200, r.status, r.text)
+	require.Equal(t, "HTTP/2.0", r.proto)
+	require.NotEmpty(t, r.header.Get("Strict-Transport-Security"))
+	require.NotEmpty(t, r.header.Get("RateLimit"), "beyond this machine there is a quota")
+	require.EqualValues(t, 10, r.serial)
 
-	response, text, err = call(t, c, http.MethodPost, base+"/v1/losses", body, "")
+	r, err = call(t, c, http.MethodPost, base+"/v1/losses", body, "")
 	require.NoError(t, err)
-	require.Equal(t, 401, response.StatusCode)
-	require.Contains(t, text, `"type":"`+base+`/docs/problems/unauthorized"`)
+	require.Equal(t, 401, r.status)
+	require.Contains(t, r.text, `"type":"`+base+`/docs/problems/unauthorized"`)
 
-	_, _, err = call(t, http.DefaultClient, http.MethodGet, base+"/healthz", "", "")
+	_, err = call(t, http.DefaultClient, http.MethodGet, base+"/healthz", "", "")
 	require.ErrorContains(t, err, "certificate", "an unknown authority")
 	old := a.client()
 	config := old.Transport.(*http.Transport).TLSClientConfig
 	config.MinVersion, config.MaxVersion = tls.VersionTLS10, tls.VersionTLS11 //nolint:gosec // to see it refused
-	_, _, err = call(t, old, http.MethodGet, base+"/healthz", "", "")
+	_, err = call(t, old, http.MethodGet, base+"/healthz", "", "")
 	require.ErrorContains(t, err, "protocol version")
-	plain, _, err := call(t, http.DefaultClient, http.MethodGet, "http://"+address+"/healthz", "", "")
+	plain, err := call(t, http.DefaultClient, http.MethodGet, "http://"+address+"/healthz", "", "")
 	require.NoError(t, err)
-	require.Equal(t, 400, plain.StatusCode)
+	require.Equal(t, 400, plain.status)
 
 	require.Equal(t, 0, railproof(t, "", "healthy", "--address", address, "--tls-certificate", certificate, "--tls-key", key).code)
 	require.Equal(t, 1, railproof(t, "", "healthy", "--address", address).code)
@@ -147,8 +160,8 @@ func TestTLSAndKeys(t *testing.T) {
 	require.NoError(t, os.WriteFile(keys, nil, 0o600))
 	require.NoError(t, s.process.Process.Signal(syscall.SIGHUP))
 	require.Eventually(t, func() bool {
-		response, _, err := call(t, c, http.MethodGet, base+"/v1/quantities", "", secret)
-		return err == nil && response.StatusCode == 401 && response.TLS.PeerCertificates[0].SerialNumber.Int64() == 11
+		r, err := call(t, c, http.MethodGet, base+"/v1/quantities", "", secret)
+		return err == nil && r.status == http.StatusUnauthorized && r.serial == 11
 	}, 10*time.Second, 20*time.Millisecond, "a renewed certificate and a revoked key, without a restart")
 }
 
@@ -165,16 +178,16 @@ func TestClientCertificates(t *testing.T) {
 	base := "https://" + address
 
 	c := a.client(at("plm.pem"), at("plm.key"))
-	response, text, err := call(t, c, http.MethodPost, base+"/v1/losses", example(t, "buoy-5v0/losses.json"), "")
+	r, err := call(t, c, http.MethodPost, base+"/v1/losses", example(t, "buoy-5v0/losses.json"), "")
 	require.NoError(t, err)
-	require.Equal(t, 200, response.StatusCode, text)
-	response, text, err = call(t, c, http.MethodGet, base+"/metrics", "", "")
+	require.Equal(t, 200, r.status, r.text)
+	r, err = call(t, c, http.MethodGet, base+"/metrics", "", "")
 	require.NoError(t, err)
-	require.Equal(t, 403, response.StatusCode, "such a client may compute and no more")
-	require.Contains(t, text, "forbidden")
+	require.Equal(t, 403, r.status, "such a client may compute and no more")
+	require.Contains(t, r.text, "forbidden")
 
 	for name, c := range map[string]*http.Client{"none": a.client(), "of another authority": a.client(at("other.pem"), at("other.key")), "a server's": a.client(at("tls.pem"), at("tls.key"))} {
-		_, _, err := call(t, c, http.MethodGet, base+"/healthz", "", "")
+		_, err := call(t, c, http.MethodGet, base+"/healthz", "", "")
 		require.Error(t, err, name)
 	}
 	require.Equal(t, 0, railproof(t, "", append([]string{"healthy", "--address", address}, server...)...).code)
