@@ -61,7 +61,7 @@ func (z *sizer) compensator() bool {
 	plant := loop.Plant{Circuit: *e.Circuit(), Modulator: d.Modulator, Feedback: d.Feedback}
 	plant.Operate(e.Solution())
 	var best parts.Compensator
-	reserve := math.Inf(-1)
+	reserve, restless := math.Inf(-1), 0
 	for _, try := range loopTargets {
 		design, ok := z.network(&plant, try.crossover*z.fs, try.margin)
 		if !ok {
@@ -74,7 +74,10 @@ func (z *sizer) compensator() bool {
 			best, reserve = d.Compensator, m
 			z.crossover, z.phaseMargin = design.Margins.Crossover, design.Margins.PhaseMargin
 		}
-		if z.settles {
+		if m >= 0 && !z.settles {
+			restless++
+		}
+		if z.settles || restless == mostRestless {
 			break
 		}
 	}
@@ -161,6 +164,7 @@ func (z *sizer) loopReserve(typical *loop.Margins, beat float64) float64 {
 }
 
 const (
+	mostRestless = 3     // [1] designs that keep their margins and do not settle: slower ones yet will not either
 	settledBand  = 0.8   // [1] of the band of recovery, as a reserve
 	settledAfter = 100.0 // [1] periods, where no recovery is asked for
 )
