@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"errors"
 	"fmt"
+	"io"
 	"net/http"
 	"strings"
 
@@ -78,10 +79,17 @@ func sent(c echo.Context, form string, text []byte, timings []exchange.Timing) e
 	return c.Blob(http.StatusOK, form, text)
 }
 
+// mostDiscarded is what is read of a body that is refused: many clients look for an
+// answer only after all of it is written, and find the connection reset instead.
+const mostDiscarded = 16 << 20 // [bytes]
+
 // body reads the request's body up to the limit.
 func (a *API) body(c echo.Context) ([]byte, *exchange.Problem) {
 	r := c.Request()
 	tooLarge := func() *exchange.Problem {
+		if r.Header.Get("Expect") == "" { // else the client waits to be asked for it
+			_, _ = io.CopyN(io.Discard, r.Body, mostDiscarded)
+		}
 		return exchange.NewProblem(exchange.TooLarge, fmt.Sprintf("at most %d bytes are taken", a.maxBody))
 	}
 	if r.ContentLength > a.maxBody {

@@ -1,10 +1,14 @@
 package contract
 
 import (
+	"bufio"
 	"bytes"
 	"compress/gzip"
 	"context"
 	"encoding/json"
+	"fmt"
+	"io"
+	"net"
 	"net/http"
 	"net/http/httptest"
 	"strings"
@@ -135,6 +139,27 @@ func TestEveryFaultIsToldAtOnce(t *testing.T) {
 	r := send(t, "POST", server(t)+"/v1/losses", []byte(body))
 	refused(t, r, 422, exchange.SchemaFault)
 	require.Len(t, r.tree(t).(map[string]any)["errors"], 3)
+}
+
+// A client that writes all of its body before it looks for an answer gets one too,
+// however the length is told.
+func TestTooLargeBodiesAreReadToTheirEnd(t *testing.T) {
+	address := strings.TrimPrefix(server(t), "http://")
+	blank := strings.Repeat(" ", 5<<20)
+	for _, body := range []string{
+		fmt.Sprintf("Content-Length: %d\r\n\r\n%s", len(blank), blank),
+		fmt.Sprintf("Transfer-Encoding: chunked\r\n\r\n%x\r\n%s\r\n0\r\n\r\n", len(blank), blank),
+	} {
+		c, err := new(net.Dialer).DialContext(t.Context(), "tcp", address)
+		require.NoError(t, err)
+		defer c.Close()
+		_, err = io.WriteString(c, "POST /v1/losses HTTP/1.1\r\nHost: "+address+"\r\nContent-Type: application/json\r\n"+body)
+		require.NoError(t, err)
+		r, err := http.ReadResponse(bufio.NewReader(c), nil)
+		require.NoError(t, err)
+		defer r.Body.Close()
+		require.Equal(t, 413, r.StatusCode)
+	}
 }
 
 func TestRequestsThatAreNotTaken(t *testing.T) {
