@@ -94,7 +94,6 @@ func (z *sizer) conditions() {
 		AgeRatio: stage.Range{Min: 0, Typ: 0, Max: 1}, Control: stage.Control{Kind: stage.ByFeedback},
 	}
 	z.ans.Point = z.ans.Conditions.Typical()
-	z.ans.Point.Control = stage.Control{Kind: stage.RegulateTo, Voltage: r.Output}
 }
 
 // leastRegularLoad returns the load below which the on-time in discontinuous

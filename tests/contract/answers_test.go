@@ -38,24 +38,17 @@ func TestOneIdentifierForOneMeaning(t *testing.T) {
 // What sizing proposes is taken by the other operations as it is.
 func TestDraftStageIsPostedOnUnchanged(t *testing.T) {
 	at := server(t)
-	var sized struct {
-		Stage json.RawMessage `json:"stage"`
-		Point json.RawMessage `json:"point"`
-	}
-	r := send(t, "POST", at+"/v1/sizing", exampleRequest(t, "buoy-5v0/sizing.json"))
-	require.Equal(t, 200, r.status, "%s", r.body)
-	require.NoError(t, json.Unmarshal(r.body, &sized))
-	body := []byte(`{"stage": ` + string(sized.Stage) + `, "point": ` + string(sized.Point) + `}`)
-	for _, path := range []string{"/v1/losses", "/v1/steady-state"} {
-		r := send(t, "POST", at+path, body)
-		require.Equal(t, 200, r.status, "%s", r.body)
-		var echoed struct {
-			Status string          `json:"status"`
-			Stage  json.RawMessage `json:"stage"`
-		}
-		require.NoError(t, json.Unmarshal(r.body, &echoed))
-		require.Equal(t, "ok", echoed.Status)
-		require.JSONEq(t, string(sized.Stage), string(echoed.Stage), "stage in, stage out")
+	request := exampleWith(t, "buoy-5v0/sizing.json", nil)
+	sized := asked(t, at, "sizing", request)
+	stage, point, conditions, requirement := sized["stage"], sized["point"], sized["conditions"], request["requirement"]
+	step := exampleWith(t, "buoy-5v0/transients.json", object{"stage": stage, "point": point})
+	for operation, body := range map[string]object{
+		"losses": {"stage": stage, "point": point}, "steadyState": {"stage": stage, "point": point}, "loopGain": {"stage": stage, "point": point}, "transients": step,
+		"corners": {"stage": stage, "conditions": conditions, "samples": 20}, "ruleChecks": {"stage": stage, "conditions": conditions, "requirement": requirement, "limits": sized["limits"]},
+	} {
+		a := asked(t, at, operation, body)
+		require.Equal(t, "ok", a["status"], operation)
+		require.Equal(t, stage, a["stage"], "stage in, stage out: %s", operation)
 	}
 }
 

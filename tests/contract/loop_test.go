@@ -33,7 +33,7 @@ func exampleWith(t testing.TB, name string, members object) object {
 
 func asked(t testing.TB, at, operation string, request object) object {
 	t.Helper()
-	paths := map[string]string{"sizing": "/v1/sizing", "losses": "/v1/losses", "loopGain": "/v1/loop-gain", "transients": "/v1/transients", "ruleChecks": "/v1/rule-checks"}
+	paths := map[string]string{"sizing": "/v1/sizing", "losses": "/v1/losses", "steadyState": "/v1/steady-state", "corners": "/v1/corners", "loopGain": "/v1/loop-gain", "transients": "/v1/transients", "ruleChecks": "/v1/rule-checks"}
 	r := send(t, "POST", at+paths[operation], encode(t, request))
 	require.Equal(t, 200, r.status, "%s", r.body)
 	declared(t, operation, r)
