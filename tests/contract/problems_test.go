@@ -152,7 +152,7 @@ func TestTooLargeBodiesAreReadToTheirEnd(t *testing.T) {
 	} {
 		c, err := new(net.Dialer).DialContext(t.Context(), "tcp", address)
 		require.NoError(t, err)
-		defer c.Close()
+		defer func() { _ = c.Close() }()
 		_, err = io.WriteString(c, "POST /v1/losses HTTP/1.1\r\nHost: "+address+"\r\nContent-Type: application/json\r\n"+body)
 		require.NoError(t, err)
 		r, err := http.ReadResponse(bufio.NewReader(c), nil)
