@@ -14,6 +14,14 @@ import (
 
 var _ jobs.Splitter = Executor{}
 
+// What the contract lists can be given.
+func TestEveryListedFormIsGiven(t *testing.T) {
+	x := New(openapi.Load(), service.New(service.Options{ContractVersion: openapi.Load().Version()}))
+	for _, op := range x.contract.Operations() {
+		require.Equal(t, op.MediaTypes, x.Forms(op), op.ID)
+	}
+}
+
 // A job that is split gives the bytes of one that is not, whatever the number of
 // parts and of workers.
 func TestPartsGiveTheBytesOfTheWhole(t *testing.T) {

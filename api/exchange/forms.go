@@ -47,7 +47,8 @@ var renderers = map[string]map[string]renderer{
 		TextForm: func(v any) []byte { return []byte(render.SizingText(v.(*wire.SizingAnswer))) },
 	},
 	"steadyState": {
-		TextForm: func(v any) []byte { return []byte(render.SteadyStateText(v.(*wire.SteadyStateAnswer))) },
+		"text/csv": func(v any) []byte { return render.SteadyStateCSV(v.(*wire.SteadyStateAnswer)) },
+		TextForm:   func(v any) []byte { return []byte(render.SteadyStateText(v.(*wire.SteadyStateAnswer))) },
 	},
 	"substitutions": {
 		"text/csv": func(v any) []byte { return render.SubstitutionsCSV(v.(*wire.SubstitutionsAnswer)) },

@@ -235,6 +235,32 @@ func TestTransientsAsTable(t *testing.T) {
 	require.Greater(t, len(rows), 100)
 }
 
+func TestSteadyStateAsTable(t *testing.T) {
+	for _, c := range []struct {
+		rail    string
+		points  int
+		columns []string
+	}{
+		{"buoy-5v0", 40, []string{"time_s [s]", "output_v [V]", "input_a [A]", "input_v [V]", "inductor_a/0 [A]", "switch_node_v/0 [V]", "output_capacitor_a/0 [A]", "input_capacitor_a/0 [A]"}},
+		{"mast-12v0", 40, []string{
+			"time_s [s]", "output_v [V]", "input_a [A]", "input_v [V]", "inductor_a/0 [A]", "switch_node_v/0 [V]",
+			"output_capacitor_a/0 [A]", "output_capacitor_a/1 [A]", "input_capacitor_a/0 [A]", "input_capacitor_a/1 [A]",
+		}},
+		{"buoy-5v0", 0, []string{"time_s [s]", "output_v [V]", "input_a [A]"}},
+	} {
+		r := send(t, "POST", server(t)+"/v1/steady-state", encode(t, exampleWith(t, c.rail+"/steady-state.json", object{"waveform_points": c.points})), "Accept", "text/csv")
+		require.Equal(t, 200, r.status, "%s", r.body)
+		rows, err := csv.NewReader(strings.NewReader(string(r.body))).ReadAll()
+		require.NoError(t, err)
+		require.Equal(t, c.columns, rows[0])
+		if c.points == 0 {
+			require.Len(t, rows, 1)
+		} else {
+			require.Greater(t, len(rows), c.points)
+		}
+	}
+}
+
 // A run whose client leaves ends soon after, so that its slot is free again.
 func TestRunsEndWithTheirClient(t *testing.T) {
 	x := exchange.New(contract, service.New(service.Options{ContractVersion: contract.Version()}))
