@@ -265,11 +265,13 @@ func TestStatesThatHaveNoMargins(t *testing.T) {
 		request := loopOf(t, "buoy-3v3", nil)
 		within(request, "stage").(object)["compensator"] = object{"type": "transconductance-2", "feedback_ohm": 100, "feedback_f": 1e-9, "shunt_f": 1e-11, "transconductance_s": 1e-6, "output_ohm": 2000}
 		item := within(asked(t, at, "loopGain", request), "items", 0)
-		require.Equal(t, "always-below", within(item, "crossing"))
-		require.Equal(t, "stable", within(item, "stability"))
-		require.NotContains(t, item, "crossover_hz")
-		require.NotContains(t, item, "phase_margin_deg")
-		require.Equal(t, "no-crossover", within(item, "remarks", 0, "topic"))
+		// The loop gain at rest is the inverse of the output's error: with neither a
+		// crossover nor an integrator nothing holds the output.
+		require.Equal(t, "no-operating-point", within(item, "status"))
+		for _, key := range []string{"crossing", "stability", "crossover_hz", "phase_margin_deg", "gain_margin_db"} {
+			require.NotContains(t, item, key)
+		}
+		require.NotEmpty(t, within(item, "detail"))
 	})
 	t.Run("current-alternates", func(t *testing.T) {
 		request := loopOf(t, "buoy-3v3", object{"points": nil, "point": object{"input_v": 5, "load": object{"current_a": 2}, "ambient_degc": 25}})
