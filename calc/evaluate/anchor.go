@@ -12,6 +12,7 @@ type Anchor struct {
 	power      thermal.Vector              // [W] lost in each part
 	inductance [switched.MaxPhases]float64 // [1] over the swing, relative to that without current
 	drop       float64                     // [1] between source and bridge, relative to the source's voltage
+	left       thermal.Vector              // [K] from the closed form's equilibrium to the circuit's
 }
 
 // AnchorAt evaluates the stage at a point, into r, and returns what it came to. ok is
@@ -29,7 +30,8 @@ func (e *Evaluator) AnchorAt(p *stage.Point, r *Result) (a Anchor, ok bool) {
 	for k := range e.stage.PhaseCount {
 		a.inductance[k] = e.inductance[k] / e.nominalInductance(k)
 	}
-	return a, true
+	again := operating{left: &a.left}
+	return a, e.run(&a, p, &again, r) == OK
 }
 
 // EvalNear is Eval with the joint iteration begun at an anchor, which spares it the

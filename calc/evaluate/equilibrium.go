@@ -7,6 +7,7 @@ import (
 	"railproof/calc/parts"
 	"railproof/calc/stage"
 	"railproof/calc/switched"
+	"railproof/calc/thermal"
 )
 
 const (
@@ -23,9 +24,10 @@ const (
 	thermalSteps = 2
 	// refineKelvin is the length of a step after which the slopes are still good.
 	refineKelvin = 10 // [K]
-	// temperatureTolerance is the change [K] of the last Newton step, half of the
-	// thousandth of a kelvin that is promised.
-	temperatureTolerance = 5e-4
+	// temperatureTolerance is how far [K] the temperatures that the circuit was solved
+	// with may be from the equilibrium: the thousandth of a kelvin that is promised.
+	// Those that are told have one Newton step more, which leaves a thousandth of it.
+	temperatureTolerance = 1e-3
 	// dutyTolerance is the relative step of the duty ratio at which the output is
 	// regulated.
 	dutyTolerance = 1e-9
@@ -55,6 +57,8 @@ type operating struct {
 	deadTimeDuty float64 // [1]
 	closedPasses int     // on the closed form
 	refine       bool    // the last thermal step was short
+	near         *Anchor
+	left         *thermal.Vector // takes Anchor.left; nil: nothing asks for it
 }
 
 // Eval computes the stage at a point, into r. It allocates nothing, and the
@@ -84,7 +88,7 @@ func (e *Evaluator) run(a *Anchor, p *stage.Point, o *operating, r *Result) Stat
 
 func (e *Evaluator) begin(p *stage.Point, o *operating) {
 	s := e.stage
-	*o = operating{point: p, duty: -1, bridge: p.Input, closedPasses: coldPasses}
+	*o = operating{point: p, duty: -1, bridge: p.Input, closedPasses: coldPasses, left: o.left}
 	board := p.AmbientDegC
 	start := p.AmbientDegC
 	if parts.Known(p.PartTemperatureDegC) {
@@ -128,7 +132,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 
 // beginNear replaces the cold start by the anchor's.
 func (e *Evaluator) beginNear(a *Anchor, o *operating) {
-	o.closedPasses = nearPasses
+	o.closedPasses, o.near = nearPasses, a
 	o.bridge = o.point.Input * (1 - a.drop)
 	e.network.Temperatures(o.point.AmbientDegC, &a.power, &e.degC)
 	for k := range e.inductance[:e.stage.PhaseCount] {
@@ -166,10 +170,16 @@ func (e *Evaluator) iterate(o *operating) Status {
 		if runaway {
 			return Runaway
 		}
+		if o.left != nil {
+			for _, p := range e.parts {
+				o.left[p] = e.degC[p] - before[p]
+			}
+			o.left = nil
+		}
 		circuitChange = math.Max(circuitChange, e.followBridge(o))
 		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
-			e.degC = before
+			e.hottest, e.degC = e.degC, before
 			if dutyChange > dutyTolerance {
 				e.polish(o)
 				status = fromSwitched(e.solution.Status)
@@ -199,6 +209,11 @@ func (e *Evaluator) followClosedForm(o *operating) {
 		if _, runaway := e.followLosses(o, steps); runaway {
 			e.degC = first // the closed form's currents decide nothing
 			return
+		}
+		if o.near != nil {
+			for _, p := range e.parts {
+				e.degC[p] += o.near.left[p]
+			}
 		}
 		e.followBridge(o)
 	}
@@ -230,7 +245,6 @@ func (e *Evaluator) polish(o *operating) {
 
 // settled tells what the temperatures of a converged point mean.
 func (e *Evaluator) settled(o *operating, status Status) Status {
-	e.hottest = e.degC
 	if o.held || !status.Figures() {
 		return status
 	}

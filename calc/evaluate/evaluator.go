@@ -28,7 +28,7 @@ type Evaluator struct {
 
 	degC, power, slope thermal.Vector
 	powerDegC          thermal.Vector              // [degC] at which power holds
-	hottest            thermal.Vector              // [degC] of the hottest phase's parts; degC where phases are equal
+	hottest            thermal.Vector              // [degC] of the parts, of unequal phases the hottest
 	feedback           float64                     // [1] gain of the loop from temperature to loss and back
 	inductance         [switched.MaxPhases]float64 // [H] over the present swing
 	valley, peak       float64                     // [A] from the flux curve

@@ -12,12 +12,14 @@ import (
 //
 //	D = [Vo + VF + I (Rw + Rr)] / [Vin + VF − I (Rhs − Rr)]
 //	ΔI = [Vin − Vo − I (Rhs + Rw)] t1/L · [1 + t1 t2/(12 L C)]
-//	I1 = I + (1 − D) ΔI [(R1 + r) t1 + (R2 + r) t2]/(12 L)
+//	b1 = ΔI (R1 + r) t1/(12 L),  b2 = ΔI (R2 + r) t2/(12 L)
+//	I1 = I + (1 − D) (b1 + b2),  Ivalley, Ipeak = I1 − b1 ∓ ΔI/2
 //
 // t1, t2 are on- and off-time, R1, R2 the resistances of their paths, C, r the
-// output capacitor, and I1 is the mean current of the on-time: the first terms of
-// what the capacitor's ripple and the resistances bend, by integrating the triangle
-// once more. With several phases those of the capacitor are left out.
+// output capacitor, I1 is the mean current of the on-time, and b1, b2 are by how much
+// the mean of a piece leaves its chord: the first terms of what the capacitor's ripple
+// and the resistances bend, by integrating the triangle once more. With several phases
+// those of the capacitor are left out.
 // and, where a rectifier that blocks would see its current reverse, the
 // discontinuous D = sqrt(2 L f I (Vo + VF)/[(Vin − Vo)(Vin + VF)]).
 //
@@ -41,19 +43,22 @@ func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) 
 	off := 1 - d
 	t1, t2, inverse := d*c.Period, off*c.Period, 1/leg.L
 	ripple := math.Max(0, c.Vin-output-i*(leg.HighSide+leg.Winding)) * t1 * inverse
-	bend := (leg.Winding+leg.HighSide)*t1 + (leg.Winding+rr)*t2
+	esr := 0.0
 	if c.Phases == 1 {
-		capacitance, r := together(c)
+		var capacitance float64
+		capacitance, esr = together(c)
 		ripple *= 1 + t1*t2*inverse/(12*capacitance)
-		bend += r * c.Period
 	}
-	on := i + off*ripple*bend*inverse/12
+	part := ripple * inverse / 12
+	rises, falls := part*(leg.Winding+leg.HighSide+esr)*t1, part*(leg.Winding+rr+esr)*t2
+	on := i + off*(rises+falls)
+	middle := on - rises
 	fall := i
 	if off > 0 {
 		fall = (i - d*on) / off
 	}
 	one.Mode, one.Conduct = switched.Continuous, off
-	one.Valley, one.Peak = (on+fall-ripple)/2, (on+fall+ripple)/2
+	one.Valley, one.Peak = middle-ripple/2, middle+ripple/2
 	if leg.Rectifier.Blocks && one.Valley < 0 && c.Vin > output {
 		e.startDiscontinuous(c, output, i, fixedDuty)
 		return
