@@ -111,11 +111,26 @@ func drawUnits(s *stage.Stage) []unit {
 		field *float64
 		ratio float64
 	}{
-		{&l.Inductance, 0.2}, {&l.DCResistance, 0.1}, {&l.Core.K, 0.2}, {&l.Thermal.JunctionToAmbient, 0.15},
-		{&c.Capacitance, 0.2}, {&c.ESR, 0.5}, {&in.Capacitance, 0.2}, {&in.ESR, 0.5},
-		{&hs.OnResistance, 0.25}, {&hs.GateSwitchCharge, 0.3}, {&hs.OutputCharge, 0.2}, {&hs.Thermal.JunctionToAmbient, 0.15},
-		{&ls.OnResistance, 0.25}, {&ls.RecoveryCharge, 0.4}, {&ls.BodyDiode, 0.1}, {&ls.Thermal.JunctionToAmbient, 0.15},
-		{&k.GateOn, 0.3}, {&k.DeadTime, 0.3}, {&k.QuiescentCurrent, 0.3}, {&s.SwitchingFrequency, 0.08},
+		{&l.Inductance, 0.2},
+		{&l.DCResistance, 0.1},
+		{&l.Core.K, 0.2},
+		{&l.Thermal.JunctionToAmbient, 0.15},
+		{&c.Capacitance, 0.2},
+		{&c.ESR, 0.5},
+		{&in.Capacitance, 0.2},
+		{&in.ESR, 0.5},
+		{&hs.OnResistance, 0.25},
+		{&hs.GateSwitchCharge, 0.3},
+		{&hs.OutputCharge, 0.2},
+		{&hs.Thermal.JunctionToAmbient, 0.15},
+		{&ls.OnResistance, 0.25},
+		{&ls.RecoveryCharge, 0.4},
+		{&ls.BodyDiode, 0.1},
+		{&ls.Thermal.JunctionToAmbient, 0.15},
+		{&k.GateOn, 0.3},
+		{&k.DeadTime, 0.3},
+		{&k.QuiescentCurrent, 0.3},
+		{&s.SwitchingFrequency, 0.08},
 	}
 	units := make([]unit, 256)
 	for i := range units {

@@ -29,8 +29,21 @@ const (
 // loopTargets are the crossover, over the switching frequency, and phase margin [deg]
 // that the compensator is designed for, the best first.
 var loopTargets = [...]struct{ crossover, margin float64 }{
-	{crossoverRatio, 60}, {0.085, 60}, {0.07, 60}, {0.07, 50}, {0.05, 60}, {0.05, 50},
-	{0.04, 55}, {0.03, 60}, {0.03, 50}, {0.02, 55}, {0.02, 45}, {0.01, 55}, {5e-3, 50}, {2e-3, 45}, {1e-3, 45},
+	{crossoverRatio, 60},
+	{0.085, 60},
+	{0.07, 60},
+	{0.07, 50},
+	{0.05, 60},
+	{0.05, 50},
+	{0.04, 55},
+	{0.03, 60},
+	{0.03, 50},
+	{0.02, 55},
+	{0.02, 45},
+	{0.01, 55},
+	{5e-3, 50},
+	{2e-3, 45},
+	{1e-3, 45},
 }
 
 // What the margins of a loop are held to, as common practice has it: at typical values,
