@@ -114,6 +114,9 @@ func (a *CornersAnswer) warn(w *warnings) {
 			w.add("no-width", c.pointer, "the range has no width: the condition is held at %s", c.r.Min)
 		}
 	}
+	for _, at := range a.Elsewhere {
+		w.keep(Warning{"limit-not-looked-at", at, "a limit on transients: rule checks hold it and transients show it; corners leave it open, so the verdict is incomplete at best"})
+	}
 	if a.Run != nil {
 		if a.FullLoad != nil {
 			w.keep(Warning{"full-load", "/limits", "limits that hold at full load are looked at by extreme value: the drawn units and their yield leave them out"})

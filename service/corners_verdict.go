@@ -44,6 +44,9 @@ func (a *CornersAnswer) judge() {
 		full.judge()
 		a.Verdict, a.Status = max(a.Verdict, full.Verdict), worse(a.Status, full.Status)
 	}
+	if len(a.Elsewhere) > 0 {
+		a.Verdict = max(a.Verdict, Incomplete)
+	}
 	switch {
 	case a.Verdict == Fail || a.Verdict == NoLimit && !anyEnd(ends):
 	case anyMisbehaviour(ends):

@@ -111,6 +111,10 @@ func (w *CornersRequest) limits(r *service.CornersRequest) (faults []Fault) {
 			faults = append(faults, wrong...)
 			continue
 		}
+		if ofTransients(l.Quantity) {
+			r.Elsewhere = append(r.Elsewhere, at)
+			continue
+		}
 		ids, fault := proofIDs(l.Quantity, r)
 		if fault != "" {
 			faults = append(faults, unknownQuantity(at+"/quantity", l.Quantity, fault))
@@ -127,6 +131,17 @@ func (w *CornersRequest) limits(r *service.CornersRequest) (faults []Fault) {
 		}
 	}
 	return faults
+}
+
+// ofTransients reports whether a quantity is one of a run in time: a limit on it goes
+// with a stage, and other operations hold it.
+func ofTransients(key string) bool {
+	id, found := quantity.ByKey(key)
+	if !found {
+		return false
+	}
+	info, _ := quantity.Of(id)
+	return info.Group == quantity.Transient
 }
 
 func impossible(at string, l *Limit, id quantity.ID, why string) Fault {
@@ -195,7 +210,7 @@ func (w *CornersRequest) further(r *service.CornersRequest) (faults []Fault) {
 		}
 		r.Further = append(r.Further, ids...)
 	}
-	if len(w.Quantities) > 0 || len(w.Limits) > 0 {
+	if len(w.Quantities) > 0 || len(r.Limits) > 0 {
 		return faults
 	}
 	for _, key := range defaultProof {

@@ -258,7 +258,8 @@ func encodeSource(x *service.LoopItem) *SourceInteraction {
 		Detail: "the source impedance stays 6 dB or more below the input impedances, the customary separation",
 	}
 	if !s.Analysis.OK() {
-		w.Stability, w.Detail = "undecided", "the loop with this source has no periodic solution that could be analysed"
+		w.Stability = stabilities[loop.Unstable]
+		w.Detail = "not shown to be stable: the loop with this source has no periodic solution that could be analysed"
 		return w
 	}
 	phase, _, modulus := s.Loop.Reliable()

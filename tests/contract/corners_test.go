@@ -8,6 +8,8 @@ import (
 	"fmt"
 	"net/http"
 	"net/http/httptest"
+	"slices"
+	"strconv"
 	"strings"
 	"testing"
 	"time"
@@ -478,7 +480,7 @@ func TestAnalysesThatAreRefused(t *testing.T) {
 		{"unknown-quantity", limits(object{"quantity": "output_hum_v", "max": 1}), nil, "/limits/0/quantity", "quantity", "no such quantity"},
 		{"unknown-further-quantity", object{"quantities": []string{"hum"}}, nil, "/quantities/0", "quantity", "no such quantity"},
 		{"quantity-of-another-stage", limits(object{"quantity": "diode_junction_degc", "max": 100}), nil, "/limits/0/quantity", "quantity", "no rectifier diode"},
-		{"quantity-of-another-operation", limits(object{"quantity": "load_step_deviation_v", "max": 1}), nil, "/limits/0/quantity", "quantity", "transients"},
+		{"quantity-of-another-operation", object{"quantities": []string{"load_step_deviation_v"}}, nil, "/quantities/0", "quantity", "transients"},
 		{"bank-that-is-not-there", limits(object{"quantity": "output_capacitor_rms_a/3", "max": 1}), nil, "/limits/0/quantity", "quantity", "no such capacitor bank"},
 		{"limit-upside-down", limits(object{"quantity": "output_ripple_pp_v", "min": 0.2, "max": 0.1}), nil, "/limits/0/min", "limit", "min is above max"},
 		{"limit-beyond-physics", limits(object{"quantity": "efficiency_ratio", "min": 1.01}), nil, "/limits/0/min", "limit", "below 1"},
@@ -566,4 +568,33 @@ func TestAnalysisAsATable(t *testing.T) {
 		require.Contains(t, lines[0], column)
 	}
 	require.Equal(t, "output_ripple_pp_v", lines[1][0])
+}
+
+// The limits of a sizing go on to the corners as they are; those that a run in time
+// holds are left open, and said to be.
+func TestLimitsOfSizingArePostedOn(t *testing.T) {
+	at := server(t)
+	sized := asked(t, at, "sizing", exampleOf(t, "buoy-5v0/sizing.json"))
+	limits := within(sized, "limits").([]any)
+	request := object{"stage": within(sized, "stage"), "conditions": within(sized, "conditions"), "limits": limits, "methods": []string{"extreme-value"}}
+	answer := asked(t, at, "corners", request)
+	require.Equal(t, limits, within(answer, "limits"))
+	var open []string
+	for _, w := range within(answer, "warnings").([]any) {
+		if within(w, "code") == "limit-not-looked-at" {
+			open = append(open, within(w, "pointer").(string))
+		}
+	}
+	var want []string
+	for i, l := range limits {
+		if strings.HasPrefix(within(l, "quantity").(string), "load_step_") {
+			want = append(want, "/limits/"+strconv.Itoa(i))
+		}
+	}
+	require.NotEmpty(t, want)
+	require.Equal(t, want, open)
+	require.NotEqual(t, "pass", within(answer, "verdict"))
+
+	request["limits"] = slices.DeleteFunc(slices.Clone(limits), func(l any) bool { return strings.HasPrefix(within(l, "quantity").(string), "load_step_") })
+	require.NotEqual(t, "incomplete", within(asked(t, at, "corners", request), "verdict"))
 }

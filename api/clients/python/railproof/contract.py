@@ -406,7 +406,7 @@ class CornersRequest(TypedDict):
 
     stage: 'Stage'
     conditions: 'Conditions'
-    limits: NotRequired[List['Limit']]
+    limits: NotRequired[List['Limit']]  # One on a quantity of transients is left open, with a warning: the verdict is incomplete at best.
     quantities: NotRequired[List[str]]  # Further quantities to report, without a limit.
     methods: NotRequired[List[Literal['extreme-value', 'root-sum-square', 'monte-carlo', 'attribution']]]  # Default: extreme-value, root-sum-square and monte-carlo.
     samples: NotRequired[int]  # Built units to draw. Default 10000.
@@ -823,8 +823,8 @@ class Quantities(TypedDict):
     thermal_feedback_ratio: NotRequired[float]  # [1] Spectral radius of thermal resistance times power sensitivity; 1 is runaway.
     crossover_hz: NotRequired[float]  # [Hz] Highest frequency at which the loop gain falls through 1.
     phase_margin_deg: NotRequired[float]  # [deg] Least phase margin over all crossovers.
-    gain_margin_db: NotRequired[float]  # [dB] Least gain margin over all phase crossings.
-    modulus_margin_ratio: NotRequired[float]  # [1] Least distance of the loop gain to −1.
+    gain_margin_db: NotRequired[float]  # [dB] Least gain margin over all phase crossings; 60 stands for 60 dB or more, no phase crossing included; not positive for an unstable loop.
+    modulus_margin_ratio: NotRequired[float]  # [1] Least distance of the loop gain to −1; negative for an unstable loop.
     load_step_deviation_v: NotRequired[float]  # [V] Greatest deviation after the load step.
     load_step_recovery_s: NotRequired[float]  # [s] Time until the output stays in its band after the load step.
     load_step_inductor_peak_a: NotRequired[float]  # [A] Greatest inductor current after the load step.
@@ -1528,7 +1528,7 @@ class CurrentLoop(TypedDict):
 class SourceInteraction(TypedDict):
     """How source or input filter and loop act on each other."""
 
-    stability: Literal['stable', 'unstable']  # Exact test on the loop with the source.
+    stability: Literal['stable', 'unstable']  # Exact test on the loop with the source; unstable too where it cannot be shown stable, as detail then says.
     null_separation_db: NotRequired[float]  # [dB] Least distance of the source impedance below the null impedance.
     null_at_hz: NotRequired[float]  # [Hz]
     driving_separation_db: NotRequired[float]  # [dB] Below the driving-point impedance.
@@ -1554,10 +1554,10 @@ class LoopItem(TypedDict):
     crossovers: NotRequired[List['Crossover']]  # All of them, up to twelve.
     phase_crossings: NotRequired[List['PhaseCrossing']]
     crossover_hz: NotRequired[float]  # [Hz] Highest at which the gain falls through 1; absent if there is none.
-    phase_margin_deg: NotRequired[float]  # [deg] Least over all crossovers; absent if there is none.
-    gain_margin_db: NotRequired[float]  # [dB] Least by which the gain may rise; absent if there is no such phase crossing.
+    phase_margin_deg: NotRequired[float]  # [deg] Least over all crossovers; absent if there is none, and of an unstable loop unless negative.
+    gain_margin_db: NotRequired[float]  # [dB] Least by which the gain may rise; absent if there is no such phase crossing. Of an unstable loop negative: by how much the gain must fall at least to pass a phase crossing; else absent.
     gain_reduction_db: NotRequired[float]  # [dB] Least by which it may fall; absent likewise.
-    modulus_margin_ratio: NotRequired[float]  # [1] Least distance of the loop gain to -1.
+    modulus_margin_ratio: NotRequired[float]  # [1] Least distance of the loop gain to -1, with a negative sign for an unstable loop.
     modulus_margin_at_hz: NotRequired[float]  # [Hz]
     bandwidth_hz: NotRequired[float]  # [Hz] Above which the closed loop stays 3 dB down.
     conditionally_stable: NotRequired[bool]  # Stable, but a lower gain is not.
@@ -1618,7 +1618,7 @@ class TransientsAnswer(TypedDict):
 
     engine: 'Engine'
     result_id: str  # res_ and the SHA-256 of operation, engine and canonical request (RFC 8785).
-    status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged', 'unstable', 'no-comparison', 'collapsed']  # How the computation ended; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
+    status: Literal['ok', 'over-temperature', 'drop-out', 'too-short-on-time', 'no-operating-point', 'runaway', 'not-converged', 'unstable', 'no-comparison', 'collapsed']  # How the computation ended; drop-out and the like: the stage does not regulate before the event, or at the point that follows it; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
     stage: 'Stage'
     point: 'Point'
     event: 'TransientEvent'

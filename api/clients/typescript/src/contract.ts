@@ -1422,6 +1422,7 @@ export interface components {
         CornersRequest: {
             stage: components["schemas"]["Stage"];
             conditions: components["schemas"]["Conditions"];
+            /** @description One on a quantity of transients is left open, with a warning: the verdict is incomplete at best. */
             limits?: components["schemas"]["Limit"][];
             /** @description Further quantities to report, without a limit. */
             quantities?: string[];
@@ -2297,12 +2298,12 @@ export interface components {
             phase_margin_deg?: number;
             /**
              * Format: double
-             * @description Least gain margin over all phase crossings.
+             * @description Least gain margin over all phase crossings; 60 stands for 60 dB or more, no phase crossing included; not positive for an unstable loop.
              */
             gain_margin_db?: number;
             /**
              * Format: double
-             * @description Least distance of the loop gain to −1.
+             * @description Least distance of the loop gain to −1; negative for an unstable loop.
              */
             modulus_margin_ratio?: number;
             /**
@@ -3552,7 +3553,7 @@ export interface components {
         /** @description How source or input filter and loop act on each other. */
         SourceInteraction: {
             /**
-             * @description Exact test on the loop with the source.
+             * @description Exact test on the loop with the source; unstable too where it cannot be shown stable, as detail then says.
              * @enum {string}
              */
             stability: "stable" | "unstable";
@@ -3633,12 +3634,12 @@ export interface components {
             crossover_hz?: number;
             /**
              * Format: double
-             * @description Least over all crossovers; absent if there is none.
+             * @description Least over all crossovers; absent if there is none, and of an unstable loop unless negative.
              */
             phase_margin_deg?: number;
             /**
              * Format: double
-             * @description Least by which the gain may rise; absent if there is no such phase crossing.
+             * @description Least by which the gain may rise; absent if there is no such phase crossing. Of an unstable loop negative: by how much the gain must fall at least to pass a phase crossing; else absent.
              */
             gain_margin_db?: number;
             /**
@@ -3648,7 +3649,7 @@ export interface components {
             gain_reduction_db?: number;
             /**
              * Format: double
-             * @description Least distance of the loop gain to -1.
+             * @description Least distance of the loop gain to -1, with a negative sign for an unstable loop.
              */
             modulus_margin_ratio?: number;
             /** Format: double */
@@ -3758,7 +3759,7 @@ export interface components {
             /** @description res_ and the SHA-256 of operation, engine and canonical request (RFC 8785). */
             result_id: string;
             /**
-             * @description How the computation ended; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
+             * @description How the computation ended; drop-out and the like: the stage does not regulate before the event, or at the point that follows it; unstable: the loop does not hold its operating point before or after the event; no-comparison as for loops; collapsed: the load drags the output below zero.
              * @enum {string}
              */
             status: "ok" | "over-temperature" | "drop-out" | "too-short-on-time" | "no-operating-point" | "runaway" | "not-converged" | "unstable" | "no-comparison" | "collapsed";
