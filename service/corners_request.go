@@ -16,7 +16,7 @@ type CornersRequest struct {
 	Design     Design
 	Conditions stage.Conditions
 	Limits     []CornersLimit
-	Elsewhere  []string // pointers to limits on transients, which corners do not look at
+	Elsewhere  []string      // pointers to limits on transients, which corners do not look at
 	Further    []quantity.ID // to report without a limit
 	Methods    CornersMethods
 	Sampling   sampling.Design // Coordinates is filled in
