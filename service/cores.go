@@ -29,12 +29,7 @@ func (c *cores) take() {
 		return
 	}
 	c.mutex.Lock()
-	if len(c.waiting) == 0 && c.free() {
-		c.busy++
-		c.mutex.Unlock()
-		return
-	}
-	c.wait()
+	c.enter()
 }
 
 // next passes the turn on and waits for another one.
@@ -46,12 +41,7 @@ func (c *cores) next() {
 	c.mutex.Lock()
 	c.busy--
 	c.pass()
-	if len(c.waiting) == 0 && c.free() {
-		c.busy++
-		c.mutex.Unlock()
-		return
-	}
-	c.wait()
+	c.enter()
 }
 
 // give ends a worker's turn.
@@ -65,9 +55,14 @@ func (c *cores) give() {
 	c.pass()
 }
 
-// wait waits for a turn in the queue. The caller holds the mutex, which is free
-// afterwards.
-func (c *cores) wait() {
+// enter takes a turn, or waits for one in the queue. The caller holds the mutex, which
+// is free afterwards.
+func (c *cores) enter() {
+	if len(c.waiting) == 0 && c.free() {
+		c.busy++
+		c.mutex.Unlock()
+		return
+	}
 	mine := make(chan struct{})
 	c.waiting = append(c.waiting, mine)
 	c.mutex.Unlock()
