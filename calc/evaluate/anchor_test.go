@@ -56,7 +56,7 @@ func TestEvalNearAgreesWithEval(t *testing.T) {
 					case "Cel":
 						scale = 1e3
 					case "W", "W/m3":
-						scale *= 12 // a thousandth of a kelvin moves the loss of this core by 6e-6, and either may be off by one
+						scale *= 6 // half a thousandth of a kelvin moves the loss of this core by 3e-6, and either may be off by one
 					case "1":
 						scale = math.Max(scale, 1e-3)
 					}

@@ -25,9 +25,10 @@ const (
 	// refineKelvin is the length of a step after which the slopes are still good.
 	refineKelvin = 10 // [K]
 	// temperatureTolerance is how far [K] the temperatures that the circuit was solved
-	// with may be from the equilibrium: the thousandth of a kelvin that is promised.
-	// Those that are told have one Newton step more, which leaves a thousandth of it.
-	temperatureTolerance = 1e-3
+	// with may be from the equilibrium, half of the thousandth of a kelvin that is
+	// promised. Those that are told have one Newton step more, which leaves a
+	// thousandth of it.
+	temperatureTolerance = 5e-4
 	// dutyTolerance is the relative step of the duty ratio at which the output is
 	// regulated.
 	dutyTolerance = 1e-9
