@@ -61,8 +61,9 @@ func (b *Board) deal(_ context.Context, m message) {
 // claim takes the job for this process if nobody works on it.
 func (b *Board) claim(ctx context.Context, r *run) bool {
 	b.mutex.Lock()
-	if b.running[r.id] != nil { // ours already: a jump of the clock makes its beat look old
+	if b.running[r.id] != nil { // ours already, or no more: a process that slept is late to see that it lost the job
 		b.mutex.Unlock()
+		b.unqueue(r.id)
 		return false
 	}
 	b.running[r.id] = r

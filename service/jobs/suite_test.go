@@ -191,6 +191,23 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		require.JSONEq(t, `{"title":"asked to fail"}`, string(j.Problem))
 		require.NotEqual(t, j.ID, submit(t, b, failing).ID)
 	})
+	t.Run("a message that a late process takes is not lost", func(t *testing.T) {
+		// The process slept, another one made its job wait again, and the message for
+		// that reaches it before it has seen so.
+		b := where(t).open(t, new(fakeExecutor), nil)
+		late := &run{id: "job_late"}
+		b.mutex.Lock()
+		b.running[late.id] = late
+		b.mutex.Unlock()
+		defer b.forget(late)
+		_, err := b.db.exec(t.Context(), `INSERT INTO railproof_jobs (id, engine, operation, request_key, result_id, request, state, sequence, claims, deaths, owner, beat, queued, done, expected, created, started, ended)
+			VALUES ('job_late', 'one that sweeps nothing here', 'corners', 'res_late', 'res_late', 'x', 'waiting', 3, 1, 1, '', 0, NOW(), 0, 0, NOW(), 0, 0)`)
+		require.NoError(t, err)
+		require.False(t, b.claim(t.Context(), &run{id: "job_late"}))
+		var queued int64
+		require.NoError(t, b.db.row(t.Context(), `SELECT queued FROM railproof_jobs WHERE id = 'job_late'`).Scan(&queued))
+		require.Zero(t, queued, "the next sweep queues it")
+	})
 	t.Run("many callers of one request get one job", func(t *testing.T) {
 		f := new(fakeExecutor)
 		b := where(t).open(t, f, nil)

@@ -106,10 +106,12 @@ func (b *Board) sweepOnce(ctx context.Context) error {
 		return err
 	}
 	for _, id := range lost {
-		if err := b.db.queue.add(ctx, message{Job: id}); err != nil {
+		// First the mark: a message may be dealt with, and the mark taken back, at once.
+		if _, err := b.db.exec(ctx, `UPDATE railproof_jobs SET queued = NOW() WHERE id = $1`, id); err != nil {
 			return err
 		}
-		if _, err := b.db.exec(ctx, `UPDATE railproof_jobs SET queued = NOW() WHERE id = $1`, id); err != nil {
+		if err := b.db.queue.add(ctx, message{Job: id}); err != nil {
+			b.unqueue(id)
 			return err
 		}
 	}
@@ -180,7 +182,7 @@ func (b *Board) identifiers(ctx context.Context, statement string, args ...any) 
 	return list, rows.Err()
 }
 
-// unqueue makes the next sweep queue a job.
+// unqueue makes the next sweep queue a job that waits.
 func (b *Board) unqueue(id string) {
 	ctx, cancel := context.WithTimeout(b.ctx, callTimeout)
 	defer cancel()
