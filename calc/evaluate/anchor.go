@@ -12,26 +12,34 @@ type Anchor struct {
 	power      thermal.Vector              // [W] lost in each part
 	inductance [switched.MaxPhases]float64 // [1] over the swing, relative to that without current
 	drop       float64                     // [1] between source and bridge, relative to the source's voltage
-	left       thermal.Vector              // [K] from the closed form's equilibrium to the circuit's
+	perVolt    thermal.Vector              // [K/V] of each part, as the bridge voltage rises
 }
+
+// anchorStep is the relative step of the input voltage that tells Anchor.perVolt.
+const anchorStep = 1e-3 // [1]
 
 // AnchorAt evaluates the stage at a point, into r, and returns what it came to. ok is
 // false where the stage does not work there, or its parts are held at a temperature.
 func (e *Evaluator) AnchorAt(p *stage.Point, r *Result) (a Anchor, ok bool) {
-	var o operating
-	status := e.run(nil, p, &o, r)
-	if status != OK || o.held {
+	var aside, o operating
+	beside := *p
+	beside.Input *= 1 + anchorStep
+	status := e.run(nil, &beside, &aside, r)
+	hotter := e.degC
+	if e.run(nil, p, &o, r) != OK || o.held {
 		return Anchor{}, false
 	}
 	a.drop = 1 - o.bridge/p.Input
 	for _, part := range e.parts {
 		a.power[part] = e.power[part]
+		if status == OK {
+			a.perVolt[part] = (hotter[part] - e.degC[part]) / (aside.bridge - o.bridge)
+		}
 	}
 	for k := range e.stage.PhaseCount {
 		a.inductance[k] = e.inductance[k] / e.nominalInductance(k)
 	}
-	again := operating{left: &a.left}
-	return a, e.run(&a, p, &again, r) == OK
+	return a, true
 }
 
 // EvalNear is Eval with the joint iteration begun at an anchor, which spares it the

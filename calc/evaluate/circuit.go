@@ -27,17 +27,14 @@ func (e *Evaluator) setCircuit(bridge, copper float64) {
 	c.Phases = s.PhaseCount
 	leg := &c.Leg
 	leg.L = e.inductance[0]
-	hot, _ := s.HighSide.OnMultiplierAt(e.degC[losses.HighSide])
-	rw, _ := s.Inductor.DCResistanceAt(e.degC[losses.Inductor])
-	leg.HighSide = e.base.highSide * hot
-	leg.Winding = rw + s.Board.SwitchNodePath*copper
+	e.warm = e.model.Warm(&e.degC)
+	leg.HighSide = e.warm.HighSide
+	leg.Winding = e.warm.Winding + s.Board.SwitchNodePath*copper
 	leg.Rectifier.Blocks = s.Rectifier != stage.Synchronous
 	if e.synchronous() {
-		hot, _ := s.LowSide.OnMultiplierAt(e.degC[losses.LowSide])
-		leg.Rectifier.Threshold, leg.Rectifier.Slope = 0, e.base.lowSide*hot
+		leg.Rectifier.Threshold, leg.Rectifier.Slope = 0, e.warm.LowSide
 	} else {
-		vt, _ := s.Diode.ThresholdAt(e.degC[losses.Diode])
-		leg.Rectifier.Threshold, leg.Rectifier.Slope = vt, s.Diode.Slope
+		leg.Rectifier.Threshold, leg.Rectifier.Slope = e.warm.Threshold, s.Diode.Slope
 	}
 	c.Legs = nil
 	if len(s.Phases) > 0 {
@@ -46,15 +43,17 @@ func (e *Evaluator) setCircuit(bridge, copper float64) {
 }
 
 // setBanks gives every capacitor bank its value at its present temperature and
-// bias.
+// bias, after setCircuit.
 func (e *Evaluator) setBanks(bridge, output float64) {
 	s, c := e.stage, &e.circuit
 	c.Banks = len(s.OutputCapacitors)
 	for k := range s.OutputCapacitors {
-		c.Bank[k] = e.base.output[k].at(&s.OutputCapacitors[k], output, e.degC[int(losses.OutputCapacitor)+k])
+		left := s.OutputCapacitors[k].CapacitanceMultiplierAt(output, e.degC[int(losses.OutputCapacitor)+k])
+		c.Bank[k] = switched.Bank{C: e.aged.output[k] * left, ESR: e.warm.Output[k]}
 	}
 	for k := range s.InputCapacitors {
-		e.inputBank[k] = e.base.input[k].at(&s.InputCapacitors[k], bridge, e.degC[int(losses.InputCapacitor)+k])
+		left := s.InputCapacitors[k].CapacitanceMultiplierAt(bridge, e.degC[int(losses.InputCapacitor)+k])
+		e.inputBank[k] = switched.Bank{C: e.aged.input[k] * left, ESR: e.warm.Input[k]}
 	}
 }
 
@@ -83,32 +82,18 @@ func (e *Evaluator) setLegs() {
 	c.Legs = &e.legs
 }
 
-// base holds what drive voltage and age make of the parts: constant within a
-// point.
-type base struct {
-	highSide, lowSide float64 // [ohm] at 25 degC
-	output, input     [switched.MaxBanks]baseBank
+// agedBanks holds the banks' capacitances [F] at their age, unbiased and at 25 °C:
+// constant within a point.
+type agedBanks struct {
+	output, input [switched.MaxBanks]float64
 }
 
-// baseBank is a bank without bias at 25 degC.
-type baseBank struct {
-	c, esr float64 // [F], [ohm]
-}
-
-func (b *baseBank) at(c *parts.Capacitor, bias, degC float64) switched.Bank {
-	hot, _ := c.ESRMultiplierAt(degC)
-	return switched.Bank{C: b.c * c.CapacitanceMultiplierAt(bias, degC), ESR: b.esr * hot}
-}
-
-func (e *Evaluator) setBase(ageRatio float64) {
-	s, b := e.stage, &e.base
-	b.highSide, b.lowSide = e.model.OnResistances()
+func (e *Evaluator) setAged(ageRatio float64) {
+	s := e.stage
 	for k := range s.OutputCapacitors {
-		c := &s.OutputCapacitors[k]
-		b.output[k] = baseBank{c.CapacitanceAged(ageRatio), c.ESRAged(ageRatio)}
+		e.aged.output[k] = s.OutputCapacitors[k].CapacitanceAged(ageRatio)
 	}
 	for k := range s.InputCapacitors {
-		c := &s.InputCapacitors[k]
-		b.input[k] = baseBank{c.CapacitanceAged(ageRatio), c.ESRAged(ageRatio)}
+		e.aged.input[k] = s.InputCapacitors[k].CapacitanceAged(ageRatio)
 	}
 }

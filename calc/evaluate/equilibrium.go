@@ -7,7 +7,6 @@ import (
 	"railproof/calc/parts"
 	"railproof/calc/stage"
 	"railproof/calc/switched"
-	"railproof/calc/thermal"
 )
 
 const (
@@ -20,7 +19,7 @@ const (
 	coldPasses, nearPasses = 2, 1
 	// thermalSteps is how many Newton steps temperatures take on one circuit
 	// solution before the circuit is solved again: a second one where the first
-	// crossed a point of a table, which is soon enough on the last closed form.
+	// crossed a point of a table. On the closed form they take one.
 	thermalSteps = 2
 	// refineKelvin is the length of a step after which the slopes are still good.
 	refineKelvin = 10 // [K]
@@ -59,7 +58,6 @@ type operating struct {
 	closedPasses int     // on the closed form
 	refine       bool    // the last thermal step was short
 	near         *Anchor
-	left         *thermal.Vector // takes Anchor.left; nil: nothing asks for it
 }
 
 // Eval computes the stage at a point, into r. It allocates nothing, and the
@@ -89,7 +87,7 @@ func (e *Evaluator) run(a *Anchor, p *stage.Point, o *operating, r *Result) Stat
 
 func (e *Evaluator) begin(p *stage.Point, o *operating) {
 	s := e.stage
-	*o = operating{point: p, duty: -1, bridge: p.Input, closedPasses: coldPasses, left: o.left}
+	*o = operating{point: p, duty: -1, bridge: p.Input, closedPasses: coldPasses}
 	board := p.AmbientDegC
 	start := p.AmbientDegC
 	if parts.Known(p.PartTemperatureDegC) {
@@ -103,8 +101,8 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		e.degC[i] = start
 	}
 	e.setLoad(p.Load, o.copper)
-	e.model.Begin()
-	e.setBase(p.AgeRatio)
+	e.model.Begin(p.AgeRatio)
+	e.setAged(p.AgeRatio)
 	o.path = p.SourceResistance + s.Board.InputPath*o.copper
 	switch p.Control.Kind {
 	case stage.RegulateTo:
@@ -171,12 +169,6 @@ func (e *Evaluator) iterate(o *operating) Status {
 		if runaway {
 			return Runaway
 		}
-		if o.left != nil {
-			for _, p := range e.parts {
-				o.left[p] = e.degC[p] - before[p]
-			}
-			o.left = nil
-		}
 		circuitChange = math.Max(circuitChange, e.followBridge(o))
 		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
@@ -201,22 +193,21 @@ func (e *Evaluator) followClosedForm(o *operating) {
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
 		e.shareStart()
-		steps := 1
 		if left == 1 {
 			e.followInductance()
-			steps = thermalSteps
 		}
 		e.followOutput(o)
-		if _, runaway := e.followLosses(o, steps); runaway {
+		if _, runaway := e.followLosses(o, 1); runaway {
 			e.degC = first // the closed form's currents decide nothing
 			return
 		}
+		before := o.bridge
+		e.followBridge(o)
 		if o.near != nil {
 			for _, p := range e.parts {
-				e.degC[p] += o.near.left[p]
+				e.degC[p] += o.near.perVolt[p] * (o.bridge - before)
 			}
 		}
-		e.followBridge(o)
 	}
 }
 

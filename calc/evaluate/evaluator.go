@@ -24,7 +24,8 @@ type Evaluator struct {
 	solution  switched.Solution
 	operation losses.Operation
 	inputBank [switched.MaxBanks]switched.Bank
-	base      base
+	aged      agedBanks
+	warm      *losses.Elements // at the temperatures of the circuit
 
 	degC, power, slope thermal.Vector
 	powerDegC          thermal.Vector              // [degC] at which power holds

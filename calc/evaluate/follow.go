@@ -29,13 +29,16 @@ func (e *Evaluator) followLosses(o *operating, steps int) (temperatureChange flo
 		o.charged = o.bridge
 	}
 	e.model.Freeze(op)
-	for range steps {
+	for step := range steps {
+		if step > 0 {
+			e.model.Warm(&e.degC)
+		}
 		e.powerDegC = e.degC
-		e.model.Powers(&e.degC, &e.power, &e.slope)
+		e.model.Powers(&e.power, &e.slope)
 		if o.held {
 			break
 		}
-		change, state := e.warm(o)
+		change, state := e.heat(o)
 		if state == thermal.Runaway {
 			return change, true
 		}
@@ -47,9 +50,9 @@ func (e *Evaluator) followLosses(o *operating, steps int) (temperatureChange flo
 	return temperatureChange, false
 }
 
-// warm moves the temperatures by one Newton step, after a short one with the slopes
+// heat moves the temperatures by one Newton step, after a short one with the slopes
 // at hand.
-func (e *Evaluator) warm(o *operating) (change float64, state thermal.State) {
+func (e *Evaluator) heat(o *operating) (change float64, state thermal.State) {
 	if o.refine {
 		change, state = e.network.Refine(o.point.AmbientDegC, &e.power, &e.degC)
 	} else {

@@ -8,11 +8,11 @@ func (e *Evaluator) shareStart() {
 	banks := len(e.stage.InputCapacitors)
 	sol, sum := &e.solution, 0.0
 	for k := range banks {
-		sum += e.base.input[k].c
+		sum += e.aged.input[k]
 	}
 	rms := math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
 	for k := range banks {
-		e.operation.InputBank[k] = rms * e.base.input[k].c / sum
+		e.operation.InputBank[k] = rms * e.aged.input[k] / sum
 	}
 }
 

@@ -21,7 +21,8 @@ func (e *Evaluator) settlePhases(o *operating) bool {
 	defer func() {
 		e.degC = mean
 		e.model.Freeze(&e.operation)
-		e.model.Powers(&e.degC, &e.power, &e.slope)
+		e.model.Warm(&e.degC)
+		e.model.Powers(&e.power, &e.slope)
 	}()
 	for k := range e.stage.Phases {
 		e.degC = mean
@@ -38,7 +39,8 @@ func (e *Evaluator) settlePhases(o *operating) bool {
 
 func (e *Evaluator) settlePhase(o *operating) bool {
 	for range phaseSteps {
-		e.model.Powers(&e.degC, &e.power, &e.slope)
+		e.model.Warm(&e.degC)
+		e.model.Powers(&e.power, &e.slope)
 		change, state := e.network.Step(o.point.AmbientDegC, &e.power, &e.slope, &e.degC)
 		if state == thermal.Runaway {
 			return false

@@ -3,7 +3,7 @@ package losses
 import "railproof/calc/stage"
 
 // Fill writes every item of the operation that was frozen last, at the temperatures
-// of the last Powers, which must be those whose resistances the circuit was solved
+// of the last Warm, which must be those whose resistances the circuit was solved
 // with: then the sum of the items is input minus output power exactly.
 //
 // Items of a part that every phase has are those of one phase, counted Count
@@ -18,7 +18,7 @@ func (m *Model) Fill(op *Operation, sheet *Sheet) (inside float64) {
 	n := max(s.PhaseCount, 1)
 	sheet.N = 0
 
-	perPhase := Resistive(w.highSide, c.highSide)
+	perPhase := Resistive(w.HighSide, c.highSide)
 	sheet.add(HighSide, Conduction, perPhase, n)
 	sheet.add(HighSide, Overlap, c.overlap, n)
 	sheet.add(HighSide, OutputCharge, c.charge, n)
@@ -28,21 +28,21 @@ func (m *Model) Fill(op *Operation, sheet *Sheet) (inside float64) {
 	}
 	if s.Rectifier == stage.DiodeRectified {
 		sheet.add(HighSide, JunctionCharge, c.junction, n)
-		conduction := DiodeConduction(w.threshold, s.Diode.Slope, c.rectifierMean, c.rectifier)
+		conduction := DiodeConduction(w.Threshold, s.Diode.Slope, c.rectifierMean, c.rectifier)
 		sheet.add(Diode, Conduction, conduction, n)
-		sheet.add(Diode, Leakage, LeakageLoss(c.duty, m.point.vin, w.leakage), n)
+		sheet.add(Diode, Leakage, LeakageLoss(c.duty, m.point.vin, w.Leakage), n)
 		perPhase += conduction
 	} else {
-		sheet.add(LowSide, Conduction, Resistive(w.lowSide, c.channel), n)
+		sheet.add(LowSide, Conduction, Resistive(w.LowSide, c.channel), n)
 		sheet.add(LowSide, DeadTime, c.deadLow, n)
-		perPhase += Resistive(w.lowSide, c.rectifier)
+		perPhase += Resistive(w.LowSide, c.rectifier)
 	}
 
-	sheet.add(Inductor, WindingDC, Resistive(w.winding, c.inductorDC), n)
-	sheet.add(Inductor, WindingAC, Resistive(w.winding, s.Inductor.ACResistanceRatio*c.inductorAC), n)
-	perPhase += Resistive(w.winding, c.inductorDC+c.inductorAC)
+	sheet.add(Inductor, WindingDC, Resistive(w.Winding, c.inductorDC), n)
+	sheet.add(Inductor, WindingAC, Resistive(w.Winding, s.Inductor.ACResistanceRatio*c.inductorAC), n)
+	perPhase += Resistive(w.Winding, c.inductorDC+c.inductorAC)
 	if core := &s.Inductor.Core; core.Present {
-		item := sheet.add(Inductor, CoreHysteresis, w.core*c.core, n)
+		item := sheet.add(Inductor, CoreHysteresis, w.Core*c.core, n)
 		item.BandLow, item.BandHigh = core.BandLow, core.BandHigh
 	}
 
@@ -58,12 +58,12 @@ func (m *Model) Fill(op *Operation, sheet *Sheet) (inside float64) {
 
 	inside = m.phases*perPhase + switchNode + outputPath
 	for k := range s.OutputCapacitors {
-		p := c.output[k] * w.output[k]
+		p := Resistive(w.Output[k], c.output[k])
 		sheet.add(OutputCapacitor+Part(k), SeriesResistance, p, 1)
 		inside += p
 	}
 	for k := range s.InputCapacitors {
-		sheet.add(InputCapacitor+Part(k), SeriesResistance, c.input[k]*w.input[k], 1)
+		sheet.add(InputCapacitor+Part(k), SeriesResistance, Resistive(w.Input[k], c.input[k]), 1)
 	}
 	return inside
 }
@@ -79,10 +79,10 @@ func (s *Sheet) add(p Part, m Mechanism, power float64, count int) *Item {
 }
 
 // Core returns the loss density [W/m3] and the peak-to-peak flux density [T], the
-// greatest of all phases, at the temperatures of the last Powers.
+// greatest of all phases, at the temperatures of the last Warm.
 func (m *Model) Core() (density, swing float64) {
 	if !m.st.Inductor.Core.Present {
 		return nan, nan
 	}
-	return m.warm.core * m.currents.density, m.currents.swing
+	return m.warm.Core * m.currents.density, m.currents.swing
 }

@@ -34,7 +34,7 @@ type currents struct {
 	density       float64                    // [W/m3] same
 	swing         float64                    // [T] peak to peak
 	board         float64                    // [1] copper multiplier
-	output, input [switched.MaxBanks]float64 // [W] of each bank at 25 degC
+	output, input [switched.MaxBanks]float64 // [A2] of each bank
 }
 
 // reset clears what the phases add to.
@@ -91,10 +91,10 @@ func (m *Model) freezeShared(op *Operation) {
 	c.controller = c.gateDrive + p.quiescent + s.Controller.AuxiliaryPower
 	c.board, _ = parts.CopperMultiplier(op.BoardDegC)
 	for k := range s.OutputCapacitors {
-		c.output[k] = Resistive(s.OutputCapacitors[k].ESRAged(op.AgeRatio), sol.BankRMS[k]*sol.BankRMS[k])
+		c.output[k] = sol.BankRMS[k] * sol.BankRMS[k]
 	}
 	for k := range s.InputCapacitors {
-		c.input[k] = Resistive(s.InputCapacitors[k].ESRAged(op.AgeRatio), op.InputBank[k]*op.InputBank[k])
+		c.input[k] = op.InputBank[k] * op.InputBank[k]
 	}
 }
 

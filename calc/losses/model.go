@@ -8,15 +8,16 @@ import (
 	"railproof/calc/thermal"
 )
 
-// Model computes every loss of one stage. It is used in five steps, each as
-// seldom as it may be:
+// Model computes every loss of one stage. It is used in steps, each as seldom as it
+// may be:
 //
 //	Prepare  once per stage   what only exponents and topology decide
 //	Begin    once per point   what the stage's numbers decide
+//	Warm     once per temperatures   resistances, for the circuit too
 //	Charge   once per bridge voltage   charges that the switches block
 //	Freeze   once per circuit solution   currents; after it temperature is the only variable
 //	Powers   once per thermal step   power and slope of every part
-//	Fill     once at the end   the table of items, at the temperatures of the last Powers
+//	Fill     once at the end   the table of items, at the temperatures of the last Warm
 //
 // The stage is read at every step, so a caller may change its numbers between
 // points. Nothing allocates.
@@ -26,7 +27,8 @@ type Model struct {
 	phases   float64
 	point    pointRates
 	currents currents
-	warm     elements
+	warm     Elements
+	slopes   Elements // of them over the part's own temperature [1/K]
 }
 
 // Operation is what losses depend on besides the parts' temperatures.
@@ -62,26 +64,31 @@ type pointRates struct {
 	recovery     float64 // [W]
 	gateDrive    float64 // [W] of all phases
 	quiescent    float64 // [W]
-	rhs, rls     float64 // [ohm] at 25 degC and the drive voltage
+
+	// at 25 °C, the drive voltage and the age
+	highSide, lowSide float64                    // [ohm]
+	output, input     [switched.MaxBanks]float64 // [ohm] of the banks in series
 }
 
-// Begin computes what does not depend on a voltage. It must be called again when a
-// number of the stage has changed.
-func (m *Model) Begin() {
+// Begin computes what depends neither on a voltage nor on temperature. It must be
+// called again when a number of the stage has changed, or the age [1].
+func (m *Model) Begin(ageRatio float64) {
 	s, p := m.st, &m.point
 	p.f, p.td = s.SwitchingFrequency, s.Controller.DeadTime
-	p.rhs = s.HighSide.OnResistanceDriven(s.Controller.Drive)
+	p.highSide = s.HighSide.OnResistanceDriven(s.Controller.Drive)
 	if s.Rectifier != stage.DiodeRectified {
-		p.rls = s.LowSide.OnResistanceDriven(s.Controller.Drive)
+		p.lowSide = s.LowSide.OnResistanceDriven(s.Controller.Drive)
+	}
+	for k := range s.OutputCapacitors {
+		p.output[k] = s.OutputCapacitors[k].ESRAged(ageRatio)
+	}
+	for k := range s.InputCapacitors {
+		p.input[k] = s.InputCapacitors[k].ESRAged(ageRatio)
 	}
 	if core := &s.Inductor.Core; core.Present {
 		m.triangle.At(core.K, p.f)
 	}
 }
-
-// OnResistances returns the switches' resistances at 25 °C and the drive voltage
-// [ohm], after Begin; that of an absent low side is without meaning.
-func (m *Model) OnResistances() (high, low float64) { return m.point.rhs, m.point.rls }
 
 // Charge computes charges and rates at the bridge voltage and output voltage [V]. It
 // must be called again when one of them has changed, and after Begin.
@@ -122,66 +129,72 @@ func driveSource(c *parts.Controller, bridge, output float64) float64 {
 	return c.Drive
 }
 
-// elements are the resistances and multipliers of the parts at their temperatures.
-type elements struct {
-	highSide, lowSide  float64                    // [ohm]
-	threshold, leakage float64                    // [V], [A] of the diode
-	winding            float64                    // [ohm]
-	core               float64                    // [1]
-	output, input      [switched.MaxBanks]float64 // [1] of the series resistances
+// Elements are what currents through the parts meet at the parts' temperatures.
+type Elements struct {
+	HighSide, LowSide float64                    // [ohm]
+	Threshold         float64                    // [V] of the diode
+	Leakage           float64                    // [A] of the diode
+	Winding           float64                    // [ohm]
+	Core              float64                    // [1] of the core loss
+	Output, Input     [switched.MaxBanks]float64 // [ohm] in series with each bank
+}
+
+// Warm reads every element at its part's temperature [degC], after Begin. Entries of
+// absent parts are left alone. The elements are the model's own.
+func (m *Model) Warm(degC *thermal.Vector) *Elements {
+	s, p, y, dy := m.st, &m.point, &m.warm, &m.slopes
+	hot, rise := s.HighSide.OnMultiplierAt(degC[HighSide])
+	y.HighSide, dy.HighSide = p.highSide*hot, p.highSide*rise
+	if s.Rectifier == stage.DiodeRectified {
+		y.Threshold, dy.Threshold = s.Diode.ThresholdAt(degC[Diode])
+		y.Leakage, dy.Leakage = s.Diode.LeakageAt(degC[Diode])
+	} else {
+		hot, rise = s.LowSide.OnMultiplierAt(degC[LowSide])
+		y.LowSide, dy.LowSide = p.lowSide*hot, p.lowSide*rise
+	}
+	y.Winding, dy.Winding = s.Inductor.DCResistanceAt(degC[Inductor])
+	if s.Inductor.Core.Present {
+		y.Core, dy.Core = s.Inductor.Core.CoreMultiplierAt(degC[Inductor])
+	}
+	for k := range s.OutputCapacitors {
+		hot, rise = s.OutputCapacitors[k].ESRMultiplierAt(degC[OutputCapacitor+Part(k)])
+		y.Output[k], dy.Output[k] = p.output[k]*hot, p.output[k]*rise
+	}
+	for k := range s.InputCapacitors {
+		hot, rise = s.InputCapacitors[k].ESRMultiplierAt(degC[InputCapacitor+Part(k)])
+		y.Input[k], dy.Input[k] = p.input[k]*hot, p.input[k]*rise
+	}
+	return y
 }
 
 // Powers computes the power [W] lost in every part and its slope [W/K] over the
-// part's own temperature, at the frozen currents. Entries of absent parts are
-// left alone; Part is the index. A capacitor's entry is that of its whole bank.
-func (m *Model) Powers(degC, power, slope *thermal.Vector) {
-	s, c, w := m.st, &m.currents, &m.warm
-	y, dy := s.HighSide.OnMultiplierAt(degC[HighSide])
-	w.highSide = m.point.rhs * y
-	power[HighSide] = Resistive(w.highSide, c.highSide) + c.highSideFixed
-	slope[HighSide] = m.point.rhs * dy * c.highSide
-
+// part's own temperature, at the frozen currents and the temperatures of the last
+// Warm. Entries of absent parts are left alone; Part is the index. A capacitor's entry
+// is that of its whole bank.
+func (m *Model) Powers(power, slope *thermal.Vector) {
+	s, c, y, dy := m.st, &m.currents, &m.warm, &m.slopes
+	power[HighSide] = Resistive(y.HighSide, c.highSide) + c.highSideFixed
+	slope[HighSide] = dy.HighSide * c.highSide
 	if s.Rectifier == stage.DiodeRectified {
-		m.diodePower(degC[Diode], power, slope)
+		power[Diode] = DiodeConduction(y.Threshold, s.Diode.Slope, c.rectifierMean, c.rectifier) + LeakageLoss(c.duty, m.point.vin, y.Leakage)
+		slope[Diode] = dy.Threshold*c.rectifierMean + LeakageLoss(c.duty, m.point.vin, dy.Leakage)
 	} else {
-		y, dy = s.LowSide.OnMultiplierAt(degC[LowSide])
-		w.lowSide = m.point.rls * y
-		power[LowSide] = Resistive(w.lowSide, c.channel) + c.deadLow
-		slope[LowSide] = m.point.rls * dy * c.channel
+		power[LowSide] = Resistive(y.LowSide, c.channel) + c.deadLow
+		slope[LowSide] = dy.LowSide * c.channel
 	}
-
-	r, dr := s.Inductor.DCResistanceAt(degC[Inductor])
-	w.winding = r
-	power[Inductor] = Resistive(r, c.winding)
-	slope[Inductor] = dr * c.winding
+	power[Inductor] = Resistive(y.Winding, c.winding)
+	slope[Inductor] = dy.Winding * c.winding
 	if s.Inductor.Core.Present {
-		k, dk := s.Inductor.Core.CoreMultiplierAt(degC[Inductor])
-		w.core = k
-		power[Inductor] += k * c.core
-		slope[Inductor] += dk * c.core
+		power[Inductor] += y.Core * c.core
+		slope[Inductor] += dy.Core * c.core
 	}
-
 	power[Controller], slope[Controller] = c.controller, 0
 	for k := range s.OutputCapacitors {
 		i := OutputCapacitor + Part(k)
-		y, dy = s.OutputCapacitors[k].ESRMultiplierAt(degC[i])
-		w.output[k] = y
-		power[i], slope[i] = c.output[k]*y, c.output[k]*dy
+		power[i], slope[i] = Resistive(y.Output[k], c.output[k]), dy.Output[k]*c.output[k]
 	}
 	for k := range s.InputCapacitors {
 		i := InputCapacitor + Part(k)
-		y, dy = s.InputCapacitors[k].ESRMultiplierAt(degC[i])
-		w.input[k] = y
-		power[i], slope[i] = c.input[k]*y, c.input[k]*dy
+		power[i], slope[i] = Resistive(y.Input[k], c.input[k]), dy.Input[k]*c.input[k]
 	}
-}
-
-func (m *Model) diodePower(degC float64, power, slope *thermal.Vector) {
-	d, c, w := &m.st.Diode, &m.currents, &m.warm
-	vt, dvt := d.ThresholdAt(degC)
-	ir, dir := d.LeakageAt(degC)
-	w.threshold, w.leakage = vt, ir
-	blocked := c.duty * m.point.vin
-	power[Diode] = DiodeConduction(vt, d.Slope, c.rectifierMean, c.rectifier) + ir*blocked
-	slope[Diode] = dvt*c.rectifierMean + dir*blocked
 }

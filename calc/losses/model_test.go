@@ -85,7 +85,7 @@ func operation(sol *switched.Solution) *Operation {
 func frozen(s *stage.Stage, op *Operation) (*Model, *thermal.Vector) {
 	m := &Model{}
 	m.Prepare(s)
-	m.Begin()
+	m.Begin(op.AgeRatio)
 	m.Charge(op.Bridge, op.Output)
 	m.Freeze(op)
 	degC := &thermal.Vector{}
@@ -101,7 +101,8 @@ func fillAt(m *Model, op *Operation, degC *thermal.Vector) (*Sheet, float64) {
 	s := &Sheet{}
 	calctest.Poison(s)
 	var power, slope thermal.Vector
-	m.Powers(degC, &power, &slope)
+	m.Warm(degC)
+	m.Powers(&power, &slope)
 	inside := m.Fill(op, s)
 	return s, inside
 }
@@ -204,7 +205,7 @@ func TestDiscontinuousConduction(t *testing.T) {
 			swing := 6.6e-6 * 2 / (9 * 2.1e-5)
 			s := magnetics.Steinmetz{K: 1.9, Alpha: 1.4, Beta: 2.4}
 			want := s.PiecewiseDensity([]float64{0, 0.1 * 2e-6, 0.4 * 2e-6, 2e-6}, []float64{0, swing, 0, 0})
-			m.warm.core = 1 // as at its reference temperature
+			m.warm.Core = 1 // as at its reference temperature
 			density, got := m.Core()
 			calctest.Close(t, "flux swing", got, swing, 1e-12)
 			calctest.Close(t, "core of three pieces", density, want, 1e-12)
@@ -303,7 +304,8 @@ func TestPowersAgreeWithItems(t *testing.T) {
 			t.Run(topology+"/"+mode, func(t *testing.T) {
 				m, degC := frozen(s, op)
 				var power, slope thermal.Vector
-				m.Powers(degC, &power, &slope)
+				m.Warm(degC)
+				m.Powers(&power, &slope)
 				sheet, _ := fill(m, degC)
 				for p := range PartCount {
 					if p == Board {
@@ -314,8 +316,10 @@ func TestPowersAgreeWithItems(t *testing.T) {
 					up, down := *degC, *degC
 					up[p], down[p] = degC[p]+h, degC[p]-h
 					var a, b, unused thermal.Vector
-					m.Powers(&down, &a, &unused)
-					m.Powers(&up, &b, &unused)
+					m.Warm(&down)
+					m.Powers(&a, &unused)
+					m.Warm(&up)
+					m.Powers(&b, &unused)
 					calctest.Within(t, p.String()+" slope", slope[p], (b[p]-a[p])/(2*h), 1e-9)
 				}
 			})
@@ -398,7 +402,8 @@ func TestLossesAreNeverNegative(t *testing.T) {
 		}
 		sheet := &Sheet{}
 		var power, slope thermal.Vector
-		m.Powers(degC, &power, &slope)
+		m.Warm(degC)
+		m.Powers(&power, &slope)
 		m.Fill(op, sheet)
 		for _, it := range sheet.Items[:sheet.N] {
 			if !(it.Power >= 0) || math.IsInf(it.Power, 0) {
@@ -414,10 +419,11 @@ func TestModelDoesNotAllocate(t *testing.T) {
 	var power, slope thermal.Vector
 	var sheet Sheet
 	n := testing.AllocsPerRun(100, func() {
-		m.Begin()
+		m.Begin(operation(nil).AgeRatio)
 		m.Charge(24, 5)
 		m.Freeze(op)
-		m.Powers(degC, &power, &slope)
+		m.Warm(degC)
+		m.Powers(&power, &slope)
 		m.Fill(op, &sheet)
 	})
 	if n != 0 {
@@ -432,7 +438,7 @@ func BenchmarkModel(b *testing.B) {
 	var sheet Sheet
 	b.Run("begin", func(b *testing.B) {
 		for b.Loop() {
-			m.Begin()
+			m.Begin(operation(nil).AgeRatio)
 			m.Charge(24, 5)
 		}
 	})
@@ -443,7 +449,8 @@ func BenchmarkModel(b *testing.B) {
 	})
 	b.Run("powers", func(b *testing.B) {
 		for b.Loop() {
-			m.Powers(degC, &power, &slope)
+			m.Warm(degC)
+			m.Powers(&power, &slope)
 		}
 	})
 	b.Run("fill", func(b *testing.B) {
