@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"runtime"
 	"runtime/debug"
 	"runtime/metrics"
 	"time"
@@ -23,7 +24,7 @@ func tidy(ctx context.Context) {
 	}
 	look := time.NewTicker(idleLook)
 	defer look.Stop()
-	debug.FreeOSMemory()
+	giveBack()
 	last, clean := allocated(), true
 	for {
 		select {
@@ -34,8 +35,14 @@ func tidy(ctx context.Context) {
 		now := allocated()
 		idle := now-last < idleGrows
 		if idle && !clean {
-			debug.FreeOSMemory()
+			giveBack()
 		}
 		last, clean = now, idle
 	}
+}
+
+// giveBack collects twice: what a pool holds is garbage at the second collection only.
+func giveBack() {
+	runtime.GC()
+	debug.FreeOSMemory()
 }

@@ -39,20 +39,44 @@ type running struct {
 	traces  *tracing
 }
 
-// start serves the listener, and profiles where they were asked for. The channel
-// tells when serving has failed.
-func (r *running) start(ctx context.Context, listener net.Listener, door *door) <-chan error {
+// listeners are what the server takes connections from.
+type listeners struct {
+	requests net.Listener
+	profiles net.Listener // nil: none were asked for
+}
+
+func (c *serveConfig) listen(ctx context.Context) (l listeners, err error) {
+	var config net.ListenConfig
+	if l.requests, err = config.Listen(ctx, "tcp", c.address); err != nil || c.admin == "" {
+		return l, err
+	}
+	if l.profiles, err = config.Listen(ctx, "tcp", c.admin); err != nil {
+		l.close()
+	}
+	return l, err
+}
+
+func (l listeners) close() {
+	_ = l.requests.Close() // nothing is lost, or closed already
+	if l.profiles != nil {
+		_ = l.profiles.Close()
+	}
+}
+
+// start serves requests, and profiles where they were asked for. The channel tells when
+// serving has failed.
+func (r *running) start(ctx context.Context, l listeners, door *door) <-chan error {
 	failed := make(chan error, 2)
 	go func() {
 		if door.tls != nil {
-			failed <- r.server.ServeTLS(listener, "", "")
+			failed <- r.server.ServeTLS(l.requests, "", "")
 			return
 		}
-		failed <- r.server.Serve(listener)
+		failed <- r.server.Serve(l.requests)
 	}()
-	if r.c.admin != "" {
+	if l.profiles != nil {
 		go func() {
-			if err := profiles(ctx, r.c.admin); ctx.Err() == nil {
+			if err := profiles(ctx, l.profiles); ctx.Err() == nil {
 				failed <- err
 			}
 		}()
@@ -100,17 +124,13 @@ func (c *serveConfig) checkAdmin() error {
 }
 
 // profiles serves the profiles of the running program.
-func profiles(ctx context.Context, address string) error {
+func profiles(ctx context.Context, listener net.Listener) error {
 	mux := http.NewServeMux()
 	mux.HandleFunc("/debug/pprof/", pprof.Index)
 	mux.HandleFunc("/debug/pprof/cmdline", pprof.Cmdline)
 	mux.HandleFunc("/debug/pprof/profile", pprof.Profile)
 	mux.HandleFunc("/debug/pprof/symbol", pprof.Symbol)
 	mux.HandleFunc("/debug/pprof/trace", pprof.Trace)
-	listener, err := (&net.ListenConfig{}).Listen(ctx, "tcp", address)
-	if err != nil {
-		return err
-	}
 	server := &http.Server{Handler: mux, ReadHeaderTimeout: readHeaderTimeout}
 	context.AfterFunc(ctx, func() { _ = server.Close() }) // it answers nothing that must end in order
 	return server.Serve(listener)

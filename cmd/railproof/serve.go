@@ -5,7 +5,6 @@ import (
 	"flag"
 	"fmt"
 	"log/slog"
-	"net"
 	"os"
 	"os/signal"
 	"runtime"
@@ -98,17 +97,17 @@ func (c *serveConfig) serve(ctx context.Context, t terminal) int {
 	if door.loud != "" {
 		log.Error(door.loud)
 	}
-	listener, err := (&net.ListenConfig{}).Listen(ctx, "tcp", c.address)
+	l, err := c.listen(ctx)
 	if err != nil {
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
 		return exitBadInput
 	}
-	return c.run(ctx, t, log, door, listener)
+	return c.run(ctx, t, log, door, l)
 }
 
 // run builds the server and serves until the context ends.
-func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, door *door, listener net.Listener) int {
-	defer listener.Close()
+func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, door *door, l listeners) int {
+	defer l.close()
 	s := service.New(service.Options{ContractVersion: openapi.Load().Version(), Workers: c.workers, Jobs: c.storage.workers, QueueLength: c.queue})
 	oneThreadMore(t.env)
 	traces, err := newTracing(ctx, t.env)
@@ -127,8 +126,8 @@ func (c *serveConfig) run(ctx context.Context, t terminal, log *slog.Logger, doo
 	r := &running{c, log, handler, board, newServer(c, traces.requests(handler), door, log), traces}
 	go tidy(ctx)
 	rotating(ctx, door, log)
-	failed := r.start(ctx, listener, door)
-	greet(t, listener.Addr().String(), door, &c.storage)
+	failed := r.start(ctx, l, door)
+	greet(t, l, door, &c.storage)
 	select {
 	case err := <-failed:
 		fmt.Fprintf(t.err, "railproof serve: %v\n", err)
@@ -166,11 +165,15 @@ func rotating(ctx context.Context, door *door, log *slog.Logger) {
 }
 
 // greet prints where the server is and one request that can be pasted.
-func greet(t terminal, address string, door *door, storage *storageConfig) {
+func greet(t terminal, l listeners, door *door, storage *storageConfig) {
 	scheme := "http"
 	if door.tls != nil {
 		scheme = "https"
 	}
-	base := scheme + "://" + address
-	fmt.Fprintf(t.out, "railproof %s\n  serves     %s\n  documents  %s/docs\n  jobs in    %s\n  try        curl -s %s/v1/losses -H 'Content-Type: application/json' --data-binary @openapi/examples/buoy-5v0/losses.json\n", service.Version, base, base, storage, base)
+	base := scheme + "://" + l.requests.Addr().String()
+	profiles := ""
+	if l.profiles != nil {
+		profiles = fmt.Sprintf("  profiles   http://%s/debug/pprof/\n", l.profiles.Addr())
+	}
+	fmt.Fprintf(t.out, "railproof %s\n  serves     %s\n  documents  %s/docs\n  jobs in    %s\n%s  try        curl -s %s/v1/losses -H 'Content-Type: application/json' --data-binary @openapi/examples/buoy-5v0/losses.json\n", service.Version, base, base, storage, profiles, base)
 }

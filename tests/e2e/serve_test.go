@@ -18,6 +18,7 @@ import (
 // served is a running server.
 type served struct {
 	base    string
+	admin   string // where the profiles are; "" where none were asked for
 	request string // the command line that it offers
 	process *exec.Cmd
 	log     *journal
@@ -62,6 +63,8 @@ func start(t *testing.T, args []string, environment ...string) *served {
 		switch value = strings.TrimSpace(value); name {
 		case "serves":
 			s.base = value
+		case "profiles":
+			s.admin = value
 		case "try":
 			s.request = value
 		}
