@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"runtime/debug"
 
 	"railproof/api/wire"
 	"railproof/service"
@@ -18,8 +19,16 @@ type Executor struct{ x *Exchange }
 // Executor returns the executor of the exchange's operations.
 func (x *Exchange) Executor() Executor { return Executor{x} }
 
-// Execute implements jobs.Executor.
-func (e Executor) Execute(ctx context.Context, operation string, request []byte, m *service.Meter) jobs.Outcome {
+// panicked is a panic where nobody above would answer it.
+func panicked(r any) error { return fmt.Errorf("exchange: panic: %v\n%s", r, debug.Stack()) }
+
+// Execute implements jobs.Executor. A panic ends the job, not the process.
+func (e Executor) Execute(ctx context.Context, operation string, request []byte, m *service.Meter) (o jobs.Outcome) {
+	defer func() {
+		if r := recover(); r != nil {
+			o = outcome(nil, problemOf(panicked(r)))
+		}
+	}()
 	if !e.x.Computes(operation) {
 		return outcome(nil, problemOf(fmt.Errorf("exchange: a job of an operation %q that does not exist", operation)))
 	}
@@ -78,13 +87,18 @@ func (e Executor) Parts(operation string, request []byte) (parts, evaluations in
 }
 
 // Part implements jobs.Splitter.
-func (e Executor) Part(ctx context.Context, operation string, request []byte, part, parts int, m *service.Meter) ([]byte, error) {
+func (e Executor) Part(ctx context.Context, operation string, request []byte, part, parts int, m *service.Meter) (counts []byte, err error) {
+	defer func() {
+		if r := recover(); r != nil {
+			err = panicked(r)
+		}
+	}()
 	_, p, _, err := e.plan(operation, request)
 	if err != nil {
 		return nil, err
 	}
 	for {
-		counts, err := e.x.service.CornersPart(service.WithMeter(ctx, m), p, part, parts)
+		counts, err = e.x.service.CornersPart(service.WithMeter(ctx, m), p, part, parts)
 		if !errors.Is(err, service.ErrBusy) {
 			return counts, err
 		}
@@ -92,7 +106,12 @@ func (e Executor) Part(ctx context.Context, operation string, request []byte, pa
 }
 
 // Merge implements jobs.Splitter.
-func (e Executor) Merge(ctx context.Context, operation string, request []byte, parts [][]byte) jobs.Outcome {
+func (e Executor) Merge(ctx context.Context, operation string, request []byte, parts [][]byte) (o jobs.Outcome) {
+	defer func() {
+		if r := recover(); r != nil {
+			o = outcome(nil, problemOf(panicked(r)))
+		}
+	}()
 	w, p, r, err := e.plan(operation, request)
 	if err != nil {
 		return outcome(nil, problemOf(err))

@@ -1,9 +1,11 @@
 package exchange
 
 import (
+	"context"
 	"encoding/json"
 	"io/fs"
 	"testing"
+	"time"
 
 	"github.com/stretchr/testify/require"
 
@@ -19,6 +21,42 @@ func TestEveryListedFormIsGiven(t *testing.T) {
 	x := New(openapi.Load(), service.New(service.Options{ContractVersion: openapi.Load().Version()}))
 	for _, op := range x.contract.Operations() {
 		require.Equal(t, op.MediaTypes, x.Forms(op), op.ID)
+	}
+}
+
+// A fault of ours is the end of one job: the process and its other jobs go on.
+func TestAPanicEndsTheJob(t *testing.T) {
+	text, err := fs.ReadFile(openapi.Examples(), "buoy-3v3/corners.json")
+	require.NoError(t, err)
+	var broken Executor
+	for name, o := range map[string]jobs.Outcome{
+		"whole":  broken.Execute(t.Context(), "corners", text, new(service.Meter)),
+		"merged": broken.Merge(t.Context(), "corners", text, nil),
+	} {
+		require.Contains(t, string(o.Problem), string(Internal), name)
+		require.NotContains(t, string(o.Problem), "nil pointer", name)
+		require.ErrorContains(t, o.Cause, "nil pointer", name)
+		require.False(t, o.Busy, name)
+	}
+	_, err = broken.Part(t.Context(), "corners", text, 0, 2, new(service.Meter))
+	require.ErrorContains(t, err, "nil pointer")
+}
+
+// A job of which the time is over does not begin, and says why.
+func TestAJobWithoutTimeDoesNotBegin(t *testing.T) {
+	e := New(openapi.Load(), service.New(service.Options{ContractVersion: openapi.Load().Version()})).Executor()
+	over, cancel := context.WithTimeout(t.Context(), 0)
+	defer cancel()
+	for operation, example := range map[string]string{
+		"sizing": "sizing", "corners": "corners", "substitutions": "substitutions", "bomChecks": "bom-checks", "reports": "reports",
+	} {
+		require.True(t, e.x.Computes(operation), operation)
+		text, err := fs.ReadFile(openapi.Examples(), "buoy-3v3/"+example+".json")
+		require.NoError(t, err)
+		began := time.Now()
+		o := e.Execute(over, operation, text, new(service.Meter))
+		require.Contains(t, string(o.Problem), string(Deadline), operation)
+		require.Less(t, time.Since(began), time.Second, operation)
 	}
 }
 

@@ -7,7 +7,6 @@ import (
 	"fmt"
 	"maps"
 	"math"
-	"runtime/debug"
 	"slices"
 	"strconv"
 
@@ -86,7 +85,7 @@ func (b *binder) bind(w *wire.ReportsRequest) error {
 	go func() {
 		defer func() {
 			if failed := recover(); failed != nil { // nobody above this goroutine would
-				done <- fmt.Errorf("exchange: panic in a report: %v\n%s", failed, debug.Stack())
+				done <- panicked(failed)
 			}
 		}()
 		done <- proofs.proofs(w)

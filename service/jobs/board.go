@@ -24,8 +24,9 @@ type Board struct {
 
 	mutex   sync.Mutex
 	running map[string]*run
-	changed map[string]chan struct{} // closed when a job changes here
+	watched map[string]*change // jobs that somebody waits for
 
+	seen    atomic.Int64           // [ms] the database's clock at the last sweep
 	trouble atomic.Pointer[string] // why the database could not be used the last time; nil: it could
 	counts  Counts
 }
@@ -36,7 +37,7 @@ var errStopping = errors.New("jobs: the process is ending")
 // Open opens the database, brings its schema up to date and begins to work.
 func Open(ctx context.Context, o Options) (*Board, error) {
 	o.fill()
-	b := &Board{o: o, process: newID("process_", time.Now()), running: map[string]*run{}, changed: map[string]chan struct{}{}}
+	b := &Board{o: o, process: newID("process_", time.Now()), running: map[string]*run{}, watched: map[string]*change{}}
 	b.ctx, b.halt = context.WithCancelCause(context.WithoutCancel(ctx))
 	var err error
 	if o.DSN != "" {

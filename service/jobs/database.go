@@ -24,6 +24,7 @@ type database struct {
 // queue hands the identifiers of jobs to whichever process has a free worker.
 type queue interface {
 	add(ctx context.Context, m message) error
+	empty(ctx context.Context) (bool, error) // no message waits for a worker
 	start(ctx context.Context) error
 	stop(ctx context.Context) error
 }

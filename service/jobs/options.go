@@ -44,9 +44,12 @@ const (
 	beatEvery   = 500 * time.Millisecond // a running job says that it is alive, and how far it is
 	beatLost    = 10 * time.Second       // without a beat for so long, another process takes it over
 	sweepEvery  = 2 * time.Second        // looking for such jobs
-	queueLost   = 5 * time.Minute        // a waiting job is queued again
+	sweepMissed = 5 * time.Second        // between two sweeps: this process slept, the database was away, or its clock jumped
+	messageLost = 10 * time.Second       // after which a job waits in vain that an empty queue had
+	queueLost   = 5 * time.Minute        // and one that any queue had
 	mostDeaths  = 3                      // processes that may die over one job
 	keepTrying  = 10 * time.Minute       // to store a result while the database cannot be used
 	tidyEvery   = time.Minute
+	lookTimeout = 5 * time.Second  // for one look at a running job; it is looked at again
 	callTimeout = 10 * time.Second // for one call of the database that no caller waits for
 )

@@ -141,24 +141,28 @@ func (b *Board) watchPart(ctx context.Context, stop context.CancelCauseFunc, r *
 	ended := make(chan struct{})
 	b.idle.Go(func() {
 		defer close(ended)
-		look := time.NewTicker(partWatch)
-		defer look.Stop()
+		tick := time.NewTicker(partWatch)
+		defer tick.Stop()
 		for {
 			select {
 			case <-ctx.Done():
 				return
-			case <-look.C:
+			case <-tick.C:
 			}
 			done, _ := m.Progress()
 			var state State
 			var all int64
-			err := b.db.row(ctx, `UPDATE railproof_parts SET beat = NOW(), done = CASE WHEN body IS NULL THEN $3 ELSE done END WHERE job = $1 AND part = $2
+			look, cancel := context.WithTimeout(ctx, lookTimeout)
+			err := b.db.row(look, `UPDATE railproof_parts SET beat = NOW(), done = CASE WHEN body IS NULL THEN $3 ELSE done END WHERE job = $1 AND part = $2
 				RETURNING (SELECT state FROM railproof_jobs WHERE id = $1), (SELECT COALESCE(SUM(done), 0) FROM railproof_parts WHERE job = $1)`, r.id, part, done).Scan(&state, &all)
+			cancel()
 			if ctx.Err() == nil && (errors.Is(err, sql.ErrNoRows) || err == nil && state != Running) {
 				stop(errCancelled)
 				return
 			}
-			r.inParts.Store(all)
+			if err == nil {
+				r.inParts.Store(all)
+			}
 		}
 	})
 	return ended

@@ -3,6 +3,7 @@
 package jobs
 
 import (
+	"context"
 	"fmt"
 	"sync/atomic"
 	"testing"
@@ -10,6 +11,7 @@ import (
 
 	"github.com/stretchr/testify/require"
 
+	"railproof/service"
 	"railproof/tests/cluster"
 )
 
@@ -60,8 +62,9 @@ func TestPostgreSQL(t *testing.T) {
 	t.Run("parts are shared and merge to the same bytes", func(t *testing.T) {
 		p := fresh(c)
 		f, g := new(fakeExecutor), new(fakeExecutor)
-		a, b := p.open(t, f, nil), p.open(t, g, nil)
-		w := work{Steps: 201, Step: 5 * time.Millisecond, Parts: 20, Name: "a"}
+		a := p.open(t, f, func(o *Options) { o.Workers = 1 }) // which is busy with the job
+		b := p.open(t, g, nil)
+		w := work{Steps: 201, Step: 15 * time.Millisecond, Parts: 20, Name: "a"} // alone it takes 3 s; a process that is called by nobody looks every second
 		j := await(t, a, submit(t, a, w).ID, Done)
 		require.EqualValues(t, 201, j.Done)
 		got, err := b.Result(t.Context(), "res_a")
@@ -99,6 +102,46 @@ func TestPostgreSQL(t *testing.T) {
 		t.Logf("stored %v after the database was back", time.Since(back))
 		require.EqualValues(t, 1, f.executions.Load(), "what was computed was not computed again")
 		await(t, b, submit(t, b, work{Steps: 1, Name: "b"}).ID, Done)
+	})
+
+	t.Run("a jump of the clock takes nothing from another process", func(t *testing.T) {
+		for _, jump := range []string{"+ 86400000", "- 86400000"} {
+			p := fresh(c)
+			f, g := new(fakeExecutor), new(fakeExecutor)
+			worker := p.open(t, f, nil)
+			j := submit(t, worker, work{Steps: 100, Step: 20 * time.Millisecond, Name: "a"})
+			awaitRunning(t, worker, j.ID)
+			other := p.open(t, g, nil)
+			time.Sleep(sweepEvery / 4) // its first sweep is over, its next one not near
+			clock := `(` + *other.db.clock.Load() + ` ` + jump + `)`
+			other.db.shift(clock)
+			require.NoError(t, other.sweepOnce(t.Context()), "before the next beat")
+			worker.db.shift(clock)
+			await(t, worker, j.ID, Done)
+			require.EqualValues(t, 1, f.executions.Load())
+			require.Zero(t, g.executions.Load())
+			require.Zero(t, other.counts.TakenOver.Load())
+		}
+	})
+
+	t.Run("parts that are not done in time fail with that problem", func(t *testing.T) {
+		b := fresh(c).open(t, new(fakeExecutor), func(o *Options) { o.Deadline = 300 * time.Millisecond })
+		j := await(t, b, submit(t, b, work{Steps: 1000, Step: 10 * time.Millisecond, Parts: 4, Name: "a"}).ID, Failed)
+		require.JSONEq(t, `{"title":"stopped"}`, string(j.Problem))
+	})
+
+	t.Run("a look that fails takes no progress away", func(t *testing.T) {
+		b := fresh(c).open(t, new(fakeExecutor), nil)
+		_, err := b.db.exec(t.Context(), `ALTER TABLE railproof_parts RENAME TO gone`)
+		require.NoError(t, err)
+		r := &run{id: "job_a"}
+		r.inParts.Store(5)
+		ctx, stop := context.WithCancelCause(t.Context())
+		ended := b.watchPart(ctx, stop, r, 0, new(service.Meter))
+		time.Sleep(3 * partWatch)
+		stop(nil)
+		<-ended
+		require.EqualValues(t, 5, r.inParts.Load())
 	})
 
 	t.Run("a process that stops beating loses its job to another", func(t *testing.T) {

@@ -95,6 +95,14 @@ func (q *riverQueue[Tx]) add(ctx context.Context, m message) error {
 	return err
 }
 
+func (q *riverQueue[Tx]) empty(ctx context.Context) (bool, error) {
+	list, err := q.client.JobList(ctx, river.NewJobListParams().Queues(q.name).States("available").First(1))
+	if err != nil {
+		return false, err
+	}
+	return len(list.Jobs) == 0, nil
+}
+
 func (q *riverQueue[Tx]) start(ctx context.Context) error { return q.client.Start(ctx) }
 
 func (q *riverQueue[Tx]) stop(ctx context.Context) error { return q.client.Stop(ctx) }

@@ -40,6 +40,7 @@ func (b *Board) deal(_ context.Context, m message) {
 	if !b.claim(ctx, r) {
 		return
 	}
+	defer b.forget(r)
 	b.o.Log.Info("job taken", "job", r.id, "operation", r.operation)
 	began := time.Now()
 	beating := b.beat(ctx, r)
@@ -48,6 +49,8 @@ func (b *Board) deal(_ context.Context, m message) {
 	stop(nil)
 	<-beating
 	switch {
+	case outcome.Answer.Body != nil: // it is right, whatever has happened meanwhile
+		b.finish(r, outcome, time.Since(began))
 	case errors.Is(cause, errStopping):
 		b.giveBack(r)
 	case errors.Is(cause, errCancelled):
@@ -55,7 +58,6 @@ func (b *Board) deal(_ context.Context, m message) {
 	default:
 		b.finish(r, outcome, time.Since(began))
 	}
-	b.forget(r)
 }
 
 // claim takes the job for this process if nobody works on it.
@@ -69,9 +71,8 @@ func (b *Board) claim(ctx context.Context, r *run) bool {
 	b.running[r.id] = r
 	b.mutex.Unlock()
 	err := b.db.row(ctx, `UPDATE railproof_jobs SET state = 'running', owner = $2, beat = NOW(), sequence = sequence + 1, claims = claims + 1,
-			deaths = deaths + CASE WHEN state = 'running' THEN 1 ELSE 0 END, started = CASE WHEN started = 0 THEN NOW() ELSE started END
-		WHERE id = $1 AND engine = $3 AND (state = 'waiting' OR state = 'running' AND `+stale+`)
-		RETURNING operation, request`, r.id, b.process, b.o.Engine).Scan(&r.operation, &r.request)
+			started = CASE WHEN started = 0 THEN NOW() ELSE started END
+		WHERE id = $1 AND engine = $3 AND state = 'waiting' RETURNING operation, request`, r.id, b.process, b.o.Engine).Scan(&r.operation, &r.request)
 	if err != nil {
 		if !errors.Is(err, sql.ErrNoRows) {
 			_ = b.failed(ctx, "taking a job", err) // the sweep queues it again
@@ -84,9 +85,6 @@ func (b *Board) claim(ctx context.Context, r *run) bool {
 	b.tell(r.id)
 	return true
 }
-
-// stale holds for a beat that is too old, or from a clock that was ahead.
-const stale = `(beat < NOW() - 10000 OR beat > NOW() + 10000)`
 
 func (b *Board) forget(r *run) {
 	b.mutex.Lock()
@@ -135,6 +133,8 @@ func (b *Board) beat(ctx context.Context, r *run) <-chan struct{} {
 // alive reports whether the job is still ours to do. While the database cannot be
 // asked, it is.
 func (b *Board) alive(ctx context.Context, r *run, beat bool) bool {
+	ctx, cancel := context.WithTimeout(ctx, lookTimeout)
+	defer cancel()
 	var state State
 	var err error
 	if beat {
@@ -166,7 +166,7 @@ func (b *Board) execute(ctx context.Context, r *run) Outcome {
 		}
 		select {
 		case <-ctx.Done():
-			return o
+			return b.o.Executor.Execute(ctx, r.operation, r.request, r.meter) // which says why it does not begin
 		case <-time.After(busyPause):
 		}
 	}
@@ -186,7 +186,12 @@ func (b *Board) whole(ctx context.Context, r *run) Outcome {
 func (b *Board) finish(r *run, o Outcome, took time.Duration) {
 	until := time.Now().Add(keepTrying)
 	for {
-		err := b.store(r, o)
+		kept, err := b.store(r, o)
+		if err == nil && !kept {
+			b.works()
+			b.o.Log.Info("job stopped", "job", r.id, "cause", errCancelled)
+			return
+		}
 		if err == nil {
 			break
 		}
@@ -213,25 +218,42 @@ func (b *Board) finish(r *run, o Outcome, took time.Duration) {
 	b.o.Log.Info("job ended", "job", r.id, "operation", r.operation, "state", state, "result_id", o.ResultID, "evaluations", done, "took", took)
 }
 
-func (b *Board) store(r *run, o Outcome) error {
+// errNotOurs ends the storing of what is no longer wanted.
+var errNotOurs = errors.New("jobs: cancelled, ended or taken over")
+
+// store keeps how a job ended; kept is false where that is not wanted any more. An answer
+// ends the job whoever has it by now: every process would find the same. A problem may be
+// that of this process alone, which slept, say, until its time was over.
+func (b *Board) store(r *run, o Outcome) (kept bool, err error) {
 	ctx, cancel := context.WithTimeout(context.Background(), callTimeout)
 	defer cancel()
 	done, expected := r.progress()
-	return b.db.transaction(ctx, func(tx *sql.Tx) error {
-		state, resultID, problem := Failed, "", o.Problem
-		if o.Answer.Body != nil {
-			state, resultID, problem = Done, o.ResultID, nil
+	state, resultID, problem := Failed, "", o.Problem
+	if o.Answer.Body != nil {
+		state, resultID, problem = Done, o.ResultID, nil
+	}
+	err = b.db.transaction(ctx, func(tx *sql.Tx) error {
+		ended, err := tx.ExecContext(ctx, b.db.say(`UPDATE railproof_jobs SET state = $2, problem = $3, done = $4, expected = $5, sequence = sequence + 1, ended = NOW(),
+			result_id = CASE WHEN $6 = '' THEN result_id ELSE $6 END
+			WHERE id = $1 AND (state = 'running' AND owner = $7 OR state IN ('waiting', 'running') AND $2 = 'done')`), r.id, state, problem, done, expected, resultID, b.process)
+		if err != nil {
+			return err
+		}
+		if n, err := ended.RowsAffected(); err != nil || n == 0 {
+			return errors.Join(err, errNotOurs)
+		}
+		if state == Done {
 			if _, err := tx.ExecContext(ctx, b.db.say(`INSERT INTO railproof_results (id, operation, media, body, size, created) VALUES ($1, $2, $3, $4, $5, NOW()) ON CONFLICT DO NOTHING`), o.ResultID, r.operation, o.Answer.Media, o.Answer.Body, len(o.Answer.Body)); err != nil {
 				return err
 			}
 		}
-		if _, err := tx.ExecContext(ctx, b.db.say(`DELETE FROM railproof_parts WHERE job = $1`), r.id); err != nil {
-			return err
-		}
-		_, err := tx.ExecContext(ctx, b.db.say(`UPDATE railproof_jobs SET state = $2, problem = $3, done = $4, expected = $5, sequence = sequence + 1, ended = NOW(),
-			result_id = CASE WHEN $6 = '' THEN result_id ELSE $6 END WHERE id = $1 AND state = 'running'`), r.id, state, problem, done, expected, resultID)
+		_, err = tx.ExecContext(ctx, b.db.say(`DELETE FROM railproof_parts WHERE job = $1`), r.id)
 		return err
 	})
+	if errors.Is(err, errNotOurs) {
+		return false, nil
+	}
+	return err == nil, err
 }
 
 // giveBack lets another process, or the next one, take the job.

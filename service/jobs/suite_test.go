@@ -49,6 +49,9 @@ func (f *fakeExecutor) steps(ctx context.Context, n int, each time.Duration, m *
 func answerOf(w work) []byte { return fmt.Appendf(nil, `{"name":%q,"steps":%d}`, w.Name, w.Steps) }
 
 func (f *fakeExecutor) Execute(ctx context.Context, _ string, request []byte, m *service.Meter) Outcome {
+	if ctx.Err() != nil {
+		return Outcome{Problem: []byte(`{"title":"stopped"}`)}
+	}
 	if f.busy.Add(-1) >= 0 {
 		return Outcome{Busy: true}
 	}
@@ -154,6 +157,14 @@ func awaitRunning(t *testing.T, b *Board, id string) {
 	}, 10*time.Second, 5*time.Millisecond)
 }
 
+// stored puts a job into the database and no message into the queue.
+func stored(t *testing.T, b *Board, id string, state State, w work) {
+	t.Helper()
+	_, err := b.db.exec(t.Context(), `INSERT INTO railproof_jobs (id, engine, operation, request_key, result_id, request, state, sequence, claims, deaths, owner, beat, queued, done, expected, created, started, ended)
+		VALUES ($1, $2, 'corners', $3, $3, $4, $5, 1, 0, 0, '', 0, NOW(), 0, 0, NOW(), 0, 0)`, id, b.o.Engine, "res_"+w.Name, request(w).Body, string(state))
+	require.NoError(t, err)
+}
+
 // everywhere holds what both databases must do. where gives each test its own.
 func everywhere(t *testing.T, where func(t *testing.T) place) {
 	t.Run("a job runs and its result is kept", func(t *testing.T) {
@@ -200,13 +211,77 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 		b.running[late.id] = late
 		b.mutex.Unlock()
 		defer b.forget(late)
-		_, err := b.db.exec(t.Context(), `INSERT INTO railproof_jobs (id, engine, operation, request_key, result_id, request, state, sequence, claims, deaths, owner, beat, queued, done, expected, created, started, ended)
-			VALUES ('job_late', 'one that sweeps nothing here', 'corners', 'res_late', 'res_late', 'x', 'waiting', 3, 1, 1, '', 0, NOW(), 0, 0, NOW(), 0, 0)`)
+		stored(t, b, "job_late", "waiting", work{Name: "late"})
+		_, err := b.db.exec(t.Context(), `UPDATE railproof_jobs SET engine = 'one that sweeps nothing here'`)
 		require.NoError(t, err)
 		require.False(t, b.claim(t.Context(), &run{id: "job_late"}))
 		var queued int64
 		require.NoError(t, b.db.row(t.Context(), `SELECT queued FROM railproof_jobs WHERE id = 'job_late'`).Scan(&queued))
 		require.Zero(t, queued, "the next sweep queues it")
+	})
+	t.Run("a message that is lost is missed", func(t *testing.T) {
+		b := where(t).open(t, new(fakeExecutor), func(o *Options) { o.Workers = 1 })
+		stored(t, b, "job_lost", "waiting", work{Steps: 1, Name: "lost"})
+		_, err := b.db.exec(t.Context(), `UPDATE railproof_jobs SET queued = NOW() - 11000 WHERE id = 'job_lost'`)
+		require.NoError(t, err)
+		await(t, b, "job_lost", Done)
+	})
+	t.Run("a full queue is not taken for a loss of messages", func(t *testing.T) {
+		b := where(t).open(t, new(fakeExecutor), func(o *Options) { o.Workers = 1 })
+		awaitRunning(t, b, submit(t, b, work{Steps: 10_000, Step: 10 * time.Millisecond, Name: "long"}).ID)
+		submit(t, b, work{Name: "a"})
+		messages := func() (n int) {
+			require.NoError(t, b.db.row(t.Context(), `SELECT COUNT(*) FROM river_job`).Scan(&n))
+			return n
+		}
+		before := messages()
+		_, err := b.db.exec(t.Context(), `UPDATE railproof_jobs SET queued = NOW() - 11000 WHERE state = 'waiting'`)
+		require.NoError(t, err)
+		require.NoError(t, b.sweepOnce(t.Context()))
+		require.Equal(t, before, messages())
+	})
+	t.Run("an answer ends the job whoever has it, a problem only that of its process", func(t *testing.T) {
+		b := where(t).open(t, new(fakeExecutor), nil)
+		problem := Outcome{Problem: []byte(`{"title":"the time is over"}`)}
+		answer := Outcome{ResultID: "res_a", Answer: results.Answer{Media: "application/json", Body: []byte("{}")}}
+		late := &run{id: "job_a", operation: "corners", meter: new(service.Meter)}
+		kept := func(o Outcome) bool {
+			kept, err := b.store(late, o)
+			require.NoError(t, err)
+			return kept
+		}
+		stored(t, b, "job_a", "waiting", work{Name: "a"})
+		require.False(t, kept(problem), "it waits for another process")
+		_, err := b.db.exec(t.Context(), `UPDATE railproof_jobs SET state = 'running', owner = 'process_other', beat = NOW()`)
+		require.NoError(t, err)
+		require.False(t, kept(problem), "another process has it")
+		require.True(t, kept(answer))
+		require.False(t, kept(answer), "once")
+		j, err := b.Get(t.Context(), "job_a")
+		require.NoError(t, err)
+		require.Equal(t, Done, j.State)
+		stored(t, b, "job_b", "cancelled", work{Name: "b"})
+		late.id, answer.ResultID = "job_b", "res_b"
+		require.False(t, kept(answer))
+		_, err = b.Result(t.Context(), "res_b")
+		require.ErrorIs(t, err, ErrUnknown, "and nothing is left of it")
+	})
+	t.Run("a job that cannot begin in its time fails with that problem", func(t *testing.T) {
+		f := new(fakeExecutor)
+		f.busy.Store(1 << 30)
+		b := where(t).open(t, f, func(o *Options) { o.Deadline = 300 * time.Millisecond })
+		j := await(t, b, submit(t, b, work{Steps: 1, Name: "a"}).ID, Failed)
+		require.JSONEq(t, `{"title":"stopped"}`, string(j.Problem))
+	})
+	t.Run("nobody who has looked at a job is remembered", func(t *testing.T) {
+		b := where(t).open(t, new(fakeExecutor), nil)
+		j := await(t, b, submit(t, b, work{Steps: 1, Name: "a"}).ID, Done)
+		_, err := b.Next(t.Context(), j.ID, 0)
+		require.NoError(t, err)
+		waiting := submit(t, b, work{Steps: 1000, Step: 10 * time.Millisecond, Name: "b"})
+		_, err = b.Wait(t.Context(), waiting.ID, 20*time.Millisecond)
+		require.NoError(t, err)
+		require.Empty(t, b.watched)
 	})
 	t.Run("many callers of one request get one job", func(t *testing.T) {
 		f := new(fakeExecutor)
@@ -344,6 +419,13 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 			ids = append(ids, await(t, b, submit(t, b, work{Steps: 1, Name: fmt.Sprint(i)}).ID, Done).ID)
 			time.Sleep(5 * time.Millisecond)
 		}
+		_, err := b.db.exec(t.Context(), `ALTER TABLE railproof_parts RENAME TO gone`)
+		require.NoError(t, err)
+		require.Error(t, b.tidy(t.Context()))
+		_, err = b.Result(t.Context(), "res_0")
+		require.NoError(t, err, "a result goes together with its job or not at all")
+		_, err = b.db.exec(t.Context(), `ALTER TABLE gone RENAME TO railproof_parts`)
+		require.NoError(t, err)
 		require.NoError(t, b.tidy(t.Context()))
 		for i, id := range ids {
 			_, err := b.Get(t.Context(), id)
@@ -356,7 +438,7 @@ func everywhere(t *testing.T, where func(t *testing.T) place) {
 				require.NoError(t, lost)
 			}
 		}
-		_, err := b.db.exec(t.Context(), `UPDATE railproof_jobs SET ended = ended - $1`, b.o.KeepFor.Milliseconds()+1)
+		_, err = b.db.exec(t.Context(), `UPDATE railproof_jobs SET ended = ended - $1`, b.o.KeepFor.Milliseconds()+1)
 		require.NoError(t, err)
 		require.NoError(t, b.tidy(t.Context()))
 		list, _, err := b.List(t.Context(), "", 10)

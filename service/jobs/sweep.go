@@ -2,6 +2,7 @@ package jobs
 
 import (
 	"context"
+	"database/sql"
 	"time"
 )
 
@@ -28,12 +29,20 @@ func (b *Board) greet(ctx context.Context) error {
 			return err
 		}
 	}
-	return b.present(ctx)
+	_, err := b.present(ctx)
+	return err
 }
 
-func (b *Board) present(ctx context.Context) error {
-	_, err := b.db.exec(ctx, `INSERT INTO railproof_processes (id, engine, beat) VALUES ($1, $2, NOW()) ON CONFLICT (id) DO UPDATE SET beat = NOW()`, b.process, b.o.Engine)
-	return err
+// present says that this process is there. Others can be judged by how long they were
+// not seen only if this one has looked all the while and the clock has not jumped.
+func (b *Board) present(ctx context.Context) (judges bool, err error) {
+	var now int64
+	err = b.db.row(ctx, `INSERT INTO railproof_processes (id, engine, beat) VALUES ($1, $2, NOW()) ON CONFLICT (id) DO UPDATE SET beat = NOW() RETURNING beat`, b.process, b.o.Engine).Scan(&now)
+	if err != nil {
+		return false, err
+	}
+	between := now - b.seen.Swap(now)
+	return 0 <= between && between < sweepMissed.Milliseconds(), nil
 }
 
 // leave says that this process is gone.
@@ -84,10 +93,11 @@ func (b *Board) sweep() {
 }
 
 func (b *Board) sweepOnce(ctx context.Context) error {
-	if err := b.present(ctx); err != nil {
+	judges, err := b.present(ctx)
+	if err != nil {
 		return err
 	}
-	if b.db.shared {
+	if b.db.shared && judges {
 		if err := b.release(ctx); err != nil {
 			return err
 		}
@@ -118,6 +128,9 @@ func (b *Board) sweepOnce(ctx context.Context) error {
 	return nil
 }
 
+// stale holds for a beat that is too old, or from a clock that was ahead.
+const stale = `(beat < NOW() - 10000 OR beat > NOW() + 10000)`
+
 // release makes jobs wait again whose process died.
 func (b *Board) release(ctx context.Context) error {
 	n, err := b.db.exec(ctx, `UPDATE railproof_jobs SET state = 'waiting', owner = '', queued = 0, deaths = deaths + 1, sequence = sequence + 1 WHERE state = 'running' AND owner <> $1 AND `+stale, b.process)
@@ -142,8 +155,12 @@ func (b *Board) releaseOwn(ctx context.Context) error {
 		if r != nil {
 			continue
 		}
-		if _, err := b.db.exec(ctx, `UPDATE railproof_jobs SET state = 'waiting', owner = '', queued = 0, sequence = sequence + 1 WHERE id = $1 AND owner = $2 AND state = 'running'`, id, b.process); err != nil {
+		n, err := b.db.exec(ctx, `UPDATE railproof_jobs SET state = 'waiting', owner = '', queued = 0, sequence = sequence + 1 WHERE id = $1 AND owner = $2 AND state = 'running'`, id, b.process)
+		if err != nil {
 			return err
+		}
+		if n == 0 { // it ended meanwhile
+			continue
 		}
 		b.o.Log.Warn("a job whose end could not be stored is run again", "job", id)
 	}
@@ -160,9 +177,19 @@ func (b *Board) giveUp(ctx context.Context) error {
 	return err
 }
 
-// lost returns waiting jobs that are in no queue, or have been for long.
+// lost returns waiting jobs that are in no queue: those that were taken out, those that
+// still wait some time after an empty queue had them, and, in case messages are lost
+// while the queue is never empty, those that have waited for long.
 func (b *Board) lost(ctx context.Context) ([]string, error) {
-	return b.identifiers(ctx, `SELECT id FROM railproof_jobs WHERE engine = $1 AND state = 'waiting' AND queued < NOW() - $2 ORDER BY id LIMIT 100`, b.o.Engine, queueLost.Milliseconds())
+	empty, err := b.db.queue.empty(ctx)
+	if err != nil {
+		return nil, err
+	}
+	patience := queueLost
+	if empty {
+		patience = messageLost
+	}
+	return b.identifiers(ctx, `SELECT id FROM railproof_jobs WHERE engine = $1 AND state = 'waiting' AND (queued < NOW() - $2 OR queued > NOW() + $2) ORDER BY id LIMIT 100`, b.o.Engine, patience.Milliseconds())
 }
 
 func (b *Board) identifiers(ctx context.Context, statement string, args ...any) ([]string, error) {
@@ -189,13 +216,18 @@ func (b *Board) unqueue(id string) {
 	_, _ = b.db.exec(ctx, `UPDATE railproof_jobs SET queued = 0 WHERE id = $1 AND state = 'waiting'`, id) // otherwise it is queued again after queueLost
 }
 
-// tidy drops what is older or larger than is kept: results from the oldest, and the
-// jobs that had them, so that asking again computes again.
+// tidy drops what is older or larger than is kept: results from the oldest, and in the
+// same moment the jobs that had them, so that asking again computes again.
 func (b *Board) tidy(ctx context.Context) error {
+	return b.db.transaction(ctx, func(tx *sql.Tx) error { return b.tidyIn(ctx, tx) })
+}
+
+func (b *Board) tidyIn(ctx context.Context, tx *sql.Tx) error {
 	for _, step := range []struct {
 		statement string
 		argument  any
 	}{
+		{`UPDATE railproof_schema SET version = version WHERE version = $1`, 1}, // one process at a time
 		{`DELETE FROM railproof_results WHERE created < NOW() - $1`, b.o.KeepFor.Milliseconds()},
 		{`DELETE FROM railproof_results WHERE id IN (SELECT id FROM (SELECT id, SUM(size) OVER (ORDER BY created DESC, id) AS held FROM railproof_results) AS sums WHERE held > $1)`, b.o.KeepBytes},
 		{`DELETE FROM railproof_jobs WHERE ended > 0 AND ended < NOW() - $1`, b.o.KeepFor.Milliseconds()},
@@ -203,7 +235,7 @@ func (b *Board) tidy(ctx context.Context) error {
 		{`DELETE FROM railproof_parts WHERE beat < NOW() - $1 AND NOT EXISTS (SELECT 1 FROM railproof_jobs WHERE id = job AND state IN ('waiting', 'running'))`, time.Minute.Milliseconds()},
 		{`DELETE FROM railproof_processes WHERE beat < NOW() - $1`, time.Hour.Milliseconds()},
 	} {
-		if _, err := b.db.exec(ctx, step.statement, step.argument); err != nil {
+		if _, err := tx.ExecContext(ctx, b.db.say(step.statement), step.argument); err != nil {
 			return err
 		}
 	}

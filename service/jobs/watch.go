@@ -11,18 +11,28 @@ func (b *Board) Next(ctx context.Context, id string, since int64) (Job, error) {
 	look := time.NewTicker(2 * lookEvery)
 	defer look.Stop()
 	for {
-		change := b.changes(id)
-		j, err := b.Get(ctx, id)
-		if err != nil || j.Sequence > since || j.State.Ended() {
+		j, news, err := b.nextLook(ctx, id, since, look.C)
+		if news || err != nil {
 			return j, err
 		}
-		select {
-		case <-ctx.Done():
-			return j, context.Cause(ctx)
-		case <-change:
-		case <-look.C:
-		}
 	}
+}
+
+// nextLook returns the job if there is news of it, else waits until it may have changed.
+func (b *Board) nextLook(ctx context.Context, id string, since int64, look <-chan time.Time) (j Job, news bool, err error) {
+	c := b.watch(id) // before the look, so that no change is missed
+	defer b.unwatch(id, c)
+	j, err = b.Get(ctx, id)
+	if err != nil || j.Sequence > since || j.State.Ended() {
+		return j, true, err
+	}
+	select {
+	case <-ctx.Done():
+		return j, false, context.Cause(ctx)
+	case <-c.told:
+	case <-look:
+	}
+	return j, false, nil
 }
 
 // Wait waits until a job has ended, at most for the given time, and returns it as it
@@ -40,24 +50,39 @@ func (b *Board) Wait(ctx context.Context, id string, most time.Duration) (Job, e
 	return j, err
 }
 
-// changes returns a channel that is closed when the job changes in this process.
-func (b *Board) changes(id string) <-chan struct{} {
+// change is the next change of a job in this process.
+type change struct {
+	told     chan struct{} // closed when it happens
+	watchers int
+}
+
+func (b *Board) watch(id string) *change {
 	b.mutex.Lock()
 	defer b.mutex.Unlock()
-	c := b.changed[id]
+	c := b.watched[id]
 	if c == nil {
-		c = make(chan struct{})
-		b.changed[id] = c
+		c = &change{told: make(chan struct{})}
+		b.watched[id] = c
 	}
+	c.watchers++
 	return c
+}
+
+// unwatch forgets the job when nobody watches it any more.
+func (b *Board) unwatch(id string, c *change) {
+	b.mutex.Lock()
+	defer b.mutex.Unlock()
+	if c.watchers--; c.watchers == 0 && b.watched[id] == c {
+		delete(b.watched, id)
+	}
 }
 
 // tell wakes whoever watches the job.
 func (b *Board) tell(id string) {
 	b.mutex.Lock()
 	defer b.mutex.Unlock()
-	if c := b.changed[id]; c != nil {
-		close(c)
-		delete(b.changed, id)
+	if c := b.watched[id]; c != nil {
+		close(c.told)
+		delete(b.watched, id)
 	}
 }
