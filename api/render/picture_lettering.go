@@ -98,29 +98,41 @@ func (m *widths) between(work *sfnt.Buffer, a, b sfnt.GlyphIndex) fixed.Int26_6 
 
 // of returns the width of a text.
 func (m *widths) of(s string) (width fixed.Int26_6) {
-	var before sfnt.GlyphIndex
-	var last rune
-	var work *sfnt.Buffer // for what is not kept
-	for n, r := range s {
-		if work == nil && r >= knownLetters {
-			work = new(sfnt.Buffer)
-		}
-		var i sfnt.GlyphIndex
-		var advance fixed.Int26_6
-		if r < knownLetters {
-			i, advance = m.index[r], m.advance[r]
-		} else {
-			i, advance = m.measured(work, r)
-		}
-		switch {
-		case n == 0:
-		case r < knownLetters && last < knownLetters:
-			width += fixed.Int26_6(m.kern[last][r])
-		default:
-			width += m.between(work, before, i)
-		}
-		width += advance
-		before, last = i, r
+	p := pen{widths: m}
+	for _, r := range s {
+		gap, advance := p.step(r)
+		width += gap + advance
 	}
 	return width
+}
+
+// pen walks along a text.
+type pen struct {
+	*widths
+	begun bool
+	last  rune
+	index sfnt.GlyphIndex
+	work  *sfnt.Buffer // for what is not kept
+}
+
+// step passes a letter: how much closer it stands to the one before, and its width.
+func (p *pen) step(r rune) (gap, advance fixed.Int26_6) {
+	if p.work == nil && r >= knownLetters {
+		p.work = new(sfnt.Buffer)
+	}
+	var i sfnt.GlyphIndex
+	if r < knownLetters {
+		i, advance = p.widths.index[r], p.advance[r]
+	} else {
+		i, advance = p.measured(p.work, r)
+	}
+	switch {
+	case !p.begun:
+	case r < knownLetters && p.last < knownLetters:
+		gap = fixed.Int26_6(p.kern[p.last][r])
+	default:
+		gap = p.between(p.work, p.index, i)
+	}
+	p.begun, p.last, p.index = true, r, i
+	return gap, advance
 }
