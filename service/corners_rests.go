@@ -8,7 +8,6 @@ import (
 	"railproof/calc/caution"
 	"railproof/calc/corners"
 	"railproof/calc/evaluate"
-	"railproof/calc/quantity"
 	"railproof/calc/stage"
 )
 
@@ -44,23 +43,11 @@ func (s *Service) concludeCorners(a *CornersAnswer) {
 	}
 	s.seeSamples(a)
 	a.warn(&warn)
-	if a.asksLoop() {
-		warn.averagedPhases(d)
-	}
 	var base *basis
 	if r.Status.Figures() {
 		base = &basis{&point, &r}
 	}
 	a.Basis = Basis{s.assumptions(d, e, base), caution.Of(d.Stage, d.At, d.Variables, &seen), warn.list}
-}
-
-// asksLoop reports whether a loop quantity was asked for.
-func (a *CornersAnswer) asksLoop() bool {
-	ids := slices.Clone(a.Further)
-	for i := range a.Limits {
-		ids = append(ids, a.Limits[i].Quantity)
-	}
-	return slices.ContainsFunc(ids, func(id quantity.ID) bool { return kindOf(id) == ofLoop })
 }
 
 // seeExtreme looks at a worst point for cautions, and for the conduction mode as it

@@ -138,9 +138,6 @@ func (s *Service) Loop(ctx context.Context, r *LoopRequest) (*LoopAnswer, error)
 		e := s.evaluator(d.Stage)
 		defer s.release(e)
 		a.Basis = s.rests(&d, e, r.Places, outcomes)
-		warn := warnings{a.Basis.Warnings}
-		warn.averagedPhases(&d)
-		a.Basis.Warnings = warn.list
 		return nil
 	})
 	if err != nil {
@@ -206,7 +203,7 @@ func (b *loopBench) item(r *LoopRequest, p *stage.Point) (*LoopItem, error) {
 var analysisWords = map[loop.Status]string{
 	loop.SingularPoint: "they have no unique periodic solution",
 	loop.TooStiff:      "a time constant is too short against the switching period",
-	loop.NotConverged:  "the eigenvalues did not settle",
+	loop.NotConverged:  "the search for the switching instants or for the eigenvalues came to no end",
 }
 
 // fill takes everything from the models.

@@ -115,7 +115,6 @@ func (s *Service) proofRests(p *Proof, w *worstCase) Basis {
 	if len(d.Variables) == 0 {
 		warn.keep(Warning{"no-spreads", d.At, "no number of the stage has a tolerance: only conditions are varied"})
 	}
-	warn.averagedPhases(d)
 	e := s.evaluator(d.Stage)
 	defer s.release(e)
 	var base *basis

@@ -5,7 +5,6 @@ import (
 	"strings"
 
 	"railproof/calc/evaluate"
-	"railproof/calc/loop"
 	"railproof/calc/magnetics"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
@@ -55,13 +54,6 @@ func (w *warnings) keep(one Warning) {
 func (w *warnings) unused(d *Design) {
 	for _, pointer := range d.Unused {
 		w.add("unused-value", pointer, "this stage does not use the number; it has no influence on the answer")
-	}
-}
-
-// averagedPhases warns of margins of a stage with unequal phases.
-func (w *warnings) averagedPhases(d *Design) {
-	if len(d.Stage.Phases) > 0 && loop.Present(d.Stage) {
-		w.keep(Warning{"phases-averaged", d.At + "/phases", "the loop is analysed with every phase as the mean of the unequal ones: stability, crossover and margins are those of the mean; /v1/transients keeps the phases apart"})
 	}
 }
 

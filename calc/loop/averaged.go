@@ -22,18 +22,21 @@ type Transfers struct {
 // Averaged is the averaged small-signal model of a plant. Its source is taken as
 // stiff; Interaction adds the effect of a source impedance.
 //
-// In continuous conduction, with N phases in parallel,
+// Each phase k is a current into the output node, all of them in parallel,
 //
-//	Zs = (s L + R)/N,  Zp = 1/(G + sum of 1/(Rk + 1/(s Ck))),  F = Zp/(Zp + Zs)
-//	duty to output     Ve F
-//	line to output     D F
-//	output impedance   Zs Zp/(Zs + Zp)
+//	ik = ak d + bk vin - yk vo,  vo = Zp (sum of ik - load)
+//	Zp = 1/(G + sum of 1/(Rj + 1/(s Cj)))
+//
+// and in continuous conduction
+//
+//	ak = Ve/Z, bk = D/Z, yk = 1/Z,  Z = s L + R
 //
 //	R  [ohm] winding + D Rhs + (1-D) Rrect
 //	Ve [V]   Vin + Vth - I (Rhs - Rrect), I the mean inductor current of a phase
 //
-// Capacitor banks are kept apart; a constant-current load damps nothing.
-// The modulator is d = (vc - vramp)/(VM) in voltage mode, delayed by the
+// Capacitor banks are kept apart, and so are unequal phases, but for the mean current,
+// of which each is taken to carry its equal share. A constant-current load damps
+// nothing. The modulator is d = (vc - vramp)/(VM) in voltage mode, delayed by the
 // comparator's delay: a naturally sampled trailing edge adds no delay of its own.
 // In discontinuous conduction the inductor is a current source, see resting.
 // Valid up to about a fifth of the switching frequency.
@@ -42,51 +45,114 @@ type Transfers struct {
 // 2nd ed., 2001, chapters 7 to 11 (remembered, unverified); losses added. Checked
 // by TestReferenceLoop loop-01 to loop-07 and against the sampled-data model.
 type Averaged struct {
-	plant   Plant
+	plant  Plant
+	count  int     // of limbs
+	weight float64 // [1] phases that each of them stands for
+	limb   [switched.MaxPhases]limb
+}
+
+// limb is one phase, or each of equal ones.
+type limb struct {
 	leg     switched.Leg
-	phases  float64
-	r       float64 // [ohm] effective series resistance of one phase
+	rests   bool    // in discontinuous conduction
+	r       float64 // [ohm] effective series resistance
 	swing   float64 // [V] Ve
-	current float64 // [A] mean current of one phase
+	current float64 // [A] mean current
 	resting resting
 	mode    currentMode
 }
 
 // Set prepares the averaged model of a plant.
 func (a *Averaged) Set(p *Plant) {
-	*a = Averaged{plant: *p, leg: p.average(), phases: float64(p.Circuit.Phases)}
 	c, d := &p.Circuit, p.Duty
-	rect := &a.leg.Rectifier
-	a.r = a.leg.Winding + d*a.leg.HighSide + (1-d)*rect.Slope
-	a.current = (c.Current + c.Conductance*p.Output) / a.phases
-	a.swing = c.Vin + rect.Threshold - a.current*(a.leg.HighSide-rect.Slope)
-	if p.Mode == switched.Discontinuous {
-		a.resting.set(p, &a.leg)
+	*a = Averaged{plant: *p, count: 1, weight: float64(c.Phases)}
+	if c.Legs != nil {
+		a.count, a.weight = c.Phases, 1
 	}
-	if p.Modulator.Mode == parts.PeakCurrentMode {
-		a.mode.set(a)
+	a.plant.Circuit.Legs = nil // the limbs have them
+	for k := range a.count {
+		l := &a.limb[k]
+		l.leg, l.rests = *p.leg(k), p.mode(k) == switched.Discontinuous
+		rect := &l.leg.Rectifier
+		l.r = l.leg.Winding + d*l.leg.HighSide + (1-d)*rect.Slope
+		l.current = (c.Current + c.Conductance*p.Output) / float64(c.Phases)
+		l.swing = c.Vin + rect.Threshold - l.current*(l.leg.HighSide-rect.Slope)
+		if l.rests {
+			l.resting.set(p, &l.leg)
+		}
+		if p.Modulator.Mode == parts.PeakCurrentMode {
+			l.mode.set(p, l)
+		}
 	}
+}
+
+// flow is how the current of a phase follows what moves it.
+type flow struct {
+	drive, line, output complex128 // [S] by duty ratio or control voltage, source voltage, output voltage, which takes from it
+}
+
+// bare returns the flow of a limb with the duty ratio as its drive.
+func (l *limb) bare(s complex128, duty float64) flow {
+	if l.rests {
+		r := &l.resting
+		return flow{complex(r.byDuty, 0), complex(r.byLine, 0), complex(-r.byOutput, 0)}
+	}
+	y := 1 / (s*complex(l.leg.L, 0) + complex(l.r, 0))
+	return flow{complex(l.swing, 0) * y, complex(duty, 0) * y, y}
+}
+
+// command is how the duty ratio of a limb follows control voltage, its current, and
+// the voltages.
+type command struct {
+	control, current, line, output complex128
+}
+
+// command returns that of a limb at s.
+func (a *Averaged) command(l *limb, s complex128) command {
+	lag := cmplx.Exp(-s * complex(a.plant.Modulator.Delay, 0))
+	if a.plant.Modulator.Mode == parts.PeakCurrentMode {
+		return l.mode.command(s, lag)
+	}
+	m := command{control: lag * complex(1/(a.plant.RampSlope()*a.plant.Circuit.Period), 0)}
+	if a.plant.Modulator.FeedForward {
+		m.line = complex(-a.plant.Duty/a.plant.Circuit.Vin, 0)
+	}
+	return m
+}
+
+// under returns the flow of a limb whose duty ratio is commanded, with the control
+// voltage as its drive.
+func (f flow) under(m command) flow {
+	inner := 1 - f.drive*m.current
+	return flow{f.drive * m.control / inner, (f.line + f.drive*m.line) / inner, (f.output - f.drive*m.output) / inner}
+}
+
+// plus returns the sum of two flows, the second taken so many times.
+func (f flow) plus(g flow, times float64) flow {
+	n := complex(times, 0)
+	return flow{f.drive + n*g.drive, f.line + n*g.line, f.output + n*g.output}
+}
+
+// sums returns the flow of all phases, with the duty ratio and with the control
+// voltage as the drive.
+func (a *Averaged) sums(s complex128) (bare, under flow) {
+	for k := range a.count {
+		l := &a.limb[k]
+		one := l.bare(s, a.plant.Duty)
+		bare, under = bare.plus(one, a.weight), under.plus(one.under(a.command(l, s)), a.weight)
+	}
+	return bare, under
 }
 
 // At returns the transfer functions at a frequency [Hz].
 func (a *Averaged) At(frequency float64) Transfers {
 	s := complex(0, 2*math.Pi*frequency)
-	var g open
-	if a.plant.Mode == switched.Discontinuous {
-		g = a.resting.at(a, s)
-	} else {
-		g = a.continuous(s)
-	}
-	t := Transfers{Duty: g.duty, Line: g.line, Impedance: g.impedance}
-	lag := cmplx.Exp(-s * complex(a.plant.Modulator.Delay, 0))
+	bare, under := a.sums(s)
+	load := 1 / a.load(s)
+	y := load + under.output
+	t := Transfers{Duty: bare.drive / (load + bare.output), Control: under.drive / y, Line: under.line / y, Impedance: 1 / y}
 	if a.plant.Modulator.Mode == parts.PeakCurrentMode {
-		a.mode.close(s, lag, &g, &t)
-	} else {
-		slope := a.plant.RampSlope()
-		t.Control = g.duty * complex(1/(slope*a.plant.Circuit.Period), 0) * lag
-		if a.plant.Modulator.FeedForward {
-			t.Line -= g.duty * complex(a.plant.Duty/a.plant.Circuit.Vin, 0)
-		}
+		t.Duty = complex(math.NaN(), math.NaN())
 	}
 	if a.plant.Compensator.Present {
 		t.Loop = t.Control * CompensatorGain(&a.plant.Compensator, &a.plant.Feedback, frequency)
@@ -94,13 +160,6 @@ func (a *Averaged) At(frequency float64) Transfers {
 		t.ClosedImpedance = t.Impedance / (1 + t.Loop)
 	}
 	return t
-}
-
-// open holds the transfer functions of the bare stage: to the output voltage and
-// to the inductor current of one phase.
-type open struct {
-	duty, line, impedance                 complex128
-	dutyCurrent, lineCurrent, loadCurrent complex128
 }
 
 // load returns the impedance of banks and load in parallel.
@@ -111,17 +170,4 @@ func (a *Averaged) load(s complex128) complex128 {
 		y += 1 / (complex(c.Bank[k].ESR, 0) + 1/(s*complex(c.Bank[k].C, 0)))
 	}
 	return 1 / y
-}
-
-func (a *Averaged) continuous(s complex128) open {
-	n := complex(a.phases, 0)
-	zp := a.load(s)
-	zs := (s*complex(a.leg.L, 0) + complex(a.r, 0)) / n
-	sum := zp + zs
-	d := complex(a.plant.Duty, 0)
-	ve := complex(a.swing, 0)
-	return open{
-		duty: ve * zp / sum, line: d * zp / sum, impedance: zp * zs / sum,
-		dutyCurrent: ve / (sum * n), lineCurrent: d / (sum * n), loadCurrent: zp / (sum * n),
-	}
 }

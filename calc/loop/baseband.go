@@ -6,24 +6,22 @@ import (
 
 	"railproof/calc/parts"
 	"railproof/calc/statespace"
+	"railproof/calc/switched"
 )
 
 // workspace holds what the transfer functions of one frequency need.
 type workspace struct {
-	resolvent [maxSegments]statespace.Complex      // (jw I - A) of each switch state, stage only, factored
-	observe   [maxSegments]statespace.ComplexPoint // output row times its inverse
-	forced    [maxSegments]statespace.ComplexPoint // periodic response to the excitation
-	turn      [maxSegments]complex128              // e^{jwt} as each segment ends
-	network   statespace.Complex                   // (jw I - A) of the compensator, factored
-	inner     statespace.Complex
-	closed    statespace.Complex
+	network statespace.Complex // (jw I - A) of the compensator, factored
+	inner   statespace.Complex
+	closed  statespace.Complex
 }
 
 // excitation is what moves the stage at the frequency in question.
 type excitation struct {
-	input  int        // index of the input that moves by 1, or noInput
-	drive  complex128 // [V] added to the control voltage
-	closed bool       // the voltage loop is closed
+	input  int     // index of the input that moves by 1, or noInput
+	drive  float64 // [V] added to the control voltage
+	delay  float64 // [s] added to the delay of each decision
+	closed bool    // the voltage loop is closed
 }
 
 const noInput = -1
@@ -41,11 +39,20 @@ func (s *Sampled) At(frequency float64) Transfers {
 	sin, cos := math.Sincos(w * s.window.length)
 	z := complex(cos, sin)
 	s.prepare(w, z)
-	t := Transfers{Loop: s.transfer.At(z)}
+	var t Transfers
+	if s.count == 1 {
+		t.Loop = s.transfer.At(z)
+	} else {
+		t.Loop = s.lift.at(s, frequency)
+	}
 	t.Control = s.respond(w, excitation{input: noInput, drive: 1})
-	t.Duty = complex(math.NaN(), math.NaN())
-	if s.plant.Modulator.Mode == parts.VoltageMode {
+	switch {
+	case s.plant.Modulator.Mode != parts.VoltageMode:
+		t.Duty = complex(math.NaN(), math.NaN())
+	case s.count == 1:
 		t.Duty = t.Control * complex(s.Slope*s.plant.Circuit.Period, 0)
+	default:
+		t.Duty = s.respond(w, excitation{input: noInput, delay: s.plant.Circuit.Period})
 	}
 	t.Line = s.respond(w, excitation{input: InputVoltage})
 	t.Impedance = -s.respond(w, excitation{input: InputLoad})
@@ -65,19 +72,20 @@ func (s *Sampled) prepare(w float64, z complex128) {
 	jw := complex(0, w)
 	at := 0.0
 	for k := range s.window.count {
+		v := &s.stretches[k]
 		at += s.window.segment[k].time
 		sin, cos := math.Sincos(w * at)
-		ws.turn[k] = complex(cos, sin)
-		if s.config[k] != k {
+		v.turn = complex(cos, sin)
+		if v.config != k {
 			continue
 		}
-		resolvent(&ws.resolvent[k], &s.systems[k], 0, m, jw)
+		resolvent(&v.resolvent, &v.system, 0, m, jw)
 		for i := range m {
-			ws.observe[k][i] = complex(j.Output[i], 0)
+			v.observe[i] = complex(j.Output[i], 0)
 		}
-		ws.resolvent[k].SolveTransposed(&ws.observe[k])
+		v.resolvent.SolveTransposed(&v.observe)
 	}
-	resolvent(&ws.network, &s.systems[0], m, j.N-m, jw)
+	resolvent(&ws.network, &s.stretches[0].system, m, j.N-m, jw)
 	shifted(&ws.inner, &s.inner, m, z)
 	shifted(&ws.closed, &s.closed, j.N, z)
 }
@@ -111,29 +119,18 @@ func shifted(c *statespace.Complex, m *statespace.Real, n int, z complex128) {
 func (s *Sampled) respond(w float64, e excitation) complex128 {
 	j, ws := &s.joint, &s.response
 	n, solver := j.Network, &ws.inner
-	late := e.drive
 	if e.closed {
 		n, solver = j.N, &ws.closed
-		late += complex(s.control[j.N+e.input], 0)
-	}
-	if e.input == InputVoltage {
-		late -= s.rampResponse(w)
 	}
 	s.force(n, e.input)
 
 	// The window's answer to a zero deviation is the right side of z x = M x + h.
 	var x statespace.ComplexPoint
-	s.travel(n, &x, late, e.input != noInput, nil)
-	rotateComplex(&x, j.Circuit.Phases)
+	s.travel(w, n, &x, &e, nil)
+	rotateComplex(&x, s.window.places)
 	solver.Solve(&x)
-	late -= complex(s.plant.sense(), 0) * x[0]
-	if e.closed {
-		for i := range n {
-			late += complex(s.control[i], 0) * x[i]
-		}
-	}
 	var component complex128
-	s.travel(n, &x, late, e.input != noInput, &component)
+	s.travel(w, n, &x, &e, &component)
 	component /= complex(s.window.length, 0)
 	if e.input != noInput {
 		component += complex(j.Output[j.N+e.input], 0)
@@ -141,14 +138,33 @@ func (s *Sampled) respond(w float64, e excitation) complex128 {
 	return component
 }
 
+// delay returns how far a decision is delayed by the excitation and by the deviation
+// x of the first n states, both as it is made [s].
+func (s *Sampled) delay(w float64, n int, d *decision, x *statespace.ComplexPoint, e *excitation, turn complex128) complex128 {
+	late := complex(e.drive, 0)
+	if e.closed {
+		late += complex(s.control[s.joint.N+e.input], 0)
+	}
+	if e.input == InputVoltage {
+		late -= s.rampResponse(w, d.since)
+	}
+	late *= turn
+	late -= complex(s.plant.sense(), 0) * x[d.phase]
+	if e.closed {
+		for i := range n {
+			late += complex(s.control[i], 0) * x[i]
+		}
+	}
+	return late/complex(d.slope, 0) + complex(e.delay, 0)*turn
+}
+
 // rampResponse returns how far a feed-forward ramp, the integral of the source
 // voltage since the clock, has moved at the comparator's decision per volt.
-func (s *Sampled) rampResponse(w float64) complex128 {
+func (s *Sampled) rampResponse(w, since float64) complex128 {
 	rate := s.plant.feedForwardRate()
 	if rate == 0 {
 		return 0
 	}
-	since := s.plant.Duty*s.plant.Circuit.Period - s.plant.Modulator.Delay
 	jw := complex(0, w)
 	return complex(rate, 0) * (1 - cmplx.Exp(-jw*complex(since, 0))) / jw
 }
@@ -161,20 +177,21 @@ func (s *Sampled) force(n, input int) {
 	j, ws := &s.joint, &s.response
 	m := j.Network
 	for k := range s.window.count {
-		if s.config[k] != k {
+		v := &s.stretches[k]
+		if v.config != k {
 			continue
 		}
-		x := &ws.forced[k]
+		x := &v.forced
 		for i := range m {
-			x[i] = complex(s.systems[k].Row(i)[j.N+input], 0)
+			x[i] = complex(v.system.Row(i)[j.N+input], 0)
 		}
-		ws.resolvent[k].Solve(x)
+		v.resolvent.Solve(x)
 		if n == m {
 			continue
 		}
 		var c statespace.ComplexPoint
 		for i := m; i < n; i++ {
-			row := s.systems[k].Row(i)
+			row := v.system.Row(i)
 			c[i-m] = complex(row[j.N+input], 0)
 			for l := range m {
 				c[i-m] += complex(row[l], 0) * x[l]
@@ -185,18 +202,20 @@ func (s *Sampled) force(n, input int) {
 	}
 }
 
-// travel carries the deviation x of the first n states through the window, with
-// the turn-off late by late/Slope, and adds to component the integral of
-// e^{-jwt} times the output, the excitation's direct share left out.
-func (s *Sampled) travel(n int, x *statespace.ComplexPoint, late complex128, excited bool, component *complex128) {
-	j, ws := &s.joint, &s.response
+// travel carries the deviation x of the first n states through the window, decisions
+// delayed by it and by the excitation, and adds to component the integral of e^{-jwt}
+// times the output, the excitation's direct share left out.
+func (s *Sampled) travel(w float64, n int, x *statespace.ComplexPoint, e *excitation, component *complex128) {
+	j := &s.joint
 	width := j.N + Inputs
+	excited := e.input != noInput
 	turn := complex128(1) // e^{jwt}
+	var late [switched.MaxPhases]complex128
+	decided := 0
 	for k := range s.window.count {
-		g := &s.window.segment[k]
+		g, v := &s.window.segment[k], &s.stretches[k]
 		if g.time > 0 {
-			config := s.config[k]
-			observe, forced := &ws.observe[config], &ws.forced[config]
+			observe, forced := &s.stretches[v.config].observe, &s.stretches[v.config].forced
 			if excited {
 				for i := range n {
 					x[i] -= forced[i] * turn
@@ -205,12 +224,12 @@ func (s *Sampled) travel(n int, x *statespace.ComplexPoint, late complex128, exc
 			if component != nil {
 				*component += observed(observe, x, j.Network) * conjugate(turn)
 			}
-			f := s.maps[k].F[:]
+			f := v.exact.F[:]
 			var next statespace.ComplexPoint
 			for i := range n {
 				next[i] = dotComplex(f[i*width:i*width+n], x)
 			}
-			turn = ws.turn[k]
+			turn = v.turn
 			if component != nil {
 				*component -= observed(observe, &next, j.Network) * conjugate(turn)
 			}
@@ -227,10 +246,13 @@ func (s *Sampled) travel(n int, x *statespace.ComplexPoint, late complex128, exc
 			}
 		}
 		switch g.ends {
+		case decides:
+			late[g.phase] = s.delay(w, n, &s.decisions[decided], x, e, turn)
+			decided++
 		case turnsOff:
-			late /= complex(s.Slope, 0)
+			jump := &s.decisionOf(g.phase).jump
 			for i := range n {
-				x[i] += scale(late, s.jump[i])
+				x[i] += scale(late[g.phase], jump[i])
 			}
 		case comesToRest:
 			x[g.phase] = 0
@@ -281,7 +303,9 @@ func (s *Sampled) DutyGain() (float64, bool) {
 	m := &s.matrix
 	m.N = n
 	for i := range n {
-		x[i] = s.enter[i] * p.Circuit.Period
+		for k := range s.count {
+			x[i] += s.decisions[k].enter[i] * p.Circuit.Period
+		}
 		for k := range n {
 			a := -s.open.At(i, k)
 			if i == k {
@@ -296,16 +320,19 @@ func (s *Sampled) DutyGain() (float64, bool) {
 	x[j.Integral] = 0
 	for k := range s.window.count {
 		g := &s.window.segment[k]
-		var system statespace.System
-		j.Assemble(&system, &g.legs, Linear)
-		if !s.whole.Exp(&system, g.time, &s.scratch) {
-			return math.NaN(), false
+		if g.time > 0 {
+			var system statespace.System
+			j.Assemble(&system, &g.legs, Linear)
+			if !s.whole.Exp(&system, g.time, &s.scratch) {
+				return math.NaN(), false
+			}
+			s.carry(&s.whole, &x)
 		}
-		s.carry(&s.whole, &x)
 		switch g.ends {
 		case turnsOff:
+			jump := &s.decisionOf(g.phase).jump
 			for i := range n {
-				x[i] += s.jump[i] * p.Circuit.Period
+				x[i] += jump[i] * p.Circuit.Period
 			}
 		case comesToRest:
 			x[g.phase] = 0

@@ -1,10 +1,6 @@
 package loop
 
-import (
-	"math"
-
-	"railproof/calc/switched"
-)
+import "math"
 
 // currentMode is the averaged modulator of peak current mode,
 //
@@ -28,38 +24,31 @@ type currentMode struct {
 	sampled           bool
 }
 
-func (m *currentMode) set(a *Averaged) {
-	p := &a.plant
+func (m *currentMode) set(p *Plant, l *limb) {
 	ri, se, ts := p.Modulator.Sense, p.Modulator.Slope, p.Circuit.Period
 	m.period = ts
-	if p.Mode == switched.Discontinuous {
-		r := &a.resting
+	if l.rests {
+		r := &l.resting
 		m.fm = 1 / (ri*r.peakDuty + se*ts)
 		m.kf, m.kr = -ri*r.peakLine, -ri*r.peakOutput
 		return
 	}
 	m.sampled, m.sense = true, ri
-	sn := ri * (p.Circuit.Vin - a.current*(a.leg.HighSide+a.leg.Winding) - p.Output) / a.leg.L
+	sn := ri * (p.Circuit.Vin - l.current*(l.leg.HighSide+l.leg.Winding) - p.Output) / l.leg.L
 	m.fm = 1 / ((sn + se) * ts)
-	m.kf = -p.Duty * ts * ri / a.leg.L * (1 - p.Duty/2)
-	m.kr = ts * ri / (2 * a.leg.L)
+	m.kf = -p.Duty * ts * ri / l.leg.L * (1 - p.Duty/2)
+	m.kr = ts * ri / (2 * l.leg.L)
 }
 
-// close fills t with the transfer functions of the stage with its current loop.
-func (m *currentMode) close(s, lag complex128, g *open, t *Transfers) {
+// command returns how the duty ratio follows, delayed by lag.
+func (m *currentMode) command(s, lag complex128) command {
 	fm := complex(m.fm, 0) * lag
-	ri := complex(0, 0)
+	c := command{control: fm, line: fm * complex(m.kf, 0), output: fm * complex(m.kr, 0)}
 	if m.sampled {
 		wn := math.Pi / m.period
-		ri = complex(m.sense, 0) * (1 - s*complex(m.period/2, 0) + s*s/complex(wn*wn, 0))
+		c.current = -fm * complex(m.sense, 0) * (1 - s*complex(m.period/2, 0) + s*s/complex(wn*wn, 0))
 	}
-	kf, kr := complex(m.kf, 0), complex(m.kr, 0)
-	inner := 1 + fm*(ri*g.dutyCurrent-kr*g.duty)
-	t.Duty = complex(math.NaN(), math.NaN())
-	t.Control = fm * g.duty / inner
-	t.Line += g.duty * fm * (-ri*g.lineCurrent + kf + kr*g.line) / inner
-	// One ampere more load lowers the output by the impedance.
-	t.Impedance += g.duty * fm * (ri*g.loadCurrent + kr*g.impedance) / inner
+	return c
 }
 
 // CurrentLoop describes the inner loop of peak current mode in the usual terms.
@@ -118,15 +107,23 @@ func currentLoop(sn, sf, slope, duty, period float64) CurrentLoop {
 }
 
 // CurrentLoop returns the figures of the current loop from the slopes at the mean
-// current, drops included, in continuous conduction. The exact eigenvalue is that
-// of Margins.
+// current, drops included, in continuous conduction; of unequal phases those of the
+// least damped one. The exact eigenvalue is that of Margins.
 func (p *Plant) CurrentLoop() CurrentLoop {
-	leg, c := p.average(), &p.Circuit
+	c := &p.Circuit
 	i := (c.Current + c.Conductance*p.Output) / float64(c.Phases)
 	ri := p.Modulator.Sense
-	rise := ri * (c.Vin - i*(leg.HighSide+leg.Winding) - p.Output) / leg.L
-	fall := ri * (p.Output + leg.Rectifier.Threshold + i*(leg.Rectifier.Slope+leg.Winding)) / leg.L
-	return currentLoop(rise, fall, p.Modulator.Slope, p.Duty, c.Period)
+	var worst CurrentLoop
+	for k := range c.Phases {
+		leg := p.leg(k)
+		rise := ri * (c.Vin - i*(leg.HighSide+leg.Winding) - p.Output) / leg.L
+		fall := ri * (p.Output + leg.Rectifier.Threshold + i*(leg.Rectifier.Slope+leg.Winding)) / leg.L
+		one := currentLoop(rise, fall, p.Modulator.Slope, p.Duty, c.Period)
+		if k == 0 || math.Abs(one.Eigenvalue) > math.Abs(worst.Eigenvalue) {
+			worst = one
+		}
+	}
+	return worst
 }
 
 // IdealStage is a lossless stage for the textbook formulas.

@@ -3,8 +3,6 @@ package loop
 import (
 	"math"
 	"math/cmplx"
-
-	"railproof/calc/switched"
 )
 
 // Interaction tells what a source impedance does to the loop at one frequency.
@@ -30,29 +28,36 @@ type Interaction struct {
 // stage with its source.
 func (a *Averaged) InteractionAt(s *Source, frequency float64) Interaction {
 	w := complex(0, 2*math.Pi*frequency)
-	g, dutyIn, lineIn := a.input(w)
 	t := a.At(frequency)
-	admittance := func(line complex128) complex128 { return lineIn + dutyIn*(line-g.line)/g.duty }
-	null, driving := admittance(0), admittance(t.Line)
+	null, driving := a.admittance(w, 0), a.admittance(w, t.Line)
 	zo := s.Impedance(frequency)
 	return Interaction{
-		Source: zo, Null: 1 / null, Driving: 1 / driving, Closed: 1 / admittance(t.ClosedLine),
+		Source: zo, Null: 1 / null, Driving: 1 / driving, Closed: 1 / a.admittance(w, t.ClosedLine),
 		Loop: t.Loop * (1 + zo*null) / (1 + zo*driving),
 	}
 }
 
-// input returns the bare stage with the response of its mean input current to
-// duty ratio and input voltage.
-func (a *Averaged) input(s complex128) (g open, duty, line complex128) {
-	n := complex(a.phases, 0)
-	if a.plant.Mode == switched.Discontinuous {
-		g = a.resting.at(a, s)
-		r := &a.resting
-		return g, n * (complex(r.onDuty, 0) + complex(r.onOutput, 0)*g.duty), n * (complex(r.onLine, 0) + complex(r.onOutput, 0)*g.line)
-	}
-	g = a.continuous(s)
+// admittance returns the response of the mean input current to the source voltage [S],
+// with the control voltage such that the output follows the source by as much as told.
+func (a *Averaged) admittance(s, follows complex128) complex128 {
+	_, all := a.sums(s)
+	control := (follows*(1/a.load(s)+all.output) - all.line) / all.drive
 	d := complex(a.plant.Duty, 0)
-	return g, n * (d*g.dutyCurrent + complex(a.current, 0)), n * d * g.lineCurrent
+	sum := complex128(0)
+	for k := range a.count {
+		l := &a.limb[k]
+		m := a.command(l, s)
+		f := l.bare(s, a.plant.Duty).under(m)
+		current := f.drive*control + f.line - f.output*follows
+		duty := m.control*control + m.current*current + m.line + m.output*follows
+		if l.rests {
+			r := &l.resting
+			sum += complex(r.onDuty, 0)*duty + complex(r.onLine, 0) + complex(r.onOutput, 0)*follows
+		} else {
+			sum += d*current + complex(l.current, 0)*duty
+		}
+	}
+	return complex(a.weight, 0) * sum
 }
 
 // SourceMargin is the verdict on a source impedance over frequency.

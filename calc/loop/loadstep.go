@@ -27,24 +27,25 @@ type LinearStep struct {
 }
 
 // Set prepares the averaged closed loop. It reports false in discontinuous
-// conduction, for which there is none.
+// conduction and for unequal phases, for which there is none.
 //
 // The bridge is replaced by its mean, L di/dt = D vin + Ve d - R i - vo, and the
 // duty ratio by the modulator's gain times control voltage, current and output;
 // the sampling of a current loop and the comparator's delay are left out.
 func (l *LinearStep) Set(p *Plant) bool {
-	if p.Mode == switched.Discontinuous {
+	if p.Mode == switched.Discontinuous || p.Circuit.Legs != nil {
 		return false
 	}
 	var a Averaged
 	a.Set(p)
+	one := &a.limb[0]
 	// One phase stands for all: L/N, R/N and N times the current.
 	n := float64(p.Circuit.Phases)
 	plant := *p
 	plant.Source = Source{}
 	c := &plant.Circuit
-	c.Legs, c.Phases = nil, 1
-	c.Leg = switched.Leg{L: a.leg.L / n, Winding: a.r / n}
+	c.Phases = 1
+	c.Leg = switched.Leg{L: one.leg.L / n, Winding: one.r / n}
 	var j Joint
 	j.Set(&plant, Limits{})
 	legs := Legs{Low}
@@ -54,14 +55,14 @@ func (l *LinearStep) Set(p *Plant) bool {
 	control := j.Control(Linear)
 	gain, sense, output := 1/(p.RampSlope()*c.Period), 0.0, 0.0
 	if p.Modulator.Mode == parts.PeakCurrentMode {
-		gain, sense, output = a.mode.fm, a.mode.sense/n, a.mode.kr
+		gain, sense, output = one.mode.fm, one.mode.sense/n, one.mode.kr
 	}
 	for i := range l.duty {
 		l.duty[i] = gain * (control[i] + output*j.Output[i])
 	}
 	l.duty[0] -= gain * sense
 	row := l.system.Row(0)
-	addTo(row, &l.duty, a.swing/c.Leg.L)
+	addTo(row, &l.duty, one.swing/c.Leg.L)
 	return true
 }
 

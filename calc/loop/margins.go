@@ -51,8 +51,8 @@ type PhaseCrossing struct {
 type Margins struct {
 	Status          Status
 	Stability       Stability
-	SpectralRadius  float64    // [1] greatest modulus of the closed loop's eigenvalues, per decision
-	Dominant        complex128 // [1] that eigenvalue
+	SpectralRadius  float64    // [1] greatest modulus of the closed loop's eigenvalues, per decision; of unequal phases in the mean of a period's
+	Dominant        complex128 // [1] that eigenvalue, over a window
 	DominantAt      float64    // [Hz] its frequency of oscillation
 	CurrentLoop     complex128 // [1] peak current mode: what is left of a disturbance of the current after one period; 0 in voltage mode
 	Subharmonic     bool       // peak current mode: it alternates and does not settle
@@ -99,19 +99,23 @@ func (s *Sampled) decide(m *Margins) bool {
 		if !s.eigenvalues(&s.inner, j.Network, &e) {
 			return false
 		}
-		m.currentLoop(&e, j.Network, &s.plant)
+		m.currentLoop(s, &e)
 	}
-	if !s.transfer.Eigenvalues(&e) {
+	open := &s.transfer
+	if s.count > 1 {
+		open = s.reduce(&s.inner, j.N)
+	}
+	if !open.Eigenvalues(&e) {
 		return false
 	}
-	s.scan.around(&e, j.N, s.window.length)
+	s.around(&e)
 	if !s.eigenvalues(&s.closed, j.N, &e) {
 		return false
 	}
-	s.scan.around(&e, j.N, s.window.length)
+	s.around(&e)
 	m.Dominant = largest(&e, j.N)
-	m.SpectralRadius = cmplx.Abs(m.Dominant)
-	m.DominantAt = math.Abs(cmplx.Phase(m.Dominant)) / (2 * math.Pi * s.window.length)
+	m.SpectralRadius = math.Pow(cmplx.Abs(m.Dominant), 1/float64(s.count))
+	m.DominantAt = s.heard(m.Dominant)
 	m.Stability = Unstable
 	if m.SpectralRadius < 1 {
 		m.Stability = Stable
@@ -120,13 +124,14 @@ func (s *Sampled) decide(m *Margins) bool {
 }
 
 // currentLoop picks the current loop's eigenvalue from those of the stage with its
-// current loop closed: per period, the one nearest to what the slopes alone give.
-func (m *Margins) currentLoop(e *statespace.ComplexPoint, n int, p *Plant) {
-	ideal := complex(p.CurrentLoop().Eigenvalue, 0)
+// current loop closed: per period, the one nearest to what the slopes alone give, of
+// unequal phases those of the least damped one.
+func (m *Margins) currentLoop(s *Sampled, e *statespace.ComplexPoint) {
+	ideal := complex(s.plant.CurrentLoop().Eigenvalue, 0)
 	nearest := math.Inf(1)
-	for _, x := range e[:n] {
+	for _, x := range e[:s.joint.Network] {
 		period := complex128(1)
-		for range p.Circuit.Phases {
+		for range s.window.places {
 			period *= x
 		}
 		if d := cmplx.Abs(period - ideal); d < nearest {
@@ -138,15 +143,52 @@ func (m *Margins) currentLoop(e *statespace.ComplexPoint, n int, p *Plant) {
 	}
 }
 
+// around sets grid points about the eigenvalues of a map.
+func (s *Sampled) around(e *statespace.ComplexPoint) {
+	for _, x := range e[:s.joint.N] {
+		if s.count == 1 && !(imag(x) > 0) {
+			continue
+		}
+		width := math.Abs(math.Log(cmplx.Abs(x))) / (2 * math.Pi * s.window.length)
+		s.images(x, func(f float64) { s.scan.around(f, width) })
+	}
+}
+
+// heard returns the frequency at which an eigenvalue oscillates [Hz]; of several that
+// it may have, with unequal phases, the one at which the control voltage shows it
+// most.
+func (s *Sampled) heard(x complex128) float64 {
+	at, nearest := math.NaN(), math.Inf(1)
+	s.images(x, func(f float64) {
+		d := 0.0
+		if s.count > 1 {
+			// Beside the eigenvalue: at it, every one of them is without bound.
+			shifted(&s.response.closed, &s.closed, s.joint.N, x*complex(beside, 0))
+			d = cmplx.Abs(1 + s.lift.at(s, f))
+		}
+		if d < nearest {
+			at, nearest = math.Abs(f), d
+		}
+	})
+	return at
+}
+
+const beside = 1.1 // [1] of an eigenvalue's modulus
+
 // eigenvalues sets e to the eigenvalues of the leading n rows and columns of a.
 func (s *Sampled) eigenvalues(a *statespace.Real, n int, e *statespace.ComplexPoint) bool {
+	return s.reduce(a, n).Eigenvalues(e)
+}
+
+// reduce returns the Hessenberg form of the leading n rows and columns of a.
+func (s *Sampled) reduce(a *statespace.Real, n int) *statespace.Transfer {
 	s.matrix.N = n
 	for i := range n {
 		copy(s.matrix.A[i*n:i*n+n], a.A[i*a.N:i*a.N+n])
 	}
 	var none statespace.Point
 	s.spare.Reduce(&s.matrix, &none, &none)
-	return s.spare.Eigenvalues(e)
+	return &s.spare
 }
 
 func largest(e *statespace.ComplexPoint, n int) complex128 {

@@ -10,7 +10,6 @@ import (
 	"railproof/calc/parts"
 	"railproof/calc/stage"
 	"railproof/calc/statespace"
-	"railproof/calc/switched"
 )
 
 func faultsOf(t *testing.T, err error) []string {
@@ -71,7 +70,7 @@ func TestGainMarginIsWhereTheEigenvaluesTurn(t *testing.T) {
 				closed := statespace.Real{N: n}
 				for i := range n {
 					for k := range n {
-						closed.Set(i, k, s.inner.At(i, k)+gain*s.enter[i]/s.Slope*s.control[k])
+						closed.Set(i, k, s.inner.At(i, k)+gain*s.decisions[0].enter[i]/s.Slope*s.control[k])
 					}
 				}
 				var e statespace.ComplexPoint
@@ -206,17 +205,6 @@ func TestScaling(t *testing.T) {
 	b = marginsOf(t, f)
 	require.InEpsilon(t, k*a.Crossover, b.Crossover, 1e-9)
 	require.InEpsilon(t, a.PhaseMargin, b.PhaseMargin, 1e-9)
-}
-
-func TestUnequalPhasesStandForTheirMean(t *testing.T) {
-	c := phases(buoy(), 2)
-	p := solvedPlant(t, c, 5, voltageMode(), typeThreePlant(t, 50e3, 55).Compensator)
-	unequal := p
-	legs := [switched.MaxPhases]switched.Leg{c.Leg, c.Leg}
-	legs[0].L, legs[1].L = 0.9*c.Leg.L, 1.1*c.Leg.L
-	unequal.Circuit.Legs = &legs
-	a, b := marginsOf(t, p), marginsOf(t, unequal)
-	require.InEpsilon(t, a.Crossover, b.Crossover, 1e-3)
 }
 
 func TestFeedForwardKeepsTheLoopOverTheInput(t *testing.T) {

@@ -12,10 +12,11 @@ import (
 // its operating point, with the elements' values there, and the loop around it.
 type Plant struct {
 	Circuit     switched.Circuit
-	Duty        float64       // [1]
-	Output      float64       // [V] mean output voltage
-	Mode        switched.Mode // conduction mode at the point
-	Conduct     float64       // [1] fraction of the period in which the rectifier conducts; in discontinuous conduction only
+	Duty        float64                           // [1]
+	Output      float64                           // [V] mean output voltage
+	Mode        switched.Mode                     // conduction mode at the point
+	Modes       [switched.MaxPhases]switched.Mode // that of each unequal phase, all with the same duty ratio
+	Conduct     float64                           // [1] fraction of the period in which the rectifier conducts; in discontinuous conduction only
 	Modulator   parts.Modulator
 	Compensator parts.Compensator
 	Feedback    stage.Feedback
@@ -25,6 +26,17 @@ type Plant struct {
 // Operate fills in the operating point from a solution of the plant's circuit.
 func (p *Plant) Operate(s *switched.Solution) {
 	p.Duty, p.Output, p.Mode, p.Conduct = s.Duty, s.OutputMean, s.Leg.Mode, s.Leg.Conduct
+	for k := range p.Modes {
+		p.Modes[k] = s.Legs[k].Mode
+	}
+}
+
+// mode returns the conduction mode of a phase.
+func (p *Plant) mode(k int) switched.Mode {
+	if p.Circuit.Legs != nil {
+		return p.Modes[k]
+	}
+	return p.Mode
 }
 
 // RampSlope returns the slope of the comparator's ramp [V/s]: VM fs in voltage
@@ -122,25 +134,12 @@ func (p *Plant) Faults() []stage.Fault {
 	return p.Source.check(f)
 }
 
-// average returns the mean of all legs, which stands for each of them in the
-// averaged model.
-func (p *Plant) average() switched.Leg {
-	c := &p.Circuit
-	if c.Legs == nil {
-		return c.Leg
+// leg returns what a phase has of its own.
+func (p *Plant) leg(k int) *switched.Leg {
+	if c := &p.Circuit; c.Legs != nil {
+		return &c.Legs[k]
 	}
-	var m switched.Leg
-	n := float64(c.Phases)
-	for i := range c.Phases {
-		l := &c.Legs[i]
-		m.L += l.L / n
-		m.Winding += l.Winding / n
-		m.HighSide += l.HighSide / n
-		m.Rectifier.Threshold += l.Rectifier.Threshold / n
-		m.Rectifier.Slope += l.Rectifier.Slope / n
-		m.Rectifier.Blocks = m.Rectifier.Blocks || l.Rectifier.Blocks
-	}
-	return m
+	return &p.Circuit.Leg
 }
 
 // Nyquist returns the highest frequency at which the loop can be told from its

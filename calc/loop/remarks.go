@@ -187,6 +187,9 @@ func (p *Plant) Resonance() float64 {
 	for k := range p.Circuit.Banks {
 		c += p.Circuit.Bank[k].C
 	}
-	leg := p.average()
-	return 1 / (2 * math.Pi * math.Sqrt(leg.L/float64(p.Circuit.Phases)*c))
+	inverse := 0.0
+	for k := range p.Circuit.Phases {
+		inverse += 1 / p.leg(k).L
+	}
+	return 1 / (2 * math.Pi * math.Sqrt(c/inverse))
 }

@@ -88,15 +88,3 @@ func lagging(x float64) float64 {
 // seriesBelow is where series replace the closed forms; the terms left out are
 // below 1e-12 of the value.
 const seriesBelow = 5e-3
-
-// at returns the transfer functions at s, from n phases in parallel.
-func (r *resting) at(a *Averaged, s complex128) open {
-	n := a.phases
-	y := 1/a.load(s) - complex(n*r.byOutput, 0)
-	g := open{duty: complex(n*r.byDuty, 0) / y, line: complex(n*r.byLine, 0) / y, impedance: 1 / y}
-	back := complex(r.byOutput, 0)
-	g.dutyCurrent = complex(r.byDuty, 0) + back*g.duty
-	g.lineCurrent = complex(r.byLine, 0) + back*g.line
-	g.loadCurrent = -back * g.impedance
-	return g
-}

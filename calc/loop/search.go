@@ -5,6 +5,7 @@ import (
 	"math/cmplx"
 
 	"railproof/calc/statespace"
+	"railproof/calc/switched"
 )
 
 const (
@@ -12,7 +13,7 @@ const (
 	perDecade     = 32  // [1] points of the plain grid
 	plainPoints   = 176 // [1] perDecade log10(searchSpan), rounded up
 	perMode       = 11  // [1] points set around each oscillating eigenvalue
-	maxGrid       = plainPoints + 2*perMode*statespace.MaxStates/2 + 3
+	maxGrid       = plainPoints + 2*perMode*switched.MaxPhases*statespace.MaxStates/2 + 3
 	refinements   = 60    // [1] bound on the steps of one refinement
 	resolution    = 1e-10 // [1] relative, of a refined frequency
 	besideNyquist = 1e-6  // [1] last point before half the decision rate, at which a sampled gain is real whatever its phase before
@@ -41,19 +42,12 @@ func (g *scan) reset(nyquist float64) {
 	g.insert(nyquist * (1 - besideNyquist))
 }
 
-// around adds points about the frequencies of the eigenvalues of a map over the
-// given time.
-func (g *scan) around(e *statespace.ComplexPoint, n int, time float64) {
+// around adds points about a frequency, spread over the given half-width [Hz].
+func (g *scan) around(f, half float64) {
 	offsets := [perMode]float64{-cornerOffset, -4, -2, -1, -0.5, 0, 0.5, 1, 2, 4, cornerOffset}
-	for _, x := range e[:n] {
-		if !(imag(x) > 0) {
-			continue
-		}
-		f := cmplx.Phase(x) / (2 * math.Pi * time)
-		half := max(math.Abs(math.Log(cmplx.Abs(x)))/(2*math.Pi*time), 1e-6*f)
-		for _, o := range offsets {
-			g.insert(f + o*half)
-		}
+	half = max(half, 1e-6*f)
+	for _, o := range offsets {
+		g.insert(f + o*half)
 	}
 }
 

@@ -13,7 +13,8 @@ type edge uint8
 
 const (
 	windowEnds  edge = iota
-	turnsOff         // the high side of phase 0 turns off
+	decides          // the comparator of a phase decides
+	turnsOff         // its high side turns off
 	turnsOn          // a high side turns on
 	comesToRest      // a blocked rectifier's current reaches zero
 )
@@ -26,22 +27,28 @@ type segment struct {
 	phase int // whose edge it is
 }
 
-const maxSegments = 4
+const maxSegments = 4*switched.MaxPhases + 1
 
-// window is what happens between one decision of a comparator and the next: a
-// period, or with N equal phases an N-th of one, after which every phase takes
-// the place of the one before it. It starts when the comparator of phase 0
-// decides; its high side turns off a delay later.
+// window is the time after which the stage repeats itself. It starts as a
+// comparator decides, when nothing else that was decided is still waiting for its
+// delay.
+//
+// With N equal phases it is an N-th of the period, from one decision to the next,
+// after which every phase takes the place of the one before it. With unequal phases
+// it is the whole period, with N decisions.
 type window struct {
 	length  float64 // [s]
+	places  int     // phases that change places at its end; 1: none
+	resting int     // of equal phases: whose current comes to rest in it
 	count   int
 	segment [maxSegments]segment
 }
 
+// set lays out the window of equal phases.
 func (w *window) set(p *Plant) {
 	c := &p.Circuit
 	n := c.Phases
-	w.length = c.Period / float64(n)
+	w.length, w.places = c.Period/float64(n), n
 	on := p.Duty * c.Period
 	decide := on - p.Modulator.Delay // in the cycle of phase 0
 
@@ -67,7 +74,8 @@ func (w *window) set(p *Plant) {
 		rest := p.Modulator.Delay + p.Conduct*c.Period
 		back := int(math.Floor(rest/w.length + edgeSnap))
 		events[2].at = max(0, rest-float64(back)*w.length)
-		events[2].ends, events[2].phase = comesToRest, (n-back%n)%n
+		w.resting = (n - back%n) % n
+		events[2].ends, events[2].phase = comesToRest, w.resting
 		count = 3
 		for j := turning; j < n-back; j++ {
 			legs[j] = Idle
@@ -80,6 +88,7 @@ func (w *window) set(p *Plant) {
 	}
 	at := 0.0
 	w.count = 0
+	w.add(&legs, 0, decides, 0)
 	for _, e := range events[:count] {
 		w.add(&legs, e.at-at, e.ends, e.phase)
 		at = e.at

@@ -12,7 +12,7 @@ func TestAnyRunEndsInANamedState(t *testing.T) {
 	r := rand.New(rand.NewPCG(11, 4))
 	span := func(least, greatest float64) float64 { return least * math.Pow(greatest/least, r.Float64()) }
 	seen := map[Status]int{}
-	for name, p := range stages(t) {
+	for name, p := range every(t) {
 		for range 25 {
 			q := p
 			c := &q.Compensator

@@ -57,7 +57,7 @@ func growth(t *testing.T, p loop.Plant, expected float64) (rate float64, periods
 func TestEigenvaluesTellGrowthAndDecay(t *testing.T) {
 	decided := map[loop.Stability]int{}
 	told := 0
-	for name, p := range stages(t) {
+	for name, p := range every(t) {
 		for _, gain := range []float64{0.5, 2, 3, 4, 6} {
 			t.Run(name+"/"+strconv.FormatFloat(gain, 'g', -1, 64), func(t *testing.T) {
 				q := p

@@ -78,9 +78,9 @@ func (e *Engine) fromRest() {
 // model, closed on the engine's own map over one period by Newton's method. The
 // present moment ends at the clock of phase 0 and time 0.
 //
-// The map is taken from half-way between a turn-off and the next decision of a
-// comparator. There no decision waits for its delay, so that the moment that closes
-// is one of the states alone.
+// The map is taken from a quiet time, half-way between a turn-off and the next
+// decision of a comparator. There no decision waits for its delay, so that the moment
+// that closes is one of the states alone.
 func (e *Engine) fromPeriodic() bool {
 	if !e.linearise() {
 		return false
@@ -94,7 +94,7 @@ func (e *Engine) fromPeriodic() bool {
 	c := &e.joint.Circuit
 	d := e.model.Decision()
 	e.placeAt(&d)
-	e.advance(d.At + (e.delay+c.Period/float64(c.Phases))/2)
+	e.advance(d.At + d.Quiet)
 	if e.status != Running {
 		return false
 	}
@@ -166,8 +166,8 @@ func (e *Engine) placeAt(d *loop.Instant) {
 		}
 		p.ramp = ramp * (m.at - p.since)
 	}
-	m.phases[0].decided = true
-	m.phases[0].off = m.at + e.delay
+	m.phases[d.Phase].decided = true
+	m.phases[d.Phase].off = m.at + e.delay
 }
 
 // relax runs the loop until it does what it will do for good, such as leaving out

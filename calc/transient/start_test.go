@@ -57,3 +57,21 @@ func requirePeriodic(t *testing.T, p *loop.Plant, what string, values ...any) {
 	require.False(t, r.Restless, append([]any{what}, values...)...)
 	require.Less(t, r.FinalChange, 1e-7, append([]any{what}, values...)...)
 }
+
+// The model finds the instants of unequal phases by itself; the run makes them.
+func TestPeriodicSolutionOfUnequalPhasesIsWhatTheRunDoes(t *testing.T) {
+	for name, p := range unequal(t) {
+		t.Run(name, func(t *testing.T) {
+			period := p.Circuit.Period
+			e, err := New(&Setup{Plant: p, Bounds: wide, Duration: 400 * period, Saturation: parts.Unknown})
+			require.NoError(t, err)
+			require.Equal(t, Running, e.status)
+			d := e.model.Decision()
+			e.advance(300*period + d.At - e.grain())
+			for i := range e.joint.Integral {
+				require.InDelta(t, d.State[i], e.now.z[i], 1e-6*scaleOf(d.State[i]), "state %d", i)
+			}
+			require.InDelta(t, e.setup.Plant.Feedback.OutputVoltage(), e.lastMean, 1e-7)
+		})
+	}
+}

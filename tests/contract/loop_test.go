@@ -362,23 +362,35 @@ func TestLoopAsTable(t *testing.T) {
 	}
 }
 
-// The loop is that of the phases' mean; the answer says so wherever margins are told.
-func TestUnequalPhasesAreSaidToBeAveraged(t *testing.T) {
+// Phases of their own stay apart wherever margins are told.
+func TestUnequalPhasesAreAnalysedAsTheyAre(t *testing.T) {
 	at := server(t)
 	request := loopOf(t, "buoy-5v0", object{"curves": false})
 	st := request["stage"].(object)
-	st["phase_count"], st["phases"] = 2, []any{object{}, object{"inductance_h": 8e-6}}
-	warned := func(a object) (list []any) {
+	inductor := st["inductor"].(object)["inductance_h"].(object)["typ"].(float64)
+	analysed := func(first, second float64) object {
+		st["phase_count"], st["phases"] = 2, []any{object{"inductance_h": first * inductor}, object{"inductance_h": second * inductor}}
+		a := asked(t, at, "loopGain", request)
+		require.Equal(t, "ok", a["status"])
 		for _, w := range a["warnings"].([]any) {
-			list = append(list, within(w, "code").(string)+" "+within(w, "pointer").(string))
+			require.NotContains(t, within(w, "code"), "averaged")
 		}
-		return list
+		item := within(a, "items", 0).(object)
+		require.Equal(t, "stable", item["stability"])
+		require.LessOrEqual(t, within(item, "model_deviation", 0, "stage_ratio"), 0.01, "at a thousandth of the switching frequency")
+		return item
 	}
-	require.Contains(t, warned(asked(t, at, "loopGain", request)), "phases-averaged /stage/phases")
+	equal, unequal := analysed(1, 1), analysed(0.8, 1.2)
+	mean := 2 / (1/0.8 + 1/1.2) // of the inductances in parallel
+	like := analysed(mean, mean)
+	require.NotEqual(t, equal["crossover_hz"], unequal["crossover_hz"])
+	require.InEpsilon(t, like["crossover_hz"], unequal["crossover_hz"], 0.02, "far below the switching frequency the phases are in parallel")
+	require.NotEqual(t, like["phase_margin_deg"], unequal["phase_margin_deg"])
+
 	corners := exampleWith(t, "buoy-5v0/corners.json", object{"stage": st, "methods": []any{"extreme-value"}, "limits": []any{object{"quantity": "phase_margin_deg", "min": 30}}})
-	r := send(t, "POST", at+"/v1/corners", encode(t, corners))
-	require.Equal(t, 200, r.status, "%s", r.body)
-	require.Contains(t, warned(r.tree(t).(object)), "phases-averaged /stage/phases")
+	a := asked(t, at, "corners", corners)
+	require.Equal(t, "ok", a["status"])
+	require.Equal(t, "phase_margin_deg", within(a, "quantities", 0, "quantity"))
 }
 
 // An amplifier without direct gain brings about another output: margins at the point
