@@ -52,6 +52,7 @@ func (k *compiler) fill(n *node, s *openapi3.Schema) {
 	n.min, n.max, n.maxSize = math.Inf(-1), math.Inf(1), -1
 	n.unit, _ = s.Extensions["x-unit"].(string)
 	n.spread, _ = s.Extensions["x-spread"].(bool)
+	n.below, _ = s.Extensions["x-below"].(string)
 	switch {
 	case len(s.OneOf) > 0:
 		k.union(n, s.OneOf)

@@ -5,6 +5,7 @@ import (
 	"math"
 	"regexp"
 	"slices"
+	"strings"
 	"unicode/utf8"
 )
 
@@ -30,6 +31,7 @@ type node struct {
 
 	integer  bool
 	min, max float64 // of a number; infinite where open
+	below    string  // why a number below min has no meaning; "" where nothing is said
 
 	minSize, maxSize int // of a string, an array or an object; maxSize -1: open
 	pattern          *regexp.Regexp
@@ -256,7 +258,7 @@ func (c *check) text(n *node, s string) bool {
 func (c *check) number(n *node, v float64) bool {
 	switch {
 	case !(v >= n.min):
-		return c.add("minimum", "below what is accepted", "at least "+figure(n.min), figure(v), n.unit)
+		return c.add("minimum", strings.TrimSuffix("below what is accepted: "+n.below, ": "), "at least "+figure(n.min), figure(v), n.unit)
 	case !(v <= n.max):
 		return c.add("maximum", "above what is accepted", "at most "+figure(n.max), figure(v), n.unit)
 	case n.integer && v != math.Trunc(v):

@@ -5,6 +5,7 @@ import (
 	"math"
 	"math/cmplx"
 
+	"railproof/calc/caution"
 	"railproof/calc/evaluate"
 	"railproof/calc/loop"
 	"railproof/calc/parts"
@@ -137,7 +138,7 @@ func (s *Service) Loop(ctx context.Context, r *LoopRequest) (*LoopAnswer, error)
 		}
 		e := s.evaluator(d.Stage)
 		defer s.release(e)
-		a.Basis = s.rests(&d, e, r.Places, outcomes)
+		a.Basis = s.rests(&d, e, r.Places, outcomes, caution.Seen{})
 		return nil
 	})
 	if err != nil {

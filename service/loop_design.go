@@ -158,7 +158,7 @@ func (e *UnreachableTarget) Reachable() string {
 		s = append(s, fmt.Sprintf("a crossover up to %.4g Hz with this phase margin", e.Crossover))
 	}
 	if len(s) == 0 {
-		return "no lower crossover down to a thousandth gives this phase margin either"
+		return "nothing near it: no crossover down to a thousandth of this one gives this phase margin"
 	}
 	return strings.Join(s, ", or ")
 }

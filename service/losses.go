@@ -55,7 +55,7 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 			a.Status = worse(a.Status, o.Status)
 			s.done.count(o.Status)
 		}
-		a.Basis = s.rests(&r.Design, e, r.Places, a.Outcomes)
+		a.Basis = s.rests(&r.Design, e, r.Places, a.Outcomes, caution.Seen{})
 		return nil
 	})
 	if err != nil {
@@ -65,10 +65,10 @@ func (s *Service) Losses(ctx context.Context, r *LossesRequest) (*LossesAnswer, 
 }
 
 // rests gathers assumptions, cautions and warnings of outcomes. Effects of
-// assumptions are computed at the first point that gave figures.
-func (s *Service) rests(d *Design, e *evaluate.Evaluator, places []Place, outcomes []*Outcome) Basis {
+// assumptions are computed at the first point that gave figures. seen is what is known
+// of the stage besides.
+func (s *Service) rests(d *Design, e *evaluate.Evaluator, places []Place, outcomes []*Outcome, seen caution.Seen) Basis {
 	var base *basis
-	var seen caution.Seen
 	var warn warnings
 	warn.unused(d)
 	for i, o := range outcomes {

@@ -3,6 +3,7 @@ package service
 import (
 	"context"
 
+	"railproof/calc/caution"
 	"railproof/calc/evaluate"
 	"railproof/calc/switched"
 )
@@ -34,7 +35,7 @@ func (s *Service) SteadyState(ctx context.Context, r *SteadyStateRequest) (*Stea
 			e.Eval(&r.Place.Point, &again)
 			a.Waveform, _ = e.Waveform(r.WaveformPoints)
 		}
-		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
+		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome}, caution.Seen{})
 		return nil
 	})
 	if err != nil {

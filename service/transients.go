@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 
+	"railproof/calc/caution"
 	"railproof/calc/evaluate"
 	"railproof/calc/loop"
 	"railproof/calc/parts"
@@ -111,7 +112,7 @@ func (s *Service) Transients(ctx context.Context, r *TransientsRequest) (*Transi
 		if err := s.follow(ctx, s.turns(kind), r, a, e, periods*period); err != nil {
 			return err
 		}
-		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome})
+		a.Basis = s.rests(&r.Design, e, []Place{r.Place}, []*Outcome{a.Outcome}, caution.Seen{Precharged: a.Ran && r.Event.Kind == StartUpEvent && r.Event.PreBias > 0})
 		r.rests(a)
 		return nil
 	})

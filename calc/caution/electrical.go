@@ -21,8 +21,12 @@ func (c *collector) notices() {
 	c.add(EstimatesOnly, "", none, none, "", "Estimates for engineering judgement: they replace no bench measurement, no local code and no licensed practice.")
 	c.add(InputReachesLoad, c.seen.InputPointer, c.seen.Input, c.seen.Output, "V",
 		"Not isolated: a high-side switch that fails short puts the input voltage on the load. If the load does not stand it, add a fuse with a crowbar, or an over-voltage cut-off.")
+	precharged := "start into a pre-charged output, "
+	if c.seen.Precharged {
+		precharged = ""
+	}
 	c.add(NotAnalysed, "", none, none, "",
-		"Not analysed: output short, start into a pre-charged output, energy returned to the input, ringing and other layout effects.")
+		"Not analysed: output short, "+precharged+"energy returned to the input, ringing and other layout effects.")
 }
 
 func (c *collector) voltages() {

@@ -22,6 +22,7 @@ type Seen struct {
 	PartDegC         [losses.PartCount]float64 // [degC] greatest
 	Runaway          bool
 	RunawayPointer   string
+	Precharged       bool // a start into a pre-charged output was followed
 	points           int
 }
 

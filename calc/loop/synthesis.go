@@ -93,9 +93,13 @@ func (s *Sampled) Synthesise(p *Plant, t Target) (Design, error) {
 		if change <= targetGain {
 			if boost > greatest {
 				// The network with all its boost is the one just analysed.
+				adds := fmt.Sprintf("at most %.1f°", greatest)
+				if greatest == 0 {
+					adds = "nothing"
+				}
 				return d, &UnreachableError{
 					"target/phase_margin_deg", t.PhaseMargin, phase + 90 + greatest,
-					fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds at most %.1f° above -90°", phase, t.Crossover, greatest),
+					fmt.Sprintf("the stage has a phase of %.1f° at %g Hz and this network adds %s above -90°", phase, t.Crossover, adds),
 				}
 			}
 			d.K = w.factor(t.Type, &plant.Feedback)
@@ -136,7 +140,7 @@ func (t *Target) check(p *Plant) error {
 	if nyquist := p.Nyquist(); !(t.Crossover > 0 && t.Crossover < nyquist) {
 		f = append(f, stage.Fault{
 			Field: "target/crossover_hz", Given: t.Crossover, Limit: nyquist,
-			Accepted: "above 0 and below " + number(nyquist) + " Hz", Detail: "half the rate at which the comparator decides",
+			Accepted: "above 0 and below " + number(nyquist) + " Hz", Detail: "a loop cannot cross at or above half the rate at which its comparators decide",
 		})
 	}
 	if !(t.PhaseMargin > 0 && t.PhaseMargin < 180) {

@@ -40,7 +40,7 @@ func (s *Stage) check(fields []Field) error {
 		switch {
 		case !parts.Known(v):
 			if x.Required {
-				f = append(f, Fault{Field: x.ID, Given: v, Limit: parts.Unknown, Accepted: "a number", Detail: "required for this stage"})
+				f = append(f, Fault{Field: x.ID, Given: v, Limit: parts.Unknown, Accepted: "a number", Detail: strings.TrimSuffix("required for this stage: "+x.Why, ": ")})
 			}
 		case x.Default != nil && v == x.Default.Value:
 		default:

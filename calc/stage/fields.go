@@ -20,6 +20,7 @@ type Field struct {
 	Default  *Default // nil: required, or a rating that stays Unknown
 	Beside   *float64 // the default says something only beside this number; nil: by itself
 	Required bool
+	Why      string // what is missing without a required number; "" where nothing is said
 }
 
 // Default is the documented stand-in for a number that was not given.
@@ -230,7 +231,9 @@ func loopFields(f []Field, s *Stage) []Field {
 			optional("compensator/gain_bandwidth_hz", &c.GainBandwidth, 1e3, 1e12, Default{math.Inf(1), 2e6, math.Inf(1), "unity-gain frequency of the amplifier not given: taken as infinite"}),
 			optional("compensator/open_loop_gain_ratio", &c.OpenLoopGain, 10, 1e9, Default{math.Inf(1), 1e3, math.Inf(1), "direct gain of the amplifier not given: taken as infinite"}))
 	}
-	f = append(f, required("compensator/feedback_f", &c.FeedbackF, 1e-13, 1e-2))
+	integrator := required("compensator/feedback_f", &c.FeedbackF, 1e-13, 1e-2)
+	integrator.Why = "a compensator without this capacitor has no integrator"
+	f = append(f, integrator)
 	if c.Type != parts.OpAmpType1 {
 		f = append(f,
 			required("compensator/feedback_ohm", &c.FeedbackOhm, 0, 1e9),

@@ -212,12 +212,24 @@ func parsed(t testing.TB, text string) (v float64) {
 
 func TestLoopsWithoutMeaningAreRefused(t *testing.T) {
 	at := server(t)
+	reasons := map[string]struct{ why, bound string }{
+		"zero-ramp":               {"a comparator without a rising ramp has no finite gain", "at least 0.001"},
+		"zero-ramp-in-the-middle": {"a comparator without a rising ramp has no finite gain", "at least 0.001"},
+		"zero-integrator":         {"has no integrator", "at least 1e-13"},
+		"no-integrator":           {"has no integrator", "a number"},
+		"negative-gain":           {"would make the feedback positive", "at least 1e-07"},
+		"crossover-too-high":      {"cannot cross at or above half the rate", "250000 Hz"},
+	}
 	for name, c := range map[string]struct {
 		rail    string
 		change  func(r object)
 		pointer string
 	}{
-		"zero-ramp":          {"buoy-5v0", func(r object) { within(r, "stage", "modulator").(object)["ramp_v"] = 0 }, "/stage/modulator/ramp_v"},
+		"zero-ramp": {"buoy-5v0", func(r object) { within(r, "stage", "modulator").(object)["ramp_v"] = 0 }, "/stage/modulator/ramp_v"},
+		"zero-ramp-in-the-middle": {"buoy-5v0", func(r object) {
+			within(r, "stage", "modulator").(object)["ramp_v"] = object{"typ": 0, "tol": 0.1}
+		}, "/stage/modulator/ramp_v/typ"},
+		"zero-integrator":    {"buoy-5v0", func(r object) { within(r, "stage", "compensator").(object)["feedback_f"] = 0 }, "/stage/compensator/feedback_f"},
 		"negative-gain":      {"buoy-3v3", func(r object) { within(r, "stage", "compensator").(object)["transconductance_s"] = -4e-4 }, "/stage/compensator/transconductance_s"},
 		"no-integrator":      {"buoy-5v0", func(r object) { delete(within(r, "stage", "compensator").(object), "feedback_f") }, "/stage/compensator/feedback_f"},
 		"no-modulator":       {"buoy-5v0", func(r object) { delete(r["stage"].(object), "modulator") }, "/stage/modulator"},
@@ -250,8 +262,9 @@ func TestLoopsWithoutMeaningAreRefused(t *testing.T) {
 			c.change(request)
 			f := refusedAt(t, at, "/v1/loop-gain", request, c.pointer)
 			require.NotEmpty(t, f["detail"])
-			if name == "crossover-too-high" {
-				require.Contains(t, f["limit"], "250000 Hz")
+			if said, is := reasons[name]; is {
+				require.Contains(t, f["detail"], said.why)
+				require.Contains(t, f["limit"], said.bound)
 			}
 		})
 	}

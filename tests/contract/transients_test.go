@@ -135,16 +135,29 @@ func TestKindsOfEvents(t *testing.T) {
 			found = found || within(x, "pointer") == "/event/start_up/load_from_v"
 		}
 		require.True(t, found, "from where the load draws was not given")
+		require.Contains(t, notAnalysed(a), "start into a pre-charged output")
 	})
 	t.Run("pre-biased-start", func(t *testing.T) {
 		a := run(t, "buoy-5v0", object{"start_up": object{"soft_start_s": 2e-3, "pre_bias_v": 2.5, "load_from_v": 4.5}}, object{"duration_s": 5e-3})
 		require.Less(t, a["deviation_down_v"], 0.02, "a precharged output is not discharged")
+		require.Contains(t, notAnalysed(a), "output short")
+		require.NotContains(t, notAnalysed(a), "pre-charged", "it is what was run")
 		require.InEpsilon(t, a["expected_after_v"], a["after_v"], 1e-6)
 	})
 	t.Run("both-conduction-modes", func(t *testing.T) {
 		a := run(t, "mast-12v0", object{"load_step": object{"to_a": 0.05}}, object{"duration_s": 5e-3})
 		require.ElementsMatch(t, []any{"continuous", "discontinuous"}, a["conduction_modes"])
 	})
+}
+
+// notAnalysed returns the detail of the caution of that name.
+func notAnalysed(a object) string {
+	for _, c := range a["cautions"].([]any) {
+		if within(c, "code") == "faults-not-analysed" {
+			return within(c, "detail").(string)
+		}
+	}
+	return ""
 }
 
 // A start without soft start runs into the current limit; a limit beyond saturation
