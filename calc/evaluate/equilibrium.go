@@ -1,8 +1,6 @@
 package evaluate
 
 import (
-	"math"
-
 	"railproof/calc/losses"
 	"railproof/calc/parts"
 	"railproof/calc/stage"
@@ -10,7 +8,7 @@ import (
 )
 
 const (
-	// maxPasses bounds the joint iteration. Three passes are usual; a stage just
+	// maxPasses bounds the joint iteration. One or two passes are usual; a stage just
 	// below runaway or on a kink of its saturation curve takes more.
 	maxPasses = 80
 	// coldPasses is how often the closed form is followed before the circuit is
@@ -164,12 +162,12 @@ func (e *Evaluator) iterate(o *operating) Status {
 			return NotConverged
 		}
 		before := e.degC
-		circuitChange := math.Max(e.followInductance(), e.followOutput(o))
+		circuitChange := max(e.followInductance(), e.followOutput(o))
 		temperatureChange, runaway := e.followLosses(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
-		circuitChange = math.Max(circuitChange, e.followBridge(o))
+		circuitChange = max(circuitChange, e.followBridge(o))
 		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.hottest, e.degC = e.degC, before
@@ -277,6 +275,6 @@ func (e *Evaluator) limitDuty(o *operating) {
 		i := e.solution.Leg.Inductor.Mean
 		o.deadTimeDuty = 2 * c.DeadTime * f * (e.stage.LowSide.BodyDiode - i*e.circuit.Leg.Rectifier.Slope) / o.bridge
 	}
-	o.least = math.Max(0, f*c.MinOnTime-o.deadTimeDuty)
-	o.most = math.Min(1, math.Min(c.MaxDutyRatio, 1-f*c.MinOffTime)-o.deadTimeDuty)
+	o.least = max(0, f*c.MinOnTime-o.deadTimeDuty)
+	o.most = min(1, min(c.MaxDutyRatio, 1-f*c.MinOffTime)-o.deadTimeDuty)
 }

@@ -117,7 +117,7 @@ func (e *Evaluator) fillWaveforms(o *operating, q *quantity.Vector) {
 		q[quantity.OutputCapacitorRMS+quantity.ID(k)] = sol.BankRMS[k]
 		q[quantity.OutputCapacitanceEffective+quantity.ID(k)] = e.circuit.Bank[k].C
 	}
-	q[quantity.InputCapacitorRMS] = math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+	q[quantity.InputCapacitorRMS] = math.Sqrt(max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
 	if n := len(e.stage.InputCapacitors); n > 0 {
 		q[quantity.InputRipplePP] = e.input.RipplePP
 		for k := range n {
@@ -183,7 +183,7 @@ func (e *Evaluator) fillTimes(o *operating, q *quantity.Vector) {
 	sol, period := &e.solution, e.circuit.Period
 	q[quantity.DutyRatio] = sol.Duty
 	q[quantity.DeadTimeDutyRatio] = o.deadTimeDuty
-	q[quantity.OnTime] = math.Min(math.Max(sol.Duty+o.deadTimeDuty, 0), 1) * period
+	q[quantity.OnTime] = min(max(sol.Duty+o.deadTimeDuty, 0), 1) * period
 	q[quantity.OffTime] = period - q[quantity.OnTime]
 	leg, n := &sol.Leg, float64(e.circuit.Phases)
 	ripple := leg.Peak - leg.Valley

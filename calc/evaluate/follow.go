@@ -113,10 +113,10 @@ func (e *Evaluator) followInductances() (change float64) {
 		if l.Saturates() && peak > valley {
 			valley, peak = e.swing(&l, leg, e.inductance[k])
 			next := e.inductance[k] * (leg.Peak - leg.Valley) / (peak - valley)
-			change = math.Max(change, math.Abs(next/e.inductance[k]-1))
+			change = max(change, math.Abs(next/e.inductance[k]-1))
 			e.inductance[k] = next
 		}
-		e.valley, e.peak = math.Min(e.valley, valley), math.Max(e.peak, peak)
+		e.valley, e.peak = min(e.valley, valley), max(e.peak, peak)
 	}
 	return change
 }
@@ -138,7 +138,7 @@ func (e *Evaluator) followBridge(o *operating) float64 {
 	o.input = power / o.bridge
 	next := o.point.Input - o.path*o.input
 	change := math.Abs(next/o.bridge - 1)
-	o.bridge = math.Max(next, o.point.Input*leastBridge)
+	o.bridge = max(next, o.point.Input*leastBridge)
 	return change
 }
 

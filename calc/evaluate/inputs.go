@@ -10,7 +10,7 @@ func (e *Evaluator) shareStart() {
 	for k := range banks {
 		sum += e.aged.input[k]
 	}
-	rms := math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+	rms := math.Sqrt(max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
 	for k := range banks {
 		e.operation.InputBank[k] = rms * e.aged.input[k] / sum
 	}

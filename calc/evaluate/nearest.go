@@ -37,9 +37,9 @@ func (e *Evaluator) Nearest(p *stage.Point, status Status) Nearest {
 		n.Input = search(&q.Input, p.Input, 10*p.Input)
 		n.LoadCurrent = search(&q.Load.Current, p.Load.Current, 0)
 	case TooShortOnTime:
-		lowest := math.Max(e.asked(p), p.Input/100)
+		lowest := max(e.asked(p), p.Input/100)
 		n.Input = search(&q.Input, p.Input, lowest)
-		n.LoadCurrent = search(&q.Load.Current, p.Load.Current, math.Max(1, 100*p.Load.Current))
+		n.LoadCurrent = search(&q.Load.Current, p.Load.Current, max(1, 100*p.Load.Current))
 	case NoOperatingPoint:
 		n.LoadCurrent = search(&q.Load.Current, p.Load.Current, 0)
 	case Runaway, OverTemperature:

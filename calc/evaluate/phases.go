@@ -1,8 +1,6 @@
 package evaluate
 
 import (
-	"math"
-
 	"railproof/calc/thermal"
 )
 
@@ -31,7 +29,7 @@ func (e *Evaluator) settlePhases(o *operating) bool {
 			return false
 		}
 		for i := range e.hottest {
-			e.hottest[i] = math.Max(e.hottest[i], e.degC[i])
+			e.hottest[i] = max(e.hottest[i], e.degC[i])
 		}
 	}
 	return true

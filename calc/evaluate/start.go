@@ -38,11 +38,11 @@ func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) 
 	vf, rr := leg.Rectifier.Threshold, leg.Rectifier.Slope
 	d := fixedDuty
 	if d < 0 {
-		d = math.Min(1, (output+vf+i*(leg.Winding+rr))/(c.Vin+vf-i*(leg.HighSide-rr)))
+		d = min(1, (output+vf+i*(leg.Winding+rr))/(c.Vin+vf-i*(leg.HighSide-rr)))
 	}
 	off := 1 - d
 	t1, t2, inverse := d*c.Period, off*c.Period, 1/leg.L
-	ripple := math.Max(0, c.Vin-output-i*(leg.HighSide+leg.Winding)) * t1 * inverse
+	ripple := max(0, c.Vin-output-i*(leg.HighSide+leg.Winding)) * t1 * inverse
 	esr := 0.0
 	if c.Phases == 1 {
 		var capacitance float64
@@ -94,7 +94,7 @@ func (e *Evaluator) startDiscontinuous(c *switched.Circuit, output, i, fixedDuty
 	sol.Duty = d
 	sol.InputMean = float64(c.Phases) * one.HighSide.Mean
 	sol.InputRMS = float64(c.Phases) * one.HighSide.RMS
-	e.startBanks(c, float64(c.Phases)*math.Sqrt(math.Max(0, (d+one.Conduct)*third-i*i)))
+	e.startBanks(c, float64(c.Phases)*math.Sqrt(max(0, (d+one.Conduct)*third-i*i)))
 }
 
 // startHarmonics is how many harmonics of the ripple the closed form divides. Near a

@@ -201,7 +201,7 @@ func solve(a *square, pivot *[maxStates]int, x *vec, n int) bool {
 	for i := range n {
 		big := 0.0
 		for _, v := range a[i*n : i*n+n] {
-			big = math.Max(big, math.Abs(v))
+			big = max(big, math.Abs(v))
 		}
 		if !(big > 0 && big < math.MaxFloat64) {
 			return false

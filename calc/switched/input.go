@@ -52,7 +52,7 @@ func (in *inputNode) drive(nw *network, ref *reference, tp *topology) {
 	at := nw.phases + nw.banks
 	for k := range in.banks {
 		tp.b[at+k] = in.inject[k] * current
-		tp.norm = math.Max(tp.norm, -2*in.relax[k][k])
+		tp.norm = max(tp.norm, -2*in.relax[k][k])
 	}
 }
 
@@ -126,7 +126,7 @@ type feed struct {
 // alternating part of the input current of the solution sol that this Solver
 // found last, for the same circuit. It reports false if there is none.
 func (s *Solver) InputBanks(c *Circuit, sol *Solution, banks int, bank *[MaxBanks]Bank, dst *InputSolution) bool {
-	dst.RMS = math.Sqrt(math.Max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
+	dst.RMS = math.Sqrt(max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
 	if sol.InputRMS == 0 {
 		*dst = InputSolution{}
 		return true

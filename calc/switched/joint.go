@@ -67,5 +67,5 @@ func (s *Solver) leftAtEnd(c *Circuit) (left, fall float64) {
 //
 //	2 dD/D = dV [1/(Vin−V) + 1/(V+V_F) + G/I]
 func (c *Circuit) restingSlope(v, duty float64) float64 {
-	return 2 / (duty * (1/(c.Vin-v) + 1/(v+c.Leg.Rectifier.Threshold) + c.Conductance/math.Max(c.load(v), math.SmallestNonzeroFloat64)))
+	return 2 / (duty * (1/(c.Vin-v) + 1/(v+c.Leg.Rectifier.Threshold) + c.Conductance/max(c.load(v), math.SmallestNonzeroFloat64)))
 }

@@ -6,7 +6,7 @@ import "math"
 type tally struct{ charge, square float64 }
 
 func (t *tally) branch(period float64) Branch {
-	return Branch{Mean: t.charge / period, RMS: math.Sqrt(math.Max(0, t.square) / period)}
+	return Branch{Mean: t.charge / period, RMS: math.Sqrt(max(0, t.square) / period)}
 }
 
 type legTally struct {
@@ -105,11 +105,11 @@ func (s *Solver) measure(c *Circuit, sol *Solution, out *extent) {
 	vo := s.ref.node + mean
 	sol.OutputMean = vo
 	load := c.load(vo)
-	variance := math.Max(0, nodeSquare/solved-mean*mean)
+	variance := max(0, nodeSquare/solved-mean*mean)
 	sol.OutputPower = vo*load + c.Conductance*variance
 	for b := range nw.banks {
 		sol.BankMean[b] = vo // no direct current flows in a bank
-		sol.BankRMS[b] = math.Sqrt(math.Max(0, bankSquare[b]) / solved)
+		sol.BankRMS[b] = math.Sqrt(max(0, bankSquare[b]) / solved)
 	}
 	sol.balance(c)
 }
@@ -200,7 +200,7 @@ func (sol *Solution) balance(c *Circuit) {
 	for k := range c.Banks {
 		loss += c.Bank[k].ESR * sol.BankRMS[k] * sol.BankRMS[k]
 	}
-	scale := math.Max(math.Max(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*high)
+	scale := max(max(math.Abs(sol.InputPower), math.Abs(sol.OutputPower)), c.Vin*high)
 	sol.EnergyBalance = 0
 	if residual := sol.InputPower - sol.OutputPower - loss; residual != 0 {
 		sol.EnergyBalance = math.Abs(residual) / scale

@@ -137,7 +137,7 @@ func (tp *topology) set(nw *network, ref *reference, c *Circuit) {
 		tp.invL[p] = 1 / leg.L
 		tp.b[p] = (u - ref.node - tp.r[p]*ref.i[p]) * tp.invL[p]
 		inductive += tp.invL[p]
-		worst = math.Max(worst, (tp.r[p]+nw.rho*float64(nw.phases))*tp.invL[p])
+		worst = max(worst, (tp.r[p]+nw.rho*float64(nw.phases))*tp.invL[p])
 	}
 	for k := range nw.banks {
 		tp.b[nw.phases+k] = nw.inject[k] * ref.extra

@@ -34,7 +34,7 @@ func (s *Solver) settleResting(c *Circuit, duty float64) Status {
 				}
 				p := s.legOf(j)
 				at, left := s.conduct[p], s.iv[k].stop[j]
-				current = math.Max(current, math.Abs(s.iv[k].start[j]))
+				current = max(current, math.Abs(s.iv[k].start[j]))
 				if left >= 0 && at == 1 {
 					ends[p] = ending{at, left, true}
 					continue // conducts all the time
@@ -43,8 +43,8 @@ func (s *Solver) settleResting(c *Circuit, duty float64) Status {
 				s.iv[k].top.slope(&s.nw, &s.iv[k].stop, &slope)
 				to := ends[p].next(duty, at, left, -slope[j]*c.Period)
 				s.conduct[p] = to
-				moved = math.Max(moved, math.Abs(to-at)/to)
-				dropped = math.Max(dropped, math.Abs(left))
+				moved = max(moved, math.Abs(to-at)/to)
+				dropped = max(dropped, math.Abs(left))
 			}
 		}
 		if moved <= zeroCurrent {
@@ -76,7 +76,7 @@ func (s *Solver) firstEnds(c *Circuit, duty float64) float64 {
 			continue
 		}
 		v = c.restingOutput(p, duty)
-		s.conduct[p] = math.Min(1, duty*(1+math.Max(0, c.Vin-v)/(v+rect.Threshold)))
+		s.conduct[p] = min(1, duty*(1+max(0, c.Vin-v)/(v+rect.Threshold)))
 		if !(s.conduct[p] > duty && v > 0) {
 			s.conduct[p] = 0.5 * (1 + duty)
 		}

@@ -224,9 +224,9 @@ func (s *Solver) periodic(c *Circuit) bool {
 	s.closure = 0
 	current, voltage := 0.0, math.Abs(s.ref.v)
 	for p := range nw.phases {
-		current = math.Max(current, math.Abs(s.ref.i[p]+x[p]))
+		current = max(current, math.Abs(s.ref.i[p]+x[p]))
 		for k := range s.count {
-			current = math.Max(current, math.Abs(s.ref.i[p]+s.iv[k].stop[p]))
+			current = max(current, math.Abs(s.ref.i[p]+s.iv[k].stop[p]))
 		}
 	}
 	for i := range n {
@@ -235,7 +235,7 @@ func (s *Solver) periodic(c *Circuit) bool {
 			scale = voltage
 		}
 		if scale > 0 {
-			s.closure = math.Max(s.closure, math.Abs(r[i])/scale)
+			s.closure = max(s.closure, math.Abs(r[i])/scale)
 		}
 	}
 	return s.closure < 1e-9 // false for NaN as well

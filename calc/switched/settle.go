@@ -34,7 +34,7 @@ func (c *Circuit) restingOutput(p int, duty float64) float64 {
 	a := c.Conductance * k
 	b := 1 + k*(c.Current+c.Conductance*vf)
 	q := c.Vin - k*c.Current*vf
-	return 2 * q / (b + math.Sqrt(math.Max(0, b*b+4*a*q)))
+	return 2 * q / (b + math.Sqrt(max(0, b*b+4*a*q)))
 }
 
 // restingDuty inverts restingOutput.

@@ -115,7 +115,7 @@ func (s *Solver) regulate(c *Circuit, vout, least, greatest float64) Status {
 	lo, hi := least, greatest
 	var atLeast, atGreatest bool
 	d, slope := s.firstDuty(c, vout)
-	d = math.Min(math.Max(d, lo), hi)
+	d = min(max(d, lo), hi)
 	var before, wasD float64
 	for i := range maxSearch {
 		status := s.settle(c, d)
@@ -193,7 +193,7 @@ func (s *Solver) firstDuty(c *Circuit, vout float64) (d, slope float64) {
 	if leg.Rectifier.Blocks && vout < c.Vin {
 		swing := (c.Vin - vout) * d * c.Period / leg.L
 		if i < 0.5*swing {
-			d = math.Min(d, c.restingDuty(0, vout))
+			d = min(d, c.restingDuty(0, vout))
 			slope = c.restingSlope(vout, d)
 		}
 	}
