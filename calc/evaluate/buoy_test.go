@@ -90,6 +90,21 @@ func BenchmarkEval(b *testing.B) {
 	}
 }
 
+// BenchmarkRails evaluates the typical point of every rail of the examples.
+func BenchmarkRails(b *testing.B) {
+	for _, rail := range []string{"buoy-5v0", "buoy-3v3", "mast-12v0"} {
+		b.Run(rail, func(b *testing.B) {
+			s, p := example(b, rail)
+			e := evaluate.Prepare(s)
+			var r evaluate.Result
+			b.ReportAllocs()
+			for b.Loop() {
+				e.Eval(&p, &r)
+			}
+		})
+	}
+}
+
 // unit is one built specimen of a stage: numbers of its own in the stage's fields.
 type unit []struct {
 	field *float64

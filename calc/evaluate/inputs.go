@@ -2,18 +2,12 @@ package evaluate
 
 import "math"
 
-// shareStart splits the input banks' current of the closed form by capacitance,
-// where the iteration begins.
+// shareStart divides the input banks' current of the closed form, where the iteration
+// begins.
 func (e *Evaluator) shareStart() {
-	banks := len(e.stage.InputCapacitors)
-	sol, sum := &e.solution, 0.0
-	for k := range banks {
-		sum += e.aged.input[k]
-	}
+	sol := &e.solution
 	rms := math.Sqrt(max(0, sol.InputRMS*sol.InputRMS-sol.InputMean*sol.InputMean))
-	for k := range banks {
-		e.operation.InputBank[k] = rms * e.aged.input[k] / sum
-	}
+	divide(rectangle, sol.Duty, rms, e.circuit.Period, e.InputBanks(), &e.operation.InputBank)
 }
 
 // share solves the input banks on the circuit solution; without banks the source

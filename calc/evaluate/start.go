@@ -63,14 +63,14 @@ func (e *Evaluator) start(c *switched.Circuit, output, load, fixedDuty float64) 
 		e.startDiscontinuous(c, output, i, fixedDuty)
 		return
 	}
-	triangle := ripple * ripple / 12
-	high, low := d*(on*on+triangle), off*(fall*fall+triangle)
+	square := ripple * ripple / 12
+	high, low := d*(on*on+square), off*(fall*fall+square)
 	one.Inductor = switched.Branch{Mean: i, RMS: math.Sqrt(high + low)}
 	one.HighSide = switched.Branch{Mean: d * on, RMS: math.Sqrt(high)}
 	one.Rectifier = switched.Branch{Mean: off * fall, RMS: math.Sqrt(low)}
 	one.TurnOn, one.TurnOff = one.Valley, one.Peak
 	sol.Duty = d
-	e.startBanks(c, n*math.Sqrt(triangle))
+	divide(triangle, d, n*math.Sqrt(square), c.Period, c.Bank[:c.Banks], &sol.BankRMS)
 	sol.InputMean = n * one.HighSide.Mean
 	sol.InputRMS = n * one.HighSide.RMS
 }
@@ -94,41 +94,66 @@ func (e *Evaluator) startDiscontinuous(c *switched.Circuit, output, i, fixedDuty
 	sol.Duty = d
 	sol.InputMean = float64(c.Phases) * one.HighSide.Mean
 	sol.InputRMS = float64(c.Phases) * one.HighSide.RMS
-	e.startBanks(c, float64(c.Phases)*math.Sqrt(max(0, (d+one.Conduct)*third-i*i)))
+	divide(triangle, d, float64(c.Phases)*math.Sqrt(max(0, (d+one.Conduct)*third-i*i)), c.Period, c.Bank[:c.Banks], &sol.BankRMS)
 }
 
-// startHarmonics is how many harmonics of the ripple the closed form divides. Near a
-// duty ratio of one half those left out carry two thousandths of its power, at small
-// duty ratios more, which the circuit's solution puts right.
-const startHarmonics = 3
+// wave is a shape of periodic current by how fast its harmonics fall.
+type wave int
 
-// startBanks divides the RMS ripple current [A] among the output banks, each harmonic
-// of the triangle by the banks' admittances.
+const (
+	rectangle wave = 1 // an = sin(n π D)/n
+	triangle  wave = 2 // an = sin(n π D)/n²
+)
+
+// total is Σ an² over all harmonics.
+func (w wave) total(duty float64) float64 {
+	x := math.Pi * math.Pi * duty * (1 - duty)
+	if w == rectangle {
+		return x / 2
+	}
+	return x * x / 6
+}
+
+// dividedHarmonics is how many harmonics of a current the closed form divides one by
+// one.
+const dividedHarmonics = 3
+
+// divide shares the RMS value of a current [A] among banks in parallel: its first
+// harmonics by the banks' admittances, the rest by their conductances.
 //
-//	Ik² = I² Σ an² |Yk(n ω)/ΣY(n ω)|² / Σ an²,  an = sin(n π D)/n²
-func (e *Evaluator) startBanks(c *switched.Circuit, rms float64) {
-	share := &e.solution.BankRMS
-	if c.Banks == 1 || !(rms > 0) {
+//	Ik² = I² [Σ an² |Yk(n ω)/ΣY(n ω)|² + (A − Σ an²) (gk/Σg)²]/A,  A = Σ an² over all
+func divide(w wave, duty, rms, period float64, bank []switched.Bank, share *[switched.MaxBanks]float64) {
+	whole := w.total(duty)
+	if len(bank) == 1 || !(rms > 0 && whole > 0) {
 		share[0] = rms
 		return
 	}
-	whole := 0.0
-	for n := 1.0; n <= startHarmonics; n++ {
-		omega := 2 * math.Pi * n / c.Period
-		a := math.Sin(n*math.Pi*e.solution.Duty) / (n * n)
-		whole += a * a
-		var y [switched.MaxBanks]complex128
-		var sum complex128
-		for k := range c.Banks {
-			y[k] = admittance(&c.Bank[k], omega)
-			sum += y[k]
+	var sum [switched.MaxBanks]float64
+	left := whole
+	for n := 1.0; n <= dividedHarmonics; n++ {
+		omega := 2 * math.Pi * n / period
+		a := math.Sin(n*math.Pi*duty) / n
+		if w == triangle {
+			a /= n
 		}
-		for k := range c.Banks {
-			share[k] += a * a * square(y[k]) / square(sum)
+		left -= a * a
+		var y [switched.MaxBanks]complex128
+		var all complex128
+		for k := range bank {
+			y[k] = admittance(&bank[k], omega)
+			all += y[k]
+		}
+		for k := range bank {
+			sum[k] += a * a * square(y[k]) / square(all)
 		}
 	}
-	for k := range c.Banks {
-		share[k] = rms * math.Sqrt(share[k]/whole)
+	conductance := 0.0
+	for k := range bank {
+		conductance += 1 / bank[k].ESR
+	}
+	for k := range bank {
+		part := 1 / (bank[k].ESR * conductance)
+		share[k] = rms * math.Sqrt((sum[k]+max(0, left)*part*part)/whole)
 	}
 }
 

@@ -180,6 +180,9 @@ func (s *Solver) shareInput(c *Circuit, sol *Solution, banks int, bank *[MaxBank
 		}
 	}
 	nw := &s.nw
+	if banks == 2 && nw.input.banks == 0 && s.sharePair(sol, bank, dst) {
+		return true
+	}
 	nw.input.set(banks, bank, sol.InputMean)
 	nw.n = nw.phases + nw.banks + banks
 	if !s.periodic(c) {

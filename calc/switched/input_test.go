@@ -4,6 +4,8 @@ import (
 	"math"
 	"testing"
 
+	"pgregory.net/rapid"
+
 	"railproof/calc/internal/calctest"
 )
 
@@ -104,5 +106,65 @@ func TestInputBanksAgainstStepping(t *testing.T) {
 			}
 			calctest.Close(t, "ripple", got.RipplePP, most-least, 1e-4)
 		})
+	}
+}
+
+// The closed form for two unequal banks against the solver for any number, and how
+// often it serves.
+func TestInputPair(t *testing.T) {
+	var served, asked int
+	rapid.Check(t, func(t *rapid.T) {
+		c := buoy(rapid.IntRange(1, 3).Draw(t, "output banks"))
+		switch rapid.SampledFrom([]string{"ccm", "dcm", "reverse", "two phases"}).Draw(t, "mode") {
+		case "dcm":
+			c = light(c)
+		case "reverse":
+			c.Current = 0.1
+		case "two phases":
+			c.Phases = 2
+		}
+		c.Vin = rapid.Float64Range(7, 40).Draw(t, "input")
+		draw := func(name string, least, greatest float64) float64 {
+			return least * math.Pow(greatest/least, rapid.Float64Range(0, 1).Draw(t, name))
+		}
+		bank := [MaxBanks]Bank{
+			{C: draw("C1", 1e-6, 1e-4), ESR: draw("r1", 1e-4, 0.1)},
+			{C: draw("C2", 1e-6, 1e-3), ESR: draw("r2", 1e-4, 1)},
+		}
+		var s Solver
+		var sol Solution
+		s.Regulated(c, 5, 0.01, 0.95, &sol)
+		if sol.Status != Solved {
+			t.Skip(sol.Status)
+		}
+		want := InputSolution{RMS: math.Sqrt(sol.InputRMS*sol.InputRMS - sol.InputMean*sol.InputMean)}
+		got := want
+		s.prepare(c)
+		if s.settle(c, sol.Duty) != Solved {
+			t.Skip("not settled")
+		}
+		asked++
+		if !s.sharePair(&sol, &bank, &got) {
+			return
+		}
+		served++
+		s.nw.input.set(2, &bank, sol.InputMean) // keeps shareInput from the closed form
+		s.nw.n = s.nw.phases + s.nw.banks + 2
+		s.closed = false
+		if !s.shareInput(c, &sol, 2, &bank, &want) {
+			t.Fatal("not solved")
+		}
+		if math.Abs(got.RipplePP-want.RipplePP) > 1e-10*want.RipplePP {
+			t.Fatalf("ripple: got %.12g V, want %.12g V", got.RipplePP, want.RipplePP)
+		}
+		for k := range 2 {
+			if math.Abs(got.BankRMS[k]-want.BankRMS[k]) > 5e-9*want.RMS {
+				t.Fatalf("bank %d: got %.12g A, want %.12g A of %g A", k, got.BankRMS[k], want.BankRMS[k], want.RMS)
+			}
+		}
+	})
+	t.Logf("the closed form served %d of %d", served, asked)
+	if 3*served < asked {
+		t.Error("the closed form hardly serves")
 	}
 }
