@@ -32,7 +32,7 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 		frequencies := sizing.Frequencies(&r.Requirement, r.Choices)
 		answers := make([]sizing.Answer, len(frequencies))
 		err := inChunks(ctx, s.cores, len(answers), 1, s.workers, noWorkspace, keepNothing, func(_ struct{}, from, _ int) {
-			answers[from] = sizing.SizeAt(&r.Requirement, r.Choices, frequencies[from])
+			answers[from] = s.sized(ctx, &r.Requirement, r.Choices, frequencies[from])
 		})
 		if err != nil {
 			return err
@@ -52,6 +52,18 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 		return nil, err
 	}
 	return a, nil
+}
+
+// sized is sizing.SizeAt by a worker in its turn, which it passes on between the
+// pieces. It leaves with its caller; what it returns then is no answer.
+func (s *Service) sized(ctx context.Context, r *stage.Requirement, choices sizing.Choices, frequency float64) (a sizing.Answer) {
+	for range sizing.SizingAt(r, choices, frequency, &a) {
+		if ctx.Err() != nil {
+			break
+		}
+		s.cores.next()
+	}
+	return a
 }
 
 func noWorkspace() struct{} { return struct{}{} }

@@ -25,7 +25,7 @@ func (s *Service) sizingAssumptions(ctx context.Context, r *SizingRequest, a *si
 			list[i].Pointer = "/" + f.Field
 			list[i].Effect = s.draftEffect(a, f)
 		} else if base := chosenRow(a); base != nil && f.Low != f.High {
-			list[i].Effect = rowEffect(base, resized(r, f, f.Low, a.Frequency), resized(r, f, f.High, a.Frequency))
+			list[i].Effect = rowEffect(base, s.resized(ctx, r, f, f.Low, a.Frequency), s.resized(ctx, r, f, f.High, a.Frequency))
 		}
 	})
 	if err != nil {
@@ -60,14 +60,14 @@ func (s *Service) draftEffect(a *sizing.Answer, f *stage.Assumed) *Effect {
 
 // resized sizes once more with another value in an assumption's place; nil where
 // that is infeasible or the value has no place in the requirement.
-func resized(r *SizingRequest, f *stage.Assumed, value, frequency float64) *sizing.Row {
+func (s *Service) resized(ctx context.Context, r *SizingRequest, f *stage.Assumed, value, frequency float64) *sizing.Row {
 	q := r.Requirement
 	place := requirementField(&q, f.Field)
 	if place == nil {
 		return nil
 	}
 	*place = value
-	a := sizing.SizeAt(&q, r.Choices, frequency)
+	a := s.sized(ctx, &q, r.Choices, frequency)
 	return chosenRow(&a)
 }
 

@@ -29,6 +29,22 @@ func stepRequirement() *SizingRequest {
 // and the checks of a broken run are not told.
 func TestSizingIsLeftBetweenAnyTwoPieces(t *testing.T) {
 	r := stepRequirement()
+	var left sizing.Answer
+	whole := 0
+	for range sizing.SizingAt(&r.Requirement, r.Choices, 500e3, &left) {
+		whole++
+	}
+	require.Greater(t, whole, 10)
+	for stop := 1; stop < whole; stop++ {
+		left = sizing.Answer{}
+		pieces := 0
+		for range sizing.SizingAt(&r.Requirement, r.Choices, 500e3, &left) {
+			if pieces++; pieces == stop {
+				break
+			}
+		}
+		require.Nil(t, left.Stage, "left after %d of %d pieces", stop, whole)
+	}
 	a := sizing.SizeAt(&r.Requirement, r.Choices, 500e3)
 	require.True(t, a.Status.OK(), "%v", a.Conflicts)
 	for name, run := range map[string]func(yield func() bool){"corners": a.Verifying, "load step": a.VerifyingStep(&r.Requirement)} {

@@ -77,6 +77,9 @@ func (z *sizer) compensator() bool {
 	reserve, restless := math.Inf(-1), 0
 	for _, try := range loopTargets {
 		design, ok := z.network(&plant, try.crossover*z.fs, try.margin)
+		if !z.pace.goesOn() {
+			return false
+		}
 		if !ok {
 			continue
 		}
@@ -90,7 +93,7 @@ func (z *sizer) compensator() bool {
 		if m >= 0 && !z.settles {
 			restless++
 		}
-		if z.settles || restless == mostRestless {
+		if z.settles || restless == mostRestless || z.pace.left {
 			break
 		}
 	}
@@ -170,6 +173,9 @@ func (z *sizer) loopReserve(typical *loop.Margins, beat float64) float64 {
 						}
 					}
 				}
+				if !z.pace.goesOn() {
+					return math.Inf(-1)
+				}
 			}
 		}
 	}
@@ -203,7 +209,7 @@ func (z *sizer) stepSettles() bool {
 			e.Stage().SwitchingFrequency = fs
 			for _, p.Input = range [2]float64{z.req.Input.Min, z.req.Input.Max} {
 				for _, applied := range [2]bool{true, false} {
-					if o, ok := follower.Follow(e, &p, applied); !ok || !(o.Recovery <= z.settled(fs)) {
+					if o, ok := follower.Follow(e, &p, applied); !ok || !(o.Recovery <= z.settled(fs)) || !z.pace.goesOn() {
 						return false
 					}
 				}

@@ -49,13 +49,30 @@ func Size(req *stage.Requirement, choice Choices) Answer {
 
 // SizeAt sizes a stage at one switching frequency [Hz]: the chunk of a sweep. It is
 // pure; the checks on the exact engine over all corners are Verify's.
-func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
+func SizeAt(req *stage.Requirement, choice Choices, fs float64) (a Answer) {
+	for range SizingAt(req, choice, fs, &a) {
+	}
+	return a
+}
+
+// SizingAt is SizeAt into dst for a caller that looks about in between: it yields
+// every few milliseconds. Left before its end it gives no answer.
+func SizingAt(req *stage.Requirement, choice Choices, fs float64, dst *Answer) func(yield func() bool) {
+	return func(yield func() bool) {
+		p := &pace{yield: yield}
+		if a := sizeAt(req, choice, fs, p); !p.left {
+			*dst = a
+		}
+	}
+}
+
+func sizeAt(req *stage.Requirement, choice Choices, fs float64, p *pace) Answer {
 	var best *sizer
 	for _, try := range trials {
 		if try.inductance > 1 && !known(req.Targets.Efficiency) && best.judged.cool(best) {
 			continue // loss alone, which nobody limits, is no reason for a larger inductor
 		}
-		z := newSizer(req, choice, fs, try)
+		z := newSizer(req, choice, fs, try, p)
 		z.run()
 		if z.failed() {
 			if best == nil || best.failed() {
@@ -67,6 +84,9 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 			continue
 		}
 		j := z.judge()
+		if !p.goesOn() {
+			return Answer{}
+		}
 		if best == nil || best.failed() || j.better(best.judged) {
 			best = z
 		}
@@ -80,6 +100,9 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 		best.conclude()
 		best = best.calmer()
 	}
+	if p.left {
+		return Answer{}
+	}
 	best.ans.Status = OK
 	if best.failed() {
 		best.ans.Status = Infeasible
@@ -92,10 +115,10 @@ func SizeAt(req *stage.Requirement, choice Choices, fs float64) Answer {
 // whose output bank leaves a slower loop enough.
 func (z *sizer) calmer() *sizer {
 	for _, share := range [...]float64{0.05, 0.025} {
-		if z.settles || z.failed() {
+		if z.settles || z.failed() || z.pace.left {
 			break
 		}
-		n := newSizer(z.req, z.choice, z.fs, z.try)
+		n := newSizer(z.req, z.choice, z.fs, z.try, z.pace)
 		n.share = share
 		if n.run(); n.failed() {
 			continue

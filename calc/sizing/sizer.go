@@ -16,6 +16,7 @@ type sizer struct {
 	want   stage.Targets // with the defaults of what was left open
 	phases float64       // [1]
 	try    trial
+	pace   *pace
 	share  float64 // [1] crossover that the output bank is sized for, over the switching frequency
 
 	fs, fsLow, fsHigh float64        // [Hz]
@@ -57,8 +58,8 @@ type trial struct {
 
 // newSizer fills in the targets' defaults and what follows from the requirement
 // alone.
-func newSizer(req *stage.Requirement, choice Choices, fs float64, try trial) *sizer {
-	z := &sizer{req: req, choice: choice.withDefaults(req.Output), want: req.Targets, phases: float64(req.PhaseCount), try: try, share: crossoverRatio, fs: fs}
+func newSizer(req *stage.Requirement, choice Choices, fs float64, try trial, p *pace) *sizer {
+	z := &sizer{req: req, choice: choice.withDefaults(req.Output), want: req.Targets, phases: float64(req.PhaseCount), try: try, pace: p, share: crossoverRatio, fs: fs}
 	z.fsLow, z.fsHigh = fs*(1-frequencyTol), fs*(1+frequencyTol)
 	z.ans.Frequency = fs
 	z.defaults()

@@ -1513,7 +1513,7 @@ class ModelDeviation(TypedDict):
 
 
 class CurrentLoop(TypedDict):
-    """Peak current mode: the loop of the current from one period to the next."""
+    """Peak current mode: the loop of the current from one period to the next; of unequal phases that of the least damped one."""
 
     stable: bool
     eigenvalue_ratio: float  # [1] Exact: what is left of a disturbance of the current after one period, with its sign; magnitude below 1 is stable.
@@ -1549,7 +1549,7 @@ class LoopItem(TypedDict):
     nearest_operable: NotRequired['NearestOperable']
     stability: NotRequired[Literal['stable', 'unstable']]  # By the eigenvalues of the closed loop, not by margins.
     crossing: NotRequired[Literal['crosses', 'always-below', 'always-above', 'only-rises']]  # Whether the loop gain falls through 1.
-    spectral_radius_ratio: NotRequired[float]  # [1] Greatest modulus of the eigenvalues, from one decision of a comparator to the next; below 1 is stable.
+    spectral_radius_ratio: NotRequired[float]  # [1] Greatest modulus of the eigenvalues, from one decision of a comparator to the next, with unequal phases in the mean over the decisions of a period; below 1 is stable.
     dominant_hz: NotRequired[float]  # [Hz] Frequency at which that one oscillates.
     crossovers: NotRequired[List['Crossover']]  # All of them, up to twelve.
     phase_crossings: NotRequired[List['PhaseCrossing']]

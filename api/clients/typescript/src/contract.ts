@@ -3511,7 +3511,7 @@ export interface components {
              */
             stage_ratio: number;
         };
-        /** @description Peak current mode: the loop of the current from one period to the next. */
+        /** @description Peak current mode: the loop of the current from one period to the next; of unequal phases that of the least damped one. */
         CurrentLoop: {
             stable: boolean;
             /**
@@ -3616,7 +3616,7 @@ export interface components {
             crossing?: "crosses" | "always-below" | "always-above" | "only-rises";
             /**
              * Format: double
-             * @description Greatest modulus of the eigenvalues, from one decision of a comparator to the next; below 1 is stable.
+             * @description Greatest modulus of the eigenvalues, from one decision of a comparator to the next, with unequal phases in the mean over the decisions of a period; below 1 is stable.
              */
             spectral_radius_ratio?: number;
             /**
