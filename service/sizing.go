@@ -57,7 +57,7 @@ func (s *Service) Sizing(ctx context.Context, r *SizingRequest) (*SizingAnswer, 
 // sized is sizing.SizeAt by a worker in its turn, which it passes on between the
 // pieces. It leaves with its caller; what it returns then is no answer.
 func (s *Service) sized(ctx context.Context, r *stage.Requirement, choices sizing.Choices, frequency float64) (a sizing.Answer) {
-	for range sizing.SizingAt(r, choices, frequency, &a) {
+	for range sizing.InPieces(r, choices, frequency, &a) {
 		if ctx.Err() != nil {
 			break
 		}

@@ -31,14 +31,14 @@ func TestSizingIsLeftBetweenAnyTwoPieces(t *testing.T) {
 	r := stepRequirement()
 	var left sizing.Answer
 	whole := 0
-	for range sizing.SizingAt(&r.Requirement, r.Choices, 500e3, &left) {
+	for range sizing.InPieces(&r.Requirement, r.Choices, 500e3, &left) {
 		whole++
 	}
 	require.Greater(t, whole, 10)
 	for stop := 1; stop < whole; stop++ {
 		left = sizing.Answer{}
 		pieces := 0
-		for range sizing.SizingAt(&r.Requirement, r.Choices, 500e3, &left) {
+		for range sizing.InPieces(&r.Requirement, r.Choices, 500e3, &left) {
 			if pieces++; pieces == stop {
 				break
 			}

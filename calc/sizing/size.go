@@ -50,14 +50,14 @@ func Size(req *stage.Requirement, choice Choices) Answer {
 // SizeAt sizes a stage at one switching frequency [Hz]: the chunk of a sweep. It is
 // pure; the checks on the exact engine over all corners are Verify's.
 func SizeAt(req *stage.Requirement, choice Choices, fs float64) (a Answer) {
-	for range SizingAt(req, choice, fs, &a) {
+	for range InPieces(req, choice, fs, &a) {
 	}
 	return a
 }
 
-// SizingAt is SizeAt into dst for a caller that looks about in between: it yields
+// InPieces is SizeAt into dst for a caller that looks about in between: it yields
 // every few milliseconds. Left before its end it gives no answer.
-func SizingAt(req *stage.Requirement, choice Choices, fs float64, dst *Answer) func(yield func() bool) {
+func InPieces(req *stage.Requirement, choice Choices, fs float64, dst *Answer) func(yield func() bool) {
 	return func(yield func() bool) {
 		p := &pace{yield: yield}
 		if a := sizeAt(req, choice, fs, p); !p.left {
