@@ -65,7 +65,7 @@ func (c *canvas) tone(full color.NRGBA) *tone {
 	if !known {
 		t = &tone{full: full}
 		if full.A == math.MaxUint8 {
-			t.plain = c.name(color.RGBA{full.R, full.G, full.B, full.A})
+			t.plain = c.name(color.RGBA(full))
 		}
 		c.tones[full] = t
 	}
