@@ -2,6 +2,7 @@ package render
 
 import (
 	"image/color"
+	"math"
 
 	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
@@ -15,32 +16,36 @@ type label struct {
 	at   vg.Point
 }
 
-// labels are placed one after another, each where it hides no other.
-type labels []label
+// labels are placed one after another, each where it hides no other and, if there is
+// room, no curve.
+type labels struct {
+	list   []label
+	curves [][]vg.Point
+}
 
 func (l *labels) add(x label) {
 	if x.text != "" {
-		*l = append(*l, x)
+		l.list = append(l.list, x)
 	}
 }
 
-func (l labels) draw(f draw.Canvas) {
+func (l *labels) draw(f draw.Canvas) {
 	var taken []vg.Rectangle
-	for _, x := range l {
+	for _, x := range l.list {
 		text := clip(x.ink, x.text, f.Max.X-f.Min.X-px(8))
 		size := vg.Point{X: x.ink.Width(text), Y: lineStep(x.ink)}
-		box := freePlace(f.Rectangle, x.at, size, taken)
+		box := l.place(f.Rectangle, x.at, size, taken)
 		taken = append(taken, box)
 		fill(f, color.NRGBA{paper.R, paper.G, paper.B, 215}, box)
 		write(f, x.ink, box.Min.X, (box.Min.Y+box.Max.Y)/2, draw.XLeft, text)
 	}
 }
 
-// freePlace looks right and left of a point, above it and below, then farther, for
-// a place inside the field that is not taken.
-func freePlace(field vg.Rectangle, at, size vg.Point, taken []vg.Rectangle) vg.Rectangle {
+// place looks right and left of a point, above it and below, then farther, for a
+// place inside the field that is not taken.
+func (l *labels) place(field vg.Rectangle, at, size vg.Point, taken []vg.Rectangle) vg.Rectangle {
 	gap := px(7)
-	var first vg.Rectangle
+	var first, second *vg.Rectangle // of any, and of those that are not taken
 	for try := range 40 {
 		up := 0.8 * vg.Length(try/4+1) * size.Y
 		if try%4 >= 2 {
@@ -53,18 +58,49 @@ func freePlace(field vg.Rectangle, at, size vg.Point, taken []vg.Rectangle) vg.R
 		x = min(max(x, field.Min.X+px(2)), field.Max.X-size.X-px(2))
 		y := min(max(at.Y+up-size.Y/2, field.Min.Y), field.Max.Y-size.Y)
 		box := vg.Rectangle{Min: vg.Point{X: x, Y: y}, Max: vg.Point{X: x + size.X, Y: y + size.Y}}
-		if try == 0 {
-			first = box
+		if first == nil {
+			first = &box
 		}
 		over := x < at.X && at.X < x+size.X && y < at.Y && at.Y < y+size.Y // the point itself
 		for _, t := range taken {
 			over = over || box.Min.X < t.Max.X && t.Min.X < box.Max.X && box.Min.Y < t.Max.Y-0.1 && t.Min.Y < box.Max.Y-0.1
 		}
-		if !over {
+		if over {
+			continue
+		}
+		if second == nil {
+			second = &box
+		}
+		if !l.hides(box) {
 			return box
 		}
 	}
-	return first
+	if second != nil {
+		return *second
+	}
+	return *first
+}
+
+// hides reports whether a box lies on a curve.
+func (l *labels) hides(box vg.Rectangle) bool {
+	for _, line := range l.curves {
+		for i := 1; i < len(line); i++ {
+			a, b := line[i-1], line[i]
+			if max(a.X, b.X) < box.Min.X || min(a.X, b.X) > box.Max.X || max(a.Y, b.Y) < box.Min.Y || min(a.Y, b.Y) > box.Max.Y {
+				continue
+			}
+			along := b.Sub(a)
+			least, most := vg.Length(math.Inf(1)), vg.Length(math.Inf(-1))
+			for _, corner := range [4]vg.Point{box.Min, {X: box.Max.X, Y: box.Min.Y}, box.Max, {X: box.Min.X, Y: box.Max.Y}} {
+				side := cross(along, corner.Sub(a))
+				least, most = min(least, side), max(most, side)
+			}
+			if least <= 0 && most >= 0 {
+				return true
+			}
+		}
+	}
+	return false
 }
 
 // legendItem is a head or the name of a curve with a piece of its line.

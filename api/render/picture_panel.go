@@ -113,10 +113,10 @@ func (p *panel) draw(c draw.Canvas) {
 	if p.columns != nil {
 		p.columns.draw(f, x, y)
 	}
-	for i := range p.curves {
-		drawCurve(f, &p.curves[i], x, y)
-	}
 	var labels labels
+	for i := range p.curves {
+		labels.curves = append(labels.curves, drawCurve(f, &p.curves[i], x, y)...)
+	}
 	for i := range p.marks {
 		p.mark(f, &p.marks[i], x, y, &labels)
 	}
@@ -175,8 +175,10 @@ func spaced(list []tick, at func(float64) vg.Length) []tick {
 	return list
 }
 
-func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length) {
-	for _, line := range decimate(c.x, c.y, x, y, px(0.5)) {
+// drawCurve draws a curve and returns the lines that it consists of.
+func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length) [][]vg.Point {
+	lines := decimate(c.x, c.y, x, y, px(0.5))
+	for _, line := range lines {
 		if c.style.Width == 0 {
 			break
 		}
@@ -194,6 +196,7 @@ func drawCurve(f draw.Canvas, c *curve, x, y func(float64) vg.Length) {
 			}
 		}
 	}
+	return lines
 }
 
 func finite(p vg.Point) bool {

@@ -188,6 +188,9 @@ func (s *scale) prefix() (factor float64, symbol string) {
 		u.symbol = s.unit
 	}
 	size := max(math.Abs(s.least), math.Abs(s.greatest))
+	if s.unit == "h" && size >= 1e6 {
+		return 1e-6, "million h"
+	}
 	if s.unit == "1" || s.unit == "" || !u.prefixed || size == 0 {
 		return 1, u.symbol
 	}

@@ -78,11 +78,15 @@ func writeLines(c draw.Canvas, ink text.Style, lines []string, y vg.Length) vg.L
 	return y
 }
 
+// lift brings the middle of capitals and figures to where the library puts the middle
+// of the whole height of letters, in sizes of the font.
+const lift = 0.1
+
 // write puts a line of text, centred vertically on y.
 func write(c draw.Canvas, ink text.Style, x, y vg.Length, align text.XAlignment, s string) {
 	if s == "" {
 		return
 	}
 	ink.XAlign, ink.YAlign = align, draw.YCenter
-	c.FillText(ink, vg.Point{X: x, Y: y}, s)
+	c.FillText(ink, vg.Point{X: x, Y: y + lift*ink.Font.Size}, s)
 }

@@ -4,6 +4,7 @@ import (
 	"bytes"
 	_ "embed"
 	"html/template"
+	"regexp"
 	"slices"
 	"sync"
 
@@ -75,13 +76,33 @@ type grille struct {
 }
 
 // entry is a text with a class: n for numbers, w for what may be broken anywhere,
-// pass, fail or mind for verdicts.
-type entry struct{ Text, Class string }
+// pass, fail or mind for verdicts; it may be wider than a column.
+type entry struct {
+	Text, Class string
+	Span        int
+}
 
 //go:embed report.tmpl
 var reportText string
 
-var reportTemplate = template.Must(template.New("report").Parse(reportText))
+var reportTemplate = template.Must(template.New("report").Funcs(template.FuncMap{"together": together, "divided": divided}).Parse(reportText))
+
+var (
+	beforeUnit = regexp.MustCompile(`([0-9]) ((?:[fpnµmkMGT]?(?:V|A|W|Hz|s|H|F|C|J|T|S|Ω)(?:/[a-zK]+³?)?|°C|K/W|K|h|dB|%|[mc]?m[²³])(?:[^\pL]|$))`)
+	minus      = regexp.MustCompile(`(^|[ (])-([0-9])`)
+	divides    = regexp.MustCompile(`[/_]+`)
+)
+
+// together keeps figures and their units on one line, and writes minus signs as such.
+func together(text string) string {
+	return minus.ReplaceAllString(beforeUnit.ReplaceAllString(text, "$1\u00a0$2"), "$1−$2")
+}
+
+// divided lets a line break within a pointer, where its names end and their words.
+func divided(text string) template.HTML {
+	escaped := template.HTMLEscapeString(together(text))
+	return template.HTML(divides.ReplaceAllString(escaped, "$0<wbr/>")) //nolint:gosec // escaped, and nothing but breaks added
+}
 
 // chapters lists the sections that a report may have, in its order.
 var chapters = []struct {
@@ -212,11 +233,11 @@ func row(kinds string, texts ...string) []entry {
 func judged(verdict string) entry {
 	switch verdict {
 	case "pass", "met", "ok":
-		return entry{verdict, "pass"}
+		return entry{Text: verdict, Class: "pass"}
 	case "fail", "not met", "runaway", "over-temperature", "drop-out", "no-operating-point", "too-short-on-time", "infeasible":
-		return entry{verdict, "fail"}
+		return entry{Text: verdict, Class: "fail"}
 	case "no-limit":
-		return entry{"no limit", ""}
+		return entry{Text: "no limit"}
 	}
-	return entry{verdict, "mind"}
+	return entry{Text: verdict, Class: "mind"}
 }

@@ -19,6 +19,9 @@ func (r *Report) cautions() []part {
 	}
 	for _, b := range r.bases() {
 		for _, w := range b.Warnings {
+			if r.Sizing != nil && b == &r.Sizing.Basis && strings.HasPrefix(w.Pointer, "/stage/") {
+				continue
+			}
 			if s := w.Detail + place(w.Pointer); !slices.Contains(items, s) {
 				items = append(items, s)
 			}
@@ -38,8 +41,12 @@ type hazard struct {
 
 func (r *Report) hazards() (list []*hazard) {
 	for _, b := range r.bases() {
+		ofDraft := r.Sizing != nil && b == &r.Sizing.Basis
 		for i := range b.Cautions {
 			c := &b.Cautions[i]
+			if ofDraft && strings.HasPrefix(c.Pointer, "/stage/") {
+				continue // of a part that is not in this stage
+			}
 			k := slices.IndexFunc(list, func(h *hazard) bool { return h.detail == c.Detail })
 			if k < 0 {
 				k, list = len(list), append(list, &hazard{detail: c.Detail})
@@ -97,10 +104,32 @@ func (h *hazard) words() string {
 	return text
 }
 
-// assumptions lists what was not given, by the size of its effect.
+// assumptions lists what was not given, by the size of its effect: of the stage, and
+// apart from it of the draft that sizing made from the requirement.
 func (r *Report) assumptions() []part {
-	heaviest := map[string]*wire.Assumption{}
+	var ofStage []*wire.Basis
 	for _, b := range r.bases() {
+		if r.Sizing == nil || b != &r.Sizing.Basis {
+			ofStage = append(ofStage, b)
+		}
+	}
+	blocks := []part{{Text: "None: every value that the answers rest on was given."}}
+	if t := assumptionTable(ofStage); len(t.Rows) > 0 {
+		blocks = []part{{Table: t}}
+	}
+	if r.Sizing != nil {
+		if t := assumptionTable([]*wire.Basis{&r.Sizing.Basis}); len(t.Rows) > 0 {
+			blocks = append(blocks, part{Head: "Of the draft that sizing made"}, part{Text: "These are values of a stage that was drawn from the requirement alone, not of the stage above."}, part{Table: t})
+		}
+	}
+	return blocks
+}
+
+// assumptionTable lists what the answers rest on, each field once, the weightiest
+// first.
+func assumptionTable(of []*wire.Basis) *grille {
+	heaviest := map[string]*wire.Assumption{}
+	for _, b := range of {
 		for i := range b.Assumptions {
 			a := &b.Assumptions[i]
 			if known := heaviest[a.Pointer]; known == nil || weight(a) > weight(known) {
@@ -115,9 +144,6 @@ func (r *Report) assumptions() []part {
 	slices.SortFunc(list, func(x, y *wire.Assumption) int {
 		return cmp.Or(cmp.Compare(weight(y), weight(x)), cmp.Compare(x.Pointer, y.Pointer))
 	})
-	if list == nil {
-		return []part{{Text: "None: every value that the answers rest on was given."}}
-	}
 	t := &grille{Head: row("tntt", "field", "value used", "why", "effect over its range")}
 	for _, a := range list {
 		effect := ""
@@ -129,7 +155,7 @@ func (r *Report) assumptions() []part {
 		}
 		t.Rows = append(t.Rows, row("wntt", a.Pointer, figure(a.Value, a.Unit), a.Why, effect))
 	}
-	return []part{{Table: t}}
+	return t
 }
 
 // reproduction tells which requests gave these answers.

@@ -2,6 +2,7 @@ package render
 
 import (
 	"cmp"
+	"slices"
 
 	"railproof/api/wire"
 )
@@ -40,7 +41,7 @@ func boundsTable(windows []wire.Window) *grille {
 			b := &w.Bounds[k]
 			cells := row("tttnntt", quantityName(w.Name), b.Side, b.Constraint, Figure3(b.Value, b.Unit), figure(b.Ideal, b.Unit), cornerWords(&b.Corner), sourced(b.Formula, b.Source))
 			if b.Binding {
-				cells[2] = entry{b.Constraint + " (decides)", ""}
+				cells[2] = entry{Text: b.Constraint + " (decides)"}
 			}
 			t.Rows = append(t.Rows, cells)
 		}
@@ -128,10 +129,14 @@ func hottestItem(a *wire.LossesAnswer) int {
 }
 
 func temperatureTable(list []wire.PartTemperature) *grille {
-	t := &grille{Head: row("tnnnn", "part", "temperature", "rating", "margin", "life")}
+	columns := 4
+	if slices.ContainsFunc(list, func(p wire.PartTemperature) bool { return p.Life != nil }) {
+		columns = 5
+	}
+	t := &grille{Head: row("tnnnn", "part", "temperature", "rating", "margin", "life")[:columns]}
 	for i := range list {
 		p := &list[i]
-		cells := row("tnnnn", spoken(p.Part), Figure3(p.Temperature, "Cel"), figure(p.Rating, "Cel"), figure(p.Margin, "K"), figure(p.Life, "s"))
+		cells := row("tnnnn", spoken(p.Part), Figure3(p.Temperature, "Cel"), figure(p.Rating, "Cel"), figure(p.Margin, "K"), figure(p.Life, "s"))[:columns]
 		if p.Margin != nil && *p.Margin < 0 {
 			cells[3].Class = "fail"
 		}

@@ -11,9 +11,9 @@ import (
 
 // requirement lists what the rail must do, as it was given.
 func (r *Report) requirement() []part {
-	blocks := []part{{Table: listing(r.Request["requirement"], "/requirement")}}
+	blocks := []part{{Table: listing("field", r.Request["requirement"], "/requirement")}}
 	if r.Request["conditions"] != nil {
-		blocks = append(blocks, part{Head: "Conditions"}, part{Table: listing(r.Request["conditions"], "/conditions")})
+		blocks = append(blocks, part{Head: "Conditions"}, part{Table: listing("field", r.Request["conditions"], "/conditions")})
 	}
 	if limits, given := r.Request["limits"].([]any); given && len(limits) > 0 {
 		t := &grille{Head: row("tnnt", "quantity", "least", "greatest", "holds at")}
@@ -51,10 +51,10 @@ func (r *Report) stage() []part {
 				plainFields[name] = v
 				continue
 			}
-			blocks = append(blocks, part{Head: spoken(name)}, part{Table: listing(v, at)})
+			blocks = append(blocks, part{Table: listing(spoken(name), v, at)})
 		case []any:
 			if name == "thermal_couplings" {
-				blocks = append(blocks, part{Head: spoken(name)}, part{Text: saidTable(v, at)})
+				blocks = append(blocks, part{Table: couplings(v, at)})
 				continue
 			}
 			for i, one := range v {
@@ -62,24 +62,43 @@ func (r *Report) stage() []part {
 				if len(v) > 1 {
 					head += " " + strconv.Itoa(i)
 				}
-				blocks = append(blocks, part{Head: head}, part{Table: listing(one, at+"/"+strconv.Itoa(i))})
+				blocks = append(blocks, part{Table: listing(head, one, at+"/"+strconv.Itoa(i))})
 			}
 		default:
 			plainFields[name] = v
 		}
 	}
-	blocks[0] = part{Table: listing(plainFields, "/stage")}
+	blocks[0] = part{Table: listing("stage", plainFields, "/stage")}
 	return blocks
 }
 
-// listing is a table of all values below a node of the request.
-func listing(node any, at string) *grille {
-	t := &grille{Head: row("ttt", "field", "value", "range")}
+// couplings lists the pairs of parts that warm each other.
+func couplings(rows []any, at string) *grille {
+	t := &grille{Head: row("tt", "thermal couplings", "value")}
+	for i, one := range rows {
+		if m, is := one.(map[string]any); is {
+			at := at + "/" + strconv.Itoa(i) + "/coupling_k_per_w"
+			t.Rows = append(t.Rows, row("wt", said(m["a"], "")+" and "+said(m["b"], ""), said(m["coupling_k_per_w"], wire.UnitOf(at))))
+		}
+	}
+	return t
+}
+
+// listing is a table of all values below a node of the request. Its name heads it, on
+// every page that it reaches.
+func listing(name string, node any, at string) *grille {
+	t := &grille{Head: row("ttt", name, "value", "range")}
 	list(t, node, at, "")
-	if !slices.ContainsFunc(t.Rows, func(r []entry) bool { return r[2].Text != "" }) {
+	ranges := slices.ContainsFunc(t.Rows, func(r []entry) bool { return r[2].Text != "" })
+	if !ranges {
 		t.Head = t.Head[:2]
-		for i := range t.Rows {
-			t.Rows[i] = t.Rows[i][:2]
+	}
+	for i, r := range t.Rows {
+		if r[2].Text == "" {
+			t.Rows[i] = r[:2]
+			if ranges {
+				r[1].Span = 2
+			}
 		}
 	}
 	return t
@@ -88,7 +107,11 @@ func listing(node any, at string) *grille {
 func list(t *grille, node any, at, name string) {
 	m, is := node.(map[string]any)
 	if !is {
-		t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name, "/"), said(node, wire.UnitOf(at)), ""))
+		value := said(node, wire.UnitOf(at))
+		if node == 0.0 && strings.HasPrefix(at, "/requirement/targets/") {
+			value = "not asked" // the contract's meaning of 0 there
+		}
+		t.Rows = append(t.Rows, row("wtt", strings.TrimPrefix(name, "/"), value, ""))
 		return
 	}
 	if isSpread(m) {
@@ -182,11 +205,16 @@ func saidTable(rows []any, at string) string {
 			parts[i] = said(one, wire.UnitOf(at))
 			continue
 		}
-		var pair []string
-		for _, key := range tableKeys(m) {
-			pair = append(pair, said(m[key], wire.UnitOf(at+"/"+strconv.Itoa(i)+"/"+key)))
+		keys := tableKeys(m)
+		var values []string
+		for k, key := range keys {
+			v := said(m[key], wire.UnitOf(at+"/"+strconv.Itoa(i)+"/"+key))
+			if k > 0 && len(keys) > 2 { // several values there: each by its name
+				v = spoken(key) + " " + v
+			}
+			values = append(values, v)
 		}
-		parts[i] = strings.Join(pair, " → ")
+		parts[i] = values[0] + " → " + strings.Join(values[1:], ", ")
 	}
 	return strings.Join(parts, "; ")
 }

@@ -31,11 +31,11 @@ func (r *Report) loop() []part {
 func stability(s string) entry {
 	switch s {
 	case "stable":
-		return entry{s, "pass"}
+		return entry{Text: s, Class: "pass"}
 	case "":
-		return entry{"-", ""}
+		return entry{Text: "-"}
 	}
-	return entry{s, "fail"}
+	return entry{Text: s, Class: "fail"}
 }
 
 // leastMargin returns the item with the least phase margin.

@@ -21,7 +21,7 @@ func (r *Report) summary() (list []fact) {
 		list = append(list, fact{"Worst case", strings.TrimPrefix(cornersWords(a), "verdict: "), c.Class})
 		if q := quantityOf(a, ""); q != nil && q.Margin != nil {
 			name, _, _ := quantityForPeople(q.Quantity)
-			list = append(list, fact{"Nearest to its limit", name + ": " + verdictWords(q), judged(q.Verdict).Class})
+			list = append(list, fact{"Nearest worst-case limit", name + ": " + verdictWords(q), judged(q.Verdict).Class})
 		}
 	}
 	if a := r.Losses; a != nil {
@@ -106,7 +106,7 @@ func (r *Report) worstCase() []part {
 	if len(a.Failures) > 0 {
 		f := &grille{Head: row("ttn", "ended as", "in", "evaluations")}
 		for _, e := range a.Failures {
-			f.Rows = append(f.Rows, []entry{judged(e.Status), {Text: e.Method}, {strconv.Itoa(e.Count), "n"}})
+			f.Rows = append(f.Rows, []entry{judged(e.Status), {Text: e.Method}, {Text: strconv.Itoa(e.Count), Class: "n"}})
 		}
 		blocks = append(blocks, part{Head: "Evaluations that did not work"}, part{Table: f})
 	}
@@ -191,8 +191,8 @@ func (r *Report) findings() []part {
 		if f.WithinBand != nil && *f.WithinBand {
 			detail += " The margin is smaller than the model's band."
 		}
-		if len(f.Missing) > 0 {
-			detail += " Missing: " + strings.Join(f.Missing, ", ") + "."
+		if missing := strings.Join(f.Missing, ", "); missing != "" && !strings.Contains(detail, missing) {
+			detail += " Missing: " + missing + "."
 		}
 		cells := row("tttwnnnt", "", f.Severity, f.Title, strings.TrimPrefix(f.Pointer, "/stage/"), figure(f.Value, f.Unit), figure(f.Limit, f.Unit), optional(f.Margin, percent), detail)
 		cells[0] = judged(f.Verdict)

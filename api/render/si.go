@@ -22,6 +22,15 @@ var peopleUnits = map[string]struct {
 	"m2": {"m²", false}, "m3": {"m³", false}, "1": {"", false}, "": {"", false},
 }
 
+// smallUnits of areas and volumes, whose prefixes are raised with the metre.
+var smallUnits = map[string][]struct {
+	symbol string
+	size   float64
+}{
+	"m2": {{"mm²", 1e-6}, {"cm²", 1e-4}},
+	"m3": {{"mm³", 1e-9}, {"cm³", 1e-6}},
+}
+
 // Figure3 writes a number with three significant digits and its unit, prefixed
 // as people write it: 6.58 µH. Times above an hour are written in hours.
 func Figure3(v float64, unit string) string {
@@ -32,6 +41,11 @@ func Figure3(v float64, unit string) string {
 		return strings.ReplaceAll(strconv.FormatFloat(v, 'g', 3, 64), "Inf", "∞")
 	case unit == "s" && math.Abs(v) >= 3600:
 		return Figure3(v/3600, "") + " h"
+	}
+	for _, small := range smallUnits[unit] {
+		if v != 0 && math.Abs(v) < 999.5*small.size {
+			return three(v/small.size) + " " + small.symbol
+		}
 	}
 	u, known := peopleUnits[unit]
 	if !known {

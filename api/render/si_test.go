@@ -32,6 +32,11 @@ func TestFigure3(t *testing.T) {
 		{5e15, "W", "5000 TW"},
 		{math.NaN(), "V", "-"},
 		{120, "deg", "120°"},
+		{2.1e-5, "m2", "21.0 mm²"},
+		{0.0123, "m2", "123 cm²"},
+		{8e-7, "m3", "800 mm³"},
+		{1.5e-6, "m3", "1.50 cm³"},
+		{0, "m2", "0 m²"},
 	}
 	for _, c := range cases {
 		require.Equal(t, c.want, Figure3(c.v, c.unit))

@@ -252,7 +252,7 @@ func (p *prepared) judge(pack *Pack, rule *Rule, body *Body, place int) (Finding
 	}
 	f.Detail = rule.Message.fill(&f, part)
 	if f.WithinBand {
-		f.Detail += fmt.Sprintf(" The loss models leave it between %s and %s %s, on both sides of the limit.", figure(f.ValueLow), figure(f.ValueHigh), printed(f.Unit))
+		f.Detail += fmt.Sprintf(" The loss models leave it between %s and %s, on both sides of the limit.", quantity.Written(f.ValueLow, f.Unit), quantity.Written(f.ValueHigh, f.Unit))
 	}
 	return f, true
 }

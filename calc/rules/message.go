@@ -4,6 +4,10 @@ import (
 	"fmt"
 	"math"
 	"strings"
+	"unicode"
+	"unicode/utf8"
+
+	"railproof/calc/quantity"
 )
 
 // Message is the text of a finding with places for its figures: {value},
@@ -37,20 +41,41 @@ func ParseMessage(text string) (Message, error) {
 	return m, nil
 }
 
-// fill returns the text with a finding's figures in it.
+// fill returns the text with a finding's figures in it. Where a figure's unit follows
+// it, both are written as suits the figure: 282.5 ns for 2.825e-7 s.
 func (m Message) fill(f *Finding, part string) string {
 	var b strings.Builder
-	for _, p := range m.pieces {
-		b.WriteString(p.text)
+	own := quantity.Symbol(f.Unit)
+	symbol := own // of the unit that comes next
+	for i, p := range m.pieces {
+		text := p.text
+		if rest, is := strings.CutPrefix(text, " "+own); symbol != own && is {
+			text, symbol = " "+symbol+rest, own
+		}
+		if p.place == "unit" && text == " " && own == "" {
+			text = ""
+		}
+		b.WriteString(text)
+		figure := func(x float64) string {
+			if math.IsNaN(x) {
+				return "unknown"
+			}
+			figures := fmt.Sprintf("%.4g", x)
+			if m.unitFollows(i+1, own) {
+				figures, symbol = quantity.Parted(x, f.Unit)
+			}
+			return figures
+		}
 		switch p.place {
 		case "value":
 			b.WriteString(figure(f.Value))
 		case "limit":
 			b.WriteString(figure(f.Limit))
 		case "unit":
-			b.WriteString(printed(f.Unit))
+			b.WriteString(symbol)
+			symbol = own
 		case "margin":
-			b.WriteString(figure(100*f.Margin) + " %")
+			b.WriteString(quantity.Written(100*f.Margin, "%"))
 		case "part":
 			b.WriteString(part)
 		case "rule":
@@ -60,23 +85,15 @@ func (m Message) fill(f *Finding, part string) string {
 	return strings.TrimSpace(b.String())
 }
 
-// figure prints a number for people, to four digits.
-func figure(x float64) string {
-	if math.IsNaN(x) {
-		return "unknown"
+// unitFollows reports whether piece i begins with the unit.
+func (m Message) unitFollows(i int, symbol string) bool {
+	if i == len(m.pieces) {
+		return false
 	}
-	return fmt.Sprintf("%.4g", x)
-}
-
-// printed returns how a UCUM code is written in a sentence.
-func printed(unit string) string {
-	switch unit {
-	case "1":
-		return ""
-	case "Cel":
-		return "°C"
-	case "Ohm":
-		return "Ω"
+	if p := m.pieces[i]; p.text == " " && p.place == "unit" {
+		return true
 	}
-	return unit
+	rest, is := strings.CutPrefix(m.pieces[i].text, " "+symbol)
+	next, _ := utf8.DecodeRuneInString(rest)
+	return is && (rest == "" || !unicode.IsLetter(next) && !strings.ContainsRune("/^²³", next))
 }

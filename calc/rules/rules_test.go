@@ -292,6 +292,24 @@ func TestMessages(t *testing.T) {
 	require.NoError(t, err)
 	f := Finding{Rule: "a/b", Value: 61.23456, Unit: "Cel", Margin: 0.125}
 	require.Equal(t, "high_side: 61.23 °C, 12.5 % left by a/b", m.fill(&f, "high_side"))
+	for _, c := range []struct {
+		message, unit, want string
+		value, limit        float64
+	}{
+		{"The on-time is {value} s; {limit} s keeps pulses.", "s", "The on-time is 282.5 ns; 104 ns keeps pulses.", 2.825e-7, 1.04e-7},
+		{"{value} {unit} of {limit} {unit}", "V", "10.09 mV of 1.5 V", 0.01009, 1.5},
+		{"It is {value} {unit}; the limit is {limit} {unit}.", "1", "It is -0.02783; the limit is 0.03.", -0.02783, 0.03},
+		{"{value} Amperes, {limit} A", "A", "0.002 Amperes, 3 mA", 0.002, 0.003},
+		{"{value} of {limit}", "V", "0.01 of 0.03", 0.01, 0.03},
+		{"{value} V", "V", "unknown V", math.NaN(), 0},
+		{"They last {value} s; {limit} s are asked for.", "s", "They last 134886 h; 12 s are asked for.", 134886 * 3600, 12},
+		{"at {value} {unit} {limit}", "Hz", "at 77.93 kHz 9.2e+04", 77930, 92000},
+	} {
+		m, err := ParseMessage(c.message)
+		require.NoError(t, err)
+		f := Finding{Unit: c.unit, Value: c.value, Limit: c.limit}
+		require.Equal(t, c.want, m.fill(&f, ""))
+	}
 }
 
 // Every number that the facts can hold must have a name that packs may use, and

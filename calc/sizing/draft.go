@@ -84,7 +84,7 @@ func (z *sizer) conditions() {
 	load := r.LoadCurrent
 	if r.Rectifier != stage.Synchronous {
 		if regular := z.leastRegularLoad(); load.Min < regular {
-			z.note("pulses-skipped", "load/min_a", "below "+number(regular)+" A the controller's least on-time delivers more than the load takes: it skips pulses there, and the conditions of the draft begin at that load")
+			z.note("pulses-skipped", "load/min_a", "below "+quantity.Written(neat(regular), "A")+" the controller's least on-time delivers more than the load takes: it skips pulses there, and the conditions of the draft begin at that load")
 			load.Min = regular
 			load.Typ = math.Max(load.Typ, regular)
 		}

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"railproof/calc/parts"
+	"railproof/calc/quantity"
 	"railproof/calc/stage"
 )
 
@@ -59,7 +60,7 @@ func (z *sizer) placeholders() {
 	} else {
 		upward("low_side/on_resistance_ohm", onResistanceTol, "placeholder switch: as the high side")
 	}
-	tolerance("inductor/inductance_h", inductanceTol, fmt.Sprintf("placeholder inductor: a powder core that keeps 80 %% of its inductance at %s A", number(z.saturationAt)))
+	tolerance("inductor/inductance_h", inductanceTol, fmt.Sprintf("placeholder inductor: a powder core that keeps 80 %% of its inductance at %s", quantity.Written(neat(z.saturationAt), "A")))
 	tolerance("inductor/dc_resistance_ohm", windingTol, "placeholder inductor: winding from stored energy and the loss budget")
 	for k := range d.OutputCapacitors {
 		tolerance(bankField("output", k)+"/capacitance_f", capacitanceTol, "placeholder capacitor: middling values of its kind over bias, temperature and age")
@@ -75,5 +76,5 @@ func (z *sizer) placeholders() {
 		part("controller/min_on_time_s", z.choice.MinOnTime, 3e-8, 2e-7, "least on-time of the controller")
 	}
 	part("controller/max_duty_ratio", math.Min(z.dutyMost, z.choice.MaxDutyRatio), 0.85, 1, "greatest duty ratio of the controller, its least off-time included")
-	part("modulator/sense_ohm", d.Modulator.Sense, d.Modulator.Sense/2, d.Modulator.Sense*2, fmt.Sprintf("peak current mode; the loop is designed for a crossover of %s Hz with a phase margin of %s°", number(z.crossover), number(z.phaseMargin)))
+	part("modulator/sense_ohm", d.Modulator.Sense, d.Modulator.Sense/2, d.Modulator.Sense*2, fmt.Sprintf("peak current mode; the loop is designed for a crossover of %s with a phase margin of %s", quantity.Written(neat(z.crossover), "Hz"), quantity.Written(neat(z.phaseMargin), "deg")))
 }

@@ -14,6 +14,3 @@ func neat(x float64) float64 {
 	}
 	return v
 }
-
-// number writes a value for people, three digits.
-func number(x float64) string { return strconv.FormatFloat(x, 'g', 3, 64) }

@@ -6,6 +6,7 @@ import (
 	"math"
 	"strings"
 
+	"railproof/calc/quantity"
 	"railproof/calc/rules"
 	"railproof/service/notation"
 )
@@ -114,7 +115,7 @@ func (c *comparison) values(e *Expectation, l *Line) {
 		if errors.As(err, &p) {
 			detail = fmt.Sprintf("%.60q: %s", p.Text, p.Detail)
 		}
-		c.add(AspectValue, rules.NotEvaluated, notation.SI(e.Value, e.Kind.Unit()), text, detail)
+		c.add(AspectValue, rules.NotEvaluated, quantity.Written(e.Value, e.Kind.UCUM()), text, detail)
 		return
 	}
 	c.value(e, &r)
@@ -137,8 +138,8 @@ func ratingText(kind notation.Kind, cell string) string {
 }
 
 func (c *comparison) value(e *Expectation, r *notation.Reading) {
-	unit := e.Kind.Unit()
-	proven, found := notation.SI(e.Value, unit), notation.SI(r.Value, unit)
+	unit := e.Kind.UCUM()
+	proven, found := quantity.Written(e.Value, unit), quantity.Written(r.Value, unit)
 	if math.Abs(r.Value-e.Value) <= equal*math.Abs(e.Value) {
 		c.add(AspectValue, rules.Pass, proven, found, "the value that was proven")
 		c.figures(e.Value, r.Value, e.Kind.UCUM())
@@ -187,7 +188,7 @@ func between(low, high float64) string {
 func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
 	proven := "unknown"
 	if !math.IsNaN(e.Voltage) {
-		proven = fmt.Sprintf("%.4g V", e.Voltage)
+		proven = quantity.Written(e.Voltage, "V")
 	}
 	switch {
 	case math.IsNaN(r.Voltage) && c.proven:
@@ -196,10 +197,10 @@ func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
 	case math.IsNaN(r.Voltage):
 		c.add(AspectRating, rules.NotEvaluated, proven, text, "the line tells no voltage rating")
 	case r.Voltage >= e.Voltage*(1-rounding):
-		c.add(AspectRating, rules.Pass, proven, fmt.Sprintf("%.4g V", r.Voltage), "at least the rating that was proven")
+		c.add(AspectRating, rules.Pass, proven, quantity.Written(r.Voltage, "V"), "at least the rating that was proven")
 		c.figures(e.Voltage, r.Voltage, "V")
 	default:
-		c.add(AspectRating, rules.Fail, proven, fmt.Sprintf("%.4g V", r.Voltage), "less than the rating that was proven")
+		c.add(AspectRating, rules.Fail, proven, quantity.Written(r.Voltage, "V"), "less than the rating that was proven")
 		c.figures(e.Voltage, r.Voltage, "V")
 	}
 }
@@ -208,7 +209,7 @@ func (c *comparison) voltage(e *Expectation, r *notation.Reading, text string) {
 // proven, of which the line does not say which it means.
 func (c *comparison) current(e *Expectation, r *notation.Reading, text string) {
 	least, most := math.Min(e.Saturation, e.Heating), math.Max(e.Saturation, e.Heating)
-	proven := fmt.Sprintf("%.4g A saturation, %.4g A heating", e.Saturation, e.Heating)
+	proven := quantity.Written(e.Saturation, "A") + " saturation, " + quantity.Written(e.Heating, "A") + " heating"
 	switch {
 	case math.IsNaN(r.Current) && c.proven:
 		return
@@ -219,11 +220,11 @@ func (c *comparison) current(e *Expectation, r *notation.Reading, text string) {
 		c.add(AspectRating, rules.NotEvaluated, proven, text, "the line tells no current rating")
 		return
 	case r.Current >= most*(1-rounding):
-		c.add(AspectRating, rules.Pass, proven, fmt.Sprintf("%.4g A", r.Current), "at least both ratings that were proven")
+		c.add(AspectRating, rules.Pass, proven, quantity.Written(r.Current, "A"), "at least both ratings that were proven")
 	case r.Current < least*(1-rounding):
-		c.add(AspectRating, rules.Fail, proven, fmt.Sprintf("%.4g A", r.Current), "less than either rating that was proven")
+		c.add(AspectRating, rules.Fail, proven, quantity.Written(r.Current, "A"), "less than either rating that was proven")
 	default:
-		c.add(AspectRating, rules.NotEvaluated, proven, fmt.Sprintf("%.4g A", r.Current), "between the two ratings that were proven, and the line does not tell which it states")
+		c.add(AspectRating, rules.NotEvaluated, proven, quantity.Written(r.Current, "A"), "between the two ratings that were proven, and the line does not tell which it states")
 	}
 	c.figures(least, r.Current, "A")
 }

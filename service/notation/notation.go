@@ -18,8 +18,8 @@ const (
 	Inductor
 )
 
-// Unit returns the unit of the kind's value as it is written.
-func (k Kind) Unit() string { return [...]string{"Ω", "F", "H"}[k] }
+// symbol returns the unit of the kind's value as it is written.
+func (k Kind) symbol() string { return [...]string{"Ω", "F", "H"}[k] }
 
 // UCUM returns the UCUM code of the unit.
 func (k Kind) UCUM() string { return [...]string{"Ohm", "F", "H"}[k] }
@@ -69,15 +69,4 @@ func Read(kind Kind, text string) (Reading, error) {
 		return Reading{}, p
 	}
 	return r.Reading, nil
-}
-
-// SI writes a value with four digits and the prefix that suits it: "4.7 µF".
-func SI(value float64, unit string) string {
-	if value == 0 || math.IsNaN(value) || math.IsInf(value, 0) {
-		return fmt.Sprintf("%g %s", value, unit)
-	}
-	prefixes := []string{"p", "n", "µ", "m", "", "k", "M", "G"}
-	step := int(math.Floor(math.Log10(math.Abs(value))/3+1e-12)) + 4
-	step = min(max(step, 0), len(prefixes)-1)
-	return fmt.Sprintf("%.4g %s%s", value/math.Pow(1000, float64(step-4)), prefixes[step], unit)
 }

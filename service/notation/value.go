@@ -44,7 +44,7 @@ func (r *reader) exponent(w word, number, rest string) (float64, bool, *Problem)
 	if len(sign) > 1 || !digits(power) || len(power) > 3 {
 		return 0, false, nil
 	}
-	if !strings.EqualFold(unit, r.kind.Unit()) && (r.kind != Resistor || !strings.EqualFold(unit, "ohm")) {
+	if !strings.EqualFold(unit, r.kind.symbol()) && (r.kind != Resistor || !strings.EqualFold(unit, "ohm")) {
 		return 0, false, r.problem(w, "an exponent, or a letter in the place of the decimal point? Write the unit behind it")
 	}
 	v, _, p := r.number(w, number, "e"+sign+power)
@@ -135,7 +135,7 @@ func (r *reader) code(w word, before, rest string) (float64, byte, *Problem) {
 	var letter byte
 	if end != "" {
 		letter = end[0]
-		unit := strings.EqualFold(end, r.kind.Unit())
+		unit := strings.EqualFold(end, r.kind.symbol())
 		switch {
 		case unit && toleranceLetter(letter):
 			r.Doubts = append(r.Doubts, *r.problem(w, "F at the end is the tolerance letter of 1 % or the unit farad"))
