@@ -70,6 +70,7 @@ func TestManySlowClients(t *testing.T) {
 }
 
 func TestOneByteASecond(t *testing.T) {
+	t.Parallel()
 	s := start(t, []string{"--address", "127.0.0.1:0"})
 	head, err := dial(t, s)
 	require.NoError(t, err)

@@ -105,7 +105,7 @@ func restart(t *testing.T, directory string) *served {
 
 func TestKilledInTheMiddleOfAJob(t *testing.T) {
 	directory := t.TempDir()
-	body := rail(t, "buoy-3v3", 100_000, 1)
+	body := rail(t, "buoy-3v3", 50_000, 1)
 	s := restart(t, directory)
 	id := begin(t, s.base, "corners", body)
 	untilRunning(t, s.base, id)
@@ -138,8 +138,8 @@ func TestKilledAgainAndAgainAJobIsGivenUp(t *testing.T) {
 
 func TestTerminatedInTheMiddleOfAJob(t *testing.T) {
 	directory := t.TempDir()
-	s := start(t, []string{"--address", "127.0.0.1:0", "--data-directory", directory, "--grace", "300ms"}, "RAILPROOF_EPHEMERAL=")
-	body := rail(t, "buoy-3v3", 100_000, 3)
+	s := start(t, []string{"--address", "127.0.0.1:0", "--data-directory", directory, "--grace", "1ms"}, "RAILPROOF_EPHEMERAL=")
+	body := rail(t, "buoy-3v3", 50_000, 3)
 	id := begin(t, s.base, "corners", body)
 	untilRunning(t, s.base, id)
 	before := time.Now()

@@ -20,12 +20,12 @@ import (
 // TestNight is a night's work of a caller: rails, each with its samples, one run large
 // enough to be split, and the bill of material of all rails, over two replicas on
 // PostgreSQL, of which one is killed half-way. RAILPROOF_NIGHT makes it 40 rails of
-// 100,000 samples and 5,000 lines. Every result must be what the program on the command
+// 100,000 samples, a run of 200,000 and 5,000 lines. Every result must be what the program on the command
 // line gives, byte for byte.
 func TestNight(t *testing.T) {
-	rails, samples, lines := 6, 5_000, 500
+	rails, samples, split, lines := 9, 500, 130_000, 500
 	if os.Getenv("RAILPROOF_NIGHT") != "" {
-		rails, samples, lines = 40, 100_000, 5_000
+		rails, samples, split, lines = 40, 100_000, 200_000, 5_000
 	}
 	c := cluster.Start(t)
 	replica := func() *served {
@@ -41,10 +41,12 @@ func TestNight(t *testing.T) {
 	for i := range rails {
 		send("corners", "corners", rail(t, exampleRails[i%len(exampleRails)], samples, i))
 	}
-	send("corners", "corners", rail(t, "buoy-3v3", 200_000, 99))
+	send("corners", "corners", rail(t, "buoy-3v3", split, 99))
 	send("bom", "bom-checks", billOf(t, rails, lines))
 
 	ended(t, works[len(works)/2].job, 30*time.Minute, b.base)
+	has := func(s *served, what string) int { return strings.Count(s.log.String(), `"msg":"job `+what+`"`) }
+	require.Eventually(t, func() bool { return has(a, "taken") > has(a, "ended") }, 10*time.Minute, time.Millisecond, "in the middle of a job")
 	require.NoError(t, a.process.Process.Signal(syscall.SIGKILL))
 	_ = a.process.Wait() // killed, as asked
 	t.Logf("one replica killed after %v", time.Since(began).Round(time.Millisecond))
@@ -52,7 +54,7 @@ func TestNight(t *testing.T) {
 	for _, w := range works {
 		results[w.job] = result(t, b.base, ended(t, w.job, 30*time.Minute, b.base))
 	}
-	t.Logf("%d rails of %d samples, one of 200,000, and a bill of %d lines: all done after %v", rails, samples, lines, time.Since(began).Round(time.Millisecond))
+	t.Logf("%d rails of %d samples, one of %d, and a bill of %d lines: all done after %v", rails, samples, split, lines, time.Since(began).Round(time.Millisecond))
 
 	status, list := get(t, b.base+"/v1/jobs?limit=200")
 	require.Equal(t, 200, status)

@@ -21,6 +21,7 @@ import (
 // cancelled, streams of events, pictures, reports. RAILPROOF_SOAK sets how long, such as
 // 10m.
 func TestSoak(t *testing.T) {
+	t.Parallel() // with others that wait most of the time
 	long := 6 * time.Second
 	if given := os.Getenv("RAILPROOF_SOAK"); given != "" {
 		var err error
