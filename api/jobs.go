@@ -29,6 +29,7 @@ func canDefer(op openapi.Operation) bool { return slices.Contains(op.Statuses, h
 // if that is there within the time to wait.
 func (a *API) deferred(c echo.Context, op openapi.Operation, r *exchange.Request, p preference) error {
 	ctx := c.Request().Context()
+	c.Set(resultKey, r.ResultID)
 	j, _, err := a.jobs.Submit(ctx, jobs.Request{Operation: op.ID, ResultID: r.ResultID, Body: r.Canonical()})
 	if err != nil {
 		return jobRefusal(err)
@@ -44,7 +45,6 @@ func (a *API) deferred(c echo.Context, op openapi.Operation, r *exchange.Request
 		switch j.State {
 		case jobs.Done:
 			if answer, err := a.jobs.Result(ctx, j.ResultID); err == nil {
-				c.Set(resultKey, j.ResultID)
 				form := c.Get(formKey).(string)
 				body, problem := exchange.Show(answer, form, view(c))
 				if problem != nil {

@@ -109,22 +109,39 @@ func (b *Board) onePart(ctx context.Context, s Splitter, r *run) (worked bool, e
 	meter := new(service.Meter)
 	watched := b.watchPart(ctx, stop, r, part, meter)
 	body, err := s.Part(ctx, r.operation, r.request, part, parts, meter)
+	if err == nil {
+		done, _ := meter.Progress()
+		err = b.storePart(ctx, r.id, part, body, done)
+	}
 	stop(nil)
 	<-watched
 	if err != nil {
 		b.dropPart(r.id, part)
 		return false, err
 	}
-	done, _ := meter.Progress()
-	store, cancel := context.WithTimeout(context.WithoutCancel(ctx), callTimeout)
-	defer cancel()
-	if _, err := b.db.exec(store, `UPDATE railproof_parts SET body = $3, owner = $4, done = $5 WHERE job = $1 AND part = $2 AND body IS NULL`, r.id, part, body, b.process, done); err != nil {
-		return true, b.waited(ctx, "storing a part", err)
-	}
 	return true, nil
 }
 
-// waited lets a database that cannot be used recover: the part is taken again.
+// storePart keeps what a part left, and goes on trying while the database cannot be used.
+func (b *Board) storePart(ctx context.Context, job string, part int, body []byte, done int64) error {
+	once := func() error {
+		store, cancel := context.WithTimeout(context.WithoutCancel(ctx), callTimeout)
+		defer cancel()
+		_, err := b.db.exec(store, `UPDATE railproof_parts SET body = $3, owner = $4, done = $5 WHERE job = $1 AND part = $2 AND body IS NULL`, job, part, body, b.process, done)
+		return err
+	}
+	for {
+		err := once()
+		if err == nil {
+			return nil
+		}
+		if err := b.waited(ctx, "storing a part", err); err != nil {
+			return err
+		}
+	}
+}
+
+// waited lets a database that cannot be used recover.
 func (b *Board) waited(ctx context.Context, doing string, err error) error {
 	_ = b.failed(ctx, doing, err)
 	select {

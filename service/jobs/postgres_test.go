@@ -104,6 +104,24 @@ func TestPostgreSQL(t *testing.T) {
 		await(t, b, submit(t, b, work{Steps: 1, Name: "b"}).ID, Done)
 	})
 
+	t.Run("parts that end while the database is away are kept", func(t *testing.T) {
+		f := new(fakeExecutor)
+		b := fresh(c).open(t, f, nil)
+		w := work{Steps: 40, Step: 50 * time.Millisecond, Parts: 2, Name: "a"} // a second each
+		j := submit(t, b, w)
+		require.Eventually(t, func() bool { return f.parts.Load() == 2 }, 10*time.Second, time.Millisecond)
+		c.Kill()
+		time.Sleep(2 * time.Second)
+		c.Resume()
+		back := time.Now()
+		require.Eventually(t, func() bool {
+			got, err := b.Get(t.Context(), j.ID)
+			return err == nil && got.State == Done
+		}, 30*time.Second, 20*time.Millisecond)
+		t.Logf("stored %v after the database was back", time.Since(back))
+		require.EqualValues(t, 2, f.parts.Load(), "what was computed was not computed again")
+	})
+
 	t.Run("a jump of the clock takes nothing from another process", func(t *testing.T) {
 		for _, jump := range []string{"+ 86400000", "- 86400000"} {
 			p := fresh(c)

@@ -15,6 +15,8 @@ import (
 	"time"
 
 	"github.com/stretchr/testify/require"
+
+	"railproof/tests/cluster"
 )
 
 // rail is a corner run of an example rail with so many samples and another seed.
@@ -149,6 +151,57 @@ func TestTerminatedInTheMiddleOfAJob(t *testing.T) {
 	require.Contains(t, s.log.String(), `"msg":"job given back"`)
 	s = restart(t, directory)
 	require.Equal(t, railproof(t, body, "corners", "-").out, result(t, s.base, ended(t, id, 60*time.Second, s.base)))
+}
+
+// TestDatabaseGoneAndBack kills the database under two replicas in the middle of their
+// work. RAILPROOF_OUTAGE sets for how long, such as 15s, after which the replicas have
+// not seen each other for longer than a dead one is waited for.
+func TestDatabaseGoneAndBack(t *testing.T) {
+	outage := 2 * time.Second
+	if given := os.Getenv("RAILPROOF_OUTAGE"); given != "" {
+		var err error
+		outage, err = time.ParseDuration(given)
+		require.NoError(t, err)
+	}
+	c := cluster.Start(t)
+	replicas := []*served{replica(t, c), replica(t, c)}
+	var bodies, ids []string
+	for i := range 8 {
+		samples := 500
+		if i == 3 {
+			samples = 130_000 // in two parts
+		}
+		bodies = append(bodies, rail(t, "buoy-3v3", samples, i))
+		ids = append(ids, begin(t, replicas[i%2].base, "corners", bodies[i]))
+	}
+	ended(t, ids[0], 60*time.Second, replicas[0].base)
+	c.Kill()
+	for i, s := range replicas {
+		response, tree := ask(t, http.MethodPost, s.base+"/v1/corners", rail(t, "buoy-3v3", 500, 100+i), "Prefer", "respond-async")
+		require.Equal(t, 503, response.StatusCode, "%v", tree)
+		require.NotEmpty(t, response.Header.Get("Retry-After"))
+		status, ready := get(t, s.base+"/readyz")
+		require.Equal(t, 503, status)
+		require.Contains(t, ready, "store of jobs")
+		status, answer := post(t, s.base+"/v1/losses", example(t, "buoy-5v0/losses.json"))
+		require.Equal(t, 200, status, "what needs no database is answered: %s", answer)
+	}
+	time.Sleep(outage)
+	c.Resume()
+	back := time.Now()
+	var found []string
+	for i, id := range ids {
+		found = append(found, result(t, replicas[1-i%2].base, ended(t, id, 120*time.Second, replicas[1-i%2].base)))
+	}
+	t.Logf("all done %v after the database was back", time.Since(back).Round(time.Millisecond))
+	for _, i := range []int{0, 3, 7} {
+		require.True(t, railproof(t, bodies[i], "corners", "-").out == found[i], "%d %.300s", i, found[i])
+	}
+	for _, s := range replicas {
+		require.NotContains(t, s.log.String(), "stopped beating", "who could not beat is not dead")
+		status, _ := get(t, s.base+"/readyz")
+		require.Equal(t, 200, status)
+	}
 }
 
 func TestDiskFull(t *testing.T) {
