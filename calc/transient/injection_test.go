@@ -195,15 +195,19 @@ func unequal(t *testing.T) map[string]loop.Plant {
 	lateCurrent := currentMode()
 	lateCurrent.Delay = 40e-9
 	ota := parts.Compensator{Present: true, Transconductance: 1e-3, OutputOhm: math.Inf(1)}
+	behind := designed(t, solved(t, phases(buoy(), 2), voltageMode(), opAmp()), parts.OpAmpType3, 60e3, 55)
+	behind.Source = loop.Source{Present: true, Inductance: 1e-6, Resistance: 20e-3, Shunts: 2}
+	behind.Source.Shunt[0], behind.Source.Shunt[1] = switched.Bank{C: 22e-6, ESR: 3e-3}, switched.Bank{C: 100e-6, ESR: 0.1}
 	return map[string]loop.Plant{
-		"unequal/voltage/one-phase":        designed(t, solved(t, phases(buoy(), 1), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55),
-		"unequal/voltage/two-phases":       designed(t, solved(t, phases(buoy(), 2), voltageMode(), opAmp()), parts.OpAmpType3, 60e3, 55),
-		"unequal/voltage/three-phases":     designed(t, solved(t, phases(banks, 3), late, opAmp()), parts.OpAmpType3, 80e3, 50),
-		"unequal/voltage/dcm/two-phases":   designed(t, solved(t, phases(diode, 2), voltageMode(), opAmp()), parts.OpAmpType2, 20e3, 60),
-		"unequal/current/one-phase":        designed(t, solved(t, phases(buoy(), 1), currentMode(), ota), parts.TransconductanceType2, 50e3, 60),
-		"unequal/current/two-phases":       designed(t, solved(t, phases(banks, 2), lateCurrent, ota), parts.TransconductanceType2, 50e3, 60),
-		"unequal/current/three-phases":     designed(t, solved(t, phases(banks, 3), currentMode(), ota), parts.TransconductanceType2, 60e3, 60),
-		"unequal/current/dcm/three-phases": designed(t, solved(t, phases(diode, 3), currentMode(), ota), parts.TransconductanceType2, 15e3, 60),
+		"unequal/voltage/two-phases/source": behind,
+		"unequal/voltage/one-phase":         designed(t, solved(t, phases(buoy(), 1), voltageMode(), opAmp()), parts.OpAmpType3, 50e3, 55),
+		"unequal/voltage/two-phases":        designed(t, solved(t, phases(buoy(), 2), voltageMode(), opAmp()), parts.OpAmpType3, 60e3, 55),
+		"unequal/voltage/three-phases":      designed(t, solved(t, phases(banks, 3), late, opAmp()), parts.OpAmpType3, 80e3, 50),
+		"unequal/voltage/dcm/two-phases":    designed(t, solved(t, phases(diode, 2), voltageMode(), opAmp()), parts.OpAmpType2, 20e3, 60),
+		"unequal/current/one-phase":         designed(t, solved(t, phases(buoy(), 1), currentMode(), ota), parts.TransconductanceType2, 50e3, 60),
+		"unequal/current/two-phases":        designed(t, solved(t, phases(banks, 2), lateCurrent, ota), parts.TransconductanceType2, 50e3, 60),
+		"unequal/current/three-phases":      designed(t, solved(t, phases(banks, 3), currentMode(), ota), parts.TransconductanceType2, 60e3, 60),
+		"unequal/current/dcm/three-phases":  designed(t, solved(t, phases(diode, 3), currentMode(), ota), parts.TransconductanceType2, 15e3, 60),
 	}
 }
 

@@ -3,6 +3,7 @@ package transient
 import (
 	"math"
 	"strconv"
+	"strings"
 	"testing"
 
 	"github.com/stretchr/testify/require"
@@ -56,7 +57,7 @@ func growth(t *testing.T, p loop.Plant, expected float64) (rate float64, periods
 
 func TestEigenvaluesTellGrowthAndDecay(t *testing.T) {
 	decided := map[loop.Stability]int{}
-	told := 0
+	told, ofUnequal := 0, 0
 	for name, p := range every(t) {
 		for _, gain := range []float64{0.5, 2, 3, 4, 6} {
 			t.Run(name+"/"+strconv.FormatFloat(gain, 'g', -1, 64), func(t *testing.T) {
@@ -77,6 +78,9 @@ func TestEigenvaluesTellGrowthAndDecay(t *testing.T) {
 					return // it came or went too fast to be told apart from rounding
 				}
 				told++
+				if strings.HasPrefix(name, "unequal/") {
+					ofUnequal++
+				}
 				if math.Abs(want-1) > 0.003 {
 					require.Equal(t, want > 1, got > 1, "model %.6f, run %.6f", want, got)
 				}
@@ -89,6 +93,7 @@ func TestEigenvaluesTellGrowthAndDecay(t *testing.T) {
 		}
 	}
 	require.Greater(t, told, 25)
+	require.Greater(t, ofUnequal, 15)
 	require.Greater(t, decided[loop.Stable], 10)
 	require.Greater(t, decided[loop.Unstable], 5)
 }

@@ -61,6 +61,9 @@ func requirePeriodic(t *testing.T, p *loop.Plant, what string, values ...any) {
 // The model finds the instants of unequal phases by itself; the run makes them.
 func TestPeriodicSolutionOfUnequalPhasesIsWhatTheRunDoes(t *testing.T) {
 	for name, p := range unequal(t) {
+		if p.Source.Present {
+			continue // the model holds the on-times there, the run the output
+		}
 		t.Run(name, func(t *testing.T) {
 			period := p.Circuit.Period
 			e, err := New(&Setup{Plant: p, Bounds: wide, Duration: 400 * period, Saturation: parts.Unknown})
