@@ -40,11 +40,7 @@ func (s *Sampled) At(frequency float64) Transfers {
 	z := complex(cos, sin)
 	s.prepare(w, z)
 	var t Transfers
-	if s.count == 1 {
-		t.Loop = s.transfer.At(z)
-	} else {
-		t.Loop = s.lift.at(s, frequency)
-	}
+	t.Loop = s.Loop(frequency)
 	t.Control = s.respond(w, excitation{input: noInput, drive: 1})
 	switch {
 	case s.plant.Modulator.Mode != parts.VoltageMode:

@@ -31,19 +31,20 @@ import (
 type lifted struct {
 	count   int
 	when    [switched.MaxPhases]float64                     // [s] of each decision, after the start of the window
-	columns [switched.MaxPhases]statespace.Point            // [any/V] of the window's end, by a volt added at each decision
-	rows    [switched.MaxPhases]statespace.Functional       // [V] fed back at each decision, by the state at the window's start
+	closed  statespace.Transfer                             // the closed map
+	columns [2 * switched.MaxPhases]statespace.Point        // [any/V] of the window's end, by a volt added at each decision; then rows
+	rows    []statespace.Point                              // [V] fed back at each decision, by the state at the window's start
 	direct  [switched.MaxPhases][switched.MaxPhases]float64 // [1] fed back at a decision, by a volt added at an earlier one
 }
 
 // set takes the closed loop over from a model whose decisions are delayed as told.
 func (l *lifted) set(s *Sampled, delays *[switched.MaxPhases]statespace.Functional) {
 	n, sense := s.joint.N, s.plant.sense()
-	l.count = s.count
+	l.count, l.rows = s.count, l.columns[s.count:2*s.count]
 	var late [switched.MaxPhases][switched.MaxPhases]float64 // [s/V] of a decision, by a volt added at another
 	for k := range s.count {
 		d := &s.decisions[k]
-		l.when[k], l.rows[k] = d.at, d.control
+		l.when[k], l.rows[k] = d.at, statespace.Point(d.control)
 		l.columns[k], l.direct[k] = statespace.Point{}, [switched.MaxPhases]float64{}
 		late[k][k] = 1 / d.slope
 		for e := range k {
@@ -65,10 +66,12 @@ func (l *lifted) set(s *Sampled, delays *[switched.MaxPhases]statespace.Function
 			}
 		}
 	}
+	var none statespace.Point
+	l.closed.Reduce(&s.closed, &none, &none, l.columns[:2*s.count]...)
 }
 
-// at returns the gain at a frequency, for which the closed map is factored.
-func (l *lifted) at(s *Sampled, frequency float64) complex128 {
+// at returns the gain of a sine that turns by z over the window [Hz].
+func (l *lifted) at(s *Sampled, frequency float64, z complex128) complex128 {
 	n := s.joint.N
 	var u [switched.MaxPhases]complex128
 	for k := range l.count {
@@ -84,7 +87,7 @@ func (l *lifted) at(s *Sampled, frequency float64) complex128 {
 			x[i] += scale(u[k], l.columns[k][i])
 		}
 	}
-	s.response.closed.Solve(&x)
+	l.closed.Solve(z, &x)
 	compared := complex128(0)
 	for k := range l.count {
 		c := u[k] + dotComplex(l.rows[k][:n], &x)

@@ -163,8 +163,7 @@ func (s *Sampled) heard(x complex128) float64 {
 		d := 0.0
 		if s.count > 1 {
 			// Beside the eigenvalue: at it, every one of them is without bound.
-			shifted(&s.response.closed, &s.closed, s.joint.N, x*complex(beside, 0))
-			d = cmplx.Abs(1 + s.lift.at(s, f))
+			d = cmplx.Abs(1 + s.lift.at(s, f, x*complex(beside, 0)))
 		}
 		if d < nearest {
 			at, nearest = math.Abs(f), d

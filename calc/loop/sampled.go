@@ -162,10 +162,11 @@ func (s *Sampled) alike() Status {
 		}
 		r := &s.rests[s.window.resting]
 		more := r.left / (r.fall * p.Circuit.Period)
-		if sought(math.Abs(more), before) {
+		size := math.Abs(more)
+		if size <= restWithin || size >= before/2 && size <= restEnough {
 			return Analysed
 		}
-		before = math.Abs(more)
+		before = size
 		if p.Conduct += more; !(r.fall > 0 && p.Conduct > 0 && p.Duty+p.Conduct < 1) {
 			break
 		}
@@ -503,8 +504,7 @@ func (s *Sampled) Loop(frequency float64) complex128 {
 	if s.count == 1 {
 		return s.transfer.At(z)
 	}
-	shifted(&s.response.closed, &s.closed, s.joint.N, z)
-	return s.lift.at(s, frequency)
+	return s.lift.at(s, frequency, z)
 }
 
 // Instant is the periodic solution at the instant a comparator decides, with no

@@ -16,8 +16,9 @@ type held struct {
 
 const (
 	seekRounds  = 150   // [1] five are usual, a few more where a phase changes its conduction mode
-	seekWithin  = 1e-10 // [1] of a period: the change of an instant at which the search ends; Newton's next would be its square
-	seekEnough  = 1e-8  // [1] at which it ends too, if rounding keeps it from getting smaller
+	seekWithin  = 1e-7  // [1] of a period: the change of an instant that is the last; Newton's next would be its square
+	restWithin  = 1e-10 // [1] of a period: the change of the rest of equal phases that is not made any more
+	restEnough  = 1e-8  // [1] at which it is not either, if rounding keeps it from getting smaller
 	valleyZero  = 1e-12 // [1] of the greatest current: a valley this far below zero is none
 	firstGuess  = 0.1   // [1] of the time that is left, where there is nothing better to start from
 	wholeSteps  = 20    // [1] rounds with whole steps
@@ -81,7 +82,6 @@ func (t *instants) restAt(k int, period, at float64) {
 // comparator. The instants then have to satisfy the others, and what is held.
 func (s *Sampled) converge(p *Plant, h held) Status {
 	s.bind(p, true)
-	before := math.Inf(1)
 	for n := range seekRounds {
 		s.window.lay(p, &s.instants)
 		if status := s.follow(); !status.OK() {
@@ -91,29 +91,21 @@ func (s *Sampled) converge(p *Plant, h held) Status {
 		if !ok {
 			return SingularPoint
 		}
-		moved /= p.Circuit.Period
-		if sought(moved, before) {
+		if moved /= p.Circuit.Period; moved <= seekWithin {
 			if !s.switches(p) {
 				return NoComparison
 			}
 			return Analysed
 		}
-		before = moved
 	}
 	return NotConverged
-}
-
-// sought reports whether a search whose last step was so long, and the one before, has
-// come to its end; both over the period.
-func sought(moved, before float64) bool {
-	return moved <= seekWithin || moved >= before/2 && moved <= seekEnough
 }
 
 // switches reports whether every phase switches in every period.
 func (s *Sampled) switches(p *Plant) bool {
 	least, most := p.Modulator.Delay, p.Circuit.Period
 	for _, on := range s.instants.on[:p.Circuit.Phases] {
-		if !(on-least > seekWithin*most && most-on > seekWithin*most) {
+		if !(on-least > restWithin*most && most-on > restWithin*most) {
 			return false
 		}
 	}

@@ -18,20 +18,21 @@ type Transfer struct {
 }
 
 // Reduce sets t to the transfer function of m with the given input column and
-// output row, by Householder reflections.
-func (t *Transfer) Reduce(m *Real, column, row *Point) {
+// output row, by Householder reflections. Further columns and rows are taken into the
+// coordinates in which Solve works.
+func (t *Transfer) Reduce(m *Real, column, row *Point, further ...Point) {
 	n := m.N
 	t.N = n
 	copy(t.h[:n*n], m.A[:n*n])
 	copy(t.column[:n], column[:n])
 	copy(t.row[:n], row[:n])
 	for k := 0; k < n-2; k++ {
-		t.reflect(k)
+		t.reflect(k, further)
 	}
 }
 
 // reflect clears column k below the first subdiagonal.
-func (t *Transfer) reflect(k int) {
+func (t *Transfer) reflect(k int, further []Point) {
 	n := t.N
 	var v [MaxStates]float64
 	norm := 0.0
@@ -68,6 +69,9 @@ func (t *Transfer) reflect(k int) {
 	}
 	reflectRow(t.row[:n], &v, square, k+1)
 	reflectRow(t.column[:n], &v, square, k+1)
+	for i := range further {
+		reflectRow(further[i][:n], &v, square, k+1)
+	}
 	for i := k + 2; i < n; i++ {
 		t.h[i*n+k] = 0
 	}
@@ -84,17 +88,30 @@ func reflectRow(a []float64, v *[MaxStates]float64, square float64, from int) {
 	}
 }
 
-// At returns the transfer function at z, by elimination on the Hessenberg form
-// with row exchanges.
+// At returns the transfer function at z.
 func (t *Transfer) At(z complex128) complex128 {
+	b := &t.side
+	for i, x := range t.column[:t.N] {
+		b[i] = complex(x, 0)
+	}
+	t.Solve(z, b)
+	sum := complex128(0)
+	for i, x := range t.row[:t.N] {
+		sum += complex(x*real(b[i]), x*imag(b[i]))
+	}
+	return sum
+}
+
+// Solve replaces b by (zI - M)^-1 b, both in the coordinates of the reduced form, by
+// elimination with row exchanges.
+func (t *Transfer) Solve(z complex128, b *ComplexPoint) {
 	n := t.N
-	a, b := t.work[:n*n], &t.side
+	a := t.work[:n*n]
 	for i := 0; i < n; i++ {
 		for j := max(0, i-1); j < n; j++ {
 			a[i*n+j] = complex(-t.h[i*n+j], 0)
 		}
 		a[i*n+i] += z
-		b[i] = complex(t.column[i], 0)
 	}
 	for k := 0; k < n-1; k++ {
 		upper, lower := a[k*n:k*n+n], a[k*n+n:k*n+2*n]
@@ -111,13 +128,10 @@ func (t *Transfer) At(z complex128) complex128 {
 		subtract(lower[k+1:], upper[k+1:], f)
 		b[k+1] -= f * b[k]
 	}
-	sum := complex128(0)
 	for i := n - 1; i >= 0; i-- {
 		x := b[i] - product(a[i*n+i+1:i*n+n], b[i+1:n])
 		b[i] = x * reciprocal(a[i*n+i])
-		sum += complex(t.row[i]*real(b[i]), t.row[i]*imag(b[i]))
 	}
-	return sum
 }
 
 // reciprocal is 1/x for a number whose square neither over- nor underflows.
