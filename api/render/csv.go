@@ -5,6 +5,8 @@ import (
 	"encoding/csv"
 	"strconv"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 
 	"railproof/api/wire"
 )
@@ -36,9 +38,11 @@ func (s *sheet) bytes() []byte {
 // number writes the shortest decimal that reads back as v.
 func number(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
 
-// words keeps text of a caller from being taken for a formula by a spreadsheet.
+// words keeps text of a caller from being taken for a formula by a spreadsheet, which
+// may pass over white space before it and take wide signs for usual ones.
 func words(s string) string {
-	if s != "" && strings.ContainsRune("=+-@\t\r", rune(s[0])) {
+	begin := strings.TrimLeftFunc(s, unicode.IsSpace)
+	if first, _ := utf8.DecodeRuneInString(begin); begin != "" && strings.ContainsRune("=+-@＝＋－＠", first) || strings.HasPrefix(s, "\t") || strings.HasPrefix(s, "\r") || strings.HasPrefix(s, "\n") {
 		return "'" + s
 	}
 	return s

@@ -10,9 +10,9 @@ import (
 )
 
 // plain leaves out what a picture cannot hold: control characters and what XML
-// forbids.
+// forbids. Minus signs are written as such.
 func plain(s string) string {
-	return strings.Map(func(r rune) rune {
+	return withMinus(strings.Map(func(r rune) rune {
 		switch {
 		case r == '\n' || r == '\t':
 			return ' '
@@ -20,7 +20,15 @@ func plain(s string) string {
 			return -1
 		}
 		return r
-	}, s)
+	}, s))
+}
+
+// withMinus writes minus signs as such.
+func withMinus(s string) string {
+	if !strings.Contains(s, "-") {
+		return s
+	}
+	return minus.ReplaceAllString(s, "$1−$2")
 }
 
 // lineStep is the height of a line of text.
@@ -88,5 +96,5 @@ func write(c draw.Canvas, ink text.Style, x, y vg.Length, align text.XAlignment,
 		return
 	}
 	ink.XAlign, ink.YAlign = align, draw.YCenter
-	c.FillText(ink, vg.Point{X: x, Y: y + lift*ink.Font.Size}, s)
+	c.FillText(ink, vg.Point{X: x, Y: y + lift*ink.Font.Size}, withMinus(s))
 }

@@ -95,7 +95,7 @@ var (
 
 // together keeps figures and their units on one line, and writes minus signs as such.
 func together(text string) string {
-	return minus.ReplaceAllString(beforeUnit.ReplaceAllString(text, "$1\u00a0$2"), "$1−$2")
+	return withMinus(beforeUnit.ReplaceAllString(text, "$1\u00a0$2"))
 }
 
 // divided lets a line break within a pointer, where its names end and their words.

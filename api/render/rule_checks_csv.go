@@ -20,7 +20,7 @@ func RuleChecksCSV(a *wire.RuleChecksAnswer) []byte {
 			by, until = f.Waiver.Approver, f.Waiver.Expires
 		}
 		s.row(words(f.Rule), f.Severity, f.Verdict, f.Pointer, cell(f.Value), f.Relation, cell(f.Limit), f.Unit, cell(f.Margin),
-			strings.Join(at, "; "), words(strings.Join(f.Missing, " ")), words(f.Detail), words(f.Pack), words(f.Edition), words(by), until, f.WorstBy)
+			words(strings.Join(at, "; ")), words(strings.Join(f.Missing, " ")), words(f.Detail), words(f.Pack), words(f.Edition), words(by), until, f.WorstBy)
 	}
 	return s.bytes()
 }

@@ -54,7 +54,7 @@ func TestPageKeepsItsWidth(t *testing.T) {
 }
 
 func TestSpreadsheetFormulasAreDisarmed(t *testing.T) {
-	for given, want := range map[string]string{"=1+1": "'=1+1", "+x": "'+x", "-x": "'-x", "@x": "'@x", "\tx": "'\tx", "plain": "plain", "": "", "a=b": "a=b"} {
+	for given, want := range map[string]string{"=1+1": "'=1+1", "+x": "'+x", "-x": "'-x", "@x": "'@x", "\tx": "'\tx", "plain": "plain", "": "", "a=b": "a=b", " =1+1": "' =1+1", "\r\n@x": "'\r\n@x", "＝1": "'＝1", "  two": "  two", "\n": "'\n"} {
 		require.Equal(t, want, words(given))
 	}
 }
