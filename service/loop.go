@@ -204,7 +204,7 @@ func (b *loopBench) item(r *LoopRequest, p *stage.Point) (*LoopItem, error) {
 var analysisWords = map[loop.Status]string{
 	loop.SingularPoint: "they have no unique periodic solution",
 	loop.TooStiff:      "a time constant is too short against the switching period",
-	loop.NotConverged:  "the search for the switching instants or for the eigenvalues came to no end",
+	loop.NotConverged:  "no periodic operation with one pulse of each phase in every period was found, or its eigenvalues did not settle",
 }
 
 // fill takes everything from the models.

@@ -92,24 +92,10 @@ func (s *Sampled) converge(p *Plant, h held) Status {
 			return SingularPoint
 		}
 		if moved /= p.Circuit.Period; moved <= seekWithin {
-			if !s.switches(p) {
-				return NoComparison
-			}
 			return Analysed
 		}
 	}
 	return NotConverged
-}
-
-// switches reports whether every phase switches in every period.
-func (s *Sampled) switches(p *Plant) bool {
-	least, most := p.Modulator.Delay, p.Circuit.Period
-	for _, on := range s.instants.on[:p.Circuit.Phases] {
-		if !(on-least > restWithin*most && most-on > restWithin*most) {
-			return false
-		}
-	}
-	return true
 }
 
 // step takes a part of Newton's step and returns the greatest change of an instant that

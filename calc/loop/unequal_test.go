@@ -296,3 +296,25 @@ func TestAveragedModelKeepsUnequalPhasesApart(t *testing.T) {
 		}
 	}
 }
+
+// The least damped phase sets the slope that all of them need.
+func TestSubharmonicOscillationOfOneUnequalPhase(t *testing.T) {
+	c := phases(buoy(), 3)
+	c.Vin = 8
+	c = uneven(c, func(k int, l *switched.Leg) { l.L *= [3]float64{1, 0.7, 1.3}[k] })
+	still := transconductor() // with hardly any ripple of its own at the comparators
+	still.FeedbackOhm, still.ShuntF = 500, 1e-9
+	p := solvedPlant(t, c, 5, currentModulator(), still)
+	least := p.CurrentLoop().LeastSlope
+	alone := p
+	alone.Circuit.Leg, alone.Circuit.Legs = c.Legs[1], nil
+	require.InEpsilon(t, alone.CurrentLoop().LeastSlope, least, 1e-12, "the smallest inductor has the steepest fall")
+	for _, share := range []float64{0.9, 1.1} {
+		p.Modulator.Slope = share * least
+		var m Margins
+		sampledOf(t, p).Margins(&m)
+		require.Equal(t, share < 1, m.Subharmonic, "eigenvalue %v", m.CurrentLoop)
+		require.InDelta(t, p.CurrentLoop().Eigenvalue, real(m.CurrentLoop), 0.05)
+		require.Zero(t, imag(m.CurrentLoop))
+	}
+}

@@ -126,11 +126,32 @@ const (
 // linearise sets the model to the periodic solution for the reference that there is.
 // That of the operating point needs a little more where the amplifier's direct gain
 // is finite; the output that is off by as much needs it no longer.
+//
+// Unequal phases may have no such solution, as where one of them leaves out pulses:
+// then it is that of phases which all are as the first, to begin with.
 func (e *Engine) linearise() bool {
 	p := e.setup.Plant
+	if e.refer(&p) {
+		return true
+	}
+	p = e.setup.Plant
+	c := &p.Circuit
+	if c.Legs == nil {
+		return false
+	}
+	c.Leg, c.Legs = c.Legs[0], nil
+	var s switched.Solution
+	e.solver.Regulated(c, p.Output, 0, 1, &s)
+	p.Operate(&s)
+	return s.Status.OK() && e.refer(&p)
+}
+
+// refer moves the plant to where its loop needs the reference that there is, and sets
+// the model there.
+func (e *Engine) refer(p *loop.Plant) bool {
 	var s switched.Solution
 	for range referenceRounds {
-		if !e.model.Set(&p).OK() {
+		if !e.model.Set(p).OK() {
 			return false
 		}
 		if p.Source.Present || math.Abs(e.model.Error) <= referenceWithin {

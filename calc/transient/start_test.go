@@ -78,3 +78,18 @@ func TestPeriodicSolutionOfUnequalPhasesIsWhatTheRunDoes(t *testing.T) {
 		})
 	}
 }
+
+// With far too much gain the comparators of unequal phases have no periodic solution;
+// the run begins with what they do instead.
+func TestUnequalPhasesWithoutAPeriodicSolutionRunAllTheSame(t *testing.T) {
+	p := unequal(t)["unequal/voltage/three-phases"]
+	const gain = 28.125
+	c := &p.Compensator
+	c.FeedbackF, c.ShuntF, c.FeedbackOhm = c.FeedbackF/gain, c.ShuntF/gain, c.FeedbackOhm*gain
+	var s loop.Sampled
+	require.Equal(t, loop.NotConverged, s.Set(&p))
+	e, err := New(&Setup{Plant: p, Bounds: wide, Duration: 50 * p.Circuit.Period, Saturation: parts.Unknown})
+	require.NoError(t, err)
+	require.Equal(t, Running, e.status)
+	require.True(t, e.restless)
+}
