@@ -27,12 +27,17 @@ const (
 	// thousandth of it.
 	temperatureTolerance = 5e-4
 	// dutyTolerance is the relative step of the duty ratio at which the output is
-	// regulated.
-	dutyTolerance = 1e-9
+	// regulated, restTolerance that of a current that rests, where the output moves
+	// with up to the square of it.
+	dutyTolerance, restTolerance = 1e-9, 2e-10
 	// shareTolerance and shareKelvin are the changes of the circuit and of a
 	// temperature below which the input banks' shares, once solved, stay: they
 	// change by less than that.
 	shareTolerance, shareKelvin = 1e-6, 1e-2
+	// startTolerance is the relative change of the inductance after which the closed
+	// form of a current that rests is followed once more: all of it scales with the
+	// inductance, not the ripple alone.
+	startTolerance = 1e-4
 	// maxPolish bounds the last steps to it, each of which gains three digits.
 	maxPolish = 6
 	// circuitTolerance is the relative change of inductance and bridge voltage at
@@ -171,7 +176,7 @@ func (e *Evaluator) iterate(o *operating) Status {
 		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
 			e.hottest, e.degC = e.degC, before
-			if dutyChange > dutyTolerance {
+			if dutyChange > e.dutyTolerance() {
 				e.polish(o)
 				status = fromSwitched(e.solution.Status)
 			}
@@ -190,10 +195,12 @@ func (e *Evaluator) followClosedForm(o *operating) {
 		e.setBanks(o.bridge, o.output)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
-		e.shareStart()
-		if left == 1 {
+		if left == 1 && e.followInductance() > startTolerance && e.solution.Leg.Mode == switched.Discontinuous {
+			e.circuit.Leg.L = e.inductance[0]
+			e.start(&e.circuit, o.output, load, o.duty)
 			e.followInductance()
 		}
+		e.shareStart()
 		e.followOutput(o)
 		if _, runaway := e.followLosses(o, 1); runaway {
 			e.degC = first // the closed form's currents decide nothing
@@ -225,12 +232,19 @@ func (e *Evaluator) solve(o *operating) (dutyChange float64) {
 // take the last solution, so that their sum stays exact.
 func (e *Evaluator) polish(o *operating) {
 	for range maxPolish {
-		if e.solve(o) <= dutyTolerance {
+		if e.solve(o) <= e.dutyTolerance() {
 			e.model.Freeze(&e.operation)
 			return
 		}
 	}
 	e.solution.Status = switched.NotConverged
+}
+
+func (e *Evaluator) dutyTolerance() float64 {
+	if e.solution.Leg.Mode == switched.Discontinuous {
+		return restTolerance
+	}
+	return dutyTolerance
 }
 
 // settled tells what the temperatures of a converged point mean.
