@@ -73,10 +73,10 @@ func (x *explainer) highSide(m losses.Mechanism) (Equation, float64) {
 		})
 	case losses.Overlap:
 		charge := hs.SwitchChargeAt(vin)
-		on := losses.Transition(charge, c.GateOn+hs.InternalGate, c.Drive-hs.Plateau)
-		off := losses.Transition(charge, c.GateOff+hs.InternalGate, hs.Plateau)
-		return x.mean("P = Vin f (max(Ion, 0) ton + max(Ioff, 0) toff)/2, t = Qsw R/V",
-			[]Input{{"Vin", vin, "V"}, {"f", f, "Hz"}, {"ton", on, "s"}, {"toff", off, "s"}, {"Qsw", charge, "C"}},
+		rOn, rOff, vOn, vOff := c.GateOn+hs.InternalGate, c.GateOff+hs.InternalGate, c.Drive-hs.Plateau, hs.Plateau
+		on, off := losses.Transition(charge, rOn, vOn), losses.Transition(charge, rOff, vOff)
+		return x.mean("P = Vin f (max(Ion, 0) ton + max(Ioff, 0) toff)/2, ton = Qsw Ron/Von, toff = Qsw Roff/Voff",
+			[]Input{{"Vin", vin, "V"}, {"f", f, "Hz"}, {"ton", on, "s"}, {"toff", off, "s"}, {"Qsw", charge, "C"}, {"Ron", rOn, "Ohm"}, {"Von", vOn, "V"}, {"Roff", rOff, "Ohm"}, {"Voff", vOff, "V"}},
 			"linear transitions of current and voltage, one after the other", func(p *phase) ([]Input, float64) {
 				return edges(p.leg), losses.OverlapLoss(vin, f, p.leg.TurnOn, p.leg.TurnOff, on, off)
 			})
@@ -186,7 +186,7 @@ func (x *explainer) core() (Equation, float64) {
 	triangle := magnetics.PrepareTriangle(core.Alpha, core.Beta)
 	triangle.At(core.K, f)
 	k := -1
-	return x.mean("P = kT ki f^α ΔB^β (D^(1−α) + D'^(1−α)) Ve", []Input{
+	return x.mean("P = kT ki f^α ΔB^β (D^(1−α) + D'^(1−α)) Ve, ΔB = L ΔI/(n Ae), ki = k/((2π)^(α−1) 2^(β−α) ∫|cos θ|^α dθ over a turn)", []Input{
 		{"kT", warm, "1"},
 		{"ki", magnetics.Steinmetz{K: core.K, Alpha: core.Alpha, Beta: core.Beta}.KI(), "1"},
 		{"α", core.Alpha, "1"},
@@ -194,7 +194,10 @@ func (x *explainer) core() (Equation, float64) {
 		{"f", f, "Hz"},
 		{"D", duty, "1"},
 		{"Ve", core.Volume, "m3"},
-	}, "improved generalised Steinmetz equation on the real flux, k and SI amplitudes turned into ki", func(p *phase) ([]Input, float64) {
+		{"k", core.K, "1"},
+		{"n", core.Turns, "1"},
+		{"Ae", core.Area, "m2"},
+	}, "improved generalised Steinmetz equation on the real flux", func(p *phase) ([]Input, float64) {
 		k++
 		inductance, fall := x.op.Inductance, 1-duty
 		if x.op.Inductances != nil {
@@ -204,6 +207,10 @@ func (x *explainer) core() (Equation, float64) {
 			fall = p.leg.Conduct
 		}
 		swing := magnetics.FluxSwing(inductance*(p.leg.Peak-p.leg.Valley), core.Turns, core.Area)
-		return []Input{{"ΔB", swing, "T"}, {"D'", fall, "1"}}, warm * triangle.Density(swing, duty, fall) * core.Volume
+		own := []Input{{"ΔB", swing, "T"}, {"D'", fall, "1"}}
+		if x.s.PhaseCount == 1 { // of several, too long for one line
+			own = append(own, Input{"L", inductance, "H"}, Input{"ΔI", p.leg.Peak - p.leg.Valley, "A"})
+		}
+		return own, warm * triangle.Density(swing, duty, fall) * core.Volume
 	})
 }
