@@ -179,6 +179,10 @@ func (b *loopBench) item(r *LoopRequest, p *stage.Point) (*LoopItem, error) {
 	x.Analysis = b.sampled.Set(&b.plant)
 	if !b.sampled.Holds() {
 		x.Analysis, x.Status.Stage = loop.NotRegulating, evaluate.NoOperatingPoint
+		if b.sampled.Limited() {
+			x.Detail = limitedDetail(&b.plant, b.sampled.Peak)
+			return x, nil
+		}
 		x.Detail = "for want of the amplifier's direct gain the loop leaves the output " + short(100*math.Abs(b.sampled.Error)) + " % off what the divider sets: it has no margins at this point; give it more open_loop_gain_ratio, or more transconductance_s and output_ohm"
 		return x, nil
 	}
@@ -199,6 +203,15 @@ func (b *loopBench) item(r *LoopRequest, p *stage.Point) (*LoopItem, error) {
 	b.averaged.Set(&b.plant)
 	b.fill(r, x)
 	return x, b.source(r, &at, x)
+}
+
+// limitedDetail tells why a loop whose pulses the current limit ends has no margins.
+func limitedDetail(p *loop.Plant, peak float64) string {
+	d := "the inductor current reaches " + short(peak) + " A as the comparator decides, not below the current limit of " + short(p.Modulator.CurrentLimit) + " A: the limit ends the pulses, and the loop has no margins at this point"
+	if p.Circuit.Legs != nil && p.Modulator.Mode == parts.VoltageMode {
+		d += "; in voltage mode nothing makes unequal phases share the current"
+	}
+	return d
 }
 
 var analysisWords = map[loop.Status]string{

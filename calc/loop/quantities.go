@@ -25,8 +25,14 @@ const mostDirectError = 0.05
 
 // Holds reports whether the loop holds the operating point that it was linearised
 // about, or at least was not found to leave it: an amplifier without direct gain
-// brings about another output, to which the margins here do not belong.
-func (s *Sampled) Holds() bool { return !s.Status.OK() || math.Abs(s.Error) <= mostDirectError }
+// brings about another output, to which the margins here do not belong, and so does a
+// current limit that ends pulses before the comparator.
+func (s *Sampled) Holds() bool {
+	return !s.Status.OK() || math.Abs(s.Error) <= mostDirectError && !s.Limited()
+}
+
+// Limited reports whether the current limit ends pulses at the operating point.
+func (s *Sampled) Limited() bool { return s.Peak >= s.plant.Modulator.CurrentLimit }
 
 // Analyser fills the loop quantities of evaluated stages. It keeps its workspace;
 // one per goroutine.

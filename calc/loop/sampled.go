@@ -33,6 +33,7 @@ type Sampled struct {
 	Status    Status
 	Error     float64 // [1] output error of a finite-gain amplifier: reference needed over reference, less 1
 	Slope     float64 // [V/s] at which the comparator's inputs cross; the least of unequal phases
+	Peak      float64 // [A] greatest current of a phase as its comparator decides
 	plant     Plant
 	legs      [switched.MaxPhases]switched.Leg // what the plant's point to
 	joint     Joint
@@ -346,7 +347,7 @@ func (s *Sampled) trace() {
 	j, w := &s.joint, &s.window
 	n := j.N
 	z := s.start
-	s.Slope = math.Inf(1)
+	s.Slope, s.Peak = math.Inf(1), math.Inf(-1)
 	for k := range s.count {
 		d := &s.decisions[k]
 		d.enter, d.jump = statespace.Point{}, statespace.Point{}
@@ -372,7 +373,7 @@ func (s *Sampled) trace() {
 		case decides:
 			d := &s.decisions[decided]
 			d.slope = s.plant.RampSlope() + s.plant.sense()*rate[g.phase] - s.control.Slope(system, &rate)
-			s.Slope = min(s.Slope, d.slope)
+			s.Slope, s.Peak = min(s.Slope, d.slope), max(s.Peak, z[g.phase])
 			for i := range decided {
 				earlier := &s.decisions[i].enter
 				d.voltage[i], d.amperes[i] = s.control.At(earlier, n), earlier[g.phase]

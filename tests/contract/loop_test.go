@@ -380,6 +380,7 @@ func TestUnequalPhasesAreAnalysedAsTheyAre(t *testing.T) {
 	at := server(t)
 	request := loopOf(t, "buoy-5v0", object{"curves": false})
 	st := request["stage"].(object)
+	st["modulator"].(object)["current_limit_a"] = 100
 	inductor := st["inductor"].(object)["inductance_h"].(object)["typ"].(float64)
 	analysed := func(first, second float64) object {
 		st["phase_count"], st["phases"] = 2, []any{object{"inductance_h": first * inductor}, object{"inductance_h": second * inductor}}
@@ -404,6 +405,29 @@ func TestUnequalPhasesAreAnalysedAsTheyAre(t *testing.T) {
 	a := asked(t, at, "corners", corners)
 	require.Equal(t, "ok", a["status"])
 	require.Equal(t, "phase_margin_deg", within(a, "quantities", 0, "quantity"))
+}
+
+// Where the current limit ends the pulses, the comparator does not, and a margin would
+// be that of a loop that is not there.
+func TestALoopAtItsCurrentLimitHasNoMargins(t *testing.T) {
+	at := server(t)
+	request := loopOf(t, "buoy-5v0", object{"curves": false})
+	st := request["stage"].(object)
+	st["modulator"].(object)["current_limit_a"] = 5
+	a := asked(t, at, "loopGain", request)
+	require.Equal(t, "no-operating-point", a["status"])
+	item := within(a, "items", 0)
+	require.Contains(t, within(item, "detail"), "current limit of 5 A")
+	require.NotContains(t, item, "phase_margin_deg")
+
+	// In voltage mode small differences between the comparators decide how unequal phases
+	// share the current.
+	st["modulator"].(object)["current_limit_a"] = 10
+	inductor := st["inductor"].(object)["inductance_h"].(object)["typ"].(float64)
+	st["phase_count"], st["phases"] = 2, []any{object{"inductance_h": 0.8 * inductor}, object{"inductance_h": 1.2 * inductor}}
+	a = asked(t, at, "loopGain", request)
+	require.Equal(t, "no-operating-point", a["status"])
+	require.Contains(t, within(a, "items", 0, "detail"), "nothing makes unequal phases share")
 }
 
 // An amplifier without direct gain brings about another output: margins at the point
