@@ -16,8 +16,8 @@ type held struct {
 
 const (
 	seekRounds  = 150   // [1] five are usual, a few more where a phase changes its conduction mode
-	seekWithin  = 1e-7  // [1] of a period: the change of an instant that is the last; Newton's next would be its square
-	restWithin  = 1e-10 // [1] of a period: the change of the rest of equal phases that is not made any more
+	seekWithin  = 1e-7  // [1] of a period: the change of an instant by a whole step that is the last; Newton's next would be its square
+	restWithin  = 1e-10 // [1] of a period: that by a part of a step, and the change of the rest of equal phases that is not made any more
 	restEnough  = 1e-8  // [1] at which it is not either, if rounding keeps it from getting smaller
 	valleyZero  = 1e-12 // [1] of the greatest current: a valley this far below zero is none
 	firstGuess  = 0.1   // [1] of the time that is left, where there is nothing better to start from
@@ -91,7 +91,8 @@ func (s *Sampled) converge(p *Plant, h held) Status {
 		if !ok {
 			return SingularPoint
 		}
-		if moved /= p.Circuit.Period; moved <= seekWithin {
+		moved /= p.Circuit.Period
+		if moved <= restWithin || moved <= seekWithin && n < wholeSteps {
 			return Analysed
 		}
 	}

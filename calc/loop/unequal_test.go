@@ -61,8 +61,9 @@ func TestEqualOverridesAreEqualPhases(t *testing.T) {
 			continue // a single phase is equal to itself
 		}
 		for kind, p := range map[string]Plant{
-			"voltage": solvedPlant(t, c, 5, voltageMode(), typeThree()),
-			"current": solvedPlant(t, c, 5, currentModulator(), transconductor()),
+			"voltage":      solvedPlant(t, c, 5, voltageMode(), typeThree()),
+			"feed-forward": solvedPlant(t, c, 5, parts.Modulator{Present: true, Ramp: 1.5, FeedForward: true, FeedForwardAt: 20}, typeThree()),
+			"current":      solvedPlant(t, c, 5, currentModulator(), transconductor()),
 		} {
 			for _, source := range []Source{{}, behind} {
 				t.Run(kind+"/"+name+"/"+strconv.FormatBool(source.Present), func(t *testing.T) {
@@ -204,6 +205,7 @@ func TestAnyUnequalPlantHasAnAnswer(t *testing.T) {
 		solver.Regulated(&c, p.Output, 0, 1, &solution)
 		p.Circuit = c
 		p.Operate(&solution)
+		p.Modulator.Delay = 0.5 * r.Float64() * min(p.Duty, 1/float64(c.Phases)) * c.Period
 		if !solution.Status.OK() || p.Check() != nil {
 			continue
 		}
