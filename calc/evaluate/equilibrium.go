@@ -30,10 +30,9 @@ const (
 	// regulated, restTolerance that of a current that rests, where the output moves
 	// with up to the square of it.
 	dutyTolerance, restTolerance = 1e-9, 2e-10
-	// shareTolerance and shareKelvin are the changes of the circuit and of a
-	// temperature below which the input banks' shares, once solved, stay: they
-	// change by less than that.
-	shareTolerance, shareKelvin = 1e-6, 1e-2
+	// polishReach is the longest of those steps that the settled circuit still takes:
+	// what follows from the currents moves as little.
+	polishReach = 1e-6
 	// startTolerance is the relative change of the inductance after which the closed
 	// form of a current that rests is followed once more: all of it scales with the
 	// inductance, not the ripple alone.
@@ -48,18 +47,19 @@ const (
 // operating is the state of one evaluation while it runs.
 type operating struct {
 	point        *stage.Point
-	held         bool    // parts are held at a temperature
-	copper       float64 // [1] multiplier of the board's copper
-	output       float64 // [V] regulated voltage, or the present mean
-	duty         float64 // [1] fixed duty ratio; negative: regulated
-	bridge       float64 // [V]
-	charged      float64 // [V] bridge voltage for which charges and rates are computed
-	path         float64 // [ohm] source and input path
-	input        float64 // [A] mean current through them
-	least, most  float64 // [1] duty ratios that the controller can make
-	deadTimeDuty float64 // [1]
-	closedPasses int     // on the closed form
-	refine       bool    // the last thermal step was short
+	held         bool       // parts are held at a temperature
+	copper       float64    // [1] multiplier of the board's copper
+	output       float64    // [V] regulated voltage, or the mean that a fixed duty ratio gives
+	bias         float64    // [V] mean output voltage, also where it is not the regulated one
+	duty         float64    // [1] fixed duty ratio; negative: regulated
+	bridge       float64    // [V]
+	charged      [2]float64 // [V] bridge and output voltage for which charges and rates are computed
+	path         float64    // [ohm] source and input path
+	input        float64    // [A] mean current through them
+	least, most  float64    // [1] duty ratios that the controller can make
+	deadTimeDuty float64    // [1]
+	closedPasses int        // on the closed form
+	refine       bool       // the last thermal step was short
 	near         *Anchor
 }
 
@@ -116,6 +116,7 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		o.duty = p.Control.Duty
 		o.output = o.duty * p.Input
 	}
+	o.bias = o.output
 	for k := range e.inductance[:s.PhaseCount] {
 		e.inductance[k] = e.nominalInductance(k)
 	}
@@ -153,28 +154,26 @@ func (e *Evaluator) nominalInductance(k int) float64 {
 // iterate runs the joint iteration and returns its status.
 func (e *Evaluator) iterate(o *operating) Status {
 	e.followClosedForm(o)
-	moved := true
 	for range maxPasses {
 		e.setCircuit(o.bridge, o.copper)
-		e.setBanks(o.bridge, o.output)
+		e.setBanks(o.bridge, o.bias)
 		e.limitDuty(o)
 		dutyChange := e.solve(o)
 		status := fromSwitched(e.solution.Status)
 		if status == NoOperatingPoint || status == NotConverged {
 			return status
 		}
-		if moved && !e.share() {
+		if !e.share() {
 			return NotConverged
 		}
 		before := e.degC
-		circuitChange := max(e.followInductance(), e.followOutput(o))
+		circuitChange := max(e.followInductance(), e.followOutput(o, status == OK))
 		temperatureChange, runaway := e.followLosses(o, thermalSteps)
 		if runaway {
 			return Runaway
 		}
 		circuitChange = max(circuitChange, e.followBridge(o))
-		moved = circuitChange > shareTolerance || temperatureChange > shareKelvin
-		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance {
+		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance && dutyChange <= polishReach {
 			e.hottest, e.degC = e.degC, before
 			if dutyChange > e.dutyTolerance() {
 				e.polish(o)
@@ -192,7 +191,7 @@ func (e *Evaluator) followClosedForm(o *operating) {
 	first := e.degC
 	for left := o.closedPasses; left > 0; left-- {
 		e.setCircuit(o.bridge, o.copper)
-		e.setBanks(o.bridge, o.output)
+		e.setBanks(o.bridge, o.bias)
 		load := e.circuit.Current + e.circuit.Conductance*o.output
 		e.start(&e.circuit, o.output, load, o.duty)
 		if left == 1 && e.followInductance() > startTolerance && e.solution.Leg.Mode == switched.Discontinuous {
@@ -201,7 +200,7 @@ func (e *Evaluator) followClosedForm(o *operating) {
 			e.followInductance()
 		}
 		e.shareStart()
-		e.followOutput(o)
+		e.followOutput(o, true)
 		if _, runaway := e.followLosses(o, 1); runaway {
 			e.degC = first // the closed form's currents decide nothing
 			return
@@ -227,12 +226,16 @@ func (e *Evaluator) solve(o *operating) (dutyChange float64) {
 	return e.solver.Approach(&e.circuit, o.output, o.least, o.most, &e.solution)
 }
 
-// polish brings the output of the settled circuit to the regulated voltage. What
-// follows from the currents moves by less than the circuit's tolerance; the losses
-// take the last solution, so that their sum stays exact.
+// polish brings the output of the settled circuit, at most polishReach away, to the
+// regulated voltage. What is told follows from the last solution, so that the sum of the
+// losses stays exact.
 func (e *Evaluator) polish(o *operating) {
 	for range maxPolish {
 		if e.solve(o) <= e.dutyTolerance() {
+			e.followInductance()
+			if !e.share() {
+				break
+			}
 			e.model.Freeze(&e.operation)
 			return
 		}

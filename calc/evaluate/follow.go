@@ -8,14 +8,17 @@ import (
 	"railproof/calc/thermal"
 )
 
-// followOutput takes the output voltage of a fixed duty ratio from the present
-// solution and returns its relative change.
-func (e *Evaluator) followOutput(o *operating) float64 {
-	if o.duty < 0 {
-		return 0
+// followOutput takes the mean output voltage from the present solution, if it does not
+// have the regulated one, and returns its relative change.
+func (e *Evaluator) followOutput(o *operating, regulated bool) float64 {
+	mean := e.solution.OutputMean
+	if o.duty >= 0 {
+		o.output = mean
+	} else if regulated {
+		mean = o.output
 	}
-	change := math.Abs(e.solution.OutputMean/o.output - 1)
-	o.output = e.solution.OutputMean
+	change := math.Abs(mean/o.bias - 1)
+	o.bias = mean
 	return change
 }
 
@@ -24,9 +27,9 @@ func (e *Evaluator) followOutput(o *operating) float64 {
 func (e *Evaluator) followLosses(o *operating, steps int) (temperatureChange float64, runaway bool) {
 	op := &e.operation
 	op.Bridge, op.Output, op.Inductance = o.bridge, e.solution.OutputMean, e.inductance[0]
-	if !(math.Abs(o.bridge-o.charged) <= circuitTolerance*o.bridge) || o.duty >= 0 {
+	if !(near(op.Bridge, o.charged[0]) && near(op.Output, o.charged[1])) {
 		e.model.Charge(op.Bridge, op.Output)
-		o.charged = o.bridge
+		o.charged = [2]float64{op.Bridge, op.Output}
 	}
 	e.model.Freeze(op)
 	for step := range steps {
@@ -49,6 +52,9 @@ func (e *Evaluator) followLosses(o *operating, steps int) (temperatureChange flo
 	}
 	return temperatureChange, false
 }
+
+// near reports whether a voltage is another within the circuit's tolerance.
+func near(v, other float64) bool { return math.Abs(v-other) <= circuitTolerance*v }
 
 // heat moves the temperatures by one Newton step, after a short one with the slopes
 // at hand.

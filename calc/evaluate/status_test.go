@@ -1,12 +1,14 @@
 package evaluate_test
 
 import (
+	"math"
 	"testing"
 
 	"github.com/stretchr/testify/assert"
 	"github.com/stretchr/testify/require"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/losses"
 	"railproof/calc/parts"
 	"railproof/calc/quantity"
 	"railproof/calc/stage"
@@ -46,6 +48,41 @@ func TestTooShortOnTimeNamesTheLeastLoad(t *testing.T) {
 	p.Load.Current = n.LoadCurrent * 0.999
 	e.Eval(&p, &r)
 	assert.Equal(t, evaluate.TooShortOnTime, r.Status)
+}
+
+// Where the output is not the regulated one, capacitors are biased by the voltage there
+// is, and gates driven from it.
+func TestOutputOutOfRegulationIsFollowed(t *testing.T) {
+	for _, c := range []struct {
+		name, rail string
+		alter      func(*stage.Point)
+		status     evaluate.Status
+	}{
+		{"drop-out", "buoy-5v0", func(p *stage.Point) { p.Input = 4 }, evaluate.DropOut},
+		{"too short", "buoy-3v3", func(p *stage.Point) { p.Input, p.Load.Current = 40, 1e-5 }, evaluate.TooShortOnTime},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			s, p := example(t, c.rail)
+			c.alter(&p)
+			s.Controller.DriveSupply = parts.DriveFromOutput
+			e := evaluate.Prepare(s)
+			var r evaluate.Result
+			e.Eval(&p, &r)
+			require.Equal(t, c.status, r.Status)
+			vo := r.Quantities[quantity.OutputMean]
+			require.Greater(t, math.Abs(vo/p.Control.Voltage-1), 0.05)
+			gate := 0.0
+			for _, item := range r.Losses.Items[:r.Losses.N] {
+				if item.Mechanism == losses.GateDrive {
+					gate = item.Power
+				}
+			}
+			want := losses.GateDriveLoss(s.HighSide.GateCharge+s.LowSide.GateCharge, vo, s.SwitchingFrequency)
+			assert.InEpsilon(t, want, gate, 1e-6)
+			bank := &s.OutputCapacitors[0]
+			assert.InEpsilon(t, bank.CapacitanceAt(vo, r.PartDegC[losses.OutputCapacitor], p.AgeRatio), r.Quantities[quantity.OutputCapacitanceEffective], 1e-6)
+		})
+	}
 }
 
 func TestOverTemperatureGivesEveryFigureAndWhereItBegins(t *testing.T) {
