@@ -46,11 +46,11 @@ func (s *Service) design(ctx context.Context, r *LoopRequest, d *Design, a *Loop
 	t := *r.Target
 	design, err := b.sampled.Synthesise(&b.plant, t)
 	if unreachable, is := errors.AsType[*loop.UnreachableError](err); is {
-		reach, err := b.reach(ctx, t)
-		if err != nil {
+		reach := b.reach(ctx, t)
+		unreachable.Bound = b.bound(ctx, t, unreachable.Bound)
+		if err := context.Cause(ctx); err != nil {
 			return err
 		}
-		unreachable.Bound = b.bound(t, unreachable.Bound)
 		return &UnreachableTarget{*unreachable, reach}
 	}
 	if err != nil {
@@ -79,11 +79,10 @@ const (
 // bound returns the greatest phase margin [deg] that can be had at the crossover, to
 // four digits downwards and tried out; parts.Unknown where none is found. Its search
 // begins from what the synthesis takes for the bound, if it knows one.
-func (b *loopBench) bound(t loop.Target, supposed float64) float64 {
+func (b *loopBench) bound(ctx context.Context, t loop.Target, supposed float64) float64 {
 	works := func(margin float64) bool {
 		t.PhaseMargin = margin
-		_, err := b.sampled.Synthesise(&b.plant, t)
-		return err == nil
+		return b.works(ctx, t)
 	}
 	bad := t.PhaseMargin
 	if parts.Known(supposed) {
@@ -118,20 +117,25 @@ func downward(x float64) float64 {
 	return math.Floor(x/unit) * unit
 }
 
+// works reports whether a target can be met; nothing can once the caller has left.
+func (b *loopBench) works(ctx context.Context, t loop.Target) bool {
+	if ctx.Err() != nil {
+		return false
+	}
+	_, err := b.sampled.Synthesise(&b.plant, t)
+	return err == nil
+}
+
 // reach returns the highest crossover below that asked for at which the phase
-// margin can be had.
-func (b *loopBench) reach(ctx context.Context, t loop.Target) (float64, error) {
+// margin can be had; parts.Unknown where none is found.
+func (b *loopBench) reach(ctx context.Context, t loop.Target) float64 {
 	works := func(f float64) bool {
 		t.Crossover = f
-		_, err := b.sampled.Synthesise(&b.plant, t)
-		return err == nil
+		return b.works(ctx, t)
 	}
 	tried := make([]float64, reachSteps)
 	loop.Frequencies(tried, t.Crossover, t.Crossover*reachSpan)
 	for i := 1; i < len(tried); i++ {
-		if err := context.Cause(ctx); err != nil {
-			return parts.Unknown, err
-		}
 		if !works(tried[i]) {
 			continue
 		}
@@ -143,9 +147,9 @@ func (b *loopBench) reach(ctx context.Context, t loop.Target) (float64, error) {
 				bad = middle
 			}
 		}
-		return downward(good), nil
+		return downward(good)
 	}
-	return parts.Unknown, nil
+	return parts.Unknown
 }
 
 // Reachable says what can be reached instead.
