@@ -28,18 +28,7 @@ func Needs(c *Case, packs []*Pack) Demand {
 	for _, pack := range packs {
 		for i := range pack.Rules {
 			for j := range pack.Rules[i].Bodies {
-				body := &pack.Rules[i].Bodies[j]
-				for place := range body.Scope.places(c.Stage) {
-					if body.When != nil {
-						look := &Look{facts: p.at(body.Scope, place, pack.Parameters)}
-						if applies := body.When(look); !applies && len(look.missing) == 0 && look.problem == "" {
-							continue
-						}
-					}
-					for _, name := range slices.Concat(body.Reads, pack.Rules[i].Needs) {
-						d.add(name, place)
-					}
-				}
+				d.addBody(p, pack, &pack.Rules[i], &pack.Rules[i].Bodies[j])
 			}
 		}
 	}
@@ -48,6 +37,21 @@ func Needs(c *Case, packs []*Pack) Demand {
 		*list = slices.Compact(*list)
 	}
 	return d
+}
+
+// addBody adds what a rule wants to know at the places where it may apply.
+func (d *Demand) addBody(p *prepared, pack *Pack, rule *Rule, body *Body) {
+	for place := range body.Scope.places(p.c.Stage) {
+		if body.When != nil {
+			look := &Look{facts: p.at(body.Scope, place, pack.Parameters)}
+			if applies := body.When(look); !applies && len(look.missing) == 0 && look.problem == "" {
+				continue
+			}
+		}
+		for _, name := range slices.Concat(body.Reads, rule.Needs) {
+			d.add(name, place)
+		}
+	}
 }
 
 func (d *Demand) add(name string, place int) {

@@ -2,6 +2,7 @@ package sizing
 
 import (
 	"fmt"
+	"iter"
 	"math"
 	"strings"
 
@@ -144,40 +145,54 @@ func (z *sizer) loopReserve(typical *loop.Margins, beat float64) float64 {
 	var r evaluate.Result
 	var a loop.Analyser
 	reserve := typical.PhaseMargin/typicalMargin - 1
-	p := stage.Point{SourceResistance: z.req.SourceResistance, PartTemperatureDegC: parts.Unknown, Control: stage.Control{Kind: stage.ByFeedback}}
 	for _, at := range loopCorners {
-		p.AgeRatio = at.age
 		for _, at.large = range [2]bool{true, false} {
 			for _, v := range z.ans.Spreads {
 				*values[v.Field] = at.end(&v)
 			}
-			for _, p.Input = range [2]float64{z.req.Input.Max, z.req.Input.Min} {
-				for _, p.AmbientDegC = range [2]float64{z.req.AmbientDegC.Min, z.req.AmbientDegC.Max} {
-					for _, p.Load.Current = range [2]float64{z.req.LoadCurrent.Max, z.req.LoadCurrent.Min} {
-						e.Eval(&p, &r)
-						status, err := a.Fill(e, r.Status, &r.Quantities)
-						m := &a.Margins
-						switch {
-						case err != nil || status == loop.NotRegulating:
-							continue // a light load may ask for less than the least on-time
-						case !status.OK() || m.Stability != loop.Stable:
-							return math.Inf(-1)
-						}
-						reserve = math.Min(reserve, m.PhaseMargin/worstMargin-1)
-						reserve = math.Min(reserve, 1-m.Crossover/(worstCross*e.Stage().SwitchingFrequency))
-						if parts.Known(m.GainMargin) {
-							reserve = math.Min(reserve, m.GainMargin/worstGain-1)
-						}
-						if reserve < 0 && reserve <= beat {
-							return reserve
-						}
-					}
+			for p := range z.conditionCorners(at.age) {
+				e.Eval(&p, &r)
+				status, err := a.Fill(e, r.Status, &r.Quantities)
+				if err == nil && status != loop.NotRegulating { // a light load may ask for less than the least on-time
+					reserve = min(reserve, heldMargins(&a.Margins, status, e.Stage().SwitchingFrequency))
+				}
+				if reserve < 0 && reserve <= beat {
+					return reserve
 				}
 				if !z.pace.goesOn() {
 					return math.Inf(-1)
 				}
 			}
 		}
+	}
+	return reserve
+}
+
+// conditionCorners yields the points at the ends of input, ambient and load, where the
+// stage holds its output by its feedback.
+func (z *sizer) conditionCorners(age float64) iter.Seq[stage.Point] {
+	return func(yield func(stage.Point) bool) {
+		p := stage.Point{AgeRatio: age, SourceResistance: z.req.SourceResistance, PartTemperatureDegC: parts.Unknown, Control: stage.Control{Kind: stage.ByFeedback}}
+		for k := range 8 {
+			p.Input = [2]float64{z.req.Input.Max, z.req.Input.Min}[k>>2]
+			p.AmbientDegC = [2]float64{z.req.AmbientDegC.Min, z.req.AmbientDegC.Max}[k>>1&1]
+			p.Load.Current = [2]float64{z.req.LoadCurrent.Max, z.req.LoadCurrent.Min}[k&1]
+			if !yield(p) {
+				return
+			}
+		}
+	}
+}
+
+// heldMargins returns by how much margins exceed what they are held to, as a part of
+// it; -Inf where the loop is not stable.
+func heldMargins(m *loop.Margins, status loop.Status, fs float64) float64 {
+	if !status.OK() || m.Stability != loop.Stable {
+		return math.Inf(-1)
+	}
+	reserve := math.Min(m.PhaseMargin/worstMargin-1, 1-m.Crossover/(worstCross*fs))
+	if parts.Known(m.GainMargin) {
+		reserve = math.Min(reserve, m.GainMargin/worstGain-1)
 	}
 	return reserve
 }
