@@ -55,6 +55,9 @@ type operating struct {
 	bridge       float64    // [V]
 	charged      [2]float64 // [V] bridge and output voltage for which charges and rates are computed
 	path         float64    // [ohm] source and input path
+	turns        int        // that the bridge voltage has taken
+	before       float64    // [V] it before the last of them
+	asked        float64    // [V] what that came to
 	input        float64    // [A] mean current through them
 	least, most  float64    // [1] duty ratios that the controller can make
 	deadTimeDuty float64    // [1]
@@ -173,6 +176,9 @@ func (e *Evaluator) iterate(o *operating) Status {
 			return Runaway
 		}
 		circuitChange = max(circuitChange, e.followBridge(o))
+		if o.exhausted() {
+			return NoOperatingPoint
+		}
 		if circuitChange <= circuitTolerance && temperatureChange <= temperatureTolerance && dutyChange <= polishReach {
 			e.hottest, e.degC = e.degC, before
 			if dutyChange > e.dutyTolerance() {

@@ -144,13 +144,35 @@ func (e *Evaluator) followBridge(o *operating) float64 {
 	o.input = power / o.bridge
 	next := o.point.Input - o.path*o.input
 	change := math.Abs(next/o.bridge - 1)
+	before, asked := o.bridge, next
+	if o.turns++; o.turns > plainTurns {
+		if slope := (next - o.asked) / (o.bridge - o.before); slope < mostSlope {
+			next = o.bridge + (next-o.bridge)/(1-slope)
+		}
+	}
+	o.before, o.asked = before, asked
 	o.bridge = max(next, o.point.Input*leastBridge)
 	return change
 }
 
-// leastBridge keeps the bridge voltage of a source that cannot supply the load
-// above zero; such a point ends in drop-out.
+const (
+	// plainTurns is how often the bridge voltage is taken as it comes out. A source
+	// that the load nearly exhausts then goes on by secants: what a resistor takes in
+	// drop-out falls with the voltage and makes plain turns swing without end.
+	plainTurns = 4
+	mostSlope  = 0.9 // [1] of the secant; steeper ones lead nowhere
+)
+
+// leastBridge keeps the bridge voltage of a source that cannot supply the load above
+// zero. A load that shrinks with the voltage ends in drop-out, above it.
 const leastBridge = 1e-2 // [1] of the source's voltage
+
+// exhausted reports whether the source cannot supply what the load takes at any
+// voltage.
+func (o *operating) exhausted() bool {
+	least := o.point.Input * leastBridge
+	return o.before <= least && o.bridge <= least
+}
 
 // loadRMS returns the RMS current through the output path: the load's, which
 // carries ripple where it is a resistor.

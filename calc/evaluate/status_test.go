@@ -85,6 +85,30 @@ func TestOutputOutOfRegulationIsFollowed(t *testing.T) {
 	}
 }
 
+// A source too weak for the load ends in drop-out where the load shrinks with the
+// voltage, and at no operating point where it does not; never unsettled.
+func TestWeakSourceIsTold(t *testing.T) {
+	s, p := example(t, "buoy-5v0")
+	e := evaluate.Prepare(s)
+	for _, ohm := range []float64{0.3, 0.6, 0.8, 1.2, 2, 5, 20} {
+		for _, vin := range []float64{4, 5.2, 8, 12, 24} {
+			p.Input, p.SourceResistance = vin, ohm
+			var r evaluate.Result
+			p.Load = stage.Load{Conductance: 1.2}
+			e.Eval(&p, &r)
+			require.Contains(t, []evaluate.Status{evaluate.OK, evaluate.DropOut}, r.Status, "%g V behind %g ohm", vin, ohm)
+			in := r.Quantities[quantity.InputMean]
+			assert.InDelta(t, vin, r.Quantities[quantity.BridgeVoltage]+(ohm+s.Board.InputPath)*in, 1e-3*vin, "the source's own law")
+			p.Load = stage.Load{Current: 6}
+			e.Eval(&p, &r)
+			assert.Contains(t, []evaluate.Status{evaluate.OK, evaluate.DropOut, evaluate.NoOperatingPoint}, r.Status, "%g V behind %g ohm", vin, ohm)
+			if ohm*5 > vin { // less than 5 A even into a short
+				assert.Equal(t, evaluate.NoOperatingPoint, r.Status, "%g V behind %g ohm", vin, ohm)
+			}
+		}
+	}
+}
+
 func TestOverTemperatureGivesEveryFigureAndWhereItBegins(t *testing.T) {
 	s, p := example(t, "buoy-5v0")
 	s.HighSide.Rating.JunctionDegC = 70
