@@ -13,52 +13,23 @@ import (
 type Code string
 
 const (
-	EstimatesOnly         Code = "estimates-only"
-	InputReachesLoad      Code = "input-reaches-load-on-fault"
-	NotAnalysed           Code = "faults-not-analysed"
-	AboveES1Voltage       Code = "above-es1-voltage"
-	AboveES2Voltage       Code = "above-es2-voltage"
-	ChargedCapacitor      Code = "charged-capacitor"
-	StoredEnergy          Code = "stored-energy"
-	HotPlugOvershoot      Code = "hot-plug-overshoot"
-	FaultCurrent          Code = "fault-current"
-	PowerSourcePS2        Code = "power-source-ps2"
-	PowerSourcePS3        Code = "power-source-ps3"
-	HotSurface            Code = "hot-surface"
-	BeyondAbsoluteMaximum Code = "beyond-absolute-maximum"
-	CapacitorNearLimit    Code = "capacitor-near-limit"
-	CapacitorLimitUnknown Code = "capacitor-limit-unknown"
-	ThermalRunaway        Code = "thermal-runaway"
+	EstimatesOnly         Code = "estimates-only"              // results are estimates for engineering judgement
+	InputReachesLoad      Code = "input-reaches-load-on-fault" // a shorted high-side switch puts the input voltage on the load
+	NotAnalysed           Code = "faults-not-analysed"         // fault cases that no computation here covers
+	AboveES1Voltage       Code = "above-es1-voltage"           // a node exceeds 60 V DC, the limit of electrical energy class ES1 (IEC 62368-1)
+	AboveES2Voltage       Code = "above-es2-voltage"           // a node exceeds 120 V DC, the limit of electrical energy class ES2 (IEC 62368-1)
+	ChargedCapacitor      Code = "charged-capacitor"           // a capacitor stays charged above the ES1 limit after switch-off
+	StoredEnergy          Code = "stored-energy"               // capacitors store 20 J or more, enough to burn through rings and tools
+	HotPlugOvershoot      Code = "hot-plug-overshoot"          // hot plugging into low-loss ceramic capacitors can reach twice the input voltage
+	FaultCurrent          Code = "fault-current"               // the source can drive a fault with more than 15 W: fuse or limit it
+	PowerSourcePS2        Code = "power-source-ps2"            // power above 15 W: power source class PS2 (IEC 62368-1)
+	PowerSourcePS3        Code = "power-source-ps3"            // power above 100 W: power source class PS3 (IEC 62368-1)
+	HotSurface            Code = "hot-surface"                 // a part may burn whoever touches it
+	BeyondAbsoluteMaximum Code = "beyond-absolute-maximum"     // a part is used beyond an absolute maximum rating
+	CapacitorNearLimit    Code = "capacitor-near-limit"        // an electrolytic or tantalum capacitor is near a limit at which it can vent or ignite
+	CapacitorLimitUnknown Code = "capacitor-limit-unknown"     // an electrolytic or tantalum capacitor has no voltage rating to check
+	ThermalRunaway        Code = "thermal-runaway"             // no stable thermal equilibrium
 )
-
-// Meanings lists every code with what it warns of, in the order in which
-// cautions are returned.
-func Meanings() []Meaning { return meanings }
-
-// Meaning explains one code.
-type Meaning struct {
-	Code Code
-	Text string
-}
-
-var meanings = []Meaning{
-	{EstimatesOnly, "results are estimates for engineering judgement"},
-	{InputReachesLoad, "a shorted high-side switch puts the input voltage on the load"},
-	{NotAnalysed, "fault cases that no computation here covers"},
-	{AboveES1Voltage, "a node exceeds 60 V DC, the limit of electrical energy class ES1 (IEC 62368-1)"},
-	{AboveES2Voltage, "a node exceeds 120 V DC, the limit of electrical energy class ES2 (IEC 62368-1)"},
-	{ChargedCapacitor, "a capacitor stays charged above the ES1 limit after switch-off"},
-	{StoredEnergy, "capacitors store 20 J or more, enough to burn through rings and tools"},
-	{HotPlugOvershoot, "hot plugging into low-loss ceramic capacitors can reach twice the input voltage"},
-	{FaultCurrent, "the source can drive a fault with more than 15 W: fuse or limit it"},
-	{PowerSourcePS2, "power above 15 W: power source class PS2 (IEC 62368-1)"},
-	{PowerSourcePS3, "power above 100 W: power source class PS3 (IEC 62368-1)"},
-	{HotSurface, "a part may burn whoever touches it"},
-	{BeyondAbsoluteMaximum, "a part is used beyond an absolute maximum rating"},
-	{CapacitorNearLimit, "an electrolytic or tantalum capacitor is near a limit at which it can vent or ignite"},
-	{CapacitorLimitUnknown, "an electrolytic or tantalum capacitor has no voltage rating to check"},
-	{ThermalRunaway, "no stable thermal equilibrium"},
-}
 
 // Caution is one thing to be careful about.
 type Caution struct {

@@ -290,23 +290,6 @@ func TestChargedOutputNamesTheBleed(t *testing.T) {
 	}
 }
 
-func TestEveryCodeIsExplained(t *testing.T) {
-	seen := map[Code]bool{}
-	for _, m := range Meanings() {
-		if m.Text == "" || seen[m.Code] {
-			t.Errorf("%s: no text or listed twice", m.Code)
-		}
-		seen[m.Code] = true
-	}
-	s := plainStage(stage.Synchronous)
-	s.OutputCapacitors[0].Kind = parts.TantalumSolid
-	for _, c := range cautionsOf(s, point(150), result(evaluate.OK, nil)) {
-		if !seen[c.Code] {
-			t.Errorf("code %s has no meaning", c.Code)
-		}
-	}
-}
-
 func TestSourceWithoutRealResistanceIsStiff(t *testing.T) {
 	for _, source := range []float64{0, 1e-300, 1e-9} {
 		var seen Seen

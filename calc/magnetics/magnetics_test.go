@@ -116,27 +116,6 @@ func TestCoreLossRisesWithSwingAndFrequency(t *testing.T) {
 	}
 }
 
-// TestUnitConversion prints the same material in other units and converts back.
-func TestUnitConversion(t *testing.T) {
-	const alpha, beta = 1.46, 2.75
-	want := Steinmetz{1.7, alpha, beta}
-	for name, u := range map[string]Units{
-		"kHz, T, kW/m3":        {1e3, 1e3, 1},
-		"kHz, mT, kW/m3":       {1e3, 1e3, 1e-3},
-		"Hz, gauss, mW/cm3":    {1e3, 1, 1e-4},
-		"kHz, mT peak to peak": {1e3, 1e3, 0.5e-3},
-		"MHz, T, W/m3":         {1, 1e6, 1},
-	} {
-		f, b := 250e3, 0.08
-		printed := want.SineDensity(f, b) / u.Density / (math.Pow(f/u.Frequency, alpha) * math.Pow(b/u.Flux, beta))
-		got := u.Convert(printed, alpha, beta)
-		calctest.Close(t, name, got.SineDensity(f, b), want.SineDensity(f, b), 1e-12)
-		calctest.Close(t, name+", k", got.K, want.K, 1e-12)
-	}
-	// The conversion as stated: k = k' 1e3 (1e-3)^α for kHz and kW/m3.
-	calctest.Close(t, "rule", Units{1e3, 1e3, 1}.Convert(2, alpha, beta).K, 2*1e3*math.Pow(1e-3, alpha), 1e-12)
-}
-
 // TestMistakesAreAbsurd: the two usual mistakes with k lead far off, and k_i
 // typed as k beyond what a core survives at a common working point.
 func TestMistakesAreAbsurd(t *testing.T) {

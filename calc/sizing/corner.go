@@ -28,7 +28,7 @@ func (z *sizer) at(vin, vo, io float64, hot bool) corner {
 	c.bridge = bridgeVoltage(vin, z.source, power)
 	c.i = io / z.phases
 	c.on, c.off = inductorVoltages(c.bridge, vo, c.i, drops)
-	c.duty = c.off / (c.on + c.off)
+	c.duty = DropDuty(c.bridge, vo, c.i, drops)
 	c.Duty = c.duty
 	return c
 }

@@ -84,7 +84,7 @@ func (z *sizer) duty() {
 func (z *sizer) shortest() corner {
 	c := z.at(z.req.Input.Max, z.voLow, z.req.LoadCurrent.Min, false)
 	c.on, c.off = inductorVoltages(c.bridge, z.voLow, c.i, z.leastDrops)
-	c.duty = c.off / (c.on + c.off)
+	c.duty = DropDuty(c.bridge, z.voLow, c.i, z.leastDrops)
 	c.Duty, c.Frequency = c.duty, z.fsHigh
 	return c
 }
