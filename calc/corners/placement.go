@@ -2,8 +2,10 @@ package corners
 
 import (
 	"math"
+	"slices"
 
 	"railproof/calc/evaluate"
+	"railproof/calc/quantity"
 	"railproof/calc/stage"
 	"railproof/calc/switched"
 )
@@ -70,6 +72,9 @@ func (p *placement) place(z []float64) {
 // Model returns a model for one worker.
 func (d *Design) Model() Model {
 	e := evaluate.Prepare(d.stage)
+	if !slices.Contains(d.quantities, quantity.ThermalFeedback) {
+		e.SpareFeedback()
+	}
 	m := &stageModel{placement: d.newPlacement(e.Stage()), evaluator: e}
 	if d.extend != nil {
 		m.extend = d.extend()

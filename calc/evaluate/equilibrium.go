@@ -84,6 +84,8 @@ func (e *Evaluator) run(a *Anchor, p *stage.Point, o *operating, r *Result) Stat
 	e.begin(p, o)
 	if a != nil && !o.held {
 		e.beginNear(a, o)
+	} else {
+		e.beginCold(o)
 	}
 	status := e.iterate(o)
 	e.operation.PathMean, e.operation.LoadRMS = o.input, e.loadRMS()
@@ -120,23 +122,26 @@ func (e *Evaluator) begin(p *stage.Point, o *operating) {
 		o.output = o.duty * p.Input
 	}
 	o.bias = o.output
-	for k := range e.inductance[:s.PhaseCount] {
-		e.inductance[k] = e.nominalInductance(k)
-	}
-	if s.Inductor.Saturates() {
-		i := (e.circuit.Current + e.circuit.Conductance*o.output) / float64(s.PhaseCount)
-		bent := s.Inductor.IncrementalAt(i) / s.Inductor.Inductance
-		for k := range e.inductance[:s.PhaseCount] {
-			e.inductance[k] *= bent
-		}
-	}
 	e.operation = losses.Operation{AgeRatio: p.AgeRatio, BoardDegC: board, Solution: &e.solution}
 	if len(s.Phases) > 0 {
 		e.operation.Inductances = &e.inductance
 	}
 }
 
-// beginNear replaces the cold start by the anchor's.
+// beginCold starts with the inductance at the mean current.
+func (e *Evaluator) beginCold(o *operating) {
+	l, phases := &e.stage.Inductor, e.stage.PhaseCount
+	bent := 1.0
+	if l.Saturates() {
+		i := (e.circuit.Current + e.circuit.Conductance*o.output) / float64(phases)
+		bent = l.IncrementalAt(i) / l.Inductance
+	}
+	for k := range phases {
+		e.inductance[k] = e.nominalInductance(k) * bent
+	}
+}
+
+// beginNear starts from an anchor.
 func (e *Evaluator) beginNear(a *Anchor, o *operating) {
 	o.closedPasses, o.near = nearPasses, a
 	o.bridge = o.point.Input * (1 - a.drop)
@@ -264,13 +269,23 @@ func (e *Evaluator) settled(o *operating, status Status) Status {
 	if e.operation.Inductances != nil && !e.settlePhases(o) {
 		return Runaway
 	}
-	if e.feedback, _ = e.network.Feedback(&e.slope); e.feedback >= 1 {
+	if !e.stable() {
 		return Runaway
 	}
 	if status == OK && e.tooHot() {
 		return OverTemperature
 	}
 	return status
+}
+
+// stable reports whether the equilibrium is one, with the figure that says how much
+// unless that is spared.
+func (e *Evaluator) stable() bool {
+	if e.spared {
+		return e.network.Stable(&e.slope)
+	}
+	e.feedback, _ = e.network.Feedback(&e.slope)
+	return e.feedback < 1
 }
 
 func fromSwitched(s switched.Status) Status {

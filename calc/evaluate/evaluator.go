@@ -1,6 +1,8 @@
 package evaluate
 
 import (
+	"slices"
+
 	"railproof/calc/losses"
 	"railproof/calc/parts"
 	"railproof/calc/stage"
@@ -31,6 +33,7 @@ type Evaluator struct {
 	powerDegC          thermal.Vector              // [degC] at which power holds
 	hottest            thermal.Vector              // [degC] of the parts, of unequal phases the hottest
 	feedback           float64                     // [1] gain of the loop from temperature to loss and back
+	spared             bool                        // it is not told
 	inductance         [switched.MaxPhases]float64 // [H] over the present swing
 	valley, peak       float64                     // [A] from the flux curve
 	input              switched.InputSolution
@@ -74,6 +77,10 @@ func prepareTables(s *stage.Stage) {
 		}
 	}
 }
+
+// SpareFeedback leaves the thermal feedback out of the results until the next Reset.
+// Whether there is runaway is told as before, by a bound where that is enough.
+func (e *Evaluator) SpareFeedback() { e.spared = true }
 
 // Stage returns the evaluator's own stage. Its numbers may be set between
 // evaluations; its tables, topology, counts and exponents may not.
@@ -128,7 +135,20 @@ func (e *Evaluator) prepareNetwork() {
 	for k := range s.InputCapacitors {
 		add(losses.InputCapacitor+losses.Part(k), 1)
 	}
-	for _, c := range s.ThermalCouplings {
+	// The controller's loss does not rise with temperature: coupled first, it costs the
+	// elimination nothing.
+	controller := losses.Controller.String()
+	couplings := slices.Clone(s.ThermalCouplings)
+	slices.SortStableFunc(couplings, func(x, y stage.ThermalCoupling) int {
+		involves := func(c stage.ThermalCoupling) int {
+			if c.A == controller || c.B == controller {
+				return 0
+			}
+			return 1
+		}
+		return involves(x) - involves(y)
+	})
+	for _, c := range couplings {
 		a, okA := losses.PartByName(c.A)
 		b, okB := losses.PartByName(c.B)
 		if !okA || !okB || e.weight[a] == 0 || e.weight[b] == 0 {

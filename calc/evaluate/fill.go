@@ -241,7 +241,7 @@ func (e *Evaluator) fillParts(o *operating, r *Result) {
 		set(quantity.InputCapacitorLoss+id, quantity.InputCapacitorTemperature+id, losses.InputCapacitor+losses.Part(k))
 		q[quantity.InputCapacitorLife+id] = e.life(o, &s.InputCapacitors[k], losses.InputCapacitor+losses.Part(k), e.input.BankRMS[k])
 	}
-	if !o.held {
+	if !o.held && !e.spared {
 		q[quantity.ThermalFeedback] = e.feedback
 	}
 }

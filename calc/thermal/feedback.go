@@ -59,6 +59,29 @@ func (n *Network) Feedback(slope *Vector) (ratio float64, node int) {
 	return max(ratio, coupled), node
 }
 
+// Stable reports whether Feedback is below one, most often by the greatest sum of a row
+// of R J, which no eigenvalue exceeds.
+func (n *Network) Stable(slope *Vector) bool {
+	g := &n.gains
+	g.gather(n, slope)
+	for a := range g.m {
+		sum := 0.0
+		for _, r := range g.rj[a][:g.m] {
+			sum += r
+		}
+		if !(sum < 1) {
+			ratio, _ := n.Feedback(slope)
+			return ratio < 1
+		}
+	}
+	for _, i := range n.node[n.joined:n.n] {
+		if !(n.self[i]*slope[i] < 1) {
+			return false
+		}
+	}
+	return true
+}
+
 // gather fills the matrix from the coupled nodes whose loss rises with their
 // temperature.
 func (g *gains) gather(n *Network, slope *Vector) {

@@ -81,14 +81,14 @@ func (n *Network) shortfall(ambientDegC float64, power, degC *Vector) {
 // just holds a part whose own gain reaches one is not given credit.
 func (n *Network) factor(slope *Vector) bool {
 	for k, i := range n.node[:n.n] {
-		n.inverse[k] = 1
-		if j := slope[i]; j != 0 {
-			d := 1 - n.self[i]*j
-			if !(d > 0) {
-				return false
-			}
-			n.inverse[k] = 1 / d
+		d := 1 - n.self[i]*slope[i]
+		if !(d > 0) {
+			return false
 		}
+		if k >= n.joined && d != 1 {
+			d = 1 / d
+		}
+		n.inverse[k] = d // of the joined ones it is not used
 	}
 	m := n.joined
 	for k, i := range n.node[:m] {

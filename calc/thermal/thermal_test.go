@@ -235,6 +235,9 @@ func TestFeedbackIsLargestEigenvalue(t *testing.T) {
 				if math.Abs(got-want) > 2*gainTolerance*want+1e-12 {
 					t.Fatalf("got %.12g, want %.12g", got, want)
 				}
+				if n.Stable(&slope) != (got < 1) {
+					t.Fatalf("stable %v at %.12g", n.Stable(&slope), got)
+				}
 			})
 		})
 	}
