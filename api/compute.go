@@ -6,7 +6,7 @@ import (
 	"fmt"
 	"io"
 	"net/http"
-	"strings"
+	"strconv"
 
 	"github.com/labstack/echo/v4"
 
@@ -111,9 +111,13 @@ func (a *API) body(c echo.Context) ([]byte, *exchange.Problem) {
 
 // serverTiming writes the milliseconds of each step.
 func serverTiming(timings []exchange.Timing) string {
-	steps := make([]string, len(timings))
+	b := make([]byte, 0, 160)
 	for i, t := range timings {
-		steps[i] = fmt.Sprintf("%s;dur=%.3f", t.Step, t.Took.Seconds()*1e3)
+		if i > 0 {
+			b = append(b, ", "...)
+		}
+		b = append(append(b, t.Step...), ";dur="...)
+		b = strconv.AppendFloat(b, t.Took.Seconds()*1e3, 'f', 3, 64)
 	}
-	return strings.Join(steps, ", ")
+	return string(b)
 }

@@ -3,6 +3,7 @@ package wire
 import (
 	"fmt"
 	"reflect"
+	"slices"
 
 	"railproof/calc/numeric"
 	"railproof/calc/parts"
@@ -38,7 +39,7 @@ func (w *Stage) Decode(root string) (*Decoded, error) {
 
 // numbers fills the stage's registered numbers and collects their spreads.
 func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[]Fault) {
-	given := make([]slot, len(fields))
+	given, spreads := make([]slot, len(fields)), 0
 	places := stage.Lookup{Fields: fields}
 	walk(reflect.ValueOf(w).Elem(), "", false, func(id string, s slot) {
 		if !s.given() {
@@ -50,7 +51,11 @@ func (d *Decoded) numbers(w *Stage, fields []stage.Field, root string, faults *[
 			return
 		}
 		given[i] = s
+		if s.number != nil && (*s.number).Spread != nil {
+			spreads++
+		}
 	})
+	d.Variables = slices.Grow(d.Variables, spreads)
 	members := groups{}
 	for i := range fields {
 		f, s := &fields[i], given[i]
