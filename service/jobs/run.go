@@ -133,16 +133,16 @@ func (b *Board) beat(ctx context.Context, r *run) <-chan struct{} {
 // alive reports whether the job is still ours to do. While the database cannot be
 // asked, it is.
 func (b *Board) alive(ctx context.Context, r *run, beat bool) bool {
-	ctx, cancel := context.WithTimeout(ctx, lookTimeout)
+	look, cancel := context.WithTimeout(ctx, lookTimeout)
 	defer cancel()
 	var state State
 	var err error
 	if beat {
 		done, expected := r.progress()
-		err = b.db.row(ctx, `UPDATE railproof_jobs SET beat = NOW(), done = $3, expected = $4, sequence = sequence + 1
+		err = b.db.row(look, `UPDATE railproof_jobs SET beat = NOW(), done = $3, expected = $4, sequence = sequence + 1
 			WHERE id = $1 AND owner = $2 AND state = 'running' RETURNING state`, r.id, b.process, done, expected).Scan(&state)
 	} else {
-		err = b.db.row(ctx, `SELECT state FROM railproof_jobs WHERE id = $1 AND owner = $2 AND state = 'running'`, r.id, b.process).Scan(&state)
+		err = b.db.row(look, `SELECT state FROM railproof_jobs WHERE id = $1 AND owner = $2 AND state = 'running'`, r.id, b.process).Scan(&state)
 	}
 	if err != nil && !errors.Is(err, sql.ErrNoRows) {
 		_ = b.failed(ctx, "a job's beat", err)
