@@ -384,6 +384,9 @@ func TestElimination(t *testing.T) {
 		for _, v := range eig.Values(nil) {
 			largest = max(largest, real(v))
 		}
+		for _, i := range n.node[size:n.n] {
+			largest = max(largest, n.self[i]*slope[i])
+		}
 		falls := slices.ContainsFunc(nodes, func(i int) bool { return slope[i] < 0 })
 		if verdict && largest > 1+1e-6 || !verdict && largest < 1-1e-6 && !falls {
 			t.Fatalf("largest eigenvalue %.9g, verdict stable: %v", largest, verdict)
