@@ -49,7 +49,7 @@ func divide(w wave, duty, rms, period float64, bank []switched.Bank, share *[swi
 		var y [switched.MaxBanks]complex128
 		var all complex128
 		for k := range bank {
-			y[k] = admittance(&bank[k], omega)
+			y[k] = bank[k].Admittance(complex(0, omega))
 			all += y[k]
 		}
 		for k := range bank {
@@ -77,13 +77,8 @@ func together(c *switched.Circuit) (capacitance, r float64) {
 	omega := 2 * math.Pi / c.Period
 	var y complex128
 	for k := range c.Banks {
-		y += admittance(&c.Bank[k], omega)
+		y += c.Bank[k].Admittance(complex(0, omega))
 	}
 	z := 1 / y
 	return -1 / (omega * imag(z)), real(z)
-}
-
-// admittance is a bank's [S] at an angular frequency [rad/s].
-func admittance(b *switched.Bank, omega float64) complex128 {
-	return 1 / complex(b.ESR, -1/(omega*b.C))
 }

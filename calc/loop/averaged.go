@@ -167,7 +167,7 @@ func (a *Averaged) load(s complex128) complex128 {
 	c := &a.plant.Circuit
 	y := complex(c.Conductance, 0)
 	for k := range c.Banks {
-		y += 1 / (complex(c.Bank[k].ESR, 0) + 1/(s*complex(c.Bank[k].C, 0)))
+		y += c.Bank[k].Admittance(s)
 	}
 	return 1 / y
 }

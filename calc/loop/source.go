@@ -94,7 +94,7 @@ func (s *Source) Impedance(frequency float64) complex128 {
 	}
 	y := 1 / (z + complex(s.Resistance, 0))
 	for i := range s.Shunts {
-		y += 1 / (complex(s.Shunt[i].ESR, 0) + 1/(w*complex(s.Shunt[i].C, 0)))
+		y += s.Shunt[i].Admittance(w)
 	}
 	return 1 / y
 }

@@ -30,6 +30,12 @@ type Bank struct {
 	ESR float64 // [ohm] above zero
 }
 
+// Admittance returns s C/(1 + s C ESR) [S] at a complex frequency [rad/s].
+func (b *Bank) Admittance(s complex128) complex128 {
+	y := s * complex(b.C, 0)
+	return y / (1 + y*complex(b.ESR, 0))
+}
+
 // Rectifier carries the inductor current while the high side is off.
 type Rectifier struct {
 	Threshold float64 // [V] 0 for a switch
