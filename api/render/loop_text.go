@@ -24,7 +24,7 @@ func LoopText(a *wire.LoopGainAnswer) string {
 		})
 	}
 	p.table([]align{right, left, left, right, right, right, right, right},
-		[]string{"point", "in, load, ambient", "status", "crossover", "phase", "gain", "|1+T|", "peak Zout"}, rows)
+		[]string{"point", "in, load, ambient", "status", "crossover", "phase", "gain", "modulus", "peak Zout"}, rows)
 	for i := range a.Items {
 		p.loopItem(&a.Items[i], i)
 	}
